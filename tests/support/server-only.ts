@@ -1,0 +1,2 @@
+// Stands in for the package that refuses to load outside a server bundle.
+export {}
