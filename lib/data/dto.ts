@@ -1,0 +1,278 @@
+/**
+ * What people and programs are shown: the shapes of /api/v1 and of every page.
+ * Safe to import in the browser: schemas only, no data access.
+ */
+import { z } from 'zod'
+import { DISCLOSURES } from '@/lib/method/orders'
+import { PACE_NAMES } from '@/lib/method/pace'
+
+export const LEVELS = ['firm', 'weak', 'split'] as const
+export const TRENDS = ['steady', 'falling', 'rising'] as const
+export const DATA_STATES = ['fresh', 'settling', 'unheard'] as const
+export const ROLES = ['owner', 'operator', 'viewer'] as const
+export const SIDES = ['a', 'b'] as const
+export const WEIGHTS = ['unit', 'delivered'] as const
+
+const at = z.iso.datetime()
+const side = z.object({ name: z.enum(SIDES), nodes: z.number().int() })
+
+export const readingSchema = z.object({
+  at,
+  /** Null while withheld: see `data`. */
+  lambda2: z.number().nullable(),
+  low: z.number().nullable(),
+  high: z.number().nullable(),
+  confidence: z.number(),
+  core: z.object({ lambda2: z.number(), low: z.number(), high: z.number() }).nullable(),
+  lambda3AtMost: z.number().nullable(),
+  crossCheck: z.number().nullable(),
+  /** Level and trend of the last good reading stay visible while data is not fresh; null before the first. */
+  level: z.enum(LEVELS).nullable(),
+  trend: z.enum(TRENDS).nullable(),
+  data: z.enum(DATA_STATES),
+  /** One sentence for a person. */
+  verdict: z.string(),
+  /** One or two further sentences: what the cut follows, who is unheard, why a reading is withheld. */
+  detail: z.string(),
+  /** True: agents unheard together make a partition likely. */
+  treatAsSplit: z.boolean(),
+  /** False where it is shown that no single cut is weakest; null when not known. */
+  singleCut: z.boolean().nullable(),
+  /** Median of at least seven days, or null. */
+  usual: z.number().nullable(),
+  sides: z.tuple([side, side]).nullable(),
+  crossingLinks: z.number().int().nullable(),
+  crossingWeight: z.number().nullable(),
+  looseEnds: z.array(z.object({ nodes: z.number().int(), links: z.number().int() })),
+  coverage: z.object({
+    linksKnown: z.number().int(),
+    linksMeasured: z.number().int(),
+    joined: z.number().int(),
+    heard: z.number().int(),
+    unheard: z.number().int(),
+  }),
+  /** Seedings the reading rests on. */
+  seedings: z.array(z.number().int()),
+  /** The last good value and when, while the reading is withheld. */
+  last: z.object({ at, lambda2: z.number() }).nullable(),
+  /** True for history computed by simulation for the demo. */
+  demo: z.boolean(),
+})
+export type Reading = z.infer<typeof readingSchema>
+
+export const readingPointSchema = z.object({
+  at,
+  lambda2: z.number().nullable(),
+  low: z.number().nullable(),
+  high: z.number().nullable(),
+  level: z.enum(LEVELS).nullable(),
+  data: z.enum(DATA_STATES),
+  demo: z.boolean(),
+})
+export type ReadingPoint = z.infer<typeof readingPointSchema>
+export const readingsSchema = z.object({ items: z.array(readingPointSchema), stepSeconds: z.number() })
+
+export const NODE_STATES = ['heard', 'unheard', 'detached', 'left', 'revoked'] as const
+export const nodeSchema = z.object({
+  name: z.string(),
+  labels: z.record(z.string(), z.string()),
+  side: z.enum(SIDES).nullable(),
+  /** Fiedler value in units where the mean square over nodes is 1; null where not disclosed or not known. */
+  value: z.number().nullable(),
+  degree: z.number().nullable(),
+  weightedDegree: z.number().nullable(),
+  heardAt: at.nullable(),
+  version: z.string().nullable(),
+  state: z.enum(NODE_STATES),
+})
+export type OverlayNode = z.infer<typeof nodeSchema>
+export const nodesSchema = z.object({ items: z.array(nodeSchema), next: z.string().nullable() })
+
+/** A disclosed link; a and b are node names, a before b. */
+export const linkSchema = z.object({
+  a: z.string(),
+  b: z.string(),
+  weight: z.number(),
+  share: z.number().nullable(),
+  crossing: z.boolean(),
+  /** "lost" links were named at the last good reading and are not heard any more. */
+  state: z.enum(['live', 'lost']),
+  heardAt: at,
+})
+export type OverlayLink = z.infer<typeof linkSchema>
+export const linksSchema = z.object({ items: z.array(linkSchema), next: z.string().nullable() })
+
+export const cutSchema = z.object({
+  at,
+  sides: z.tuple([side, side]).nullable(),
+  /** Why no sides are given, where they are not. */
+  withheld: z.string().nullable(),
+  crossingLinks: z.number().int().nullable(),
+  crossingWeight: z.number().nullable(),
+  /** Crossing links as disclosure allows. */
+  links: z.array(linkSchema),
+  /** The label key the sides follow exactly, if any, with the values on either side. */
+  follows: z.object({ key: z.string(), a: z.array(z.string()), b: z.array(z.string()) }).nullable(),
+})
+export type Cut = z.infer<typeof cutSchema>
+
+export const overlaySchema = z.object({
+  slug: z.string(),
+  name: z.string(),
+  team: z.object({ slug: z.string(), name: z.string() }),
+  pace: z.enum(PACE_NAMES),
+  disclosure: z.enum(DISCLOSURES),
+  weights: z.enum(WEIGHTS),
+  createdAt: at,
+  demo: z.boolean(),
+  contact: z.string().nullable(),
+  runbookUrl: z.string().nullable(),
+  /** The caller's role. */
+  role: z.enum(ROLES),
+  joined: z.number().int(),
+})
+export type Overlay = z.infer<typeof overlaySchema>
+
+const slug = z
+  .string()
+  .regex(
+    /^[a-z0-9](?:[a-z0-9-]{0,38}[a-z0-9])?$/,
+    'Use 1 to 40 lower-case letters, digits and inner hyphens.',
+  )
+
+export const newOverlaySchema = z.object({
+  name: z.string().trim().min(1, 'Give the overlay a name.').max(80),
+  slug,
+  pace: z.enum(PACE_NAMES).default('steady'),
+  disclosure: z.enum(DISCLOSURES).default('sealed'),
+  weights: z.enum(WEIGHTS).default('delivered'),
+  contact: z.string().trim().max(200).nullable().default(null),
+  /** Shown as a link, so nothing but web addresses. */
+  runbookUrl: z
+    .url({ protocol: /^https?$/, error: 'Give a whole address: https://…' })
+    .nullable()
+    .default(null),
+  /** Slug of the owning team; may be left out when the caller belongs to one team only. */
+  team: z.string().optional(),
+})
+export type NewOverlay = z.input<typeof newOverlaySchema>
+
+export const newJoiningCodeSchema = z.object({
+  uses: z.number().int().min(1).max(10_000).default(1),
+  expiresInHours: z
+    .number()
+    .positive()
+    .max(24 * 90)
+    .default(24),
+})
+
+/** The code itself is shown once, on creation. */
+export const joiningCodeSchema = z.object({
+  id: z.string(),
+  hint: z.string(),
+  uses: z.number().int(),
+  used: z.number().int(),
+  expiresAt: at,
+  createdAt: at,
+  createdBy: z.string().nullable(),
+  state: z.enum(['open', 'used', 'expired', 'revoked']),
+})
+export type JoiningCode = z.infer<typeof joiningCodeSchema>
+export const createdJoiningCodeSchema = joiningCodeSchema.extend({ code: z.string() })
+export type CreatedJoiningCode = z.infer<typeof createdJoiningCodeSchema>
+
+export const EVENT_KINDS = [
+  'agent-joined',
+  'agent-left',
+  'agent-revoked',
+  'agent-unheard',
+  'agent-heard',
+  'level-changed',
+  'link-lost',
+  'link-found',
+  'withheld',
+  'resumed',
+] as const
+export const eventSchema = z.object({
+  id: z.string(),
+  at,
+  kind: z.enum(EVENT_KINDS),
+  /** One line for a person. */
+  text: z.string(),
+})
+export type OverlayEvent = z.infer<typeof eventSchema>
+export const eventsSchema = z.object({ items: z.array(eventSchema) })
+
+/** RFC 9457 problem details, with what to do next. */
+export const problemSchema = z.object({
+  type: z.string(),
+  title: z.string(),
+  status: z.number().int(),
+  detail: z.string(),
+  code: z.string(),
+  retry: z.boolean(),
+  errors: z.array(z.object({ path: z.string(), message: z.string() })).optional(),
+})
+export type Problem = z.infer<typeof problemSchema>
+
+const email = z
+  .email('Write the address like name@example.org.')
+  .max(200)
+  .transform((text) => text.toLowerCase())
+
+export const signInSchema = z.object({
+  email: z.string().trim().toLowerCase().min(1, 'Write your e-mail address.').max(200),
+  password: z.string().min(1, 'Write your password.').max(200),
+})
+
+/** Length beats rules on characters (NIST SP 800-63B §5.1.1.2, from memory). */
+export const PASSWORD_MIN_LENGTH = 10
+export const newPasswordSchema = z
+  .string()
+  .min(PASSWORD_MIN_LENGTH, `Use at least ${PASSWORD_MIN_LENGTH} characters.`)
+  .max(200, 'Use at most 200 characters.')
+
+export const firstRunSchema = z.object({
+  team: z.string().trim().min(1, 'Give the team a name.').max(80),
+  name: z.string().trim().min(1, 'Write your name.').max(80),
+  email: z.string().trim().pipe(email),
+  password: newPasswordSchema,
+})
+
+export const newMemberSchema = z.object({
+  name: z.string().trim().min(1, 'Write the name.').max(80),
+  email: z.string().trim().pipe(email),
+  role: z.enum(ROLES),
+})
+
+export const memberSchema = z.object({
+  id: z.string(),
+  name: z.string(),
+  email: z.string(),
+  role: z.enum(ROLES),
+  /** False until the person has set a password. */
+  active: z.boolean(),
+  you: z.boolean(),
+  /** The only owner left: cannot be removed or given another role. */
+  lastOwner: z.boolean(),
+  addedAt: at,
+})
+export type Member = z.infer<typeof memberSchema>
+
+export const teamSchema = z.object({ slug: z.string(), name: z.string(), role: z.enum(ROLES) })
+export type Team = z.infer<typeof teamSchema>
+
+export const AUDIT_ACTOR_KINDS = ['user', 'token', 'agent', 'system'] as const
+export const AUDIT_OUTCOMES = ['ok', 'denied', 'failed'] as const
+export const auditEntrySchema = z.object({
+  id: z.string(),
+  at,
+  actorKind: z.enum(AUDIT_ACTOR_KINDS),
+  actor: z.string(),
+  action: z.string(),
+  subject: z.string(),
+  outcome: z.enum(AUDIT_OUTCOMES),
+  data: z.record(z.string(), z.unknown()).nullable(),
+})
+export type AuditItem = z.infer<typeof auditEntrySchema>
+export const auditSchema = z.object({ items: z.array(auditEntrySchema), next: z.string().nullable() })

@@ -1,0 +1,51 @@
+import { SUMS_SCALE } from '../report'
+import { heardAgents, LATE_INTERVALS, type Snapshot } from './snapshot'
+
+/** Below this share of joined agents, or of walkers, heard, no reading is given and walking stops. */
+export const LEAST_HEARD = 0.85
+
+export interface Coverage {
+  joined: number
+  heard: number
+  /** Heard within the last few intervals: what a reading needs. */
+  prompt: number
+  attached: number
+  /** Mean weighted degree of attached agents; 0 where there are none. */
+  meanWeightedDegree: number
+  linksMeasured: number
+  linksKnown: number
+  /** Share of the walkers last known that stand at agents heard promptly; 1 where none are known. */
+  walkersHeard: number
+}
+
+export function coverageOf(snapshot: Snapshot, intervalMs: number): Coverage {
+  const heard = heardAgents(snapshot, intervalMs)
+  const prompt = heard.filter(({ last }) => snapshot.atMs - last.receivedAtMs <= LATE_INTERVALS * intervalMs)
+  const held = (agents: readonly Snapshot['agents'][number][]): number =>
+    agents.reduce(
+      (sum, agent) =>
+        sum +
+        (agent.last?.report.sums.colonies.reduce((all, { heldX, heldY }) => all + heldX + heldY, 0) ?? 0),
+      0,
+    )
+  const all = held(snapshot.agents)
+  const sum = (pick: (agent: (typeof heard)[number]) => number): number =>
+    heard.reduce((total, agent) => total + pick(agent), 0)
+  const attached = sum(({ last }) => last.report.sums.attached)
+  return {
+    joined: snapshot.agents.length,
+    heard: heard.length,
+    prompt: prompt.length,
+    attached,
+    meanWeightedDegree:
+      attached > 0 ? sum(({ last }) => last.report.sums.linkEndWeight) / SUMS_SCALE / attached : 0,
+    // Both ends of a link report it.
+    linksMeasured: Math.round(sum(({ last }) => last.report.node.degree) / 2),
+    linksKnown: Math.round(sum(({ last }) => last.report.node.linksKnown) / 2),
+    walkersHeard: all > 0 ? held(prompt) / all : 1,
+  }
+}
+
+export function isEnough(coverage: Coverage): boolean {
+  return coverage.prompt >= LEAST_HEARD * coverage.joined && coverage.walkersHeard >= LEAST_HEARD
+}

@@ -1,0 +1,38 @@
+import { SUMS_SCALE } from '../report'
+import type { HeardAgent } from './snapshot'
+import type { CutCount } from './state'
+
+/** Where agents count cuts, in units of the Fiedler vector's root mean square. Many small sides lie far out. */
+export const THRESHOLDS = [-2, -1.1, -0.5, -0.2, 0, 0.2, 0.5, 1.1, 2] as const
+
+/**
+ * The best of the counted cuts by ratio (weight across ÷ nodes of the smaller side).
+ * @returns undefined while not every attached agent heard has counted for this combination
+ */
+export function bestCut(
+  sweep: number,
+  thresholds: readonly number[],
+  heard: readonly HeardAgent[],
+): CutCount | null | undefined {
+  const attached = heard.filter(({ last }) => last.report.sums.attached === 1)
+  const counts = attached.flatMap(({ last }) => {
+    const sums = last.report.sums.sweep
+    return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []
+  })
+  if (counts.length === 0 || counts.length < attached.length) return undefined
+  let best: (CutCount & { ratio: number }) | null = null
+  thresholds.forEach((threshold, index) => {
+    const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
+      counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
+    const above = total((sums) => sums.above)
+    const below = counts.length - above
+    if (above === 0 || below === 0) return
+    const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
+    const ratio = weight / Math.min(above, below)
+    const links = Math.round(total((sums) => sums.crossing) / 2)
+    if (!best || ratio < best.ratio) best = { threshold, sweep, above, below, links, weight, ratio }
+  })
+  if (!best) return null
+  const { ratio: _, ...cut } = best as CutCount & { ratio: number }
+  return cut
+}

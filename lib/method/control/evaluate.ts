@@ -1,0 +1,264 @@
+import type { ColonyOrders, Orders } from '../orders'
+import type { Random } from '../random'
+import { noteDrift } from './alignment'
+import { type Coverage, coverageOf, isEnough } from './coverage'
+import { bestCut, THRESHOLDS } from './cut'
+import { intervalOf, isSettled, RITZ_KEPT } from './interval'
+import { nextLinkTimePerSecond } from './law'
+import { type Seeder, seedColony, steerColony } from './populations'
+import { heardAgents, type Snapshot } from './snapshot'
+import type { ColonyControl, ControlSettings, ControlState, CutCount } from './state'
+import { combinationOf, gather, ritzOf } from './subspace'
+
+/** The oldest colony is seeded anew this often, so that a change of cut finds one that is not set in the old one. */
+export const RENEWAL_INTERVALS = 17
+/** A seeding places walkers only for this long; an agent that comes to it later starts empty. */
+export const PLACING_INTERVALS = 3
+/** A younger colony is left out of the sums: its average still holds the random start. From cold all are alike. */
+export const LEAST_AGE_INTERVALS = 4
+export const COLD_LEAST_AGE_INTERVALS = 2
+/** Walkers are first placed when the number of attached agents has stood still this long. */
+export const STILL_INTERVALS = 2
+/** A young colony that lowers the Ritz value by more than this shows that the old ones are set in an old cut. */
+export const LOWERED = 0.05
+/** Second Ritz value over first under which no single cut is weakest. */
+export const NEAR = 1.2
+/** A combination is replaced at the latest after this long, counted or not. */
+export const COMBINATION_INTERVALS = 8
+
+export type Withheld = 'unheard' | 'too-few-nodes' | 'starting'
+
+/** One reading in numbers. λ values in link-time units. */
+export interface Estimate {
+  atMs: number
+  withheld: Withheld | null
+  lambda2: number | null
+  low: number | null
+  high: number | null
+  lambda3AtMost: number | null
+  crossCheck: number | null
+  settling: boolean
+  singleCut: boolean | null
+  cut: CutCount | null
+  coverage: Coverage
+  seedings: number[]
+}
+
+export interface EvaluateInput {
+  control: ControlState
+  /** The snapshot of the last evaluation, or null for a leader that has just begun. */
+  before: Snapshot | null
+  now: Snapshot
+  settings: ControlSettings
+  /** Drawn from the fenced source; larger than any before. */
+  sequence: number
+  random: Random
+}
+
+export interface Evaluation {
+  control: ControlState
+  orders: Orders
+  estimate: Estimate
+}
+
+/** One round of the control loop: a plan from a snapshot. Pure. */
+export function evaluate(input: EvaluateInput): Evaluation {
+  const { now, settings, sequence } = input
+  const coverage = coverageOf(now, settings.pace.intervalMs)
+  const attached =
+    coverage.attached === input.control.attached.count
+      ? input.control.attached
+      : { count: coverage.attached, sinceMs: now.atMs }
+  const control: ControlState = {
+    ...input.control,
+    sequence,
+    attached,
+    meanWeightedDegree: coverage.meanWeightedDegree || input.control.meanWeightedDegree,
+  }
+  const withheld = whyWithheld(control, coverage, now.atMs, settings)
+  if (withheld) {
+    return {
+      control,
+      orders: ordersFrom(control, settings, now.atMs, false),
+      estimate: withheldEstimate(now.atMs, withheld, coverage),
+    }
+  }
+  const steered = steer(control, input)
+  return read(steered, input, coverage)
+}
+
+function whyWithheld(
+  control: ControlState,
+  coverage: Coverage,
+  atMs: number,
+  { pace }: ControlSettings,
+): Withheld | null {
+  if (coverage.joined > 0 && !isEnough(coverage)) return 'unheard'
+  if (coverage.attached < 2) return 'too-few-nodes'
+  const still = atMs - control.attached.sinceMs >= STILL_INTERVALS * pace.intervalMs
+  return control.colonies.length === 0 && !still ? 'starting' : null
+}
+
+/** New birth rates, seedings and ω. */
+function steer(control: ControlState, input: EvaluateInput): ControlState {
+  const { before, now, settings, sequence, random } = input
+  const { intervalMs } = settings.pace
+  const agentIds = heardAgents(now, intervalMs)
+    .filter(({ last }) => last.report.sums.attached === 1)
+    .map(({ agentId }) => agentId)
+  const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, random }
+  if (control.colonies.length === 0) {
+    const colonies = Array.from({ length: settings.colonies }, (_, slot) => seedColony(slot, null, seeder))
+    return { ...control, colonies, renewedAtMs: now.atMs, coldSinceMs: now.atMs, ritz: [] }
+  }
+  if (!before) return control
+  const colonies = control.colonies.map((colony) =>
+    steerColony(colony, before, now, control.linkTimePerSecond, seeder),
+  )
+  const cold = colonies.every(({ seeding }) => seeding === sequence)
+  const next: ControlState = cold
+    ? {
+        ...control,
+        colonies,
+        renewedAtMs: now.atMs,
+        coldSinceMs: now.atMs,
+        ritz: [],
+        combination: null,
+        cut: null,
+      }
+    : { ...control, colonies }
+  return cold ? next : renewOldest(next, seeder)
+}
+
+function renewOldest(control: ControlState, seeder: Seeder): ControlState {
+  const { intervalMs } = seeder.settings.pace
+  if (seeder.atMs - control.renewedAtMs < RENEWAL_INTERVALS * intervalMs) return control
+  const oldest = control.colonies.reduce((a, b) => (b.seededAtMs < a.seededAtMs ? b : a))
+  const colonies = control.colonies.map((colony) =>
+    colony === oldest ? seedColony(colony.colony, crossCheckOf(control.colonies), seeder) : colony,
+  )
+  return { ...control, colonies, renewedAtMs: seeder.atMs }
+}
+
+/** Mean death rate of all but the youngest colonies; the walkers' own estimate of λ₂. */
+function crossCheckOf(colonies: readonly ColonyControl[]): number | null {
+  const newest = Math.max(...colonies.map(({ seededAtMs }) => seededAtMs))
+  const older = colonies.filter(({ seededAtMs }) => seededAtMs < newest)
+  const rates = (older.length > 0 ? older : colonies).flatMap(({ deathRate }) => deathRate ?? [])
+  return rates.length > 0 ? rates.reduce((sum, rate) => sum + rate, 0) / rates.length : null
+}
+
+/** The reading, the cut and the orders from a steered state. */
+function read(control: ControlState, input: EvaluateInput, coverage: Coverage): Evaluation {
+  const { now, settings, sequence } = input
+  const { pace } = settings
+  const heard = heardAgents(now, pace.intervalMs)
+  const aged = control.colonies.filter(({ seededAtMs }) => {
+    const least = seededAtMs > control.coldSinceMs ? LEAST_AGE_INTERVALS : COLD_LEAST_AGE_INTERVALS
+    return now.atMs - seededAtMs >= least * pace.intervalMs
+  })
+  const drifts = input.before
+    ? noteDrift(control.drifts, control.colonies, input.before, now, pace.intervalMs)
+    : control.drifts
+  const subspace = gather(aged, heard, drifts, { atMs: now.atMs, intervalMs: pace.intervalMs })
+  const result = subspace && ritzOf(subspace)
+  const crossCheck = crossCheckOf(control.colonies)
+  const lambda2 = result?.values[0] ?? null
+  const ritz =
+    lambda2 === null ? control.ritz : [...control.ritz, { atMs: now.atMs, value: lambda2 }].slice(-RITZ_KEPT)
+  // Before the first Ritz value the cross-check still counts the kills of the random start: ω would collapse on it.
+  const slowest = lambda2 === null ? null : Math.min(lambda2, crossCheck ?? lambda2)
+  const next: ControlState = {
+    ...control,
+    drifts,
+    ritz,
+    linkTimePerSecond: nextLinkTimePerSecond(control.linkTimePerSecond, slowest, pace),
+  }
+  const isYoung = ({ seededAtMs }: ColonyControl): boolean =>
+    seededAtMs === control.renewedAtMs && seededAtMs > control.coldSinceMs
+  const mature = subspace && lambda2 !== null ? ritzOf(subspace, (colony) => !isYoung(colony)) : null
+  const lowered =
+    mature !== null && lambda2 !== null && lambda2 < (mature.values[0] ?? lambda2) * (1 - LOWERED)
+  if (subspace && result) {
+    const counted = next.combination ? bestCut(next.combination.id, THRESHOLDS, heard) : undefined
+    if (counted !== undefined) next.cut = counted
+    const old = now.atMs - next.combinationAtMs >= COMBINATION_INTERVALS * pace.intervalMs
+    const gone = next.combination?.terms.some(
+      ({ colony, seeding }) => !control.colonies.some((c) => c.colony === colony && c.seeding === seeding),
+    )
+    if (!next.combination || counted !== undefined || old || gone) {
+      next.combination = combinationOf(subspace, result, control.combination, {
+        id: sequence,
+        thresholds: THRESHOLDS,
+      })
+      next.combinationAtMs = now.atMs
+    }
+  }
+  const second = result?.values[1] ?? null
+  const interval = lambda2 === null ? null : intervalOf(ritz.map(({ value }) => value))
+  return {
+    control: next,
+    orders: ordersFrom(next, settings, now.atMs, true),
+    estimate: {
+      atMs: now.atMs,
+      withheld: lambda2 === null ? 'starting' : null,
+      lambda2,
+      low: interval?.low ?? null,
+      high: interval?.high ?? null,
+      lambda3AtMost: second,
+      crossCheck,
+      settling: lowered || !isSettled(ritz.map(({ value }) => value)),
+      singleCut: lambda2 === null || second === null ? null : second > NEAR * lambda2,
+      cut: next.cut,
+      coverage,
+      seedings: subspace?.colonies.map(({ seeding }) => seeding) ?? [],
+    },
+  }
+}
+
+function withheldEstimate(atMs: number, withheld: Withheld, coverage: Coverage): Estimate {
+  return {
+    atMs,
+    withheld,
+    lambda2: null,
+    low: null,
+    high: null,
+    lambda3AtMost: null,
+    crossCheck: null,
+    settling: false,
+    singleCut: null,
+    cut: null,
+    coverage,
+    seedings: [],
+  }
+}
+
+function ordersFrom(
+  control: ControlState,
+  settings: ControlSettings,
+  atMs: number,
+  walking: boolean,
+): Orders {
+  const { pace } = settings
+  const colonies: ColonyOrders[] = control.colonies.map((colony) => ({
+    colony: colony.colony,
+    seeding: colony.seeding,
+    salt: colony.salt,
+    placing: atMs - colony.seededAtMs < PLACING_INTERVALS * pace.intervalMs,
+    placeX: colony.placeX,
+    placeY: colony.placeY,
+    encounterRate: (2 * control.meanWeightedDegree) / settings.walkersPerNode,
+    birthRateX: walking ? colony.birthRateX : 0,
+    birthRateY: walking ? colony.birthRateY : 0,
+    refused: [],
+  }))
+  return {
+    sequence: control.sequence,
+    pace,
+    linkTimePerSecond: walking ? control.linkTimePerSecond : 0,
+    colonies,
+    sweep: control.combination,
+    disclosure: settings.disclosure,
+    shareLimit: settings.shareLimit,
+  }
+}

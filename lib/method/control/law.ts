@@ -1,0 +1,63 @@
+/** How fast a population may be led back to its size, per interval of link time. */
+export const RETURN_RATE = 0.15
+/** Limits of the common birth rate and of each type's, per interval of link time. */
+export const MOST_COMMON = 0.4
+export const MOST_BIRTH = 0.6
+export const IMBALANCE_RATE = 0.25
+/**
+ * ω is held at λ̂·ω·(two intervals) = this. On simulated overlays 0.3 takes 76–230 s on a hub of degree 200 where 0.5
+ * takes 50–78 s; at 0.7 populations swing and readings err by 2–9 %.
+ */
+export const LOOP_GAIN = 0.45
+export const LOOP_INTERVALS = 2
+export const MOST_LINK_TIME_PER_TICK = 1
+export const SLOWEST_STEP = 0.5
+export const FASTEST_STEP = 1.5
+
+const clip = (value: number, limit: number): number => Math.max(-limit, Math.min(limit, value))
+
+export interface BirthRateInput {
+  /** Kills per walker and link time over the last interval. */
+  deathRate: number
+  populationX: number
+  populationY: number
+  /** Walkers wanted per type. */
+  target: number
+  /** Link time per report interval, ω × seconds. */
+  intervalLinkTime: number
+  /** Link time per tick. */
+  tickLinkTime: number
+}
+
+/**
+ * Birth rates for the next interval, per walker and link time: the death rate (a tick of linear steps adds the
+ * known factor 1/(1−hλ)), led towards the wanted population, with the imbalance ΣX − ΣY steered to 0.
+ */
+export function birthRates(input: BirthRateInput): { birthRateX: number; birthRateY: number } {
+  const { deathRate, populationX, populationY, target, intervalLinkTime: t } = input
+  const mean = (populationX + populationY) / 2
+  const replaced = deathRate / Math.max(0.5, 1 - input.tickLinkTime * deathRate)
+  const back = clip((RETURN_RATE * Math.log(target / mean)) / t, RETURN_RATE / t)
+  const common = clip(replaced + back, MOST_COMMON / t)
+  const gain = Math.max(0, common) + IMBALANCE_RATE / t
+  const imbalance = populationX - populationY
+  return {
+    birthRateX: clip(common - (gain * imbalance) / (2 * populationX), MOST_BIRTH / t),
+    birthRateY: clip(common + (gain * imbalance) / (2 * populationY), MOST_BIRTH / t),
+  }
+}
+
+/**
+ * ω for the next interval, link time per second.
+ * @param lambda the smaller of the smoothed cross-check and the last Ritz value; 0 or null where unknown
+ */
+export function nextLinkTimePerSecond(
+  current: number,
+  lambda: number | null,
+  pace: { tickMs: number; intervalMs: number },
+): number {
+  const fastest = (MOST_LINK_TIME_PER_TICK * 1000) / pace.tickMs
+  if (lambda === null) return current
+  const wanted = lambda > 0 ? (LOOP_GAIN * 1000) / (lambda * LOOP_INTERVALS * pace.intervalMs) : fastest
+  return Math.max(current * SLOWEST_STEP, Math.min(current * FASTEST_STEP, wanted, fastest))
+}

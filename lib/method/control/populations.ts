@@ -1,0 +1,85 @@
+import type { Random } from '../random'
+import { birthRates } from './law'
+import { type ColonyRates, colonyRates } from './rates'
+import { choosePlacing } from './seeding'
+import type { Snapshot } from './snapshot'
+import type { ColonyControl, ControlSettings } from './state'
+
+/** Outside these shares of the wanted population, or with one type gone, a colony is seeded anew. */
+export const FEWEST = 0.02
+export const MOST = 3
+/** A seeding is left alone this long before it may be judged lost. */
+export const GRACE_INTERVALS = 4
+/** A death rate is smoothed with this weight per interval. */
+export const SMOOTHING = 0.3
+/** Colonies seeded for far fewer nodes than there are now start over rather than grow for minutes. */
+export const OUTGROWN = 1.5
+export const OUTGROWN_WITHIN_INTERVALS = 30
+
+export interface Seeder {
+  atMs: number
+  sequence: number
+  agentIds: readonly string[]
+  settings: ControlSettings
+  random: Random
+}
+
+export function seedColony(colony: number, deathRate: number | null, seeder: Seeder): ColonyControl {
+  const { settings, agentIds } = seeder
+  const placing = choosePlacing(colony, agentIds, settings.walkersPerNode * agentIds.length, seeder.random)
+  return {
+    colony,
+    seeding: seeder.sequence,
+    ...placing,
+    seededAtMs: seeder.atMs,
+    seededFor: agentIds.length,
+    birthRateX: deathRate ?? 0,
+    birthRateY: deathRate ?? 0,
+    deathRate,
+  }
+}
+
+/** One control step of one colony: new birth rates, or a new seeding where it is lost or outgrown. */
+export function steerColony(
+  control: ColonyControl,
+  before: Snapshot,
+  now: Snapshot,
+  linkTimePerSecond: number,
+  seeder: Seeder,
+): ColonyControl {
+  const { pace, walkersPerNode } = seeder.settings
+  const rates = colonyRates(control.colony, control.seeding, before, now, pace.intervalMs)
+  const ageIntervals = (now.atMs - control.seededAtMs) / pace.intervalMs
+  const outgrown = seeder.agentIds.length >= OUTGROWN * control.seededFor
+  if (
+    (ageIntervals > GRACE_INTERVALS && isLost(rates, walkersPerNode)) ||
+    (outgrown && ageIntervals < OUTGROWN_WITHIN_INTERVALS)
+  ) {
+    return seedColony(control.colony, control.deathRate, seeder)
+  }
+  const { deathRate, populationX, populationY } = rates
+  if (deathRate === null || populationX === 0 || populationY === 0) return control
+  return {
+    ...control,
+    deathRate:
+      control.deathRate === null
+        ? deathRate
+        : control.deathRate + SMOOTHING * (deathRate - control.deathRate),
+    ...birthRates({
+      deathRate,
+      populationX,
+      populationY,
+      target: walkersPerNode * rates.present,
+      intervalLinkTime: (linkTimePerSecond * pace.intervalMs) / 1000,
+      tickLinkTime: (linkTimePerSecond * pace.tickMs) / 1000,
+    }),
+  }
+}
+
+function isLost(rates: ColonyRates, walkersPerNode: number): boolean {
+  const target = walkersPerNode * rates.present
+  if (target === 0) return false
+  if (rates.populationX === 0 || rates.populationY === 0) return true
+  const mean = (rates.populationX + rates.populationY) / 2
+  return mean < FEWEST * target || mean > MOST * target
+}

@@ -1,0 +1,30 @@
+import type { Report } from '../report'
+
+/** A silent agent's last report still counts for this many report intervals. */
+export const HELD_INTERVALS = 6
+
+/** An agent that missed this many report intervals is late: enough late ones and the reading is withheld. */
+export const LATE_INTERVALS = 3
+
+export interface JoinedAgent {
+  agentId: string
+  joinedAtMs: number
+  /** The last report held, however old; null before the first. */
+  last: { report: Report; receivedAtMs: number } | null
+}
+
+/** What the collector knows at one moment. Agents that left or were retired are not in it. */
+export interface Snapshot {
+  atMs: number
+  agents: readonly JoinedAgent[]
+}
+
+export type HeardAgent = JoinedAgent & { last: NonNullable<JoinedAgent['last']> }
+
+export function isHeard(agent: JoinedAgent, atMs: number, intervalMs: number): agent is HeardAgent {
+  return agent.last !== null && atMs - agent.last.receivedAtMs <= HELD_INTERVALS * intervalMs
+}
+
+export function heardAgents(snapshot: Snapshot, intervalMs: number): HeardAgent[] {
+  return snapshot.agents.filter((agent) => isHeard(agent, snapshot.atMs, intervalMs))
+}

@@ -1,0 +1,86 @@
+import type { Disclosure, SweepOrders } from '../orders'
+import type { Pace } from '../pace'
+import type { ColonyDrift } from './alignment'
+
+export const COLONIES = 5
+export const WALKERS_PER_NODE = 200
+
+/** What an overlay's owners chose, as far as walking goes. */
+export interface ControlSettings {
+  pace: Pace
+  disclosure: Disclosure
+  shareLimit: number
+  /** Walkers per node and type. */
+  walkersPerNode: number
+  colonies: number
+}
+
+export const DEFAULT_SETTINGS: Omit<ControlSettings, 'pace' | 'disclosure'> = {
+  shareLimit: 0.05,
+  walkersPerNode: WALKERS_PER_NODE,
+  colonies: COLONIES,
+}
+
+export interface ColonyControl {
+  colony: number
+  seeding: number
+  salt: number
+  placeX: number
+  placeY: number
+  seededAtMs: number
+  /** Agents attached when the colony was seeded. */
+  seededFor: number
+  birthRateX: number
+  birthRateY: number
+  /** Death rate smoothed over a few intervals; null before the first. */
+  deathRate: number | null
+}
+
+export interface CutCount {
+  /** Fiedler value that parts the sides, and the combination it belongs to. */
+  threshold: number
+  sweep: number
+  above: number
+  below: number
+  links: number
+  weight: number
+}
+
+/** All the control loop remembers, as plain JSON: whoever leads next goes on from it. */
+export interface ControlState {
+  sequence: number
+  linkTimePerSecond: number
+  colonies: ColonyControl[]
+  renewedAtMs: number
+  /** Last Ritz values, oldest first, of fresh intervals. */
+  ritz: { atMs: number; value: number }[]
+  coldSinceMs: number
+  combination: SweepOrders | null
+  combinationAtMs: number
+  cut: CutCount | null
+  attached: { count: number; sinceMs: number }
+  meanWeightedDegree: number
+  drifts: ColonyDrift[]
+}
+
+export function initialControl(atMs: number, pace: Pace): ControlState {
+  return {
+    sequence: 0,
+    linkTimePerSecond: startingLinkTimePerSecond(pace),
+    colonies: [],
+    renewedAtMs: atMs,
+    ritz: [],
+    coldSinceMs: atMs,
+    combination: null,
+    combinationAtMs: 0,
+    cut: null,
+    attached: { count: 0, sinceMs: atMs },
+    meanWeightedDegree: 0,
+    drifts: [],
+  }
+}
+
+/** ω before anything is known of λ₂: what the control loop would choose for λ₂ = ½. */
+function startingLinkTimePerSecond(pace: Pace): number {
+  return (0.3 * 1000) / (0.5 * 2 * pace.intervalMs)
+}

@@ -1,0 +1,58 @@
+import type { Pace } from './pace'
+
+export const DISCLOSURES = ['sealed', 'flagged', 'named'] as const
+/** What an agent may say about its links: nothing, only heavy ones with both ends' consent, or all. */
+export type Disclosure = (typeof DISCLOSURES)[number]
+
+/** Agents freeze once their orders are older than this many report intervals. */
+export const ORDERS_EXPIRE_AFTER_INTERVALS = 3
+
+/** What one colony is to do until the next orders. Rates are per unit of link time. */
+export interface ColonyOrders {
+  /** Slot of the colony, 0-based; stable while its seedings come and go. */
+  colony: number
+  /** Identifies one placing of walkers; a larger number is newer. */
+  seeding: number
+  /** Chooses, with the colony and the agent's id, on which half an agent stands. */
+  salt: number
+  /** True only in the first intervals of a seeding: an agent adopting it later starts empty. */
+  placing: boolean
+  /** Walkers that an agent on the X (Y) half places. */
+  placeX: number
+  placeY: number
+  /** β: encounters per pair and link time. */
+  encounterRate: number
+  /** Births per walker and link time; negative culls. */
+  birthRateX: number
+  birthRateY: number
+  /** Ids of agents that refuse this colony's walkers. */
+  refused: readonly string[]
+}
+
+/** How agents combine their colonies' mean occupancies into a Fiedler value, and where to count cuts. */
+export interface SweepOrders {
+  /** Sequence of the orders that introduced this combination: only counts of one id may be added up. */
+  id: number
+  terms: readonly { colony: number; seeding: number; coefficient: number }[]
+  /** Mean of the combination over attached agents, and the factor that gives it unit mean square. */
+  mean: number
+  norm: number
+  /** Fiedler values, in units where the mean square over nodes is 1, ascending. */
+  thresholds: readonly number[]
+  /** The estimate the combination belongs to; shares of links are w(vᵢ−vⱼ)²/(n·λ₂) in these units. */
+  lambda2: number
+  nodes: number
+}
+
+/** What the collector tells every agent; the newest sequence wins. */
+export interface Orders {
+  sequence: number
+  pace: Pace
+  /** ω: link time per second. 0 stops all walking. */
+  linkTimePerSecond: number
+  colonies: readonly ColonyOrders[]
+  sweep: SweepOrders | null
+  disclosure: Disclosure
+  /** In flagged overlays, the share of λ₂ over which a link may be named. */
+  shareLimit: number
+}

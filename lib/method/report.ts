@@ -1,0 +1,87 @@
+/** Fixed-point scale of every fractional quantity in the sums: value × SUMS_SCALE, rounded. */
+export const SUMS_SCALE = 1024
+
+/**
+ * Counters of one colony at one agent, cumulative over (incarnation, seeding). Walkers unless said otherwise.
+ * Identity at every agent: held = seeded + births − kills − culls − dropped − sent + received.
+ */
+export interface ColonyCounters {
+  seeded: number
+  births: number
+  /** Both types together: a paired kill counts two. */
+  kills: number
+  culls: number
+  /** Walkers given up on purpose: detached or refusing agent. */
+  dropped: number
+  sent: number
+  received: number
+  /** ∫(X+Y)dτ after births, fixed point, walkers × link time. */
+  walkerTime: number
+  /** ∫X dτ and ∫Y dτ of the occupancy noted before departures, fixed point. */
+  occupancyX: number
+  occupancyY: number
+  /** Link time walked, fixed point. */
+  linkTime: number
+}
+
+export interface ColonySums {
+  colony: number
+  seeding: number
+  /** 1 where the agent is attached and does not refuse this colony, else 0. */
+  present: number
+  counters: ColonyCounters
+  /** Walkers standing at the agent now. */
+  heldX: number
+  heldY: number
+  /** z̄, fixed point. */
+  mean: number
+}
+
+/** Cut counts for one combination. Crossings are counted at both ends, so a link adds 2. */
+export interface SweepSums {
+  id: number
+  /** Per threshold: 1 where the agent's value lies above it. */
+  above: readonly number[]
+  /** Per threshold: links of this agent whose other end lies on the other side, and their weight (fixed point). */
+  crossing: readonly number[]
+  crossingWeight: readonly number[]
+}
+
+/** The part of a report that only makes sense added up over all agents: integers throughout. */
+export interface Sums {
+  /** 1 for an agent with at least one live link, else 0 and everything below is zero or empty. */
+  attached: number
+  colonies: readonly ColonySums[]
+  /** Upper triangle over `colonies` in their order: ½ Σⱼ wᵢⱼ(z̄ᵢʳ−z̄ⱼʳ)(z̄ᵢˢ−z̄ⱼˢ), ½ because both ends report. */
+  energies: readonly number[]
+  /** Upper triangle: z̄ᵢʳ z̄ᵢˢ. */
+  moments: readonly number[]
+  /** Link ends live at this agent, and their weight (fixed point). */
+  linkEnds: number
+  linkEndWeight: number
+  sweep: SweepSums | null
+}
+
+/** What may be known of one node, as disclosure allows. */
+export interface NodeFacts {
+  /** Links with a live measurement, and neighbours the agent has been told of. */
+  degree: number
+  weightedDegree: number
+  linksKnown: number
+  /** The node's Fiedler value in units of unit mean square, or null. */
+  value: { sweep: number; value: number } | null
+  /** Named links: the other end's agent id, agreed weight and share of λ₂. */
+  links: readonly { peer: string; weight: number; share: number | null }[]
+  version: string
+  uptimeSeconds: number
+}
+
+export interface Report {
+  /** Random per process start. */
+  incarnation: string
+  /** Counts reports of this incarnation, from 1. */
+  number: number
+  ordersSequence: number
+  sums: Sums
+  node: NodeFacts
+}

@@ -1,0 +1,1 @@
+export { Simulation, type SimulationInit } from './simulation'
