@@ -1,0 +1,31 @@
+import type { CloseName } from '@/lib/protocol'
+
+/** What is known of a peer at the moment its handshake is done. */
+export interface AdmissionCase {
+  role: 'dialer' | 'listener'
+  isKnown: boolean
+  isBanned: boolean
+  acceptUnknown: boolean
+  incarnation: string
+  /** When this connection was opened, counted over all connections of this program. */
+  opened: number
+  /** The newest incarnation seen of this peer, and when its connection was opened; null for the first. */
+  latest: { incarnation: string; opened: number } | null
+}
+
+/**
+ * Whether a proven peer may have a link; else the name of the failure.
+ *
+ * Of two incarnations the one whose connection was opened later is the newer: a start of a program lived when its
+ * connection was opened (it was dialed or accepted before, and signed our fresh nonce after), and two starts of one
+ * agent do not live at once. A proof that arrives late from a start that has died since is thus told apart.
+ */
+export function judgeAdmission(candidate: AdmissionCase): CloseName | null {
+  const { latest } = candidate
+  if (latest && latest.incarnation !== candidate.incarnation && candidate.opened < latest.opened) {
+    return 'stale-incarnation'
+  }
+  if (candidate.role === 'dialer') return candidate.isKnown ? null : 'not-a-neighbour'
+  if (candidate.isBanned) return 'not-a-neighbour'
+  return candidate.isKnown || candidate.acceptUnknown ? null : 'not-a-neighbour'
+}

@@ -1,0 +1,54 @@
+import type { WalkNode } from '@/lib/method/node'
+import type { Orders } from '@/lib/method/orders'
+import type { Random } from '@/lib/method/random'
+import type { KeyPair, PassResult } from '@/lib/protocol'
+import type { Backoff } from '../backoff'
+import type { Clock } from '../clock'
+import type { Logger } from '../logger'
+import type { Transport } from '../transport/transport'
+
+export const HANDSHAKE_TIMEOUT_MS = 5_000
+/** Connections that have not proved themselves; more are turned away. */
+export const MAX_UNPROVEN = 64
+/** A removal that the other end does not answer is over after this time. */
+export const REMOVAL_MS = 10_000
+/** A connection on which nothing came for the longer of these is given up. */
+export const SILENT_MS = 10_000
+export const SILENT_TICKS = 25
+
+/** The agent's own pass, and the judging of others'. */
+export interface Passes {
+  own(): string
+  judge(token: string): Promise<PassResult>
+  hasExpired(expiresAtSeconds: number): boolean
+}
+
+export interface LinkEvent {
+  kind: 'link-up' | 'link-down' | 'link-ended'
+  peer: string
+  /** Why a link went down. */
+  reason: string
+}
+
+export interface LinkManagerComponents {
+  transport: Transport
+  clock: Clock
+  random: Random
+  logger: Logger
+  node: WalkNode
+  keys: KeyPair
+  passes: Passes
+  /** base64url of 32 fresh random bytes. */
+  nonce: () => string
+}
+
+export interface LinkManagerInit {
+  /** Takes links from agents of the overlay that this one was not told of: the other end was. */
+  acceptUnknown: boolean
+  backoff: Backoff
+  tickMs: () => number
+  handshakeTimeoutMs?: number
+  maxUnproven?: number
+  onOrders?: (orders: Orders) => void
+  onEvent?: (event: LinkEvent) => void
+}

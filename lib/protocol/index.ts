@@ -1,0 +1,61 @@
+export { type AgentProblem, agentProblemSchema } from './agent-problem'
+export { CLOSE, type CloseName, closeName } from './close-codes'
+export {
+  type EnrolReply,
+  type EnrolRequest,
+  enrolReplySchema,
+  enrolRequestSchema,
+  enrolText,
+  labelsSchema,
+  linkAddressSchema,
+  nodeNameSchema,
+  type PassGrant,
+  passGrantSchema,
+} from './enrol'
+export { encodeFrame } from './frame-codec'
+export { type DecodeInit, type DecodeResult, decodeFrame, type FrameError } from './frame-decode'
+export {
+  encodeProof,
+  Handshake,
+  type HandshakeEffect,
+  type HandshakeInit,
+  type LinkPeer,
+  type LinkRole,
+  linkTranscript,
+} from './handshake'
+export { decodeHello, encodeHello, type Hello, helloSchema, INCARNATION, NONCE_BYTES } from './hello'
+export {
+  generateKeys,
+  type KeyPair,
+  keysFromPem,
+  pemOf,
+  publicKeyFromRaw,
+  RAW_KEY,
+  rawPublicKey,
+  signBytes,
+  signText,
+  verifyBytes,
+  verifyText,
+} from './keys'
+export * from './limits'
+export { FRAME_VERSION, LINK_VERSIONS, MESSAGE_KIND } from './message-kind'
+export { ordersBytes, parseOrders } from './orders-part'
+export { ordersSchema } from './orders-schema'
+export {
+  PASS_CLOCK_TOLERANCE_SECONDS,
+  PASS_ISSUER,
+  type PassClaims,
+  type PassError,
+  type PassResult,
+  signPass,
+  verifyPass,
+} from './pass'
+export { type ReportReply, reportReplySchema, reportSchema, sumsSchema } from './report-schema'
+export {
+  SESSION_SKEW_SECONDS,
+  type SessionReply,
+  type SessionRequest,
+  sessionReplySchema,
+  sessionRequestSchema,
+  sessionText,
+} from './session'

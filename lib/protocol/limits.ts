@@ -1,0 +1,15 @@
+/** Hard limits of what crosses the wire. Whatever is larger is refused before it is looked at. */
+
+export const MAX_COLONIES = 64
+/** Orders carry lists of refused agents; a rehearsal may exclude a tenth of ten thousand of them. */
+export const MAX_ORDERS_BYTES = 256 * 1024
+export const MAX_FRAME_BYTES = MAX_ORDERS_BYTES + 16 * 1024
+/** Hello and proof: nothing larger is read from an end that has not proved itself. */
+export const MAX_HANDSHAKE_BYTES = 8 * 1024
+export const MAX_PASS_CHARS = 4 * 1024
+export const MAX_LABELS = 32
+export const MAX_LABEL_CHARS = 100
+export const MAX_THRESHOLDS = 64
+export const MAX_REFUSED = 2_000
+export const MAX_REPORT_LINKS = 4_096
+export const MAX_REPORT_BYTES = 1024 * 1024

@@ -1,0 +1,50 @@
+import { z } from 'zod'
+import { DISCLOSURES, type Orders } from '../method/orders'
+import { MAX_COLONIES, MAX_REFUSED, MAX_THRESHOLDS } from './limits'
+
+/** z.number() refuses NaN and the infinities by itself. */
+const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
+const milliseconds = z.number().int().min(1).max(3_600_000)
+const rate = z.number().min(-1e6).max(1e6)
+
+const colonyOrdersSchema = z.object({
+  colony: z.number().int().min(0).max(0xffff),
+  seeding: count,
+  salt: count,
+  placing: z.boolean(),
+  placeX: count,
+  placeY: count,
+  encounterRate: z.number().min(0).max(1e6),
+  birthRateX: rate,
+  birthRateY: rate,
+  refused: z.array(z.string().min(1).max(64)).max(MAX_REFUSED),
+})
+
+const sweepOrdersSchema = z.object({
+  id: count,
+  terms: z
+    .array(z.object({ colony: z.number().int().min(0).max(0xffff), seeding: count, coefficient: z.number() }))
+    .max(MAX_COLONIES),
+  mean: z.number(),
+  norm: z.number(),
+  thresholds: z.array(z.number()).max(MAX_THRESHOLDS),
+  lambda2: z.number(),
+  nodes: count,
+})
+
+export const ordersSchema: z.ZodType<Orders> = z
+  .object({
+    sequence: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
+    pace: z.object({ tickMs: milliseconds, intervalMs: milliseconds }),
+    linkTimePerSecond: z.number().min(0).max(1e6),
+    colonies: z.array(colonyOrdersSchema).max(MAX_COLONIES),
+    sweep: sweepOrdersSchema.nullable(),
+    disclosure: z.enum(DISCLOSURES),
+    shareLimit: z.number().min(0).max(1),
+  })
+  .refine(
+    (orders) => new Set(orders.colonies.map((colony) => colony.colony)).size === orders.colonies.length,
+    {
+      message: 'two colonies share a slot',
+    },
+  )

@@ -1,0 +1,41 @@
+/** `npm run soak -- NAME`: the runs too long for every change. Composition root. */
+import { spawn } from 'node:child_process'
+import { join, resolve } from 'node:path'
+
+interface Soak {
+  about: string
+  file: string
+  env: Record<string, string>
+}
+
+const SOAKS: Record<string, Soak> = {
+  audit: {
+    about: 'walker audit over 2,000 random histories of the real link code',
+    file: 'tests/property/walker-audit.test.ts',
+    env: { THINSPAN_AUDIT_RUNS: '2000' },
+  },
+  course: {
+    about: 'six simulated hours of restarts, flapping links and lost reports on four graphs',
+    file: 'tests/soak/course.test.ts',
+    env: {},
+  },
+}
+
+const root = resolve(import.meta.dirname, '..')
+const name = process.argv[2]
+const soak = name === undefined ? undefined : SOAKS[name]
+if (soak) {
+  const vitest = join(root, 'node_modules/vitest/vitest.mjs')
+  const child = spawn(process.execPath, [vitest, 'run', soak.file], {
+    cwd: root,
+    stdio: 'inherit',
+    env: { ...process.env, THINSPAN_SOAK: 'yes', ...soak.env },
+  })
+  child.on('exit', (code) => {
+    process.exitCode = code ?? 1
+  })
+} else {
+  const list = Object.entries(SOAKS).map(([key, { about }]) => `  ${key.padEnd(8)} ${about}`)
+  process.stderr.write(`Name a soak:\n${list.join('\n')}\n`)
+  process.exitCode = 2
+}

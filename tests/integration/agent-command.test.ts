@@ -1,0 +1,145 @@
+import { randomBytes } from 'node:crypto'
+import { mkdtemp, readFile, rm, stat, writeFile } from 'node:fs/promises'
+import { tmpdir } from 'node:os'
+import { join } from 'node:path'
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { createClock, createPost, createWsTransport, silentLogger } from '@/agent'
+import { type CommandComponents, enrolCommand, runCommand, statusCommand } from '@/agent/command/commands'
+import type { Options } from '@/agent/command/options'
+import { EXIT } from '@/agent/exit-codes'
+import { createRandom } from '@/lib/method/random'
+import { serve, TestCollector } from '../support/test-collector'
+
+const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
+const collector = new TestCollector({ clock, random: createRandom('collector') })
+const said: string[] = []
+const complaints: string[] = []
+const components: CommandComponents = {
+  clock,
+  random: createRandom('command'),
+  randomBytes,
+  post: createPost(),
+  logger: silentLogger,
+  say: (line) => said.push(line),
+  complain: (line) => complaints.push(line),
+  version: '0.0.0-test',
+}
+const never = new AbortController().signal
+let folder = ''
+let server: Awaited<ReturnType<typeof serve>>
+
+beforeAll(async () => {
+  folder = await mkdtemp(join(tmpdir(), 'thinspan-agent-'))
+  server = await serve(collector)
+  collector.start()
+})
+afterAll(async () => {
+  collector.stop()
+  await server.close()
+  await rm(folder, { recursive: true })
+})
+
+const options = (name: string, over: Partial<Options> = {}): Options => ({
+  collector: server.url,
+  code: collector.code,
+  name,
+  listen: { host: '127.0.0.1', port: 0 },
+  address: null,
+  labels: { office: 'Tarnwick' },
+  config: join(folder, `${name}.json`),
+  neighbours: [],
+  ...over,
+})
+
+describe('enrol', () => {
+  test('writes a configuration for its owner alone, with a key and without the code', async () => {
+    expect(await enrolCommand(components, options('tar-01'), never)).toBe(EXIT.ok)
+    const path = join(folder, 'tar-01.json')
+    expect((await stat(path)).mode & 0o777).toBe(0o600)
+    const text = await readFile(path, 'utf8')
+    expect(JSON.parse(text)).toMatchObject({
+      agentId: 'agent-tar-01',
+      name: 'tar-01',
+      collector: server.url,
+      overlay: { slug: 'harbourline' },
+      labels: { office: 'Tarnwick' },
+      privateKey: expect.stringContaining('BEGIN PRIVATE KEY'),
+    })
+    expect(text).not.toContain(collector.code)
+    expect(said.at(-1)).toContain('Enrolled as tar-01 in Harbourline')
+  })
+
+  test('does not overwrite a key', async () => {
+    const before = await readFile(join(folder, 'tar-01.json'), 'utf8')
+    expect(await enrolCommand(components, options('tar-01'), never)).toBe(EXIT.alreadyEnrolled)
+    expect(await readFile(join(folder, 'tar-01.json'), 'utf8')).toBe(before)
+  })
+
+  test('with a wrong code is refused, says why, and leaves nothing behind', async () => {
+    expect(await enrolCommand(components, options('gul-09', { code: 'wrong' }), never)).toBe(EXIT.refused)
+    expect(complaints.at(-1)).toContain('code-unknown')
+    await expect(stat(join(folder, 'gul-09.json'))).rejects.toThrow('ENOENT')
+  })
+
+  test('without a collector there says that it was not reached', async () => {
+    const away = options('gul-09', { collector: 'http://127.0.0.1:1' })
+    expect(await enrolCommand(components, away, never)).toBe(EXIT.unreachable)
+    expect(complaints.at(-1)).toContain('cannot be reached')
+  })
+
+  test('without a name is wrong use', async () => {
+    expect(await enrolCommand(components, options('x', { name: null }), never)).toBe(EXIT.usage)
+  })
+})
+
+describe('status', () => {
+  test('says what is configured and that the collector knows this agent, without secrets', async () => {
+    expect(await statusCommand(components, options('tar-01'), never)).toBe(EXIT.ok)
+    const status = JSON.parse(said.at(-1)!)
+    expect(status).toMatchObject({ name: 'tar-01', collector: { knowsThisAgent: true, problem: null } })
+    expect(said.at(-1)).not.toMatch(/PRIVATE KEY|eyJ/)
+  })
+
+  test('without a configuration, or with one of something else, says so', async () => {
+    expect(await statusCommand(components, options('nobody'), never)).toBe(EXIT.config)
+    await writeFile(join(folder, 'odd.json'), '{"collector": 7}')
+    expect(await statusCommand(components, options('odd'), never)).toBe(EXIT.config)
+    expect(complaints.at(-1)).toContain("is no agent's configuration")
+  })
+})
+
+describe('run', () => {
+  test('two enrolled agents link, report and stop when told to', async () => {
+    const port = await freePort()
+    const listening = options('gul-04', { listen: { host: '127.0.0.1', port } })
+    expect(await enrolCommand(components, listening, never)).toBe(EXIT.ok)
+    const stopping = new AbortController()
+    const heard = new Promise<void>((resolve) => {
+      const look = () => {
+        const reports = ['agent-tar-01', 'agent-gul-04'].map((id) => collector.agents.get(id)?.last?.report)
+        if (reports.every((report) => report?.sums.attached === 1)) resolve()
+        else clock.after(20, look)
+      }
+      look()
+    })
+    const runs = [
+      runCommand(components, options('gul-04', { listen: null }), stopping.signal),
+      runCommand(components, options('tar-01', { neighbours: [`ws://127.0.0.1:${port}`] }), stopping.signal),
+    ]
+    await heard
+    stopping.abort()
+    expect(await Promise.all(runs)).toEqual([EXIT.ok, EXIT.ok])
+  })
+
+  test('on an address that is not this machine’s says that it cannot listen', async () => {
+    const elsewhere = options('tar-01', { listen: { host: '203.0.113.1', port: 1 } })
+    expect(await runCommand(components, elsewhere, never)).toBe(EXIT.listen)
+    expect(complaints.at(-1)).toContain('Cannot listen')
+  })
+})
+
+async function freePort(): Promise<number> {
+  const listening = await createWsTransport({ clock }).listen({ host: '127.0.0.1', port: 0 }, () => {})
+  await listening.close()
+  return listening.port
+}

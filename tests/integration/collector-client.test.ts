@@ -1,0 +1,115 @@
+import { createServer, type RequestListener, type Server } from 'node:http'
+import type { AddressInfo } from 'node:net'
+import { afterEach, describe, expect, test } from 'vitest'
+import { createClock, createHttpCollector, createPost } from '@/agent'
+import { MAX_REPLY_BYTES } from '@/agent/collector/http-client'
+
+const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
+const never = new AbortController().signal
+const request = {
+  agentId: 'agent-tar-01',
+  at: '2031-05-06T12:00:00.000Z',
+  nonce: 'AAAAAAAAAAAAAAAAAAAAAA',
+  signature: '',
+}
+const grant = { pass: 'pass', passExpiresAt: '2031-05-07T12:00:00.000Z' }
+const reply = {
+  token: 'token',
+  expiresAt: '2031-05-06T13:00:00.000Z',
+  serverTime: '2031-05-06T12:00:00.000Z',
+  disclosure: 'sealed',
+  pace: 'drill',
+  ...grant,
+}
+
+describe('a collector that', () => {
+  const servers: Server[] = []
+  afterEach(() => {
+    for (const server of servers.splice(0)) {
+      server.closeAllConnections()
+      server.close()
+    }
+  })
+  async function collectorWhere(listener: RequestListener, init: { timeoutMs?: number } = {}) {
+    const server = createServer(listener)
+    servers.push(server)
+    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
+    const { port } = server.address() as AddressInfo
+    return createHttpCollector(
+      { post: createPost(), clock },
+      { baseUrl: `http://127.0.0.1:${port}`, ...init },
+    )
+  }
+  const answering = (status: number, body: string) =>
+    collectorWhere((_, response) => response.writeHead(status).end(body))
+
+  test('answers well is believed', async () => {
+    const collector = await answering(200, JSON.stringify(reply))
+    expect(await collector.session(request, never)).toEqual({ ok: true, value: reply })
+  })
+
+  test('refuses is quoted', async () => {
+    const problem = {
+      status: 403,
+      title: 'No',
+      detail: 'The agent was revoked.',
+      code: 'revoked',
+      retry: false,
+    }
+    const collector = await answering(403, JSON.stringify({ type: 'about:blank', ...problem }))
+    expect(await collector.session(request, never)).toEqual({
+      ok: false,
+      error: { code: 'refused', problem },
+    })
+  })
+
+  test.each([
+    ['answers with a page', 200, '<html></html>', 'not JSON'],
+    ['fails without problem details', 502, '{"error": "bad gateway"}', 'an error without problem details'],
+    ['leaves the token out', 200, JSON.stringify({ ...reply, token: undefined }), 'token'],
+    ['answers without end', 200, `"${'x'.repeat(MAX_REPLY_BYTES)}"`, 'more than'],
+  ])('%s is no collector', async (_, status, body, issue) => {
+    const collector = await answering(status, body)
+    expect(await collector.session(request, never)).toEqual({
+      ok: false,
+      error: { code: 'bad-reply', status, issue: expect.stringContaining(issue) },
+    })
+  })
+
+  test('says nothing times out', async () => {
+    const collector = await collectorWhere(() => {}, { timeoutMs: 50 })
+    expect(await collector.session(request, never)).toEqual({
+      ok: false,
+      error: { code: 'timeout', timeoutMs: 50 },
+    })
+  })
+
+  test('is asked no longer when the agent stops', async () => {
+    const stopping = new AbortController()
+    const collector = await collectorWhere(() => stopping.abort())
+    expect(await collector.session(request, stopping.signal)).toEqual({
+      ok: false,
+      error: { code: 'unreachable', reason: 'stopped' },
+    })
+  })
+
+  test('hangs up on an idle connection is asked again on a new one, once', async () => {
+    let asked = 0
+    const collector = await collectorWhere((incoming, response) => {
+      asked += 1
+      if (asked === 2) incoming.socket.destroy()
+      else response.end(JSON.stringify(reply))
+    })
+    expect(await collector.session(request, never)).toMatchObject({ ok: true })
+    expect(await collector.session(request, never)).toMatchObject({ ok: true })
+    expect(asked).toBe(3)
+  })
+
+  test('hangs up on a new connection is not reached', async () => {
+    const collector = await collectorWhere((incoming) => incoming.socket.destroy())
+    expect(await collector.session(request, never)).toEqual({
+      ok: false,
+      error: { code: 'unreachable', reason: 'socket hang up' },
+    })
+  })
+})

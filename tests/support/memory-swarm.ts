@@ -1,0 +1,74 @@
+import { randomBytes } from 'node:crypto'
+import { MemoryNetwork, silentLogger } from '@/agent'
+import { createRandom, type Random } from '@/lib/method/random'
+import { parseEdgeList } from '@/lib/topology'
+import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
+import { FakeClock } from './fake-clock'
+import { TestCollector, type TestCollectorInit } from './test-collector'
+
+export interface Swarm {
+  clock: FakeClock
+  collector: TestCollector
+  fleet: Fleet
+  network: MemoryNetwork
+  stop(): Promise<void>
+}
+
+export interface SwarmInit extends TestCollectorInit {
+  /** Edge list as CSV. */
+  edges: string
+  seed: string
+  /** How wrong an agent's clock is. */
+  offsetMs?: (name: string, random: Random) => number
+}
+
+/** A fleet on a fake clock over memory, with a collector in the same process. */
+export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
+  const topology = parseEdgeList(init.edges)
+  if (!topology.ok) throw new Error(JSON.stringify(topology.problems))
+  const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12) })
+  const random = createRandom(init.seed)
+  const collector = new TestCollector({ clock, random: createRandom(`${init.seed} collector`) }, init)
+  const network = new MemoryNetwork({ clock }, { weather: () => [0.5 + 2 * random.uniform()] })
+  const fleet = createFleet(
+    {
+      transport: network.transport('fleet'),
+      collector,
+      clockOf: (name, own) => {
+        const offsetMs = init.offsetMs?.(name, own) ?? 0
+        return {
+          monotonicMs: () => clock.monotonicMs(),
+          epochMs: () => clock.epochMs() + offsetMs,
+          after: (ms, run) => clock.after(ms, run),
+        }
+      },
+      clock,
+      random,
+      randomBytes,
+      logger: silentLogger,
+    },
+    { topology: topology.graph, code: collector.code },
+  )
+  collector.start()
+  return {
+    clock,
+    collector,
+    fleet,
+    network,
+    stop: async () => {
+      collector.stop()
+      await during(clock, fleet.stop())
+    },
+  }
+}
+
+/** Moves a fake clock on for as long as something takes. */
+export async function during<T>(clock: FakeClock, work: Promise<T>): Promise<T> {
+  let isOver = false
+  const outcome = work.finally(() => {
+    isOver = true
+  })
+  outcome.catch(() => {})
+  while (!isOver) await clock.advance(10)
+  return outcome
+}

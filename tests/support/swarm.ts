@@ -1,0 +1,99 @@
+import type { Frame } from '@/lib/method/frame'
+import { WalkNode } from '@/lib/method/node'
+import { PACES } from '@/lib/method/pace'
+import { createRandom, type Random } from '@/lib/method/random'
+import { deliver, joinAgent, type Member } from './collector'
+
+const PACE = PACES.drill
+
+interface SwarmNode {
+  member: Member
+  node: WalkNode
+  silent: boolean
+}
+
+/** Agents' walkers in this process at drill pace: frames are function calls, reports go through the routes. */
+export class Swarm {
+  readonly nodes: SwarmNode[] = []
+  /** The last report that failed, for the test to look at. */
+  failure: unknown = null
+  readonly #random: Random
+  readonly #timers = new Set<NodeJS.Timeout>()
+  readonly #index = new Map<string, number>()
+
+  constructor(seed: number) {
+    this.#random = createRandom(seed)
+  }
+
+  async join(
+    code: string,
+    names: readonly { name: string; labels?: Record<string, string> }[],
+  ): Promise<void> {
+    for (const { name, labels } of names) {
+      const member = await joinAgent(code, name, labels)
+      this.#index.set(member.agentId, this.nodes.length)
+      const node = new WalkNode(
+        { random: createRandom(`${name}`) },
+        { agentId: member.agentId, incarnation: `incarnation-of-${member.agentId}` },
+      )
+      this.nodes.push({ member, node, silent: false })
+    }
+  }
+
+  link(a: number, b: number): void {
+    const [first, second] = [this.nodes[a]!.node, this.nodes[b]!.node]
+    first.addLink(second.agentId, second.incarnation, performance.now())
+    second.addLink(first.agentId, first.incarnation, performance.now())
+  }
+
+  unlink(a: number, b: number): void {
+    const [first, second] = [this.nodes[a]!.node, this.nodes[b]!.node]
+    first.removeLink(second.agentId)
+    second.removeLink(first.agentId)
+  }
+
+  start(): void {
+    for (const swarmNode of this.nodes) {
+      this.#every(PACE.tickMs, () => this.#tick(swarmNode))
+      this.#every(PACE.intervalMs, () => void this.#report(swarmNode))
+    }
+  }
+
+  /** Lives, but does not reach the collector. */
+  silence(agentId: string, silent: boolean): void {
+    this.nodes[this.#index.get(agentId)!]!.silent = silent
+  }
+
+  stop(): void {
+    for (const timer of this.#timers) clearInterval(timer)
+  }
+
+  #every(ms: number, run: () => void): void {
+    const timer = setTimeout(() => {
+      this.#timers.delete(timer)
+      run()
+      this.#timers.add(setInterval(run, ms))
+    }, ms * this.#random.uniform())
+    this.#timers.add(timer)
+  }
+
+  #tick({ node }: SwarmNode): void {
+    for (const { peer, frame } of node.tick(performance.now())) this.#carry(node, peer, frame)
+  }
+
+  #carry(from: WalkNode, peer: string, frame: Frame): void {
+    const to = this.nodes[this.#index.get(peer)!]!.node
+    setImmediate(() => to.receive(from.agentId, from.incarnation, frame, performance.now()))
+  }
+
+  async #report({ member, node, silent }: SwarmNode): Promise<void> {
+    if (silent) return
+    const report = node.report(performance.now(), { linksKnown: 0, version: '0.1.0', uptimeSeconds: 1 })
+    try {
+      const { orders, ordersAgeMs } = await deliver(member, report)
+      if (orders) node.adopt(orders, ordersAgeMs, performance.now())
+    } catch (error) {
+      this.failure ??= error
+    }
+  }
+}

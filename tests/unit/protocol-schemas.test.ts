@@ -1,0 +1,175 @@
+import { describe, expect, test } from 'vitest'
+import type { Report } from '@/lib/method/report'
+import {
+  CLOSE,
+  closeName,
+  enrolRequestSchema,
+  enrolText,
+  generateKeys,
+  ordersSchema,
+  reportSchema,
+  sessionRequestSchema,
+  signText,
+  verifyText,
+} from '@/lib/protocol'
+import { someOrders } from '../support/frames'
+
+const counters = {
+  seeded: 200,
+  births: 3,
+  kills: 2,
+  culls: 0,
+  dropped: 0,
+  sent: 40,
+  received: 38,
+  walkerTime: 1_024,
+  occupancyX: 99,
+  occupancyY: 0,
+  linkTime: 12,
+}
+const colony = { colony: 0, seeding: 9, present: 1, counters, heldX: 199, heldY: 0, mean: -77 }
+const report: Report = {
+  incarnation: 'incarnation-1',
+  number: 1,
+  ordersSequence: 7,
+  sums: {
+    attached: 1,
+    colonies: [colony],
+    energies: [5],
+    moments: [6],
+    linkEnds: 2,
+    linkEndWeight: 2_048,
+    sweep: { id: 7, above: [1, 0], crossing: [2, 0], crossingWeight: [2_048, 0] },
+  },
+  node: {
+    degree: 2,
+    weightedDegree: 2,
+    linksKnown: 3,
+    value: { sweep: 7, value: -1.25 },
+    links: [{ peer: 'agent-gul-04', weight: 1, share: 0.2 }],
+    version: '0.1.0',
+    uptimeSeconds: 5,
+  },
+}
+
+const withSums = (over: object) => ({ ...report, sums: { ...report.sums, ...over } })
+const withCounter = (name: string, value: unknown) =>
+  withSums({ colonies: [{ ...colony, counters: { ...counters, [name]: value } }] })
+
+describe('a report', () => {
+  test('as an agent writes it is taken whole', () => {
+    expect(reportSchema.parse(JSON.parse(JSON.stringify(report)))).toEqual(report)
+  })
+
+  const bad: [string, unknown, string][] = [
+    ['a counter that is not a number', withCounter('births', Number.NaN), 'sums.colonies.0.counters.births'],
+    ['an infinite counter', withCounter('sent', Number.POSITIVE_INFINITY), 'sums.colonies.0.counters.sent'],
+    ['a negative counter', withCounter('kills', -1), 'sums.colonies.0.counters.kills'],
+    ['a fraction of a walker', withCounter('culls', 0.5), 'sums.colonies.0.counters.culls'],
+    [
+      'a counter beyond exact integers',
+      withCounter('received', 2 ** 53),
+      'sums.colonies.0.counters.received',
+    ],
+    ['a counter as text', withCounter('seeded', '200'), 'sums.colonies.0.counters.seeded'],
+    ['too few energies', withSums({ energies: [] }), 'sums.energies'],
+    ['too many moments', withSums({ moments: [1, 2, 3] }), 'sums.moments'],
+    ['energies of a detached agent', withSums({ attached: 0 }), 'sums.energies'],
+    [
+      'one colony twice',
+      withSums({ colonies: [colony, colony], energies: [1, 2, 3], moments: [1, 2, 3] }),
+      'sums.colonies',
+    ],
+    [
+      'a sweep of unequal lists',
+      withSums({ sweep: { id: 7, above: [1], crossing: [], crossingWeight: [1] } }),
+      'sums.sweep',
+    ],
+    [
+      'more links than allowed',
+      { ...report, node: { ...report.node, links: Array(5_000).fill(report.node.links[0]) } },
+      'node.links',
+    ],
+    ['no incarnation', { ...report, incarnation: '' }, 'incarnation'],
+    ['number 0', { ...report, number: 0 }, 'number'],
+  ]
+  test.each(bad)('with %s is refused where it is wrong', (_, input, path) => {
+    const result = reportSchema.safeParse(input)
+    expect(result.success ? [] : result.error.issues.map((issue) => issue.path.join('.'))).toContain(path)
+  })
+})
+
+describe('orders', () => {
+  test('as a collector writes them are taken whole', () => {
+    expect(ordersSchema.parse(JSON.parse(JSON.stringify(someOrders())))).toEqual(someOrders())
+  })
+
+  test.each([
+    ['two colonies in one slot', { colonies: [someOrders().colonies[0], someOrders().colonies[0]] }],
+    ['a negative rate of link time', { linkTimePerSecond: -1 }],
+    ['a pace without ticks', { pace: { tickMs: 0, intervalMs: 200 } }],
+    ['sequence 0', { sequence: 0 }],
+  ])('with %s are refused', (_, over) => {
+    expect(ordersSchema.safeParse({ ...someOrders(), ...over }).success).toBe(false)
+  })
+})
+
+describe('enrolment', () => {
+  const keys = generateKeys()
+  const asked = { code: 'one-two-three', name: 'tar-01', publicKey: keys.publicKey }
+  const request = {
+    ...asked,
+    labels: { office: 'Pinnet Bay' },
+    address: 'ws://10.0.0.7:4711',
+    version: '0.1.0',
+    signature: signText(keys.privateKey, enrolText(asked)),
+  }
+
+  test('a request as an agent writes it is taken, and its signature holds', () => {
+    expect(enrolRequestSchema.parse(request)).toEqual(request)
+    expect(verifyText(keys.publicKey, enrolText(request), request.signature)).toBe(true)
+  })
+
+  test('a signature holds for this code and name alone', () => {
+    expect(verifyText(keys.publicKey, enrolText({ ...request, code: 'another' }), request.signature)).toBe(
+      false,
+    )
+    expect(verifyText(keys.publicKey, enrolText({ ...request, name: 'gul-04' }), request.signature)).toBe(
+      false,
+    )
+    expect(verifyText(generateKeys().publicKey, enrolText(request), request.signature)).toBe(false)
+  })
+
+  test.each([
+    ['a name over two lines', { name: 'tar\n01' }],
+    ['an empty name', { name: '' }],
+    ['a key of the wrong length', { publicKey: 'AAAA' }],
+    ['an address of another kind', { address: 'http://10.0.0.7' }],
+    ['a label key with a space', { labels: { 'the office': 'x' } }],
+    [
+      'too many labels',
+      { labels: Object.fromEntries(Array.from({ length: 40 }, (_, at) => [`k${at}`, 'v'])) },
+    ],
+    ['a signature that is too short', { signature: 'AAAA' }],
+  ])('with %s is refused', (_, over) => {
+    expect(enrolRequestSchema.safeParse({ ...request, ...over }).success).toBe(false)
+  })
+
+  test('a session is asked for at a moment, not at a mood', () => {
+    const session = { agentId: 'a', nonce: 'A'.repeat(22), signature: request.signature }
+    expect(sessionRequestSchema.safeParse({ ...session, at: 'soon' }).success).toBe(false)
+    expect(sessionRequestSchema.safeParse({ ...session, at: '2031-05-06T12:00:00.000Z' }).success).toBe(true)
+  })
+})
+
+test('every close code is one of its own, in the range kept for applications', () => {
+  const codes = Object.values(CLOSE).map(({ code }) => code)
+  expect(new Set(codes).size).toBe(codes.length)
+  for (const [name, { code, sentence }] of Object.entries(CLOSE)) {
+    expect(code).toBeGreaterThanOrEqual(4400)
+    expect(code).toBeLessThan(5000)
+    expect(sentence).toMatch(/^[A-Z].*\.$/)
+    expect(closeName(code)).toBe(name)
+  }
+  expect(closeName(1006)).toBeNull()
+})
