@@ -1,0 +1,32 @@
+import type { AuditItem } from '@/lib/data/dto'
+
+/** Actions that leave entries, as a person would say them. */
+export const ACTION_WORDS: Record<string, string> = {
+  'first-run.create': 'set up the server',
+  'session.create': 'signed in',
+  'session.end': 'signed out',
+  'password.set': 'set a password',
+  'member.add': 'added a person',
+  'member.link': 'made a set-password link',
+  'member.change-role': 'changed a role',
+  'member.remove': 'removed a person',
+  'overlay.create': 'created an overlay',
+  'joining-code.create': 'created a joining code',
+  'joining-code.revoke': 'revoked a joining code',
+  'agent.enrol': 'enrolled an agent',
+  'user.create': 'created a person (admin command)',
+  'token.create': 'created a token (admin command)',
+}
+
+export const OUTCOME_WORDS: Record<AuditItem['outcome'], string> = {
+  ok: 'done',
+  denied: 'refused',
+  failed: 'failed',
+}
+
+/** Further facts on one line: "role: viewer, code: forbidden". */
+export function dataWords(data: AuditItem['data']): string {
+  return Object.entries(data ?? {})
+    .map(([key, value]) => `${key}: ${typeof value === 'object' ? JSON.stringify(value) : String(value)}`)
+    .join(', ')
+}

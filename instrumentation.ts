@@ -1,0 +1,9 @@
+/** Runs once per server process before the first request. */
+export async function register(): Promise<void> {
+  if (process.env.NEXT_RUNTIME !== 'nodejs') return
+  const { startServer } = await import('./lib/http/start-server')
+  await startServer()
+  const { processSignal } = await import('./lib/http/process-signal')
+  const { startLeader } = await import('./lib/collector/process')
+  startLeader(processSignal())
+}

@@ -1,0 +1,81 @@
+import type { TokenScope } from '@/entities/api-token'
+import { ROLES } from '@/lib/data/dto'
+
+export type Role = (typeof ROLES)[number]
+
+/**
+ * Who may ask at all. `anyone` needs no proof; `signed-in` a person or a token; `member` one of the team
+ * concerned, with at least the role; `agent` an agent's own proof, which its route checks; `system` only
+ * programs on the server itself.
+ */
+export type Who = 'anyone' | 'signed-in' | 'member' | 'agent' | 'system'
+
+export interface Permission {
+  who: Who
+  /** The least role, for `member`. */
+  role: Role | null
+  /** The least scope of a token, or null where tokens are not accepted. */
+  tokenScope: TokenScope | null
+  /** Leaves an entry in the audit log, whatever the outcome; runs in one transaction with it. */
+  audit: boolean
+}
+
+const open = (audit: boolean): Permission => ({ who: 'anyone', role: null, tokenScope: null, audit })
+const agent = (audit: boolean): Permission => ({ who: 'agent', role: null, tokenScope: null, audit })
+const system: Permission = { who: 'system', role: null, tokenScope: null, audit: true }
+const reads = (role: Role, tokenScope: TokenScope | null): Permission => ({
+  who: 'member',
+  role,
+  tokenScope,
+  audit: false,
+})
+const writes = (role: Role, tokenScope: TokenScope | null): Permission => ({
+  who: 'member',
+  role,
+  tokenScope,
+  audit: true,
+})
+
+/** The one table of what may be done by whom. Every route method, server action and page names its row. */
+export const PERMISSIONS = {
+  'health.read': open(false),
+  'first-run.read': open(false),
+  'first-run.create': open(true),
+  'session.create': open(true),
+  'session.end': { who: 'signed-in', role: null, tokenScope: null, audit: true },
+  'password.read-link': open(false),
+  'password.set': open(true),
+  'team.list': { who: 'signed-in', role: null, tokenScope: 'read', audit: false },
+  'member.list': reads('viewer', null),
+  'member.add': writes('owner', null),
+  'member.link': writes('owner', null),
+  'member.change-role': writes('owner', null),
+  'member.remove': writes('owner', null),
+  'audit.read': reads('operator', null),
+  'overlay.list': { who: 'signed-in', role: null, tokenScope: 'read', audit: false },
+  'overlay.read': reads('viewer', 'read'),
+  'overlay.create': writes('operator', 'write'),
+  'reading.read': reads('viewer', 'read'),
+  'node.list': reads('viewer', 'read'),
+  'link.list': reads('viewer', 'read'),
+  'event.read': reads('viewer', 'read'),
+  'joining-code.list': reads('operator', 'read'),
+  'joining-code.create': writes('operator', 'write'),
+  'joining-code.revoke': writes('operator', 'write'),
+  'agent.enrol': agent(true),
+  'agent.session': agent(false),
+  'agent.report': agent(false),
+  'user.create': system,
+  'token.create': system,
+} as const satisfies Record<string, Permission>
+
+export type ActionName = keyof typeof PERMISSIONS
+
+export function permissionOf(action: ActionName): Permission {
+  return PERMISSIONS[action]
+}
+
+/** True when `role` is `least` or more. */
+export function roleReaches(role: Role, least: Role): boolean {
+  return ROLES.indexOf(role) <= ROLES.indexOf(least)
+}

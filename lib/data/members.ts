@@ -1,0 +1,148 @@
+import { ApiTokenSchema, type Membership, MembershipSchema, PasswordLinkSchema, UserSchema } from '@/entities'
+import type { Role } from '@/lib/auth/permissions'
+import { endUserSessions } from '@/lib/auth/session'
+import type { Member } from '@/lib/data/dto'
+import { AppError } from '@/lib/http/app-error'
+import { authorise, type Call } from '@/lib/http/call'
+import { issuePasswordLink } from './password-links'
+import { lockTeam, teamMeant } from './teams'
+
+export interface TeamMembers {
+  team: { slug: string; name: string }
+  /** The caller's role. */
+  role: Role
+  members: Member[]
+}
+
+export async function listMembers(call: Call, teamSlug?: string): Promise<TeamMembers> {
+  const team = teamMeant(call, teamSlug)
+  authorise(call, 'member.list', team.teamId)
+  const memberships = await membershipsOf(call, team.teamId)
+  const owners = memberships.filter((one) => one.role === 'owner').length
+  const me = call.caller.kind === 'user' ? call.caller.userId : null
+  const members = memberships.map(({ id, user, role, createdAt }) => ({
+    id,
+    name: user.name,
+    email: user.email,
+    role,
+    active: user.passwordHash !== null,
+    you: user.id === me,
+    lastOwner: role === 'owner' && owners === 1,
+    addedAt: createdAt.toISOString(),
+  }))
+  return { team: { slug: team.slug, name: team.name }, role: team.role, members }
+}
+
+export interface SetPasswordLink {
+  name: string
+  email: string
+  /** Null for someone who has a password already. */
+  url: string | null
+  expiresAt: string | null
+}
+
+export async function addMember(
+  call: Call,
+  input: { team?: string; name: string; email: string; role: Role },
+): Promise<SetPasswordLink> {
+  const { em, now } = call
+  const team = teamMeant(call, input.team)
+  call.note({ subject: `${input.name} <${input.email}>`, data: { role: input.role } })
+  authorise(call, 'member.add', team.teamId)
+  await lockTeam(em, team.teamId)
+  const known = await em.findOne(UserSchema, { email: input.email })
+  if (known && (await em.count(MembershipSchema, { team: team.teamId, user: known.id })) > 0)
+    throw new AppError(
+      'already-member',
+      `${input.email} is in the team already. Change the role in the table.`,
+      {
+        errors: [{ path: 'email', message: 'This person is in the team already.' }],
+      },
+    )
+  const user =
+    known ??
+    em.create(UserSchema, { email: input.email, name: input.name, passwordHash: null, createdAt: now })
+  em.create(MembershipSchema, { team: team.teamId, user, role: input.role, createdAt: now })
+  await em.flush()
+  const link =
+    user.passwordHash == null ? await issuePasswordLink(call, user) : { url: null, expiresAt: null }
+  return { name: user.name, email: user.email, ...link }
+}
+
+/**
+ * A new link for someone who has none that works. Whoever holds it takes the account over, so for a person with
+ * a password it is given only where no other team is concerned.
+ */
+export async function newMemberLink(call: Call, memberId: string): Promise<SetPasswordLink> {
+  const membership = await memberMeant(call, 'member.link', memberId)
+  const { user } = membership
+  if (user.passwordHash != null && (await call.em.count(MembershipSchema, { user: user.id })) > 1)
+    throw new AppError(
+      'has-password',
+      `${user.name} has a password and belongs to another team too, so no new link is given.`,
+    )
+  return { name: user.name, email: user.email, ...(await issuePasswordLink(call, user)) }
+}
+
+export async function changeRole(
+  call: Call,
+  { memberId, role }: { memberId: string; role: Role },
+): Promise<void> {
+  const membership = await memberMeant(call, 'member.change-role', memberId)
+  call.note({ data: { from: membership.role, to: role } })
+  if (role !== 'owner') await keepAnOwner(call, membership)
+  membership.role = role
+  await call.em.flush()
+}
+
+/** Ends the membership and what hangs on it: the person's tokens here, and sessions if it was the last team. */
+export async function removeMember(call: Call, memberId: string): Promise<{ name: string }> {
+  const membership = await memberMeant(call, 'member.remove', memberId)
+  const { user, team } = membership
+  call.note({ data: { role: membership.role } })
+  await keepAnOwner(call, membership)
+  await call.em.nativeUpdate(
+    ApiTokenSchema,
+    { team: team.id, createdBy: user.id, revokedAt: null },
+    { revokedAt: call.now },
+  )
+  await call.em.removeAndFlush(membership)
+  if ((await call.em.count(MembershipSchema, { user: user.id })) === 0) {
+    await endUserSessions(call.em, user.id)
+    await call.em.nativeDelete(PasswordLinkSchema, { user: user.id })
+  }
+  return { name: user.name }
+}
+
+async function memberMeant(
+  call: Call,
+  action: 'member.link' | 'member.change-role' | 'member.remove',
+  memberId: string,
+): Promise<Membership> {
+  const populate = ['user', 'team'] as const
+  const missing = () =>
+    new AppError('not-found', 'This person is no longer in the team. Load the page again.')
+  const found = await call.em.findOne(MembershipSchema, { id: memberId }, { populate })
+  if (!found) throw missing()
+  call.note({ subject: `${found.user.name} <${found.user.email}>` })
+  authorise(call, action, found.team.id)
+  await lockTeam(call.em, found.team.id)
+  // Read again: what was true before the lock need not be true any more.
+  const membership = await call.em.findOne(MembershipSchema, { id: memberId }, { populate, refresh: true })
+  if (!membership) throw missing()
+  return membership
+}
+
+async function keepAnOwner({ em }: Call, { team, role }: Membership): Promise<void> {
+  if (role !== 'owner') return
+  if ((await em.count(MembershipSchema, { team: team.id, role: 'owner' })) > 1) return
+  throw new AppError('last-owner', 'A team needs an owner. Make someone else an owner first.')
+}
+
+async function membershipsOf({ em }: Call, teamId: string): Promise<Membership[]> {
+  return em.find(
+    MembershipSchema,
+    { team: teamId },
+    { populate: ['user'], orderBy: { user: { name: 'asc' } } },
+  )
+}

@@ -1,0 +1,16 @@
+export { Listener, type ListenFunction } from './listener'
+export { acquireLock as acquireLockAt, type HeldLock, LockSession, type LockSettings, withLock } from './lock'
+export { migrate } from './migrate'
+export { NOTICE_MAX_BYTES, notify } from './notify'
+export { type EntityManager, type Orm, openOrm, sql } from './orm'
+export { ensurePartitions } from './partitions'
+export {
+  acquireLock,
+  closeDatabase,
+  databaseUrl,
+  forkEm,
+  getOrm,
+  overlayLockKey,
+  subscribe,
+  withOverlayLock,
+} from './process'

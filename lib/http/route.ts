@@ -1,0 +1,126 @@
+import type { z } from 'zod'
+import { authenticate } from '@/lib/auth/authenticate'
+import type { Caller } from '@/lib/auth/caller'
+import { type CookieToSet, cookieHeader } from '@/lib/auth/cookie'
+import { type ActionName, permissionOf } from '@/lib/auth/permissions'
+import type { EntityManager } from '@/lib/db'
+import { AppError } from './app-error'
+import { readJson } from './body'
+import type { Call } from './call'
+import { perform } from './perform'
+import { invalidInput, problemResponse } from './problem'
+import { type RequestFacts, requestFacts } from './request-facts'
+import { getRuntime } from './runtime'
+
+type Schema = z.ZodType | undefined
+type Output<S extends Schema> = S extends z.ZodType ? z.output<S> : undefined
+
+export interface RouteInput<P extends Schema, Q extends Schema, B extends Schema> {
+  params: Output<P>
+  query: Output<Q>
+  body: Output<B>
+  request: Request
+  facts: RequestFacts
+}
+
+export interface RouteSpec<P extends Schema, Q extends Schema, B extends Schema> {
+  params?: P
+  /** Search parameters; of a repeated one the last. */
+  query?: Q
+  /** JSON body. */
+  body?: B
+  maxBytes?: number
+  /** Status of a plain result; default 200. */
+  status?: number
+  /** In place of cookie and bearer token: proves who calls from the parsed request, or throws an AppError. */
+  authenticate?: (em: EntityManager, input: RouteInput<P, Q, B>, now: Date) => Promise<Caller>
+}
+
+export interface RouteHandler {
+  (request: Request, context: { params: Promise<unknown> }): Promise<Response>
+  /** The row of the permission table; a test looks for it on every exported method. */
+  permission: ActionName
+}
+
+/**
+ * Wraps one method of a route handler. What `run` returns is sent as JSON, unless it is a Response (a stream,
+ * a file), which is sent as it is.
+ */
+export function route<
+  T,
+  P extends Schema = undefined,
+  Q extends Schema = undefined,
+  B extends Schema = undefined,
+>(
+  action: ActionName,
+  spec: RouteSpec<P, Q, B>,
+  run: (call: Call, input: RouteInput<P, Q, B>) => Promise<T>,
+): RouteHandler {
+  const handler = async (request: Request, context: { params: Promise<unknown> }): Promise<Response> => {
+    try {
+      const runtime = getRuntime()
+      const facts = requestFacts(request.headers, request.method, runtime.address)
+      let renewed: CookieToSet | null = null
+      let input: RouteInput<P, Q, B> | undefined
+      const parsed = async () => {
+        input ??= await parse(spec, request, context, facts)
+        return input
+      }
+      const value = await perform(runtime, {
+        action,
+        facts,
+        authenticate: async (em, now) => {
+          if (spec.authenticate) return spec.authenticate(em, await parsed(), now)
+          refuseForeign(action, facts)
+          const result = await authenticate(em, facts, now, { mayRenew: true })
+          renewed = result.renewed
+          return result.caller
+        },
+        run: async (call) => run(call, await parsed()),
+      })
+      const response = value instanceof Response ? value : json(value, spec.status ?? 200)
+      if (renewed) response.headers.append('set-cookie', cookieHeader(renewed))
+      return response
+    } catch (error) {
+      return problemResponse(error)
+    }
+  }
+  return Object.assign(handler, { permission: action })
+}
+
+/** A page of another site can make a browser send our cookie, but not a header of its own. */
+function refuseForeign(action: ActionName, facts: RequestFacts): void {
+  const byCookie =
+    facts.bearer === null && (facts.sessionId !== null || permissionOf(action).who === 'anyone')
+  if (facts.unsafe && byCookie && facts.foreign)
+    throw new AppError('wrong-origin', 'Send the request from a page of this server, or with a token.')
+}
+
+async function parse<P extends Schema, Q extends Schema, B extends Schema>(
+  spec: RouteSpec<P, Q, B>,
+  request: Request,
+  context: { params: Promise<unknown> },
+  facts: RequestFacts,
+): Promise<RouteInput<P, Q, B>> {
+  const input = {
+    params: check(spec.params, await context.params),
+    query: check(spec.query, Object.fromEntries(new URL(request.url).searchParams)),
+    body: spec.body && check(spec.body, await readJson(request, spec.maxBytes)),
+    request,
+    facts,
+  }
+  // Each part has just been through the schema that its type is taken from; a part without one is undefined.
+  return input as RouteInput<P, Q, B>
+}
+
+function check(schema: Schema, value: unknown): unknown {
+  if (!schema) return undefined
+  const result = schema.safeParse(value)
+  if (!result.success) throw invalidInput(result.error)
+  return result.data
+}
+
+function json(value: unknown, status: number): Response {
+  if (value === undefined) return new Response(null, { status: 204 })
+  return Response.json(value, { status, headers: { 'cache-control': 'no-store' } })
+}

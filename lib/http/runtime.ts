@@ -1,0 +1,46 @@
+/** What the web process's requests work with: composition root. On globalThis, as bundles share no modules. */
+import { pino } from 'pino'
+import { SignInThrottle } from '@/lib/auth/throttle'
+import { type EntityManager, getOrm } from '@/lib/db'
+
+export interface Log {
+  info(data: object, message: string): void
+  warn(data: object, message: string): void
+  error(data: object, message: string): void
+}
+
+export interface Runtime {
+  forkEm(): Promise<EntityManager>
+  throttle(): Promise<SignInThrottle>
+  now(): Date
+  log: Log
+  /** The address people use, such as https://thinspan.example.org; null: take it from each request. */
+  address: string | null
+}
+
+const key = Symbol.for('thinspan.runtime')
+const store = globalThis as { [key]?: Runtime }
+
+function compose(): Runtime {
+  let throttle: Promise<SignInThrottle> | undefined
+  return {
+    forkEm: async () => (await getOrm()).em.fork(),
+    throttle: () => {
+      throttle ??= getOrm().then((orm) => new SignInThrottle(orm))
+      return throttle
+    },
+    now: () => new Date(),
+    log: pino({ name: 'thinspan-web', level: process.env.THINSPAN_LOG_LEVEL ?? 'info' }),
+    address: process.env.THINSPAN_ADDRESS ?? null,
+  }
+}
+
+export function getRuntime(): Runtime {
+  store[key] ??= compose()
+  return store[key]
+}
+
+/** For tests: requests of this process work with `runtime` from now on. */
+export function setRuntime(runtime: Runtime | undefined): void {
+  store[key] = runtime
+}

@@ -1,0 +1,147 @@
+import { describe, expect, it } from 'vitest'
+import { z } from 'zod'
+import { canonicalJoiningCode, hashJoiningCode, newJoiningCode } from '@/lib/auth/secrets'
+import { THROTTLE, throttleKeys } from '@/lib/auth/throttle'
+import { problemSchema } from '@/lib/data/dto'
+import { stateOf } from '@/lib/data/joining-codes'
+import { slugFrom } from '@/lib/data/teams'
+import { reconnectDelayMs } from '@/lib/db/listener'
+import { monthsAround } from '@/lib/db/partitions'
+import { AppError } from '@/lib/http/app-error'
+import { readJson } from '@/lib/http/body'
+import { invalidInput, problemResponse, toProblem } from '@/lib/http/problem'
+
+describe('the throttling plan', () => {
+  it('counts an attempt against the e-mail address, however it is written, and the network address', () => {
+    const kinds = (attempt: Parameters<typeof throttleKeys>[0]) =>
+      throttleKeys(attempt).map(({ kind }) => kind)
+    expect(kinds({ email: 'a@b.example', address: '192.0.2.1' })).toEqual(['email', 'address'])
+    expect(kinds({ email: 'a@b.example', address: null })).toEqual(['email'])
+    const [one] = throttleKeys({ email: ' A@B.example ', address: null })
+    const [two] = throttleKeys({ email: 'a@b.example', address: null })
+    expect(one).toEqual(two)
+  })
+
+  it('stores neither of them', () => {
+    expect(JSON.stringify(throttleKeys({ email: 'a@b.example', address: '192.0.2.1' }))).not.toMatch(
+      /b\.example|192/,
+    )
+  })
+
+  it('leaves a shared network address more attempts than one person needs', () => {
+    expect(THROTTLE.address.attempts).toBeGreaterThan(THROTTLE.email.attempts)
+  })
+})
+
+describe('a joining code', () => {
+  it('is four groups of five characters without look-alikes', () => {
+    const codes = Array.from({ length: 200 }, newJoiningCode)
+    for (const code of codes) expect(code).toMatch(/^([0-9A-HJKMNP-TV-Z]{5}-){3}[0-9A-HJKMNP-TV-Z]{5}$/)
+    expect(new Set(codes).size).toBe(200)
+    // 4,000 draws from 32 characters: one that is missing has probability 32·(31/32)^4000 < 1e-53.
+    expect(new Set(codes.join('').replaceAll('-', '')).size).toBe(32)
+  })
+
+  it('is recognised however it is typed', () => {
+    expect(canonicalJoiningCode('oil10-abcde fghjk-mnpqr')).toBe('01110ABCDEFGHJKMNPQR')
+    expect(hashJoiningCode('0111O-ABCDE-FGHJK-MNPQR')).toBe(hashJoiningCode('01110abcdefghjkmnpqr'))
+  })
+
+  it.each([
+    ['open', {}],
+    ['used', { used: 3 }],
+    ['expired', { expiresAt: new Date('2026-12-01T00:00:00Z') }],
+    ['revoked', { revokedAt: new Date('2026-11-30T00:00:00Z'), used: 3 }],
+  ])('is %s', (state, changes) => {
+    const code = {
+      revokedAt: null,
+      used: 2,
+      uses: 3,
+      expiresAt: new Date('2026-12-02T00:00:00Z'),
+      ...changes,
+    }
+    expect(stateOf(code, new Date('2026-12-01T00:00:00Z'))).toBe(state)
+  })
+})
+
+describe('short names of teams', () => {
+  it.each([
+    ['Harbourline', 'harbourline'],
+    ['Pinnet Bay & Söhne', 'pinnet-bay-sohne'],
+    ['  – ', 'team'],
+    ['x'.repeat(60), 'x'.repeat(40)],
+  ])('%j becomes %j', (name, slug) => expect(slugFrom(name)).toBe(slug))
+})
+
+describe('problems', () => {
+  it('carry code, advice and extra members, and fit the published schema', () => {
+    const problem = toProblem(
+      new AppError('clock-skew', 'Set the clock.', { members: { serverTime: 'now' } }),
+    )
+    expect(problemSchema.parse(problem)).toMatchObject({ status: 401, code: 'clock-skew', retry: true })
+    expect(problem.serverTime).toBe('now')
+  })
+
+  it('never let an extra member take the place of a standard one', () => {
+    expect(toProblem(new AppError('not-found', 'Gone.', { members: { status: 200 } })).status).toBe(404)
+  })
+
+  it('say nothing of what an unexpected error was about', async () => {
+    const response = problemResponse(new Error('secret table name'))
+    expect(response.status).toBe(500)
+    expect(await response.text()).not.toMatch(/secret/)
+  })
+
+  it('call a lost database unavailable and say when to come back', () => {
+    const response = problemResponse(Object.assign(new Error('connect'), { code: 'ECONNREFUSED' }))
+    expect([response.status, response.headers.get('retry-after')]).toEqual([503, '2'])
+  })
+
+  it('name each field that was wrong', () => {
+    const result = z.object({ a: z.object({ b: z.number() }) }).safeParse({ a: { b: 'x' } })
+    expect(invalidInput(result.error!).data.errors).toMatchObject([{ path: 'a.b' }])
+  })
+})
+
+describe('a JSON body', () => {
+  const post = (
+    body: BodyInit | null,
+    headers: Record<string, string> = { 'content-type': 'application/json' },
+  ) => new Request('http://t/', { method: 'POST', body, headers, duplex: 'half' } as RequestInit)
+
+  it('is read', async () => expect(await readJson(post('{"a":1}'))).toEqual({ a: 1 }))
+  it('must be JSON', async () =>
+    await expect(readJson(post('{"a":'))).rejects.toMatchObject({ code: 'malformed-json' }))
+  it('must be there', async () =>
+    await expect(readJson(post(null))).rejects.toMatchObject({ code: 'malformed-json' }))
+  it('must say that it is JSON', async () =>
+    await expect(readJson(post('{}', { 'content-type': 'text/plain' }))).rejects.toMatchObject({
+      code: 'wrong-media-type',
+    }))
+
+  it('over the limit is given up as it arrives', async () => {
+    let sent = 0
+    const endless = new ReadableStream({
+      pull(controller) {
+        sent += 1000
+        controller.enqueue(new Uint8Array(1000).fill(32))
+      },
+    })
+    await expect(readJson(post(endless), 10_000)).rejects.toMatchObject({ code: 'too-large' })
+    expect(sent).toBeLessThan(20_000)
+  })
+})
+
+describe('the database’s housekeeping', () => {
+  it('counts months in UTC across the turn of a year', () => {
+    expect(monthsAround(new Date('2026-12-31T23:59:59Z'), 0, 1)).toEqual([
+      { name: 'readings_2026_12', from: '2026-12-01T00:00:00.000Z', to: '2027-01-01T00:00:00.000Z' },
+      { name: 'readings_2027_01', from: '2027-01-01T00:00:00.000Z', to: '2027-02-01T00:00:00.000Z' },
+    ])
+  })
+
+  it('reconnects after ever longer waits, up to a limit', () => {
+    expect([0, 1, 2, 10].map((attempt) => reconnectDelayMs(attempt, 1))).toEqual([200, 400, 800, 5000])
+    expect(reconnectDelayMs(0, 0)).toBe(100)
+  })
+})
