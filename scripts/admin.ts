@@ -3,12 +3,18 @@
  * npm run --silent admin -- token create --email E --scope read|write [--team SLUG]
  * Prints one JSON object; on failure one on standard error, with exit code 1.
  */
+import { resolve } from 'node:path'
 import { runAdminCommand } from '@/lib/data/admin-commands'
 import { closeDatabase } from '@/lib/db'
 import { toProblem } from '@/lib/http/problem'
 import { getRuntime } from '@/lib/http/runtime'
+import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
 const silent = { info: () => {}, warn: () => {}, error: () => {} }
+
+// Beside a running `npm start` the command needs no address.
+process.env.DATABASE_URL ||=
+  findOwnDatabase(dataFolderOf(process.env, resolve(import.meta.dirname, '..'))) ?? ''
 
 try {
   const result = await runAdminCommand({ ...getRuntime(), log: silent }, process.argv.slice(2))

@@ -3,7 +3,7 @@ import { epochMs, query } from '@/lib/collector/query'
 import type { OverlayLink } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import type { Call } from '@/lib/http/call'
-import { HELD_INTERVALS } from '@/lib/method/control'
+import { heldMs } from '@/lib/method/control'
 import { PACES, type PaceName } from '@/lib/method/pace'
 import type { NodeFacts } from '@/lib/method/report'
 import { sideOf } from './nodes'
@@ -52,9 +52,9 @@ export async function namedLinks(
      from agents a join agent_states s on s.agent_id = a.id where a.overlay_id = ? and a.state = 'joined'`,
     [id],
   )
-  const heldMs = HELD_INTERVALS * PACES[pace].intervalMs
+  const heldForMs = heldMs(PACES[pace].intervalMs)
   return joinNamings(
-    rows.map((row) => ({ ...row, heard: row.ageMs <= heldMs })),
+    rows.map((row) => ({ ...row, heard: row.ageMs <= heldForMs })),
     (agentId) => sideOf(memory, agentId),
   )
 }

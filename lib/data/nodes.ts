@@ -2,7 +2,7 @@ import type { Memory } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
 import type { OverlayNode } from '@/lib/data/dto'
 import type { Call } from '@/lib/http/call'
-import { HELD_INTERVALS } from '@/lib/method/control'
+import { heldMs } from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
 import type { NodeFacts } from '@/lib/method/report'
 import { openOverlay } from './overlays'
@@ -66,6 +66,6 @@ export function sideOf(memory: Memory | null, agentId: string): OverlayNode['sid
 
 function stateOf({ state, ageMs, attached }: Row, intervalMs: number): OverlayNode['state'] {
   if (state !== 'joined') return state
-  if (ageMs === null || ageMs > HELD_INTERVALS * intervalMs) return 'unheard'
+  if (ageMs === null || ageMs > heldMs(intervalMs)) return 'unheard'
   return attached ? 'heard' : 'detached'
 }

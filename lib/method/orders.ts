@@ -6,6 +6,12 @@ export type Disclosure = (typeof DISCLOSURES)[number]
 
 /** Agents freeze once their orders are older than this many report intervals. */
 export const ORDERS_EXPIRE_AFTER_INTERVALS = 3
+/** At drill pace a busy machine alone is late by more than that: agents that freeze by turns hold walkers back. */
+export const ORDERS_LIVE_AT_LEAST_MS = 2_000
+
+export function ordersLifeMs(intervalMs: number): number {
+  return Math.max(ORDERS_EXPIRE_AFTER_INTERVALS * intervalMs, ORDERS_LIVE_AT_LEAST_MS)
+}
 
 /** What one colony is to do until the next orders. Rates are per unit of link time. */
 export interface ColonyOrders {

@@ -221,7 +221,7 @@ async function untilReady(dataFolder, identity, ended) {
   }
 }
 
-function readPidFile(dataFolder) {
+export function readPidFile(dataFolder) {
   try {
     return parsePidFile(readFileSync(join(dataFolder, 'postmaster.pid'), 'utf8'))
   } catch (error) {

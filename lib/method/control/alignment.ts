@@ -1,5 +1,5 @@
 import { type ColonySums, type Report, SUMS_SCALE } from '../report'
-import { HELD_INTERVALS, heardAgents, type Snapshot } from './snapshot'
+import { heardAgents, heldMs, type Snapshot } from './snapshot'
 import type { ColonyControl } from './state'
 
 /** How one colony's z̄ went over one report interval, the same at every agent: z̄ → scale·z̄ + shift. */
@@ -51,7 +51,11 @@ export function noteDrift(
         return x && y ? [{ x: x.mean / SUMS_SCALE, y: y.mean / SUMS_SCALE }] : []
       }),
     )
-    return { colony, seeding, steps: [step, ...(known?.steps ?? [])].slice(0, HELD_INTERVALS) }
+    return {
+      colony,
+      seeding,
+      steps: [step, ...(known?.steps ?? [])].slice(0, Math.ceil(heldMs(intervalMs) / intervalMs)),
+    }
   })
 }
 

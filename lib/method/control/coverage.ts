@@ -1,5 +1,5 @@
 import { SUMS_SCALE } from '../report'
-import { heardAgents, LATE_INTERVALS, type Snapshot } from './snapshot'
+import { heardAgents, lateMs, type Snapshot } from './snapshot'
 
 /** Below this share of joined agents, or of walkers, heard, no reading is given and walking stops. */
 export const LEAST_HEARD = 0.85
@@ -20,7 +20,7 @@ export interface Coverage {
 
 export function coverageOf(snapshot: Snapshot, intervalMs: number): Coverage {
   const heard = heardAgents(snapshot, intervalMs)
-  const prompt = heard.filter(({ last }) => snapshot.atMs - last.receivedAtMs <= LATE_INTERVALS * intervalMs)
+  const prompt = heard.filter(({ last }) => snapshot.atMs - last.receivedAtMs <= lateMs(intervalMs))
   const held = (agents: readonly Snapshot['agents'][number][]): number =>
     agents.reduce(
       (sum, agent) =>

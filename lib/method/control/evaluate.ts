@@ -1,17 +1,17 @@
 import type { ColonyOrders, Orders } from '../orders'
 import type { Random } from '../random'
 import { noteDrift } from './alignment'
+import { noteBound } from './bound'
 import { type Coverage, coverageOf, isEnough } from './coverage'
 import { bestCut, THRESHOLDS } from './cut'
 import { intervalOf, isSettled, RITZ_KEPT } from './interval'
 import { nextLinkTimePerSecond } from './law'
 import { type Seeder, seedColony, steerColony } from './populations'
+import { RENEWAL_INTERVALS } from './renewal'
 import { heardAgents, type Snapshot } from './snapshot'
 import type { ColonyControl, ControlSettings, ControlState, CutCount } from './state'
 import { combinationOf, gather, ritzOf } from './subspace'
 
-/** The oldest colony is seeded anew this often, so that a change of cut finds one that is not set in the old one. */
-export const RENEWAL_INTERVALS = 17
 /** A seeding places walkers only for this long; an agent that comes to it later starts empty. */
 export const PLACING_INTERVALS = 3
 /** A younger colony is left out of the sums: its average still holds the random start. From cold all are alike. */
@@ -125,6 +125,7 @@ function steer(control: ControlState, input: EvaluateInput): ControlState {
         ritz: [],
         combination: null,
         cut: null,
+        bounds: [],
       }
     : { ...control, colonies }
   return cold ? next : renewOldest(next, seeder)
@@ -194,7 +195,12 @@ function read(control: ControlState, input: EvaluateInput, coverage: Coverage): 
       next.combinationAtMs = now.atMs
     }
   }
-  const second = result?.values[1] ?? null
+  const bounds =
+    lambda2 === null
+      ? control.bounds
+      : noteBound(control.bounds, now.atMs, lambda2, result?.values[1] ?? null, pace.intervalMs)
+  next.bounds = bounds
+  const second = bounds.length > 0 ? Math.min(...bounds.map(({ value }) => value)) : null
   const interval = lambda2 === null ? null : intervalOf(ritz.map(({ value }) => value))
   return {
     control: next,

@@ -1,7 +1,7 @@
 export { type Coverage, LEAST_HEARD } from './coverage'
 export { type Estimate, type EvaluateInput, type Evaluation, evaluate, type Withheld } from './evaluate'
 export { CONFIDENCE } from './interval'
-export { HELD_INTERVALS, isHeard, type JoinedAgent, type Snapshot } from './snapshot'
+export { heldMs, isHeard, type JoinedAgent, type Snapshot } from './snapshot'
 export {
   type ControlSettings,
   type ControlState,

@@ -2,9 +2,20 @@ import type { Report } from '../report'
 
 /** A silent agent's last report still counts for this many report intervals. */
 export const HELD_INTERVALS = 6
+export const HELD_AT_LEAST_MS = 3_000
 
 /** An agent that missed this many report intervals is late: enough late ones and the reading is withheld. */
 export const LATE_INTERVALS = 3
+export const LATE_AT_LEAST_MS = 1_500
+
+/** An agent is unheard once its last report is older than this. */
+export function heldMs(intervalMs: number): number {
+  return Math.max(HELD_INTERVALS * intervalMs, HELD_AT_LEAST_MS)
+}
+
+export function lateMs(intervalMs: number): number {
+  return Math.max(LATE_INTERVALS * intervalMs, LATE_AT_LEAST_MS)
+}
 
 export interface JoinedAgent {
   agentId: string
@@ -22,7 +33,7 @@ export interface Snapshot {
 export type HeardAgent = JoinedAgent & { last: NonNullable<JoinedAgent['last']> }
 
 export function isHeard(agent: JoinedAgent, atMs: number, intervalMs: number): agent is HeardAgent {
-  return agent.last !== null && atMs - agent.last.receivedAtMs <= HELD_INTERVALS * intervalMs
+  return agent.last !== null && atMs - agent.last.receivedAtMs <= heldMs(intervalMs)
 }
 
 export function heardAgents(snapshot: Snapshot, intervalMs: number): HeardAgent[] {

@@ -1,6 +1,7 @@
 import type { Disclosure, SweepOrders } from '../orders'
 import type { Pace } from '../pace'
 import type { ColonyDrift } from './alignment'
+import type { Bound } from './bound'
 
 export const COLONIES = 5
 export const WALKERS_PER_NODE = 200
@@ -58,6 +59,8 @@ export interface ControlState {
   combination: SweepOrders | null
   combinationAtMs: number
   cut: CutCount | null
+  /** Second Ritz values of late, oldest first: bounds for λ₃, each with the λ₂ of its moment. */
+  bounds: Bound[]
   attached: { count: number; sinceMs: number }
   meanWeightedDegree: number
   drifts: ColonyDrift[]
@@ -74,6 +77,7 @@ export function initialControl(atMs: number, pace: Pace): ControlState {
     combination: null,
     combinationAtMs: 0,
     cut: null,
+    bounds: [],
     attached: { count: 0, sinceMs: atMs },
     meanWeightedDegree: 0,
     drifts: [],

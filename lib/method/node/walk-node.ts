@@ -1,5 +1,5 @@
 import type { Frame } from '../frame'
-import { ORDERS_EXPIRE_AFTER_INTERVALS, type Orders } from '../orders'
+import { type Orders, ordersLifeMs } from '../orders'
 import { hash32, type Random } from '../random'
 import { type NodeFacts, type Report, SUMS_SCALE } from '../report'
 import { average, type Colony, dropAll, type Exits, openColony, place, walk } from './colony'
@@ -69,7 +69,7 @@ export class WalkNode {
   /** True when there are no orders, or they are too old to walk by. */
   isFrozen(nowMs: number): boolean {
     if (!this.orders) return true
-    return nowMs - this.ordersIssuedAtMs > ORDERS_EXPIRE_AFTER_INTERVALS * this.orders.pace.intervalMs
+    return nowMs - this.ordersIssuedAtMs > ordersLifeMs(this.orders.pace.intervalMs)
   }
 
   /** Opens or reopens a link after a handshake. Another incarnation of the peer closes the ledgers with the old one. */

@@ -1,0 +1,119 @@
+import { type EntityManager, LockSession, overlayLockKey } from '@/lib/db'
+import type { Log } from '@/lib/http/runtime'
+import { forkRandom, type Random } from '@/lib/method/random'
+import { type Clock, sleep } from './clock'
+import { findLed, LeaderStore } from './leader-store'
+import { LEADERS_CHANNEL } from './notices'
+import { Term } from './term'
+import { Usual } from './usual'
+
+/** How often to look for overlays without a leader: also how long one can be without after a leader ended. */
+export const LOOK_MS = 1_000
+
+export interface LeaderComponents {
+  forkEm(): Promise<EntityManager>
+  subscribe(channel: string, fn: (payload: string | null) => void, signal: AbortSignal): Promise<void>
+  clock: Clock
+  random: Random
+  log: Log
+  /** A name nobody else has, for each term. */
+  newHolder(): string
+}
+
+/** Leads the overlays that nobody else leads. One connection holds this process's locks. */
+export class Leader {
+  readonly #components: LeaderComponents
+  readonly #url: string
+  readonly #terms = new Map<string, { term: Term; done: Promise<void> }>()
+  #stopping = new AbortController()
+  #running: Promise<void> | null = null
+  #wake: () => void = () => {}
+  #count = 0
+
+  constructor(components: LeaderComponents, init: { url: string }) {
+    this.#components = components
+    this.#url = init.url
+  }
+
+  /** Ids of the overlays led now, and how long their rounds take. */
+  get led(): { overlayId: string; rounds: Term['rounds'] }[] {
+    return [...this.#terms].map(([overlayId, { term }]) => ({ overlayId, rounds: { ...term.rounds } }))
+  }
+
+  start(): void {
+    if (this.#running) return
+    this.#stopping = new AbortController()
+    const { signal } = this.#stopping
+    void this.#components.subscribe(LEADERS_CHANNEL, () => this.#wake(), signal)
+    this.#running = this.#run(signal)
+  }
+
+  async stop(): Promise<void> {
+    this.#stopping.abort()
+    await this.#running
+    this.#running = null
+  }
+
+  async #run(signal: AbortSignal): Promise<void> {
+    const { clock, log } = this.#components
+    while (!signal.aborted) {
+      const session = new LockSession({ url: this.#url })
+      try {
+        await session.start()
+        await this.#lead(session, AbortSignal.any([signal, session.lost]))
+      } catch (error) {
+        if (!signal.aborted) log.warn({ err: error }, 'cannot lead at the moment')
+      }
+      await session.stop().catch(() => undefined)
+      if (!signal.aborted) await sleep(clock, LOOK_MS, signal)
+    }
+  }
+
+  async #lead(session: LockSession, signal: AbortSignal): Promise<void> {
+    const { forkEm, clock } = this.#components
+    // Whatever ends the looking ends the terms as well.
+    const scope = new AbortController()
+    const end = () => {
+      scope.abort()
+      this.#wake()
+    }
+    signal.addEventListener('abort', end, { once: true })
+    try {
+      while (!signal.aborted) {
+        for (const overlayId of await findLed(await forkEm())) {
+          if (signal.aborted || this.#terms.has(overlayId)) continue
+          if (await session.tryAcquire(overlayLockKey(overlayId)))
+            this.#begin(overlayId, session, scope.signal)
+        }
+        const woken = new AbortController()
+        this.#wake = () => woken.abort()
+        if (!signal.aborted) await sleep(clock, LOOK_MS, woken.signal)
+      }
+    } finally {
+      signal.removeEventListener('abort', end)
+      scope.abort()
+      await Promise.all([...this.#terms.values()].map(({ done }) => done))
+    }
+  }
+
+  #begin(overlayId: string, session: LockSession, signal: AbortSignal): void {
+    const { forkEm, clock, random, log, newHolder } = this.#components
+    const store = new LeaderStore({ forkEm }, { overlayId, holder: newHolder() })
+    const usual = new Usual({ forkEm, clock }, { overlayId })
+    const components = { store, usual, clock, random: forkRandom(random, this.#count++), log }
+    const term = new Term(components, { overlayId })
+    this.#terms.set(overlayId, { term, done: this.#serve(term, overlayId, session, signal) })
+    log.info({ overlayId }, 'leading')
+  }
+
+  async #serve(term: Term, overlayId: string, session: LockSession, signal: AbortSignal): Promise<void> {
+    const { log } = this.#components
+    const end = await term.run(signal).catch((error: unknown) => {
+      if (!signal.aborted) log.error({ overlayId, err: error }, 'leading failed')
+      return 'failing'
+    })
+    await session.release(overlayLockKey(overlayId)).catch(() => undefined)
+    this.#terms.delete(overlayId)
+    log.info({ overlayId, end }, 'no longer leading')
+  }
+}

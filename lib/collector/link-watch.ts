@@ -1,0 +1,66 @@
+import type { Snapshot } from '@/lib/method/control'
+import { isHeard } from '@/lib/method/control'
+import type { EventDraft } from './judge'
+import { countOf, listOf } from './words'
+
+/** A link must be unnamed, or named, for so long before it is said to be lost, or found. */
+export const LINK_STILL_INTERVALS = 3
+/** What is there when the watch begins is no news. */
+const LEARNING_INTERVALS = 10
+const MOST_NAMED = 3
+
+interface Watched {
+  a: string
+  b: string
+  named: boolean
+  sinceMs: number
+  /** What was last said of it. */
+  known: boolean
+}
+
+/** Follows which links agents name, where links are named. Knows only what it saw itself. */
+export class LinkWatch {
+  readonly #links = new Map<string, Watched>()
+  #sinceMs: number | null = null
+
+  /** Links come and go with what heard agents name; a link with a silent end is left as it was. */
+  watch(snapshot: Snapshot, nameOf: (agentId: string) => string, intervalMs: number): EventDraft[] {
+    this.#sinceMs ??= snapshot.atMs
+    const heard = new Set<string>()
+    const named = new Map<string, [string, string]>()
+    for (const agent of snapshot.agents) {
+      if (!isHeard(agent, snapshot.atMs, intervalMs)) continue
+      heard.add(agent.agentId)
+      for (const { peer } of agent.last.report.node.links) {
+        const [a, b] = agent.agentId < peer ? [agent.agentId, peer] : [peer, agent.agentId]
+        named.set(`${a} ${b}`, [a, b])
+      }
+    }
+    for (const [key, [a, b]] of named) {
+      if (!this.#links.has(key)) this.#links.set(key, { a, b, named: false, sinceMs: 0, known: false })
+    }
+    const learning = snapshot.atMs - this.#sinceMs < LEARNING_INTERVALS * intervalMs
+    const lost: string[] = []
+    const found: string[] = []
+    for (const [key, link] of this.#links) {
+      if (!heard.has(link.a) || !heard.has(link.b)) continue
+      const now = named.has(key)
+      if (now !== link.named) Object.assign(link, { named: now, sinceMs: snapshot.atMs })
+      if (link.named === link.known) continue
+      if (!learning && snapshot.atMs - link.sinceMs < LINK_STILL_INTERVALS * intervalMs) continue
+      link.known = link.named
+      const pair = [nameOf(link.a), nameOf(link.b)].sort().join(' – ')
+      if (!learning) (link.named ? found : lost).push(pair)
+    }
+    return [...said('link-lost', lost, 'lost'), ...said('link-found', found, 'found')]
+  }
+}
+
+function said(kind: 'link-lost' | 'link-found', pairs: readonly string[], what: string): EventDraft[] {
+  if (pairs.length === 0) return []
+  const named =
+    pairs.length > MOST_NAMED
+      ? countOf(pairs.length, 'link')
+      : `${pairs.length === 1 ? 'link' : 'links'} ${listOf(pairs)}`
+  return [{ kind, text: `${named} ${what}` }]
+}

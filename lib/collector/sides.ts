@@ -1,0 +1,66 @@
+import type { CutCount } from '@/lib/method/control'
+import type { Memory, NamedCut, Side } from './memory'
+
+export interface SidedAgent {
+  agentId: string
+  joinedAtMs: number
+  heard: boolean
+  value: { sweep: number; value: number } | null
+}
+
+export interface SidesInput {
+  cut: CutCount
+  /** Values of combinations before this one may have the other sign. */
+  signSince: number
+  agents: readonly SidedAgent[]
+  /** Sides as last named. */
+  last: Memory['sides']
+}
+
+export interface Sides {
+  cut: NamedCut
+  sides: Memory['sides']
+}
+
+/**
+ * Puts nodes on the sides of a newly counted cut by their Fiedler values. Names are those with the larger overlap
+ * with the last sides; at first, a is the side of the longest-joined node. Null while no node's value is known.
+ */
+export function nameSides({ cut, signSince, agents, last }: SidesInput): Sides | null {
+  const above = new Map<string, boolean>()
+  for (const { agentId, heard, value } of agents) {
+    if (heard && value && value.sweep >= signSince) above.set(agentId, value.value > cut.threshold)
+  }
+  if (above.size === 0) return null
+  const aboveIs = nameOfAbove(agents, above, last)
+  const sides: Memory['sides'] = {}
+  for (const { agentId, heard } of agents) {
+    const isAbove = above.get(agentId)
+    if (isAbove !== undefined) sides[agentId] = isAbove ? aboveIs : other(aboveIs)
+    // What is known of a silent one is where it was.
+    else if (!heard && last[agentId]) sides[agentId] = last[agentId]
+  }
+  const nodes = aboveIs === 'a' ? { a: cut.above, b: cut.below } : { a: cut.below, b: cut.above }
+  return { cut: { sweep: cut.sweep, aboveIs, nodes, links: cut.links, weight: cut.weight }, sides }
+}
+
+function nameOfAbove(
+  agents: readonly SidedAgent[],
+  above: ReadonlyMap<string, boolean>,
+  last: Memory['sides'],
+): Side {
+  let balance = 0
+  for (const [agentId, isAbove] of above) {
+    const side = last[agentId]
+    if (side) balance += (side === 'a') === isAbove ? 1 : -1
+  }
+  if (balance !== 0) return balance > 0 ? 'a' : 'b'
+  const eldest = agents
+    .filter(({ agentId }) => above.has(agentId))
+    .reduce((a, b) => (b.joinedAtMs < a.joinedAtMs ? b : a))
+  return above.get(eldest.agentId) ? 'a' : 'b'
+}
+
+export function other(side: Side): Side {
+  return side === 'a' ? 'b' : 'a'
+}

@@ -1,0 +1,54 @@
+/**
+ * npm run collector: takes agents' reports and leads overlays in a process of its own, beside any number of others on
+ * the same database. PORT (default 3100), HOST (default 127.0.0.1), DATABASE_URL. Composition root.
+ */
+import { once } from 'node:events'
+import { resolve } from 'node:path'
+import { POST as enrol } from '@/app/api/agent/enrol/route'
+import { POST as report } from '@/app/api/agent/report/route'
+import { POST as session } from '@/app/api/agent/session/route'
+import { createRouteServer } from '@/lib/collector/http-server'
+import { getIngest, startLeader } from '@/lib/collector/process'
+import { closeDatabase, sql } from '@/lib/db'
+import { authorise } from '@/lib/http/call'
+import { processSignal, stopProcess } from '@/lib/http/process-signal'
+import { route } from '@/lib/http/route'
+import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
+
+// Beside a running `npm start` it needs no address.
+process.env.DATABASE_URL ||=
+  findOwnDatabase(dataFolderOf(process.env, resolve(import.meta.dirname, '..'))) ?? ''
+const port = Number(process.env.PORT || 3100)
+const host = process.env.HOST || '127.0.0.1'
+
+for (const name of ['SIGTERM', 'SIGINT'] as const) process.once(name, () => stopProcess(`received ${name}`))
+
+/** The web process's route comes with the web framework. */
+const health = route('health.read', {}, async (call) => {
+  authorise(call, 'health.read')
+  await sql(call.em, 'select 1')
+  return { status: 'ok', at: call.now.toISOString() }
+})
+
+const server = createRouteServer({
+  'POST /api/agent/enrol': enrol,
+  'POST /api/agent/session': session,
+  'POST /api/agent/report': report,
+  'GET /api/health': health,
+})
+server.listen(port, host)
+await once(server, 'listening')
+const leader = startLeader(processSignal())
+const address = server.address()
+const listening = typeof address === 'object' && address ? address.port : port
+process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
+
+await new Promise<void>((resolve) =>
+  processSignal().addEventListener('abort', () => resolve(), { once: true }),
+)
+server.close()
+server.closeIdleConnections()
+await getIngest().stop()
+await leader.stop()
+await closeDatabase()
+server.closeAllConnections()

@@ -1,0 +1,53 @@
+import { randomUUID } from 'node:crypto'
+import { Leader } from '@/lib/collector/leader'
+import { systemClock } from '@/lib/collector/process'
+import { Listener } from '@/lib/db'
+import { createRandom } from '@/lib/method/random'
+import type { TestDatabase } from './database'
+
+export interface TestLeader {
+  leader: Leader
+  /** What went wrong. */
+  failures: object[]
+  /** Resolves when it leads `count` overlays. */
+  leads(count: number): Promise<void>
+  stop(): Promise<void>
+}
+
+/** A leader with a listening connection of its own, as in a process of its own. */
+export function startTestLeader(database: TestDatabase, seed: number): TestLeader {
+  const failures: object[] = []
+  const listener = new Listener({ random: Math.random, warn: () => {} }, { url: database.url })
+  listener.start()
+  let changed = () => {}
+  const leader = new Leader(
+    {
+      forkEm: async () => database.orm.em.fork(),
+      subscribe: (channel, fn, signal) => listener.subscribe(channel, fn, signal),
+      clock: systemClock,
+      random: createRandom(seed),
+      log: {
+        info: () => changed(),
+        warn: (data) => failures.push(data),
+        error: (data) => failures.push(data),
+      },
+      newHolder: randomUUID,
+    },
+    { url: database.url },
+  )
+  leader.start()
+  return {
+    leader,
+    failures,
+    leads: async (count) => {
+      while (leader.led.length !== count)
+        await new Promise<void>((resolve) => {
+          changed = resolve
+        })
+    },
+    stop: async () => {
+      await leader.stop()
+      await listener.stop()
+    },
+  }
+}
