@@ -1,0 +1,21 @@
+import type { Metadata } from 'next'
+import { NodesTable } from '@/components/nodes/nodes-table'
+import { PageHeading, ProblemState, Sheet } from '@/components/ui'
+import { getOverlay } from '@/lib/data'
+import { page } from '@/lib/http'
+
+export const metadata: Metadata = { title: 'Nodes' }
+
+export default async function NodesPage({ params }: { params: Promise<{ slug: string }> }) {
+  const { slug } = await params
+  const overlay = await page('overlay.read', (call) => getOverlay(call, slug))
+  if (!overlay.ok) return <ProblemState problem={overlay.problem} />
+  return (
+    <>
+      <PageHeading title="Nodes">Every node that has an agent, and what may be known of it.</PageHeading>
+      <Sheet heading={overlay.value.name} aside={`${overlay.value.pace} pace · ${overlay.value.disclosure}`}>
+        <NodesTable slug={slug} />
+      </Sheet>
+    </>
+  )
+}

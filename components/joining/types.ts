@@ -1,0 +1,9 @@
+import type { CreatedJoiningCode, JoiningCode } from '@/lib/data/dto'
+import type { FormState } from '@/lib/http/form-state'
+
+export type CreateCode = (
+  previous: FormState<CreatedJoiningCode>,
+  form: FormData,
+) => Promise<FormState<CreatedJoiningCode>>
+
+export type RevokeCode = (previous: FormState<JoiningCode>, form: FormData) => Promise<FormState<JoiningCode>>

@@ -1,0 +1,118 @@
+'use client'
+
+import { useEffect, useState } from 'react'
+import useSWR from 'swr'
+import { z } from 'zod'
+import {
+  cutSchema,
+  eventsSchema,
+  joiningCodeSchema,
+  linksSchema,
+  nodesSchema,
+  overlaySchema,
+  type ReadingPoint,
+  readingSchema,
+  readingsSchema,
+} from '@/lib/data/dto'
+import { type Range, rangeQuery } from '@/lib/face/range'
+import { overlayUrls } from '@/lib/face/urls'
+import { ApiError, getAll, getJson } from './fetcher'
+import { POLL_MS, useStreaming } from './live-provider'
+
+/** What a component knows of one answer of the server. */
+export interface Live<T> {
+  /** The last good answer, kept while later attempts fail. */
+  data: T | undefined
+  error: ApiError | undefined
+  /** When `data` came, in milliseconds since the epoch. */
+  updatedAtMs: number | null
+  retry: () => void
+}
+
+interface LiveOptions {
+  /** How often to ask while the stream is open: the stream says when, this is the net below it. */
+  streamingMs?: number
+  /** How often to ask without a stream. */
+  pollMs?: number
+}
+
+function useLive<T>(key: string | null, load: () => Promise<T>, options: LiveOptions = {}): Live<T> {
+  const streaming = useStreaming()
+  const [updatedAtMs, setUpdatedAtMs] = useState<number | null>(null)
+  const { data, error, mutate } = useSWR<T, ApiError>(key, load, {
+    refreshInterval: streaming ? (options.streamingMs ?? 60_000) : (options.pollMs ?? POLL_MS),
+    dedupingInterval: 900,
+    keepPreviousData: true,
+    shouldRetryOnError: (e) => !(e instanceof ApiError) || e.retry,
+    errorRetryInterval: POLL_MS,
+  })
+  useEffect(() => {
+    // The stream also brings data, past the fetcher.
+    if (data !== undefined) setUpdatedAtMs(Date.now())
+  }, [data])
+  return { data, error, updatedAtMs, retry: () => void mutate() }
+}
+
+export function useOverlay(slug: string | null) {
+  const url = slug === null ? null : overlayUrls(slug).overlay
+  return useLive(url, () => getJson(url ?? '', overlaySchema))
+}
+
+/** Null before the first reading. */
+export function useReading(slug: string, options: LiveOptions = {}) {
+  const url = overlayUrls(slug).reading
+  return useLive(url, () => getJson(url, readingSchema).catch(nullBeforeFirst), options)
+}
+
+export function useCut(slug: string) {
+  const url = overlayUrls(slug).cut
+  return useLive(url, () => getJson(url, cutSchema).catch(nullBeforeFirst))
+}
+
+function nullBeforeFirst(error: unknown): null {
+  if (error instanceof ApiError && error.code === 'no-reading') return null
+  throw error
+}
+
+export function useNodes(slug: string) {
+  const url = overlayUrls(slug).nodes
+  return useLive(url, () => getAll(url, nodesSchema), { streamingMs: 15_000 })
+}
+
+export function useLinks(slug: string) {
+  const url = overlayUrls(slug).links
+  return useLive(url, () => getAll(url, linksSchema), { streamingMs: 15_000 })
+}
+
+export function useEvents(slug: string) {
+  const url = overlayUrls(slug).events
+  return useLive(url, async () => (await getJson(url, eventsSchema)).items)
+}
+
+const codesSchema = z.object({ items: z.array(joiningCodeSchema) })
+
+export function useJoiningCodes(slug: string) {
+  const url = overlayUrls(slug).codes
+  return useLive(url, async () => (await getJson(url, codesSchema)).items)
+}
+
+export interface History {
+  points: ReadingPoint[]
+  fromMs: number
+  toMs: number
+  stepSeconds: number
+}
+
+/** Readings of the last while; the key holds the range, so that each look asks up to the present. */
+export function useHistory(slug: string, range: Range) {
+  const url = overlayUrls(slug).readings
+  return useLive<History>(
+    `${url}#${range.id}`,
+    async () => {
+      const { query, fromMs, toMs } = rangeQuery(range, Date.now())
+      const { items, stepSeconds } = await getJson(`${url}?${query}`, readingsSchema)
+      return { points: items, fromMs, toMs, stepSeconds }
+    },
+    { streamingMs: Math.max(5, range.stepSeconds) * 1000 },
+  )
+}

@@ -1,0 +1,18 @@
+import { Mark, type MarkShape } from '@/components/ui'
+import type { OverlayNode } from '@/lib/data/dto'
+
+const SHAPES: Record<OverlayNode['state'], MarkShape> = {
+  heard: 'full',
+  unheard: 'dashed',
+  detached: 'hollow',
+  left: 'short',
+  revoked: 'crossed',
+}
+
+export function StateMark({ state }: { state: OverlayNode['state'] }) {
+  return (
+    <Mark shape={SHAPES[state]} grave={state === 'unheard'}>
+      {state}
+    </Mark>
+  )
+}

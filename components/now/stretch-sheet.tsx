@@ -1,0 +1,48 @@
+'use client'
+
+import { Freshness } from '@/components/live/freshness'
+import { useCut, useLinks, useNodes, useReading } from '@/components/live/hooks'
+import { Stretch } from '@/components/stretch/stretch'
+import { EmptyState, FailedState, Lambda, Sheet, Waiting } from '@/components/ui'
+
+export function StretchSheet({ slug }: { slug: string }) {
+  const nodes = useNodes(slug)
+  const links = useLinks(slug)
+  const cut = useCut(slug)
+  const reading = useReading(slug)
+  const sides = cut.data?.sides ?? reading.data?.sides ?? null
+  const unplaced = (nodes.data ?? []).every((n) => n.value === null)
+  const remark = unplaced ? (
+    'no values yet: nodes stand by name'
+  ) : sides ? (
+    <>
+      left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
+    </>
+  ) : (
+    (cut.data?.withheld ?? (reading.data ? 'no sides are drawn, since no cut stands out' : ''))
+  )
+
+  return (
+    <Sheet heading="Stretch" aside={remark}>
+      <Freshness of={nodes} unless={reading} />
+      {nodes.data ? (
+        nodes.data.length > 0 ? (
+          <Stretch
+            nodes={nodes.data}
+            links={links.data ?? []}
+            reading={reading.data ?? null}
+            cut={cut.data ?? null}
+          />
+        ) : (
+          <EmptyState title="No nodes to draw yet.">They appear here as their agents enrol.</EmptyState>
+        )
+      ) : nodes.error ? (
+        <FailedState quiet title="The nodes could not be loaded." onRetry={nodes.retry}>
+          {nodes.error.message}
+        </FailedState>
+      ) : (
+        <Waiting label="Loading the nodes" className="h-[28rem]" />
+      )}
+    </Sheet>
+  )
+}

@@ -1,0 +1,52 @@
+'use client'
+
+import { useMemo } from 'react'
+import { type Column, DataTable, EmptyState, SideMark } from '@/components/ui'
+import type { OverlayNode } from '@/lib/data/dto'
+import { formatValue } from '@/lib/face/format'
+
+/** The drawing as a table: the same nodes, in the same order. */
+export function StretchTable({ nodes, sided }: { nodes: readonly OverlayNode[]; sided: boolean }) {
+  const columns = useMemo(() => columnsFor(nodes, sided), [nodes, sided])
+  return (
+    <DataTable
+      caption="Nodes by Fiedler value, from one end of the overlay to the other"
+      columns={columns}
+      rows={nodes}
+      rowKey={(n) => n.name}
+      csvName="stretch"
+      initialSort={{ id: 'value' }}
+      empty={<EmptyState title="No nodes to show yet." />}
+    />
+  )
+}
+
+function columnsFor(nodes: readonly OverlayNode[], sided: boolean): Column<OverlayNode>[] {
+  const keys = [...new Set(nodes.flatMap((n) => Object.keys(n.labels)))].sort()
+  return [
+    { id: 'name', header: 'node', value: (n) => n.name },
+    {
+      id: 'value',
+      header: 'value',
+      figures: true,
+      value: (n) => n.value,
+      cell: (n) => (n.value === null ? '–' : formatValue(n.value)),
+    },
+    ...(sided
+      ? [
+          {
+            id: 'side',
+            header: 'side',
+            value: (n: OverlayNode) => n.side,
+            cell: (n: OverlayNode) => (n.side ? <SideMark side={n.side} /> : '–'),
+          },
+        ]
+      : []),
+    ...keys.map((key) => ({
+      id: `label:${key}`,
+      header: key,
+      value: (n: OverlayNode) => n.labels[key] ?? null,
+    })),
+    { id: 'state', header: 'state', value: (n) => n.state },
+  ]
+}

@@ -1,0 +1,82 @@
+'use client'
+
+import { useState } from 'react'
+import { Freshness } from '@/components/live/freshness'
+import { useEvents, useHistory, useReading } from '@/components/live/hooks'
+import { EmptyState, FailedState, Sheet, Waiting } from '@/components/ui'
+import { cx } from '@/lib/face/cx'
+import { DEFAULT_RANGE, fittingRange, RANGES, type Range } from '@/lib/face/range'
+import { Trend } from './trend'
+
+/** The trend of one overlay with its choice of range. */
+export function TrendSheet({ slug }: { slug: string }) {
+  const [picked, setPicked] = useState<Range | null>(null)
+  const [fitting, setFitting] = useState<Range | null>(null)
+  const range = picked ?? fitting ?? DEFAULT_RANGE
+  const history = useHistory(slug, range)
+  if (fitting === null && history.data?.points[0]) {
+    // Chosen once: a drawing that changes its scale by itself cannot be read.
+    setFitting(fittingRange(Date.parse(history.data.points[0].at), history.data.toMs))
+  }
+  const events = useEvents(slug)
+  const reading = useReading(slug)
+
+  return (
+    <Sheet heading="Trend" aside={<RangeChoice range={range} onRange={setPicked} />}>
+      <Freshness of={history} unless={reading} />
+      {history.data ? (
+        history.data.points.length > 0 ? (
+          <Trend
+            {...history.data}
+            rangeLabel={range.label}
+            events={events.data ?? []}
+            usual={reading.data?.usual ?? null}
+          />
+        ) : (
+          <div className="min-h-64">
+            <EmptyState title={`No readings in the last ${range.label}.`}>
+              The line begins with the first reading. Choose a longer range to look further back.
+            </EmptyState>
+          </div>
+        )
+      ) : history.error ? (
+        <div className="min-h-64">
+          <FailedState quiet title="The trend could not be loaded." onRetry={history.retry}>
+            {history.error.message}
+          </FailedState>
+        </div>
+      ) : (
+        <TrendWaiting />
+      )}
+    </Sheet>
+  )
+}
+
+function TrendWaiting() {
+  return <Waiting label="Loading the trend" className="h-64" />
+}
+
+function RangeChoice({ range, onRange }: { range: Range; onRange: (range: Range) => void }) {
+  return (
+    <fieldset className="flex flex-wrap items-center gap-x-1">
+      <legend className="sr-only">Show the last</legend>
+      <span aria-hidden="true" className="mr-1">
+        last
+      </span>
+      {RANGES.map((r) => (
+        <button
+          key={r.id}
+          type="button"
+          aria-pressed={r.id === range.id}
+          onClick={() => onRange(r)}
+          className={cx(
+            'min-h-9 px-2.5',
+            r.id === range.id ? 'bg-ink text-paper' : 'text-ink underline decoration-edge underline-offset-4',
+          )}
+        >
+          {r.label}
+        </button>
+      ))}
+    </fieldset>
+  )
+}

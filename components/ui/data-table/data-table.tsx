@@ -1,0 +1,157 @@
+'use client'
+
+import { useState } from 'react'
+import { csvFileName, toCsv } from '@/lib/face/csv'
+import { cx } from '@/lib/face/cx'
+import { formatCount } from '@/lib/face/format'
+import { Button } from '../button'
+import { saveText } from '../save-text'
+import { Filters } from './filters'
+import type { Column, DataTableProps } from './types'
+import { useRows } from './use-rows'
+
+/** Rows drawn at first; the rest are one press away, so that thousands do not hold up the page. */
+const FIRST_ROWS = 200
+
+export function DataTable<Row extends object>(props: DataTableProps<Row>) {
+  const { columns, rows, csvName } = props
+  const { table, text, setText, chosen, setChosen } = useRows(props)
+  const [all, setAll] = useState(false)
+
+  if (rows.length === 0) return <>{props.empty}</>
+
+  const sorted = table.getRowModel().rows
+  const shown = all ? sorted : sorted.slice(0, FIRST_ROWS)
+  const byId = new Map(columns.map((c) => [c.id, c]))
+
+  function exportCsv() {
+    const data = columns.filter((c) => c.data !== false)
+    saveText(
+      csvFileName(csvName ?? 'table'),
+      'text/csv;charset=utf-8',
+      toCsv(
+        data.map((c) => c.header),
+        sorted.map((r) => data.map((c) => c.value(r.original))),
+      ),
+    )
+  }
+
+  return (
+    <div>
+      <Filters
+        {...props}
+        text={text}
+        onText={setText}
+        chosen={chosen}
+        onChosen={setChosen}
+        found={sorted.length}
+        actions={
+          csvName ? (
+            <Button kind="quiet" className="-mr-2" onClick={exportCsv}>
+              Save as CSV
+            </Button>
+          ) : null
+        }
+      />
+      {/* biome-ignore lint/a11y/noNoninteractiveTabindex: a scrolling region must be reachable by keyboard */}
+      <section aria-label={props.caption} tabIndex={0} className="relative overflow-x-auto">
+        <table className="w-full border-collapse text-left">
+          <caption className="sr-only">{props.caption}</caption>
+          <thead>
+            {table.getHeaderGroups().map((group) => (
+              <tr key={group.id} className="border-b border-ink">
+                {group.headers.map((header) => (
+                  <HeaderCell
+                    key={header.id}
+                    column={byId.get(header.column.id)}
+                    sorted={header.column.getIsSorted()}
+                    onSort={header.column.getToggleSortingHandler()}
+                  />
+                ))}
+              </tr>
+            ))}
+          </thead>
+          <tbody>
+            {shown.map((row) => (
+              <tr key={row.id} className="border-b border-hairline">
+                {columns.map((c) => (
+                  <td
+                    key={c.id}
+                    className={cx(
+                      'py-2 pr-5 align-baseline last:pr-0',
+                      c.figures && 'text-right font-figures whitespace-nowrap',
+                      c.words && 'min-w-56',
+                    )}
+                  >
+                    {c.cell ? c.cell(row.original) : (c.value(row.original) ?? '–')}
+                  </td>
+                ))}
+              </tr>
+            ))}
+          </tbody>
+        </table>
+      </section>
+      {sorted.length === 0 ? (
+        <p className="py-4 text-soft">
+          Nothing matches. Change or clear the filter to see all {rows.length}.
+        </p>
+      ) : null}
+      {shown.length < sorted.length ? (
+        <div className="mt-3">
+          <Button onClick={() => setAll(true)}>
+            Show all {formatCount(sorted.length, 'row')} ({shown.length} shown)
+          </Button>
+        </div>
+      ) : null}
+    </div>
+  )
+}
+
+function HeaderCell<Row>({
+  column,
+  sorted,
+  onSort,
+}: {
+  column: Column<Row> | undefined
+  sorted: false | 'asc' | 'desc'
+  onSort: ((event: unknown) => void) | undefined
+}) {
+  if (!column) return null
+  const end = column.figures
+  if (column.data === false) {
+    return (
+      <th scope="col" className="pb-1.5">
+        <span className="sr-only">{column.header}</span>
+      </th>
+    )
+  }
+  return (
+    <th
+      scope="col"
+      aria-sort={sorted === 'asc' ? 'ascending' : sorted === 'desc' ? 'descending' : undefined}
+      className={cx('pr-5 pb-1 align-bottom font-normal last:pr-0', end && 'text-right')}
+    >
+      <button
+        type="button"
+        onClick={onSort}
+        className="inline-flex min-h-8 items-center gap-1 text-sm whitespace-nowrap text-soft hover:text-ink"
+      >
+        {column.heading ?? column.header}
+        <svg viewBox="0 0 8 12" className="h-3 w-2 shrink-0" aria-hidden="true">
+          <path
+            d="M1 4.5L4 1l3 3.5"
+            fill="none"
+            stroke="currentColor"
+            opacity={sorted === 'asc' ? 1 : 0.25}
+          />
+          <path
+            d="M1 7.5L4 11l3-3.5"
+            fill="none"
+            stroke="currentColor"
+            opacity={sorted === 'desc' ? 1 : 0.25}
+          />
+        </svg>
+      </button>
+    </th>
+  )
+}

@@ -1,0 +1,2 @@
+export { DataTable } from './data-table'
+export type { Column, DataTableProps, TableFilter } from './types'

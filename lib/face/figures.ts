@@ -1,0 +1,104 @@
+import type { Reading } from '@/lib/data/dto'
+import { formatCount, formatHigh, formatInterval, formatReading, formatShare } from './format'
+
+/** Further apart than this share, the reading and its same-walker check are said to disagree. */
+export const CHECK_TOLERANCE = 0.1
+
+export interface FigureText {
+  id: 'reading' | 'usual' | 'next' | 'check' | 'links' | 'agents' | 'ends'
+  value: string
+  remark: string
+  /** Split or unheard: the only things that are red. */
+  grave?: boolean
+  /** Must be seen, without being one of those. */
+  strong?: boolean
+}
+
+/** The title block in words and figures. The age of the last good value is added where it is shown. */
+export function titleFigures(reading: Reading): FigureText[] {
+  return [
+    readingFigure(reading),
+    usualFigure(reading),
+    nextFigure(reading),
+    checkFigure(reading),
+    linksFigure(reading),
+    agentsFigure(reading),
+    ...endsFigure(reading),
+  ]
+}
+
+function readingFigure(reading: Reading): FigureText {
+  const { lambda2, low, high, core, last, confidence } = reading
+  if (lambda2 === null) {
+    if (!last) return { id: 'reading', value: 'none yet', remark: 'the first one is on its way' }
+    return { id: 'reading', value: 'withheld', remark: `last ${formatReading(last.lambda2)}` }
+  }
+  const shown = core ?? { lambda2, low, high }
+  const interval =
+    shown.low !== null && shown.high !== null
+      ? `${Math.round(confidence * 100)} %: ${formatInterval(shown.low, shown.high, shown.lambda2)}`
+      : 'no interval yet'
+  const whole = core ? `, with loose ends ${formatReading(lambda2)}` : ''
+  return { id: 'reading', value: formatReading(shown.lambda2), remark: `${interval}${whole}` }
+}
+
+function usualFigure({ lambda2, core, usual, last }: Reading): FigureText {
+  const now = core?.lambda2 ?? lambda2 ?? last?.lambda2 ?? null
+  if (usual === null) return { id: 'usual', value: 'not yet', remark: 'needs 7 days of readings' }
+  if (now === null || usual <= 0) return { id: 'usual', value: '–', remark: `median ${formatReading(usual)}` }
+  const when = lambda2 === null ? 'last value; ' : ''
+  return { id: 'usual', value: formatShare(now / usual), remark: `${when}median ${formatReading(usual)}` }
+}
+
+function nextFigure({ lambda2, lambda3AtMost, singleCut }: Reading): FigureText {
+  if (lambda3AtMost === null) return { id: 'next', value: '–', remark: 'not known' }
+  const value = formatHigh(lambda3AtMost)
+  if (singleCut === false) return { id: 'next', value, remark: 'about as strong' }
+  const times = lambda2 !== null && lambda2 > 0 ? lambda3AtMost / lambda2 : null
+  return {
+    id: 'next',
+    value,
+    remark: times === null ? 'at most' : `at most ${times.toFixed(1)} times stronger`,
+  }
+}
+
+function checkFigure({ lambda2, crossCheck }: Reading): FigureText {
+  if (crossCheck === null) return { id: 'check', value: '–', remark: 'not known' }
+  const value = formatReading(crossCheck)
+  if (lambda2 === null || lambda2 <= 0) return { id: 'check', value, remark: 'nothing to compare with' }
+  const apart = Math.abs(crossCheck - lambda2) / lambda2
+  if (apart <= CHECK_TOLERANCE) return { id: 'check', value, remark: 'agrees' }
+  return {
+    id: 'check',
+    value,
+    remark: `disagrees by ${formatShare(apart)}: do not rely on the reading`,
+    strong: true,
+  }
+}
+
+function linksFigure({ coverage }: Reading): FigureText {
+  const { linksMeasured, linksKnown } = coverage
+  const missing = linksKnown - linksMeasured
+  return {
+    id: 'links',
+    value: `${linksMeasured} of ${linksKnown}`,
+    remark: linksKnown === 0 ? 'none known yet' : missing > 0 ? `${missing} not measured` : 'all',
+  }
+}
+
+function agentsFigure({ coverage, last }: Reading): FigureText {
+  const { heard, joined, unheard } = coverage
+  // Before the first reading agents are on their way, not gone.
+  if (last === null && heard === 0) return { id: 'agents', value: `0 of ${joined}`, remark: 'none heard yet' }
+  const remark = unheard > 0 ? `${unheard} unheard` : 'all'
+  return { id: 'agents', value: `${heard} of ${joined}`, remark, grave: unheard > 0 && last !== null }
+}
+
+function endsFigure({ looseEnds }: Reading): FigureText[] {
+  if (looseEnds.length === 0) return []
+  const nodes = looseEnds.reduce((sum, end) => sum + end.nodes, 0)
+  const [only] = looseEnds
+  const remark =
+    looseEnds.length === 1 && only ? `on ${formatCount(only.links, 'link')}` : `in ${looseEnds.length} groups`
+  return [{ id: 'ends', value: formatCount(nodes, 'node'), remark }]
+}

@@ -1,0 +1,3 @@
+export { laneKeys } from './lanes'
+export { layoutStretch } from './layout'
+export type * from './types'
