@@ -1,6 +1,7 @@
 import type { Memory, Trend } from './memory'
 
-export const TREND_INTERVALS = 150
+/** Long enough to tell a slope from noise, short enough to forget a change that is over. */
+export const TREND_INTERVALS = 60
 export const TREND_LEAST_READINGS = 20
 /** A change over the window of less than this share of the reading is no trend. */
 export const TREND_LEAST_CHANGE = 0.1

@@ -10,7 +10,7 @@ import { Waiters } from './waiters'
 
 /** Agents that enrol at the same time. */
 const ENROLLING_AT_ONCE = 8
-const SETTLE_MS = 15_000
+const SETTLE_MS = 60_000
 
 export interface FleetComponents {
   transport: Transport
@@ -83,7 +83,7 @@ export class Fleet {
     return member
   }
 
-  /** Enrols all, starts all, links all. @throws where one is not enrolled, or links are missing after 15 s */
+  /** Enrols all, starts all, links all. @throws where one is not enrolled, or links are missing after a minute */
   async start(): Promise<{ nodes: number; links: number }> {
     const [first, ...rest] = this.members.values()
     // Alone, so that which node joined first is not left to chance.
