@@ -1,6 +1,6 @@
 'use client'
 
-import { useEffect, useState } from 'react'
+import { useState } from 'react'
 import useSWR from 'swr'
 import { z } from 'zod'
 import {
@@ -38,7 +38,10 @@ interface LiveOptions {
 
 function useLive<T>(key: string | null, load: () => Promise<T>, options: LiveOptions = {}): Live<T> {
   const streaming = useStreaming()
-  const [updatedAtMs, setUpdatedAtMs] = useState<number | null>(null)
+  const [seen, setSeen] = useState<{ data: T | undefined; atMs: number | null }>({
+    data: undefined,
+    atMs: null,
+  })
   const { data, error, mutate } = useSWR<T, ApiError>(key, load, {
     refreshInterval: streaming ? (options.streamingMs ?? 60_000) : (options.pollMs ?? POLL_MS),
     dedupingInterval: 900,
@@ -46,11 +49,10 @@ function useLive<T>(key: string | null, load: () => Promise<T>, options: LiveOpt
     shouldRetryOnError: (e) => !(e instanceof ApiError) || e.retry,
     errorRetryInterval: POLL_MS,
   })
-  useEffect(() => {
-    // The stream also brings data, past the fetcher.
-    if (data !== undefined) setUpdatedAtMs(Date.now())
-  }, [data])
-  return { data, error, updatedAtMs, retry: () => void mutate() }
+  // The stream also brings data, past the fetcher. Not in an effect: after a pause readings come in a burst, and a
+  // further update behind each of them adds up until React takes it for a loop.
+  if (seen.data !== data) setSeen({ data, atMs: data === undefined ? null : Date.now() })
+  return { data, error, updatedAtMs: seen.atMs, retry: () => void mutate() }
 }
 
 export function useOverlay(slug: string | null) {

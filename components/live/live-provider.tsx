@@ -10,6 +10,8 @@ import { keepEventSource } from './event-source'
 export const POLL_MS = 5_000
 /** Node and link lists are larger and slower than the reading: at most this often. */
 const LISTS_MS = 4_000
+/** Of readings that come closer together only the last is shown: a page that was asleep gets all it missed at once. */
+const READING_MS = 100
 
 const StreamingContext = createContext(false)
 
@@ -27,6 +29,8 @@ export function LiveProvider({ slug, children }: { slug: string; children: React
     const urls = overlayUrls(slug)
     const closing = new AbortController()
     let listsDue: ReturnType<typeof setTimeout> | null = null
+    let readingDue: ReturnType<typeof setTimeout> | null = null
+    let latest: unknown = null
 
     const refreshLists = () => {
       listsDue ??= setTimeout(() => {
@@ -35,8 +39,12 @@ export function LiveProvider({ slug, children }: { slug: string; children: React
       }, LISTS_MS)
     }
     const onReading = (data: unknown) => {
-      const reading = parseReading(data)
-      void (reading ? mutate(urls.reading, reading, { revalidate: false }) : mutate(urls.reading))
+      latest = data
+      readingDue ??= setTimeout(() => {
+        readingDue = null
+        const reading = parseReading(latest)
+        void (reading ? mutate(urls.reading, reading, { revalidate: false }) : mutate(urls.reading))
+      }, READING_MS)
       refreshLists()
     }
     const onEvent = () => {
@@ -48,6 +56,7 @@ export function LiveProvider({ slug, children }: { slug: string; children: React
     return () => {
       closing.abort()
       if (listsDue) clearTimeout(listsDue)
+      if (readingDue) clearTimeout(readingDue)
     }
   }, [slug, mutate])
 

@@ -34,7 +34,7 @@ export function securityHeaders(secure: boolean): Record<string, string> {
   }
 }
 
-const OPEN_PATHS = ['/sign-in', '/first-run', '/set-password/', '/api/', '/agent/']
+const OPEN_PATHS = ['/icon.svg', '/sign-in', '/first-run', '/set-password/', '/api/', '/agent/']
 
 /** Where the request filter sends a request: a visitor without a session cookie to sign in; null lets it through. */
 export function redirectFor(path: string, search: string, hasCookie: boolean): string | null {

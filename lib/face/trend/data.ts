@@ -17,13 +17,21 @@ export interface Span {
 /** Further apart than this many steps and nothing is drawn between two points. */
 const BREAK_STEPS = 3.5
 
+/**
+ * Settling readings that follow a break are left out until the first fresh one: from a cold start they come down from
+ * many times the truth, and would be the highest peak of every chart.
+ */
 export function trendColumns(points: readonly ReadingPoint[], stepSeconds: number): TrendColumns {
   const columns: TrendColumns = { x: [], reading: [], low: [], high: [] }
   let before: number | null = null
+  let cold = true
   for (const point of inOrder(points)) {
     const x = Date.parse(point.at) / 1000
-    if (before !== null && x - before > BREAK_STEPS * stepSeconds) push(columns, before + stepSeconds, null)
-    push(columns, x, point)
+    const apart = before !== null && x - before > BREAK_STEPS * stepSeconds
+    if (before !== null && apart) push(columns, before + stepSeconds, null)
+    if (apart || point.lambda2 === null) cold = true
+    if (point.data === 'fresh') cold = false
+    push(columns, x, cold ? null : point)
     before = x
   }
   return columns

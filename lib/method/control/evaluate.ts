@@ -201,7 +201,14 @@ function read(control: ControlState, input: EvaluateInput, coverage: Coverage): 
       : noteBound(control.bounds, now.atMs, lambda2, result?.values[1] ?? null, pace.intervalMs)
   next.bounds = bounds
   const second = bounds.length > 0 ? Math.min(...bounds.map(({ value }) => value)) : null
-  const interval = lambda2 === null ? null : intervalOf(ritz.map(({ value }) => value))
+  const singleCut = lambda2 === null || second === null ? null : second > NEAR * lambda2
+  const interval =
+    lambda2 === null
+      ? null
+      : intervalOf(
+          ritz.map(({ value }) => value),
+          singleCut === false,
+        )
   return {
     control: next,
     orders: ordersFrom(next, settings, now.atMs, true),
@@ -214,7 +221,7 @@ function read(control: ControlState, input: EvaluateInput, coverage: Coverage): 
       lambda3AtMost: second,
       crossCheck,
       settling: lowered || !isSettled(ritz.map(({ value }) => value)),
-      singleCut: lambda2 === null || second === null ? null : second > NEAR * lambda2,
+      singleCut,
       cut: next.cut,
       coverage,
       seedings: subspace?.colonies.map(({ seeding }) => seeding) ?? [],

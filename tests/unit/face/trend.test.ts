@@ -38,6 +38,17 @@ describe('trend', () => {
     expect(columns.reading).toEqual([1, 2, null, 3, null])
   })
 
+  it('leaves out what settles after a break, and keeps what settles after a change', () => {
+    const settling = (second: number, lambda2: number): ReadingPoint => ({
+      ...point(second, lambda2),
+      data: 'settling',
+    })
+    const points = [settling(0, 9), settling(30, 4), point(60, 2), settling(90, 1.5), point(120, 1)]
+    expect(trendColumns(points, 30).reading).toEqual([null, null, 2, 1.5, 1])
+    const withheld = [point(0, 2), point(30, null), settling(60, 7), point(90, 2)]
+    expect(trendColumns(withheld, 30).reading).toEqual([2, null, null, 2])
+  })
+
   it('puts points into order', () => {
     expect(trendColumns([point(30, 2), point(0, 1)], 30).reading).toEqual([1, 2])
   })
