@@ -1,7 +1,7 @@
 import type { ColonyFrame, Frame } from '../method/frame'
 import { ByteReader, MalformedBytes } from './bytes'
 import { FLAG_CLOSING, FLAG_CONSENTS, PART_ORDERS, readColony, WEIGHT_SCALE } from './frame-codec'
-import { MAX_COLONIES, MAX_FRAME_BYTES } from './limits'
+import { MAX_COLONIES, MAX_FRAME_BYTES, MAX_MEAN_OCCUPANCY } from './limits'
 import { FRAME_VERSION, MESSAGE_KIND } from './message-kind'
 import { parseOrders } from './orders-part'
 
@@ -53,6 +53,8 @@ function read(reader: ByteReader, heldOrdersSequence: number): DecodeResult {
   for (let index = 0; index < colonyCount; index++) {
     const colony = readColony(reader.block(reader.byte()), newestSeeding)
     if (colony.seeding < 0) return outOfRange('seeding', colony.seeding)
+    if (Math.abs(colony.meanOccupancy) > MAX_MEAN_OCCUPANCY)
+      return outOfRange('meanOccupancy', colony.meanOccupancy)
     if (colonies.some((other) => other.colony === colony.colony)) return outOfRange('colony', colony.colony)
     colonies.push(colony)
   }

@@ -1,10 +1,12 @@
 /** Hard limits of what crosses the wire. Whatever is larger is refused before it is looked at. */
 
 export const MAX_COLONIES = 64
+/** z̄ of a node, walkers: its square, summed over links, must stay exact. */
+export const MAX_MEAN_OCCUPANCY = 2 ** 20
 /** Orders carry lists of refused agents; a rehearsal may exclude a tenth of ten thousand of them. */
 export const MAX_ORDERS_BYTES = 256 * 1024
 export const MAX_FRAME_BYTES = MAX_ORDERS_BYTES + 16 * 1024
-/** Hello and proof: nothing larger is read from an end that has not proved itself. */
+/** Hello and proof: an end that sends a larger message before it has proved itself is closed with `too-large`. */
 export const MAX_HANDSHAKE_BYTES = 8 * 1024
 export const MAX_PASS_CHARS = 4 * 1024
 export const MAX_LABELS = 32

@@ -4,7 +4,10 @@ import { MAX_COLONIES, MAX_REFUSED, MAX_THRESHOLDS } from './limits'
 
 /** z.number() refuses NaN and the infinities by itself. */
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
-const milliseconds = z.number().int().min(1).max(3_600_000)
+/** Wide enough for every pace, narrow enough that no orders can stop an agent's clock or make one tick endless. */
+const tick = z.number().int().min(1).max(5_000)
+const interval = z.number().int().min(1).max(60_000)
+const MOST_LINK_TIME_PER_TICK = 4
 const rate = z.number().min(-1e6).max(1e6)
 
 const colonyOrdersSchema = z.object({
@@ -35,13 +38,19 @@ const sweepOrdersSchema = z.object({
 export const ordersSchema: z.ZodType<Orders> = z
   .object({
     sequence: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
-    pace: z.object({ tickMs: milliseconds, intervalMs: milliseconds }),
+    pace: z.object({ tickMs: tick, intervalMs: interval }),
     linkTimePerSecond: z.number().min(0).max(1e6),
     colonies: z.array(colonyOrdersSchema).max(MAX_COLONIES),
     sweep: sweepOrdersSchema.nullable(),
     disclosure: z.enum(DISCLOSURES),
     shareLimit: z.number().min(0).max(1),
   })
+  .refine(
+    ({ linkTimePerSecond, pace }) => (linkTimePerSecond * pace.tickMs) / 1000 <= MOST_LINK_TIME_PER_TICK,
+    {
+      message: 'more link time per tick than can be walked',
+    },
+  )
   .refine(
     (orders) => new Set(orders.colonies.map((colony) => colony.colony)).size === orders.colonies.length,
     {

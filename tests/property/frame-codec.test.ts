@@ -49,7 +49,7 @@ test('20,000 random and mutated frames are decoded or refused, never thrown at',
     expect(frame.weight).toBeLessThanOrEqual(1)
   }
   // Both ends of the fuzz must have been exercised, or it shows nothing.
-  expect(accepted).toBeGreaterThan(1_000)
+  expect(accepted).toBeGreaterThan(300)
   expect(refused).toBeGreaterThan(10_000)
 })
 

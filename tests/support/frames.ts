@@ -51,7 +51,7 @@ const colonyFrame: fc.Arbitrary<ColonyFrame> = fc.record({
   receivedX: count,
   receivedY: count,
   // The codec keeps z̄ in steps of 1/1024.
-  meanOccupancy: fc.integer({ min: -(2 ** 51), max: 2 ** 51 }).map((steps) => steps / 1024),
+  meanOccupancy: fc.integer({ min: -(2 ** 30), max: 2 ** 30 }).map((steps) => steps / 1024),
 })
 
 /** Any frame the codec keeps exactly. */

@@ -60,6 +60,8 @@ export function watch(simulation: Simulation, ms: number, exact = exactLambda2(s
   }
   simulation.run(ms)
   simulation.onEstimate = null
+  // Bounds on no readings would hold whatever happened.
+  if (ratios.length === 0) throw new Error(`no reading in ${ms} ms: ${withheld} withheld`)
   const mean = ratios.reduce((sum, ratio) => sum + ratio, 0) / ratios.length
   return { ratios, mean, least: Math.min(...ratios), most: Math.max(...ratios), withheld, fresh }
 }

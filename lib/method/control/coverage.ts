@@ -18,16 +18,16 @@ export interface Coverage {
   walkersHeard: number
 }
 
-export function coverageOf(snapshot: Snapshot, intervalMs: number): Coverage {
+/** @param seedings the present ones: walkers of older seedings are of no account */
+export function coverageOf(snapshot: Snapshot, intervalMs: number, seedings: ReadonlySet<number>): Coverage {
   const heard = heardAgents(snapshot, intervalMs)
   const prompt = heard.filter(({ last }) => snapshot.atMs - last.receivedAtMs <= lateMs(intervalMs))
+  const heldBy = ({ last }: Snapshot['agents'][number]): number =>
+    (last?.report.sums.colonies ?? [])
+      .filter(({ seeding }) => seedings.has(seeding))
+      .reduce((sum, { heldX, heldY }) => sum + heldX + heldY, 0)
   const held = (agents: readonly Snapshot['agents'][number][]): number =>
-    agents.reduce(
-      (sum, agent) =>
-        sum +
-        (agent.last?.report.sums.colonies.reduce((all, { heldX, heldY }) => all + heldX + heldY, 0) ?? 0),
-      0,
-    )
+    agents.reduce((sum, agent) => sum + heldBy(agent), 0)
   const all = held(snapshot.agents)
   const sum = (pick: (agent: (typeof heard)[number]) => number): number =>
     heard.reduce((total, agent) => total + pick(agent), 0)
@@ -46,6 +46,10 @@ export function coverageOf(snapshot: Snapshot, intervalMs: number): Coverage {
   }
 }
 
-export function isEnough(coverage: Coverage): boolean {
-  return coverage.prompt >= LEAST_HEARD * coverage.joined && coverage.walkersHeard >= LEAST_HEARD
+export function areAgentsEnough({ prompt, joined }: Coverage): boolean {
+  return prompt >= LEAST_HEARD * joined
+}
+
+export function areWalkersEnough({ walkersHeard }: Coverage): boolean {
+  return walkersHeard >= LEAST_HEARD
 }

@@ -2,13 +2,19 @@ import type { ColonyOrders, Orders } from '../orders'
 import type { Random } from '../random'
 import { noteDrift } from './alignment'
 import { noteBound } from './bound'
-import { type Coverage, coverageOf, isEnough } from './coverage'
+import { areAgentsEnough, areWalkersEnough, type Coverage, coverageOf } from './coverage'
 import { bestCut, THRESHOLDS } from './cut'
 import { intervalOf, isSettled, RITZ_KEPT } from './interval'
-import { nextLinkTimePerSecond } from './law'
+import {
+  COLD_LOOP_GAIN,
+  firstLinkTimePerSecond,
+  LOOP_GAIN,
+  nextLinkTimePerSecond,
+  walkingLambda,
+} from './law'
 import { type Seeder, seedColony, steerColony } from './populations'
 import { RENEWAL_INTERVALS } from './renewal'
-import { heardAgents, type Snapshot } from './snapshot'
+import { heardAgents, heldMs, type Snapshot } from './snapshot'
 import type { ColonyControl, ControlSettings, ControlState, CutCount } from './state'
 import { combinationOf, gather, ritzOf } from './subspace'
 
@@ -19,12 +25,23 @@ export const LEAST_AGE_INTERVALS = 4
 export const COLD_LEAST_AGE_INTERVALS = 2
 /** Walkers are first placed when the number of attached agents has stood still this long. */
 export const STILL_INTERVALS = 2
+/**
+ * This long after a cold start walking is hastened, and readings are settling where no single cut is weakest: they come
+ * down slowly there and may stand still for a while above the truth.
+ */
+export const COLD_INTERVALS = 25
 /** A young colony that lowers the Ritz value by more than this shows that the old ones are set in an old cut. */
 export const LOWERED = 0.05
 /** Second Ritz value over first under which no single cut is weakest. */
 export const NEAR = 1.2
 /** A combination is replaced at the latest after this long, counted or not. */
 export const COMBINATION_INTERVALS = 8
+
+/**
+ * Where enough agents are heard but most walkers stood at the others, they are waited for this many times as long as an agent
+ * is held; then the colonies start anew. One dead leaf that had gathered them would withhold the reading for ever.
+ */
+export const GIVE_UP_FACTOR = 2
 
 export type Withheld = 'unheard' | 'too-few-nodes' | 'starting'
 
@@ -64,15 +81,25 @@ export interface Evaluation {
 /** One round of the control loop: a plan from a snapshot. Pure. */
 export function evaluate(input: EvaluateInput): Evaluation {
   const { now, settings, sequence } = input
-  const coverage = coverageOf(now, settings.pace.intervalMs)
+  const { intervalMs } = settings.pace
+  const seedings = new Set(input.control.colonies.map(({ seeding }) => seeding))
+  const coverage = coverageOf(now, intervalMs, seedings)
   const attached =
     coverage.attached === input.control.attached.count
       ? input.control.attached
       : { count: coverage.attached, sinceMs: now.atMs }
+  const walkersGoneSinceMs =
+    areAgentsEnough(coverage) && !areWalkersEnough(coverage)
+      ? (input.control.walkersGoneSinceMs ?? now.atMs)
+      : null
+  const givenUp =
+    walkersGoneSinceMs !== null && now.atMs - walkersGoneSinceMs > GIVE_UP_FACTOR * heldMs(intervalMs)
   const control: ControlState = {
     ...input.control,
     sequence,
     attached,
+    walkersGoneSinceMs: givenUp ? null : walkersGoneSinceMs,
+    colonies: givenUp ? [] : input.control.colonies,
     meanWeightedDegree: coverage.meanWeightedDegree || input.control.meanWeightedDegree,
   }
   const withheld = whyWithheld(control, coverage, now.atMs, settings)
@@ -93,7 +120,8 @@ function whyWithheld(
   atMs: number,
   { pace }: ControlSettings,
 ): Withheld | null {
-  if (coverage.joined > 0 && !isEnough(coverage)) return 'unheard'
+  if (coverage.joined > 0 && !areAgentsEnough(coverage)) return 'unheard'
+  if (control.colonies.length > 0 && !areWalkersEnough(coverage)) return 'unheard'
   if (coverage.attached < 2) return 'too-few-nodes'
   const still = atMs - control.attached.sinceMs >= STILL_INTERVALS * pace.intervalMs
   return control.colonies.length === 0 && !still ? 'starting' : null
@@ -109,7 +137,14 @@ function steer(control: ControlState, input: EvaluateInput): ControlState {
   const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, random }
   if (control.colonies.length === 0) {
     const colonies = Array.from({ length: settings.colonies }, (_, slot) => seedColony(slot, null, seeder))
-    return { ...control, colonies, renewedAtMs: now.atMs, coldSinceMs: now.atMs, ritz: [] }
+    return {
+      ...control,
+      colonies,
+      renewedAtMs: now.atMs,
+      coldSinceMs: now.atMs,
+      ritz: [],
+      linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, settings.pace),
+    }
   }
   if (!before) return control
   const colonies = control.colonies.map((colony) =>
@@ -167,13 +202,18 @@ function read(control: ControlState, input: EvaluateInput, coverage: Coverage): 
   const lambda2 = result?.values[0] ?? null
   const ritz =
     lambda2 === null ? control.ritz : [...control.ritz, { atMs: now.atMs, value: lambda2 }].slice(-RITZ_KEPT)
-  // Before the first Ritz value the cross-check still counts the kills of the random start: ω would collapse on it.
-  const slowest = lambda2 === null ? null : Math.min(lambda2, crossCheck ?? lambda2)
+  const slowest = lambda2 === null ? null : walkingLambda(lambda2, crossCheck)
+  const isCold = now.atMs - control.coldSinceMs < COLD_INTERVALS * pace.intervalMs
   const next: ControlState = {
     ...control,
     drifts,
     ritz,
-    linkTimePerSecond: nextLinkTimePerSecond(control.linkTimePerSecond, slowest, pace),
+    linkTimePerSecond: nextLinkTimePerSecond(
+      control.linkTimePerSecond,
+      slowest,
+      pace,
+      isCold ? COLD_LOOP_GAIN : LOOP_GAIN,
+    ),
   }
   const isYoung = ({ seededAtMs }: ColonyControl): boolean =>
     seededAtMs === control.renewedAtMs && seededAtMs > control.coldSinceMs
@@ -220,7 +260,7 @@ function read(control: ControlState, input: EvaluateInput, coverage: Coverage): 
       high: interval?.high ?? null,
       lambda3AtMost: second,
       crossCheck,
-      settling: lowered || !isSettled(ritz.map(({ value }) => value)),
+      settling: lowered || (isCold && singleCut === false) || !isSettled(ritz.map(({ value }) => value)),
       singleCut,
       cut: next.cut,
       coverage,

@@ -2,6 +2,7 @@ import type { Disclosure, SweepOrders } from '../orders'
 import type { Pace } from '../pace'
 import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
+import { firstLinkTimePerSecond } from './law'
 
 export const COLONIES = 5
 export const WALKERS_PER_NODE = 200
@@ -63,13 +64,15 @@ export interface ControlState {
   bounds: Bound[]
   attached: { count: number; sinceMs: number }
   meanWeightedDegree: number
+  /** Since when walkers are missing though agents are not; null while they are not. */
+  walkersGoneSinceMs: number | null
   drifts: ColonyDrift[]
 }
 
 export function initialControl(atMs: number, pace: Pace): ControlState {
   return {
     sequence: 0,
-    linkTimePerSecond: startingLinkTimePerSecond(pace),
+    linkTimePerSecond: firstLinkTimePerSecond(0, pace),
     colonies: [],
     renewedAtMs: atMs,
     ritz: [],
@@ -80,11 +83,7 @@ export function initialControl(atMs: number, pace: Pace): ControlState {
     bounds: [],
     attached: { count: 0, sinceMs: atMs },
     meanWeightedDegree: 0,
+    walkersGoneSinceMs: null,
     drifts: [],
   }
-}
-
-/** ω before anything is known of λ₂: what the control loop would choose for λ₂ = ½. */
-function startingLinkTimePerSecond(pace: Pace): number {
-  return (0.3 * 1000) / (0.5 * 2 * pace.intervalMs)
 }

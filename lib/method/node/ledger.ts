@@ -31,9 +31,16 @@ export function openLedger(seeding: number): Ledger {
   }
 }
 
-export type LedgerFault = 'sent-fell' | 'acknowledgement-fell' | 'acknowledged-more-than-sent'
+/** No honest neighbour sends more walkers than this in one frame. */
+export const MOST_ARRIVING = 2 ** 31
 
-/** What a colony frame from the newest-numbered frame so far may not say. An overtaken frame may say less. */
+export type LedgerFault =
+  | 'sent-fell'
+  | 'acknowledgement-fell'
+  | 'acknowledged-more-than-sent'
+  | 'too-many-arriving'
+
+/** What a colony frame from the newest-numbered frame so far may not say. An overtaken frame may say less, never more. */
 export function ledgerFault(ledger: Ledger, frame: ColonyFrame): LedgerFault | null {
   if (frame.receivedX > ledger.sentX || frame.receivedY > ledger.sentY) return 'acknowledged-more-than-sent'
   if (frame.receivedX < ledger.acknowledgedX || frame.receivedY < ledger.acknowledgedY) {
@@ -41,6 +48,11 @@ export function ledgerFault(ledger: Ledger, frame: ColonyFrame): LedgerFault | n
   }
   if (frame.sentX < ledger.receivedX || frame.sentY < ledger.receivedY) return 'sent-fell'
   return null
+}
+
+/** True for any frame, overtaken or not: what no population explains. */
+export function isFlood(ledger: Ledger, frame: ColonyFrame): boolean {
+  return frame.sentX - ledger.receivedX > MOST_ARRIVING || frame.sentY - ledger.receivedY > MOST_ARRIVING
 }
 
 /** Takes in what is new in a frame, whatever its age. @returns walkers that arrive. */

@@ -5,6 +5,9 @@ import { isSettled, openLedger } from './ledger'
 export const UNACKNOWLEDGED_MS = 1_500
 export const UNACKNOWLEDGED_TICKS = 5
 
+/** A link that no connection has carried for this long is closed, and forgotten with its last ledger. */
+export const FORGET_MS = 600_000
+
 export type LinkState = 'open' | 'closing' | 'closed'
 
 /** One neighbour as this incarnation knows it. Ledgers outlive sockets, and removals until the next seeding. */
@@ -20,6 +23,8 @@ export interface Link {
   heardNumber: number
   acknowledgedNumber: number
   acknowledgedAtMs: number
+  /** When a connection last carried frames to the peer. */
+  carriedAtMs: number
   peerOrdersSequence: number
   peerOrdersAtMs: number
   /** The peer does not get orders by itself, so each new one is passed on at once. */
@@ -41,6 +46,7 @@ export function openLink(peer: string, peerIncarnation: string, nowMs: number): 
     heardNumber: 0,
     acknowledgedNumber: 0,
     acknowledgedAtMs: nowMs,
+    carriedAtMs: nowMs,
     peerOrdersSequence: 0,
     peerOrdersAtMs: nowMs,
     passesOrders: false,
@@ -51,11 +57,15 @@ export function openLink(peer: string, peerIncarnation: string, nowMs: number): 
   }
 }
 
+/** How long the other end may leave frames unacknowledged. */
+export function unacknowledgedLimitMs(tickMs: number): number {
+  return Math.max(UNACKNOWLEDGED_MS, UNACKNOWLEDGED_TICKS * tickMs)
+}
+
 /** Agreed weight now: 0 unless the link is open, heard and acknowledged in time. */
 export function liveWeight(link: Link, nowMs: number, tickMs: number): number {
   if (link.state !== 'open' || link.peerClosing || link.heardNumber === 0) return 0
-  const limitMs = Math.max(UNACKNOWLEDGED_MS, UNACKNOWLEDGED_TICKS * tickMs)
-  if (nowMs - link.acknowledgedAtMs > limitMs) return 0
+  if (nowMs - link.acknowledgedAtMs > unacknowledgedLimitMs(tickMs)) return 0
   return Math.min(link.ownWeight, link.heardWeight)
 }
 

@@ -5,8 +5,17 @@ import { type NodeFacts, type Report, SUMS_SCALE } from '../report'
 import { average, type Colony, dropAll, type Exits, openColony, place, walk } from './colony'
 import { CoarseValue, namedLinks, type ValuedLink } from './facts'
 import { notePeerOrders, shouldPassOrders } from './gossip'
-import { type LedgerFault, ledgerFault, settle } from './ledger'
-import { isWoundUp, type Link, type LinkState, ledgerFor, liveWeight, openLink } from './link'
+import { isFlood, type LedgerFault, ledgerFault, settle } from './ledger'
+import {
+  FORGET_MS,
+  isWoundUp,
+  type Link,
+  type LinkState,
+  ledgerFor,
+  liveWeight,
+  openLink,
+  unacknowledgedLimitMs,
+} from './link'
 import { colonySums, energiesAndMoments, fiedlerValue, type MeasuredLink, sweepSums } from './sums'
 import { TimeDebt } from './time-debt'
 
@@ -53,6 +62,9 @@ export class WalkNode {
   private ordersIssuedAtMs = 0
   private consents: boolean
   private startedAtMs: number | null = null
+  private tickedAtMs: number | null = null
+  /** Ticked time without a live link. */
+  private detachedMs = 0
   private reports = 0
 
   constructor({ random }: WalkNodeComponents, init: WalkNodeInit) {
@@ -122,6 +134,9 @@ export class WalkNode {
     const wanted = new Set(orders.colonies.map((colony) => colony.colony))
     for (const slot of [...this.colonies.keys()]) if (!wanted.has(slot)) this.discard(slot)
     for (const colonyOrders of orders.colonies) this.adoptColony(colonyOrders, nowMs)
+    for (const { peer, state, ledgers } of [...this.links.values()]) {
+      if (state === 'closed' && ledgers.size === 0) this.links.delete(peer)
+    }
     return true
   }
 
@@ -150,14 +165,23 @@ export class WalkNode {
     for (const link of this.links.values()) link.ledgers.delete(slot)
   }
 
-  /** Walks what is due and says one frame per link that is not closed. */
-  tick(nowMs: number): { peer: string; frame: Frame }[] {
+  /**
+   * Walks what is due and says one frame per link that is not closed.
+   * @param isCarried whether a connection to the peer is there; frames for others are not made
+   */
+  tick(nowMs: number, isCarried: (peer: string) => boolean = () => true): { peer: string; frame: Frame }[] {
     this.startedAtMs ??= nowMs
+    this.forgiveOwnGap(nowMs)
     if (this.isFrozen(nowMs)) this.debt.drop(nowMs)
     else this.walkDue(this.orders!, nowMs)
     const frames: { peer: string; frame: Frame }[] = []
     for (const link of this.links.values()) {
       if (link.state === 'closed') continue
+      if (isCarried(link.peer)) link.carriedAtMs = nowMs
+      else {
+        if (nowMs - link.carriedAtMs > FORGET_MS) link.state = 'closed'
+        continue
+      }
       const last = link.state === 'closing' && isWoundUp(link)
       frames.push({ peer: link.peer, frame: this.frameFor(link, nowMs) })
       if (last) link.state = 'closed'
@@ -165,15 +189,25 @@ export class WalkNode {
     return frames
   }
 
+  /** Acknowledgements that wait unread while this process itself stood still are not the neighbours' fault. */
+  private forgiveOwnGap(nowMs: number): void {
+    const tickMs = this.orders?.pace.tickMs ?? 0
+    const gapMs = this.tickedAtMs === null ? 0 : nowMs - this.tickedAtMs
+    this.tickedAtMs = nowMs
+    const excessMs = Math.max(0, gapMs - tickMs)
+    for (const link of this.links.values()) link.acknowledgedAtMs += excessMs
+    this.detachedMs += Math.min(Math.max(0, gapMs), tickMs)
+  }
+
   private walkDue(orders: Orders, nowMs: number): void {
     const dueMs = this.debt.due(nowMs, orders.pace.tickMs)
     const linkTime = (orders.linkTimePerSecond * dueMs) / 1000
     const live = this.liveLinks(nowMs)
+    if (live.length > 0) this.detachedMs = 0
+    const detached = this.detachedMs > unacknowledgedLimitMs(orders.pace.tickMs)
     for (const colony of this.colonies.values()) {
-      if (live.length === 0 || colony.refuses) {
-        dropAll(colony)
-        continue
-      }
+      if (detached || colony.refuses) dropAll(colony)
+      if (live.length === 0 || colony.refuses) continue
       place(colony)
       if (linkTime === 0) continue
       const exits = exitsFor(live, colony)
@@ -248,11 +282,10 @@ export class WalkNode {
       if (!colony || colony.orders.seeding !== part.seeding) return []
       return [{ part, colony, ledger: ledgerFor(link, part.colony, part.seeding) }]
     })
-    if (newest) {
-      for (const { part, ledger } of parts) {
-        const fault = ledgerFault(ledger, part)
-        if (fault) return { kind: 'refuse', reason: fault }
-      }
+    for (const { part, ledger } of parts) {
+      if (isFlood(ledger, part)) return { kind: 'refuse', reason: 'too-many-arriving' }
+      const fault = newest ? ledgerFault(ledger, part) : null
+      if (fault) return { kind: 'refuse', reason: fault }
     }
     for (const { part, colony, ledger } of parts) {
       const { x, y } = settle(ledger, part)

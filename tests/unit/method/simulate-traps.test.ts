@@ -4,7 +4,7 @@
  */
 import { describe, expect, it, vi } from 'vitest'
 import { edgesOf, fromEdges } from '@/lib/method/graph'
-import { hubOnRegular, twoClusters } from '@/lib/method/graphs'
+import { hubOnRegular, randomRegular, twoClusters } from '@/lib/method/graphs'
 import { createRandom } from '@/lib/method/random'
 import type { Simulation } from '@/lib/method/simulate'
 import { exactLambda2, simulateOn, watch } from '../../support/overlays'
@@ -74,13 +74,21 @@ describe('late and stalled agents', () => {
 })
 
 describe('hubs', () => {
-  it('settles with a hub of degree 200, within 5 % after two minutes', () => {
+  it('comes within 5 % for good in at most 60 s from the first placing, by the median of three seeds', {
+    timeout: 60_000,
+  }, () => {
     const hub = hubOnRegular({ nodes: 200, degree: 4, hubDegree: 200 }, createRandom('hub'))
-    const simulation = simulateOn(hub, 'hub')
-    simulation.run(120_000)
-    const course = watch(simulation, 10_000)
-    expect(course.least).toBeGreaterThan(0.95)
-    expect(course.most).toBeLessThan(1.05)
+    const seconds = ['1', '2', '3'].map((seed) => {
+      const simulation = simulateOn(hub, seed)
+      const exact = exactLambda2(simulation)
+      let lastOffMs = 0
+      simulation.onEstimate = ({ atMs, lambda2 }) => {
+        if (lambda2 === null || Math.abs(lambda2 / exact - 1) > 0.05) lastOffMs = atMs
+      }
+      simulation.run(110_000)
+      return (lastOffMs - simulation.control.coldSinceMs) / 1000
+    })
+    expect(seconds.sort((a, b) => a - b)[1]!).toBeLessThanOrEqual(60)
   })
 })
 
@@ -157,6 +165,20 @@ describe('silence', () => {
     expect(simulation.estimate!.coverage).toMatchObject({ joined: 36, heard: 33 })
     expect(course.least).toBeGreaterThan(0.85)
     expect(course.most).toBeLessThan(1.15)
+  })
+})
+
+describe('a dead leaf', () => {
+  it('that had gathered the walkers withholds the reading for a while, not for ever', () => {
+    const mesh = edgesOf(randomRegular(36, 8, createRandom('mesh')))
+    const simulation = simulateOn(fromEdges(37, [...mesh, [0, 36]]), 'leaf')
+    simulation.run(WARM_UP_MS)
+    simulation.stop(36)
+    simulation.run(110_000)
+    const course = watch(simulation, 40_000)
+    expect(course.withheld).toBe(0)
+    expect(course.least).toBeGreaterThan(0.93)
+    expect(course.most).toBeLessThan(1.1)
   })
 })
 

@@ -145,6 +145,59 @@ describe('an agent', () => {
     expect(pair.a.report(pair.nowMs, HOST).sums.attached).toBe(0)
   })
 
+  it('keeps its walkers when it was itself held up, and its neighbours’ frames still wait unread', () => {
+    const pair = new Pair()
+    pair.adopt(orders(1, { encounterRate: 0 }))
+    for (let tick = 0; tick < 10; tick++) pair.step()
+    pair.adopt(orders(2, { encounterRate: 0 }))
+    pair.nowMs += 1_700
+    const frames = [pair.a, pair.b].map((node) => node.tick(pair.nowMs)[0]!.frame)
+    pair.b.receive('tar-01', 'a1', frames[0]!, pair.nowMs)
+    pair.a.receive('gul-04', 'b1', frames[1]!, pair.nowMs)
+    for (let tick = 0; tick < 5; tick++) pair.step()
+    expect(pair.a.report(pair.nowMs, HOST).sums.colonies[0]!.counters.dropped).toBe(0)
+    expect(pair.b.report(pair.nowMs, HOST).sums.colonies[0]!.counters.dropped).toBe(0)
+  })
+
+  it('drops its walkers once it has been without a live link for 1.5 s', () => {
+    const pair = new Pair()
+    pair.adopt(orders(1, { encounterRate: 0 }))
+    for (let tick = 0; tick < 10; tick++) pair.step()
+    for (let tick = 0; tick < 20; tick++) {
+      pair.nowMs += pace.tickMs
+      pair.a.tick(pair.nowMs)
+      pair.a.adopt(orders(tick + 2, { encounterRate: 0 }), 0, pair.nowMs)
+    }
+    expect(pair.a.held()).toEqual([{ colony: 0, seeding: 1, x: 0, y: 0 }])
+  })
+
+  it('makes no frames for a neighbour without a connection, and forgets it after ten minutes', () => {
+    const pair = new Pair()
+    pair.adopt(orders(1))
+    pair.step()
+    for (let minute = 0; minute < 11; minute++) {
+      pair.nowMs += 60_000
+      expect(pair.a.tick(pair.nowMs, () => false)).toEqual([])
+    }
+    expect(pair.a.linkState('gul-04')).toBe('closed')
+    pair.a.adopt(orders(2, { seeding: 2 }), 0, pair.nowMs)
+    expect(pair.a.linkState('gul-04')).toBe('unknown')
+  })
+
+  it('refuses more walkers than any population explains, in an overtaken frame too', () => {
+    const pair = new Pair()
+    pair.adopt(orders(1))
+    for (let tick = 0; tick < 10; tick++) pair.step()
+    const { fromA } = pair.step()
+    for (const number of [fromA!.number + 1, fromA!.number - 1]) {
+      const flood = { ...fromA!, number, colonies: [{ ...fromA!.colonies[0]!, sentX: 2 ** 52 }] }
+      expect(pair.b.receive('tar-01', 'a1', flood, pair.nowMs)).toEqual({
+        kind: 'refuse',
+        reason: 'too-many-arriving',
+      })
+    }
+  })
+
   it('refuses a frame that acknowledges more than was sent, and one that takes back what it sent', () => {
     const pair = new Pair()
     pair.adopt(orders(1))
