@@ -156,6 +156,11 @@ export class Agent {
     if (this.init.listen) {
       this.listening = await transport.listen(this.init.listen, (connection) => this.links.accept(connection))
     }
+    if (this.stopping.signal.aborted) {
+      // Stopped while the address was being taken, when there was nothing to close yet.
+      await this.listening?.close()
+      return
+    }
     signal?.addEventListener('abort', () => void this.stop(), { once: true })
     for (const neighbour of this.init.neighbours ?? []) this.links.addNeighbour(neighbour)
     this.ticks.start()
@@ -185,6 +190,7 @@ export class Agent {
   /**
    * The node's own view of a link, 0 (down) to 1, by agent id or address.
    * @returns false where the overlay counts every link as 1
+   * @throws RangeError where the quality is outside of 0..1
    */
   setLinkQuality(key: string, quality: number): boolean {
     if (this.init.identity.weights === 'unit') return false
@@ -218,7 +224,8 @@ export class Agent {
   }
 
   private tick(): void {
-    this.links.deliver(this.node.tick(this.components.clock.monotonicMs()))
+    const isCarried = (peer: string) => this.links.isCarried(peer)
+    this.links.deliver(this.node.tick(this.components.clock.monotonicMs(), isCarried))
   }
 
   private async report(signal: AbortSignal): Promise<void> {

@@ -5,7 +5,7 @@ export const EXIT = {
   unexpected: 1,
   /** Unknown command or flag, or a value that cannot be right. */
   usage: 2,
-  /** The configuration is missing, unreadable or not one of this program. Enrol, or give --config. */
+  /** The configuration is missing, unreadable, not one of this program or cannot be written. The message says which. */
   config: 3,
   /** The collector refused: code used up or expired, agent revoked. The message says which. */
   refused: 4,

@@ -9,6 +9,8 @@ export const AgentStateSchema = defineEntity({
     agentId: p.uuid().primary(),
     overlayId: p.uuid(),
     incarnation: p.text(),
+    /** The one before: what still arrives of it is late. */
+    previousIncarnation: p.text().nullable(),
     reportNumber: p.bigint('number'),
     ordersSequence: p.bigint('number'),
     /** Only meaningful added up over agents: kept apart from the node's facts on purpose. */

@@ -8,6 +8,7 @@ import { describeTopologyProblem, parseEdgeList, parseNodeList } from '@/lib/top
 import { type FleetArguments, readFleetArguments, USAGE } from './fleet/arguments'
 import { obey } from './fleet/commands'
 import { createFleet, type Fleet } from './fleet/fleet'
+import { LineQueue } from './fleet/line-queue'
 
 /** Agents' clocks differ from the true time by up to this much either way. */
 const CLOCK_OFFSET_MS = 60_000
@@ -21,12 +22,15 @@ async function main(): Promise<number> {
   const fleet = await build(read.args)
   if (!fleet) return 2
   const stopping = new AbortController()
+  // At once: what a start or a command waits for may never come.
+  stopping.signal.addEventListener('abort', () => void fleet.stop(), { once: true })
   for (const name of ['SIGINT', 'SIGTERM'] as const) process.once(name, () => stopping.abort())
   try {
     print({ ok: true, command: 'ready', ...(await fleet.start()) })
   } catch (error) {
-    process.stderr.write(`${error instanceof Error ? error.message : String(error)}\n`)
     await fleet.stop()
+    if (stopping.signal.aborted) return 0
+    process.stderr.write(`${error instanceof Error ? error.message : String(error)}\n`)
     return 1
   }
   await listenToCommands(fleet, stopping.signal)
@@ -70,18 +74,15 @@ function clockWith(offsetMs: number) {
 
 /** One line after the other, until told to stop; the end of the input is not the end of the fleet. */
 async function listenToCommands(fleet: Fleet, signal: AbortSignal): Promise<void> {
-  let last = Promise.resolve()
+  const queue = new LineQueue({ obey: async (line) => print(await obey(fleet, line)) })
   const lines = createInterface({ input: process.stdin })
-  lines.on('line', (line) => {
-    if (line.trim() === '') return
-    last = last.then(async () => print(await obey(fleet, line)))
-  })
+  lines.on('line', (line) => queue.push(line))
   await new Promise<void>((resolve) => {
     if (signal.aborted) resolve()
     signal.addEventListener('abort', () => resolve(), { once: true })
   })
   lines.close()
-  await last
+  await queue.close()
 }
 
 function print(answer: object): void {

@@ -31,7 +31,8 @@ export class Reporter {
   private readonly components: ReporterComponents
   private readonly init: ReporterInit
   private session: { token: string; endsAtMs: number } | null = null
-  private skew = 0
+  /** The collector's time less the monotonic clock, which no correction of the wall clock moves; null at first. */
+  private offsetMs: number | null = null
 
   constructor(components: ReporterComponents, init: ReporterInit) {
     this.components = components
@@ -40,12 +41,13 @@ export class Reporter {
 
   /** How far the collector's clock is ahead of this program's, milliseconds. */
   get skewMs(): number {
-    return this.skew
+    return this.nowMs() - this.components.clock.epochMs()
   }
 
   /** The collector's time as well as it is known. */
   nowMs(): number {
-    return this.components.clock.epochMs() + this.skew
+    const { clock } = this.components
+    return this.offsetMs === null ? clock.epochMs() : clock.monotonicMs() + this.offsetMs
   }
 
   async deliver(report: Report, signal: AbortSignal): Promise<CollectorResult<ReportReply>> {
@@ -77,7 +79,7 @@ export class Reporter {
     }
     let result = await this.openSession(signal)
     if (!result.ok && result.error.code === 'refused' && result.error.problem.serverTime !== undefined) {
-      this.skew = Date.parse(result.error.problem.serverTime) - this.components.clock.epochMs()
+      this.offsetMs = Date.parse(result.error.problem.serverTime) - this.components.clock.monotonicMs()
       result = await this.openSession(signal)
     }
     return result.ok ? { ok: true, value: result.value.token } : result
@@ -95,7 +97,7 @@ export class Reporter {
     const { token, expiresAt, serverTime, pass, passExpiresAt } = result.value
     const nowMs = clock.monotonicMs()
     // The collector said its time about half way through the exchange.
-    this.skew = Date.parse(serverTime) + (nowMs - askedAtMs) / 2 - clock.epochMs()
+    this.offsetMs = Date.parse(serverTime) - (askedAtMs + nowMs) / 2
     const lastsMs = Date.parse(expiresAt) - Date.parse(serverTime)
     this.session = { token, endsAtMs: nowMs + Math.max(lastsMs / 2, lastsMs - RENEW_BEFORE_MS) }
     this.init.onPass({ pass, passExpiresAt })

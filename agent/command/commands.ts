@@ -1,13 +1,13 @@
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
-import { generateKeys, keysFromPem, pemOf } from '@/lib/protocol'
+import { generateKeys, type KeyPair, keysFromPem, pemOf } from '@/lib/protocol'
 import { createAgent } from '../agent'
 import type { Clock } from '../clock'
 import { describeCollectorError, mayRetry } from '../collector/client'
 import { createHttpCollector } from '../collector/http-client'
 import type { Post } from '../collector/post'
 import { Reporter } from '../collector/reporter'
-import { type AgentConfig, readConfig, writeConfig } from '../config'
+import { type AgentConfig, dropDraft, readConfig, renewPass, writeConfig } from '../config'
 import { enrol } from '../enrol'
 import { EXIT, type ExitCode } from '../exit-codes'
 import type { Logger } from '../logger'
@@ -36,14 +36,9 @@ export async function enrolCommand(
     components.complain('enrol needs --collector, --code and --name.')
     return EXIT.usage
   }
-  const present = await readConfig(options.config)
-  if (present.ok || present.error.code !== 'missing') {
-    components.complain(
-      `${options.config} is there already. Move it away to enrol anew, or give another --config.`,
-    )
-    return EXIT.alreadyEnrolled
-  }
-  const keys = generateKeys()
+  const draft = await draftOr(components, options)
+  if (!draft.ok) return draft.exit
+  const { keys } = draft
   const { post, clock, version } = components
   const client = createHttpCollector({ post, clock }, { baseUrl: collector })
   const address = options.address ?? addressOf(options)
@@ -53,7 +48,13 @@ export async function enrolCommand(
     signal,
   )
   if (!result.ok) {
-    components.complain(`Not enrolled: ${describeCollectorError(result.error)}`)
+    const isRefused = result.error.code === 'refused'
+    const sentences = [`Not enrolled: ${describeCollectorError(result.error)}`]
+    // Without an answer the code may be used up, for this key: trying again with it gets the answer that was lost.
+    if (!isRefused) sentences.push(`${options.config} keeps the key: the same command tries again with it.`)
+    else if (draft.isNew) await dropDraft(options.config)
+    else sentences.push(`${options.config} still holds the key of before: remove it to enrol with another.`)
+    components.complain(sentences.join('\n'))
     return result.error.code === 'refused' && !mayRetry(result.error) ? EXIT.refused : EXIT.unreachable
   }
   const { agentId, overlay, overlayKey, pace, weights, pass, passExpiresAt } = result.value
@@ -73,12 +74,35 @@ export async function enrolCommand(
     passExpiresAt,
     privateKey: pemOf(keys.privateKey),
   }
-  if (!(await writeConfig(options.config, config, { replace: false }))) {
-    components.complain(`${options.config} appeared meanwhile and was left as it is.`)
-    return EXIT.alreadyEnrolled
+  try {
+    await writeConfig(options.config, config, { replace: true })
+  } catch (error) {
+    components.complain(
+      `${options.config} cannot be completed: ${reasonOf(error)}. It keeps the key: enrol once more when that is mended.`,
+    )
+    return EXIT.config
   }
   components.say(`Enrolled as ${name} in ${overlay.name}. Configuration: ${options.config}`)
   return EXIT.ok
+}
+
+type DraftResult = { ok: true; keys: KeyPair; isNew: boolean } | { ok: false; exit: ExitCode }
+
+/** Keeps the key where the configuration will be, so that no code is used up for one that cannot be written. */
+async function draftOr({ complain }: CommandComponents, { config: path }: Options): Promise<DraftResult> {
+  const keys = generateKeys()
+  try {
+    if (await writeConfig(path, { privateKey: pemOf(keys.privateKey) }, { replace: false }))
+      return { ok: true, keys, isNew: true }
+  } catch (error) {
+    complain(`${path} cannot be written: ${reasonOf(error)}. The joining code was not used.`)
+    return { ok: false, exit: EXIT.config }
+  }
+  const present = await readConfig(path)
+  if (!present.ok && present.error.code === 'unfinished')
+    return { ok: true, keys: keysFromPem(present.error.draft.privateKey), isNew: false }
+  complain(`${path} is there already. Move it away to enrol anew, or give another --config.`)
+  return { ok: false, exit: EXIT.alreadyEnrolled }
 }
 
 /** ws://host:port of --listen, unless it listens on every address or on any port: that is no place to dial. */
@@ -95,7 +119,7 @@ export async function runCommand(
   const config = await configOr(components, options)
   if (!config) return EXIT.config
   const { clock, random, randomBytes, post, logger, version } = components
-  let kept = config
+  let kept = Promise.resolve()
   const agent = createAgent(
     {
       transport: createWsTransport({ clock }),
@@ -119,23 +143,24 @@ export async function runCommand(
       listen: options.listen ?? config.listen,
       neighbours: [...new Set([...config.neighbours, ...options.neighbours])].map((address) => ({ address })),
       onPass: (grant) => {
-        kept = { ...kept, ...grant }
-        // So that links open after a restart while the collector is away.
-        writeConfig(options.config, kept, { replace: true }).catch((error: unknown) =>
-          logger.warn({ reason: String(error) }, 'the renewed pass could not be kept'),
-        )
+        // So that links open after a restart while the collector is away. One after the other: the last one stays.
+        kept = kept.then(async () => {
+          const reason = await renewPass(options.config, config.agentId, grant).catch(reasonOf)
+          if (reason !== null) logger.warn({ reason }, 'the renewed pass could not be kept')
+        })
       },
     },
   )
   try {
     await agent.start()
   } catch (error) {
-    components.complain(`Cannot listen: ${error instanceof Error ? error.message : String(error)}`)
+    components.complain(`Cannot listen: ${reasonOf(error)}`)
     await agent.stop()
     return EXIT.listen
   }
   await aborted(signal)
   await agent.stop()
+  await kept
   return EXIT.ok
 }
 
@@ -187,10 +212,16 @@ async function configOr({ complain }: CommandComponents, options: Options): Prom
   if (result.ok) return result.config
   const { error } = result
   if (error.code === 'missing') complain(`${options.config} is not there. Enrol first, or give --config.`)
+  else if (error.code === 'unfinished')
+    complain(
+      `${options.config} was begun by an enrolment that did not finish. Enrol again, with the same --config.`,
+    )
   else if (error.code === 'unreadable') complain(`${options.config} cannot be read: ${error.reason}`)
   else complain(`${options.config} is no agent's configuration: ${error.issue}`)
   return null
 }
+
+const reasonOf = (error: unknown): string => (error instanceof Error ? error.message : String(error))
 
 function aborted(signal: AbortSignal): Promise<void> {
   if (signal.aborted) return Promise.resolve()

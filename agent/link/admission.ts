@@ -7,6 +7,8 @@ export interface AdmissionCase {
   isBanned: boolean
   acceptUnknown: boolean
   incarnation: string
+  /** This incarnation had a link and was replaced by another. */
+  isRetired: boolean
   /** When this connection was opened, counted over all connections of this program. */
   opened: number
   /** The newest incarnation seen of this peer, and when its connection was opened; null for the first. */
@@ -18,10 +20,12 @@ export interface AdmissionCase {
  *
  * Of two incarnations the one whose connection was opened later is the newer: a start of a program lived when its
  * connection was opened (it was dialed or accepted before, and signed our fresh nonce after), and two starts of one
- * agent do not live at once. A proof that arrives late from a start that has died since is thus told apart.
+ * agent do not live at once. A proof that arrives late from a start that has died since is thus told apart. Where two
+ * do live at once (one configuration copied), the one that was replaced stays out: they would take turns for ever.
  */
 export function judgeAdmission(candidate: AdmissionCase): CloseName | null {
   const { latest } = candidate
+  if (candidate.isRetired) return 'stale-incarnation'
   if (latest && latest.incarnation !== candidate.incarnation && candidate.opened < latest.opened) {
     return 'stale-incarnation'
   }

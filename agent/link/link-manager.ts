@@ -101,8 +101,10 @@ export class LinkManager implements SessionOwner {
     return true
   }
 
-  /** The node's own view of a link, 0 (down) to 1, by address or agent id. */
+  /** The node's own view of a link, 0 (down) to 1, by address or agent id. @throws RangeError outside */
   setQuality(key: string, quality: number): void {
+    // Before it is kept: it is used again inside a socket's event, where nobody could answer for it.
+    if (!(quality >= 0 && quality <= 1)) throw new RangeError(`a link's quality lies in 0..1, not ${quality}`)
     const neighbour = this.neighbours.find(key)
     if (neighbour) neighbour.quality = quality
     const peer = neighbour ? neighbour.agentId : key
@@ -119,6 +121,11 @@ export class LinkManager implements SessionOwner {
 
   isLinked(peer: string): boolean {
     return this.table.all.has(peer)
+  }
+
+  /** Whether a frame for a peer can be sent now. */
+  isCarried(peer: string): boolean {
+    return this.table.all.get(peer)?.carrier?.isOpen ?? false
   }
 
   status(): LinkStatus[] {
@@ -165,13 +172,15 @@ export class LinkManager implements SessionOwner {
 
   established(session: LinkSession, peer: LinkPeer): void {
     const { agentId, incarnation } = peer
+    const isRetired = this.components.node.isRetired(agentId, incarnation)
     this.unproven.delete(session)
     const neighbour = this.dialed.get(session)?.neighbour
     const isTold = neighbour !== undefined && this.dialers.has(neighbour)
     if (isTold) neighbour.agentId = agentId
     const latest = this.table.latestOf(agentId)
     // Nothing is left to settle with an end that has forgotten its side of it.
-    if (this.removals.has(agentId) && latest?.incarnation !== incarnation) this.endRemoval(agentId)
+    const isNewStart = !isRetired && latest?.incarnation !== incarnation
+    if (this.removals.has(agentId) && isNewStart) this.endRemoval(agentId)
     const isRemoving = this.removals.has(agentId)
     if (isTold && !isRemoving) this.neighbours.unban(agentId)
     const refusal = judgeAdmission({
@@ -181,6 +190,7 @@ export class LinkManager implements SessionOwner {
       isBanned: this.neighbours.isBanned(agentId) && !isRemoving,
       acceptUnknown: this.init.acceptUnknown,
       incarnation,
+      isRetired,
       opened: session.opened,
       latest,
     })
@@ -226,6 +236,9 @@ export class LinkManager implements SessionOwner {
     const reason = name ?? `closed with ${event.code}`
     const peer = session.peer?.agentId ?? null
     const wasLast = this.table.gone(session)
+    // The other end has settled or given up: what is left to say here has no connection to be said on.
+    const isOver = name === 'link-removed' && wasLast
+    if (isOver && peer !== null && this.components.node.linkState(peer) === 'closing') this.endRemoval(peer)
     const dialing = this.dialed.get(session)
     this.dialed.delete(session)
     if (dialing) {

@@ -47,6 +47,7 @@ export class LinkSession {
   private readonly timeoutMs: number
   private readonly owner: SessionOwner
   private closing: CloseName | null = null
+  private ended = false
   private cancelTimeout = () => {}
 
   constructor(
@@ -73,6 +74,7 @@ export class LinkSession {
     this.connection.attach({
       message: (bytes) => this.receive(bytes),
       closed: (event) => {
+        this.ended = true
         this.cancelTimeout()
         this.owner.closed(this, event, this.closing)
       },
@@ -81,7 +83,12 @@ export class LinkSession {
   }
 
   get isOpen(): boolean {
-    return this.peer !== null && this.closing === null
+    return this.peer !== null && !this.isOver
+  }
+
+  /** A pass may still be judged, or a message be on its way, when the connection is closing or gone. */
+  private get isOver(): boolean {
+    return this.ended || this.closing !== null
   }
 
   /** @returns false where the frame was left out because too many bytes wait already */
@@ -92,7 +99,7 @@ export class LinkSession {
   }
 
   close(name: CloseName, detail = ''): void {
-    if (this.closing) return
+    if (this.isOver) return
     this.closing = name
     this.cancelTimeout()
     const { code, sentence } = CLOSE[name]
@@ -100,7 +107,7 @@ export class LinkSession {
   }
 
   private receive(bytes: Uint8Array): void {
-    if (this.closing) return
+    if (this.isOver) return
     if (!this.peer) {
       this.act(this.handshake.receive(bytes))
       return
@@ -111,7 +118,7 @@ export class LinkSession {
 
   private act(effects: readonly HandshakeEffect[]): void {
     for (const effect of effects) {
-      if (this.closing) return
+      if (this.isOver) return
       switch (effect.kind) {
         case 'send':
           this.connection.send(effect.bytes)

@@ -2,7 +2,7 @@
 
 import { redirect } from 'next/navigation'
 import { z } from 'zod'
-import { firstRun, setPassword, signIn, signOut } from '@/lib/data'
+import { countAttempt, firstRun, setPassword, signIn, signOut } from '@/lib/data'
 import { firstRunSchema, newPasswordSchema, signInSchema } from '@/lib/data/dto'
 import { action, getRuntime, setCookie } from '@/lib/http'
 import { safeNext } from '@/lib/http/security-headers'
@@ -11,11 +11,15 @@ export const signInAction = action(
   'session.create',
   signInSchema.extend({ next: z.string().max(500).optional() }),
   async (call, { email, password, next }) => ({
-    cookie: await signIn(call, { throttle: await getRuntime().throttle() }, { email, password }),
+    cookie: await signIn(call, { email, password }),
+    attempt: { email, address: call.request.address },
     next: safeNext(next),
   }),
   {
-    after: async ({ cookie, next }) => {
+    before: async (call, { email }) =>
+      countAttempt(call, { throttle: await getRuntime().throttle() }, { email }),
+    after: async ({ cookie, attempt, next }) => {
+      await (await getRuntime().throttle()).clear(attempt)
       await setCookie(cookie)
       redirect(next)
     },

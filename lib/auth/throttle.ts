@@ -7,6 +7,8 @@ export const THROTTLE = {
   email: { attempts: 10, windowSeconds: 15 * 60 },
   /** Attempts from one network address, for whomever. */
   address: { attempts: 50, windowSeconds: 15 * 60 },
+  /** Attempts from all network addresses that no proxy vouches for, together. */
+  unknown: { attempts: 500, windowSeconds: 15 * 60 },
 } as const
 export type ThrottleKind = keyof typeof THROTTLE
 
@@ -17,11 +19,10 @@ export interface Attempt {
 
 /** What an attempt counts against. Keys are hashed: the table need not know who tried. */
 export function throttleKeys({ email, address }: Attempt): { kind: ThrottleKind; key: string }[] {
-  const keys: { kind: ThrottleKind; key: string }[] = [
+  return [
     { kind: 'email', key: sha256Hex(email.trim().toLowerCase()) },
+    address ? { kind: 'address', key: sha256Hex(address) } : { kind: 'unknown', key: 'all' },
   ]
-  if (address) keys.push({ kind: 'address', key: sha256Hex(address) })
-  return keys
 }
 
 /** Counts sign-in attempts in the database, so that all processes count together. */
@@ -39,10 +40,13 @@ export class SignInThrottle {
         points: THROTTLE[kind].attempts,
         duration: THROTTLE[kind].windowSeconds,
       })
-    this.#limiters = { email: limiter('email'), address: limiter('address') }
+    this.#limiters = { email: limiter('email'), address: limiter('address'), unknown: limiter('unknown') }
   }
 
-  /** Counts the attempt before the password is looked at. Null: go on; else the seconds to wait. */
+  /**
+   * Counts the attempt before the password is looked at, on connections of the shared pool: whoever asks must
+   * hold none, or callers would wait for each other for ever. Null: go on; else the seconds to wait.
+   */
   async count(attempt: Attempt): Promise<number | null> {
     const waits = await Promise.all(
       throttleKeys(attempt).map(({ kind, key }) =>
@@ -59,7 +63,7 @@ export class SignInThrottle {
     return longest === 0 ? null : longest
   }
 
-  /** A success clears what was counted against the e-mail address; the network address keeps its count. */
+  /** A success clears what was counted against the e-mail address; the network address keeps its count. As for `count`. */
   async clear(attempt: Attempt): Promise<void> {
     for (const { kind, key } of throttleKeys(attempt))
       if (kind === 'email') await this.#limiters.email.delete(key)

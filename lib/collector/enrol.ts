@@ -5,11 +5,11 @@ import { stateOf, takeJoiningCode } from '@/lib/data/joining-codes'
 import { notify } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
+import { assertStorable } from '@/lib/http/storable'
 import { type EnrolReply, type EnrolRequest, enrolText, verifyText } from '@/lib/protocol'
 import { LEADERS_CHANNEL, tell } from './notices'
 import { grantPass } from './passes'
 import { query } from './query'
-import { assertStorable } from './storable'
 
 export interface Enrolment {
   /** False where the same key enrolled under the same name before. */

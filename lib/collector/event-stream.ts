@@ -37,6 +37,7 @@ export function eventStream(
       }
       const due = new Set<FeedEvent>()
       let saying = false
+      let noticed = false
       /** One at a time: notices that come meanwhile are answered by one further look. */
       const sayDue = async () => {
         if (saying) return
@@ -48,6 +49,9 @@ export function eventStream(
       }
       const beat = () => {
         say(': still here\n\n')
+        // Whoever has stopped evaluating sends no notice of it: without any, the reading's age is looked at.
+        if (!noticed) note('reading')
+        noticed = false
         if (!closing.signal.aborted) cancelBeat = clock.after(HEARTBEAT_MS, beat)
       }
       let cancelBeat = clock.after(HEARTBEAT_MS, beat)
@@ -65,7 +69,11 @@ export function eventStream(
         // A look that fails ends the stream: the browser comes back and sees where things stand.
         sayDue().catch(end)
       }
-      listen(note, closing.signal).then(() => note('reading'), end)
+      const hear = (event: FeedEvent) => {
+        noticed ||= event === 'reading'
+        note(event)
+      }
+      listen(hear, closing.signal).then(() => note('reading'), end)
     },
     cancel() {
       closing.abort()

@@ -16,6 +16,7 @@ export interface Sender {
   expired: boolean
   passExpiresAtMs: number | null
   incarnation: string | null
+  previousIncarnation: string | null
   number: number | null
 }
 
@@ -33,7 +34,7 @@ export async function findSenders(
        o.team_id as "teamId", a.name, a.public_key as "publicKey", a.state, o.disclosure,
        s.expires_at <= clock_timestamp() as expired,
        ${epochMs('s.pass_expires_at')} as "passExpiresAtMs",
-       h.incarnation, h.report_number as number
+       h.incarnation, h.previous_incarnation as "previousIncarnation", h.report_number as number
      from agent_sessions s
      join agents a on a.id = s.agent_id
      join overlays o on o.id = a.overlay_id
@@ -51,18 +52,27 @@ export async function findHeld(
   agentIds: readonly string[],
 ): Promise<Map<string, HeldReport>> {
   if (agentIds.length === 0) return new Map()
-  const rows = await query<{ id: string; incarnation: string; number: number | string; sums: Sums }>(
+  const rows = await query<HeldRow>(
     em,
-    `select agent_id as id, incarnation, report_number as number, sums from agent_states
+    `select agent_id as id, incarnation, previous_incarnation as "previousIncarnation",
+       report_number as number, sums from agent_states
      where agent_id in (${list(agentIds)})`,
     agentIds,
   )
   return new Map(
-    rows.map(({ id, incarnation, number, sums }) => [
+    rows.map(({ id, incarnation, previousIncarnation, number, sums }) => [
       id,
-      { incarnation, number: Number(number), colonies: sums.colonies },
+      { incarnation, previousIncarnation, number: Number(number), colonies: sums.colonies },
     ]),
   )
+}
+
+interface HeldRow {
+  id: string
+  incarnation: string
+  previousIncarnation: string | null
+  number: number | string
+  sums: Sums
 }
 
 export interface StateRow {
@@ -84,10 +94,13 @@ export async function storeStates(em: EntityManager, rows: readonly StateRow[]):
        (agent_id, overlay_id, incarnation, report_number, orders_sequence, sums, node, received_at)
      values ${values.join(', ')}
      on conflict (agent_id) do update set overlay_id = excluded.overlay_id,
-       incarnation = excluded.incarnation, report_number = excluded.report_number,
+       incarnation = excluded.incarnation, previous_incarnation =
+         case when held.incarnation = excluded.incarnation then held.previous_incarnation else held.incarnation end,
+       report_number = excluded.report_number,
        orders_sequence = excluded.orders_sequence, sums = excluded.sums, node = excluded.node,
        received_at = excluded.received_at
-     where held.incarnation <> excluded.incarnation or held.report_number < excluded.report_number`,
+     where case when held.incarnation = excluded.incarnation then held.report_number < excluded.report_number
+       else held.previous_incarnation is distinct from excluded.incarnation end`,
     ordered.flatMap(({ agentId, overlayId, report }) => [
       agentId,
       overlayId,

@@ -3,15 +3,15 @@ import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
+import { assertStorable } from '@/lib/http/storable'
 import type { Report } from '@/lib/method/report'
 import type { PassGrant, ReportReply } from '@/lib/protocol'
 import type { Clock } from './clock'
 import { findHeld, findOrders, findSenders, type Sender, type StateRow, storeStates } from './ingest-store'
 import { grantPass, isPassDue, PASS_LIFE_MS } from './passes'
 import { query } from './query'
-import { type HeldReport, judgeReport } from './report-check'
+import { type HeldReport, heldOf, judgeReport } from './report-check'
 import { agentEnded } from './session'
-import { assertStorable } from './storable'
 
 /** Reports wait this long for others to be stored with. */
 export const BATCH_MS = 20
@@ -111,7 +111,7 @@ export class Ingest {
     })
     const held = await this.#heldBy(em, known)
     const judged = judge(known, held)
-    await this.#store(em, judged)
+    await this.#store(em, judged, held)
     await this.#answer(em, judged)
   }
 
@@ -122,15 +122,18 @@ export class Ingest {
       if (sender.incarnation === null) continue
       const remembered = this.#remembered.get(sender.agentId)
       // Another process may have taken a report in since.
-      if (remembered?.incarnation === sender.incarnation && remembered.number === sender.number)
-        held.set(sender.agentId, remembered)
+      if (remembered && isHeldBy(sender, remembered)) held.set(sender.agentId, remembered)
       else missing.add(sender.agentId)
     }
     for (const [agentId, report] of await findHeld(em, [...missing])) held.set(agentId, report)
     return held
   }
 
-  async #store(em: EntityManager, judged: readonly Judged[]): Promise<void> {
+  async #store(
+    em: EntityManager,
+    judged: readonly Judged[],
+    held: ReadonlyMap<string, HeldReport>,
+  ): Promise<void> {
     const latest = new Map<string, StateRow>()
     for (const { entry, sender, repeated } of judged) {
       if (repeated) continue
@@ -143,12 +146,15 @@ export class Ingest {
       const error = failed.get(sender.agentId)
       if (error !== undefined) entry.answer.reject(error)
     }
-    for (const { agentId, report } of rows) if (!failed.has(agentId)) this.#remember(agentId, report)
+    for (const { agentId } of rows) {
+      const now = held.get(agentId)
+      if (now && !failed.has(agentId)) this.#remember(agentId, now)
+    }
   }
 
-  #remember(agentId: string, { incarnation, number, sums }: Report): void {
+  #remember(agentId: string, held: HeldReport): void {
     this.#remembered.delete(agentId)
-    this.#remembered.set(agentId, { incarnation, number, colonies: sums.colonies })
+    this.#remembered.set(agentId, held)
     if (this.#remembered.size <= REMEMBERED_MOST) return
     const [oldest] = this.#remembered.keys()
     if (oldest !== undefined) this.#remembered.delete(oldest)
@@ -204,11 +210,20 @@ function admit(entry: Entry, sender: Sender | undefined): Sender | null {
   return null
 }
 
+function isHeldBy(sender: Sender, { incarnation, previousIncarnation, number }: HeldReport): boolean {
+  return (
+    sender.incarnation === incarnation &&
+    sender.previousIncarnation === previousIncarnation &&
+    sender.number === number
+  )
+}
+
 /** In order of arrival; a report is judged by the one before it in the same batch. */
 function judge(known: readonly { entry: Entry; sender: Sender }[], held: Map<string, HeldReport>): Judged[] {
   return known.flatMap(({ entry, sender }) => {
     const { report } = entry
-    const verdict = judgeReport(held.get(sender.agentId) ?? null, report)
+    const before = held.get(sender.agentId) ?? null
+    const verdict = judgeReport(before, report)
     if (verdict.kind === 'falling') {
       const { colony, counter, from, to } = verdict
       const detail = `In colony ${colony} "${counter}" fell from ${from} to ${to}. Counters only grow within an incarnation and seeding: start the agent anew.`
@@ -218,10 +233,7 @@ function judge(known: readonly { entry: Entry; sender: Sender }[], held: Map<str
       return []
     }
     const repeated = verdict.kind === 'repeated'
-    if (!repeated) {
-      const { incarnation, number, sums } = report
-      held.set(sender.agentId, { incarnation, number, colonies: sums.colonies })
-    }
+    if (!repeated) held.set(sender.agentId, heldOf(before, report))
     return [{ entry, sender, repeated }]
   })
 }

@@ -80,6 +80,7 @@ export function judge(input: JudgeInput): Judgement {
         ? { atMs: estimate.atMs, lambda2: estimate.lambda2 }
         : memory.last,
     unheard: unheardNow(agents),
+    usual: input.usual,
     withheld: data === 'unheard',
     judgedAtMs: estimate.atMs,
   }

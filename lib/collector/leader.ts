@@ -25,6 +25,8 @@ export class Leader {
   readonly #components: LeaderComponents
   readonly #url: string
   readonly #terms = new Map<string, { term: Term; done: Promise<void> }>()
+  /** What ended terms leave behind: looks at the usual that are not over. */
+  readonly #left = new Set<Promise<void>>()
   #stopping = new AbortController()
   #running: Promise<void> | null = null
   #wake: () => void = () => {}
@@ -93,16 +95,21 @@ export class Leader {
       signal.removeEventListener('abort', end)
       scope.abort()
       await Promise.all([...this.#terms.values()].map(({ done }) => done))
+      await Promise.all(this.#left)
     }
   }
 
   #begin(overlayId: string, session: LockSession, signal: AbortSignal): void {
     const { forkEm, clock, random, log, newHolder } = this.#components
     const store = new LeaderStore({ forkEm }, { overlayId, holder: newHolder() })
-    const usual = new Usual({ forkEm, clock }, { overlayId })
+    const usual = new Usual({ forkEm, clock, log }, { overlayId })
     const components = { store, usual, clock, random: forkRandom(random, this.#count++), log }
     const term = new Term(components, { overlayId })
-    this.#terms.set(overlayId, { term, done: this.#serve(term, overlayId, session, signal) })
+    const done = this.#serve(term, overlayId, session, signal).then(() => {
+      const left = usual.stop().finally(() => this.#left.delete(left))
+      this.#left.add(left)
+    })
+    this.#terms.set(overlayId, { term, done })
     log.info({ overlayId }, 'leading')
   }
 

@@ -34,6 +34,8 @@ export interface Memory {
   last: { atMs: number; lambda2: number } | null
   /** Agents unheard, by id, with when they were last heard. */
   unheard: Record<string, number>
+  /** What the overlay usually reads, as last known: whoever leads next need not wait for it. */
+  usual: number | null
   withheld: boolean
   /** When the last evaluation was, and since when there has been no gap between them. */
   judgedAtMs: number | null
@@ -53,6 +55,7 @@ export const BLANK_MEMORY: Memory = {
   recent: [],
   last: null,
   unheard: {},
+  usual: null,
   withheld: false,
   judgedAtMs: null,
   listeningSinceMs: null,

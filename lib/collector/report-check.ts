@@ -3,6 +3,7 @@ import type { ColonyCounters, ColonySums, Report } from '@/lib/method/report'
 /** What is remembered of an agent's last report, to judge the next by. */
 export interface HeldReport {
   incarnation: string
+  previousIncarnation: string | null
   number: number
   colonies: readonly ColonySums[]
 }
@@ -15,7 +16,9 @@ export type ReportVerdict =
   | { kind: 'falling'; colony: number; counter: string; from: number; to: number }
 
 export function judgeReport(held: HeldReport | null, report: Report): ReportVerdict {
-  if (!held || held.incarnation !== report.incarnation) return { kind: 'new' }
+  if (!held) return { kind: 'new' }
+  if (report.incarnation === held.previousIncarnation) return { kind: 'repeated' }
+  if (held.incarnation !== report.incarnation) return { kind: 'new' }
   if (report.number <= held.number) return { kind: 'repeated' }
   for (const next of report.sums.colonies) {
     const before = held.colonies.find(({ colony }) => colony === next.colony)
@@ -24,6 +27,12 @@ export function judgeReport(held: HeldReport | null, report: Report): ReportVerd
     if (fall) return { kind: 'falling', colony: next.colony, ...fall }
   }
   return { kind: 'new' }
+}
+
+export function heldOf(before: HeldReport | null, { incarnation, number, sums }: Report): HeldReport {
+  const previousIncarnation =
+    before?.incarnation === incarnation ? before.previousIncarnation : (before?.incarnation ?? null)
+  return { incarnation, previousIncarnation, number, colonies: sums.colonies }
 }
 
 type Fall = { counter: string; from: number; to: number }

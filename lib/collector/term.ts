@@ -73,7 +73,8 @@ export class Term {
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
     onInterval(PACES[loaded.pace].intervalMs)
-    const round = this.#plan(loaded, await usual.at(loaded.snapshot.atMs))
+    const known = usual.at(loaded.snapshot.atMs)
+    const round = this.#plan(loaded, known === undefined ? (this.#state?.memory.usual ?? null) : known)
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state

@@ -21,14 +21,21 @@ export function withReading(recent: Recent, next: Recent[number], intervalMs: nu
 export function trendOf(recent: Recent): Trend | null {
   if (recent.length < TREND_LEAST_READINGS) return null
   const compared = thin(recent)
-  const slope = theilSen(compared)
-  const first = compared[0]!
-  const last = compared[compared.length - 1]!
-  const change = slope * (last[0] - first[0])
   const middle = median(compared.map(([, value]) => value))
   const half = median(compared.map(([, , width]) => width))
-  if (Math.abs(change) <= Math.max(TREND_LEAST_CHANGE * middle, half)) return 'steady'
+  const least = Math.max(TREND_LEAST_CHANGE * middle, half)
+  const change = changeOver(compared)
+  if (Math.abs(change) <= least) return 'steady'
+  // A fall that is being made good is no fall, and the other way round.
+  const lately = changeOver(compared.slice(-Math.ceil(compared.length / 3)))
+  if (Math.abs(lately) > least && Math.sign(lately) !== Math.sign(change)) return 'steady'
   return change < 0 ? 'falling' : 'rising'
+}
+
+function changeOver(points: Recent): number {
+  const first = points[0]!
+  const last = points[points.length - 1]!
+  return theilSen(points) * (last[0] - first[0])
 }
 
 /**

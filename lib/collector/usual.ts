@@ -1,4 +1,5 @@
 import type { EntityManager } from '@/lib/db'
+import type { Log } from '@/lib/http/runtime'
 import type { Clock } from './clock'
 import { epochMs, query } from './query'
 import { median } from './trend'
@@ -7,10 +8,15 @@ export const HOUR_MS = 3_600_000
 export const USUAL_LEAST_DAYS = 7
 export const USUAL_MOST_DAYS = 30
 export const USUAL_REFRESH_MS = 5 * 60_000
+/** After a look that failed. */
+export const USUAL_RETRY_MS = 30_000
+/** Thirty days of readings take longer than a request may. */
+const LOOK_MOST_MS = 60_000
 
 export interface UsualComponents {
   forkEm(): Promise<EntityManager>
   clock: Clock
+  log: Pick<Log, 'warn'>
 }
 
 /** Median of hourly medians over the last 30 days; null before there are seven days of them. */
@@ -27,35 +33,66 @@ export class Usual {
   readonly #components: UsualComponents
   readonly #overlayId: string
   readonly #hours = new Map<number, number>()
-  #readAtMs: number | null = null
+  #looking: Promise<void> | null = null
+  #dueAtMs = Number.NEGATIVE_INFINITY
+  #hasLooked = false
+  #stopped = false
 
   constructor(components: UsualComponents, init: { overlayId: string }) {
     this.#components = components
     this.#overlayId = init.overlayId
   }
 
-  /** Looks into the database when what is known is older than some minutes. @param nowMs the database's time */
-  async at(nowMs: number): Promise<number | null> {
-    const { clock, forkEm } = this.#components
-    const askedMs = clock.monotonicMs()
-    if (this.#readAtMs === null || askedMs - this.#readAtMs >= USUAL_REFRESH_MS) {
+  /**
+   * What is known now; undefined before the first look is over. Begins a look where one is due and never waits for it:
+   * rounds go on meanwhile.
+   * @param nowMs the database's time
+   */
+  at(nowMs: number): number | null | undefined {
+    if (!this.#stopped && !this.#looking && this.#components.clock.monotonicMs() >= this.#dueAtMs)
+      this.#looking = this.#look(nowMs).finally(() => {
+        this.#looking = null
+      })
+    return this.#hasLooked ? usualOf(this.#hours, nowMs) : undefined
+  }
+
+  /** Until the look under way, if there is one, is over. */
+  async settled(): Promise<void> {
+    await this.#looking
+  }
+
+  async stop(): Promise<void> {
+    this.#stopped = true
+    await this.settled()
+  }
+
+  async #look(nowMs: number): Promise<void> {
+    const { clock, forkEm, log } = this.#components
+    try {
       const lastHour = Math.max(...this.#hours.keys(), nowMs - USUAL_MOST_DAYS * 24 * HOUR_MS)
       await this.#read(await forkEm(), lastHour)
-      this.#readAtMs = askedMs
+      this.#hasLooked = true
+      this.#dueAtMs = clock.monotonicMs() + USUAL_REFRESH_MS
+    } catch (error) {
+      this.#dueAtMs = clock.monotonicMs() + USUAL_RETRY_MS
+      if (!this.#stopped)
+        log.warn({ overlayId: this.#overlayId, err: error }, 'the usual reading could not be looked up')
     }
-    return usualOf(this.#hours, nowMs)
   }
 
   async #read(em: EntityManager, fromMs: number): Promise<void> {
-    const rows = await query<{ hourMs: number; value: number }>(
-      em,
-      `select ${epochMs(`date_trunc('hour', at, 'UTC')`)} as "hourMs",
-         percentile_cont(0.5) within group (order by lambda2) as value
-       from readings
-       where overlay_id = ? and at >= ? and data = 'fresh' and lambda2 is not null
-       group by 1`,
-      [this.#overlayId, new Date(fromMs)],
-    )
+    const rows = await em.transactional(async (tx) => {
+      await query(tx, `select set_config('statement_timeout', ?, true)`, [String(LOOK_MOST_MS)])
+      return query<{ hourMs: number; value: number }>(
+        tx,
+        `select ${epochMs(`date_trunc('hour', at, 'UTC')`)} as "hourMs",
+           percentile_cont(0.5) within group (order by lambda2) as value
+         from readings
+         where overlay_id = ? and at >= ? and data = 'fresh' and lambda2 is not null
+         group by 1`,
+        [this.#overlayId, new Date(fromMs)],
+      )
+    })
     for (const { hourMs, value } of rows) this.#hours.set(hourMs, value)
   }
 }

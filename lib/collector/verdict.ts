@@ -151,7 +151,7 @@ function withoutReading(facts: VerdictFacts, state: Exclude<VerdictFacts['state'
     case 'not-heard-yet':
       return {
         verdict: `Waiting to hear ${countOf(neverHeard, 'agent')} of ${joined} for the first time.`,
-        detail: 'Start the agents that have enrolled; revoke those that will not come.',
+        detail: 'Start the agents that have enrolled.',
       }
     case 'too-few-nodes':
       return {

@@ -8,6 +8,8 @@ import { presentReading } from './readings'
 
 export const EVENTS_MS = 3_600_000
 export const EVENTS_MOST = 500
+/** So many of an overlay's newest events a stream looks at again: one may be committed after others with larger ids. */
+export const LOOK_BACK_EVENTS = 200
 
 /** Of the last hour, newest first. */
 export async function listEvents(call: Call, slug: string): Promise<OverlayEvent[]> {
@@ -27,12 +29,12 @@ export async function followOverlay(
   components: { forkEm(): Promise<EntityManager>; now(): Date },
 ): Promise<{ overlayId: string; load(event: FeedEvent): Promise<readonly object[]> }> {
   const { id } = await openOverlay(call, 'event.read', slug)
-  const [newest] = await call.em.find(
+  const newest = await call.em.find(
     OverlayEventSchema,
     { overlayId: id },
-    { orderBy: { id: 'desc' }, limit: 1 },
+    { orderBy: { id: 'desc' }, limit: LOOK_BACK_EVENTS },
   )
-  let seen = newest?.id ?? 0
+  let known = new Set(newest.map((event) => event.id))
   return {
     overlayId: id,
     load: async (event) => {
@@ -40,11 +42,13 @@ export async function followOverlay(
       if (event === 'reading') return [await presentReading(em, { id }, components.now())]
       const rows = await em.find(
         OverlayEventSchema,
-        { overlayId: id, id: { $gt: seen } },
-        { orderBy: { id: 'asc' }, limit: EVENTS_MOST },
+        { overlayId: id, id: { $gt: known.size < LOOK_BACK_EVENTS ? 0 : Math.min(...known) } },
+        { orderBy: { id: 'asc' }, limit: EVENTS_MOST + LOOK_BACK_EVENTS },
       )
-      seen = rows[rows.length - 1]?.id ?? seen
-      return rows.map(toDto)
+      const unsent = rows.filter((event) => !known.has(event.id))
+      const ids = [...known, ...unsent.map((event) => event.id)].sort((a, b) => b - a)
+      known = new Set(ids.slice(0, LOOK_BACK_EVENTS))
+      return unsent.map(toDto)
     },
   }
 }

@@ -14,6 +14,6 @@ export {
 } from './members'
 export { createOverlay, getOverlay, listOverlays, openOverlay } from './overlays'
 export { readPasswordLink, setPassword } from './password-links'
-export { signIn, signOut } from './sign-in'
+export { countAttempt, signIn, signOut } from './sign-in'
 export { listTeams } from './teams'
 export { firstRun, isFirstRun } from './users'

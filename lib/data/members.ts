@@ -5,7 +5,7 @@ import type { Member } from '@/lib/data/dto'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
 import { issuePasswordLink } from './password-links'
-import { lockTeam, teamMeant } from './teams'
+import { firstTeamOf, lockPerson, lockTeam, teamMeant } from './teams'
 
 export interface TeamMembers {
   team: { slug: string; name: string }
@@ -18,29 +18,43 @@ export async function listMembers(call: Call, teamSlug?: string): Promise<TeamMe
   const team = teamMeant(call, teamSlug)
   authorise(call, 'member.list', team.teamId)
   const memberships = await membershipsOf(call, team.teamId)
-  const owners = memberships.filter((one) => one.role === 'owner').length
+  const owners = memberships.filter(isOwnerWhoCanSignIn)
   const me = call.caller.kind === 'user' ? call.caller.userId : null
-  const members = memberships.map(({ id, user, role, createdAt }) => ({
+  const members = memberships.map((membership) => toMember(membership, { me, owners }))
+  return { team: { slug: team.slug, name: team.name }, role: team.role, members }
+}
+
+function toMember(
+  membership: Membership,
+  { me, owners }: { me: string | null; owners: readonly Membership[] },
+): Member {
+  const { id, user, role, createdAt } = membership
+  return {
     id,
     name: user.name,
     email: user.email,
     role,
     active: user.passwordHash !== null,
     you: user.id === me,
-    lastOwner: role === 'owner' && owners === 1,
+    lastOwner: owners.length === 1 && owners[0] === membership,
     addedAt: createdAt.toISOString(),
-  }))
-  return { team: { slug: team.slug, name: team.name }, role: team.role, members }
+  }
 }
 
 export interface SetPasswordLink {
   name: string
   email: string
-  /** Null for someone who has a password already. */
+  /** Has a password. */
+  active: boolean
+  /** Null for someone who has a password already, or whose link another team gives. */
   url: string | null
   expiresAt: string | null
 }
 
+/**
+ * Adds a person. Whoever holds a person's link can sign in as them, in all of their teams: so only the first team
+ * of a person without a password gives links, and none outlasts that a person with a password joins another team.
+ */
 export async function addMember(
   call: Call,
   input: { team?: string; name: string; email: string; role: Role },
@@ -50,8 +64,10 @@ export async function addMember(
   call.note({ subject: `${input.name} <${input.email}>`, data: { role: input.role } })
   authorise(call, 'member.add', team.teamId)
   await lockTeam(em, team.teamId)
+  await lockPerson(em, input.email)
   const known = await em.findOne(UserSchema, { email: input.email })
-  if (known && (await em.count(MembershipSchema, { team: team.teamId, user: known.id })) > 0)
+  const teams = known ? await em.find(MembershipSchema, { user: known.id }) : []
+  if (teams.some((one) => one.team.id === team.teamId))
     throw new AppError(
       'already-member',
       `${input.email} is in the team already. Change the role in the table.`,
@@ -64,24 +80,29 @@ export async function addMember(
     em.create(UserSchema, { email: input.email, name: input.name, passwordHash: null, createdAt: now })
   em.create(MembershipSchema, { team: team.teamId, user, role: input.role, createdAt: now })
   await em.flush()
+  const active = user.passwordHash != null
+  if (active) await em.nativeDelete(PasswordLinkSchema, { user: user.id })
   const link =
-    user.passwordHash == null ? await issuePasswordLink(call, user) : { url: null, expiresAt: null }
-  return { name: user.name, email: user.email, ...link }
+    active || teams.length > 0 ? { url: null, expiresAt: null } : await issuePasswordLink(call, user)
+  return { name: user.name, email: user.email, active, ...link }
 }
 
-/**
- * A new link for someone who has none that works. Whoever holds it takes the account over, so for a person with
- * a password it is given only where no other team is concerned.
- */
+/** A new link for someone who has none that works, as far as it is this team's to give: see `addMember`. */
 export async function newMemberLink(call: Call, memberId: string): Promise<SetPasswordLink> {
   const membership = await memberMeant(call, 'member.link', memberId)
   const { user } = membership
-  if (user.passwordHash != null && (await call.em.count(MembershipSchema, { user: user.id })) > 1)
+  const active = user.passwordHash != null
+  if (active && (await call.em.count(MembershipSchema, { user: user.id })) > 1)
     throw new AppError(
       'has-password',
       `${user.name} has a password and belongs to another team too, so no new link is given.`,
     )
-  return { name: user.name, email: user.email, ...(await issuePasswordLink(call, user)) }
+  if (!active && (await firstTeamOf(call.em, user.id)) !== membership.team.id)
+    throw new AppError(
+      'other-team',
+      `${user.name} was in another team first and sets a password with the link of that team. Ask for a new one there.`,
+    )
+  return { name: user.name, email: user.email, active, ...(await issuePasswordLink(call, user)) }
 }
 
 export async function changeRole(
@@ -106,11 +127,11 @@ export async function removeMember(call: Call, memberId: string): Promise<{ name
     { team: team.id, createdBy: user.id, revokedAt: null },
     { revokedAt: call.now },
   )
+  const gaveLinks = (await firstTeamOf(call.em, user.id)) === team.id
   await call.em.removeAndFlush(membership)
-  if ((await call.em.count(MembershipSchema, { user: user.id })) === 0) {
+  if (gaveLinks) await call.em.nativeDelete(PasswordLinkSchema, { user: user.id })
+  if ((await call.em.count(MembershipSchema, { user: user.id })) === 0)
     await endUserSessions(call.em, user.id)
-    await call.em.nativeDelete(PasswordLinkSchema, { user: user.id })
-  }
   return { name: user.name }
 }
 
@@ -127,16 +148,25 @@ async function memberMeant(
   call.note({ subject: `${found.user.name} <${found.user.email}>` })
   authorise(call, action, found.team.id)
   await lockTeam(call.em, found.team.id)
+  await lockPerson(call.em, found.user.email)
   // Read again: what was true before the lock need not be true any more.
   const membership = await call.em.findOne(MembershipSchema, { id: memberId }, { populate, refresh: true })
   if (!membership) throw missing()
   return membership
 }
 
-async function keepAnOwner({ em }: Call, { team, role }: Membership): Promise<void> {
+async function keepAnOwner(call: Call, { id, team, role }: Membership): Promise<void> {
   if (role !== 'owner') return
-  if ((await em.count(MembershipSchema, { team: team.id, role: 'owner' })) > 1) return
-  throw new AppError('last-owner', 'A team needs an owner. Make someone else an owner first.')
+  const others = (await membershipsOf(call, team.id)).filter((one) => one.id !== id)
+  if (others.some(isOwnerWhoCanSignIn)) return
+  throw new AppError(
+    'last-owner',
+    'A team needs an owner who has set a password. Make someone else who has one an owner first.',
+  )
+}
+
+function isOwnerWhoCanSignIn({ role, user }: Membership): boolean {
+  return role === 'owner' && user.passwordHash != null
 }
 
 async function membershipsOf({ em }: Call, teamId: string): Promise<Membership[]> {

@@ -6,7 +6,7 @@ import { createSession, endUserSessions } from '@/lib/auth/session'
 import { sql } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
-import { firstTeamOf } from './teams'
+import { firstTeamOf, lockPerson } from './teams'
 
 export const PASSWORD_LINK_HOURS = 72
 
@@ -43,13 +43,20 @@ export async function setPassword(
   { token, password }: { token: string; password: string },
 ): Promise<CookieToSet> {
   authorise(call, 'password.set')
-  const [used] = await sql<{ user_id: string }>(
+  const link = await call.em.findOne(
+    PasswordLinkSchema,
+    { tokenHash: sha256Hex(token) },
+    { populate: ['user'] },
+  )
+  if (!link) throw spent()
+  const { user } = link
+  await lockPerson(call.em, user.email)
+  const [used] = await sql(
     call.em,
-    'update password_links set used_at = ? where token_hash = ? and used_at is null and expires_at > ? returning user_id',
+    'update password_links set used_at = ? where token_hash = ? and used_at is null and expires_at > ? returning id',
     [call.now, sha256Hex(token), call.now],
   )
   if (!used) throw spent()
-  const user = await call.em.findOneOrFail(UserSchema, used.user_id)
   call.note({ actor: user.email, subject: user.email, teamId: await firstTeamOf(call.em, user.id) })
   await call.em.nativeUpdate(UserSchema, { id: user.id }, { passwordHash: await hashPassword(password) })
   await endUserSessions(call.em, user.id)

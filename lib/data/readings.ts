@@ -1,19 +1,23 @@
 import { z } from 'zod'
 import { ControlSchema, type Overlay, type Reading as ReadingRow, ReadingSchema } from '@/entities'
 import { storedStateSchema } from '@/lib/collector/memory'
-import { query } from '@/lib/collector/query'
+import { epochMs, query } from '@/lib/collector/query'
 import { verdictOf } from '@/lib/collector/verdict'
 import type { Reading, ReadingPoint } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { CONFIDENCE } from '@/lib/method/control'
-import { PACES } from '@/lib/method/pace'
+import { PACES, type PaceName } from '@/lib/method/pace'
 import { fillWithheld } from './fill-withheld'
 import { openOverlay } from './overlays'
+import { isStale, staleReading } from './stale-reading'
 
 export const READINGS_MOST = 2_000
 export const READINGS_DEFAULT_SECONDS = 3 * 3_600
+/** Every reading of the range is looked at. */
+export const READINGS_MOST_DAYS = 31
+const DAY_MS = 86_400_000
 
 export const readingsQuerySchema = z.object({
   from: z.iso.datetime({ offset: true }).optional(),
@@ -36,20 +40,40 @@ export async function presentReading(
   now: Date,
 ): Promise<Reading> {
   const [row] = await em.find(ReadingSchema, { overlayId: id }, { orderBy: { at: 'desc' }, limit: 1 })
-  const [joined] = await query<{ count: number }>(
+  // After the reading, so that it is not newer than its evaluation.
+  const [standing] = await query<Standing>(
     em,
-    `select count(*)::int as count from agents where overlay_id = ? and state = 'joined'`,
+    `select o.pace, ${epochMs('c.updated_at')} as "judgedAtMs", ${epochMs('clock_timestamp()')} as "nowMs",
+       (select count(*)::int from agents a where a.overlay_id = o.id and a.state = 'joined') as joined
+     from overlays o left join controls c on c.overlay_id = o.id where o.id = ?`,
     [id],
   )
-  const control = await em.findOne(ControlSchema, id)
-  if (row && (joined?.count || row.demo)) return toReading(row, control?.updatedAt)
-  return blankReading(now, joined?.count ?? 0)
+  const { joined, judgedAtMs, pace, nowMs } = standing ?? NO_STANDING
+  // History laid out for a demo is shown as it is until the first evaluation.
+  const isHistory = row?.demo === true && judgedAtMs === null
+  if (!row || (joined === 0 && !isHistory)) return blankReading(now, joined)
+  const reading = toReading(row, judgedAtMs)
+  if (isHistory) return reading
+  const ageMs = nowMs - (judgedAtMs ?? row.at.getTime())
+  return isStale(ageMs, PACES[pace].intervalMs) ? staleReading(reading, nowMs) : reading
 }
 
+/** All by the database's time. */
+interface Standing {
+  pace: PaceName
+  joined: number
+  /** When the overlay was last evaluated; null where it never was. */
+  judgedAtMs: number | null
+  nowMs: number
+}
+
+/** Of an overlay that has just been removed. */
+const NO_STANDING: Standing = { pace: 'steady', joined: 0, judgedAtMs: null, nowMs: 0 }
+
 /** While nothing changes not every look at a withheld reading is stored; the leader's last one says how old it is. */
-function toReading(row: ReadingRow, judgedAt: Date | undefined): Reading {
+function toReading(row: ReadingRow, judgedAtMs: number | null): Reading {
   const { at, lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, body, demo } = row
-  const lookedAt = lambda2 == null && judgedAt && judgedAt > at ? judgedAt : at
+  const lookedAt = lambda2 == null && judgedAtMs !== null ? new Date(Math.max(judgedAtMs, at.getTime())) : at
   return {
     ...body,
     at: lookedAt.toISOString(),
@@ -131,8 +155,15 @@ export async function getReadings(
   const toMs = input.to ? Date.parse(input.to) : call.now.getTime()
   const fromMs = input.from ? Date.parse(input.from) : toMs - READINGS_DEFAULT_SECONDS * 1000
   if (fromMs >= toMs) throw new AppError('invalid-input', '"from" must be before "to". Correct one of them.')
+  if (toMs - fromMs > READINGS_MOST_DAYS * DAY_MS) {
+    const detail = `At most ${READINGS_MOST_DAYS} days can be asked for at a time. Move "from" and "to" closer together, and ask for longer stretches in several parts.`
+    throw new AppError('invalid-input', detail, {
+      errors: [{ path: 'from', message: `Choose a time at most ${READINGS_MOST_DAYS} days before "to".` }],
+    })
+  }
   const { intervalMs } = PACES[overlay.pace]
-  const finest = Math.ceil((toMs - fromMs) / READINGS_MOST / 1000)
+  // Steps are parts of the calendar, not of the range: at both ends there may be a part of one.
+  const finest = Math.ceil((toMs - fromMs) / (READINGS_MOST - 1) / 1000)
   const stepSeconds = Math.max(input.step ?? intervalMs / 1000, finest)
   const rows = await query<Omit<ReadingPoint, 'at'> & { atMs: number }>(
     call.em,

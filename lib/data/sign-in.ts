@@ -8,7 +8,7 @@ import { authorise, type Call } from '@/lib/http/call'
 import { firstTeamOf } from './teams'
 
 export interface SignInComponents {
-  throttle: Pick<SignInThrottle, 'count' | 'clear'>
+  throttle: Pick<SignInThrottle, 'count'>
 }
 
 export interface SignIn {
@@ -16,19 +16,26 @@ export interface SignIn {
   password: string
 }
 
-export async function signIn(
+/** Goes before `signIn`, outside its transaction: the count outlasts a refusal and needs connections of its own. */
+export async function countAttempt(
   call: Call,
   { throttle }: SignInComponents,
-  { email, password }: SignIn,
-): Promise<CookieToSet> {
+  { email }: Pick<SignIn, 'email'>,
+): Promise<void> {
   authorise(call, 'session.create')
-  const { address } = call.request
   call.note({ actor: email, subject: email })
-  const waitSeconds = await throttle.count({ email, address })
+  const waitSeconds = await throttle.count({ email, address: call.request.address })
   if (waitSeconds !== null)
     throw new AppError('throttled', `Wait ${inWords(waitSeconds)} and try again.`, {
       retryAfterSeconds: waitSeconds,
     })
+  call.note({ counted: true })
+}
+
+/** `countAttempt` has let the attempt pass; the caller clears the throttle once the session is stored. */
+export async function signIn(call: Call, { email, password }: SignIn): Promise<CookieToSet> {
+  authorise(call, 'session.create')
+  call.note({ actor: email, subject: email })
   const user = await call.em.findOne(UserSchema, { email })
   if (user) call.note({ teamId: await firstTeamOf(call.em, user.id) })
   if (!(await verifyPassword(user?.passwordHash, password)) || !user)
@@ -36,7 +43,6 @@ export async function signIn(
       'bad-credentials',
       'Check both and try again. If you have no password yet, open the link an owner of your team gave you.',
     )
-  await throttle.clear({ email, address })
   return createSession(call.em, user.id, call.request.secure)
 }
 

@@ -42,6 +42,11 @@ export async function lockTeam(em: EntityManager, teamId: string): Promise<void>
   await sql(em, 'select id from teams where id = ? for update', [teamId])
 }
 
+/** Whoever gives or uses up a person's link, or changes the teams it opens, waits here; after `lockTeam`. */
+export async function lockPerson(em: EntityManager, email: string): Promise<void> {
+  await sql(em, 'select pg_advisory_xact_lock(hashtextextended(?, 0))', [`thinspan:person:${email}`])
+}
+
 /** A short name made of a name: lower-case letters, digits and hyphens, or "team". */
 export function slugFrom(name: string): string {
   const plain = name.normalize('NFKD').replace(/\p{M}/gu, '').toLowerCase()

@@ -11,6 +11,7 @@ export {
   forkEm,
   getOrm,
   overlayLockKey,
+  STATEMENT_TIMEOUT_MS,
   subscribe,
   withOverlayLock,
 } from './process'

@@ -5,7 +5,7 @@ import { migrations } from '@/migrations'
 
 export const POOL_MAX_CONNECTIONS = 10
 
-export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS) {
+export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS, statementTimeoutMs?: number) {
   return defineConfig({
     clientUrl: url,
     entities,
@@ -15,6 +15,9 @@ export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS) {
     allowGlobalContext: false,
     discovery: { warnWhenNoEntities: false },
     pool: { min: 0, max: poolMax },
+    ...(statementTimeoutMs === undefined
+      ? {}
+      : { driverOptions: { connection: { options: `-c statement_timeout=${statementTimeoutMs}` } } }),
     migrations: {
       tableName: 'thinspan_migrations',
       migrationsList: migrations,

@@ -4,8 +4,9 @@ import { ormOptions } from './options'
 export type { EntityManager } from '@mikro-orm/postgresql'
 export type Orm = MikroORM
 
-export async function openOrm(url: string, poolMax?: number): Promise<Orm> {
-  return MikroORM.init(ormOptions(url, poolMax))
+/** @param statementTimeoutMs the server gives up on a statement after so long; none where left out */
+export async function openOrm(url: string, poolMax?: number, statementTimeoutMs?: number): Promise<Orm> {
+  return MikroORM.init(ormOptions(url, poolMax, statementTimeoutMs))
 }
 
 /** Runs one statement on the manager's connection, inside its transaction if it has one. */

@@ -31,6 +31,8 @@ export async function ensurePartitions(
   monthsBack = 1,
 ): Promise<string[]> {
   return em.transactional(async (tx) => {
+    // Waits for others who do the same, and may have many rows to move.
+    await sql(tx, `select set_config('statement_timeout', '0', true)`)
     await sql(tx, `select pg_advisory_xact_lock(hashtextextended('thinspan:partitions', 0))`)
     const existing = await sql<{ name: string }>(
       tx,

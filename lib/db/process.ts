@@ -7,6 +7,9 @@ import { Listener, type ListenFunction } from './listener'
 import { acquireLock as acquire, type HeldLock, withLock } from './lock'
 import { type EntityManager, type Orm, openOrm } from './orm'
 
+/** Requests and rounds are short; what may take longer says so in its transaction. Migrations have no limit. */
+export const STATEMENT_TIMEOUT_MS = 10_000
+
 interface Held {
   orm?: Promise<Orm>
   listener?: Listener
@@ -24,7 +27,7 @@ export function databaseUrl(): string {
 
 export function getOrm(): Promise<Orm> {
   if (!held.orm) {
-    const opening = openOrm(databaseUrl())
+    const opening = openOrm(databaseUrl(), undefined, STATEMENT_TIMEOUT_MS)
     held.orm = opening
     // A failure must not be remembered: the database may be there at the next request.
     opening.catch(() => {

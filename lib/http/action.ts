@@ -11,6 +11,7 @@ import { perform } from './perform'
 import { invalidInput, toProblem } from './problem'
 import { requestFacts } from './request-facts'
 import { getRuntime } from './runtime'
+import { assertStorable } from './storable'
 
 export interface ActionHandler<T> {
   (previous: FormState<T>, form: FormData): Promise<FormState<T>>
@@ -18,7 +19,9 @@ export interface ActionHandler<T> {
   permission: ActionName
 }
 
-export interface ActionOptions<T> {
+export interface ActionOptions<T, I> {
+  /** See `Performance`. */
+  before?: (call: Call, input: I) => Promise<void>
   /** After the work is stored: redirect(), revalidatePath(), cookies. What it throws reaches Next. */
   after?: (value: T) => void | Promise<void>
 }
@@ -31,13 +34,13 @@ export function action<T, S extends z.ZodType>(
   name: ActionName,
   schema: S,
   run: (call: Call, input: z.output<S>) => Promise<T>,
-  { after }: ActionOptions<T> = {},
+  { before, after }: ActionOptions<T, z.output<S>> = {},
 ): ActionHandler<T> {
   const handler = async (_previous: FormState<T>, form: FormData): Promise<FormState<T>> => {
     const fields = formFields(form)
     let value: T
     try {
-      value = await runAction(name, schema, run, fields)
+      value = await runAction(name, schema, { before, run }, fields)
     } catch (error) {
       return { status: 'failed', problem: toProblem(error), values: withoutSecrets(fields) }
     }
@@ -50,11 +53,14 @@ export function action<T, S extends z.ZodType>(
 async function runAction<T, S extends z.ZodType>(
   name: ActionName,
   schema: S,
-  run: (call: Call, input: z.output<S>) => Promise<T>,
+  work: {
+    before?: (call: Call, input: z.output<S>) => Promise<void>
+    run: (call: Call, input: z.output<S>) => Promise<T>
+  },
   fields: Record<string, string>,
 ): Promise<T> {
   const runtime = getRuntime()
-  const facts = requestFacts(await headers(), 'POST', runtime.address)
+  const facts = requestFacts(await headers(), 'POST', runtime)
   let renewed: CookieToSet | null = null
   const value = await perform(runtime, {
     action: name,
@@ -67,14 +73,18 @@ async function runAction<T, S extends z.ZodType>(
       renewed = result.renewed
       return result.caller
     },
-    run: async (call) => {
-      const parsed = schema.safeParse(fields)
-      if (!parsed.success) throw invalidInput(parsed.error)
-      return run(call, parsed.data)
-    },
+    before: async (call) => work.before?.(call, parse(schema, fields)),
+    run: (call) => work.run(call, parse(schema, fields)),
   })
   if (renewed) await setCookie(renewed)
   return value
+}
+
+function parse<S extends z.ZodType>(schema: S, fields: Record<string, string>): z.output<S> {
+  assertStorable(fields)
+  const parsed = schema.safeParse(fields)
+  if (!parsed.success) throw invalidInput(parsed.error)
+  return parsed.data
 }
 
 export async function setCookie({ name, value, options }: CookieToSet): Promise<void> {

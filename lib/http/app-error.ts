@@ -31,6 +31,7 @@ export const ERRORS = {
   'not-first-run': { status: 409, title: 'The server is already set up', retry: false },
   'name-taken': { status: 409, title: 'The name is taken', retry: false },
   'has-password': { status: 409, title: 'The person has a password', retry: false },
+  'other-team': { status: 409, title: 'Another team gives the link', retry: false },
   'link-spent': { status: 410, title: 'The link no longer works', retry: false },
   'falling-counters': { status: 422, title: 'Counters have fallen', retry: false },
   throttled: { status: 429, title: 'Too many attempts', retry: true },

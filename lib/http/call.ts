@@ -13,6 +13,10 @@ export interface AuditNote {
   data?: Record<string, unknown>
   /** Who acts, where the caller could not be known beforehand: someone who signs in. */
   actor?: string
+  /** The throttle counted the attempt, so a refusal may be entered though nobody knows who asks. */
+  counted?: boolean
+  /** Nothing was changed that is worth an entry. */
+  omit?: boolean
 }
 
 /** `origin` is scheme and host for links to this server. */

@@ -12,9 +12,10 @@ import { perform } from './perform'
 import { toProblem } from './problem'
 import { type RequestFacts, requestFacts } from './request-facts'
 import { getRuntime } from './runtime'
+import { assertStorable } from './storable'
 
 const currentFacts = cache(async (): Promise<RequestFacts> => {
-  return requestFacts(await headers(), 'GET', getRuntime().address)
+  return requestFacts(await headers(), 'GET', getRuntime())
 })
 
 /** Once per request, however many parts of the page ask. A renewed cookie cannot be set while rendering. */
@@ -38,16 +39,22 @@ export type PageResult<T> = { ok: true; value: T } | { ok: false; problem: Probl
 /**
  * Reads what a page shows. Visitors are sent to sign in, what does not exist for the caller is "not found", and
  * a refusal comes back as a problem for the page to show. Other failures go to the page's error boundary.
+ * `address` is what `run` takes from the page's path and search parameters.
  */
-export async function page<T>(action: ActionName, run: (call: Call) => Promise<T>): Promise<PageResult<T>> {
+export async function page<T>(
+  action: ActionName,
+  run: (call: Call) => Promise<T>,
+  address: unknown = null,
+): Promise<PageResult<T>> {
   try {
+    assertStorable(address)
     const facts = await currentFacts()
     const value = await perform(getRuntime(), { action, facts, authenticate: callerOfRequest, run })
     return { ok: true, value }
   } catch (error) {
     if (!(error instanceof AppError)) throw error
     if (error.code === 'not-signed-in') redirect('/sign-in')
-    if (error.code === 'not-found') notFound()
+    if (error.code === 'not-found' || error.code === 'invalid-input') notFound()
     return { ok: false, problem: toProblem(error) }
   }
 }

@@ -10,16 +10,19 @@ export interface Performance<T> {
   action: ActionName
   facts: CallRequest
   authenticate(em: EntityManager, now: Date): Promise<Caller>
+  /** What must last though the rest is refused; while it waits for a connection the call must hold none. */
+  before?(call: Call): Promise<void>
   run(call: Call): Promise<T>
 }
 
 /**
  * The middle of every wrapper: authenticate, authorise, run, audit. What is audited runs in one transaction
- * with its entry, so that neither is stored without the other; refusals and failures are entered afterwards.
+ * with its entry, so that neither is stored without the other; refusals and failures are entered afterwards,
+ * unless strangers could fill the log with them.
  */
 export async function perform<T>(
   runtime: Runtime,
-  { action, facts, authenticate, run }: Performance<T>,
+  { action, facts, authenticate, before, run }: Performance<T>,
 ): Promise<T> {
   const em = await runtime.forkEm()
   const now = runtime.now()
@@ -46,12 +49,13 @@ export async function perform<T>(
   try {
     caller = await authenticate(em, now)
     assertAllowed(action, caller, null)
+    await before?.(callOn(em))
     if (!audit) return await checkedRun(em)
     // Cleared, so that nothing read before the transaction passes for what is true inside it.
     return await em.transactional(
       async (tx) => {
         const value = await checkedRun(tx)
-        await enter(tx, { action, caller, now, note, outcome: 'ok' })
+        if (!note.omit) await enter(tx, { action, caller, now, note, outcome: 'ok' })
         return value
       },
       { clear: true },
@@ -59,7 +63,10 @@ export async function perform<T>(
   } catch (error) {
     const known = error instanceof AppError
     if (!known) runtime.log.error({ action, err: error }, 'a call failed')
-    if (audit) {
+    if (audit && !isAnswerable(caller, note)) {
+      const code = known ? error.code : 'internal'
+      runtime.log.warn({ action, code, subject: note.subject }, 'a call by a stranger was refused')
+    } else if (audit) {
       const outcome = known ? 'denied' : 'failed'
       const data = { ...note.data, ...(known ? { code: error.code } : {}) }
       await enter(em.fork(), { action, caller, now, note: { ...note, data }, outcome }).catch(
@@ -68,6 +75,11 @@ export async function perform<T>(
     }
     throw error
   }
+}
+
+/** A stranger, or an agent that is not let in, could repeat a refusal for ever. */
+function isAnswerable({ kind }: Caller, { counted }: AuditNote): boolean {
+  return kind === 'anyone' || kind === 'agent' ? counted === true : true
 }
 
 interface Entry {

@@ -11,8 +11,16 @@ export interface RequestFacts {
   /** Scheme and host people reach the server by. */
   origin: string
   secure: boolean
-  /** The client's network address as far as it is known. */
+  /** The client's network address, where a trusted proxy says it: what a client says of itself is no address. */
   address: string | null
+}
+
+/** What requests cannot say of the server. */
+export interface ServerSetup {
+  /** The address people use, such as https://thinspan.example.org; null: take it from each request. */
+  address: string | null
+  /** How many proxies stand in front of the server, each of which appends to X-Forwarded-For. */
+  trustedProxies: number
 }
 
 const SAFE_METHODS = ['GET', 'HEAD', 'OPTIONS']
@@ -20,12 +28,9 @@ const SAFE_METHODS = ['GET', 'HEAD', 'OPTIONS']
 export function requestFacts(
   headers: Headers,
   method: string,
-  configuredAddress: string | null,
+  { address, trustedProxies }: ServerSetup,
 ): RequestFacts {
-  const scheme = first(headers.get('x-forwarded-proto')) === 'https' ? 'https' : 'http'
-  const origin = configuredAddress
-    ? new URL(configuredAddress).origin
-    : `${scheme}://${headers.get('host') ?? 'localhost'}`
+  const origin = address ? new URL(address).origin : originSaid(headers)
   const authorization = headers.get('authorization')
   return {
     sessionId: readCookie(headers.get('cookie'), SESSION_COOKIE),
@@ -34,8 +39,20 @@ export function requestFacts(
     foreign: isForeign(headers, origin),
     origin,
     secure: origin.startsWith('https:'),
-    address: first(headers.get('x-forwarded-for')),
+    address: addressSaid(headers.get('x-forwarded-for'), trustedProxies),
   }
+}
+
+function originSaid(headers: Headers): string {
+  const scheme = headers.get('x-forwarded-proto')?.split(',')[0]?.trim() === 'https' ? 'https' : 'http'
+  const origin = `${scheme}://${headers.get('host') ?? 'localhost'}`
+  return URL.canParse(origin) ? origin : `${scheme}://localhost`
+}
+
+/** Each proxy appends whom it was called by, so the outermost trusted one wrote that many entries from the end. */
+function addressSaid(forwardedFor: string | null, trustedProxies: number): string | null {
+  if (trustedProxies === 0) return null
+  return forwardedFor?.split(',').at(-trustedProxies)?.trim() || null
 }
 
 /**
@@ -49,8 +66,4 @@ function isForeign(headers: Headers, origin: string): boolean {
   const claimed = headers.get('origin')
   if (!claimed || !URL.canParse(claimed)) return true
   return new URL(claimed).host !== new URL(origin).host
-}
-
-function first(list: string | null): string | null {
-  return list?.split(',')[0]?.trim() || null
 }

@@ -11,6 +11,7 @@ import { perform } from './perform'
 import { invalidInput, problemResponse } from './problem'
 import { type RequestFacts, requestFacts } from './request-facts'
 import { getRuntime } from './runtime'
+import { assertStorable } from './storable'
 
 type Schema = z.ZodType | undefined
 type Output<S extends Schema> = S extends z.ZodType ? z.output<S> : undefined
@@ -59,7 +60,7 @@ export function route<
   const handler = async (request: Request, context: { params: Promise<unknown> }): Promise<Response> => {
     try {
       const runtime = getRuntime()
-      const facts = requestFacts(request.headers, request.method, runtime.address)
+      const facts = requestFacts(request.headers, request.method, runtime)
       let renewed: CookieToSet | null = null
       let input: RouteInput<P, Q, B> | undefined
       const parsed = async () => {
@@ -115,6 +116,7 @@ async function parse<P extends Schema, Q extends Schema, B extends Schema>(
 
 function check(schema: Schema, value: unknown): unknown {
   if (!schema) return undefined
+  assertStorable(value)
   const result = schema.safeParse(value)
   if (!result.success) throw invalidInput(result.error)
   return result.data

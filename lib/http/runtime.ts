@@ -2,6 +2,7 @@
 import { pino } from 'pino'
 import { SignInThrottle } from '@/lib/auth/throttle'
 import { type EntityManager, getOrm } from '@/lib/db'
+import type { ServerSetup } from './request-facts'
 
 export interface Log {
   info(data: object, message: string): void
@@ -9,13 +10,11 @@ export interface Log {
   error(data: object, message: string): void
 }
 
-export interface Runtime {
+export interface Runtime extends ServerSetup {
   forkEm(): Promise<EntityManager>
   throttle(): Promise<SignInThrottle>
   now(): Date
   log: Log
-  /** The address people use, such as https://thinspan.example.org; null: take it from each request. */
-  address: string | null
 }
 
 const key = Symbol.for('thinspan.runtime')
@@ -32,7 +31,13 @@ function compose(): Runtime {
     now: () => new Date(),
     log: pino({ name: 'thinspan-web', level: process.env.THINSPAN_LOG_LEVEL ?? 'info' }),
     address: process.env.THINSPAN_ADDRESS ?? null,
+    trustedProxies: readCount(process.env.THINSPAN_TRUSTED_PROXIES),
   }
+}
+
+function readCount(text = ''): number {
+  if (/^\d*$/.test(text)) return Number(text)
+  throw new Error(`Set THINSPAN_TRUSTED_PROXIES to how many proxies stand in front; "${text}" is no number.`)
 }
 
 export function getRuntime(): Runtime {

@@ -46,6 +46,7 @@ export class Fleet {
   private readonly links: FleetLinks
   private readonly waiters: Waiters
   private readonly stopping = new AbortController()
+  private ending: Promise<void> | null = null
 
   constructor(components: FleetComponents, init: FleetInit) {
     this.links = FleetLinks.from(init.topology)
@@ -94,15 +95,20 @@ export class Fleet {
           await member.enrol(this.stopping.signal)
       }),
     )
-    for (const member of this.members.values()) this.addresses.set(member.name, await member.start())
+    for (const member of this.members.values()) {
+      this.stopping.signal.throwIfAborted()
+      this.addresses.set(member.name, await member.start())
+    }
     for (const link of this.links.all) this.connect(link)
     await this.settled([...this.links.all])
     return { nodes: this.members.size, links: this.links.count }
   }
 
-  async stop(): Promise<void> {
-    this.stopping.abort()
-    await Promise.all([...this.members.values()].map((member) => member.stop()))
+  /** Whatever waits for links, waits no longer. */
+  stop(): Promise<void> {
+    this.stopping.abort(new FleetError('The fleet is stopping.'))
+    this.ending ??= Promise.all([...this.members.values()].map((member) => member.stop())).then(() => {})
+    return this.ending
   }
 
   /** Takes a link down at both ends; returns once all walkers have arrived. */
@@ -112,7 +118,8 @@ export class Fleet {
     const [first, second] = [this.member(a), this.member(b)]
     first.agent?.removeNeighbour(second.agentId)
     second.agent?.removeNeighbour(first.agentId)
-    await this.waiters.until(() => !this.isUp(a, b), SETTLE_MS, `${a} and ${b} are still linked`)
+    const { signal } = this.stopping
+    await this.waiters.until(() => !this.isUp(a, b), SETTLE_MS, `${a} and ${b} are still linked`, signal)
   }
 
   async join(one: string, other: string): Promise<void> {
@@ -211,6 +218,7 @@ export class Fleet {
         const [link] = missing()
         return link ? `${missing().length} links are not up, among them ${link.a} – ${link.b}` : ''
       },
+      this.stopping.signal,
     )
   }
 }

@@ -14,21 +14,36 @@ export class Waiters {
     for (const check of [...this.waiting]) check()
   }
 
-  /** @throws Error with `otherwise` where the time runs out */
-  until(done: () => boolean, limitMs: number, otherwise: string | (() => string)): Promise<void> {
+  /** @throws Error with `otherwise` where the time runs out, or with the signal's reason where it aborts */
+  until(
+    done: () => boolean,
+    limitMs: number,
+    otherwise: string | (() => string),
+    signal: AbortSignal,
+  ): Promise<void> {
+    if (signal.aborted) return Promise.reject(signal.reason)
     if (done()) return Promise.resolve()
     return new Promise((resolve, reject) => {
-      const cancel = this.clock.after(limitMs, () => {
+      const leave = () => {
         this.waiting.delete(check)
+        cancel()
+        signal.removeEventListener('abort', onAbort)
+      }
+      const onAbort = () => {
+        leave()
+        reject(signal.reason)
+      }
+      const cancel = this.clock.after(limitMs, () => {
+        leave()
         reject(new Error(typeof otherwise === 'string' ? otherwise : otherwise()))
       })
       const check = () => {
         if (!done()) return
-        this.waiting.delete(check)
-        cancel()
+        leave()
         resolve()
       }
       this.waiting.add(check)
+      signal.addEventListener('abort', onAbort, { once: true })
     })
   }
 }

@@ -2,8 +2,11 @@ import { afterAll, beforeAll, beforeEach, describe, expect, it, vi } from 'vites
 import { AuditEntrySchema, MembershipSchema, UserSchema } from '@/entities'
 import { SESSION_COOKIE } from '@/lib/auth/cookie'
 import { createSession, readSession } from '@/lib/auth/session'
+import { THROTTLE } from '@/lib/auth/throttle'
 import { listAudit } from '@/lib/data/audit'
-import { setRuntime } from '@/lib/http'
+import { getOverlay } from '@/lib/data/overlays'
+import { openOrm } from '@/lib/db'
+import { page, setRuntime } from '@/lib/http'
 import { type FormState, IDLE, submit } from '@/lib/http/form-state'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { callAsUser, PASSWORD, seedTeam, type TeamSeed, testRuntime } from '@/tests/support/people'
@@ -32,17 +35,21 @@ vi.mock('next/navigation', () => ({
 }))
 vi.mock('next/cache', () => ({ revalidatePath: () => {} }))
 
-const { signInAction, signOutAction } = await import('@/app/(auth)/actions')
+const { firstRunAction, setPasswordAction, signInAction, signOutAction } = await import(
+  '@/app/(auth)/actions'
+)
 const { addMemberAction, removeMemberAction } = await import('@/app/(console)/team/actions')
 
 const now = new Date('2026-12-01T10:00:00.000Z')
 let database: TestDatabase
+let runtime: ReturnType<typeof testRuntime>
 let team: TeamSeed
 const fork = () => database.orm.em.fork()
 
 beforeAll(async () => {
   database = await createTestDatabase()
-  setRuntime(testRuntime(database, () => now))
+  runtime = testRuntime(database, () => now)
+  setRuntime(runtime)
   team = await seedTeam(fork(), 'harbourline', ['owner', 'viewer'], now)
 })
 afterAll(async () => {
@@ -89,6 +96,38 @@ describe('signing in by form', () => {
     expect(next.set.size).toBe(0)
   })
 
+  it('by many at once needs no second connection while it holds one', async () => {
+    const orm = await openOrm(database.url, 2)
+    setRuntime(testRuntime({ ...database, orm }, () => now))
+    try {
+      const attempts = await Promise.allSettled(Array.from({ length: 6 }, () => submit(signInAction, form)))
+      expect(attempts.map((one) => one.status === 'rejected' && one.reason.message)).toEqual(
+        Array.from({ length: 6 }, () => 'NEXT_REDIRECT'),
+      )
+    } finally {
+      setRuntime(runtime)
+      await orm.close(true)
+    }
+  })
+
+  it('is throttled, and a success clears what was counted', async () => {
+    for (let n = 0; n < THROTTLE.email.attempts + 2; n++)
+      await expect(submit(signInAction, form)).rejects.toThrow('NEXT_REDIRECT')
+    const guess = { ...form, email: 'guessed@harbourline.example' }
+    const codes = []
+    for (let n = 0; n < THROTTLE.email.attempts + 2; n++)
+      codes.push(problemOf(await submit(signInAction, guess))?.code)
+    expect(codes.slice(-3)).toEqual(['bad-credentials', 'throttled', 'throttled'])
+    // What was counted is entered; beyond that a stranger cannot make the log grow.
+    expect(await fork().count(AuditEntrySchema, { actor: guess.email })).toBe(THROTTLE.email.attempts)
+  })
+
+  it('with text that cannot be stored is a problem and not a failure', async () => {
+    const state = await submit(signInAction, { ...form, email: 'owner\0@harbourline.example' })
+    expect(problemOf(state)).toMatchObject({ code: 'invalid-input', status: 400 })
+    expect(runtime.failures).toEqual([])
+  })
+
   it('is refused from another site', async () => {
     next.headers.set('origin', 'http://elsewhere.example')
     expect(problemOf(await submit(signInAction, form))).toMatchObject({ code: 'wrong-origin' })
@@ -113,6 +152,42 @@ describe('signing in by form', () => {
       createdAt: now,
     })
     await em.flush()
+  })
+})
+
+describe('a page', () => {
+  it('whose address holds a NUL is not found', async () => {
+    await signedInAs(0)
+    const filter = { text: '\0' }
+    await expect(page('overlay.read', (call) => getOverlay(call, 'tides\0'), 'tides\0')).rejects.toThrow(
+      'NEXT_NOT_FOUND',
+    )
+    await expect(page('audit.read', (call) => listAudit(call, filter), filter)).rejects.toThrow(
+      'NEXT_NOT_FOUND',
+    )
+    expect(runtime.failures).toEqual([])
+  })
+})
+
+describe('a stranger', () => {
+  it('who is refused leaves nothing in the audit log', async () => {
+    const before = await fork().count(AuditEntrySchema)
+    const password = { password: PASSWORD, passwordAgain: PASSWORD }
+    const refusals = [
+      await submit(signOutAction, {}),
+      await submit(addMemberAction, person),
+      await submit(signInAction, { email: '', password: '' }),
+      await submit(setPasswordAction, { token: 'made up', ...password }),
+      await submit(firstRunAction, { team: 'T', name: 'N', email: 'n@pinnet.example', password: PASSWORD }),
+    ]
+    expect(refusals.map((state) => problemOf(state)?.code)).toEqual([
+      'not-signed-in',
+      'not-signed-in',
+      'invalid-input',
+      'link-spent',
+      'not-first-run',
+    ])
+    expect(await fork().count(AuditEntrySchema)).toBe(before)
   })
 })
 

@@ -24,7 +24,11 @@ interface Ended {
 }
 function spawnAdmin(...words: string[]): Promise<Ended> {
   const env = { ...process.env, DATABASE_URL: database.url, NODE_OPTIONS: '' }
-  return run(process.execPath, ['--conditions=react-server', '--import', 'tsx', 'scripts/admin.ts', ...words], { cwd: root, env }).then(
+  return run(
+    process.execPath,
+    ['--conditions=react-server', '--import', 'tsx', 'scripts/admin.ts', ...words],
+    { cwd: root, env },
+  ).then(
     ({ stdout, stderr }) => ({ stdout, stderr, code: 0 }),
     (error: Ended) => ({ stdout: error.stdout, stderr: error.stderr, code: error.code }),
   )

@@ -1,11 +1,12 @@
 import { randomBytes } from 'node:crypto'
-import { mkdtemp, readFile, rm, stat, writeFile } from 'node:fs/promises'
+import { mkdtemp, readdir, readFile, rm, stat, writeFile } from 'node:fs/promises'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { createClock, createPost, createWsTransport, silentLogger } from '@/agent'
 import { type CommandComponents, enrolCommand, runCommand, statusCommand } from '@/agent/command/commands'
 import type { Options } from '@/agent/command/options'
+import { renewPass } from '@/agent/config'
 import { EXIT } from '@/agent/exit-codes'
 import { createRandom } from '@/lib/method/random'
 import { serve, TestCollector } from '../support/test-collector'
@@ -87,6 +88,34 @@ describe('enrol', () => {
     expect(complaints.at(-1)).toContain('cannot be reached')
   })
 
+  test('where the configuration cannot be written does not use up the code', async () => {
+    await writeFile(join(folder, 'file'), '')
+    const nowhere = options('pin-02', { config: join(folder, 'file', 'pin-02.json') })
+    expect(await enrolCommand(components, nowhere, never)).toBe(EXIT.config)
+    expect(complaints.at(-1)).toContain('The joining code was not used')
+    expect(collector.agents.has('agent-pin-02')).toBe(false)
+  })
+
+  test('whose answer is lost keeps the key, and gets the answer when it is tried again', async () => {
+    const lossy: CommandComponents = {
+      ...components,
+      post: async (url, init) => {
+        await components.post(url, init)
+        throw new Error('the line went dead')
+      },
+    }
+    const path = join(folder, 'eel-09.json')
+    expect(await enrolCommand(lossy, options('eel-09'), never)).toBe(EXIT.unreachable)
+    const { key } = collector.agents.get('agent-eel-09')!
+    expect((await stat(path)).mode & 0o777).toBe(0o600)
+    expect(await runCommand(components, options('eel-09'), never)).toBe(EXIT.config)
+    expect(complaints.at(-1)).toContain('Enrol again')
+    expect(await enrolCommand(components, options('eel-09', { code: 'wrong' }), never)).toBe(EXIT.refused)
+    expect(await enrolCommand(components, options('eel-09'), never)).toBe(EXIT.ok)
+    expect(collector.agents.get('agent-eel-09')!.key).toBe(key)
+    expect((await readdir(folder)).filter((name) => name.startsWith('eel-09'))).toEqual(['eel-09.json'])
+  })
+
   test('without a name is wrong use', async () => {
     expect(await enrolCommand(components, options('x', { name: null }), never)).toBe(EXIT.usage)
   })
@@ -129,6 +158,34 @@ describe('run', () => {
     await heard
     stopping.abort()
     expect(await Promise.all(runs)).toEqual([EXIT.ok, EXIT.ok])
+  })
+
+  test('puts a renewed pass into the configuration as it was edited meanwhile', async () => {
+    const path = join(folder, 'gul-05.json')
+    expect(await enrolCommand(components, options('gul-05'), never)).toBe(EXIT.ok)
+    const stopping = new AbortController()
+    const written = JSON.parse(await readFile(path, 'utf8'))
+    const edited = { ...written, neighbours: ['ws://pin-02.example:4711'], pass: 'stale', note: 'by hand' }
+    const editing: CommandComponents = {
+      ...components,
+      post: async (url, init) => {
+        if (url.pathname.endsWith('/session')) await writeFile(path, JSON.stringify(edited))
+        else stopping.abort()
+        return components.post(url, init)
+      },
+    }
+    expect(await runCommand(editing, options('gul-05'), stopping.signal)).toBe(EXIT.ok)
+    const after = JSON.parse(await readFile(path, 'utf8'))
+    expect(after.pass).toMatch(/^eyJ/)
+    expect(after).toEqual({ ...edited, pass: after.pass, passExpiresAt: after.passExpiresAt })
+  })
+
+  test('leaves a configuration alone that is another agent’s by now', async () => {
+    const path = join(folder, 'gul-05.json')
+    const before = await readFile(path, 'utf8')
+    const grant = { pass: 'new', passExpiresAt: '2031-05-07T12:00:00.000Z' }
+    expect(await renewPass(path, 'agent-tar-01', grant)).toContain('agent-gul-05')
+    expect(await readFile(path, 'utf8')).toBe(before)
   })
 
   test('on an address that is not this machine’s says that it cannot listen', async () => {

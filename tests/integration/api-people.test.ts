@@ -163,6 +163,19 @@ describe('input', () => {
     expect([answer.status, answer.body.code]).toEqual([status, code])
   })
 
+  it('of an address with a NUL in it is a problem and not a failure', async () => {
+    const before = runtime.failures.length
+    const read = await ask(getOverlay, { slug: 'tides\0' }, { token: tokens.read })
+    expect([read.status, read.body.code]).toEqual([400, 'invalid-input'])
+    const written = await ask(
+      createOverlay,
+      {},
+      { token: tokens.write, body: { ...overlay('nul'), name: 'a\0b' } },
+    )
+    expect([written.status, written.body.code]).toEqual([400, 'invalid-input'])
+    expect(runtime.failures.length).toBe(before)
+  })
+
   it('is not looked at before the caller is known', async () => {
     expect((await ask(createOverlay, {}, { raw: '{"name":' })).body.code).toBe('not-signed-in')
   })

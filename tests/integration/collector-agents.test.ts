@@ -6,14 +6,22 @@ import {
   AgentSchema,
   AgentSessionSchema,
   AgentStateSchema,
+  AuditEntrySchema,
   ControlSchema,
   JoiningCodeSchema,
 } from '@/entities'
 import { Ingest } from '@/lib/collector/ingest'
+import { storeStates } from '@/lib/collector/ingest-store'
 import { systemClock } from '@/lib/collector/process'
 import { sql } from '@/lib/db'
 import { setRuntime } from '@/lib/http/runtime'
-import { enrolReplySchema, generateKeys, sessionReplySchema, verifyPass } from '@/lib/protocol'
+import {
+  enrolReplySchema,
+  generateKeys,
+  MAX_REPORT_BYTES,
+  sessionReplySchema,
+  verifyPass,
+} from '@/lib/protocol'
 import {
   call,
   deliver,
@@ -35,6 +43,7 @@ let runtime: ReturnType<typeof testRuntime>
 let teamId: string
 let overlay: { id: string; slug: string }
 let count = 0
+let startedAt = new Date()
 const HOUR_MS = 3_600_000
 
 beforeAll(async () => {
@@ -50,10 +59,13 @@ afterAll(async () => {
 beforeEach(async () => {
   overlay = await seedOverlay(database, teamId, { slug: `tides-${count++}` })
   runtime.failures.length = 0
+  startedAt = new Date()
 })
 
 const em = () => database.orm.em.fork()
 const agentsOf = () => em().find(AgentSchema, { overlay: overlay.id })
+const enrolmentsEntered = () =>
+  em().count(AuditEntrySchema, { action: 'agent.enrol', at: { $gte: startedAt } })
 const stateOf = (member: Member) => em().findOne(AgentStateSchema, member.agentId)
 const usesOf = async (code: string) => {
   const codes = await em().find(JoiningCodeSchema, { overlay: overlay.id, hint: code.slice(0, 5) })
@@ -95,6 +107,7 @@ describe('enrolling', () => {
     expect(enrolReplySchema.parse(await again.json()).agentId).toBe(first.agentId)
     expect(await usesOf(code)).toBe(1)
     expect(await agentsOf()).toMatchObject([{ address: 'ws://127.0.0.1:4001/' }])
+    expect(await enrolmentsEntered()).toBe(1)
   })
 
   it('by many at once takes no more uses than a code has, and refuses the others', async () => {
@@ -187,6 +200,7 @@ describe('enrolling', () => {
     expect([problem.status, problem.code]).toEqual([status, code])
     expect(problem.body).toMatchObject({ ...members, retry: false })
     expect(await agentsOf()).toEqual([])
+    expect(await enrolmentsEntered()).toBe(0)
     expect(runtime.failures).toEqual([])
   })
 })
@@ -297,6 +311,37 @@ describe('a report', () => {
     expect(await stateOf(member)).toMatchObject({ reportNumber: 1, incarnation: 'incarnation-2' })
   })
 
+  it('of a former incarnation that arrives late is a no-op, whichever process takes it in', async () => {
+    const member = await join()
+    const of = (incarnation: string, number: number) => ({ ...someReport(number), incarnation })
+    await deliver(member, of('incarnation-1', 7))
+    await deliver(member, of('incarnation-2', 1))
+    await deliver(member, of('incarnation-2', 2))
+    const late = await sendReport(member, of('incarnation-1', 8))
+    expect(await late.json()).toMatchObject({ repeated: true })
+    // As of a process that judged it before it knew of the present incarnation.
+    const row = { agentId: member.agentId, overlayId: overlay.id }
+    await storeStates(em(), [{ ...row, report: of('incarnation-1', 9) }])
+    expect(await stateOf(member)).toMatchObject({ incarnation: 'incarnation-2', reportNumber: 2 })
+    await deliver(member, of('incarnation-3', 1))
+    expect(await stateOf(member)).toMatchObject({
+      incarnation: 'incarnation-3',
+      previousIncarnation: 'incarnation-2',
+    })
+  })
+
+  it('of a thousand named links is stored whole', async () => {
+    const member = await join()
+    const links = Array.from({ length: 1_000 }, (_, index) => ({
+      peer: crypto.randomUUID(),
+      weight: 1 - index / 3_000,
+      share: index / 7_000,
+    }))
+    const one = someReport(1)
+    expect((await sendReport(member, { ...one, node: { ...one.node, links } })).status).toBe(200)
+    expect((await stateOf(member))?.node.links).toEqual(links)
+  })
+
   it('one of many sent at once: each is stored under its own agent, the newest last', async () => {
     const code = await seedCode(database, overlay.id, { uses: 6 })
     const members = await Promise.all(
@@ -353,8 +398,8 @@ describe('a report', () => {
   const refused: [string, (member: Member) => Promise<Response>, number, string][] = [
     ['malformed JSON', (member) => sendReport(member, '{"number": 6,'), 400, 'malformed-json'],
     [
-      'a body over 64 kB',
-      (member) => sendReport(member, JSON.stringify({ ...good, more: 'x'.repeat(70_000) })),
+      'a body over a mebibyte',
+      (member) => sendReport(member, JSON.stringify({ ...good, more: 'x'.repeat(MAX_REPORT_BYTES) })),
       413,
       'too-large',
     ],

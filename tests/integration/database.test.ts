@@ -1,6 +1,17 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { OverlayEventSchema, OverlaySchema, type Reading, ReadingSchema, TeamSchema } from '@/entities'
-import { acquireLockAt, ensurePartitions, Listener, LockSession, notify, sql, withLock } from '@/lib/db'
+import {
+  acquireLockAt,
+  closeDatabase,
+  ensurePartitions,
+  getOrm,
+  Listener,
+  LockSession,
+  notify,
+  openOrm,
+  sql,
+  withLock,
+} from '@/lib/db'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 
 let database: TestDatabase
@@ -89,6 +100,19 @@ describe('the entities and the migrations', () => {
     expect(stored).toMatchObject(reading(overlay.id, at))
     const [event] = await fresh.find(OverlayEventSchema, {})
     expect(event).toMatchObject({ id: 1, overlayId: overlay.id, at, kind: 'withheld' })
+  })
+})
+
+describe('a statement', () => {
+  it('of a request is given up on after a while; one of a migration is not', async () => {
+    const limited = await openOrm(database.url, 1, 50)
+    await expect(sql(limited.em.fork(), 'select pg_sleep(20)')).rejects.toThrow('statement timeout')
+    await limited.close(true)
+    const limitOf = async (orm: typeof limited) => sql(orm.em.fork(), 'show statement_timeout')
+    expect(await limitOf(database.orm)).toEqual([{ statement_timeout: '0' }])
+    process.env.DATABASE_URL = database.url
+    expect(await limitOf(await getOrm())).toEqual([{ statement_timeout: '10s' }])
+    await closeDatabase()
   })
 })
 

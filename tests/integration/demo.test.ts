@@ -132,8 +132,11 @@ test('history is stored whole, marked as demo, and tells what is usual from the 
   )
   expect(events).toHaveLength(history.events.length)
   expect(events.length).toBeGreaterThan(0)
-  const usual = new Usual({ forkEm: async () => em.fork(), clock: new FakeClock() }, { overlayId })
-  expect(await usual.at(nowMs)).toBe(2)
+  const log = { warn: () => {} }
+  const usual = new Usual({ forkEm: async () => em.fork(), clock: new FakeClock(), log }, { overlayId })
+  usual.at(nowMs)
+  await usual.settled()
+  expect(usual.at(nowMs)).toBe(2)
 })
 
 function sampleOf(lambda2: number): Sample {

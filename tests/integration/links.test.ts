@@ -76,6 +76,40 @@ describe('two agents over WebSocket', () => {
     await b.until(() => b.node.linkState('tar-01') === 'open' && a.node.linkState('gul-04') === 'open')
   })
 
+  test('of two processes with one configuration the later one stays linked, and they do not take turns', async () => {
+    const [first, second, b] = [
+      new LinkEnd(overlay, tar),
+      new LinkEnd(overlay, tar, { life: 1 }),
+      new LinkEnd(overlay, gul),
+    ]
+    const address = await start(b)
+    await start(first)
+    await start(second)
+    first.links.addNeighbour({ address })
+    await first.until(linked(first, b))
+    second.links.addNeighbour({ address })
+    const turnedAway = () =>
+      first.events.filter(({ kind, reason }) => kind === 'link-down' && reason === 'stale-incarnation').length
+    await first.until(() => turnedAway() >= 4)
+    expect(b.events).toEqual([
+      { kind: 'link-up', peer: 'tar-01', reason: '' },
+      { kind: 'link-up', peer: 'tar-01', reason: '' },
+    ])
+    expect(second.events).toEqual([{ kind: 'link-up', peer: 'gul-04', reason: '' }])
+  })
+
+  test('a quality that is none is refused where it is said, and the link comes up as if it had not been', async () => {
+    const [a, b] = [new LinkEnd(overlay, tar), new LinkEnd(overlay, gul)]
+    const address = await start(b)
+    await start(a)
+    a.links.addNeighbour({ address })
+    for (const quality of [2, -0.1, Number.NaN]) {
+      expect(() => a.links.setQuality(address, quality)).toThrow(RangeError)
+      expect(() => a.links.setQuality('gul-04', quality)).toThrow(RangeError)
+    }
+    await a.until(linked(a, b))
+  })
+
   test('removing a neighbour nobody knows changes nothing', async () => {
     const a = new LinkEnd(overlay, tar)
     await start(a)

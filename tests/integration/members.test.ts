@@ -1,5 +1,5 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
-import { ApiTokenSchema, MembershipSchema, PasswordLinkSchema, SessionSchema } from '@/entities'
+import { ApiTokenSchema, MembershipSchema, PasswordLinkSchema, SessionSchema, UserSchema } from '@/entities'
 import { authenticate } from '@/lib/auth/authenticate'
 import { ANYONE } from '@/lib/auth/caller'
 import type { Role } from '@/lib/auth/permissions'
@@ -59,6 +59,19 @@ describe('the last owner', () => {
     const refused = results.flatMap((result) => (result.status === 'rejected' ? [result.reason] : []))
     expect(refused).toMatchObject([{ code: 'last-owner' }])
     expect((await roles()).filter((role) => role === 'owner')).toHaveLength(1)
+  })
+
+  it('is the last who has a password: one who never signed in does not count', async () => {
+    await fork().nativeUpdate(UserSchema, { id: member(1).userId }, { passwordHash: null })
+    const { memberId } = member(0)
+    await expect(as(0, (call) => removeMember(call, memberId))).rejects.toMatchObject({ code: 'last-owner' })
+    await expect(as(0, (call) => changeRole(call, { memberId, role: 'viewer' }))).rejects.toMatchObject({
+      code: 'last-owner',
+    })
+    const { members } = await listMembers(await callAsUser(database, member(0).userId, now))
+    expect(members.filter(({ lastOwner }) => lastOwner).map(({ id }) => id)).toEqual([memberId])
+    await as(0, (call) => removeMember(call, member(1).memberId))
+    expect(await roles()).toEqual(['operator', 'owner', 'viewer'])
   })
 
   it('is marked in the list', async () => {
@@ -137,6 +150,64 @@ describe('adding a person', () => {
     await expect(add(`no${number}@pinnet.example`, 'viewer', index)).rejects.toMatchObject({
       code: 'forbidden',
     })
+  })
+})
+
+describe('a person whom two teams add before there is a password', () => {
+  const email = () => `both${number}@pinnet.example`
+  const input = () => ({ name: 'Ada Quay', email: email(), role: 'owner' as const })
+  const later = new Date(now.getTime() + 1000)
+  let second: TeamSeed
+  beforeEach(async () => {
+    second = await seedTeam(fork(), `second${number}`, ['owner'], now)
+  })
+  const asSecond = async <T>(run: (call: Call) => Promise<T>) => {
+    const call = await callAsUser(database, second.members[0]!.userId, later)
+    return fork().transactional((tx) => run({ ...call, em: tx }))
+  }
+  const membershipIn = async (teamId: string) =>
+    (await fork().findOneOrFail(MembershipSchema, { team: teamId, user: { email: email() } })).id
+  const linkWorks = (token: string) =>
+    readPasswordLink(callAs(fork(), ANYONE, later), token).then(
+      () => true,
+      () => false,
+    )
+
+  it('gets links from the first team only, and the second cannot spoil them', async () => {
+    const first = tokenIn((await as(0, (call) => addMember(call, input()))).url)
+    expect(await asSecond((call) => addMember(call, input()))).toMatchObject({ active: false, url: null })
+    const id = await membershipIn(second.teamId)
+    await expect(asSecond((call) => newMemberLink(call, id))).rejects.toMatchObject({ code: 'other-team' })
+    await asSecond((call) => removeMember(call, id))
+    expect(await linkWorks(first)).toBe(true)
+    const ours = await membershipIn(team.teamId)
+    expect(await linkWorks(tokenIn((await as(0, (call) => newMemberLink(call, ours))).url))).toBe(true)
+  })
+
+  it('is the second team’s once the first has removed them, and the first’s link is void', async () => {
+    const first = tokenIn((await as(0, (call) => addMember(call, input()))).url)
+    await asSecond((call) => addMember(call, input()))
+    const ours = await membershipIn(team.teamId)
+    await as(0, (call) => removeMember(call, ours))
+    expect(await linkWorks(first)).toBe(false)
+    const id = await membershipIn(second.teamId)
+    expect(await linkWorks(tokenIn((await asSecond((call) => newMemberLink(call, id))).url))).toBe(true)
+  })
+
+  it('at once gets one link', async () => {
+    const added = await Promise.all([
+      as(0, (call) => addMember(call, input())),
+      asSecond((call) => addMember(call, input())),
+    ])
+    expect(added.filter(({ url }) => url !== null)).toHaveLength(1)
+  })
+
+  it('and one who has lost a password keeps no link of the first team on joining the second', async () => {
+    const reset = tokenIn((await as(0, (call) => newMemberLink(call, member(3).memberId))).url)
+    expect(await linkWorks(reset)).toBe(true)
+    const added = await asSecond((call) => addMember(call, { ...input(), email: member(3).email }))
+    expect(added).toMatchObject({ active: true, url: null })
+    expect(await linkWorks(reset)).toBe(false)
   })
 })
 

@@ -5,7 +5,7 @@ import { ANYONE } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import { createSession, readSession, SESSION_DAYS } from '@/lib/auth/session'
 import { SignInThrottle, THROTTLE } from '@/lib/auth/throttle'
-import { signIn, signOut } from '@/lib/data/sign-in'
+import { countAttempt, signIn, signOut } from '@/lib/data/sign-in'
 import { firstRun, isFirstRun } from '@/lib/data/users'
 import { sql } from '@/lib/db'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
@@ -101,8 +101,11 @@ describe('a session', () => {
 })
 
 describe('signing in', () => {
-  const attempt = (email: string, password: string, throttle = new SignInThrottle(database.orm)) =>
-    signIn(callAs(fork(), ANYONE, now), { throttle }, { email, password })
+  const attempt = async (email: string, password: string) => {
+    const throttle = new SignInThrottle(database.orm)
+    await countAttempt(callAs(fork(), ANYONE, now), { throttle }, { email })
+    return signIn(callAs(fork(), ANYONE, now), { email, password })
+  }
 
   it('works with the right password', async () => {
     const { value } = await attempt('owner@eelholm.example', PASSWORD)
@@ -130,8 +133,14 @@ describe('signing in', () => {
     expect(await processes[0]!.count({ email: 'other@eelholm.example', address: null })).toBe(null)
   })
 
-  it('that succeeds clears the count of the e-mail address', async () => {
-    const email = 'owner@eelholm.example'
-    for (let n = 0; n < THROTTLE.email.attempts + 3; n++) await attempt(email, PASSWORD)
+  it('is throttled for one network address, whomever it tries', async () => {
+    const throttle = new SignInThrottle(database.orm)
+    const address = '198.51.100.7'
+    const counts = await Promise.all(
+      Array.from({ length: THROTTLE.address.attempts + 1 }, (_, n) =>
+        throttle.count({ email: `guess${n}@eelholm.example`, address }),
+      ),
+    )
+    expect(counts.filter((wait) => wait === null)).toHaveLength(THROTTLE.address.attempts)
   })
 })

@@ -71,7 +71,7 @@ export class LinkEnd {
       this.links.accept(connection),
     )
     this.timer = setInterval(() => {
-      this.links.deliver(this.node.tick(realClock.monotonicMs()))
+      this.links.deliver(this.node.tick(realClock.monotonicMs(), (peer) => this.links.isCarried(peer)))
       this.wake()
     }, 10)
     return this.listening.address

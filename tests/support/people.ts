@@ -71,5 +71,6 @@ export function testRuntime(database: TestDatabase, now: () => Date): Runtime & 
     now,
     log: { info: () => {}, warn: () => {}, error: (data) => failures.push(data) },
     address: null,
+    trustedProxies: 0,
   }
 }

@@ -1,4 +1,6 @@
-import { afterEach, describe, expect, test } from 'vitest'
+import { afterEach, describe, expect, test, vi } from 'vitest'
+import { WalkNode } from '@/lib/method/node'
+import { ordersLifeMs } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import { someOrders } from '../support/frames'
 import { during, memorySwarm, type Swarm, type SwarmInit } from '../support/memory-swarm'
@@ -66,7 +68,7 @@ describe('an agent', () => {
   test('whose whole overlay is cut off freezes when its orders expire, and thaws with new ones', async () => {
     await begin()
     for (const name of swarm.fleet.names) swarm.fleet.silence(name)
-    await swarm.clock.advance(5 * intervalMs)
+    await swarm.clock.advance(ordersLifeMs(intervalMs) + intervalMs)
     expect([status('tar-01').frozen, status('gul-04').frozen]).toEqual([true, true])
     for (const name of swarm.fleet.names) swarm.fleet.hear(name)
     await swarm.clock.advance(6 * intervalMs)
@@ -82,6 +84,17 @@ describe('an agent', () => {
     await during(swarm.clock, swarm.fleet.startAgent('tar-01'))
     expect(status('tar-01').incarnation).not.toBe(before)
     expect(status('gul-04').links).toMatchObject([{ peer: 'agent-tar-01', up: true, state: 'open' }])
+  })
+
+  test('makes no frames for a neighbour to whom there is no connection', async () => {
+    await begin()
+    await during(swarm.clock, swarm.fleet.stopAgent('gul-04'))
+    const tick = vi.spyOn(WalkNode.prototype, 'tick')
+    await swarm.clock.advance(5 * PACES.drill.tickMs)
+    const frames = tick.mock.results.map(({ value }) => value)
+    tick.mockRestore()
+    expect(frames.length).toBeGreaterThan(2)
+    expect(frames.flat()).toEqual([])
   })
 
   test('says in its report what it sees: links, version, uptime', async () => {

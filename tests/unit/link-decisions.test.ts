@@ -10,6 +10,7 @@ const candidate: AdmissionCase = {
   isBanned: false,
   acceptUnknown: true,
   incarnation: 'second',
+  isRetired: false,
   opened: 7,
   latest: null,
 }
@@ -31,6 +32,11 @@ describe('whether a proven peer may have a link', () => {
     [
       'a start whose connection was opened before the one of the newest start',
       { latest: { incarnation: 'third', opened: 8 } },
+      'stale-incarnation',
+    ],
+    [
+      'a start that was replaced and comes back on a new connection',
+      { isRetired: true, latest: { incarnation: 'third', opened: 6 } },
       'stale-incarnation',
     ],
     [

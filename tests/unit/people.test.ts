@@ -16,7 +16,7 @@ describe('the throttling plan', () => {
     const kinds = (attempt: Parameters<typeof throttleKeys>[0]) =>
       throttleKeys(attempt).map(({ kind }) => kind)
     expect(kinds({ email: 'a@b.example', address: '192.0.2.1' })).toEqual(['email', 'address'])
-    expect(kinds({ email: 'a@b.example', address: null })).toEqual(['email'])
+    expect(kinds({ email: 'a@b.example', address: null })).toEqual(['email', 'unknown'])
     const [one] = throttleKeys({ email: ' A@B.example ', address: null })
     const [two] = throttleKeys({ email: 'a@b.example', address: null })
     expect(one).toEqual(two)

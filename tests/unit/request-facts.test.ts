@@ -2,8 +2,8 @@ import { describe, expect, it } from 'vitest'
 import { cookieHeader, readCookie } from '@/lib/auth/cookie'
 import { requestFacts } from '@/lib/http/request-facts'
 
-const facts = (headers: Record<string, string>, address: string | null = null) =>
-  requestFacts(new Headers({ host: 'thinspan.test:3000', ...headers }), 'POST', address)
+const facts = (headers: Record<string, string>, address: string | null = null, trustedProxies = 0) =>
+  requestFacts(new Headers({ host: 'thinspan.test:3000', ...headers }), 'POST', { address, trustedProxies })
 
 describe('a request is foreign', () => {
   it.each([
@@ -44,6 +44,26 @@ describe('the facts of a request', () => {
       secure: true,
     })
     expect(facts({})).toMatchObject({ origin: 'http://thinspan.test:3000', secure: false })
+  })
+
+  it.each([
+    [0, '192.0.2.7', null],
+    [1, '192.0.2.7', '192.0.2.7'],
+    [1, 'made up, 192.0.2.7', '192.0.2.7'],
+    [2, 'made up,192.0.2.7,198.51.100.1', '192.0.2.7'],
+    [2, '192.0.2.7', null],
+    [1, undefined, null],
+    [1, 'made up,', null],
+  ])('with %i trusted proxies take the address from %j to be %j', (proxies, forwardedFor, address) => {
+    const headers: Record<string, string> = forwardedFor ? { 'x-forwarded-for': forwardedFor } : {}
+    expect(facts(headers, null, proxies).address).toBe(address)
+  })
+
+  it('survive a host that is none', () => {
+    expect(facts({ host: '][', origin: 'http://elsewhere.example' })).toMatchObject({
+      foreign: true,
+      origin: 'http://localhost',
+    })
   })
 
   it.each([

@@ -6,7 +6,7 @@ import { AuditFilterForm } from './audit-filter-form'
 import { AuditTable } from './audit-table'
 
 export async function AuditSheet({ filter }: { filter: AuditFilter }) {
-  const result = await page('audit.read', (call) => listAudit(call, filter))
+  const result = await page('audit.read', (call) => listAudit(call, filter), filter)
   if (!result.ok)
     return (
       <FailedState

@@ -3,6 +3,7 @@
 import { useActionState } from 'react'
 import { FormOutcome } from '@/app/(auth)/form-outcome'
 import { Button, ChoiceField, Outcome, TextField } from '@/components/ui'
+import type { SetPasswordLink } from '@/lib/data'
 import { ROLES } from '@/lib/data/dto'
 import { fieldError, fieldValue, IDLE } from '@/lib/http/form-state'
 import { addMemberAction } from './actions'
@@ -29,7 +30,7 @@ export function AddMemberForm({ team }: { team: string }) {
         />
         <TextField
           label="E-mail address"
-          hint="Nothing is sent: you will get a link to pass on."
+          hint="Nothing is sent: for someone new here you will get a link to pass on."
           name="email"
           type="email"
           autoComplete="off"
@@ -54,21 +55,13 @@ export function AddMemberForm({ team }: { team: string }) {
   )
 }
 
-function Added({
-  name,
-  email,
-  url,
-  expiresAt,
-}: {
-  name: string
-  email: string
-  url: string | null
-  expiresAt: string | null
-}) {
+function Added({ name, email, active, url, expiresAt }: SetPasswordLink) {
   if (url === null || expiresAt === null)
     return (
       <Outcome ok>
-        {name} is in the team and signs in as {email} with the password already in use.
+        {active
+          ? `${name} is in the team and signs in as ${email} with the password already in use.`
+          : `${name} is in the team, but has not set a password yet: that takes the link from the team that added ${email} first. Until then whoever holds that link can get in here too.`}
       </Outcome>
     )
   return <PasswordLinkBlock name={name} url={url} expiresAt={expiresAt} />

@@ -10,7 +10,11 @@ import { ROLE_WORDS } from './roles'
 export function RoleForm({ member }: { member: Member }) {
   const [state, submit, busy] = useActionState(changeRoleAction, IDLE)
   if (member.lastOwner)
-    return <span className="text-sm text-soft">The only owner: make someone else an owner first.</span>
+    return (
+      <span className="text-sm text-soft">
+        The only owner who can sign in: make someone else an owner first.
+      </span>
+    )
   return (
     <form action={submit} className="flex flex-wrap items-center gap-2">
       <input type="hidden" name="memberId" value={member.id} />

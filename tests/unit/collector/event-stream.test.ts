@@ -79,6 +79,20 @@ it('a quiet stream says that it lives, and ends after a while so that rights are
   expect(ended()).toBe(true)
 })
 
+it('without notices of readings the present one is looked at now and then, as its age may tell', async () => {
+  const { read, clock, tell, stop } = open()
+  await read()
+  await read()
+  tell('reading')
+  expect(await read()).toBe('event: reading\ndata: {"look":2}\n\n')
+  await clock.advance(HEARTBEAT_MS)
+  expect(await read()).toBe(': still here\n\n')
+  await clock.advance(HEARTBEAT_MS)
+  expect([await read(), await read()]).toEqual([': still here\n\n', 'event: reading\ndata: {"look":3}\n\n'])
+  stop.abort()
+  expect(await read()).toBeNull()
+})
+
 it('a reader that goes ends the listening', async () => {
   const { reader, ended } = open()
   await reader.read()

@@ -96,6 +96,12 @@ const eelSilent = (atMs: number): JudgedAgent[] =>
   agents((_, index) => (index < 4 ? {} : { heard: false, heardAtMs: atMs }))
 
 describe('a judgement', () => {
+  it('remembers the usual for whoever leads next', () => {
+    const course = new Course()
+    expect(course.next({}, { usual: 0.66 }).memory.usual).toBe(0.66)
+    expect(course.next({}, { usual: null }).memory.usual).toBeNull()
+  })
+
   it('of a fresh reading gives level, sides by overlap with the eldest on a, and what the cut follows', () => {
     const { reading, events } = new Course().next()
     expect(reading).toMatchObject({

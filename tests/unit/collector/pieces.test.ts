@@ -2,13 +2,13 @@ import { describe, expect, it } from 'vitest'
 import { labelFollowed } from '@/lib/collector/follows'
 import { LinkWatch } from '@/lib/collector/link-watch'
 import { isPassDue } from '@/lib/collector/passes'
-import { judgeReport } from '@/lib/collector/report-check'
-import { isStorable } from '@/lib/collector/storable'
+import { heldOf, judgeReport } from '@/lib/collector/report-check'
 import { theilSen, trendOf } from '@/lib/collector/trend'
 import { HOUR_MS, usualOf } from '@/lib/collector/usual'
 import { listOf } from '@/lib/collector/words'
 import { fillWithheld } from '@/lib/data/fill-withheld'
 import { joinNamings, type Naming } from '@/lib/data/links'
+import { isStorable } from '@/lib/http/storable'
 import type { Snapshot } from '@/lib/method/control'
 import { someReport } from '@/tests/support/reports'
 
@@ -30,6 +30,17 @@ describe('the trend', () => {
 
   it('is steady where the change is within the half-width of the readings', () => {
     expect(trendOf(line(150, -0.001, 0.2))).toBe('steady')
+  })
+
+  it('is steady where a fall is being made good, and where a rise is being lost', () => {
+    const bent = (sign: 1 | -1) =>
+      line(60, 0).map(([at, value, half], index): [number, number, number] => [
+        at,
+        value + (sign * Math.max(0, Math.abs(index - 42) - 1)) / 60,
+        half,
+      ])
+    expect([trendOf(bent(1)), trendOf(bent(-1))]).toEqual(['steady', 'steady'])
+    expect([trendOf(bent(1).slice(0, 42)), trendOf(bent(-1).slice(0, 42))]).toEqual(['falling', 'rising'])
   })
 
   it('is not moved by a quarter of readings being far off', () => {
@@ -68,12 +79,19 @@ describe('the label a cut follows', () => {
 })
 
 describe('a report', () => {
-  const held = { incarnation: 'incarnation-1', number: 5, colonies: someReport(5).sums.colonies }
+  const held = heldOf(null, someReport(5))
 
   it('is new when its number is, or its incarnation', () => {
     expect(judgeReport(held, someReport(6))).toEqual({ kind: 'new' })
     expect(judgeReport(held, { ...someReport(1), incarnation: 'incarnation-2' })).toEqual({ kind: 'new' })
     expect(judgeReport(null, someReport(1))).toEqual({ kind: 'new' })
+  })
+
+  it('is repeated when it is of the incarnation before, whatever its number', () => {
+    const restarted = heldOf(held, { ...someReport(1), incarnation: 'incarnation-2' })
+    const later = heldOf(restarted, { ...someReport(2), incarnation: 'incarnation-2' })
+    expect(judgeReport(later, someReport(6))).toEqual({ kind: 'repeated' })
+    expect(judgeReport(later, { ...someReport(1), incarnation: 'incarnation-3' })).toEqual({ kind: 'new' })
   })
 
   it('is repeated when its number is not larger', () => {

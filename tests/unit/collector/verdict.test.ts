@@ -171,7 +171,7 @@ const table: [string, Partial<VerdictFacts>, string, string][] = [
     'enrolled but not started',
     { state: 'not-heard-yet', heard: 35, neverHeard: 1, level: null, rule: null },
     'Waiting to hear 1 agent of 36 for the first time.',
-    'Start the agents that have enrolled; revoke those that will not come.',
+    'Start the agents that have enrolled.',
   ],
   [
     'heard but not linked',

@@ -8,6 +8,8 @@ export const POST = route(
   { body: enrolRequestSchema, authenticate: async (_em, { body }) => proveEnrolment(body) },
   async (call, { body }) => {
     const { created, reply } = await enrolAgent(call, body)
+    // Agents enrol again at every start.
+    if (!created) call.note({ omit: true })
     return Response.json(reply, { status: created ? 201 : 200, headers: { 'cache-control': 'no-store' } })
   },
 )

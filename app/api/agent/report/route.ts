@@ -3,7 +3,7 @@ import { getIngest } from '@/lib/collector/process'
 import { AppError } from '@/lib/http/app-error'
 import { authorise } from '@/lib/http/call'
 import { route } from '@/lib/http/route'
-import { reportSchema } from '@/lib/protocol'
+import { MAX_REPORT_BYTES, reportSchema } from '@/lib/protocol'
 
 const tickets = new WeakMap<Request, Ticket>()
 
@@ -12,6 +12,7 @@ export const POST = route(
   'agent.report',
   {
     body: reportSchema,
+    maxBytes: MAX_REPORT_BYTES,
     authenticate: async (_em, { body, request, facts }) => {
       if (!facts.bearer)
         throw new AppError('bad-token', 'Send the session token as "Authorization: Bearer …".')

@@ -9,7 +9,7 @@ export const metadata: Metadata = { title: 'Joining' }
 
 export default async function JoiningPage({ params }: { params: Promise<{ slug: string }> }) {
   const { slug } = await params
-  const codes = await page('joining-code.list', (call) => listJoiningCodes(call, slug))
+  const codes = await page('joining-code.list', (call) => listJoiningCodes(call, slug), slug)
   if (!codes.ok) {
     return (
       <>

@@ -8,7 +8,7 @@ export const metadata: Metadata = { title: 'Nodes' }
 
 export default async function NodesPage({ params }: { params: Promise<{ slug: string }> }) {
   const { slug } = await params
-  const overlay = await page('overlay.read', (call) => getOverlay(call, slug))
+  const overlay = await page('overlay.read', (call) => getOverlay(call, slug), slug)
   if (!overlay.ok) return <ProblemState problem={overlay.problem} />
   return (
     <>

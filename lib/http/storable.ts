@@ -1,4 +1,4 @@
-import { AppError } from '@/lib/http/app-error'
+import { AppError } from './app-error'
 
 /** With the u flag a whole pair is one character and does not match. */
 const HALF_A_PAIR = /\p{Surrogate}/u

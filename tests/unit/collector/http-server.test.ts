@@ -1,0 +1,56 @@
+import { once } from 'node:events'
+import { connect } from 'node:net'
+import { text } from 'node:stream/consumers'
+import { afterEach, beforeEach, describe, expect, it } from 'vitest'
+import { createRouteServer } from '@/lib/collector/http-server'
+import type { RouteHandler } from '@/lib/http/route'
+
+const echo: RouteHandler = Object.assign(
+  async (request: Request) => Response.json({ url: request.url, body: await request.text() }),
+  { permission: 'health.read' as const },
+)
+let server: ReturnType<typeof createRouteServer>
+let port: number
+
+beforeEach(async () => {
+  server = createRouteServer({ 'POST /echo': echo })
+  server.listen(0, '127.0.0.1')
+  await once(server, 'listening')
+  const address = server.address()
+  port = typeof address === 'object' && address ? address.port : 0
+})
+afterEach(async () => {
+  server.close()
+  await once(server, 'close')
+})
+
+/** What comes back for these very bytes. */
+async function say(lines: string[], body = ''): Promise<{ status: number; body: unknown }> {
+  const socket = connect(port, '127.0.0.1')
+  socket.write(
+    `${[...lines, 'connection: close', `content-length: ${body.length}`].join('\r\n')}\r\n\r\n${body}`,
+  )
+  const [head = '', ...rest] = (await text(socket)).split('\r\n\r\n')
+  const sent = rest.join('').replace(/^[0-9a-f]+\r\n|\r\n0$/g, '')
+  return { status: Number(head.split(' ')[1]), body: JSON.parse(sent) }
+}
+
+describe('the server of a collector alone', () => {
+  it('hands a request to its handler', async () => {
+    const answer = await say(['POST /echo?a=b HTTP/1.1', 'host: collector.test:3100'], 'tide')
+    expect(answer).toEqual({ status: 200, body: { url: 'http://collector.invalid/echo?a=b', body: 'tide' } })
+  })
+
+  it('says 404 for anything else', async () => {
+    expect(await say(['POST // HTTP/1.1', 'host: collector.test'])).toMatchObject({
+      status: 404,
+      body: { code: 'not-found' },
+    })
+  })
+
+  it('outlives a host that is none, and says 400', async () => {
+    const bad = await say(['POST /echo HTTP/1.1', 'host: ]['], 'tide')
+    expect(bad).toMatchObject({ status: 400, body: { code: 'invalid-input' } })
+    expect((await say(['POST /echo HTTP/1.1', 'host: collector.test'])).status).toBe(200)
+  })
+})
