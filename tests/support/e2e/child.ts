@@ -1,0 +1,78 @@
+import { type ChildProcess, spawn } from 'node:child_process'
+import { createInterface } from 'node:readline'
+import { endProcess, identify } from '@/scripts/lib/processes.mjs'
+
+export const ROOT = new URL('../../../', import.meta.url).pathname
+
+const STOP_SIGNALS = [
+  { name: 'SIGTERM', patienceMs: 15_000 },
+  { name: 'SIGKILL', patienceMs: 5_000 },
+]
+const TAIL_LINES = 40
+
+export interface ChildInit {
+  env?: Record<string, string>
+  cwd?: string
+  /** It starts programs of its own (a shell does), which must end with it. */
+  group?: boolean
+  onLine?: (line: string) => void
+}
+
+/** A program of a test: what it says is kept, and it ends with the test whatever becomes of it. */
+export class Child {
+  /** How it ended; null while it runs. */
+  ended: string | null = null
+  readonly end: Promise<string>
+  readonly lines: string[] = []
+  readonly #process: ChildProcess
+  readonly #group: boolean
+
+  constructor(command: string, args: readonly string[], init: ChildInit = {}) {
+    this.#group = init.group ?? false
+    this.#process = spawn(command, [...args], {
+      cwd: init.cwd ?? ROOT,
+      env: { ...process.env, ...init.env },
+      detached: this.#group,
+      stdio: ['pipe', 'pipe', 'pipe'],
+    })
+    const { stdout, stderr } = this.#process
+    for (const stream of [stdout, stderr]) {
+      if (!stream) continue
+      createInterface({ input: stream }).on('line', (line) => {
+        this.lines.push(line)
+        if (stream === stdout) init.onLine?.(line)
+      })
+    }
+    this.end = new Promise((resolve) => {
+      const settle = (how: string) => {
+        this.ended = how
+        process.off('exit', kill)
+        resolve(how)
+      }
+      this.#process.once('error', (error) => settle(error.message))
+      this.#process.once('exit', (code, signal) => settle(`ended with ${signal ?? `code ${code}`}`))
+    })
+    const { pid } = this.#process
+    const kill = () => {
+      if (pid !== undefined) process.kill(this.#group ? -pid : pid, 'SIGKILL')
+    }
+    process.once('exit', kill)
+  }
+
+  /** The last lines of what it said on either stream. */
+  tail(): string {
+    return this.lines.slice(-TAIL_LINES).join('\n')
+  }
+
+  write(line: string): void {
+    this.#process.stdin?.write(`${line}\n`)
+  }
+
+  async stop(): Promise<void> {
+    const { pid } = this.#process
+    const identity = pid === undefined ? null : identify(pid)
+    if (identity && this.ended === null)
+      await endProcess(identity, { signals: STOP_SIGNALS, group: this.#group })
+    await this.end
+  }
+}
