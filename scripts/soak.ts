@@ -15,7 +15,8 @@ const SOAKS: Record<string, Soak> = {
     env: { THINSPAN_AUDIT_RUNS: '2000' },
   },
   course: {
-    about: 'six simulated hours of restarts, flapping links and lost reports on four graphs',
+    about:
+      'six simulated hours (THINSPAN_SOAK_HOURS) of restarts, flapping links and lost reports on four graphs',
     file: 'tests/soak/course.test.ts',
     env: {},
   },

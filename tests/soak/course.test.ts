@@ -3,7 +3,7 @@ import { preferentialAttachment, randomRegular, tree, twoClusters } from '@/lib/
 import { createRandom } from '@/lib/method/random'
 import { exactLambda2, simulateOn } from '../support/overlays'
 
-const HOURS = 6
+const HOURS = Number(process.env.THINSPAN_SOAK_HOURS ?? 6)
 const INCIDENT_MS = 150_000
 /** After a change, readings have this long before they are judged. */
 const ANSWER_MS = 90_000
