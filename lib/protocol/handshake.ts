@@ -114,7 +114,7 @@ export class Handshake {
     }
     this.peerClaims = claims
     this.state = 'proof'
-    const proof = encodeProof(this.sign(this.transcript(this.init.role, this.peerHello.bytes)))
+    const proof = encodeProof(this.sign(this.statement(this.init.role, this.peerHello.bytes)))
     const effects: HandshakeEffect[] = [{ kind: 'send', bytes: proof }]
     return this.earlyProof ? [...effects, ...this.receiveProof(this.earlyProof)] : effects
   }
@@ -125,7 +125,7 @@ export class Handshake {
     const peerRole = this.init.role === 'dialer' ? 'listener' : 'dialer'
     const proven =
       bytes[0] === MESSAGE_KIND.proof &&
-      verifyBytes(claims.key, this.transcript(peerRole, peer.bytes), bytes.subarray(1))
+      verifyBytes(claims.key, this.statement(peerRole, peer.bytes), bytes.subarray(1))
     if (!proven) return this.fail('proof-wrong', 'the proof is not a signature of this exchange')
     this.state = 'over'
     return [
@@ -144,10 +144,10 @@ export class Handshake {
   }
 
   /** What the end in `signer`'s role signs: both hellos in the order dialer, listener. */
-  private transcript(signer: LinkRole, peerHello: Uint8Array): Uint8Array {
+  private statement(signer: LinkRole, peerHello: Uint8Array): Uint8Array {
     const [dialer, listener] =
       this.init.role === 'dialer' ? [this.ownHello, peerHello] : [peerHello, this.ownHello]
-    return linkTranscript(signer, dialer, listener)
+    return linkStatement(signer, dialer, listener)
   }
 
   private fail(close: CloseName, detail: string): HandshakeEffect[] {
@@ -156,7 +156,7 @@ export class Handshake {
   }
 }
 
-export function linkTranscript(
+export function linkStatement(
   signer: LinkRole,
   dialerHello: Uint8Array,
   listenerHello: Uint8Array,

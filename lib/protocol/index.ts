@@ -21,7 +21,7 @@ export {
   type HandshakeInit,
   type LinkPeer,
   type LinkRole,
-  linkTranscript,
+  linkStatement,
 } from './handshake'
 export { decodeHello, encodeHello, type Hello, helloSchema, INCARNATION, NONCE_BYTES } from './hello'
 export {

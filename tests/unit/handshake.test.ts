@@ -6,7 +6,7 @@ import {
   type HandshakeEffect,
   type HandshakeInit,
   type LinkRole,
-  linkTranscript,
+  linkStatement,
   MESSAGE_KIND,
   signBytes,
   verifyPass,
@@ -202,8 +202,8 @@ describe('a listener meets', () => {
         dialer.start()
         listener.start()
         await listener.receive(dialer.outbox[0]!)
-        const transcript = linkTranscript('listener', dialer.outbox[0]!, listener.outbox[0]!)
-        await listener.receive(encodeProof(signBytes(tar.keys.privateKey, transcript)))
+        const statement = linkStatement('listener', dialer.outbox[0]!, listener.outbox[0]!)
+        await listener.receive(encodeProof(signBytes(tar.keys.privateKey, statement)))
       },
     },
   }

@@ -2,8 +2,8 @@ import type { Frame } from '../frame'
 import { type Orders, ordersLifeMs } from '../orders'
 import { hash32, type Random } from '../random'
 import { type NodeFacts, type Report, SUMS_SCALE } from '../report'
-import { average, type Colony, dropAll, type Exits, openColony, place, walk } from './colony'
-import { CoarseValue, namedLinks, type ValuedLink } from './facts'
+import { average, type Colony, dropAll, openColony, place, walk } from './colony'
+import { CoarseValue, namedLinks } from './facts'
 import { notePeerOrders, shouldPassOrders } from './gossip'
 import { isFlood, type LedgerFault, ledgerFault, settle } from './ledger'
 import {
@@ -16,7 +16,8 @@ import {
   openLink,
   unacknowledgedLimitMs,
 } from './link'
-import { colonySums, energiesAndMoments, fiedlerValue, type MeasuredLink, sweepSums } from './sums'
+import { exitsFor, measuredLink, valuedLink } from './live-link'
+import { colonySums, energiesAndMoments, fiedlerValue, sweepSums } from './sums'
 import { TimeDebt } from './time-debt'
 
 export type ReceiveOutcome =
@@ -389,39 +390,4 @@ export class WalkNode {
 /** Which half an agent stands on in a seeding: 0 for X, 1 for Y. */
 export function halfOf(salt: number, colony: number, agentId: string): 0 | 1 {
   return (hash32(salt, colony, agentId) & 1) === 0 ? 0 : 1
-}
-
-function exitsFor(live: readonly { link: Link; weight: number }[], colony: Colony): Exits {
-  const weights = new Float64Array(live.length)
-  let totalWeight = 0
-  live.forEach(({ link, weight }, index) => {
-    if (link.ledgers.get(colony.orders.colony)?.peerRefuses) return
-    weights[index] = weight
-    totalWeight += weight
-  })
-  return { weights, totalWeight, x: new Float64Array(live.length), y: new Float64Array(live.length) }
-}
-
-function measuredLink(link: Link, weight: number, colonies: readonly Colony[]): MeasuredLink {
-  const peerMeans = new Map(
-    colonies.map(({ orders, refuses }) => {
-      const ledger = link.ledgers.get(orders.colony)
-      const known = ledger && ledger.seeding === orders.seeding && !ledger.peerRefuses && !refuses
-      return [orders.colony, known ? ledger.peerMean : null] as const
-    }),
-  )
-  return { peer: link.peer, weight, peerMeans, consents: link.peerConsents }
-}
-
-function valuedLink(
-  link: MeasuredLink,
-  orders: Orders | null,
-  colonies: ReadonlyMap<number, Colony>,
-): ValuedLink {
-  const value = orders?.sweep
-    ? fiedlerValue(orders.sweep, (slot, seeding) =>
-        colonies.get(slot)?.orders.seeding === seeding ? (link.peerMeans.get(slot) ?? null) : null,
-      )
-    : null
-  return { peer: link.peer, weight: link.weight, value, consents: link.consents }
 }

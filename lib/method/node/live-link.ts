@@ -1,0 +1,43 @@
+import type { Orders } from '../orders'
+import type { Colony, Exits } from './colony'
+import type { ValuedLink } from './facts'
+import type { Link } from './link'
+import { fiedlerValue, type MeasuredLink } from './sums'
+
+/** Where one colony's walkers may go: live links whose other end does not refuse them. */
+export function exitsFor(live: readonly { link: Link; weight: number }[], colony: Colony): Exits {
+  const weights = new Float64Array(live.length)
+  let totalWeight = 0
+  live.forEach(({ link, weight }, index) => {
+    if (link.ledgers.get(colony.orders.colony)?.peerRefuses) return
+    weights[index] = weight
+    totalWeight += weight
+  })
+  return { weights, totalWeight, x: new Float64Array(live.length), y: new Float64Array(live.length) }
+}
+
+/** A live link as the sums see it. */
+export function measuredLink(link: Link, weight: number, colonies: readonly Colony[]): MeasuredLink {
+  const peerMeans = new Map(
+    colonies.map(({ orders, refuses }) => {
+      const ledger = link.ledgers.get(orders.colony)
+      const known = ledger && ledger.seeding === orders.seeding && !ledger.peerRefuses && !refuses
+      return [orders.colony, known ? ledger.peerMean : null] as const
+    }),
+  )
+  return { peer: link.peer, weight, peerMeans, consents: link.peerConsents }
+}
+
+/** The other end's Fiedler value by the combination of the present orders, where its means are known. */
+export function valuedLink(
+  link: MeasuredLink,
+  orders: Orders | null,
+  colonies: ReadonlyMap<number, Colony>,
+): ValuedLink {
+  const value = orders?.sweep
+    ? fiedlerValue(orders.sweep, (slot, seeding) =>
+        colonies.get(slot)?.orders.seeding === seeding ? (link.peerMeans.get(slot) ?? null) : null,
+      )
+    : null
+  return { peer: link.peer, weight: link.weight, value, consents: link.consents }
+}
