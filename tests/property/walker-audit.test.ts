@@ -37,7 +37,7 @@ const step = fc.oneof(
 type Step = typeof step extends fc.Arbitrary<infer T> ? T : never
 
 test('walkers are neither lost nor made, whatever happens to links, processes and seedings', {
-  timeout: 60_000,
+  timeout: Math.max(60_000, RUNS * 1_000),
 }, async () => {
   const seen = { crossed: 0, lost: 0, inFlight: 0, removals: 0, restarts: 0, histories: 0 }
   await fc.assert(
