@@ -35,6 +35,7 @@ export function CodesTable({ slug, revoke }: { slug: string; revoke: RevokeCode 
       columns={columns}
       rows={codes.data}
       rowKey={(c) => c.id}
+      stacks
       csvName={`${slug}-joining-codes`}
       initialSort={{ id: 'created', descending: true }}
       empty={

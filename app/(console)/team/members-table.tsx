@@ -30,6 +30,7 @@ export function MembersTable({ members, manages, teamSlug }: MembersTableProps) 
         columns={columns}
         rows={members}
         rowKey={(member) => member.id}
+        stacks
         csvName={`team-${teamSlug}`}
         initialSort={{ id: 'name' }}
         search="Find a person"

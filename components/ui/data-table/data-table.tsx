@@ -1,6 +1,6 @@
 'use client'
 
-import { useState } from 'react'
+import { type ReactNode, useState } from 'react'
 import { csvFileName, toCsv } from '@/lib/face/csv'
 import { cx } from '@/lib/face/cx'
 import { formatCount } from '@/lib/face/format'
@@ -14,7 +14,7 @@ import { useRows } from './use-rows'
 const FIRST_ROWS = 200
 
 export function DataTable<Row extends object>(props: DataTableProps<Row>) {
-  const { columns, rows, csvName } = props
+  const { columns, rows, csvName, stacks = false } = props
   const { table, text, setText, chosen, setChosen } = useRows(props)
   const [all, setAll] = useState(false)
 
@@ -55,11 +55,14 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
       />
       {/* biome-ignore lint/a11y/noNoninteractiveTabindex: a scrolling region must be reachable by keyboard */}
       <section aria-label={props.caption} tabIndex={0} className="relative overflow-x-auto">
-        <table className="w-full border-collapse text-left">
+        <table className={cx('w-full border-collapse text-left', stacks && 'max-sm:block')}>
           <caption className="sr-only">{props.caption}</caption>
-          <thead>
+          <thead className={cx(stacks && 'max-sm:block')}>
             {table.getHeaderGroups().map((group) => (
-              <tr key={group.id} className="border-b border-ink">
+              <tr
+                key={group.id}
+                className={cx('border-b border-ink', stacks && 'max-sm:flex max-sm:flex-wrap')}
+              >
                 {group.headers.map((header) => (
                   <HeaderCell
                     key={header.id}
@@ -71,9 +74,12 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
               </tr>
             ))}
           </thead>
-          <tbody>
+          <tbody className={cx(stacks && 'max-sm:block')}>
             {shown.map((row) => (
-              <tr key={row.id} className="border-b border-hairline">
+              <tr
+                key={row.id}
+                className={cx('border-b border-hairline', stacks && 'max-sm:block max-sm:py-3')}
+              >
                 {columns.map((c) => (
                   <td
                     key={c.id}
@@ -81,9 +87,22 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
                       'py-2 pr-5 align-baseline last:pr-0',
                       c.figures && 'text-right font-figures whitespace-nowrap',
                       c.words && 'min-w-56',
+                      stacks && 'max-sm:flex max-sm:gap-3 max-sm:py-1 max-sm:pr-0 max-sm:text-left',
                     )}
                   >
-                    {c.cell ? c.cell(row.original) : (c.value(row.original) ?? '–')}
+                    {stacks && c.data !== false ? (
+                      <span
+                        aria-hidden="true"
+                        className="hidden w-28 shrink-0 text-sm text-soft max-sm:inline"
+                      >
+                        {c.heading ?? c.header}
+                      </span>
+                    ) : null}
+                    {c.cell ? (
+                      <Cell stacks={stacks}>{c.cell(row.original)}</Cell>
+                    ) : (
+                      (c.value(row.original) ?? '–')
+                    )}
                   </td>
                 ))}
               </tr>
@@ -105,6 +124,11 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
       ) : null}
     </div>
   )
+}
+
+/** One box beside the cell's name, whatever the cell is made of. */
+function Cell({ stacks, children }: { stacks: boolean; children: ReactNode }) {
+  return stacks ? <div className="min-w-0">{children}</div> : children
 }
 
 function HeaderCell<Row>({

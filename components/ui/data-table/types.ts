@@ -38,6 +38,8 @@ export interface DataTableProps<Row> {
   /** Label of the text filter; leave out for none. */
   search?: string
   filters?: readonly TableFilter<Row>[]
+  /** On a narrow screen each row becomes a block, its cells below each other, so that buttons are in sight. */
+  stacks?: boolean
   /** Shown instead of the table when there are no rows at all. */
   empty: ReactNode
 }
