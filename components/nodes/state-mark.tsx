@@ -7,6 +7,7 @@ const SHAPES: Record<OverlayNode['state'], MarkShape> = {
   detached: 'hollow',
   left: 'short',
   revoked: 'crossed',
+  'left-out': 'crossed',
 }
 
 export function StateMark({ state }: { state: OverlayNode['state'] }) {

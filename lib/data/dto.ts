@@ -5,6 +5,7 @@
 import { z } from 'zod'
 import { DISCLOSURES } from '@/lib/method/orders'
 import { PACE_NAMES } from '@/lib/method/pace'
+import { LINK_KINDS, UPGRADE_STATES } from '@/lib/method/report'
 
 export const LEVELS = ['firm', 'weak', 'split'] as const
 export const TRENDS = ['steady', 'falling', 'rising'] as const
@@ -50,7 +51,12 @@ export const readingSchema = z.object({
     joined: z.number().int(),
     heard: z.number().int(),
     unheard: z.number().int(),
+    /** Neighbours the overlay knows that have no agent, and agents left out because their figures did not hold. */
+    withoutAgent: z.number().int().optional(),
+    leftOut: z.number().int().optional(),
   }),
+  /** What the links measured are, over the agents heard; "mixed" where they differ, null where none says. */
+  linkKind: z.enum(['path', 'path-with-view', 'connection', 'mixed']).nullable().optional(),
   /** Seedings the reading rests on. */
   seedings: z.array(z.number().int()),
   /** The last good value and when, while the reading is withheld. */
@@ -72,7 +78,7 @@ export const readingPointSchema = z.object({
 export type ReadingPoint = z.infer<typeof readingPointSchema>
 export const readingsSchema = z.object({ items: z.array(readingPointSchema), stepSeconds: z.number() })
 
-export const NODE_STATES = ['heard', 'unheard', 'detached', 'left', 'revoked'] as const
+export const NODE_STATES = ['heard', 'unheard', 'detached', 'left', 'revoked', 'left-out'] as const
 export const nodeSchema = z.object({
   name: z.string(),
   labels: z.record(z.string(), z.string()),
@@ -84,9 +90,101 @@ export const nodeSchema = z.object({
   heardAt: at.nullable(),
   version: z.string().nullable(),
   state: z.enum(NODE_STATES),
+  /** How the overlay knows the node, where its agent says so. */
+  node: z.string().nullable().optional(),
+  joinedAt: at.optional(),
+  /** When it left, was revoked or left out. */
+  endedAt: at.nullable().optional(),
+  /** Why it was left out, in a sentence. */
+  leftOutBecause: z.string().nullable().optional(),
+  /** Its reports come through neighbours. */
+  relayed: z.boolean().optional(),
+  /** How the agent fares, from its last report; null before version 2 and before the first report. */
+  health: z
+    .object({
+      uptimeSeconds: z.number(),
+      clockSkewMs: z.number(),
+      reportTookMs: z.number().nullable(),
+      reportsFailed: z.number(),
+      ticksLateShare: z.number().nullable(),
+      lastError: z.string().nullable(),
+      linkKind: z.enum(LINK_KINDS),
+      linksKnown: z.number(),
+      withoutAgent: z.number(),
+      source: z.object({ kind: z.string(), error: z.string().nullable() }).nullable(),
+      weakestWeight: z.number().nullable(),
+      meanWeight: z.number().nullable(),
+      refusedNeighbours: z.number(),
+      /** Walkers by the audit of the last report: 0 where the books balance. */
+      auditImbalance: z.number().nullable(),
+      upgrade: z
+        .object({ version: z.string(), state: z.enum(UPGRADE_STATES), error: z.string().nullable() })
+        .nullable(),
+    })
+    .nullable()
+    .optional(),
 })
 export type OverlayNode = z.infer<typeof nodeSchema>
 export const nodesSchema = z.object({ items: z.array(nodeSchema), next: z.string().nullable() })
+
+/** A version of the agent that this server holds. */
+export const agentReleaseSchema = z.object({
+  version: z.string(),
+  sha256: z.string(),
+  bytes: z.number().int(),
+  addedAt: at,
+  /** The one /agent/thinspan-agent.mjs serves by itself. */
+  current: z.boolean(),
+})
+export type AgentRelease = z.infer<typeof agentReleaseSchema>
+
+const labelPair = z.object({ key: z.string(), value: z.string() })
+export const upgradeOfferDtoSchema = z.object({
+  id: z.string(),
+  version: z.string(),
+  /** Whom it is offered to; null for every agent of the overlay. */
+  label: labelPair.nullable(),
+  offeredAt: at,
+  offeredBy: z.string().nullable(),
+  haltedAt: at.nullable(),
+  /** Agents it is offered to, by what became of it. `runs`: already that version. */
+  counts: z.object({
+    offered: z.number().int(),
+    runs: z.number().int(),
+    failed: z.number().int(),
+    /** Heard with another version and without word of the offer yet. */
+    waiting: z.number().int(),
+    /** Agents that take no upgrades by themselves. */
+    declined: z.number().int(),
+  }),
+})
+export type UpgradeOfferDto = z.infer<typeof upgradeOfferDtoSchema>
+export const upgradesSchema = z.object({
+  releases: z.array(agentReleaseSchema),
+  offers: z.array(upgradeOfferDtoSchema),
+  /** Versions run by joined agents, most first. */
+  versions: z.array(z.object({ version: z.string(), agents: z.number().int() })),
+})
+export type Upgrades = z.infer<typeof upgradesSchema>
+
+export const newUpgradeOfferSchema = z.object({
+  version: z.string().min(1, 'Choose a version.').max(40),
+  label: labelPair.nullable().default(null),
+})
+
+/** The key that signs passes and orders. Public parts only. */
+export const signingKeySchema = z.object({
+  publicKey: z.string(),
+  since: at,
+  ringVersion: z.number().int(),
+  /** While a rotation is under way: the key to come, how many agents hold it, and when it takes over at the latest. */
+  next: z
+    .object({ publicKey: z.string(), heldBy: z.number().int(), of: z.number().int(), takesOverAt: at })
+    .nullable(),
+  /** The key before, good until passes under it have ended. */
+  previous: z.object({ publicKey: z.string(), until: at }).nullable(),
+})
+export type SigningKey = z.infer<typeof signingKeySchema>
 
 /** A disclosed link; a and b are node names, a before b. */
 export const linkSchema = z.object({
@@ -127,6 +225,8 @@ export const overlaySchema = z.object({
   demo: z.boolean(),
   contact: z.string().nullable(),
   runbookUrl: z.string().nullable(),
+  /** Agents unheard for so long are retired by themselves; null for never. */
+  retireAfterHours: z.number().int().nullable().optional(),
   /** The caller's role. */
   role: z.enum(ROLES),
   joined: z.number().int(),
@@ -192,6 +292,13 @@ export const EVENT_KINDS = [
   'link-found',
   'withheld',
   'resumed',
+  'agent-left-out',
+  'agent-readmitted',
+  'agent-cloned',
+  'key-rotated',
+  'upgrade-offered',
+  'upgrade-halted',
+  'collector-away',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

@@ -1,4 +1,18 @@
 import type { Orders } from './orders'
+import type { SignedStatement } from './statement'
+
+/** The collector's signature over orders, passed on with them unchanged. */
+export interface OrdersProof {
+  /** The orders as the JSON text that was signed. */
+  text: string
+  /** The overlay's key, base64url of the raw 32 bytes. */
+  key: string
+  /** Ed25519, base64url of 64 bytes. */
+  signature: string
+}
+
+/** How many links away the collector can be reached: 0 by the sender itself, 3 for three or more, or not at all. */
+export type CollectorDistance = 0 | 1 | 2 | 3
 
 /**
  * One colony's part of a link frame. Totals are cumulative over the ledger of
@@ -35,6 +49,12 @@ export interface Frame {
   /** Sequence of the orders the sender follows, 0 for none. */
   ordersSequence: number
   /** The orders themselves, when the other end is not known to have them. */
-  orders: { orders: Orders; ageMs: number } | null
+  orders: { orders: Orders; ageMs: number; proof?: OrdersProof } | null
   colonies: readonly ColonyFrame[]
+  /** From here on since version 2 of the link protocol; absent in frames of version 1. */
+  distance?: CollectorDistance
+  /** Distinct frames the sender has taken in on this ledger pair: what was lost shows against `number`s sent. */
+  heardFrames?: number
+  /** Once in a while: what the sender told the collector as well. */
+  statement?: SignedStatement | null
 }

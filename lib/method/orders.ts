@@ -50,6 +50,14 @@ export interface SweepOrders {
   nodes: number
 }
 
+export const SHUT_REASONS = ['left', 'revoked', 'left-out'] as const
+/** Why an agent's links are to be shut: it said goodbye, an operator revoked it, or its figures did not hold. */
+export type ShutReason = (typeof SHUT_REASONS)[number]
+
+export const WEIGHT_MODES = ['unit', 'delivered'] as const
+/** Whether every link counts 1, or what it delivers in time. */
+export type WeightMode = (typeof WEIGHT_MODES)[number]
+
 /** What the collector tells every agent; the newest sequence wins. */
 export interface Orders {
   sequence: number
@@ -61,4 +69,8 @@ export interface Orders {
   disclosure: Disclosure
   /** In flagged overlays, the share of λ₂ over which a link may be named. */
   shareLimit: number
+  /** Agents nobody keeps a link to, though their passes may not have ended yet. Absent before version 2. */
+  shut?: readonly { agentId: string; reason: ShutReason }[]
+  /** Absent before version 2: then as enrolment said. */
+  weights?: WeightMode
 }

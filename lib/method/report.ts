@@ -47,6 +47,54 @@ export interface SweepSums {
   crossingWeight: readonly number[]
 }
 
+export const LINK_KINDS = ['path', 'path-with-view', 'connection'] as const
+/**
+ * What is measured: the path between two hosts beside the overlay's own connections; that path, lowered by the node's
+ * view of each link; or the overlay's connection itself, which carries the frames.
+ */
+export type LinkKind = (typeof LINK_KINDS)[number]
+
+/** How the agent itself fares; nothing in it names a neighbour. */
+export interface AgentHealth {
+  /** Collector's clock less the agent's, milliseconds. */
+  clockSkewMs: number
+  /** How long the last delivered report took, there and back. Null before the first. */
+  reportTookMs: number | null
+  reportsFailed: number
+  ticks: number
+  ticksLate: number
+  lastError: string | null
+  linkKind: LinkKind
+  /** Neighbours the overlay knows, but whose agent is not known. */
+  withoutAgent: number
+  /** Where neighbours are learnt from, and why that fails now; null error while it works. */
+  source: { kind: string; error: string | null } | null
+  /** Smallest and mean agreed weight of live links; null without any. */
+  weakestWeight: number | null
+  meanWeight: number | null
+  /** Version of the overlay's key ring held. */
+  keyRing: number
+  /** Neighbours refused because their figures did not hold. */
+  refused: number
+  /** What became of an offered version: null where none is known of. */
+  upgrade: { version: string; state: UpgradeState; error: string | null } | null
+}
+
+export const UPGRADE_STATES = ['offered', 'taken', 'failed', 'declined'] as const
+export type UpgradeState = (typeof UPGRADE_STATES)[number]
+
+export const AUDIT_FAULTS = ['mean', 'walker-time', 'births', 'two-accounts', 'no-receipt', 'ledger'] as const
+/** Which figure of a neighbour did not hold against what arrived from it. */
+export type AuditFault = (typeof AUDIT_FAULTS)[number]
+
+/** A neighbour refused because its figures did not hold. Named in `named` overlays only. */
+export interface Complaint {
+  peer: string
+  fault: AuditFault
+  /** Declared over found. */
+  ratio: number
+}
+
 /** The part of a report that only makes sense added up over all agents: integers throughout. */
 export interface Sums {
   /** 1 for an agent with at least one live link, else 0 and everything below is zero or empty. */
@@ -74,6 +122,8 @@ export interface NodeFacts {
   links: readonly { peer: string; weight: number; share: number | null }[]
   version: string
   uptimeSeconds: number
+  /** Absent in reports of version 1. */
+  health?: AgentHealth
 }
 
 export interface Report {
@@ -84,4 +134,6 @@ export interface Report {
   ordersSequence: number
   sums: Sums
   node: NodeFacts
+  /** Absent in reports of version 1. */
+  complaints?: readonly Complaint[]
 }

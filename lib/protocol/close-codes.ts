@@ -41,6 +41,15 @@ export const CLOSE = {
   'too-many': { code: 4419, sentence: 'Too many connections wait for their handshake.', retry: true },
   'link-removed': { code: 4421, sentence: 'The link was taken down; all walkers have arrived.', retry: true },
   revoked: { code: 4420, sentence: 'The agent was revoked.', retry: false },
+  'too-fast': { code: 4422, sentence: 'More frames came than the pace allows.', retry: true },
+  'orders-forged': { code: 4423, sentence: 'Orders came that the overlay did not sign.', retry: false },
+  'left-overlay': { code: 4424, sentence: 'The agent has left the overlay.', retry: false },
+  'left-out': {
+    code: 4425,
+    sentence: 'The figures of this agent do not hold. Its operators must look into it.',
+    retry: false,
+  },
+  'too-many-links': { code: 4426, sentence: 'This agent has as many links as it may.', retry: true },
 } as const satisfies Record<string, { code: number; sentence: string; retry: boolean }>
 
 export type CloseName = keyof typeof CLOSE

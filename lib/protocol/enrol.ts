@@ -36,6 +36,13 @@ export const enrolRequestSchema = z.object({
   address: linkAddressSchema.nullable(),
   version: z.string().min(1).max(40),
   signature: signatureSchema,
+  /** Since version 2: how the overlay knows the node, and a fingerprint of the machine. */
+  node: z
+    .string()
+    .regex(/^[^\s\p{Cc}]{1,200}$/u, 'Use 1 to 200 characters without blanks.')
+    .nullable()
+    .optional(),
+  host: z.string().max(64).optional(),
 })
 export type EnrolRequest = z.infer<typeof enrolRequestSchema>
 

@@ -1,5 +1,20 @@
+export {
+  type KeyChangeReply,
+  type KeyChangeRequest,
+  keyChangeReplySchema,
+  keyChangeRequestSchema,
+  keyChangeText,
+  type LeaveReply,
+  type LeaveRequest,
+  leaveReplySchema,
+  leaveRequestSchema,
+  type UpgradeOffer,
+  upgradeOfferSchema,
+  upgradeText,
+} from './agent-life'
 export { type AgentProblem, agentProblemSchema } from './agent-problem'
 export { CLOSE, type CloseName, closeName } from './close-codes'
+export { type Directory, directorySchema, nodeAddressSchema } from './directory'
 export {
   type EnrolReply,
   type EnrolRequest,
@@ -24,6 +39,7 @@ export {
   linkStatement,
 } from './handshake'
 export { decodeHello, encodeHello, type Hello, helloSchema, INCARNATION, NONCE_BYTES } from './hello'
+export { followsRing, type KeyRing, keyRingSchema, signKeyRing } from './key-ring'
 export {
   generateKeys,
   type KeyPair,
@@ -50,7 +66,16 @@ export {
   signPass,
   verifyPass,
 } from './pass'
-export { type ReportReply, reportReplySchema, reportSchema, sumsSchema } from './report-schema'
+export { type Receipt, receiptSchema, signReceipt, statementOf, verifyReceipt } from './receipt'
+export {
+  AGENT_PROTOCOL,
+  type ReportReply,
+  type ReportRequest,
+  reportReplySchema,
+  reportRequestSchema,
+  reportSchema,
+  sumsSchema,
+} from './report-schema'
 export {
   SESSION_SKEW_SECONDS,
   type SessionReply,
@@ -59,3 +84,13 @@ export {
   sessionRequestSchema,
   sessionText,
 } from './session'
+export { type SignedOrdersResult, signedOrdersSchema, signOrders, verifyOrders } from './signed-orders'
+export {
+  RELAYED_MOST_SECONDS,
+  type RelayedReply,
+  relayedReplySchema,
+  type SignedReport,
+  signedReportSchema,
+  signReport,
+  verifyReport,
+} from './signed-report'

@@ -15,3 +15,10 @@ export const MAX_THRESHOLDS = 64
 export const MAX_REFUSED = 2_000
 export const MAX_REPORT_LINKS = 4_096
 export const MAX_REPORT_BYTES = 1024 * 1024
+/** A report that neighbours carry; longer ones leave their link list out. */
+export const MAX_RELAYED_REPORT_BYTES = 64 * 1024
+/** Relayed reports delivered with one report of one's own. */
+export const MAX_RELAYED = 32
+/** Agents that nobody keeps a link to, in orders. */
+export const MAX_SHUT = 2_000
+export const MAX_COMPLAINTS = 64

@@ -1,6 +1,6 @@
 import { z } from 'zod'
-import { DISCLOSURES, type Orders } from '../method/orders'
-import { MAX_COLONIES, MAX_REFUSED, MAX_THRESHOLDS } from './limits'
+import { DISCLOSURES, type Orders, SHUT_REASONS, WEIGHT_MODES } from '../method/orders'
+import { MAX_COLONIES, MAX_REFUSED, MAX_SHUT, MAX_THRESHOLDS } from './limits'
 
 /** z.number() refuses NaN and the infinities by itself. */
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
@@ -44,6 +44,11 @@ export const ordersSchema: z.ZodType<Orders> = z
     sweep: sweepOrdersSchema.nullable(),
     disclosure: z.enum(DISCLOSURES),
     shareLimit: z.number().min(0).max(1),
+    shut: z
+      .array(z.object({ agentId: z.string().min(1).max(64), reason: z.enum(SHUT_REASONS) }))
+      .max(MAX_SHUT)
+      .optional(),
+    weights: z.enum(WEIGHT_MODES).optional(),
   })
   .refine(
     ({ linkTimePerSecond, pace }) => (linkTimePerSecond * pace.tickMs) / 1000 <= MOST_LINK_TIME_PER_TICK,

@@ -1,9 +1,14 @@
 import { z } from 'zod'
-import type { Report } from '../method/report'
+import { AUDIT_FAULTS, LINK_KINDS, type Report, UPGRADE_STATES } from '../method/report'
+import { upgradeOfferSchema } from './agent-life'
 import { passGrantSchema } from './enrol'
 import { INCARNATION } from './hello'
-import { MAX_COLONIES, MAX_REPORT_LINKS, MAX_THRESHOLDS } from './limits'
+import { keyRingSchema } from './key-ring'
+import { MAX_COLONIES, MAX_COMPLAINTS, MAX_RELAYED, MAX_REPORT_LINKS, MAX_THRESHOLDS } from './limits'
 import { ordersSchema } from './orders-schema'
+import { receiptSchema } from './receipt'
+import { signedOrdersSchema } from './signed-orders'
+import { relayedReplySchema, signedReportSchema } from './signed-report'
 
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
 const fixed = z.number().int().min(Number.MIN_SAFE_INTEGER).max(Number.MAX_SAFE_INTEGER)
@@ -67,6 +72,32 @@ export const sumsSchema = z
     }
   })
 
+const text = z.string().max(300)
+const healthSchema = z.object({
+  clockSkewMs: z.number(),
+  reportTookMs: z.number().min(0).nullable(),
+  reportsFailed: count,
+  ticks: count,
+  ticksLate: count,
+  lastError: text.nullable(),
+  linkKind: z.enum(LINK_KINDS),
+  withoutAgent: count,
+  source: z.object({ kind: z.string().max(40), error: text.nullable() }).nullable(),
+  weakestWeight: z.number().min(0).max(1).nullable(),
+  meanWeight: z.number().min(0).max(1).nullable(),
+  keyRing: count,
+  refused: count,
+  upgrade: z
+    .object({ version: z.string().max(40), state: z.enum(UPGRADE_STATES), error: text.nullable() })
+    .nullable(),
+})
+
+const complaintSchema = z.object({
+  peer: z.string().min(1).max(64),
+  fault: z.enum(AUDIT_FAULTS),
+  ratio: z.number(),
+})
+
 const nodeFactsSchema = z.object({
   degree: count,
   weightedDegree: z.number().min(0),
@@ -83,20 +114,44 @@ const nodeFactsSchema = z.object({
     .max(MAX_REPORT_LINKS),
   version: z.string().max(40),
   uptimeSeconds: z.number().min(0),
+  health: healthSchema.optional(),
 })
 
-export const reportSchema: z.ZodType<Report> = z.object({
+const reportShape = z.object({
   incarnation: z.string().regex(INCARNATION),
   number: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
   ordersSequence: count,
   sums: sumsSchema,
   node: nodeFactsSchema,
+  complaints: z.array(complaintSchema).max(MAX_COMPLAINTS).optional(),
 })
+export const reportSchema: z.ZodType<Report> = reportShape
+
+/** Version of enrolment, sessions and reports. Version 1 said none; its replies carry orders without a signature. */
+export const AGENT_PROTOCOL = 2
+
+/** `POST /api/agent/report`: the report, and what goes with it since version 2. */
+export const reportRequestSchema = reportShape.extend({
+  protocol: z.number().int().min(1).max(1_000).default(1),
+  /** The agent asks for the collector's receipt of this report's figures. */
+  wantsReceipt: z.boolean().optional(),
+  /** Reports of agents that do not reach the collector themselves. */
+  relayed: z.array(signedReportSchema).max(MAX_RELAYED).optional(),
+})
+export type ReportRequest = z.input<typeof reportRequestSchema>
 
 export const reportReplySchema = z.object({
+  /** To version 1; null to later ones. */
   orders: ordersSchema.nullable(),
   ordersAgeMs: z.number().min(0),
   /** A new pass, when the present one is due. */
   pass: passGrantSchema.optional(),
+  /** Since version 2. */
+  signedOrders: signedOrdersSchema.nullable().optional(),
+  /** When the agent's ring is older than the overlay's: every version it lacks, oldest first. */
+  keyRings: z.array(keyRingSchema).max(20).optional(),
+  receipt: receiptSchema.optional(),
+  relayed: z.array(relayedReplySchema).max(MAX_RELAYED).optional(),
+  upgrade: upgradeOfferSchema.nullable().optional(),
 })
 export type ReportReply = z.infer<typeof reportReplySchema>

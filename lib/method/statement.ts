@@ -1,0 +1,31 @@
+/** What one agent says of one colony, to its neighbours and to the collector alike. Counters as in `ColonyCounters`. */
+export interface ColonyStatement {
+  colony: number
+  seeding: number
+  /** z̄, fixed point (SUMS_SCALE). */
+  mean: number
+  births: number
+  culls: number
+  /** Fixed point, walkers × link time. */
+  walkerTime: number
+  /** Fixed point. */
+  linkTime: number
+}
+
+/** The figures of one report that neighbours can audit. */
+export interface Statement {
+  agentId: string
+  incarnation: string
+  /** Of the report that said the same to the collector. */
+  reportNumber: number
+  colonies: readonly ColonyStatement[]
+}
+
+/** With the collector's receipt: it has been told exactly this. */
+export interface SignedStatement {
+  statement: Statement
+  /** The overlay's key that signed, base64url of the raw 32 bytes. */
+  key: string
+  /** Ed25519 over the statement, base64url of 64 bytes. */
+  receipt: string
+}
