@@ -1,82 +1,21 @@
 import { WalkNode } from '@/lib/method/node'
 import type { Orders } from '@/lib/method/orders'
-import { PACES, type Pace, type PaceName } from '@/lib/method/pace'
-import type { Random } from '@/lib/method/random'
-import {
-  type KeyPair,
-  NONCE_BYTES,
-  PASS_CLOCK_TOLERANCE_SECONDS,
-  type PassGrant,
-  verifyPass,
-} from '@/lib/protocol'
-import { type Backoff, DIAL_BACKOFF } from './backoff'
-import { type Clock, sleep } from './clock'
-import { type CollectorClient, describeCollectorError, mayRetry } from './collector/client'
-import { Reporter } from './collector/reporter'
+import type { UpgradeState } from '@/lib/method/report'
+import { type KeyPair, type LeaveReply, NONCE_BYTES, type PassGrant } from '@/lib/protocol'
+import type { AgentComponents, AgentInit, AgentStatus, Ending } from './agent-contract'
+import { DIAL_BACKOFF } from './backoff'
+import type { CollectorResult, DirectoryReply } from './collector/client'
+import { Correspondence } from './correspondence'
+import { depart } from './depart'
+import type { SourceNote } from './health'
 import type { LinkEvent } from './link/link-contract'
 import { LinkManager } from './link/link-manager'
-import type { LinkStatus } from './link/link-status'
 import type { NeighbourSpec } from './link/neighbours'
-import type { Logger } from './logger'
+import { Membership } from './membership'
+import { agentStatus } from './status'
 import { TickLoop } from './tick-loop'
-import type { ListenInit, Listening, Transport } from './transport/transport'
-
-/** Reports are spread over the interval by this share of it, so that agents do not march in step. */
-export const REPORT_JITTER = 0.2
-/** After a failed report the next comes within this many intervals: a collector that is back must hear soon. */
-export const MOST_REPORT_BACKOFF_INTERVALS = 4
-/** Where the collector says that trying again does not help, this is how often it is tried all the same. */
-export const REFUSED_RETRY_MS = 60_000
-
-export interface AgentComponents {
-  transport: Transport
-  collector: CollectorClient
-  clock: Clock
-  random: Random
-  logger: Logger
-  keys: KeyPair
-  /** For secrets and ids; not `random`, which need not be hard to guess. */
-  randomBytes: (count: number) => Uint8Array
-}
-
-/** What enrolment said. */
-export interface AgentIdentity {
-  agentId: string
-  overlayId: string
-  overlayKey: string
-  pass: string
-  weights: 'unit' | 'delivered'
-}
-
-export interface AgentInit {
-  identity: AgentIdentity
-  version: string
-  /** Until the first orders say theirs. */
-  pace: PaceName
-  /** Null for an agent that only dials. */
-  listen: ListenInit | null
-  neighbours?: readonly NeighbourSpec[]
-  /** Links from agents of the overlay that this one was not told of: the other end was. */
-  acceptUnknown?: boolean
-  consents?: boolean
-  backoff?: Backoff
-  /** A renewed pass, to be kept for the next start. */
-  onPass?: (grant: PassGrant) => void
-  onLinkEvent?: (event: LinkEvent) => void
-}
-
-export interface AgentStatus {
-  agentId: string
-  incarnation: string
-  address: string | null
-  ordersSequence: number
-  /** Without fresh orders nothing walks. */
-  frozen: boolean
-  clockSkewMs: number
-  reports: { delivered: number; failed: number; lastDeliveredMsAgo: number | null; lastError: string | null }
-  ticks: { count: number; late: number }
-  links: LinkStatus[]
-}
+import type { Listening } from './transport/transport'
+import type { RotationResult } from './trust/own-keys'
 
 /** The probe beside one node. */
 export class Agent {
@@ -86,41 +25,36 @@ export class Agent {
   private readonly components: AgentComponents
   private readonly init: AgentInit
   private readonly node: WalkNode
+  private readonly membership: Membership
   private readonly links: LinkManager
-  private readonly reporter: Reporter
+  private readonly correspondence: Correspondence
   private readonly ticks: TickLoop
   private readonly stopping = new AbortController()
+  private readonly reporting = new AbortController()
   private listening: Listening | null = null
   private reportLoop: Promise<void> = Promise.resolve()
-  private pace: Pace
-  private pass: string
-  private startedAtMs = 0
-  private delivered = 0
-  private failed = 0
-  private failedInARow = 0
-  private deliveredAtMs: number | null = null
-  private lastError: string | null = null
 
   constructor(components: AgentComponents, init: AgentInit) {
-    const { random, clock, randomBytes, keys, logger, transport, collector } = components
+    const { random, clock, randomBytes, keys, logger, transport, collector, spool } = components
+    const { agentId } = init.identity
     this.components = components
     this.init = init
-    this.pace = PACES[init.pace]
-    this.pass = init.identity.pass
-    this.agentId = init.identity.agentId
+    this.agentId = agentId
     this.incarnation = base64url(randomBytes(12))
     this.node = new WalkNode(
       { random },
-      { agentId: this.agentId, incarnation: this.incarnation, consents: init.consents },
+      { agentId, incarnation: this.incarnation, consents: init.consents, weights: init.identity.weights },
     )
-    this.reporter = new Reporter(
-      { client: collector, clock, keys, randomBytes },
+    this.membership = new Membership(
+      { collector, clock, logger, keys, randomBytes },
       {
-        agentId: this.agentId,
+        ...init,
+        hasOrders: () => this.node.ordersSequence > 0,
+        onKeys: (pair) => this.links.setKeys(pair),
         onPass: (grant) => this.renewed(grant),
-        onSession: (reply) => this.noteSession(reply),
       },
     )
+    const { trust, standing } = this.membership
     this.links = new LinkManager(
       {
         transport,
@@ -129,18 +63,33 @@ export class Agent {
         logger,
         node: this.node,
         keys,
-        passes: this.passes(),
-        nonce: () => this.nonce(),
+        passes: standing.passes(),
+        trust,
+        nonce: () => base64url(randomBytes(NONCE_BYTES)),
       },
       {
         acceptUnknown: init.acceptUnknown ?? true,
         backoff: init.backoff ?? DIAL_BACKOFF,
-        tickMs: () => this.pace.tickMs,
+        tickMs: () => standing.pace.tickMs,
         onOrders: (orders) => this.follow(orders),
-        onEvent: init.onLinkEvent,
+        onEvent: (event) => this.noteLink(event),
+        onRelay: (peer, kind, bytes) => this.correspondence.relay.receive(peer, kind, bytes),
       },
     )
-    this.ticks = new TickLoop({ clock, random }, { tickMs: () => this.pace.tickMs, tick: () => this.tick() })
+    this.correspondence = new Correspondence(
+      { clock, random, logger, node: this.node, links: this.links, membership: this.membership, spool },
+      {
+        ...init,
+        agentId,
+        ticks: () => this.ticks.counts,
+        onOrders: (orders) => this.follow(orders),
+        onEnded: (detail) => this.end({ reason: 'ended', detail }),
+      },
+    )
+    this.ticks = new TickLoop(
+      { clock, random },
+      { tickMs: () => standing.pace.tickMs, tick: () => this.tick() },
+    )
   }
 
   /** Where neighbours may dial; null before the start and for an agent that only dials. */
@@ -150,9 +99,8 @@ export class Agent {
 
   /** @throws Error where the address to listen on cannot be taken */
   async start(signal?: AbortSignal): Promise<void> {
-    const { transport, clock, logger } = this.components
+    const { transport, logger } = this.components
     signal?.throwIfAborted()
-    this.startedAtMs = clock.monotonicMs()
     if (this.init.listen) {
       this.listening = await transport.listen(this.init.listen, (connection) => this.links.accept(connection))
     }
@@ -164,17 +112,17 @@ export class Agent {
     signal?.addEventListener('abort', () => void this.stop(), { once: true })
     for (const neighbour of this.init.neighbours ?? []) this.links.addNeighbour(neighbour)
     this.ticks.start()
-    this.reportLoop = this.report(this.stopping.signal)
+    this.reportLoop = this.correspondence.run(this.reporting.signal)
     logger.info({ agentId: this.agentId, address: this.address }, 'agent started')
   }
 
   async stop(): Promise<void> {
     if (this.stopping.signal.aborted) return
     this.stopping.abort()
-    this.ticks.stop()
-    this.links.stop()
+    this.halt()
     await this.listening?.close()
     await this.reportLoop
+    await this.correspondence.spool.stop()
     this.components.logger.info({ agentId: this.agentId }, 'agent stopped')
   }
 
@@ -193,9 +141,20 @@ export class Agent {
    * @throws RangeError where the quality is outside of 0..1
    */
   setLinkQuality(key: string, quality: number): boolean {
-    if (this.init.identity.weights === 'unit') return false
+    if (this.membership.standing.weights === 'unit') return false
     this.links.setQuality(key, quality)
+    this.correspondence.health.noteView()
     return true
+  }
+
+  /** Where the overlay's own neighbours are learnt from, and how that goes. */
+  noteSource(note: SourceNote): void {
+    this.correspondence.health.noteSource(note)
+  }
+
+  /** What became of a version that was offered. */
+  noteUpgrade(upgrade: { version: string; state: UpgradeState; error: string | null }): void {
+    this.correspondence.health.noteUpgrade(upgrade.version, upgrade.state, upgrade.error)
   }
 
   /** Whether a proven connection to an agent is there. */
@@ -203,103 +162,93 @@ export class Agent {
     return this.links.isLinked(agentId)
   }
 
+  /** Every agent of the overlay, or null where that is as the etag says. */
+  directory(etag: string | null, signal: AbortSignal): Promise<CollectorResult<DirectoryReply>> {
+    return this.membership.reporter.directory(etag, signal)
+  }
+
+  /** Another key takes the own one's place, without a gap. Asked again after no answer, it goes on with the same. */
+  rotateKey(signal: AbortSignal): Promise<RotationResult> {
+    return this.membership.rotateKey(signal)
+  }
+
+  /** Follows a key change that another program made in this agent's name. */
+  takeKey(keys: KeyPair, signal: AbortSignal): Promise<RotationResult> {
+    return this.membership.takeKey(keys, signal)
+  }
+
+  /**
+   * Takes leave of the overlay: links first, so that no walkers are lost, then the collector. Where that does not
+   * answer the links stay down, and asking again is all that is missing.
+   */
+  async leave(signal: AbortSignal, reason = ''): Promise<CollectorResult<LeaveReply>> {
+    const { clock, logger } = this.components
+    const isSettled = await depart(
+      { links: this.links, clock },
+      { tickMs: this.membership.standing.pace.tickMs },
+      signal,
+    )
+    if (!isSettled) logger.warn({}, 'some neighbours did not settle before the links were left')
+    this.reporting.abort()
+    await this.reportLoop
+    // The last word on what was sent.
+    if (this.membership.standing.ended === null) await this.correspondence.reports.once(signal)
+    const result = await this.membership.reporter.leave(reason, signal)
+    if (!result.ok) return result
+    this.membership.standing.ended = { reason: 'left', detail: reason }
+    this.halt()
+    return result
+  }
+
   status(): AgentStatus {
-    const nowMs = this.components.clock.monotonicMs()
-    return {
-      agentId: this.agentId,
-      incarnation: this.incarnation,
-      address: this.address,
-      ordersSequence: this.node.ordersSequence,
-      frozen: this.node.isFrozen(nowMs),
-      clockSkewMs: Math.round(this.reporter.skewMs),
-      reports: {
-        delivered: this.delivered,
-        failed: this.failed,
-        lastDeliveredMsAgo: this.deliveredAtMs === null ? null : Math.round(nowMs - this.deliveredAtMs),
-        lastError: this.lastError,
+    const { node, links, ticks } = this
+    const { relay, spool, health, reports } = this.correspondence
+    const { reporter, trust, standing } = this.membership
+    return agentStatus(
+      { node, links, reporter, reports, relay, spool, health, trust, ticks },
+      {
+        incarnation: this.incarnation,
+        address: this.address,
+        ended: standing.ended,
+        nowMs: this.components.clock.monotonicMs(),
       },
-      ticks: this.ticks.counts,
-      links: this.links.status(),
-    }
+    )
   }
 
   private tick(): void {
+    this.correspondence.relay.refresh()
     const isCarried = (peer: string) => this.links.isCarried(peer)
     this.links.deliver(this.node.tick(this.components.clock.monotonicMs(), isCarried))
   }
 
-  private async report(signal: AbortSignal): Promise<void> {
-    const { clock, random } = this.components
-    await sleep(clock, this.pace.intervalMs * random.uniform(), signal)
-    while (!signal.aborted) {
-      const startedAtMs = clock.monotonicMs()
-      const waitMs = await this.reportOnce(signal)
-      const jitterMs = this.pace.intervalMs * REPORT_JITTER * (random.uniform() - 0.5)
-      await sleep(
-        clock,
-        Math.max(waitMs / 4, waitMs + jitterMs - (clock.monotonicMs() - startedAtMs)),
-        signal,
-      )
-    }
-  }
-
-  /** @returns how long to wait until the next, counted from the start of this one */
-  private async reportOnce(signal: AbortSignal): Promise<number> {
-    const { clock, logger } = this.components
-    const sentAtMs = clock.monotonicMs()
-    const report = this.node.report(sentAtMs, {
-      linksKnown: this.links.known,
-      version: this.init.version,
-      uptimeSeconds: Math.round((sentAtMs - this.startedAtMs) / 1000),
-    })
-    const result = await this.reporter.deliver(report, signal)
-    if (signal.aborted) return 0
-    const nowMs = clock.monotonicMs()
-    if (!result.ok) {
-      this.failed += 1
-      this.failedInARow += 1
-      this.lastError = describeCollectorError(result.error)
-      logger.warn({ error: result.error, failedInARow: this.failedInARow }, 'a report was not delivered')
-      if (!mayRetry(result.error)) return Math.max(REFUSED_RETRY_MS, this.pace.intervalMs)
-      return this.pace.intervalMs * Math.min(MOST_REPORT_BACKOFF_INTERVALS, 2 ** (this.failedInARow - 1))
-    }
-    if (this.failedInARow > 0) logger.info({ after: this.failedInARow }, 'reports are delivered again')
-    this.delivered += 1
-    this.failedInARow = 0
-    this.lastError = null
-    this.deliveredAtMs = nowMs
-    const { orders, ordersAgeMs } = result.value
-    // The orders aged on the way too; counting the whole exchange makes them expire early rather than late.
-    if (orders && this.node.adopt(orders, ordersAgeMs + (nowMs - sentAtMs), nowMs)) this.follow(orders)
-    return this.pace.intervalMs
-  }
-
   private follow(orders: Orders): void {
-    this.pace = orders.pace
+    const ending = this.membership.standing.follow(orders)
+    if (ending) this.end(ending)
+  }
+
+  /** Not by own will: the overlay counts this agent no more. */
+  private end(ending: Ending): void {
+    if (this.membership.standing.ended !== null || this.stopping.signal.aborted) return
+    this.membership.standing.ended = ending
+    this.components.logger.warn(ending, 'this agent is none of the overlay any more')
+    this.halt()
+    this.init.onEnded?.(ending)
+  }
+
+  private halt(): void {
+    this.reporting.abort()
+    this.ticks.stop()
+    this.links.stop()
   }
 
   private renewed(grant: PassGrant): void {
-    this.pass = grant.pass
+    this.links.offerPass(grant.pass)
     this.init.onPass?.(grant)
   }
 
-  private noteSession(reply: { pace: PaceName }): void {
-    if (this.node.ordersSequence === 0) this.pace = PACES[reply.pace]
-    this.components.logger.debug({ clockSkewMs: Math.round(this.reporter.skewMs) }, 'session opened')
-  }
-
-  private passes() {
-    const { overlayKey, overlayId } = this.init.identity
-    return {
-      own: () => this.pass,
-      judge: (token: string) => verifyPass(token, overlayKey, overlayId, new Date(this.reporter.nowMs())),
-      hasExpired: (expiresAt: number) =>
-        this.reporter.nowMs() / 1000 > expiresAt + PASS_CLOCK_TOLERANCE_SECONDS,
-    }
-  }
-
-  private nonce(): string {
-    return base64url(this.components.randomBytes(NONCE_BYTES))
+  private noteLink(event: LinkEvent): void {
+    if (event.kind !== 'link-ended') this.correspondence.spool.noteLink(event.kind, event.peer)
+    this.init.onLinkEvent?.(event)
   }
 }
 

@@ -8,6 +8,9 @@ export interface EnrolInit {
   /** Where neighbours may dial this agent; null if nowhere. */
   address: string | null
   version: string
+  /** How the overlay knows the node, and a fingerprint of the machine. */
+  node?: string | null
+  host?: string
 }
 
 /** Joins an overlay with a joining code, under a key that stays here. */

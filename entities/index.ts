@@ -1,4 +1,5 @@
 import { AgentSchema } from './agent'
+import { AgentReleaseSchema } from './agent-release'
 import { AgentSessionSchema } from './agent-session'
 import { AgentStateSchema } from './agent-state'
 import { ApiTokenSchema } from './api-token'
@@ -8,13 +9,18 @@ import { JoiningCodeSchema } from './joining-code'
 import { MembershipSchema } from './membership'
 import { OverlaySchema } from './overlay'
 import { OverlayEventSchema } from './overlay-event'
+import { OverlayKeySchema } from './overlay-key'
+import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { PasswordLinkSchema } from './password-link'
 import { ReadingSchema } from './reading'
 import { SessionSchema } from './session'
+import { ShutAgentSchema } from './shut-agent'
 import { TeamSchema } from './team'
+import { UpgradeOfferSchema } from './upgrade-offer'
 import { UserSchema } from './user'
 
 export * from './agent'
+export * from './agent-release'
 export * from './agent-session'
 export * from './agent-state'
 export * from './api-token'
@@ -24,14 +30,19 @@ export * from './joining-code'
 export * from './membership'
 export * from './overlay'
 export * from './overlay-event'
+export * from './overlay-key'
+export * from './overlay-key-ring'
 export * from './password-link'
 export * from './reading'
 export * from './session'
+export * from './shut-agent'
 export * from './team'
+export * from './upgrade-offer'
 export * from './user'
 
 export const entities = [
   AgentSchema,
+  AgentReleaseSchema,
   AgentSessionSchema,
   AgentStateSchema,
   ApiTokenSchema,
@@ -41,9 +52,13 @@ export const entities = [
   MembershipSchema,
   OverlaySchema,
   OverlayEventSchema,
+  OverlayKeySchema,
+  OverlayKeyRingSchema,
   PasswordLinkSchema,
   ReadingSchema,
   SessionSchema,
+  ShutAgentSchema,
   TeamSchema,
+  UpgradeOfferSchema,
   UserSchema,
 ]

@@ -19,9 +19,13 @@ export const OverlaySchema = defineEntity({
     contact: p.text().nullable(),
     runbookUrl: p.text().nullable(),
     demo: p.boolean().default(false),
-    /** Ed25519, base64url of the raw 32 bytes each; signs the agents' passes. */
+    /** Agents unheard for so long are retired; null for never. */
+    retireAfterHours: p.integer().nullable(),
+    /** The key in force. Ed25519, base64url of the raw 32 bytes each; signs passes and orders. */
     publicKey: p.text(),
     privateKey: p.text().hidden(),
+    /** Since when it has been in force; null since the overlay was created. */
+    keySince: p.datetime().nullable(),
     createdAt: p.datetime(),
   },
 })

@@ -1,13 +1,17 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
+import { benchAgent } from './bench/agent'
 import { benchMethod } from './bench/method'
 
-const BENCHES: Record<string, (args: readonly string[], print: (line: string) => void) => void> = {
+type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
+
+const BENCHES: Record<string, Bench> = {
+  agent: benchAgent,
   method: benchMethod,
 }
 
 const [name, ...args] = process.argv.slice(2)
 const bench = name === undefined ? undefined : BENCHES[name]
-if (bench) bench(args, (line) => process.stdout.write(`${line}\n`))
+if (bench) await bench(args, (line) => process.stdout.write(`${line}\n`))
 else {
   process.stderr.write(`Name a bench: ${Object.keys(BENCHES).join(', ')}.\n`)
   process.exitCode = 2

@@ -4,7 +4,10 @@
  */
 import { once } from 'node:events'
 import { resolve } from 'node:path'
+import { GET as directory } from '@/app/api/agent/directory/route'
 import { POST as enrol } from '@/app/api/agent/enrol/route'
+import { POST as key } from '@/app/api/agent/key/route'
+import { POST as leave } from '@/app/api/agent/leave/route'
 import { POST as report } from '@/app/api/agent/report/route'
 import { POST as session } from '@/app/api/agent/session/route'
 import { createRouteServer } from '@/lib/collector/http-server'
@@ -34,6 +37,9 @@ const server = createRouteServer({
   'POST /api/agent/enrol': enrol,
   'POST /api/agent/session': session,
   'POST /api/agent/report': report,
+  'POST /api/agent/key': key,
+  'POST /api/agent/leave': leave,
+  'GET /api/agent/directory': directory,
   'GET /api/health': health,
 })
 server.listen(port, host)

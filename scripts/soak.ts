@@ -20,6 +20,30 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/course.test.ts',
     env: {},
   },
+  fuzz: {
+    about:
+      '120,000 (THINSPAN_FUZZ_MESSAGES) random and mutated frames and handshakes at an agent with an honest neighbour',
+    file: 'tests/soak/fuzz.test.ts',
+    env: {},
+  },
+  faults: {
+    about:
+      'links, clocks, processes and disks that fail, a minute each, with the walker audit; about 8 minutes',
+    file: 'tests/soak/faults.test.ts',
+    env: {},
+  },
+  liars: {
+    about:
+      'every lie at three places, and 30 simulated minutes (THINSPAN_SOAK_MINUTES) of honest trouble on five graphs, with a table',
+    file: 'tests/soak/liars.test.ts',
+    env: {},
+  },
+  namespaces: {
+    about:
+      'twelve agents in network namespaces, the collector outside and inside each half; root and iproute2',
+    file: 'tests/soak/namespaces.test.ts',
+    env: {},
+  },
 }
 
 const root = resolve(import.meta.dirname, '..')
@@ -36,7 +60,7 @@ if (soak) {
     process.exitCode = code ?? 1
   })
 } else {
-  const list = Object.entries(SOAKS).map(([key, { about }]) => `  ${key.padEnd(8)} ${about}`)
+  const list = Object.entries(SOAKS).map(([key, { about }]) => `  ${key.padEnd(10)} ${about}`)
   process.stderr.write(`Name a soak:\n${list.join('\n')}\n`)
   process.exitCode = 2
 }

@@ -3,6 +3,7 @@
 import { existsSync } from 'node:fs'
 import { join, resolve } from 'node:path'
 import { setTimeout as delay } from 'node:timers/promises'
+import { ensureAgentFile } from './lib/agent-file.mjs'
 import { ensureBuilt, nextProgram } from './lib/build.mjs'
 import { createChildren } from './lib/children.mjs'
 import { run } from './lib/commands.mjs'
@@ -85,6 +86,7 @@ async function main() {
     const options = { distFolder: DIST_FOLDER, signal, onStart: () => sentence && note(sentence) }
     return ensureBuilt(root, options)
   })
+  await step('Agent file', () => ensureAgentFile(root))
 
   const next = [nextProgram(root), 'start', '-H', host, '-p', String(port)]
   const web = children.start('web', next, { cwd: root, env: childEnv })

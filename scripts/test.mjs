@@ -5,11 +5,13 @@
  */
 import { existsSync, readFileSync, rmSync } from 'node:fs'
 import { join, resolve } from 'node:path'
+import { ensureAgentFile } from './lib/agent-file.mjs'
 import { ensurePackages } from './lib/apt.mjs'
 import { ensureBuilt } from './lib/build.mjs'
 import { findChromium } from './lib/chromium.mjs'
 import { run } from './lib/commands.mjs'
 import { ensureInstalled } from './lib/install.mjs'
+import { findIproute } from './lib/iproute.mjs'
 import { freeMemoryBytes, memorySentence } from './lib/memory.mjs'
 import { requireNode } from './lib/node-version.mjs'
 import { ensurePostgres } from './lib/postgres.mjs'
@@ -34,9 +36,11 @@ async function main() {
 
   await step('Packages', () => ensureInstalled(root, { signal }))
   if (whole) await step('Chromium', ensureChromium)
+  if (whole) await step('Network namespaces', () => ensureIproute(note))
   if (!env.TEST_DATABASE_URL) await step('PostgreSQL', () => ensureDatabaseServer(note))
   if (whole) {
     await step('Build', () => build(note))
+    await step('Agent file', () => ensureAgentFile(root))
     await check('Types', async () => {
       await run(process.execPath, [bin('typescript/bin/tsc'), '-p', 'tsconfig.next.json'], {
         cwd: root,
@@ -67,6 +71,19 @@ async function ensureChromium() {
   if (findChromium(env) !== null) return null
   await ensurePackages(['chromium'], { instead: 'set CHROMIUM_PATH to a Chromium you have', signal })
   return "installed from Debian's packages"
+}
+
+/** Without it the tests in network namespaces are left out, and say so. */
+async function ensureIproute(note) {
+  if (process.platform !== 'linux' || process.getuid() !== 0 || findIproute() !== null) return null
+  try {
+    await ensurePackages(['iproute2'], { instead: 'leave the tests in network namespaces out', signal })
+    return "iproute2 installed from Debian's packages"
+  } catch (error) {
+    signal.throwIfAborted()
+    note(error.message)
+    return null
+  }
 }
 
 async function ensureDatabaseServer(note) {

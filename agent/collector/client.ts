@@ -1,9 +1,15 @@
 import type { Report } from '@/lib/method/report'
 import type {
   AgentProblem,
+  Directory,
   EnrolReply,
   EnrolRequest,
+  KeyChangeReply,
+  KeyChangeRequest,
+  LeaveReply,
+  LeaveRequest,
   ReportReply,
+  ReportRequest,
   SessionReply,
   SessionRequest,
 } from '@/lib/protocol'
@@ -19,16 +25,34 @@ export type CollectorError =
 
 export type CollectorResult<T> = { ok: true; value: T } | { ok: false; error: CollectorError }
 
+/** Every agent of the overlay; null where nothing has changed since the etag that was given. */
+export interface DirectoryReply {
+  etag: string | null
+  directory: Directory | null
+}
+
+/** A report, and what goes with it. */
+export type SentReport = Report & Pick<ReportRequest, 'protocol' | 'wantsReceipt' | 'relayed' | 'away'>
+
 /** What an agent asks of its collector. Never throws; an aborted call answers `unreachable`. */
 export interface CollectorClient {
   enrol(request: EnrolRequest, signal: AbortSignal): Promise<CollectorResult<EnrolReply>>
   session(request: SessionRequest, signal: AbortSignal): Promise<CollectorResult<SessionReply>>
-  report(report: Report, token: string, signal: AbortSignal): Promise<CollectorResult<ReportReply>>
+  report(request: SentReport, token: string, signal: AbortSignal): Promise<CollectorResult<ReportReply>>
+  /** Proves itself: both keys sign. */
+  key(request: KeyChangeRequest, signal: AbortSignal): Promise<CollectorResult<KeyChangeReply>>
+  leave(request: LeaveRequest, token: string, signal: AbortSignal): Promise<CollectorResult<LeaveReply>>
+  directory(etag: string | null, token: string, signal: AbortSignal): Promise<CollectorResult<DirectoryReply>>
 }
 
 /** Whether trying the same again can help. */
 export function mayRetry(error: CollectorError): boolean {
   return error.code === 'refused' ? error.problem.retry : true
+}
+
+/** The collector says that this agent is none of the overlay's any more. */
+export function isEnded(error: CollectorError): boolean {
+  return error.code === 'refused' && error.problem.code === 'agent-ended'
 }
 
 /** One line for logs and people. */

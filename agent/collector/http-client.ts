@@ -1,8 +1,16 @@
 import type { z } from 'zod'
-import { agentProblemSchema, enrolReplySchema, reportReplySchema, sessionReplySchema } from '@/lib/protocol'
+import {
+  agentProblemSchema,
+  directorySchema,
+  enrolReplySchema,
+  keyChangeReplySchema,
+  leaveReplySchema,
+  reportReplySchema,
+  sessionReplySchema,
+} from '@/lib/protocol'
 import type { Clock } from '../clock'
-import type { CollectorClient, CollectorResult } from './client'
-import type { Post } from './post'
+import type { CollectorClient, CollectorResult, DirectoryReply } from './client'
+import type { Post, PostReply } from './post'
 
 export const COLLECTOR_TIMEOUT_MS = 10_000
 export const MAX_REPLY_BYTES = 2 * 1024 * 1024
@@ -24,28 +32,44 @@ export function createHttpCollector(
   { baseUrl, timeoutMs = COLLECTOR_TIMEOUT_MS }: HttpCollectorInit,
 ): CollectorClient {
   const base = new URL(baseUrl.endsWith('/') ? baseUrl : `${baseUrl}/`)
-  const post = <T>(path: string, body: object, schema: z.ZodType<T>, signal: AbortSignal, token?: string) =>
-    call(components, new URL(path, base), { body, schema, signal, token, timeoutMs })
+  const post = async <T>(
+    path: string,
+    body: object,
+    schema: z.ZodType<T>,
+    signal: AbortSignal,
+    token?: string,
+  ): Promise<CollectorResult<T>> => {
+    const reply = await call(components, new URL(path, base), { body, signal, token, timeoutMs })
+    return reply.ok ? judge(reply.value.status, reply.value.text, schema) : reply
+  }
   return {
     enrol: (request, signal) => post('api/agent/enrol', request, enrolReplySchema, signal),
     session: (request, signal) => post('api/agent/session', request, sessionReplySchema, signal),
-    report: (report, token, signal) => post('api/agent/report', report, reportReplySchema, signal, token),
+    report: (request, token, signal) => post('api/agent/report', request, reportReplySchema, signal, token),
+    key: (request, signal) => post('api/agent/key', request, keyChangeReplySchema, signal),
+    leave: (request, token, signal) => post('api/agent/leave', request, leaveReplySchema, signal, token),
+    directory: async (etag, token, signal) => {
+      const url = new URL('api/agent/directory', base)
+      const reply = await call(components, url, { body: null, signal, token, timeoutMs, etag })
+      return reply.ok ? judgeDirectory(reply.value, etag) : reply
+    },
   }
 }
 
-interface Call<T> {
-  body: object
-  schema: z.ZodType<T>
+interface Call {
+  /** Null to ask instead of to say. */
+  body: object | null
   signal: AbortSignal
   token: string | undefined
   timeoutMs: number
+  etag?: string | null
 }
 
-async function call<T>(
+async function call(
   { post, clock }: HttpCollectorComponents,
   url: URL,
-  init: Call<T>,
-): Promise<CollectorResult<T>> {
+  init: Call,
+): Promise<CollectorResult<PostReply>> {
   const abort = new AbortController()
   let timedOut = false
   const onAbort = () => abort.abort()
@@ -55,16 +79,15 @@ async function call<T>(
   })
   init.signal.addEventListener('abort', onAbort, { once: true })
   if (init.signal.aborted) abort.abort()
-  const headers: Record<string, string> = { 'content-type': 'application/json', accept: 'application/json' }
-  if (init.token !== undefined) headers.authorization = `Bearer ${init.token}`
   try {
-    const reply = await post(url, {
-      headers,
-      body: JSON.stringify(init.body),
+    const value = await post(url, {
+      method: init.body === null ? 'GET' : 'POST',
+      headers: headersOf(init),
+      body: init.body === null ? '' : JSON.stringify(init.body),
       signal: abort.signal,
       maxReplyBytes: MAX_REPLY_BYTES,
     })
-    return judge(reply.status, reply.text, init.schema)
+    return { ok: true, value }
   } catch (error) {
     if (timedOut) return { ok: false, error: { code: 'timeout', timeoutMs: init.timeoutMs } }
     const reason = init.signal.aborted ? 'stopped' : error instanceof Error ? error.message : String(error)
@@ -73,6 +96,21 @@ async function call<T>(
     cancelTimeout()
     init.signal.removeEventListener('abort', onAbort)
   }
+}
+
+function headersOf({ body, token, etag }: Call): Record<string, string> {
+  return {
+    accept: 'application/json',
+    ...(body === null ? {} : { 'content-type': 'application/json' }),
+    ...(token === undefined ? {} : { authorization: `Bearer ${token}` }),
+    ...(etag === null || etag === undefined ? {} : { 'if-none-match': etag }),
+  }
+}
+
+function judgeDirectory(reply: PostReply, asked: string | null): CollectorResult<DirectoryReply> {
+  if (reply.status === 304 && asked !== null) return { ok: true, value: { etag: asked, directory: null } }
+  const judged = judge(reply.status, reply.text, directorySchema)
+  return judged.ok ? { ok: true, value: { etag: reply.etag ?? null, directory: judged.value } } : judged
 }
 
 function judge<T>(status: number, text: string | null, schema: z.ZodType<T>): CollectorResult<T> {

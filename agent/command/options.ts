@@ -1,10 +1,11 @@
-import { parseArgs } from 'node:util'
 import { z } from 'zod'
-import { labelsSchema, linkAddressSchema, nodeNameSchema } from '@/lib/protocol'
+import { labelsSchema, linkAddressSchema, nodeAddressSchema, nodeNameSchema } from '@/lib/protocol'
+import type { AgentConfig } from '../config'
+import { readRule } from '../sources/rule'
+import { readSource, type SourceConfig } from '../sources/source-config'
 import type { ListenInit } from '../transport/transport'
-
-export const COMMANDS = ['enrol', 'run', 'status'] as const
-export type Command = (typeof COMMANDS)[number]
+import { COMMANDS, type Command, FlagError, type Given, readFlags } from './flags'
+import { labelLines, readLabels, readListen, readMetrics, readSeconds } from './values'
 
 export const DEFAULT_CONFIG = 'thinspan-agent.json'
 
@@ -17,88 +18,123 @@ export interface Options {
   labels: Record<string, string>
   config: string
   neighbours: string[]
+  /** What follows is null where nothing was said: then the configuration counts. */
+  node: string | null
+  source: SourceConfig | null
+  agentsAt: string | null
+  listenMetrics: AgentConfig['listenMetrics']
+  spool: string | null
+  tls: AgentConfig['tls']
+  upgrades: boolean | null
+  enrolIfNeeded: boolean
+  json: boolean
+  yes: boolean
+  reason: string
 }
 
 export type OptionsResult =
   | { ok: true; command: Command; options: Options }
   | { ok: true; command: 'help' }
+  | { ok: true; command: 'version' }
   | { ok: false; issue: string }
 
-const FLAGS = {
-  collector: { type: 'string' },
-  code: { type: 'string' },
-  name: { type: 'string' },
-  listen: { type: 'string' },
-  address: { type: 'string' },
-  label: { type: 'string', multiple: true },
-  config: { type: 'string' },
-  neighbour: { type: 'string', multiple: true },
-  help: { type: 'boolean', short: 'h' },
-} as const
+export interface OptionsComponents {
+  env: Record<string, string | undefined>
+  hostname: () => string
+  /** Whole text of a file. @throws Error where it cannot be read */
+  readFile: (path: string) => string
+}
 
 /** Flags win over THINSPAN_… variables; lists in variables are separated by commas. */
-export function readOptions(args: readonly string[], env: Record<string, string | undefined>): OptionsResult {
-  let parsed: ReturnType<typeof parse>
+export function readOptions(args: readonly string[], components: OptionsComponents): OptionsResult {
   try {
-    parsed = parse(args)
+    return read(readFlags(args, components.env), components)
   } catch (error) {
-    return { ok: false, issue: error instanceof Error ? error.message : String(error) }
+    if (error instanceof FlagError) return { ok: false, issue: error.message }
+    throw error
   }
-  const { values, positionals } = parsed
-  const [command, ...extra] = positionals
-  if (values.help || command === undefined) return { ok: true, command: 'help' }
+}
+
+function read(given: Given, components: OptionsComponents): OptionsResult {
+  const [command, ...extra] = given.words
+  if (given.mark('version') || command === 'version') return { ok: true, command: 'version' }
+  if (given.mark('help') || command === undefined || command === 'help') return { ok: true, command: 'help' }
   if (!isCommand(command)) return { ok: false, issue: `There is no command "${command}".` }
   if (extra.length > 0) return { ok: false, issue: `"${extra[0]}" was not expected.` }
-  const one = (name: 'collector' | 'code' | 'name' | 'listen' | 'address' | 'config') =>
-    values[name] ?? env[`THINSPAN_${name.toUpperCase()}`] ?? null
-  const many = (given: string[] | undefined, variable: string) =>
-    given ?? (env[variable] ?? '').split(',').filter((item) => item !== '')
-  const labels = readLabels(many(values.label, 'THINSPAN_LABELS'))
-  if (!labels.ok) return labels
-  const listen = readListen(one('listen'))
-  if (!listen.ok) return listen
-  const options: Options = {
-    collector: one('collector'),
-    code: one('code'),
-    name: one('name'),
-    listen: listen.listen,
-    address: one('address'),
-    labels: labels.labels,
-    config: one('config') ?? DEFAULT_CONFIG,
-    neighbours: many(values.neighbour, 'THINSPAN_NEIGHBOURS'),
-  }
+  const options = optionsOf(given, components, {
+    // Secrets in files are read only by who needs them.
+    forEnrolment: command === 'enrol' || (command === 'run' && given.mark('enrol-if-needed') === true),
+  })
   const issue = check(options)
   return issue ? { ok: false, issue } : { ok: true, command, options }
 }
 
-const parse = (args: readonly string[]) =>
-  parseArgs({ args: [...args], options: FLAGS, allowPositionals: true, strict: true })
+function optionsOf(
+  given: Given,
+  components: OptionsComponents,
+  { forEnrolment }: { forEnrolment: boolean },
+): Options {
+  const { one, many, mark } = given
+  const file = (flag: 'code-file' | 'labels-file') => {
+    const path = one(flag)
+    return path === null || !forEnrolment ? null : textOf(components, `--${flag}`, path)
+  }
+  const listen = one('listen')
+  return {
+    collector: one('collector'),
+    code: one('code') ?? file('code-file')?.trim() ?? null,
+    name: one('name') ?? (forEnrolment ? components.hostname() : null),
+    listen: listen === null ? null : readListen('--listen', listen),
+    address: one('address'),
+    labels: readLabels([...labelLines(file('labels-file') ?? ''), ...many('label')]),
+    config: one('config') ?? DEFAULT_CONFIG,
+    neighbours: many('neighbour'),
+    node: one('node'),
+    source: sourceOf(given),
+    agentsAt: one('agents-at'),
+    listenMetrics: metricsOf(given),
+    spool: one('spool'),
+    tls: tlsOf(given),
+    upgrades: mark('upgrades'),
+    enrolIfNeeded: mark('enrol-if-needed') ?? false,
+    json: mark('json') ?? false,
+    yes: mark('yes') ?? false,
+    reason: one('reason') ?? '',
+  }
+}
+
+function textOf({ readFile }: OptionsComponents, flag: string, path: string): string {
+  try {
+    return readFile(path)
+  } catch (error) {
+    throw new FlagError(`${flag}: ${error instanceof Error ? error.message : String(error)}`)
+  }
+}
+
+function sourceOf({ one }: Given): SourceConfig | null {
+  const text = one('neighbours-from')
+  if (text === null) return null
+  const every = one('neighbours-every')
+  const everySeconds = every === null ? null : readSeconds('--neighbours-every', every)
+  const source = readSource(text, { at: one('neighbours-at'), everySeconds })
+  if (source.ok) return source.source
+  throw new FlagError(`--neighbours-from: ${source.issue}`)
+}
+
+function metricsOf({ one, mark }: Given): Options['listenMetrics'] {
+  const text = one('metrics')
+  return text === null ? null : { ...readMetrics(text), anywhere: mark('metrics-anywhere') ?? false }
+}
+
+function tlsOf({ one }: Given): Options['tls'] {
+  const [ca, cert, key] = [one('ca'), one('cert'), one('key')]
+  if (ca === null && cert === null && key === null) return null
+  if ((cert === null) !== (key === null)) throw new FlagError('--cert and --key go together.')
+  return { ca, cert, key }
+}
 
 function isCommand(text: string): text is Command {
   return COMMANDS.some((command) => command === text)
-}
-
-function readLabels(
-  pairs: readonly string[],
-): { ok: true; labels: Record<string, string> } | { ok: false; issue: string } {
-  const labels: Record<string, string> = {}
-  for (const pair of pairs) {
-    const at = pair.indexOf('=')
-    if (at < 1) return { ok: false, issue: `A label is written key=value, not "${pair}".` }
-    labels[pair.slice(0, at)] = pair.slice(at + 1)
-  }
-  return { ok: true, labels }
-}
-
-/** host:port, [v6]:port or :port for every address of the machine. */
-export function readListen(
-  text: string | null,
-): { ok: true; listen: ListenInit | null } | { ok: false; issue: string } {
-  if (text === null) return { ok: true, listen: null }
-  const match = /^(?:\[([0-9a-f:.]+)\]|([^:[\]]*)):(\d{1,5})$/i.exec(text)
-  const port = Number(match?.[3])
-  if (!match || port > 65_535) return { ok: false, issue: `--listen takes host:port, not "${text}".` }
-  return { ok: true, listen: { host: match[1] ?? (match[2] || '0.0.0.0'), port } }
 }
 
 const checks: [keyof Options, string, z.ZodType][] = [
@@ -111,6 +147,7 @@ const checks: [keyof Options, string, z.ZodType][] = [
   ['address', '--address', linkAddressSchema],
   ['labels', '--label', labelsSchema],
   ['neighbours', '--neighbour', z.array(linkAddressSchema)],
+  ['node', '--node', nodeAddressSchema],
 ]
 
 function check(options: Options): string | null {
@@ -119,5 +156,6 @@ function check(options: Options): string | null {
     const parsed = schema.safeParse(options[key])
     if (!parsed.success) return `${flag}: ${parsed.error.issues[0]?.message ?? 'not valid'}`
   }
-  return null
+  const rule = options.agentsAt === null ? null : readRule(options.agentsAt)
+  return rule && !rule.ok ? `--agents-at: ${rule.issue}` : null
 }

@@ -9,6 +9,10 @@ export interface AdmissionCase {
   incarnation: string
   /** This incarnation had a link and was replaced by another. */
   isRetired: boolean
+  /** By the orders or for its figures, nobody here keeps a link with it: then how it is closed. */
+  shut: CloseName | null
+  /** There are as many links as there may be, and none with this agent. */
+  isFull: boolean
   /** When this connection was opened, counted over all connections of this program. */
   opened: number
   /** The newest incarnation seen of this peer, and when its connection was opened; null for the first. */
@@ -25,11 +29,16 @@ export interface AdmissionCase {
  */
 export function judgeAdmission(candidate: AdmissionCase): CloseName | null {
   const { latest } = candidate
+  if (candidate.shut) return candidate.shut
   if (candidate.isRetired) return 'stale-incarnation'
   if (latest && latest.incarnation !== candidate.incarnation && candidate.opened < latest.opened) {
     return 'stale-incarnation'
   }
-  if (candidate.role === 'dialer') return candidate.isKnown ? null : 'not-a-neighbour'
-  if (candidate.isBanned) return 'not-a-neighbour'
-  return candidate.isKnown || candidate.acceptUnknown ? null : 'not-a-neighbour'
+  if (!isNeighbour(candidate)) return 'not-a-neighbour'
+  return candidate.isFull ? 'too-many-links' : null
+}
+
+function isNeighbour({ role, isKnown, isBanned, acceptUnknown }: AdmissionCase): boolean {
+  if (role === 'dialer') return isKnown
+  return !isBanned && (isKnown || acceptUnknown)
 }

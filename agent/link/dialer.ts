@@ -79,6 +79,13 @@ export class Dialer {
     if (!this.busy && !this.cancelWait) this.wait(reason, false)
   }
 
+  /** Dials at once, even in the middle of a wait. */
+  wantNow(): void {
+    this.cancelWait?.()
+    this.cancelWait = null
+    this.want()
+  }
+
   stop(): void {
     this.abort?.abort()
     this.cancelWait?.()

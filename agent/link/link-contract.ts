@@ -1,15 +1,20 @@
+import type { OrdersProof } from '@/lib/method/frame'
 import type { WalkNode } from '@/lib/method/node'
 import type { Orders } from '@/lib/method/orders'
 import type { Random } from '@/lib/method/random'
-import type { KeyPair, PassResult } from '@/lib/protocol'
+import type { SignedStatement } from '@/lib/method/statement'
+import type { KeyPair, PassResult, SignedOrdersResult } from '@/lib/protocol'
 import type { Backoff } from '../backoff'
 import type { Clock } from '../clock'
 import type { Logger } from '../logger'
 import type { Transport } from '../transport/transport'
 
 export const HANDSHAKE_TIMEOUT_MS = 5_000
-/** Connections that have not proved themselves; more are turned away. */
-export const MAX_UNPROVEN = 64
+/** Connections that have not proved themselves, in all and from one address; more are turned away. */
+export const MAX_UNPROVEN = 256
+export const MAX_UNPROVEN_PER_ADDRESS = 64
+/** Agents one agent keeps links with. */
+export const MAX_LINKS = 2_048
 /** A removal that the other end does not answer is over after this time. */
 export const REMOVAL_MS = 10_000
 /** A connection on which nothing came for the longer of these is given up. */
@@ -23,6 +28,13 @@ export interface Passes {
   hasExpired(expiresAtSeconds: number): boolean
 }
 
+/** What the overlay's keys say of what neighbours pass on. */
+export interface LinkTrust {
+  judgeOrders(proof: OrdersProof): SignedOrdersResult
+  /** Whether the collector's receipt for a statement is good. */
+  judgeStatement(statement: SignedStatement): boolean
+}
+
 export interface LinkEvent {
   kind: 'link-up' | 'link-down' | 'link-ended'
   peer: string
@@ -30,14 +42,19 @@ export interface LinkEvent {
   reason: string
 }
 
+/** Messages that travel through neighbours towards the collector, and the answers to them. */
+export type RelayKind = 'relay' | 'relayReply'
+
 export interface LinkManagerComponents {
   transport: Transport
   clock: Clock
   random: Random
   logger: Logger
   node: WalkNode
+  /** To begin with; `setKeys` puts others in their place. */
   keys: KeyPair
   passes: Passes
+  trust: LinkTrust
   /** base64url of 32 fresh random bytes. */
   nonce: () => string
 }
@@ -49,6 +66,11 @@ export interface LinkManagerInit {
   tickMs: () => number
   handshakeTimeoutMs?: number
   maxUnproven?: number
+  maxUnprovenPerAddress?: number
+  maxLinks?: number
+  /** Of the link protocol; all that are spoken, unless said otherwise. */
+  versions?: readonly number[]
   onOrders?: (orders: Orders) => void
   onEvent?: (event: LinkEvent) => void
+  onRelay?: (peer: string, kind: RelayKind, bytes: Uint8Array) => void
 }

@@ -1,3 +1,4 @@
+import type { CollectorDistance } from '@/lib/method/frame'
 import type { CloseName, LinkPeer } from '@/lib/protocol'
 import { PeerLink } from './peer-link'
 import type { LinkSession } from './session'
@@ -52,6 +53,34 @@ export class LinkTable {
 
   dropAll(peer: string, name: CloseName): void {
     for (const session of [...(this.links.get(peer)?.open ?? [])]) this.drop(session, name)
+  }
+
+  /** The connection to send on to a peer, or null. */
+  carrierOf(peer: string): LinkSession | null {
+    const carrier = this.links.get(peer)?.carrier
+    return carrier?.isOpen ? carrier : null
+  }
+
+  /** A peer has renewed its pass: that holds for all its connections. */
+  renew(peer: string, passExpiresAt: number): void {
+    for (const session of this.links.get(peer)?.open ?? []) {
+      if (session.peer) session.peer = { ...session.peer, passExpiresAt }
+    }
+  }
+
+  noteDistance(peer: string, distance: CollectorDistance | null): void {
+    const link = this.links.get(peer)
+    if (link) link.distance = distance
+  }
+
+  /** Peers nearer to the collector than `distance`, nearest first. */
+  nearer(distance: CollectorDistance): { peer: string; distance: CollectorDistance }[] {
+    const near: { peer: string; distance: CollectorDistance }[] = []
+    for (const [peer, link] of this.links) {
+      if (link.distance === null || link.distance >= distance || !this.carrierOf(peer)) continue
+      near.push({ peer, distance: link.distance })
+    }
+    return near.sort((a, b) => a.distance - b.distance || (a.peer < b.peer ? -1 : 1))
   }
 
   /** A socket is gone. @returns whether that was the last of its link */

@@ -1,3 +1,4 @@
+import type { CollectorDistance } from '@/lib/method/frame'
 import type { LinkSession } from './session'
 
 /** More connections than this of one pair are not kept, whoever dials them. */
@@ -12,6 +13,8 @@ export const MAX_SESSIONS_PER_PEER = 4
 export class PeerLink {
   readonly peer: string
   readonly decides: boolean
+  /** How far from the collector the other end says it is; null in version 1. */
+  distance: CollectorDistance | null = null
   private readonly sessions: LinkSession[] = []
   private current: LinkSession | null = null
 

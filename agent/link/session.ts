@@ -6,6 +6,7 @@ import {
   type HandshakeInit,
   type LinkPeer,
   type PassResult,
+  type ProvenNonces,
 } from '@/lib/protocol'
 import type { Clock } from '../clock'
 import type { CloseEvent, Connection } from '../transport/transport'
@@ -18,6 +19,7 @@ export interface SessionComponents {
   connection: Connection
   sign: (bytes: Uint8Array) => Uint8Array
   judgePass: (token: string) => Promise<PassResult>
+  nonces?: ProvenNonces
 }
 
 export interface SessionInit extends HandshakeInit {
@@ -40,6 +42,10 @@ export class LinkSession {
   readonly remote: string
   peer: LinkPeer | null = null
   lastHeardMs: number
+  /** The pass that this end showed last. */
+  shown: string
+  /** A renewed pass of the other end is being judged. */
+  isJudging = false
   private readonly clock: Clock
   private readonly connection: Connection
   private readonly judgePass: SessionComponents['judgePass']
@@ -51,18 +57,19 @@ export class LinkSession {
   private cancelTimeout = () => {}
 
   constructor(
-    { clock, connection, sign, judgePass }: SessionComponents,
+    { clock, connection, sign, judgePass, nonces }: SessionComponents,
     init: SessionInit,
     owner: SessionOwner,
   ) {
     this.clock = clock
     this.connection = connection
     this.judgePass = judgePass
-    this.handshake = new Handshake({ sign }, init)
+    this.handshake = new Handshake({ sign, nonces }, init)
     this.timeoutMs = init.timeoutMs
     this.opened = init.opened
     this.role = init.role
     this.remote = connection.remote
+    this.shown = init.pass
     this.owner = owner
     this.lastHeardMs = clock.monotonicMs()
   }

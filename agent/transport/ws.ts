@@ -1,4 +1,5 @@
-import { createServer } from 'node:http'
+import { createServer, type RequestListener, type Server } from 'node:http'
+import { createServer as createTlsServer } from 'node:https'
 import { WebSocket, WebSocketServer } from 'ws'
 import { MAX_FRAME_BYTES } from '@/lib/protocol'
 import type { Clock } from '../clock'
@@ -16,28 +17,53 @@ export interface WsComponents {
   clock: Clock
 }
 
+/** PEM texts. TLS keeps onlookers out; who the other end is, passes and handshake say. */
+export interface WsTls {
+  /** Of a private CA; without it, whom the system trusts. */
+  ca?: string
+  /** With a certificate and its key, listening is by `wss` alone. */
+  cert?: string
+  key?: string
+}
+
+export interface WsInit {
+  tls?: WsTls
+}
+
 /** Links over WebSocket. Compression is off: frames are small, and it would cost memory per connection. */
-export function createWsTransport({ clock }: WsComponents): Transport {
+export function createWsTransport({ clock }: WsComponents, { tls }: WsInit = {}): Transport {
   return {
-    listen: (init, onConnection) => listen(clock, init, onConnection),
-    dial: (address, signal) => dial(clock, address, signal),
+    listen: (init, onConnection) => listen(clock, tls, init, onConnection),
+    dial: (address, signal) => dial(clock, tls, address, signal),
   }
 }
 
-function listen(
+const refuseRequest: RequestListener = (_, response) => {
+  response.writeHead(426, { upgrade: 'websocket', 'content-type': 'text/plain' })
+  response.end('This port speaks WebSocket to the agents of an overlay.\n')
+}
+
+/** @throws Error where certificate and key do not fit */
+function createHttp(tls: WsTls | undefined): Server {
+  const limits = { headersTimeout: DIAL_WAIT_MS, requestTimeout: DIAL_WAIT_MS }
+  if (tls?.cert === undefined || tls.key === undefined) return createServer(limits, refuseRequest)
+  const { cert, key } = tls
+  return createTlsServer({ ...limits, handshakeTimeout: DIAL_WAIT_MS, cert, key }, refuseRequest)
+}
+
+async function listen(
   clock: Clock,
+  tls: WsTls | undefined,
   { host, port }: ListenInit,
   onConnection: (connection: Connection) => void,
 ): Promise<Listening> {
-  const http = createServer({ headersTimeout: DIAL_WAIT_MS, requestTimeout: DIAL_WAIT_MS }, (_, response) => {
-    response.writeHead(426, { upgrade: 'websocket', 'content-type': 'text/plain' })
-    response.end('This port speaks WebSocket to the agents of an overlay.\n')
-  })
+  const http = createHttp(tls)
+  const scheme = tls?.cert === undefined || tls.key === undefined ? 'ws' : 'wss'
   http.maxConnections = MAX_SOCKETS
   const server = new WebSocketServer({ server: http, maxPayload: MAX_FRAME_BYTES, perMessageDeflate: false })
   server.on('connection', (socket, request) => {
     const { remoteAddress, remotePort } = request.socket
-    onConnection(connectionOf(clock, socket, `${remoteAddress}:${remotePort}`))
+    onConnection(connectionOf(clock, socket, hostPort(String(remoteAddress), Number(remotePort))))
   })
   return new Promise((resolve, reject) => {
     // The WebSocket server repeats the HTTP server's errors.
@@ -48,7 +74,7 @@ function listen(
       const bound = http.address()
       const taken = bound !== null && typeof bound === 'object' ? bound.port : port
       resolve({
-        address: `ws://${host.includes(':') ? `[${host}]` : host}:${taken}`,
+        address: `${scheme}://${hostPort(host, taken)}`,
         port: taken,
         // Connections already upgraded stay open; the port is free at once.
         close: async () => {
@@ -60,7 +86,14 @@ function listen(
   })
 }
 
-function dial(clock: Clock, address: string, signal: AbortSignal): Promise<DialResult> {
+const hostPort = (host: string, port: number): string => `${host.includes(':') ? `[${host}]` : host}:${port}`
+
+function dial(
+  clock: Clock,
+  tls: WsTls | undefined,
+  address: string,
+  signal: AbortSignal,
+): Promise<DialResult> {
   if (signal.aborted) return Promise.resolve({ ok: false, reason: 'aborted' })
   let socket: WebSocket
   try {
@@ -68,6 +101,7 @@ function dial(clock: Clock, address: string, signal: AbortSignal): Promise<DialR
       perMessageDeflate: false,
       maxPayload: MAX_FRAME_BYTES,
       handshakeTimeout: DIAL_WAIT_MS,
+      ca: tls?.ca,
     })
   } catch (error) {
     return Promise.resolve({ ok: false, reason: String(error) })

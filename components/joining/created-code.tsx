@@ -4,7 +4,6 @@ import { useEffect, useRef } from 'react'
 import { Button, CommandBlock, Time } from '@/components/ui'
 import type { CreatedJoiningCode } from '@/lib/data/dto'
 import { formatCount } from '@/lib/face/format'
-import { Commands } from './commands'
 
 /** The one time a code is seen. */
 export function CreatedCode({ code, onDone }: { code: CreatedJoiningCode; onDone: () => void }) {
@@ -24,12 +23,9 @@ export function CreatedCode({ code, onDone }: { code: CreatedJoiningCode; onDone
       </h2>
       <p className="mt-1 mb-4 max-w-2xl text-soft">
         Only its fingerprint is kept. It is good for {formatCount(code.uses, 'agent')} and closes at{' '}
-        <Time at={code.expiresAt} show="both" />.
+        <Time at={code.expiresAt} show="both" />. The commands below have it in its place.
       </p>
-      <div className="space-y-4">
-        <CommandBlock label="Joining code" text={code.code} />
-        <Commands code={code.code} />
-      </div>
+      <CommandBlock label="Joining code" text={code.code} />
       <div className="mt-5">
         <Button onClick={onDone}>I have it, hide the code</Button>
       </div>

@@ -13,9 +13,11 @@ import {
   type ReadingPoint,
   readingSchema,
   readingsSchema,
+  signingKeySchema,
+  upgradesSchema,
 } from '@/lib/data/dto'
 import { type Range, rangeQuery } from '@/lib/face/range'
-import { overlayUrls } from '@/lib/face/urls'
+import { AGENT_FILE_URL, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
 import { POLL_MS, useStreaming } from './live-provider'
 
@@ -96,6 +98,27 @@ const codesSchema = z.object({ items: z.array(joiningCodeSchema) })
 export function useJoiningCodes(slug: string) {
   const url = overlayUrls(slug).codes
   return useLive(url, async () => (await getJson(url, codesSchema)).items)
+}
+
+/** Who took an upgrade changes with each report, which the stream does not tell of. */
+const UPKEEP_MS = 10_000
+
+export function useUpgrades(slug: string) {
+  const url = overlayUrls(slug).upgrades
+  return useLive(url, () => getJson(url, upgradesSchema), { streamingMs: UPKEEP_MS })
+}
+
+/** For operators and owners; null asks nothing. */
+export function useSigningKey(slug: string | null) {
+  const url = slug === null ? null : overlayUrls(slug).signingKey
+  return useLive(url, () => getJson(url ?? '', signingKeySchema), { streamingMs: UPKEEP_MS })
+}
+
+const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })
+
+/** The agent's file as this server serves it now. */
+export function useAgentFile() {
+  return useLive(AGENT_FILE_URL, () => getJson(AGENT_FILE_URL, agentFileSchema))
 }
 
 export interface History {

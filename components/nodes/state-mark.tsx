@@ -10,10 +10,19 @@ const SHAPES: Record<OverlayNode['state'], MarkShape> = {
   'left-out': 'crossed',
 }
 
+export const STATE_WORDS: Record<OverlayNode['state'], string> = {
+  heard: 'heard',
+  unheard: 'unheard',
+  detached: 'detached',
+  left: 'left',
+  revoked: 'revoked',
+  'left-out': 'left out',
+}
+
 export function StateMark({ state }: { state: OverlayNode['state'] }) {
   return (
     <Mark shape={SHAPES[state]} grave={state === 'unheard'}>
-      {state}
+      {STATE_WORDS[state]}
     </Mark>
   )
 }

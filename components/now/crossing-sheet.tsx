@@ -90,6 +90,7 @@ function CrossingLinks(props: {
           columns={columns}
           rows={cut.links}
           rowKey={(l) => `${l.a}\n${l.b}`}
+          stacks
           csvName={`${slug}-crossing-links`}
           initialSort={{ id: 'share', descending: true }}
           empty={null}

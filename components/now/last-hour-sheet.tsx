@@ -2,6 +2,7 @@
 
 import { useEvents } from '@/components/live/hooks'
 import { FailedState, Sheet, Time, Waiting } from '@/components/ui'
+import { EventMark } from './event-mark'
 
 /** What changed, newest first. */
 export function LastHourSheet({ slug }: { slug: string }) {
@@ -14,9 +15,12 @@ export function LastHourSheet({ slug }: { slug: string }) {
           // biome-ignore lint/a11y/noNoninteractiveTabindex: a scrolling region must be reachable by keyboard
           <ul tabIndex={0} aria-label="Events of the last hour" className="max-h-96 overflow-y-auto">
             {items.map((e) => (
-              <li key={e.id} className="flex gap-3 border-b border-hairline py-2">
+              <li key={e.id} className="flex gap-x-3 border-b border-hairline py-2">
                 <span className="shrink-0 font-figures text-soft">
                   <Time at={e.at} show="moment" />
+                </span>
+                <span className="shrink-0">
+                  <EventMark kind={e.kind} />
                 </span>
                 <span className="min-w-0 break-words">{e.text}</span>
               </li>

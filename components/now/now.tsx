@@ -4,6 +4,7 @@ import { useOverlay, useReading } from '@/components/live/hooks'
 import { TrendSheet } from '@/components/trend/trend-sheet'
 import { Note } from '@/components/ui'
 import { Cautions } from './cautions'
+import { Coverage } from './coverage'
 import { CrossingSheet } from './crossing-sheet'
 import { NowHead } from './head'
 import { LastHourSheet } from './last-hour-sheet'
@@ -17,6 +18,7 @@ export function Now({ slug }: { slug: string }) {
   return (
     <div className="space-y-5">
       <NowHead slug={slug} />
+      <Coverage slug={slug} />
       {overlay.data?.demo ? (
         <Note>
           {overlay.data.name} is an invented overlay: its agents are real and run on this machine, its story

@@ -33,10 +33,12 @@ export function CommandBlock({ label, text }: CommandBlockProps) {
   }
 
   return (
-    <div className="border border-edge bg-sheet">
+    <figure aria-labelledby={`${id}-label`} className="min-w-0 border border-edge bg-sheet">
       <div className="flex flex-wrap items-center justify-between gap-2 border-b border-hairline py-1 pr-1 pl-3">
-        <span className="text-sm text-soft">{label}</span>
-        <span className="flex items-center gap-2">
+        <span id={`${id}-label`} className="min-w-0 text-sm text-soft">
+          {label}
+        </span>
+        <span className="ml-auto flex items-center gap-2">
           <span role="status" className="text-sm">
             {said}
           </span>
@@ -49,10 +51,10 @@ export function CommandBlock({ label, text }: CommandBlockProps) {
         id={id}
         // biome-ignore lint/a11y/noNoninteractiveTabindex: a scrolling region must be reachable by keyboard
         tabIndex={0}
-        className="overflow-x-auto px-3 py-2.5 font-figures text-sm leading-6 break-all whitespace-pre-wrap"
+        className="max-h-96 overflow-auto px-3 py-2.5 font-figures text-sm leading-6 wrap-anywhere whitespace-pre-wrap"
       >
         {text}
       </pre>
-    </div>
+    </figure>
   )
 }

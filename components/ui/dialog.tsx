@@ -21,7 +21,8 @@ export function Dialog({ open, onOpenChange, title, description, children }: Dia
   return (
     <Radix.Root open={open} onOpenChange={onOpenChange}>
       <Radix.Portal>
-        <div className="fixed inset-0 z-40 bg-ink/45" aria-hidden="true" />
+        {/* As high as the sheets: one that asks about another must darken it too. */}
+        <div className="fixed inset-0 z-50 bg-ink/45" aria-hidden="true" />
         <Radix.Content
           data-dialog=""
           {...(description ? {} : { 'aria-describedby': undefined })}

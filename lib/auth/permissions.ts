@@ -39,6 +39,7 @@ const writes = (role: Role, tokenScope: TokenScope | null): Permission => ({
 /** The one table of what may be done by whom. Every route method, server action and page names its row. */
 export const PERMISSIONS = {
   'health.read': open(false),
+  'agent-file.read': open(false),
   'first-run.read': open(false),
   'first-run.create': open(true),
   'session.create': open(true),
@@ -55,6 +56,7 @@ export const PERMISSIONS = {
   'overlay.list': { who: 'signed-in', role: null, tokenScope: 'read', audit: false },
   'overlay.read': reads('viewer', 'read'),
   'overlay.create': writes('operator', 'write'),
+  'overlay.change': writes('operator', 'write'),
   'reading.read': reads('viewer', 'read'),
   'node.list': reads('viewer', 'read'),
   'link.list': reads('viewer', 'read'),
@@ -65,6 +67,17 @@ export const PERMISSIONS = {
   'agent.enrol': agent(true),
   'agent.session': agent(false),
   'agent.report': agent(false),
+  'agent.leave': agent(true),
+  'agent.key': agent(true),
+  'agent.directory': agent(false),
+  'agent.revoke': writes('operator', 'write'),
+  'agent.retire': writes('operator', 'write'),
+  'agent.readmit': writes('operator', 'write'),
+  'upgrade.read': reads('viewer', 'read'),
+  'upgrade.offer': writes('operator', 'write'),
+  'upgrade.halt': writes('operator', 'write'),
+  'signing-key.read': reads('operator', 'read'),
+  'signing-key.rotate': writes('owner', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -2,14 +2,19 @@ import { type Agent, AgentSchema, JoiningCodeSchema, type Overlay } from '@/enti
 import type { AgentCaller } from '@/lib/auth/caller'
 import { hashJoiningCode } from '@/lib/auth/secrets'
 import { stateOf, takeJoiningCode } from '@/lib/data/joining-codes'
-import { notify } from '@/lib/db'
+import { type EntityManager, notify } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
 import { assertStorable } from '@/lib/http/storable'
 import { type EnrolReply, type EnrolRequest, enrolText, verifyText } from '@/lib/protocol'
-import { LEADERS_CHANNEL, tell } from './notices'
-import { grantPass } from './passes'
+import { agentEnded } from './agent-proof'
+import { clonedKey, isUsedElsewhere, usedElsewhere } from './clone'
+import { enterEvent } from './events-store'
+import { mayReport } from './ingest-entry'
+import { LEADERS_CHANNEL } from './notices'
+import { PASS_TAIL_MS } from './passes'
 import { query } from './query'
+import { passFor } from './session'
 
 export interface Enrolment {
   /** False where the same key enrolled under the same name before. */
@@ -42,6 +47,7 @@ export async function enrolAgent(call: Call, request: EnrolRequest): Promise<Enr
   authorise(call, 'agent.enrol', overlay.team.id)
   const known = await findByName(call, overlay, request.name)
   if (known) return enrolAgain(call, overlay, known, request)
+  await assertNewKey(call, overlay, request)
   if (!(await takeJoiningCode(em, request.code, now))) {
     const state = stateOf(code, now)
     throw codeRefused(state === 'open' ? 'used' : state)
@@ -55,19 +61,15 @@ export async function enrolAgent(call: Call, request: EnrolRequest): Promise<Enr
     await query(em, 'update joining_codes set used = used - 1 where id = ?', [code.id])
     return again
   }
-  await query(em, 'insert into overlay_events (overlay_id, at, kind, text) values (?, ?, ?, ?)', [
-    overlay.id,
-    now,
-    'agent-joined',
-    `${request.name} joined`,
-  ])
-  await tell(em, overlay.id, { kind: 'event' })
+  await replaceLeft(em, overlay.id, request.name)
+  await enterEvent(em, overlay.id, { kind: 'agent-joined', text: `${request.name} joined` })
   await notify(em, LEADERS_CHANNEL, overlay.id)
-  return { created: true, reply: await replyTo(overlay, agentId, request, now) }
+  return { created: true, reply: await replyTo(call, overlay, agentId, request) }
 }
 
+/** Whoever has left gives the name free. */
 function findByName({ em }: Call, overlay: Overlay, name: string): Promise<Agent | null> {
-  return em.findOne(AgentSchema, { overlay: overlay.id, name })
+  return em.findOne(AgentSchema, { overlay: overlay.id, name, state: { $ne: 'left' } })
 }
 
 /** The same agent asks again, after a lost answer or on a new start: it gets the same answer. */
@@ -77,27 +79,45 @@ async function enrolAgain(
   agent: Agent,
   request: EnrolRequest,
 ): Promise<Enrolment> {
-  if (agent.publicKey !== request.publicKey) throw nameTaken(overlay, request.name)
-  if (agent.state !== 'joined')
+  if (agent.publicKey !== request.publicKey)
+    throw agent.state === 'revoked' ? nameRevoked(overlay, agent.name) : nameTaken(overlay, agent.name)
+  if (!mayReport(agent))
     throw new AppError(
       'agent-ended',
       'This agent left the overlay or was revoked. Enrol with a new key under another name.',
     )
-  await query(call.em, 'update agents set labels = ?::jsonb, address = ?, version = ? where id = ?', [
-    JSON.stringify(request.labels),
-    request.address,
-    request.version,
-    agent.id,
-  ])
-  return { created: false, reply: await replyTo(overlay, agent.id, request, call.now) }
+  if (await isUsedElsewhere(call.em, agent, request.host, overlay.pace))
+    throw usedElsewhere(agent.name, overlay.pace)
+  await query(
+    call.em,
+    'update agents set labels = ?::jsonb, address = ?, version = ?, node = ?, host = ? where id = ?',
+    [
+      JSON.stringify(request.labels),
+      request.address,
+      request.version,
+      request.node === undefined ? (agent.node ?? null) : request.node,
+      request.host ?? agent.host ?? null,
+      agent.id,
+    ],
+  )
+  return { created: false, reply: await replyTo(call, overlay, agent.id, request) }
+}
+
+/** A key stands for one agent: under another name it is that of a copied machine, or of one that has ended. */
+async function assertNewKey({ em }: Call, overlay: Overlay, { publicKey }: EnrolRequest): Promise<void> {
+  const others = await em.find(AgentSchema, { overlay: overlay.id, publicKey })
+  const present = others.find(mayReport)
+  if (present) throw clonedKey(present.name, 'This is already')
+  if (others.length > 0) throw agentEnded()
 }
 
 /** @returns null where the name is taken */
 async function insertAgent(call: Call, overlay: Overlay, request: EnrolRequest): Promise<string | null> {
   const [row] = await query<{ id: string }>(
     call.em,
-    `insert into agents (overlay_id, name, public_key, labels, address, version, joined_at)
-     values (?, ?, ?, ?::jsonb, ?, ?, ?) on conflict (overlay_id, name) do nothing returning id`,
+    `insert into agents (overlay_id, name, public_key, labels, address, version, node, host, joined_at)
+     values (?, ?, ?, ?::jsonb, ?, ?, ?, ?, ?)
+     on conflict (overlay_id, name) where state <> 'left' do nothing returning id`,
     [
       overlay.id,
       request.name,
@@ -105,19 +125,35 @@ async function insertAgent(call: Call, overlay: Overlay, request: EnrolRequest):
       JSON.stringify(request.labels),
       request.address,
       request.version,
+      request.node ?? null,
+      request.host ?? null,
       call.now,
     ],
   )
   return row?.id ?? null
 }
 
+/** Those who left under the name make room; links to them stay shut while a pass of theirs may be good. */
+async function replaceLeft(em: EntityManager, overlayId: string, name: string): Promise<void> {
+  await query(em, "delete from shut_agents where until < clock_timestamp() - ? * interval '1 millisecond'", [
+    PASS_TAIL_MS,
+  ])
+  await query(
+    em,
+    `with gone as (delete from agents where overlay_id = ? and name = ? and state = 'left'
+       returning id, overlay_id, pass_ends_at)
+     insert into shut_agents (agent_id, overlay_id, until)
+     select id, overlay_id, pass_ends_at from gone where pass_ends_at is not null`,
+    [overlayId, name],
+  )
+}
+
 async function replyTo(
+  { em, now }: Call,
   overlay: Overlay,
   agentId: string,
   { name, publicKey }: EnrolRequest,
-  now: Date,
 ): Promise<EnrolReply> {
-  const issuer = { overlayId: overlay.id, publicKey: overlay.publicKey, privateKey: overlay.privateKey }
   return {
     agentId,
     overlay: { id: overlay.id, slug: overlay.slug, name: overlay.name },
@@ -125,7 +161,7 @@ async function replyTo(
     weights: overlay.weights,
     disclosure: overlay.disclosure,
     overlayKey: overlay.publicKey,
-    ...(await grantPass(issuer, { agentId, name, publicKey }, now.getTime())),
+    ...(await passFor(em, { id: agentId, name, publicKey }, overlay, now)),
   }
 }
 
@@ -144,5 +180,12 @@ function nameTaken(overlay: Overlay, name: string): AppError {
   return new AppError(
     'name-taken',
     `Another agent is called "${name}" in ${overlay.name}. Enrol under another name, or start this one with the key it enrolled with.`,
+  )
+}
+
+function nameRevoked(overlay: Overlay, name: string): AppError {
+  return new AppError(
+    'name-taken',
+    `"${name}" was revoked in ${overlay.name}. An operator can retire it on the page Nodes, which gives the name free; or enrol under another name.`,
   )
 }

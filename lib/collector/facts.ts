@@ -40,6 +40,7 @@ export function verdictFacts(
     singleCut: memory.singleCut,
     cut: memory.cut,
     follows: memory.singleCut === false ? null : followsOf(agents, memory),
+    leftOut: input.leftOut ?? [],
     shareOfUsual: usual !== null && usual > 0 && lambda2 !== null ? lambda2 / usual : null,
   }
 }

@@ -1,17 +1,29 @@
-import { OverlaySchema } from '@/entities'
 import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
-import { AppError } from '@/lib/http/app-error'
 import { assertStorable } from '@/lib/http/storable'
 import type { Report } from '@/lib/method/report'
-import type { PassGrant, ReportReply } from '@/lib/protocol'
+import type { PassGrant } from '@/lib/protocol'
+import { enterAway } from './away'
 import type { Clock } from './clock'
-import { findHeld, findOrders, findSenders, type Sender, type StateRow, storeStates } from './ingest-store'
-import { grantPass, isPassDue, PASS_LIFE_MS } from './passes'
-import { query } from './query'
-import { type HeldReport, heldOf, judgeReport } from './report-check'
-import { agentEnded } from './session'
+import { clonedEvent, clonedKey } from './clone'
+import { enterEventOnce } from './events-store'
+import {
+  type Admitted,
+  type Answer,
+  type Arrival,
+  admit,
+  type Entry,
+  type Incoming,
+  refuse,
+  withResolvers,
+} from './ingest-entry'
+import { judgeArrivals } from './ingest-judge'
+import { ReplyMaker } from './ingest-reply'
+import { countLate, findHeld, findSenders, type Sender, type StateRow, storeStates } from './ingest-store'
+import { PASS_LIFE_MS } from './passes'
+import { openRelayed, type Relayed, relayedReply } from './relayed'
+import { CLONE_REPORTS, type HeldReport } from './report-check'
 
 /** Reports wait this long for others to be stored with. */
 export const BATCH_MS = 20
@@ -19,10 +31,7 @@ export const BATCH_MOST = 500
 /** Last reports remembered, so that judging the next needs no second look into the database. */
 export const REMEMBERED_MOST = 20_000
 
-export interface Answer extends ReportReply {
-  /** Nothing was stored: a report as new or newer was there already. */
-  repeated?: true
-}
+export type { Answer } from './ingest-entry'
 
 /** What comes of a report, in two steps: who sent it, and the reply once it is stored. */
 export interface Ticket {
@@ -35,17 +44,10 @@ export interface IngestComponents {
   clock: Clock
 }
 
-interface Entry {
-  tokenHash: string
-  report: Report
-  caller: PromiseWithResolvers<AgentCaller>
-  answer: PromiseWithResolvers<Answer>
-}
-
-interface Judged {
-  entry: Entry
-  sender: Sender
-  repeated: boolean
+/** An admitted request with its own report and those it delivers. */
+interface Taken extends Admitted {
+  own: Arrival
+  relayed: Relayed[]
 }
 
 /** Takes reports in: many at a time, answered after they are stored. */
@@ -53,6 +55,7 @@ export class Ingest {
   readonly #components: IngestComponents
   readonly #passLifeMs: number
   readonly #remembered = new Map<string, HeldReport>()
+  readonly #relayedPasses = new Map<string, number>()
   readonly #running = new Set<Promise<void>>()
   #waiting: Entry[] = []
   #cancel: (() => void) | null = null
@@ -62,17 +65,18 @@ export class Ingest {
     this.#passLifeMs = init.passLifeMs ?? PASS_LIFE_MS
   }
 
-  submit(token: string, report: Report): Ticket {
+  submit(token: string, request: Incoming): Ticket {
     const entry: Entry = {
       tokenHash: sha256Hex(token),
-      report,
+      request,
       caller: withResolvers(),
       answer: withResolvers(),
     }
     // Whoever has been refused as a caller does not ask for the answer as well.
     entry.answer.promise.catch(() => undefined)
     try {
-      assertStorable(report)
+      // Relayed ones are looked at each by itself.
+      assertStorable({ ...request, relayed: null })
     } catch (error) {
       refuse(entry, error)
       return { caller: entry.caller.promise, answer: entry.answer.promise }
@@ -105,20 +109,34 @@ export class Ingest {
   async #take(batch: readonly Entry[]): Promise<void> {
     const em = await this.#components.forkEm()
     const senders = await findSenders(em, [...new Set(batch.map(({ tokenHash }) => tokenHash))])
-    const known = batch.flatMap((entry) => {
+    const admitted = batch.flatMap((entry) => {
       const sender = admit(entry, senders.get(entry.tokenHash))
       return sender ? [{ entry, sender }] : []
     })
-    const held = await this.#heldBy(em, known)
-    const judged = judge(known, held)
-    await this.#store(em, judged, held)
-    await this.#answer(em, judged)
+    const carried = await openRelayed(em, admitted, this.#components.clock.epochMs())
+    const taken = admitted.map(
+      (one): Taken => ({
+        ...one,
+        own: { sender: one.sender, report: one.entry.request, relayed: false, outcome: null },
+        relayed: carried.get(one) ?? [],
+      }),
+    )
+    // An agent's own word goes before what comes in a roundabout way.
+    const arrivals = [...taken.map(({ own }) => own), ...taken.flatMap(({ relayed }) => arrivalsIn(relayed))]
+    const held = await this.#heldBy(em, arrivals)
+    const late = judgeArrivals(arrivals, held)
+    await this.#store(em, arrivals, held)
+    for (const arrival of late) await refuseClone(em, arrival)
+    for (const { entry, own, sender } of taken)
+      if (entry.request.away && own.outcome?.kind === 'stored')
+        await enterAway(em, sender, entry.request.away)
+    await this.#answer(em, taken)
   }
 
-  async #heldBy(em: EntityManager, known: readonly { sender: Sender }[]): Promise<Map<string, HeldReport>> {
+  async #heldBy(em: EntityManager, arrivals: readonly Arrival[]): Promise<Map<string, HeldReport>> {
     const held = new Map<string, HeldReport>()
     const missing = new Set<string>()
-    for (const { sender } of known) {
+    for (const { sender } of arrivals) {
       if (sender.incarnation === null) continue
       const remembered = this.#remembered.get(sender.agentId)
       // Another process may have taken a report in since.
@@ -131,20 +149,20 @@ export class Ingest {
 
   async #store(
     em: EntityManager,
-    judged: readonly Judged[],
+    arrivals: readonly Arrival[],
     held: ReadonlyMap<string, HeldReport>,
   ): Promise<void> {
     const latest = new Map<string, StateRow>()
-    for (const { entry, sender, repeated } of judged) {
-      if (repeated) continue
+    for (const { sender, report, relayed, outcome } of arrivals) {
+      if (outcome?.kind !== 'stored') continue
       const { agentId, overlayId } = sender
-      latest.set(agentId, { agentId, overlayId, report: disclosed(entry.report, sender) })
+      latest.set(agentId, { agentId, overlayId, report: disclosed(report, sender), relayed })
     }
     const rows = [...latest.values()]
     const failed = await storeEach(em, rows)
-    for (const { entry, sender } of judged) {
-      const error = failed.get(sender.agentId)
-      if (error !== undefined) entry.answer.reject(error)
+    for (const arrival of arrivals) {
+      const error = failed.get(arrival.sender.agentId)
+      if (error !== undefined) arrival.outcome = { kind: 'refused', error }
     }
     for (const { agentId } of rows) {
       const now = held.get(agentId)
@@ -160,82 +178,61 @@ export class Ingest {
     if (oldest !== undefined) this.#remembered.delete(oldest)
   }
 
-  async #answer(em: EntityManager, judged: readonly Judged[]): Promise<void> {
-    const orders = await findOrders(em, [...new Set(judged.map(({ sender }) => sender.overlayId))])
-    const readMs = this.#components.clock.monotonicMs()
-    const passes = await this.#renewPasses(em, judged)
-    for (const { entry, sender, repeated } of judged) {
-      const current = orders.get(sender.overlayId)
-      const pass = passes.get(sender.tokenHash)
+  async #answer(em: EntityManager, taken: readonly Taken[]): Promise<void> {
+    const { clock } = this.#components
+    const maker = new ReplyMaker(
+      { em, clock },
+      { passLifeMs: this.#passLifeMs, relayedPasses: this.#relayedPasses },
+    )
+    await maker.load(new Set(taken.map(({ sender }) => sender.overlayId)))
+    const isGood = ({ outcome }: Arrival) => outcome?.kind !== 'refused'
+    const passes = await maker.renew(
+      taken.filter(({ own }) => isGood(own)).map(({ sender }) => sender),
+      taken.flatMap(({ relayed }) =>
+        arrivalsIn(relayed)
+          .filter(isGood)
+          .map(({ sender }) => sender),
+      ),
+    )
+    for (const one of taken) {
+      const { entry, own, relayed, sender } = one
+      if (own.outcome?.kind === 'refused') {
+        entry.answer.reject(own.outcome.error)
+        continue
+      }
+      const pass = passes.get(sender.agentId)
       entry.answer.resolve({
-        orders: current?.orders ?? null,
-        ordersAgeMs: current?.orders ? current.ageMs + this.#components.clock.monotonicMs() - readMs : 0,
+        ...(await maker.replyTo(one, own)),
         ...(pass ? { pass } : {}),
-        ...(repeated ? { repeated: true as const } : {}),
+        ...(relayed.length > 0
+          ? { relayed: await Promise.all(relayed.map((each) => replyTo(each, passes, maker))) }
+          : {}),
+        ...(own.outcome?.kind === 'repeated' ? { repeated: true as const } : {}),
       })
     }
   }
-
-  async #renewPasses(em: EntityManager, judged: readonly Judged[]): Promise<Map<string, PassGrant>> {
-    const nowMs = this.#components.clock.epochMs()
-    const due = judged.filter(({ sender }) => isPassDue(sender.passExpiresAtMs, nowMs, this.#passLifeMs))
-    const grants = new Map<string, PassGrant>()
-    for (const { sender } of due) {
-      if (grants.has(sender.tokenHash)) continue
-      const overlay = await em.findOneOrFail(OverlaySchema, sender.overlayId)
-      const issuer = { overlayId: overlay.id, publicKey: overlay.publicKey, privateKey: overlay.privateKey }
-      const grant = await grantPass(issuer, sender, nowMs, this.#passLifeMs)
-      await query(em, 'update agent_sessions set pass_expires_at = ? where token_hash = ?', [
-        grant.passExpiresAt,
-        sender.tokenHash,
-      ])
-      grants.set(sender.tokenHash, grant)
-    }
-    return grants
-  }
 }
 
-/** @returns null where the entry has been refused */
-function admit(entry: Entry, sender: Sender | undefined): Sender | null {
-  if (!sender)
-    refuse(entry, new AppError('bad-token', 'The session token is not known. Open a session first.'))
-  else if (sender.expired)
-    refuse(entry, new AppError('session-expired', 'Open a new session and report again.'))
-  else if (sender.state !== 'joined') refuse(entry, agentEnded())
-  else {
-    const { agentId, overlayId, teamId, name } = sender
-    entry.caller.resolve({ kind: 'agent', agentId, overlayId, teamId, name })
-    return sender
-  }
-  return null
+async function replyTo(each: Relayed, passes: ReadonlyMap<string, PassGrant>, maker: ReplyMaker) {
+  const keyRings = 'outcome' in each.found ? await maker.ringsFor(each.found) : undefined
+  return relayedReply(each, passes.get(each.signed.agentId) ?? null, keyRings)
 }
 
-function isHeldBy(sender: Sender, { incarnation, previousIncarnation, number }: HeldReport): boolean {
-  return (
-    sender.incarnation === incarnation &&
-    sender.previousIncarnation === previousIncarnation &&
-    sender.number === number
-  )
+function arrivalsIn(relayed: readonly Relayed[]): Arrival[] {
+  return relayed.flatMap(({ found }) => ('outcome' in found ? [found] : []))
 }
 
-/** In order of arrival; a report is judged by the one before it in the same batch. */
-function judge(known: readonly { entry: Entry; sender: Sender }[], held: Map<string, HeldReport>): Judged[] {
-  return known.flatMap(({ entry, sender }) => {
-    const { report } = entry
-    const before = held.get(sender.agentId) ?? null
-    const verdict = judgeReport(before, report)
-    if (verdict.kind === 'falling') {
-      const { colony, counter, from, to } = verdict
-      const detail = `In colony ${colony} "${counter}" fell from ${from} to ${to}. Counters only grow within an incarnation and seeding: start the agent anew.`
-      entry.answer.reject(
-        new AppError('falling-counters', detail, { members: { colony, counter, from, to } }),
-      )
-      return []
-    }
-    const repeated = verdict.kind === 'repeated'
-    if (!repeated) held.set(sender.agentId, heldOf(before, report))
-    return [{ entry, sender, repeated }]
-  })
+function isHeldBy(sender: Sender, { incarnation, number }: HeldReport): boolean {
+  return sender.incarnation === incarnation && sender.number === number
+}
+
+/** A report of a former start: once there are more than stragglers can be, its sender is a second program. */
+async function refuseClone(em: EntityManager, arrival: Arrival): Promise<void> {
+  const { sender, report } = arrival
+  const late = await countLate(em, sender.agentId, report)
+  if (late === null || late < CLONE_REPORTS) return
+  arrival.outcome = { kind: 'refused', error: clonedKey(sender.name, 'Another program reports with') }
+  await enterEventOnce(em, sender.overlayId, clonedEvent(sender.name))
 }
 
 /** One report that the database cannot hold must not cost the others of its batch. @returns errors by agent */
@@ -258,27 +255,7 @@ function isAboutData(error: unknown): boolean {
 
 /** What the overlay does not disclose is not stored, even where an agent on old orders still says it. */
 function disclosed(report: Report, { disclosure }: Sender): Report {
-  if (disclosure !== 'sealed' || report.node.links.length === 0) return report
-  return { ...report, node: { ...report.node, links: [] } }
-}
-
-function refuse(entry: Entry, error: unknown): void {
-  entry.caller.reject(error)
-  entry.answer.reject(error)
-}
-
-interface PromiseWithResolvers<T> {
-  promise: Promise<T>
-  resolve(value: T): void
-  reject(reason: unknown): void
-}
-
-function withResolvers<T>(): PromiseWithResolvers<T> {
-  let resolve: (value: T) => void = () => {}
-  let reject: (reason: unknown) => void = () => {}
-  const promise = new Promise<T>((res, rej) => {
-    resolve = res
-    reject = rej
-  })
-  return { promise, resolve, reject }
+  if (disclosure === 'named') return report
+  const { complaints: _complaints, ...unnamed } = report
+  return disclosure === 'sealed' ? { ...unnamed, node: { ...report.node, links: [] } } : unnamed
 }

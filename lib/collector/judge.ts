@@ -8,7 +8,7 @@ import { readingOf } from './reading'
 import { nameSides } from './sides'
 import { trendOf, withReading } from './trend'
 import { type Together, unheardTogether } from './unheard'
-import { verdictOf } from './verdict'
+import { type VerdictFacts, verdictOf } from './verdict'
 
 /** After a pause in listening everybody looks silent at once; so long nothing new is made of silence. */
 export const LISTENING_INTERVALS = 10
@@ -39,6 +39,8 @@ export interface JudgeInput {
   meanWeightedDegree: number
   usual: number | null
   intervalMs: number
+  /** Agents of the overlay whose figures did not hold. */
+  leftOut?: VerdictFacts['leftOut']
 }
 
 export interface EventDraft {

@@ -1,32 +1,27 @@
 import type { Reading } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
-import type { JoinedAgent, Snapshot } from '@/lib/method/control'
-import type { Disclosure, Orders } from '@/lib/method/orders'
-import type { PaceName } from '@/lib/method/pace'
-import type { NodeFacts, Sums } from '@/lib/method/report'
+import type { Orders } from '@/lib/method/orders'
+import { signOrders } from '@/lib/protocol'
 import type { EventDraft } from './judge'
+import { type Loaded, loadOverlay } from './leader-load'
 import { type StoredState, storedStateSchema } from './memory'
 import { overlayChannel } from './notices'
-import { type Bindable, epochMs, query } from './query'
+import { type Bindable, query } from './query'
+import { type KeyText, signerOf } from './signer'
 
-export interface LoadedAgent extends JoinedAgent {
-  name: string
-  labels: Record<string, string>
-}
-
-export interface Loaded {
-  pace: PaceName
-  disclosure: Disclosure
-  snapshot: Omit<Snapshot, 'agents'> & { agents: readonly LoadedAgent[] }
-}
+export type { Loaded, LoadedAgent } from './leader-load'
 
 export interface Round {
   sequence: number
   state: StoredState
   orders: Orders
+  /** Signs the orders. */
+  key: KeyText
   /** Null where no row is worth it. */
   reading: Reading | null
   events: readonly EventDraft[]
+  /** Agents whose figures do not hold: from here on not of the overlay, until an operator readmits them. */
+  leftOut: readonly { agentId: string; because: string }[]
 }
 
 export interface Claim {
@@ -71,40 +66,29 @@ export class LeaderStore {
 
   /** Null where the overlay is gone. */
   async load(): Promise<Loaded | null> {
-    const em = await this.#forkEm()
-    const agents = await query<AgentRow>(
-      em,
-      `select a.id as "agentId", a.name, a.labels, ${epochMs('a.joined_at')} as "joinedAtMs",
-         s.incarnation, s.report_number as number, s.orders_sequence as "ordersSequence", s.sums, s.node,
-         ${epochMs('s.received_at')} as "receivedAtMs"
-       from agents a left join agent_states s on s.agent_id = a.id
-       where a.overlay_id = ? and a.state = 'joined' order by a.joined_at, a.id`,
-      [this.#overlayId],
-    )
-    // After the reports, so that none is from the future.
-    const [overlay] = await query<{ pace: PaceName; disclosure: Disclosure; nowMs: number }>(
-      em,
-      `select pace, disclosure, ${epochMs('clock_timestamp()')} as "nowMs" from overlays where id = ?`,
-      [this.#overlayId],
-    )
-    if (!overlay) return null
-    const { pace, disclosure, nowMs } = overlay
-    // Whole milliseconds, as rows keep them; upwards, so that no report is from the future.
-    return { pace, disclosure, snapshot: { atMs: Math.ceil(nowMs), agents: agents.map(toAgent) } }
+    return loadOverlay(await this.#forkEm(), this.#overlayId)
   }
 
   /** One round, whole or not at all. @returns false where another has taken over: this term is at its end */
   async write(round: Round): Promise<boolean> {
     const em = await this.#forkEm()
+    const { text, key, signature } = signOrders(
+      this.#overlayId,
+      JSON.stringify(round.orders),
+      signerOf(round.key),
+    )
     return em.transactional(async (tx) => {
       const fenced = await query(
         tx,
-        `update controls set sequence = ?::bigint, state = ?::jsonb, orders = ?::jsonb, updated_at = clock_timestamp()
+        `update controls set sequence = ?::bigint, state = ?::jsonb, orders_text = ?, orders_key = ?,
+           orders_signature = ?, updated_at = clock_timestamp()
          where overlay_id = ? and sequence = ?::bigint and holder = ? returning 1`,
         [
           round.sequence,
           JSON.stringify(round.state),
-          JSON.stringify(round.orders),
+          text,
+          key,
+          signature,
           this.#overlayId,
           round.sequence - 1,
           this.#holder,
@@ -112,35 +96,26 @@ export class LeaderStore {
       )
       if (fenced.length === 0) return false
       if (round.reading) await insertReading(tx, this.#overlayId, round.reading)
-      await insertEvents(tx, this.#overlayId, round)
+      const leftOut = await leaveOut(tx, round.leftOut)
+      await insertEvents(tx, this.#overlayId, { ...round, events: [...round.events, ...leftOut] })
       return true
     })
   }
 }
 
-interface AgentRow {
-  agentId: string
-  name: string
-  labels: Record<string, string>
-  joinedAtMs: number
-  incarnation: string | null
-  number: string | number
-  ordersSequence: string | number
-  sums: Sums
-  node: NodeFacts
-  receivedAtMs: number
-}
-
-function toAgent(row: AgentRow): LoadedAgent {
-  const { agentId, name, labels, joinedAtMs, incarnation, sums, node, receivedAtMs } = row
-  const report = incarnation !== null && {
-    incarnation,
-    number: Number(row.number),
-    ordersSequence: Number(row.ordersSequence),
-    sums,
-    node,
+/** Who has left or was revoked since is not left out any more. @returns what is to be said of it */
+async function leaveOut(em: EntityManager, agents: Round['leftOut']): Promise<EventDraft[]> {
+  const events: EventDraft[] = []
+  for (const { agentId, because } of agents) {
+    const [row] = await query<{ name: string }>(
+      em,
+      `update agents set state = 'left-out', ended_at = clock_timestamp(), left_out_because = ?
+       where id = ? and state = 'joined' returning name`,
+      [because, agentId],
+    )
+    if (row) events.push({ kind: 'agent-left-out', text: `${row.name} left out: ${because}` })
   }
-  return { agentId, name, labels, joinedAtMs, last: report ? { report, receivedAtMs } : null }
+  return events
 }
 
 async function insertReading(em: EntityManager, overlayId: string, reading: Reading): Promise<void> {
@@ -170,7 +145,11 @@ async function insertReading(em: EntityManager, overlayId: string, reading: Read
 }
 
 /** Events, and the notices of all that is new. */
-async function insertEvents(em: EntityManager, overlayId: string, { state, events }: Round): Promise<void> {
+async function insertEvents(
+  em: EntityManager,
+  overlayId: string,
+  { state, events }: Pick<Round, 'state' | 'events'>,
+): Promise<void> {
   const at = new Date(state.memory.judgedAtMs ?? 0)
   const rows: Bindable[] = events.flatMap(({ kind, text }) => [overlayId, at, kind, text])
   if (events.length > 0)

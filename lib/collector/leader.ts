@@ -3,8 +3,9 @@ import type { Log } from '@/lib/http/runtime'
 import { forkRandom, type Random } from '@/lib/method/random'
 import { type Clock, sleep } from './clock'
 import { findLed, LeaderStore } from './leader-store'
-import { LEADERS_CHANNEL } from './notices'
+import { LEADERS_CHANNEL, ORDERS_CHANNEL } from './notices'
 import { Term } from './term'
+import { Upkeep } from './upkeep'
 import { Usual } from './usual'
 
 /** How often to look for overlays without a leader: also how long one can be without after a leader ended. */
@@ -46,7 +47,9 @@ export class Leader {
     if (this.#running) return
     this.#stopping = new AbortController()
     const { signal } = this.#stopping
-    void this.#components.subscribe(LEADERS_CHANNEL, () => this.#wake(), signal)
+    const { subscribe } = this.#components
+    void subscribe(LEADERS_CHANNEL, () => this.#wake(), signal)
+    void subscribe(ORDERS_CHANNEL, (overlayId) => this.#hasten(overlayId), signal)
     this.#running = this.#run(signal)
   }
 
@@ -54,6 +57,11 @@ export class Leader {
     this.#stopping.abort()
     await this.#running
     this.#running = null
+  }
+
+  /** @param overlayId null after a lost connection: any may have been meant */
+  #hasten(overlayId: string | null): void {
+    for (const [led, { term }] of this.#terms) if (overlayId === null || overlayId === led) term.hasten()
   }
 
   async #run(signal: AbortSignal): Promise<void> {
@@ -101,9 +109,11 @@ export class Leader {
 
   #begin(overlayId: string, session: LockSession, signal: AbortSignal): void {
     const { forkEm, clock, random, log, newHolder } = this.#components
-    const store = new LeaderStore({ forkEm }, { overlayId, holder: newHolder() })
+    const holder = newHolder()
+    const store = new LeaderStore({ forkEm }, { overlayId, holder })
+    const upkeep = new Upkeep({ forkEm, clock }, { overlayId, holder })
     const usual = new Usual({ forkEm, clock, log }, { overlayId })
-    const components = { store, usual, clock, random: forkRandom(random, this.#count++), log }
+    const components = { store, usual, upkeep, clock, random: forkRandom(random, this.#count++), log }
     const term = new Term(components, { overlayId })
     const done = this.#serve(term, overlayId, session, signal).then(() => {
       const left = usual.stop().finally(() => this.#left.delete(left))

@@ -3,6 +3,8 @@ import { type EntityManager, notify } from '@/lib/db'
 
 /** An overlay has joined agents that it may not have had before: someone should lead it. */
 export const LEADERS_CHANNEL = 'leaders'
+/** Someone was shut out of an overlay or let in again: its leader should say so to all the others at once. */
+export const ORDERS_CHANNEL = 'orders'
 
 /** What happened in an overlay; listeners look the thing itself up. */
 export const noticeSchema = z.object({ kind: z.enum(['reading', 'event']) })

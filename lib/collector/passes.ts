@@ -1,7 +1,12 @@
-import { createPrivateKey, type KeyObject } from 'node:crypto'
-import { type PassGrant, signPass } from '@/lib/protocol'
+import type { EntityManager } from '@/lib/db'
+import { PASS_CLOCK_TOLERANCE_SECONDS, type PassGrant, signPass } from '@/lib/protocol'
+import { query } from './query'
+import { type KeyText, signerOf } from './signer'
 
-export const PASS_LIFE_MS = 24 * 3_600_000
+/** Short, so that a revoked agent's neighbours would turn it away soon even if no orders reached them. */
+export const PASS_LIFE_MS = 3_600_000
+/** Neighbours whose clocks are late take a pass for so much longer; twice, as both clocks may be off. */
+export const PASS_TAIL_MS = 2 * PASS_CLOCK_TOLERANCE_SECONDS * 1000
 
 export interface PassHolder {
   agentId: string
@@ -9,11 +14,8 @@ export interface PassHolder {
   publicKey: string
 }
 
-export interface PassIssuer {
+export interface PassIssuer extends KeyText {
   overlayId: string
-  /** Ed25519, base64url of the raw 32 bytes each. */
-  publicKey: string
-  privateKey: string
 }
 
 export async function grantPass(
@@ -24,7 +26,7 @@ export async function grantPass(
 ): Promise<PassGrant> {
   const issuedAt = Math.floor(nowMs / 1000)
   const expiresAt = issuedAt + Math.floor(lifeMs / 1000)
-  const pass = await signPass(keyOf(issuer), {
+  const pass = await signPass(signerOf(issuer).privateKey, {
     overlayId: issuer.overlayId,
     agentId: holder.agentId,
     name: holder.name,
@@ -40,9 +42,22 @@ export function isPassDue(passExpiresAtMs: number | null, nowMs: number, lifeMs 
   return passExpiresAtMs === null || passExpiresAtMs - nowMs < lifeMs / 2
 }
 
-function keyOf({ publicKey, privateKey }: PassIssuer): KeyObject {
-  return createPrivateKey({
-    key: { kty: 'OKP', crv: 'Ed25519', x: publicKey, d: privateKey },
-    format: 'jwk',
-  })
+/**
+ * Before a pass is handed out: notes how long links to its holder may last. Whoever ends an agent waits for this or is
+ * waited for, so that no pass outlasts what is known of it. @returns agents that may have one, by id
+ */
+export async function notePasses(
+  em: EntityManager,
+  agentIds: readonly string[],
+  passEndsAtMs: number,
+): Promise<Set<string>> {
+  if (agentIds.length === 0) return new Set()
+  const rows = await query<{ id: string }>(
+    em,
+    `update agents set pass_ends_at = greatest(pass_ends_at, ?::timestamptz)
+     where id in (select id from agents where id in (${agentIds.map(() => '?').join(', ')}) order by id for update)
+       and state in ('joined', 'left-out') returning id`,
+    [new Date(passEndsAtMs), ...agentIds],
+  )
+  return new Set(rows.map(({ id }) => id))
 }

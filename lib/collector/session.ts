@@ -1,22 +1,26 @@
-import { AgentSchema } from '@/entities'
+import type { Agent, Overlay } from '@/entities'
 import type { AgentCaller } from '@/lib/auth/caller'
 import { newSecret, sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
 import {
-  SESSION_SKEW_SECONDS,
+  type PassGrant,
   type SessionReply,
   type SessionRequest,
   sessionText,
   verifyText,
 } from '@/lib/protocol'
-import { grantPass } from './passes'
+import { callingAgent } from './agent-caller'
+import { agentEnded, assertRecent, callerOf, findAgent } from './agent-proof'
+import { clonedEvent, isUsedElsewhere, usedElsewhere } from './clone'
+import { enterEventOnce } from './events-store'
+import { mayReport } from './ingest-entry'
+import { findRings } from './key-turn'
+import { grantPass, notePasses, PASS_LIFE_MS } from './passes'
 import { query } from './query'
 
 export const AGENT_SESSION_MS = 3_600_000
-
-const UUID = /^[0-9a-f]{8}(?:-[0-9a-f]{4}){3}-[0-9a-f]{12}$/i
 
 /** That the agent holds the key it enrolled with, now. */
 export async function proveSession(
@@ -24,43 +28,27 @@ export async function proveSession(
   request: SessionRequest,
   now: Date,
 ): Promise<AgentCaller> {
-  const agent = UUID.test(request.agentId)
-    ? await em.findOne(AgentSchema, request.agentId, { populate: ['overlay'] })
-    : null
-  if (!agent)
-    throw new AppError('unknown-agent', 'There is no agent with this id. Enrol with a joining code.')
-  const skewMs = Math.abs(Date.parse(request.at) - now.getTime())
-  if (skewMs > SESSION_SKEW_SECONDS * 1000)
-    throw new AppError(
-      'clock-skew',
-      `The proof is ${Math.round(skewMs / 1000)} s off; at most ${SESSION_SKEW_SECONDS} s are allowed. Correct the clock by serverTime and try again.`,
-      { members: { serverTime: now.toISOString() } },
-    )
+  const agent = await findAgent(em, request.agentId)
+  assertRecent(request.at, now)
   if (!verifyText(agent.publicKey, sessionText(request), request.signature))
     throw new AppError(
       'bad-signature',
       'The signature does not fit the key this agent enrolled with. Use that key, or enrol anew.',
     )
-  if (agent.state !== 'joined') throw agentEnded()
-  const { overlay } = agent
-  return {
-    kind: 'agent',
-    agentId: agent.id,
-    overlayId: overlay.id,
-    teamId: overlay.team.id,
-    name: agent.name,
-  }
+  if (!mayReport(agent)) throw agentEnded()
+  return callerOf(agent)
 }
 
 export async function openSession(call: Call, request: SessionRequest): Promise<SessionReply> {
-  const { em, caller, now } = call
+  const { em, now } = call
   authorise(call, 'agent.session')
-  if (caller.kind !== 'agent') throw new Error('A session was asked for by something that is no agent.')
-  const agent = await em.findOneOrFail(AgentSchema, caller.agentId, { populate: ['overlay'] })
+  const agent = await findAgent(em, callingAgent(call).agentId)
   const { overlay } = agent
-  const issuer = { overlayId: overlay.id, publicKey: overlay.publicKey, privateKey: overlay.privateKey }
-  const holder = { agentId: agent.id, name: agent.name, publicKey: agent.publicKey }
-  const grant = await grantPass(issuer, holder, now.getTime())
+  if (await isUsedElsewhere(em, agent, request.host, overlay.pace)) {
+    await enterEventOnce(em, overlay.id, clonedEvent(agent.name))
+    throw usedElsewhere(agent.name, overlay.pace)
+  }
+  const grant = await passFor(em, agent, overlay, now)
   const token = newSecret()
   const expiresAt = new Date(now.getTime() + AGENT_SESSION_MS)
   await query(em, 'delete from agent_sessions where agent_id = ? and expires_at <= ?', [agent.id, now])
@@ -72,6 +60,7 @@ export async function openSession(call: Call, request: SessionRequest): Promise<
   )
   if (!opened)
     throw new AppError('proof-used', 'This proof has opened a session already. Sign one with a new nonce.')
+  await noteWhereabouts(em, agent, request)
   return {
     token,
     expiresAt: expiresAt.toISOString(),
@@ -79,12 +68,35 @@ export async function openSession(call: Call, request: SessionRequest): Promise<
     ...grant,
     disclosure: overlay.disclosure,
     pace: overlay.pace,
+    keyRings: await findRings(em, overlay.id, 1),
+    weights: overlay.weights,
   }
 }
 
-export function agentEnded(): AppError {
-  return new AppError(
-    'agent-ended',
-    'This agent left the overlay or was revoked. To come back it needs a new key and a joining code.',
-  )
+/** Not for an agent that was ended while it asked. */
+export async function passFor(
+  em: EntityManager,
+  { id, name, publicKey }: Pick<Agent, 'id' | 'name' | 'publicKey'>,
+  overlay: Overlay,
+  now: Date,
+): Promise<PassGrant> {
+  const may = await notePasses(em, [id], now.getTime() + PASS_LIFE_MS)
+  if (!may.has(id)) throw agentEnded()
+  const issuer = { overlayId: overlay.id, publicKey: overlay.publicKey, privateKey: overlay.privateKey }
+  return grantPass(issuer, { agentId: id, name, publicKey }, now.getTime())
+}
+
+/** What is left out stays as it was. */
+async function noteWhereabouts(
+  em: EntityManager,
+  agent: Agent,
+  { host, version, address, node }: Pick<SessionRequest, 'host' | 'version' | 'address' | 'node'>,
+): Promise<void> {
+  await query(em, 'update agents set host = ?, version = ?, address = ?, node = ? where id = ?', [
+    host ?? agent.host ?? null,
+    version ?? agent.version,
+    address === undefined ? (agent.address ?? null) : address,
+    node === undefined ? (agent.node ?? null) : node,
+    agent.id,
+  ])
 }

@@ -2,11 +2,15 @@ import type { Log } from '@/lib/http/runtime'
 import { DEFAULT_SETTINGS, evaluate, initialControl, isHeard, type Snapshot } from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
+import { MAX_SHUT } from '@/lib/protocol'
+import { type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
 import { type Clock, sleep } from './clock'
+import { fleetFacts, withFleetFacts } from './fleet-facts'
 import { type JudgedAgent, judge } from './judge'
 import type { LeaderStore, Loaded, LoadedAgent, Round } from './leader-store'
 import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
+import type { Upkeep } from './upkeep'
 import type { Usual } from './usual'
 
 /** A round that fails is tried anew at the next interval; after so many in a row the overlay is given up. */
@@ -15,6 +19,7 @@ export const FAILURES_MOST = 5
 export interface TermComponents {
   store: Pick<LeaderStore, 'claim' | 'load' | 'write'>
   usual: Pick<Usual, 'at'>
+  upkeep: Pick<Upkeep, 'look'>
   clock: Clock
   random: Random
   log: Log
@@ -30,6 +35,10 @@ export class Term {
   #before: Snapshot | null = null
   #sequence = 0
   #state: StoredState | null = null
+  #last: Round | null = null
+  #audit: AuditMemory = BLANK_AUDIT
+  #hasty = false
+  #wake: () => void = () => {}
   /** How long rounds took, loading to commit, milliseconds. */
   readonly rounds = { count: 0, totalMs: 0, longestMs: 0 }
 
@@ -62,13 +71,53 @@ export class Term {
       // By the clock, not by the end of the round: rounds do not drift. Those that were missed are left out.
       const late = Math.max(0, clock.monotonicMs() - dueAtMs)
       dueAtMs += intervalMs * (1 + Math.floor(late / intervalMs))
-      await sleep(clock, dueAtMs - clock.monotonicMs(), signal)
+      await this.#waitUntil(dueAtMs, signal)
     }
     return 'stopped'
   }
 
+  /** Someone has been shut out or let in: the orders that say so go out at once. The next round stays when it is due. */
+  hasten(): void {
+    this.#hasty = true
+    this.#wake()
+  }
+
+  async #waitUntil(dueAtMs: number, signal: AbortSignal): Promise<void> {
+    const { clock, log } = this.#components
+    const wake = () => this.#wake()
+    signal.addEventListener('abort', wake, { once: true })
+    for (let isDue = false; !isDue && !signal.aborted; ) {
+      if (this.#hasty) {
+        this.#hasty = false
+        await this.#reissue().catch((error: unknown) =>
+          log.error({ overlayId: this.#overlayId, err: error }, 'orders could not be sent at once'),
+        )
+      }
+      const woken = new AbortController()
+      this.#wake = () => woken.abort()
+      if (signal.aborted || this.#hasty) woken.abort()
+      isDue = await sleep(clock, dueAtMs - clock.monotonicMs(), woken.signal)
+    }
+    signal.removeEventListener('abort', wake)
+  }
+
+  /** The orders in force under a new number, with whom nobody keeps a link to now. Evaluates nothing. */
+  async #reissue(): Promise<void> {
+    const { store } = this.#components
+    const last = this.#last
+    const loaded = last && (await store.load())
+    if (!last || !loaded) return
+    const sequence = this.#sequence + 1
+    const orders = { ...last.orders, sequence, shut: loaded.shut, weights: loaded.weights }
+    const round = { ...last, sequence, orders, key: loaded.key, reading: null, events: [], leftOut: [] }
+    // Where another has taken over the next round finds out.
+    if (!(await store.write(round))) return
+    this.#sequence = sequence
+    this.#last = round
+  }
+
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
-    const { clock, store, usual } = this.#components
+    const { clock, store, usual, upkeep, log } = this.#components
     const startedMs = clock.monotonicMs()
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
@@ -79,18 +128,35 @@ export class Term {
     this.#sequence = round.sequence
     this.#state = round.state
     this.#before = loaded.snapshot
+    this.#last = round
     const tookMs = clock.monotonicMs() - startedMs
     this.rounds.count += 1
     this.rounds.totalMs += tookMs
     this.rounds.longestMs = Math.max(this.rounds.longestMs, tookMs)
+    // What can wait must not cost the overlay its orders.
+    await upkeep
+      .look(loaded, round.state.memory)
+      .catch((error: unknown) => log.error({ overlayId: this.#overlayId, err: error }, 'upkeep failed'))
     return null
   }
 
-  #plan({ pace: paceName, disclosure, snapshot }: Loaded, usual: number | null): Round {
+  #plan(loaded: Loaded, usual: number | null): Round {
+    const { pace: paceName, disclosure, weights, key } = loaded
     const pace = PACES[paceName]
     const sequence = this.#sequence + 1
+    const { atMs } = loaded.snapshot
+    const before = this.#state?.control ?? initialControl(atMs, pace)
+    const audited = auditAgents({
+      now: loaded.snapshot,
+      control: before,
+      pace,
+      memory: this.#audit,
+      leftOutBefore: loaded.leftOutNames.length,
+    })
+    this.#audit = audited.memory
+    const { snapshot, shut, leftOutNames } = withoutLeftOut(loaded, audited.leftOut)
     const { control, orders, estimate } = evaluate({
-      control: this.#state?.control ?? initialControl(snapshot.atMs, pace),
+      control: before,
       before: this.#before,
       now: snapshot,
       settings: { ...DEFAULT_SETTINGS, pace, disclosure },
@@ -105,6 +171,7 @@ export class Term {
       meanWeightedDegree: estimate.coverage.meanWeightedDegree,
       usual,
       intervalMs: pace.intervalMs,
+      leftOut: leftOutNames,
     })
     const names = new Map(snapshot.agents.map(({ agentId, name }) => [agentId, name]))
     const links =
@@ -114,10 +181,35 @@ export class Term {
     return {
       sequence,
       state: { version: STATE_VERSION, control, memory },
-      orders,
-      reading: store ? reading : null,
+      orders: { ...orders, weights, shut },
+      key,
+      reading: store
+        ? withFleetFacts(reading, fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs))
+        : null,
       events: [...events, ...links],
+      leftOut: audited.leftOut,
     }
+  }
+}
+
+/** The overlay as it is once these agents are left out: they have not joined, and nobody keeps a link to them. */
+function withoutLeftOut(
+  { snapshot, shut, leftOutNames }: Loaded,
+  leftOut: Round['leftOut'],
+): Pick<Loaded, 'snapshot' | 'shut' | 'leftOutNames'> {
+  if (leftOut.length === 0) return { snapshot, shut, leftOutNames }
+  const because = new Map(leftOut.map((out) => [out.agentId, out.because]))
+  const gone = snapshot.agents.filter(({ agentId }) => because.has(agentId))
+  return {
+    snapshot: { ...snapshot, agents: snapshot.agents.filter(({ agentId }) => !because.has(agentId)) },
+    shut: [...leftOut.map(({ agentId }) => ({ agentId, reason: 'left-out' as const })), ...shut].slice(
+      0,
+      MAX_SHUT,
+    ),
+    leftOutNames: [
+      ...gone.map(({ agentId, name }) => ({ name, because: because.get(agentId) ?? '' })),
+      ...leftOutNames,
+    ],
   }
 }
 

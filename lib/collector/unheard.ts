@@ -39,12 +39,15 @@ export function unheardTogether(agents: readonly WatchedAgent[], intervalMs: num
 }
 
 /** Groups of agents that fell silent one soon after the other, largest first. */
-function silences(agents: readonly WatchedAgent[], withinMs: number): WatchedAgent[][] {
+export function silences<A extends Pick<WatchedAgent, 'heard' | 'heardAtMs'>>(
+  agents: readonly A[],
+  withinMs: number,
+): A[][] {
   const silent = agents.flatMap((agent) =>
     !agent.heard && agent.heardAtMs !== null ? [{ agent, atMs: agent.heardAtMs }] : [],
   )
   silent.sort((a, b) => a.atMs - b.atMs)
-  const groups: WatchedAgent[][] = []
+  const groups: A[][] = []
   let lastMs = Number.NEGATIVE_INFINITY
   for (const { agent, atMs } of silent) {
     if (atMs - lastMs > withinMs) groups.push([])

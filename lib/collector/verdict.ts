@@ -25,6 +25,14 @@ export interface VerdictFacts {
   cut: { nodes: Record<Side, number>; links: number } | null
   follows: Follows | null
   shareOfUsual: number | null
+  /** Agents whose figures did not hold, the latest first. */
+  leftOut?: readonly LeftOut[]
+}
+
+export interface LeftOut {
+  name: string
+  /** Ends the sentence "gul-04 is left out: …". */
+  because: string
 }
 
 export interface Verdict {
@@ -39,7 +47,8 @@ export function verdictOf(facts: VerdictFacts): Verdict {
   if (facts.treatAsSplit) return treatAsSplit(facts, facts.treatAsSplit)
   if (facts.state === 'reading') return ofReading(facts)
   if (facts.rule === 'links-gone') return linksGone(facts)
-  return withoutReading(facts, facts.state)
+  const { verdict, detail } = withoutReading(facts, facts.state)
+  return { verdict, detail: sentences(detail, ...leftOutText(facts.leftOut)) }
 }
 
 function treatAsSplit(facts: VerdictFacts, together: NonNullable<VerdictFacts['treatAsSplit']>): Verdict {
@@ -116,7 +125,20 @@ function followsText({ follows, singleCut, level, trend }: VerdictFacts): string
   return `It follows the label ${follows.key}: ${listOf(follows.a)} on one side, ${listOf(follows.b)} on the other.`
 }
 
-function remarks({ joined, heard, detached, shareOfUsual, rule, singleCut }: VerdictFacts): string[] {
+/** Agents left out beyond this many are counted, not named. */
+const MOST_LEFT_OUT = 2
+
+function leftOutText(leftOut: readonly LeftOut[] = []): string[] {
+  const named = leftOut.length > MOST_LEFT_OUT ? leftOut.slice(0, 1) : leftOut
+  const rest = leftOut.length - named.length
+  return [
+    ...named.map(({ name, because }) => `${name} is left out: ${because}.`),
+    rest > 0 ? `${countOf(rest, 'more agent')} ${isOrAre(rest)} left out.` : '',
+  ]
+}
+
+function remarks(facts: VerdictFacts): string[] {
+  const { joined, heard, detached, shareOfUsual, rule, singleCut } = facts
   const unheard = joined - heard
   return [
     rule === 'below-usual' && singleCut !== false && shareOfUsual !== null
@@ -128,6 +150,7 @@ function remarks({ joined, heard, detached, shareOfUsual, rule, singleCut }: Ver
     detached > 0
       ? `${countOf(detached, 'node')} ${detached === 1 ? 'has' : 'have'} no live link and ${isOrAre(detached)} left out.`
       : '',
+    ...leftOutText(facts.leftOut),
   ]
 }
 

@@ -186,6 +186,17 @@ export const signingKeySchema = z.object({
 })
 export type SigningKey = z.infer<typeof signingKeySchema>
 
+export const RETIRE_MOST_HOURS = 24 * 365
+export const overlayChangeSchema = z.object({
+  /** Null: never. */
+  retireAfterHours: z
+    .number()
+    .int('Give whole hours.')
+    .min(1, 'Give at least one hour.')
+    .max(RETIRE_MOST_HOURS, 'Give at most a year of hours.')
+    .nullable(),
+})
+
 /** A disclosed link; a and b are node names, a before b. */
 export const linkSchema = z.object({
   a: z.string(),

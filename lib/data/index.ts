@@ -1,6 +1,7 @@
 /** What pages, actions and routes may ask for. Every function checks the caller and returns DTOs. */
 import 'server-only'
 
+export { readmitAgent, retireAgent, revokeAgent } from './agents'
 export { AUDIT_PAGE_SIZE, type AuditFilter, type AuditPage, auditFilterSchema, listAudit } from './audit'
 export { createJoiningCode, listJoiningCodes, revokeJoiningCode } from './joining-codes'
 export {
@@ -12,8 +13,10 @@ export {
   type SetPasswordLink,
   type TeamMembers,
 } from './members'
-export { createOverlay, getOverlay, listOverlays, openOverlay } from './overlays'
+export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } from './overlays'
 export { readPasswordLink, setPassword } from './password-links'
 export { countAttempt, signIn, signOut } from './sign-in'
+export { getSigningKey, rotateSigningKey } from './signing-key'
 export { listTeams } from './teams'
+export { getUpgrades, haltUpgrade, offerUpgrade } from './upgrades'
 export { firstRun, isFirstRun } from './users'

@@ -1,61 +1,111 @@
+import { z } from 'zod'
+import type { AgentStateName, Overlay } from '@/entities'
 import type { Memory } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
 import type { OverlayNode } from '@/lib/data/dto'
+import type { EntityManager } from '@/lib/db'
+import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { heldMs } from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
-import type { NodeFacts } from '@/lib/method/report'
+import type { NodeFacts, Sums } from '@/lib/method/report'
+import { healthOf } from './node-health'
 import { openOverlay } from './overlays'
-import type { Page } from './paging'
+import { pageSchema } from './paging'
 import { memoryOf } from './readings'
+
+export const nodesQuerySchema = pageSchema.extend({
+  /** Only nodes with this label, as key=value. */
+  label: z
+    .string()
+    .max(200)
+    .regex(/^[^=]+=/, 'Write the label as key=value.')
+    .optional(),
+})
+export type NodesQuery = z.output<typeof nodesQuerySchema>
 
 interface Row {
   id: string
   name: string
   labels: Record<string, string>
   version: string
-  state: 'joined' | 'left' | 'revoked'
-  node: NodeFacts | null
+  state: AgentStateName
+  nodeName: string | null
+  joinedAtMs: number
+  endedAtMs: number | null
+  leftOutBecause: string | null
+  facts: NodeFacts | null
+  colonies: Sums['colonies'] | null
+  relayed: boolean | null
   attached: boolean | null
   heardAtMs: number | null
   ageMs: number | null
 }
 
-/** By name. */
+const SELECT = `select a.id, a.name, a.labels, a.version, a.state, a.node as "nodeName",
+    ${epochMs('a.joined_at')} as "joinedAtMs", ${epochMs('a.ended_at')} as "endedAtMs",
+    a.left_out_because as "leftOutBecause", s.node - 'links' as facts, s.sums->'colonies' as colonies, s.relayed,
+    (s.sums->>'attached')::int = 1 as attached, ${epochMs('s.received_at')} as "heardAtMs",
+    ${epochMs('clock_timestamp()')} - ${epochMs('s.received_at')} as "ageMs"
+  from agents a left join agent_states s on s.agent_id = a.id`
+
+/** By name; of several that left under one name the last, and none where another has it now. */
 export async function listNodes(
   call: Call,
   slug: string,
-  { after, limit }: Page,
+  { after, limit, label }: NodesQuery,
 ): Promise<{ items: OverlayNode[]; next: string | null }> {
   const overlay = await openOverlay(call, 'node.list', slug)
   const memory = await memoryOf(call.em, overlay.id)
+  const equals = label?.indexOf('=') ?? -1
+  const wanted = label === undefined ? null : { [label.slice(0, equals)]: label.slice(equals + 1) }
   const rows = await query<Row>(
     call.em,
-    `select a.id, a.name, a.labels, a.version, a.state, s.node, (s.sums->>'attached')::int = 1 as attached,
-       ${epochMs('s.received_at')} as "heardAtMs",
-       ${epochMs('clock_timestamp()')} - ${epochMs('s.received_at')} as "ageMs"
-     from agents a left join agent_states s on s.agent_id = a.id
-     where a.overlay_id = ? and a.name collate "C" > ? order by a.name collate "C" limit ?`,
-    [overlay.id, after ?? '', limit + 1],
+    `${SELECT} where a.overlay_id = ? and a.name collate "C" > ? ${wanted ? 'and a.labels @> ?::jsonb' : ''}
+       and not (a.state = 'left' and exists (select from agents b where b.overlay_id = a.overlay_id
+         and b.name = a.name and b.id <> a.id and (b.state <> 'left' or b.joined_at > a.joined_at)))
+     order by a.name collate "C" limit ?`,
+    [overlay.id, after ?? '', ...(wanted ? [JSON.stringify(wanted)] : []), limit + 1],
   )
   const { intervalMs } = PACES[overlay.pace]
   const items = rows.slice(0, limit).map((row) => toNode(row, memory, intervalMs))
   return { items, next: rows.length > limit ? (items[items.length - 1]?.name ?? null) : null }
 }
 
+/** For those who have checked the caller. */
+export async function getNode(
+  em: EntityManager,
+  { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  agentId: string,
+): Promise<OverlayNode> {
+  const [row] = await query<Row>(em, `${SELECT} where a.id = ?`, [agentId])
+  if (!row) throw new AppError('not-found', 'The node is gone. Load the list again.')
+  return toNode(row, await memoryOf(em, id), PACES[pace].intervalMs)
+}
+
 function toNode(row: Row, memory: Memory | null, intervalMs: number): OverlayNode {
-  const { name, labels, node, version } = row
+  const { name, labels, facts, version, colonies } = row
   return {
     name,
     labels,
     side: sideOf(memory, row.id),
-    value: node?.value?.value ?? null,
-    degree: node?.degree ?? null,
-    weightedDegree: node?.weightedDegree ?? null,
-    heardAt: row.heardAtMs === null ? null : new Date(row.heardAtMs).toISOString(),
-    version: node?.version ?? version,
+    value: facts?.value?.value ?? null,
+    degree: facts?.degree ?? null,
+    weightedDegree: facts?.weightedDegree ?? null,
+    heardAt: timeOf(row.heardAtMs),
+    version: facts?.version ?? version,
     state: stateOf(row, intervalMs),
+    node: row.nodeName,
+    joinedAt: new Date(row.joinedAtMs).toISOString(),
+    endedAt: timeOf(row.endedAtMs),
+    leftOutBecause: row.leftOutBecause,
+    relayed: row.relayed === true,
+    health: facts && colonies ? healthOf(facts, colonies) : null,
   }
+}
+
+function timeOf(atMs: number | null): string | null {
+  return atMs === null ? null : new Date(atMs).toISOString()
 }
 
 /** Null where no single cut stands out: a side would say something that is not so. */

@@ -71,6 +71,16 @@ export async function createOverlay(
   return dto!
 }
 
+/** Agents unheard for so long are retired by themselves; null for never. */
+export async function setRetireAfter(call: Call, slug: string, hours: number | null): Promise<OverlayDto> {
+  const overlay = await openOverlay(call, 'overlay.change', slug)
+  call.note({ data: { retireAfterHours: hours } })
+  overlay.retireAfterHours = hours
+  await call.em.flush()
+  const [dto] = await toDtos(call, [overlay])
+  return dto!
+}
+
 /** The team named, or the only one in which the caller may create overlays. */
 function owningTeam(call: Call, slug: string | undefined): string {
   const teams = callerTeams(call).filter((team) =>
@@ -112,6 +122,7 @@ async function toDtos(call: Call, overlays: Overlay[]): Promise<OverlayDto[]> {
     demo: overlay.demo,
     contact: overlay.contact ?? null,
     runbookUrl: overlay.runbookUrl ?? null,
+    retireAfterHours: overlay.retireAfterHours ?? null,
     role: roleIn(call, overlay.team.id),
     joined: joined.get(overlay.id) ?? 0,
   }))

@@ -81,13 +81,13 @@ function checkFigure({ lambda2, crossCheck, data }: Reading): FigureText {
 }
 
 function linksFigure({ coverage }: Reading): FigureText {
-  const { linksMeasured, linksKnown } = coverage
+  const { linksMeasured, linksKnown, withoutAgent = 0 } = coverage
   const missing = linksKnown - linksMeasured
-  return {
-    id: 'links',
-    value: `${linksMeasured} of ${linksKnown}`,
-    remark: linksKnown === 0 ? 'none known yet' : missing > 0 ? `${missing} not measured` : 'all',
-  }
+  const value = `${linksMeasured} of ${linksKnown}`
+  if (linksKnown === 0) return { id: 'links', value, remark: 'none known yet' }
+  if (withoutAgent > 0)
+    return { id: 'links', value, remark: `${formatCount(withoutAgent, 'neighbour')} without an agent` }
+  return { id: 'links', value, remark: missing > 0 ? `${missing} not measured` : 'all' }
 }
 
 function agentsFigure({ coverage, last }: Reading): FigureText {

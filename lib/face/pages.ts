@@ -13,6 +13,7 @@ export function overlayPages(slug: string): PageEntry[] {
     { letter: 'A', label: 'Now', href: base },
     { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
     { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
   ]
 }
 

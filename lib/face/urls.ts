@@ -10,5 +10,10 @@ export function overlayUrls(slug: string) {
     links: `${base}/links`,
     events: `${base}/events`,
     codes: `${base}/joining-codes`,
+    upgrades: `${base}/upgrades`,
+    signingKey: `${base}/signing-key`,
   }
 }
+
+/** What this server says of the agent's file that it serves. */
+export const AGENT_FILE_URL = '/agent/thinspan-agent.json'

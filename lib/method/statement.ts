@@ -1,3 +1,5 @@
+import type { Report } from './report'
+
 /** What one agent says of one colony, to its neighbours and to the collector alike. Counters as in `ColonyCounters`. */
 export interface ColonyStatement {
   colony: number
@@ -28,4 +30,22 @@ export interface SignedStatement {
   key: string
   /** Ed25519 over the statement, base64url of 64 bytes. */
   receipt: string
+}
+
+/** The figures of a report that neighbours can audit, in the report's order of colonies. */
+export function statementOf(agentId: string, report: Report): Statement {
+  return {
+    agentId,
+    incarnation: report.incarnation,
+    reportNumber: report.number,
+    colonies: report.sums.colonies.map(({ colony, seeding, mean, counters }) => ({
+      colony,
+      seeding,
+      mean,
+      births: counters.births,
+      culls: counters.culls,
+      walkerTime: counters.walkerTime,
+      linkTime: counters.linkTime,
+    })),
+  }
 }

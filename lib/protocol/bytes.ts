@@ -45,6 +45,13 @@ export class ByteWriter {
     this.at += bytes.length
   }
 
+  /** Bytes given as base64url. @throws RangeError where they are not `length` bytes */
+  base64url(text: string, length: number): void {
+    const bytes = Buffer.from(text, 'base64url')
+    if (bytes.length !== length) throw new RangeError(`${length} bytes wanted, not ${bytes.length}`)
+    this.raw(bytes)
+  }
+
   get length(): number {
     return this.at
   }
@@ -124,6 +131,11 @@ export class ByteReader {
     const inner = new ByteReader(this.bytes, this.at, this.at + length)
     this.at += length
     return inner
+  }
+
+  /** The next `length` bytes as base64url. @throws MalformedBytes past the end */
+  base64url(length: number): string {
+    return Buffer.from(this.block(length).rest()).toString('base64url')
   }
 
   /** View of what is left. */

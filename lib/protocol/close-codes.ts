@@ -49,6 +49,7 @@ export const CLOSE = {
     sentence: 'The figures of this agent do not hold. Its operators must look into it.',
     retry: false,
   },
+  replayed: { code: 4427, sentence: 'This hello was said and proven before.', retry: true },
   'too-many-links': { code: 4426, sentence: 'This agent has as many links as it may.', retry: true },
 } as const satisfies Record<string, { code: number; sentence: string; retry: boolean }>
 

@@ -1,9 +1,16 @@
-import type { ColonyFrame, Frame } from '../method/frame'
+import type { CollectorDistance, ColonyFrame, Frame } from '../method/frame'
 import { ByteReader, MalformedBytes } from './bytes'
-import { FLAG_CLOSING, FLAG_CONSENTS, PART_ORDERS, readColony, WEIGHT_SCALE } from './frame-codec'
+import {
+  DISTANCE_MASK,
+  DISTANCE_SHIFT,
+  FLAG_CLOSING,
+  FLAG_CONSENTS,
+  readColony,
+  WEIGHT_SCALE,
+} from './frame-codec'
+import { type PartsError, readParts } from './frame-parts'
 import { MAX_COLONIES, MAX_FRAME_BYTES, MAX_MEAN_OCCUPANCY } from './limits'
-import { FRAME_VERSION, MESSAGE_KIND } from './message-kind'
-import { parseOrders } from './orders-part'
+import { LINK_VERSIONS, MESSAGE_KIND } from './message-kind'
 
 export type FrameError =
   | { code: 'too-large'; bytes: number; limitBytes: number }
@@ -11,13 +18,15 @@ export type FrameError =
   | { code: 'unsupported-version'; version: number }
   | { code: 'malformed'; reason: string; at: number }
   | { code: 'out-of-range'; field: string; value: number }
-  | { code: 'bad-orders'; issue: string }
+  | PartsError
 
 export type DecodeResult = { ok: true; frame: Frame } | { ok: false; error: FrameError }
 
 export interface DecodeInit {
   /** Orders up to this sequence are held already: they are skipped unread, `orders` is then null. */
   heldOrdersSequence?: number
+  /** The version agreed on for the link; without it, any that is spoken here. */
+  version?: number
 }
 
 /** Frame from bytes of a peer. Never throws; numbers in the result are finite and within their bounds. */
@@ -27,7 +36,7 @@ export function decodeFrame(bytes: Uint8Array, init: DecodeInit = {}): DecodeRes
   }
   if (bytes[0] !== MESSAGE_KIND.frame) return refuse({ code: 'not-a-frame', kind: bytes[0] ?? null })
   try {
-    return read(new ByteReader(bytes, 1), init.heldOrdersSequence ?? -1)
+    return read(new ByteReader(bytes, 1), init)
   } catch (error) {
     if (error instanceof MalformedBytes) {
       return refuse({ code: 'malformed', reason: error.message, at: error.at })
@@ -36,12 +45,17 @@ export function decodeFrame(bytes: Uint8Array, init: DecodeInit = {}): DecodeRes
   }
 }
 
-function read(reader: ByteReader, heldOrdersSequence: number): DecodeResult {
+const isSpoken = (version: number): boolean => LINK_VERSIONS.some((spoken) => spoken === version)
+
+function read(reader: ByteReader, init: DecodeInit): DecodeResult {
   const version = reader.byte()
-  if (version !== FRAME_VERSION) return refuse({ code: 'unsupported-version', version })
+  if (version !== (init.version ?? version) || !isSpoken(version)) {
+    return refuse({ code: 'unsupported-version', version })
+  }
   const flags = reader.byte()
   const number = reader.varint()
   const heardNumber = reader.varint()
+  const heardFrames = version >= 2 ? reader.varint() : 0
   const weight = reader.varint()
   const ordersSequence = reader.varint()
   const newestSeeding = reader.varint()
@@ -58,44 +72,26 @@ function read(reader: ByteReader, heldOrdersSequence: number): DecodeResult {
     if (colonies.some((other) => other.colony === colony.colony)) return outOfRange('colony', colony.colony)
     colonies.push(colony)
   }
-  const parts = readParts(reader, ordersSequence, heldOrdersSequence)
+  const parts = readParts(reader, version, ordersSequence, init.heldOrdersSequence ?? -1)
   if ('code' in parts) return refuse(parts)
-  return {
-    ok: true,
-    frame: {
-      number,
-      heardNumber,
-      weight: weight / WEIGHT_SCALE,
-      closing: (flags & FLAG_CLOSING) !== 0,
-      consents: (flags & FLAG_CONSENTS) !== 0,
-      ordersSequence,
-      orders: parts.orders,
-      colonies,
-    },
+  const frame: Frame = {
+    number,
+    heardNumber,
+    weight: weight / WEIGHT_SCALE,
+    closing: (flags & FLAG_CLOSING) !== 0,
+    consents: (flags & FLAG_CONSENTS) !== 0,
+    ordersSequence,
+    orders: parts.orders,
+    colonies,
   }
+  if (version < 2) return { ok: true, frame }
+  const distance = distanceOf(flags)
+  return { ok: true, frame: { ...frame, distance, heardFrames, statement: parts.statement } }
 }
 
-function readParts(
-  reader: ByteReader,
-  ordersSequence: number,
-  heldOrdersSequence: number,
-): { orders: Frame['orders'] } | FrameError {
-  let orders: Frame['orders'] = null
-  while (reader.left > 0) {
-    const type = reader.varint()
-    const block = reader.block(reader.varint())
-    if (type !== PART_ORDERS || ordersSequence <= heldOrdersSequence) continue
-    if (orders) return { code: 'bad-orders', issue: 'given twice' }
-    const ageMs = block.varint()
-    const parsed = parseOrders(block.rest())
-    if (!parsed.ok) return { code: 'bad-orders', issue: parsed.issue }
-    if (parsed.orders.sequence !== ordersSequence) {
-      return { code: 'bad-orders', issue: 'the sequence is not the one the frame follows' }
-    }
-    orders = { orders: parsed.orders, ageMs }
-  }
-  return { orders }
-}
+const DISTANCES: readonly CollectorDistance[] = [0, 1, 2, 3]
+const distanceOf = (flags: number): CollectorDistance =>
+  DISTANCES[(flags >> DISTANCE_SHIFT) & DISTANCE_MASK] ?? 3
 
 const refuse = (error: FrameError): DecodeResult => ({ ok: false, error })
 const outOfRange = (field: string, value: number): DecodeResult =>

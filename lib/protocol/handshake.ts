@@ -4,6 +4,7 @@ import { decodeHello, encodeHello, type Hello } from './hello'
 import { SIGNATURE_BYTES, verifyBytes } from './keys'
 import { MAX_HANDSHAKE_BYTES } from './limits'
 import { LINK_VERSIONS, MESSAGE_KIND } from './message-kind'
+import type { ProvenNonces } from './nonces'
 import type { PassClaims, PassResult } from './pass'
 
 export type LinkRole = 'dialer' | 'listener'
@@ -29,6 +30,8 @@ export type HandshakeEffect =
 export interface HandshakeComponents {
   /** Ed25519 signature with the agent's own key. */
   sign: (bytes: Uint8Array) => Uint8Array
+  /** Shared by all exchanges of this agent: a recording is told by them. It could not prove itself without either. */
+  nonces?: ProvenNonces
 }
 
 export interface HandshakeInit {
@@ -52,6 +55,7 @@ export interface HandshakeInit {
  */
 export class Handshake {
   private readonly sign: HandshakeComponents['sign']
+  private readonly nonces: ProvenNonces | undefined
   private readonly init: HandshakeInit
   private readonly ownHello: Uint8Array
   private state: 'hello' | 'pass' | 'proof' | 'over' = 'hello'
@@ -59,8 +63,9 @@ export class Handshake {
   private peerClaims: PassClaims | null = null
   private earlyProof: Uint8Array | null = null
 
-  constructor({ sign }: HandshakeComponents, init: HandshakeInit) {
+  constructor({ sign, nonces }: HandshakeComponents, init: HandshakeInit) {
     this.sign = sign
+    this.nonces = nonces
     this.init = init
     this.ownHello = encodeHello({
       versions: [...(init.versions ?? LINK_VERSIONS)],
@@ -96,6 +101,7 @@ export class Handshake {
     if (version === 0) {
       return this.fail('version-mismatch', `${hello.versions.join(', ')} there, ${spoken.join(', ')} here`)
     }
+    if (this.nonces?.has(hello.nonce)) return this.fail('replayed', 'the nonce of an earlier exchange')
     this.peerHello = { hello, bytes, version }
     this.state = 'pass'
     return [{ kind: 'judge-pass', token: hello.pass }]
@@ -127,6 +133,7 @@ export class Handshake {
       bytes[0] === MESSAGE_KIND.proof &&
       verifyBytes(claims.key, this.statement(peerRole, peer.bytes), bytes.subarray(1))
     if (!proven) return this.fail('proof-wrong', 'the proof is not a signature of this exchange')
+    this.nonces?.add(peer.hello.nonce)
     this.state = 'over'
     return [
       {

@@ -55,6 +55,7 @@ export {
 } from './keys'
 export * from './limits'
 export { FRAME_VERSION, LINK_VERSIONS, MESSAGE_KIND } from './message-kind'
+export { ProvenNonces } from './nonces'
 export { ordersBytes, parseOrders } from './orders-part'
 export { ordersSchema } from './orders-schema'
 export {
@@ -68,7 +69,19 @@ export {
 } from './pass'
 export { type Receipt, receiptSchema, signReceipt, statementOf, verifyReceipt } from './receipt'
 export {
+  decodeRelay,
+  decodeRelayReply,
+  encodeRelay,
+  encodeRelayReply,
+  RELAY_HOPS,
+  type RelayMessage,
+  relayMessageSchema,
+} from './relay'
+export {
   AGENT_PROTOCOL,
+  type AwaySummary,
+  awaySummarySchema,
+  MAX_AWAY,
   type ReportReply,
   type ReportRequest,
   reportReplySchema,

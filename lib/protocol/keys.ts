@@ -9,6 +9,7 @@ import {
 
 /** base64url of a raw 32-byte Ed25519 public key. */
 export const RAW_KEY = /^[A-Za-z0-9_-]{43}$/
+export const KEY_BYTES = 32
 export const SIGNATURE_BYTES = 64
 
 export interface KeyPair {

@@ -1,9 +1,10 @@
 import { createHash, type KeyObject } from 'node:crypto'
 import { z } from 'zod'
-import type { Report } from '../method/report'
 import type { SignedStatement, Statement } from '../method/statement'
 import { rawKeySchema, signatureSchema } from './enrol'
 import { signText, verifyText } from './keys'
+
+export { statementOf } from '../method/statement'
 
 /** The collector's word that it was told exactly this statement. */
 export const receiptSchema = z.object({
@@ -12,24 +13,6 @@ export const receiptSchema = z.object({
   receipt: signatureSchema,
 })
 export type Receipt = z.infer<typeof receiptSchema>
-
-/** The figures of a report that neighbours can audit, in the report's order of colonies. */
-export function statementOf(agentId: string, report: Report): Statement {
-  return {
-    agentId,
-    incarnation: report.incarnation,
-    reportNumber: report.number,
-    colonies: report.sums.colonies.map(({ colony, seeding, mean, counters }) => ({
-      colony,
-      seeding,
-      mean,
-      births: counters.births,
-      culls: counters.culls,
-      walkerTime: counters.walkerTime,
-      linkTime: counters.linkTime,
-    })),
-  }
-}
 
 export function signReceipt(
   overlayId: string,

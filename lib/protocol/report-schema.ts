@@ -130,6 +130,17 @@ export const reportSchema: z.ZodType<Report> = reportShape
 /** Version of enrolment, sessions and reports. Version 1 said none; its replies carry orders without a signature. */
 export const AGENT_PROTOCOL = 2
 
+/** A time in which nothing of an agent reached the collector by any way, as its links saw it. */
+export const awaySummarySchema = z.object({
+  fromAt: z.iso.datetime(),
+  toAt: z.iso.datetime(),
+  leastLive: count,
+  known: count,
+  linkDowns: count,
+})
+export type AwaySummary = z.infer<typeof awaySummarySchema>
+export const MAX_AWAY = 8
+
 /** `POST /api/agent/report`: the report, and what goes with it since version 2. */
 export const reportRequestSchema = reportShape.extend({
   protocol: z.number().int().min(1).max(1_000).default(1),
@@ -137,6 +148,8 @@ export const reportRequestSchema = reportShape.extend({
   wantsReceipt: z.boolean().optional(),
   /** Reports of agents that do not reach the collector themselves. */
   relayed: z.array(signedReportSchema).max(MAX_RELAYED).optional(),
+  /** With the first reports after a time away, oldest first. */
+  away: z.array(awaySummarySchema).max(MAX_AWAY).optional(),
 })
 export type ReportRequest = z.input<typeof reportRequestSchema>
 

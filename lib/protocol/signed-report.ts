@@ -1,6 +1,7 @@
 import { createHash, type KeyObject } from 'node:crypto'
 import { z } from 'zod'
 import { passGrantSchema, signatureSchema } from './enrol'
+import { keyRingSchema } from './key-ring'
 import { signText, verifyText } from './keys'
 import { MAX_RELAYED_REPORT_BYTES } from './limits'
 
@@ -41,5 +42,7 @@ export const relayedReplySchema = z.object({
   /** Code of the problem where it was refused. */
   problem: z.string().max(60).nullable(),
   pass: passGrantSchema.nullable(),
+  /** Every version of the overlay's ring that the agent lacks, oldest first: they prove themselves. */
+  keyRings: z.array(keyRingSchema).max(20).optional(),
 })
 export type RelayedReply = z.infer<typeof relayedReplySchema>

@@ -13,7 +13,10 @@ export interface FleetArguments {
 
 export const USAGE =
   'npm run fleet -- --topology edges.csv --collector URL --code CODE [--labels nodes.csv]\n' +
-  `              [--pace ${PACE_NAMES.join('|')}] [--weights unit|delivered] [--quiet]\n`
+  `              [--pace ${PACE_NAMES.join('|')}] [--weights unit|delivered] [--quiet]\n` +
+  'obeys: cut a b, join a b, weaken a b 0.4, stop a, start a, exact,\n' +
+  '       silence a (it does not reach the collector, neither itself nor through neighbours),\n' +
+  '       detour a (not itself; neighbours may carry its reports), heard a (it does again)\n'
 
 export type FleetArgumentsResult = { ok: true; args: FleetArguments } | { ok: false; issue: string }
 

@@ -12,6 +12,7 @@ const COMMANDS: Record<string, { needs: string[]; run: (fleet: Fleet, args: stri
     stop: { needs: ['a'], run: async (fleet, [a]) => ({ done: await fleet.stopAgent(a!) }) },
     start: { needs: ['a'], run: async (fleet, [a]) => ({ done: await fleet.startAgent(a!) }) },
     silence: { needs: ['a'], run: async (fleet, [a]) => ({ done: fleet.silence(a!) }) },
+    detour: { needs: ['a'], run: async (fleet, [a]) => ({ done: fleet.detour(a!) }) },
     heard: { needs: ['a'], run: async (fleet, [a]) => ({ done: fleet.hear(a!) }) },
     exact: { needs: [], run: async (fleet) => fleet.exact() },
   }

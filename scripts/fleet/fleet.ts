@@ -1,7 +1,7 @@
-import type { Clock, CollectorClient, Logger, Transport } from '@/agent'
+import type { Clock, CollectorClient, Ending, LinkEvent, Logger, SpoolStore, Transport } from '@/agent'
 import type { PaceName } from '@/lib/method/pace'
 import { forkRandom, type Random } from '@/lib/method/random'
-import { generateKeys, type KeyPair } from '@/lib/protocol'
+import { generateKeys, type KeyPair, type UpgradeOffer } from '@/lib/protocol'
 import type { Labels, TopologyGraph } from '@/lib/topology'
 import { type Exact, exactOf } from './exact'
 import { type FleetLink, FleetLinks } from './links'
@@ -14,6 +14,8 @@ const SETTLE_MS = 60_000
 
 export interface FleetComponents {
   transport: Transport
+  /** Where agents are to be told apart by what carries their links. */
+  transportOf?: (name: string) => Transport
   collector: CollectorClient
   /** The clock of one agent, wrong in its own way. */
   clockOf: (name: string, random: Random) => Clock
@@ -34,6 +36,10 @@ export interface FleetInit {
   host?: string
   /** Keys of an earlier run, so that the same agents come back; else new ones. */
   keysOf?: (name: string) => KeyPair
+  /** Where an agent keeps what happens while the collector is away; else in memory alone. */
+  spoolOf?: (name: string) => SpoolStore
+  onUpgradeOffer?: (name: string, offer: UpgradeOffer) => void
+  onEnded?: (name: string, ending: Ending) => void
 }
 
 /** What could not be done, in a sentence for whoever typed it. */
@@ -41,6 +47,7 @@ export class FleetError extends Error {}
 
 /** Real agents, one per node of a topology, in one process. */
 export class Fleet {
+  onLinkEvent: ((name: string, event: LinkEvent) => void) | null = null
   private readonly members = new Map<string, Member>()
   private readonly addresses = new Map<string, string>()
   private readonly links: FleetLinks
@@ -57,7 +64,14 @@ export class Fleet {
       this.members.set(
         name,
         new Member(
-          { transport, collector, random, randomBytes, logger, clock: clockOf(name, random) },
+          {
+            transport: components.transportOf?.(name) ?? transport,
+            collector,
+            random,
+            randomBytes,
+            logger,
+            clock: clockOf(name, random),
+          },
           {
             name,
             labels: init.labels?.get(name) ?? {},
@@ -66,7 +80,13 @@ export class Fleet {
             host: init.host ?? '127.0.0.1',
             weights: init.weights ?? null,
             pace: init.pace ?? null,
-            onLinkEvent: () => this.waiters.look(),
+            spool: init.spoolOf?.(name),
+            onUpgradeOffer: init.onUpgradeOffer && ((offer) => init.onUpgradeOffer?.(name, offer)),
+            onEnded: init.onEnded && ((ending) => init.onEnded?.(name, ending)),
+            onLinkEvent: (event) => {
+              this.waiters.look()
+              this.onLinkEvent?.(name, event)
+            },
           },
         ),
       )
@@ -157,12 +177,18 @@ export class Fleet {
     await this.settled(links)
   }
 
+  /** The whole way to the collector is cut: neither itself nor through neighbours. */
   silence(name: string): void {
-    this.member(name).collector.isSilent = true
+    Object.assign(this.member(name).silence, { direct: true, relayed: true })
+  }
+
+  /** Only the agent's own way is cut: neighbours may carry its reports. */
+  detour(name: string): void {
+    Object.assign(this.member(name).silence, { direct: true, relayed: false })
   }
 
   hear(name: string): void {
-    this.member(name).collector.isSilent = false
+    Object.assign(this.member(name).silence, { direct: false, relayed: false })
   }
 
   exact(): Exact {

@@ -4,15 +4,18 @@ import {
   type CollectorClient,
   createAgent,
   describeCollectorError,
+  type Ending,
   enrol,
+  type HeldRing,
   type LinkEvent,
   type Logger,
+  type SpoolStore,
   type Transport,
 } from '@/agent'
 import type { PaceName } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
-import type { EnrolReply, KeyPair } from '@/lib/protocol'
-import { SilenceableCollector } from './silenceable'
+import type { EnrolReply, KeyPair, UpgradeOffer } from '@/lib/protocol'
+import { type Silence, SilenceableCollector, silenceable } from './silenceable'
 
 /** Neighbours on one machine are back soon: waiting long for them would only slow the story down. */
 const BACKOFF = { baseMs: 50, capMs: 1_000 }
@@ -35,17 +38,23 @@ export interface MemberInit {
   host: string
   weights: 'unit' | 'delivered' | null
   pace: PaceName | null
+  spool?: SpoolStore
   onLinkEvent: (event: LinkEvent) => void
+  onUpgradeOffer?: (offer: UpgradeOffer) => void
+  onEnded?: (ending: Ending) => void
 }
 
 /** One node of the fleet: a key that stays, and an agent that comes and goes. */
 export class Member {
   readonly name: string
-  readonly collector: SilenceableCollector
+  readonly silence: Silence = { direct: false, relayed: false }
+  readonly collector: CollectorClient
   agent: Agent | null = null
   private readonly components: MemberComponents
   private readonly init: MemberInit
-  private readonly keys: KeyPair
+  private readonly transport: Transport
+  private keys: KeyPair
+  private keyRing: HeldRing | undefined
   private enrolled: EnrolReply | null = null
   private pass = ''
   private port = 0
@@ -55,7 +64,8 @@ export class Member {
     this.init = init
     this.name = init.name
     this.keys = init.keys
-    this.collector = new SilenceableCollector({ inner: components.collector })
+    this.transport = silenceable(components.transport, this.silence)
+    this.collector = new SilenceableCollector({ inner: components.collector }, this.silence)
   }
 
   get agentId(): string {
@@ -85,9 +95,18 @@ export class Member {
   async start(): Promise<string> {
     const { enrolled } = this
     if (!enrolled || this.agent) throw new Error(`${this.name} is not enrolled or runs already`)
-    const { transport, clock, random, randomBytes, logger } = this.components
+    const { clock, random, randomBytes, logger } = this.components
     const agent = createAgent(
-      { transport, collector: this.collector, clock, random, randomBytes, logger, keys: this.keys },
+      {
+        transport: this.transport,
+        collector: this.collector,
+        clock,
+        random,
+        randomBytes,
+        logger,
+        keys: this.keys,
+        spool: this.init.spool,
+      },
       {
         identity: {
           agentId: enrolled.agentId,
@@ -95,6 +114,7 @@ export class Member {
           overlayKey: enrolled.overlayKey,
           pass: this.pass,
           weights: this.weights,
+          keyRing: this.keyRing,
         },
         version: FLEET_VERSION,
         pace: this.init.pace ?? enrolled.pace,
@@ -103,6 +123,14 @@ export class Member {
         onPass: (grant) => {
           this.pass = grant.pass
         },
+        onRing: (ring) => {
+          this.keyRing = ring
+        },
+        onKey: ({ state, keys }) => {
+          if (state === 'in-force') this.keys = keys
+        },
+        onUpgradeOffer: this.init.onUpgradeOffer,
+        onEnded: this.init.onEnded,
         onLinkEvent: this.init.onLinkEvent,
       },
     )

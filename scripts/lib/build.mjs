@@ -13,8 +13,8 @@ const NOT_BUILT = new Set(['vitest.config.ts', 'next-env.d.ts'])
 const STAMP = 'thinspan-sources'
 const LOCK_PATIENCE_MS = 600_000
 
-/** The files a build is made from, as paths under `root`, sorted. */
-export function sourceFiles(root) {
+/** The files below some folders, as paths under `root`; a folder that is not there has none. */
+export function filesUnder(root, folders) {
   const files = []
   const walk = (folder) => {
     for (const entry of readdirSync(folder, { withFileTypes: true })) {
@@ -23,9 +23,15 @@ export function sourceFiles(root) {
       else if (entry.isFile()) files.push(relative(root, path))
     }
   }
-  for (const name of SOURCE_FOLDERS) {
+  for (const name of folders) {
     if (existsSync(join(root, name))) walk(join(root, name))
   }
+  return files
+}
+
+/** The files a build is made from, as paths under `root`, sorted. */
+export function sourceFiles(root) {
+  const files = filesUnder(root, SOURCE_FOLDERS)
   for (const entry of readdirSync(root, { withFileTypes: true })) {
     if (entry.isFile() && TOP_FILE.test(entry.name) && !NOT_BUILT.has(entry.name)) files.push(entry.name)
   }

@@ -8,9 +8,13 @@ import {
   type Transport,
 } from '@/agent'
 import { MAX_FRAME_BYTES } from '@/lib/protocol'
+import { privateCa } from '../support/private-ca'
+import { createSocketTransport } from '../support/socket-transport'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const signal = new AbortController().signal
+
+const { ca, cert, key } = privateCa(['127.0.0.1', '::1'])
 
 const implementations: Record<string, { make: () => [Transport, Transport]; host: string; nowhere: string }> =
   {
@@ -26,6 +30,24 @@ const implementations: Record<string, { make: () => [Transport, Transport]; host
       },
       host: 'gul-04',
       nowhere: 'memory://nowhere:1',
+    },
+    'an embedding program’s own sockets': {
+      make: () => [createSocketTransport(), createSocketTransport()],
+      host: '127.0.0.1',
+      nowhere: 'tcp://127.0.0.1:1',
+    },
+    'WebSocket over IPv6': {
+      make: () => [createWsTransport({ clock }), createWsTransport({ clock })],
+      host: '::1',
+      nowhere: 'ws://[::1]:1',
+    },
+    'WebSocket over TLS with a private CA': {
+      make: () => [
+        createWsTransport({ clock }, { tls: { ca } }),
+        createWsTransport({ clock }, { tls: { ca, cert, key } }),
+      ],
+      host: '127.0.0.1',
+      nowhere: 'wss://127.0.0.1:1',
     },
   }
 
@@ -143,6 +165,38 @@ describe.each(Object.entries(implementations))('a link over %s', (_, { make, hos
     expect((await accepted.take(1))[0]![0]).toBe(5)
     dialed.connection.close(4416, '')
     await accepted.closed
+  })
+})
+
+describe('a certificate of a private CA', () => {
+  test('is refused by whoever does not know the CA, and so is one for another host', async () => {
+    const other = privateCa(['192.0.2.1'])
+    const listening = await createWsTransport({ clock }, { tls: { cert, key } }).listen(
+      { host: '127.0.0.1', port: 0 },
+      () => {},
+    )
+    const strange = await createWsTransport({ clock }, { tls: { cert: other.cert, key: other.key } }).listen(
+      { host: '127.0.0.1', port: 0 },
+      () => {},
+    )
+    expect(listening.address).toMatch(/^wss:/)
+    for (const [trusted, { address }] of [
+      [undefined, listening],
+      [other.ca, listening],
+      [other.ca, strange],
+    ] as const) {
+      const result = await createWsTransport({ clock }, { tls: { ca: trusted } }).dial(address, signal)
+      expect(result).toMatchObject({ ok: false, reason: expect.any(String) })
+    }
+    const plain = await createWsTransport({ clock }).dial(listening.address.replace('wss:', 'ws:'), signal)
+    expect(plain.ok).toBe(false)
+    await listening.close()
+    await strange.close()
+  })
+
+  test('that does not fit its key is refused where it is given', async () => {
+    const transport = createWsTransport({ clock }, { tls: { cert, key: privateCa(['127.0.0.1']).key } })
+    await expect(transport.listen({ host: '127.0.0.1', port: 0 }, () => {})).rejects.toThrow()
   })
 })
 

@@ -1,17 +1,30 @@
 /** What people do, in a browser, on a production build that begins empty. */
-import { randomInt } from 'node:crypto'
 import type { Browser, Locator, Page } from 'playwright-core'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { tryPort } from '@/scripts/lib/ports.mjs'
 import { AgentFolder } from '@/tests/support/e2e/agent-folder'
 import { Api } from '@/tests/support/e2e/api'
 import { launch, Person, type SentAction, seriousFindings } from '@/tests/support/e2e/browser'
 import { FleetProcess } from '@/tests/support/e2e/fleet-process'
-import { burstOf, fill, filledIn, heading, offers, press, readingOnPage } from '@/tests/support/e2e/pages'
+import {
+  burstOf,
+  commandOn,
+  fill,
+  heading,
+  offers,
+  onPorts,
+  press,
+  readingOnPage,
+  unfold,
+} from '@/tests/support/e2e/pages'
+import { sendAs } from '@/tests/support/e2e/send-as'
 import { createToken, type E2eServer, OWNER, startServer } from '@/tests/support/e2e/server'
+import { tenFreePorts } from '@/tests/support/e2e/ten-free-ports'
 import { twoSides } from '@/tests/support/e2e/two-sides'
 
 const VIEWER = { name: 'Tam Quill', email: 'tam@harbourline.example', password: 'low water at six' }
+/** What a viewer tries below that would change something: eight requests to the API and nine actions of pages. */
+const REFUSED = 17
+const TRIAL = ['trial-1', 'trial-2', 'trial-3']
 const tides = twoSides(5, [1, 2], [0, 2, 4])
 
 let server: E2eServer
@@ -65,8 +78,8 @@ describe('a first visit', () => {
   })
 })
 
-describe('an agent joins', () => {
-  it('by the commands that the page shows, and appears on open pages by itself', async () => {
+describe('agents join', () => {
+  it('by the commands that the page shows, and appear on open pages by themselves', async () => {
     await page.getByRole('link', { name: 'New overlay' }).click()
     await page.getByLabel('Name', { exact: true }).fill('Berths')
     await page.getByRole('radio', { name: /^Brisk/ }).check()
@@ -75,32 +88,37 @@ describe('an agent joins', () => {
     await heading(page, 'No agents have joined yet.')
     await page.getByRole('link', { name: 'Create a joining code' }).click()
     await press(page, 'Create a joining code')
-    await page.getByLabel('Agents').fill('2')
+    await page.getByLabel('Agents').fill('3')
     expect(await seriousFindings(page)).toEqual([])
     await press(page, 'Create the code')
     await page.getByRole('heading', { name: 'The code, shown this once' }).waitFor()
-    expect(await seriousFindings(page)).toEqual([])
     const nodes = await owner.newTab('/overlays/berths/nodes')
     await nodes.getByText('No node has joined yet.').waitFor()
-    const [, enrol, run] = await page.locator('pre').allInnerTexts()
-    const [tar, eel] = [await freePort(), await freePort()]
-    await Promise.all([
-      agents.type(filledIn(enrol, 'tar-01', tar)),
-      agents.type(filledIn(enrol, 'eel-01', eel)),
-    ])
-    // A first agent names no neighbour; the second names the first. They listen on this machine only.
-    const first = filledIn(run, 'tar-01', tar).replace(/\s*\\\s*--neighbour \S+/, '')
-    agents.run(first, { THINSPAN_LISTEN: `127.0.0.1:${tar}` })
-    agents.run(filledIn(run, 'eel-01', tar), { THINSPAN_LISTEN: `127.0.0.1:${eel}` })
-    for (const name of ['tar-01', 'eel-01']) {
-      const row = nodes.getByRole('row').filter({ hasText: name })
+    await unfold(page, 'One node, by hand')
+    await unfold(page, 'A trial: three agents on one machine')
+    expect(await seriousFindings(page)).toEqual([])
+    const ports = await tenFreePorts()
+    const typed = async (label: string) => onPorts(await commandOn(page, label), ports)
+    await agents.type(await typed('Download and verify'))
+    await agents.type(await typed('Enrol three'))
+    agents.run(await typed('Run them until Ctrl-C'))
+    for (const name of TRIAL) {
       await orTell(page.getByRole('listitem').filter({ hasText: name }).getByText('heard', { exact: true }))
+      const row = nodes.getByRole('row').filter({ hasText: name })
       await orTell(row.getByRole('cell', { name: 'heard', exact: true }))
-      await orTell(row.getByRole('cell', { name: '1', exact: true }))
+      await orTell(row.getByRole('cell', { name: '2 of 2', exact: true }))
     }
-    await page.getByRole('row').getByText('2 of 2').waitFor()
+    await page.getByRole('row').getByText('3 of 3').waitFor()
+    await page.getByText('3 of 3 agents heard').waitFor()
     expect(await seriousFindings(nodes)).toEqual([])
     await nodes.close()
+  })
+
+  it('and have a reading, which for three in a ring is 3', async () => {
+    const now = await owner.newTab('/overlays/berths')
+    await readingOnPage(now, 3)
+    await now.getByText('Measured: the path.').waitFor()
+    await now.close()
   })
 
   it('not with a code that was revoked', async () => {
@@ -109,8 +127,65 @@ describe('an agent joins', () => {
     await press(page, 'Revoke')
     await press(page, 'Revoke the code')
     await page.getByRole('row').getByText('revoked', { exact: true }).waitFor()
-    const enrol = (await page.locator('pre').nth(1).textContent()) ?? ''
-    await expect(agents.type(filledIn(enrol, 'pin-01', 1))).rejects.toThrow('was revoked')
+    const enrol = (await commandOn(page, 'Enrol three')).replaceAll('trial-', 'late-')
+    await expect(agents.type(enrol)).rejects.toThrow('was revoked')
+  })
+})
+
+describe('a node', () => {
+  it('is told about in full behind its name', async () => {
+    await page.goto('/overlays/berths/nodes')
+    await page.getByRole('button', { name: 'trial-3: details' }).click()
+    const sheet = page.getByRole('dialog', { name: 'trial-3' })
+    for (const label of ['version', 'clock', 'walker audit', 'last error', 'what is measured'])
+      await sheet.getByRole('term').getByText(label, { exact: true }).waitFor()
+    expect(await seriousFindings(page)).toEqual([])
+  })
+
+  it('that is revoked says so, and is not counted any more', async () => {
+    await press(page, 'Revoke')
+    await page.getByRole('dialog', { name: 'Revoke trial-3?' }).waitFor()
+    await press(page, 'Revoke trial-3')
+    const sheet = page.getByRole('dialog', { name: 'trial-3' })
+    await sheet.getByText('The key of trial-3 is refused for good.').waitFor()
+    await press(page, 'Close')
+    const row = page.getByRole('row').filter({ hasText: 'trial-3' })
+    await row.getByRole('cell', { name: 'revoked', exact: true }).waitFor()
+    await page.getByText('2 of 2 agents heard').waitFor()
+    for (const name of TRIAL.slice(0, 2))
+      await orTell(page.getByRole('row').filter({ hasText: name }).getByRole('cell', { name: /^1 of/ }))
+  })
+})
+
+describe('upkeep', () => {
+  it('shows the versions in use, and lets a version be offered and the offer be halted', async () => {
+    await page.getByRole('link', { name: 'Upkeep' }).first().click()
+    await heading(page, 'Upkeep')
+    await page.getByRole('heading', { name: 'Offer a version' }).waitFor()
+    expect(await seriousFindings(page)).toEqual([])
+    await page.getByLabel('To', { exact: true }).selectOption({ label: 'every agent' })
+    await press(page, 'Offer it')
+    const row = page.getByRole('row').filter({ hasText: 'every agent' })
+    await row.waitFor()
+    await press(page, 'Halt')
+    await press(page, 'Halt the offer')
+    await row.getByText('halted', { exact: true }).waitFor()
+  })
+
+  it('keeps after how long silent agents are retired, and replaces the signing key', async () => {
+    await page.getByLabel('Retire agents by themselves').selectOption({ label: 'after 7 d unheard' })
+    await press(page, 'Save')
+    await page.reload()
+    await page.getByLabel('Retire agents by themselves').waitFor()
+    expect(await page.getByLabel('Retire agents by themselves').inputValue()).toBe('168')
+    await press(page, 'Replace the key')
+    await page.getByRole('dialog').getByRole('button', { name: 'Replace the key' }).click()
+    await page
+      .getByRole('term')
+      .getByText(/^(to come|before)$/)
+      .first()
+      .waitFor()
+    expect(await seriousFindings(page)).toEqual([])
   })
 })
 
@@ -196,6 +271,7 @@ describe('a viewer', () => {
       ['/overlays/new', 'Overlays are created by operators and owners.'],
       ['/overlays/tides/nodes', 'tar-01'],
       ['/overlays/tides/joining', 'This needs the role operator.'],
+      ['/overlays/berths/upkeep', 'Agents are retired by themselves: after 7 d unheard.'],
       ['/team', VIEWER.email],
       ['/audit', 'This needs the role operator.'],
     ] as const) {
@@ -203,6 +279,13 @@ describe('a viewer', () => {
       await page.getByText(sign).first().waitFor()
       expect([path, ...(await offers(page))]).toEqual([path])
     }
+    await page.goto('/overlays/berths/nodes')
+    await page.getByRole('button', { name: 'trial-1: details' }).click()
+    await page.getByRole('dialog', { name: 'trial-1' }).getByText('walker audit').waitFor()
+    expect(await offers(page)).toEqual([])
+    // What lies under a dialog cannot be pressed.
+    await page.keyboard.press('Escape')
+    await page.getByRole('dialog').waitFor({ state: 'hidden' })
     await fleet.stop()
   })
 
@@ -219,6 +302,11 @@ describe('a viewer', () => {
       ['POST', '/overlays/berths/joining-codes', { uses: 1 }],
       ['DELETE', `/overlays/berths/joining-codes/${code}`, undefined],
       ['GET', '/overlays/berths/joining-codes', undefined],
+      ['POST', '/overlays/berths/nodes/trial-1/revocation', undefined],
+      ['DELETE', '/overlays/berths/nodes/trial-1', undefined],
+      ['POST', '/overlays/berths/upgrades', { version: '0.1.0' }],
+      ['POST', '/overlays/berths/signing-key', undefined],
+      ['PATCH', '/overlays/berths', { retireAfterHours: 1 }],
     ] as const) {
       const response = await own.send(method, path, body)
       expect([method, path, response.status, (await response.json()).code]).toEqual([
@@ -233,9 +321,11 @@ describe('a viewer', () => {
       sentOn('/overlays/berths/joining').at(0),
       sentOn('/overlays/berths/joining').at(-1),
       sentOn('/team').at(-1),
+      sentOn('/overlays/berths/nodes').at(0),
+      ...sentOn('/overlays/berths/upkeep'),
     ]
     for (const action of actions)
-      expect(await sendAs(cookie, action)).toMatch(/"status":403.*"code":"forbidden"/)
+      expect(await sendAs(server.url, cookie, action)).toMatch(/"status":403.*"code":"forbidden"/)
     expect(await everything(all)).toEqual(before)
   })
 
@@ -254,12 +344,15 @@ describe('at the end', () => {
     await page.getByRole('link', { name: 'Audit' }).first().click()
     const refused = page.getByRole('row').filter({ hasText: VIEWER.email }).filter({ hasText: 'refused' })
     await refused.first().waitFor()
-    expect(await refused.count()).toBe(7)
+    expect(await refused.count()).toBe(REFUSED)
     for (const action of [
       'set up the server',
       'created an overlay',
       'created a joining code',
       'enrolled an agent',
+      'revoked an agent',
+      'offered an upgrade',
+      'replaced the signing key',
     ])
       await page.getByRole('cell', { name: action, exact: true }).first().waitFor()
     expect(await seriousFindings(page)).toEqual([])
@@ -286,29 +379,9 @@ async function signIn(on: Page, password: string): Promise<void> {
   await press(on, 'Sign in')
 }
 
-/** Not one of those that systems hand out for outgoing connections: it must still be free some seconds later. */
-async function freePort(): Promise<number> {
-  for (;;) {
-    const port = await tryPort(randomInt(20_000, 30_000))
-    if (port !== null) return port
-  }
-}
-
 /** Actions that the owner's browser sent from a page, in order. */
 function sentOn(path: string): SentAction[] {
   return owner.actions.filter(({ url }) => new URL(url).pathname === path)
-}
-
-/** What the server answers when somebody else's browser sends the action. */
-async function sendAs(cookie: string, action: SentAction | undefined): Promise<string> {
-  if (!action) throw new Error('The action was not sent before.')
-  const { url, headers, body } = action
-  const response = await fetch(url, {
-    method: 'POST',
-    headers: { ...headers, cookie, origin: server.url },
-    body: new Uint8Array(body),
-  })
-  return response.text()
 }
 
 /** What the refused requests would have changed. */
@@ -316,5 +389,6 @@ async function everything(api: Api): Promise<object> {
   return {
     overlays: (await api.overlays()).items.map(({ slug }) => slug),
     codes: await api.joiningCodes('berths'),
+    nodes: (await api.nodes('berths')).items.map(({ name, state }) => `${name} ${state}`),
   }
 }

@@ -1,30 +1,26 @@
-import { randomBytes } from 'node:crypto'
 import { mkdtemp, readdir, readFile, rm, stat, writeFile } from 'node:fs/promises'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
-import { createClock, createPost, createWsTransport, silentLogger } from '@/agent'
-import { type CommandComponents, enrolCommand, runCommand, statusCommand } from '@/agent/command/commands'
+import { createClock, createWsTransport, type Post } from '@/agent'
+import { type CommandComponents, enrolCommand, runCommand, statusCommand } from '@/agent/command'
 import type { Options } from '@/agent/command/options'
 import { renewPass } from '@/agent/config'
 import { EXIT } from '@/agent/exit-codes'
 import { createRandom } from '@/lib/method/random'
-import { serve, TestCollector } from '../support/test-collector'
+import { commandComponents, commandOptions } from '../support/agent-command'
+import { TestCollector } from '../support/test-collector'
+import { serve } from '../support/test-collector-server'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const collector = new TestCollector({ clock, random: createRandom('collector') })
-const said: string[] = []
-const complaints: string[] = []
-const components: CommandComponents = {
-  clock,
-  random: createRandom('command'),
-  randomBytes,
-  post: createPost(),
-  logger: silentLogger,
-  say: (line) => said.push(line),
-  complain: (line) => complaints.push(line),
-  version: '0.0.0-test',
-}
+const components = commandComponents(clock)
+const { said, complaints } = components
+/** The same, but for what is sent. */
+const sending = (post: (whole: Post) => Post): CommandComponents => ({
+  ...components,
+  createPost: (init) => post(components.createPost(init)),
+})
 const never = new AbortController().signal
 let folder = ''
 let server: Awaited<ReturnType<typeof serve>>
@@ -40,17 +36,16 @@ afterAll(async () => {
   await rm(folder, { recursive: true })
 })
 
-const options = (name: string, over: Partial<Options> = {}): Options => ({
-  collector: server.url,
-  code: collector.code,
-  name,
-  listen: { host: '127.0.0.1', port: 0 },
-  address: null,
-  labels: { office: 'Tarnwick' },
-  config: join(folder, `${name}.json`),
-  neighbours: [],
-  ...over,
-})
+const options = (name: string, over: Partial<Options> = {}): Options =>
+  commandOptions({
+    collector: server.url,
+    code: collector.code,
+    name,
+    listen: { host: '127.0.0.1', port: 0 },
+    labels: { office: 'Tarnwick' },
+    config: join(folder, `${name}.json`),
+    ...over,
+  })
 
 describe('enrol', () => {
   test('writes a configuration for its owner alone, with a key and without the code', async () => {
@@ -70,9 +65,19 @@ describe('enrol', () => {
     expect(said.at(-1)).toContain('Enrolled as tar-01 in Harbourline')
   })
 
-  test('does not overwrite a key', async () => {
+  test('done already under the same name changes nothing and succeeds, without a code', async () => {
     const before = await readFile(join(folder, 'tar-01.json'), 'utf8')
-    expect(await enrolCommand(components, options('tar-01'), never)).toBe(EXIT.alreadyEnrolled)
+    expect(await enrolCommand(components, options('tar-01', { code: null }), never)).toBe(EXIT.ok)
+    expect(said.at(-1)).toContain('Enrolled already as tar-01')
+    expect(await readFile(join(folder, 'tar-01.json'), 'utf8')).toBe(before)
+  })
+
+  test.each([
+    ['under another name', { name: 'tar-02' }],
+    ['at another collector', { collector: 'https://elsewhere.harbourline.example' }],
+  ])('does not overwrite a key %s', async (_, over) => {
+    const before = await readFile(join(folder, 'tar-01.json'), 'utf8')
+    expect(await enrolCommand(components, options('tar-01', over), never)).toBe(EXIT.alreadyEnrolled)
     expect(await readFile(join(folder, 'tar-01.json'), 'utf8')).toBe(before)
   })
 
@@ -97,13 +102,10 @@ describe('enrol', () => {
   })
 
   test('whose answer is lost keeps the key, and gets the answer when it is tried again', async () => {
-    const lossy: CommandComponents = {
-      ...components,
-      post: async (url, init) => {
-        await components.post(url, init)
-        throw new Error('the line went dead')
-      },
-    }
+    const lossy = sending((post) => async (url, init) => {
+      await post(url, init)
+      throw new Error('the line went dead')
+    })
     const path = join(folder, 'eel-09.json')
     expect(await enrolCommand(lossy, options('eel-09'), never)).toBe(EXIT.unreachable)
     const { key } = collector.agents.get('agent-eel-09')!
@@ -123,7 +125,7 @@ describe('enrol', () => {
 
 describe('status', () => {
   test('says what is configured and that the collector knows this agent, without secrets', async () => {
-    expect(await statusCommand(components, options('tar-01'), never)).toBe(EXIT.ok)
+    expect(await statusCommand(components, options('tar-01', { json: true }), never)).toBe(EXIT.ok)
     const status = JSON.parse(said.at(-1)!)
     expect(status).toMatchObject({ name: 'tar-01', collector: { knowsThisAgent: true, problem: null } })
     expect(said.at(-1)).not.toMatch(/PRIVATE KEY|eyJ/)
@@ -166,14 +168,11 @@ describe('run', () => {
     const stopping = new AbortController()
     const written = JSON.parse(await readFile(path, 'utf8'))
     const edited = { ...written, neighbours: ['ws://pin-02.example:4711'], pass: 'stale', note: 'by hand' }
-    const editing: CommandComponents = {
-      ...components,
-      post: async (url, init) => {
-        if (url.pathname.endsWith('/session')) await writeFile(path, JSON.stringify(edited))
-        else stopping.abort()
-        return components.post(url, init)
-      },
-    }
+    const editing = sending((post) => async (url, init) => {
+      if (url.pathname.endsWith('/session')) await writeFile(path, JSON.stringify(edited))
+      else stopping.abort()
+      return post(url, init)
+    })
     expect(await runCommand(editing, options('gul-05'), stopping.signal)).toBe(EXIT.ok)
     const after = JSON.parse(await readFile(path, 'utf8'))
     expect(after.pass).toMatch(/^eyJ/)

@@ -289,7 +289,7 @@ describe('a report', () => {
     const orders = someOrders(5)
     await em().insert(ControlSchema, {
       overlayId: overlay.id,
-      orders,
+      ordersText: JSON.stringify(orders),
       sequence: 5,
       updatedAt: new Date(Date.now() - 90),
     })
@@ -320,13 +320,13 @@ describe('a report', () => {
     const late = await sendReport(member, of('incarnation-1', 8))
     expect(await late.json()).toMatchObject({ repeated: true })
     // As of a process that judged it before it knew of the present incarnation.
-    const row = { agentId: member.agentId, overlayId: overlay.id }
+    const row = { agentId: member.agentId, overlayId: overlay.id, relayed: false }
     await storeStates(em(), [{ ...row, report: of('incarnation-1', 9) }])
     expect(await stateOf(member)).toMatchObject({ incarnation: 'incarnation-2', reportNumber: 2 })
     await deliver(member, of('incarnation-3', 1))
     expect(await stateOf(member)).toMatchObject({
       incarnation: 'incarnation-3',
-      previousIncarnation: 'incarnation-2',
+      formerIncarnations: ['incarnation-2', 'incarnation-1'],
     })
   })
 

@@ -63,6 +63,32 @@ describe('a collector that', () => {
     })
   })
 
+  test('has a directory is asked by GET, with the token and what is known of it', async () => {
+    const asked: (string | undefined)[][] = []
+    const collector = await collectorWhere((request, response) => {
+      const { authorization, 'if-none-match': known, 'content-type': type } = request.headers
+      asked.push([request.method, request.url, authorization, known, type])
+      if (known === '"7"') response.writeHead(304, { etag: '"7"' }).end()
+      else response.writeHead(200, { etag: '"7"' }).end('{"items":[]}')
+    })
+    const first = { etag: '"7"', directory: { items: [] } }
+    expect(await collector.directory(null, 'token', never)).toEqual({ ok: true, value: first })
+    const same = { etag: '"7"', directory: null }
+    expect(await collector.directory('"7"', 'token', never)).toEqual({ ok: true, value: same })
+    expect(asked).toEqual([
+      ['GET', '/api/agent/directory', 'Bearer token', undefined, undefined],
+      ['GET', '/api/agent/directory', 'Bearer token', '"7"', undefined],
+    ])
+  })
+
+  test('says 304 unasked is no collector', async () => {
+    const collector = await answering(304, '')
+    expect(await collector.directory(null, 'token', never)).toMatchObject({
+      ok: false,
+      error: { code: 'bad-reply', status: 304 },
+    })
+  })
+
   test.each([
     ['answers with a page', 200, '<html></html>', 'not JSON'],
     ['fails without problem details', 502, '{"error": "bad gateway"}', 'an error without problem details'],

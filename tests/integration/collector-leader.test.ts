@@ -3,6 +3,7 @@ import { type Control, ControlSchema, OverlayEventSchema, ReadingSchema } from '
 import { LeaderStore } from '@/lib/collector/leader-store'
 import { systemClock } from '@/lib/collector/process'
 import { Term } from '@/lib/collector/term'
+import { Upkeep } from '@/lib/collector/upkeep'
 import { Usual } from '@/lib/collector/usual'
 import { Listener } from '@/lib/db'
 import { setRuntime } from '@/lib/http/runtime'
@@ -74,6 +75,7 @@ const termOf = (overlayId: string, store: Pick<LeaderStore, 'claim' | 'load' | '
     {
       store,
       usual: new Usual({ forkEm, clock: systemClock, log }, { overlayId }),
+      upkeep: new Upkeep({ forkEm, clock: systemClock }, { overlayId, holder: 'one' }),
       clock: systemClock,
       random: createRandom(3),
       log,
@@ -88,7 +90,7 @@ describe('a leader', () => {
     const { overlay, member } = await overlayWithAgent()
     const control = await until(overlay.id, ({ sequence }) => sequence >= 2)
     expect(first.leader.led.map(({ overlayId }) => overlayId)).toEqual([overlay.id])
-    expect(control.orders).toMatchObject({
+    expect(JSON.parse(control.ordersText!)).toMatchObject({
       sequence: control.sequence,
       linkTimePerSecond: 0,
       disclosure: 'named',

@@ -148,7 +148,8 @@ describe('a swarm of twelve through the collector', () => {
       ],
       crossingLinks: 3,
       crossingWeight: 3,
-      coverage: { joined: 12, heard: 12, unheard: 0, linksMeasured: 19, linksKnown: 19 },
+      coverage: { joined: 12, heard: 12, unheard: 0, linksMeasured: 19, linksKnown: 19, leftOut: 0 },
+      linkKind: null,
     })
     expect(reading.low!).toBeLessThan(reading.lambda2!)
     const cut = await get(cutRoute, cutSchema)

@@ -114,8 +114,19 @@ describe('a fleet over WebSocket obeys', () => {
     await until(() => number() > silencedAt)
   })
 
+  test('detour: neighbours carry the reports of one that does not reach the collector itself', async () => {
+    const eel = () => collector.agents.get('agent-eel-09')!
+    expect(await obey(fleet, 'detour eel-09')).toMatchObject({ ok: true })
+    await until(() => eel().relayed)
+    const carried = eel().last!.report.number
+    await until(() => eel().last!.report.number > carried + 2)
+    expect(fleet.member('eel-09').agent!.status()).toMatchObject({ distance: 1, away: { isAway: false } })
+    expect(await obey(fleet, 'heard eel-09')).toMatchObject({ ok: true })
+    await until(() => !eel().relayed)
+  })
+
   test.each([
-    ['fly tar-01', 'Unknown. There are: cut, join, weaken, stop, start, silence, heard, exact.'],
+    ['fly tar-01', 'Unknown. There are: cut, join, weaken, stop, start, silence, detour, heard, exact.'],
     ['cut tar-01', 'Write: cut a b'],
     ['stop nobody', 'There is no node "nobody".'],
     ['weaken tar-01 gul-04 2', 'A weight lies between 0 and 1.'],

@@ -1,9 +1,9 @@
 import { randomBytes } from 'node:crypto'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
-import { CLOSE, type CloseName, encodeFrame, MAX_HANDSHAKE_BYTES } from '@/lib/protocol'
+import { CLOSE, type CloseName, encodeFrame, encodeHello, MAX_HANDSHAKE_BYTES } from '@/lib/protocol'
 import { someFrame, someOrders } from '../support/frames'
 import { LinkEnd, realClock } from '../support/link-end'
-import { NOW_SECONDS, testOverlay } from '../support/passes'
+import { freshNonce, type Identity, NOW_SECONDS, testOverlay } from '../support/passes'
 import { Stranger } from '../support/stranger'
 
 const HANDSHAKE_TIMEOUT_MS = 300
@@ -77,10 +77,18 @@ const attacks: Record<string, { close: CloseName; attack: (stranger: Stranger) =
     attack: (stranger) => stranger.greet(eel, { versions: [77] }),
   },
   'a conversation heard before': {
-    close: 'proof-wrong',
+    close: 'replayed',
     attack: async (stranger) => {
       const spoken = await heardConversation()
       for (const bytes of spoken) stranger.send(bytes)
+    },
+  },
+  'a fresh hello with the proof of a conversation heard before': {
+    close: 'proof-wrong',
+    attack: async (stranger) => {
+      const [, proof = new Uint8Array()] = await heardConversation()
+      stranger.send(helloOf(eel))
+      stranger.send(proof)
     },
   },
   'noise after a good handshake': {
@@ -113,6 +121,11 @@ async function asEel(
     const frame = someFrame({ number: index + 1, colonies: [{ ...colony, sentX: 0, receivedX: 0, ...part }] })
     stranger.send(encodeFrame(frame))
   }
+}
+
+function helloOf({ keys, pass }: Identity): Uint8Array {
+  const incarnation = 'incarnation-eel-09'
+  return encodeHello({ versions: [2, 1], key: keys.publicKey, pass, incarnation, nonce: freshNonce() })
 }
 
 async function heardConversation(): Promise<Uint8Array[]> {

@@ -1,8 +1,9 @@
 import fc from 'fast-check'
 import { describe, expect, test } from 'vitest'
+import type { Frame } from '@/lib/method/frame'
 import { createRandom } from '@/lib/method/random'
 import { decodeFrame, encodeFrame } from '@/lib/protocol'
-import { anyFrame, someFrame, someOrders } from '../support/frames'
+import { anyFrame, anyFrameOfVersion1, someFrame, someOrders, someProof } from '../support/frames'
 
 describe('any frame', () => {
   test('comes back as it was', () => {
@@ -14,12 +15,26 @@ describe('any frame', () => {
     )
   })
 
+  test('of version 1 comes back as it was, to a version 1 link as to one that takes either', () => {
+    fc.assert(
+      fc.property(anyFrameOfVersion1, (frame) => {
+        expect(decodeFrame(encodeFrame(frame, 1), { version: 1 })).toEqual({ ok: true, frame })
+        expect(decodeFrame(encodeFrame(frame, 1))).toEqual({ ok: true, frame })
+      }),
+      { numRuns: 200 },
+    )
+  })
+
   test('cut short anywhere is refused, or is a whole frame without its optional parts', () => {
     fc.assert(
       fc.property(anyFrame, fc.nat(), (frame, cut) => {
         const bytes = encodeFrame(frame)
         const result = decodeFrame(bytes.subarray(0, cut % bytes.length))
-        if (result.ok) expect(result.frame).toEqual({ ...frame, orders: null })
+        if (!result.ok) return
+        const { orders, statement, ...rest } = result.frame
+        expect(rest).toEqual(frameWithoutParts(frame))
+        expect(statement).toBeNull()
+        if (orders) expect(orders).toEqual(frame.orders)
       }),
       { numRuns: 300 },
     )
@@ -30,8 +45,9 @@ test('20,000 random and mutated frames are decoded or refused, never thrown at',
   const random = createRandom('frame fuzz')
   const seeds = [
     encodeFrame(someFrame()),
-    encodeFrame(someFrame({ orders: { orders: someOrders(), ageMs: 12 } })),
-    ...fc.sample(anyFrame, { numRuns: 50, seed: 4 }).map(encodeFrame),
+    encodeFrame(someFrame({ orders: { orders: someOrders(), ageMs: 12, proof: someProof(someOrders()) } })),
+    ...fc.sample(anyFrame, { numRuns: 50, seed: 4 }).map((frame) => encodeFrame(frame)),
+    ...fc.sample(anyFrameOfVersion1, { numRuns: 20, seed: 4 }).map((frame) => encodeFrame(frame, 1)),
   ]
   let accepted = 0
   let refused = 0
@@ -53,6 +69,10 @@ test('20,000 random and mutated frames are decoded or refused, never thrown at',
   expect(refused).toBeGreaterThan(10_000)
 })
 
+function frameWithoutParts({ orders: _, statement: __, ...frame }: Frame) {
+  return frame
+}
+
 function mutated(random: ReturnType<typeof createRandom>, seeds: readonly Uint8Array[]): Uint8Array {
   const seed = seeds[Math.floor(random.uniform() * seeds.length)]!
   const bytes = Uint8Array.from(seed)
@@ -68,6 +88,6 @@ function noise(random: ReturnType<typeof createRandom>): Uint8Array {
   const bytes = new Uint8Array(Math.floor(random.uniform() * 200))
   for (let at = 0; at < bytes.length; at++) bytes[at] = random.uint32() & 0xff
   // Half of them get past the first two bytes.
-  if (random.uniform() < 0.5) bytes.set([3, 1].slice(0, bytes.length))
+  if (random.uniform() < 0.5) bytes.set([3, 2].slice(0, bytes.length))
   return bytes
 }

@@ -47,6 +47,7 @@ class Life {
         node: this.node,
         keys: identity.keys,
         passes: { own: () => identity.pass, judge: overlay.judge, hasExpired: () => false },
+        trust: overlay.signer.trust,
         nonce: freshNonce,
       },
       {
@@ -71,8 +72,8 @@ class Life {
   die(): void {
     this.isDead = true
     Reflect.set(this.links, 'running', false)
-    const dialers: Map<unknown, { stop(): void }> = Reflect.get(this.links, 'dialers')
-    for (const dialer of dialers.values()) dialer.stop()
+    const dials: { stop(): void } = Reflect.get(this.links, 'dials')
+    dials.stop()
   }
 
   /** What the colony of a slot has been through, on its present seeding. */
@@ -129,6 +130,7 @@ export class AuditedOverlay {
   readonly network: MemoryNetwork
   readonly random: Random
   readonly refusals: string[] = []
+  readonly signer: TestOverlay
   linksUp = 0
   readonly judge: (token: string) => ReturnType<typeof verifyPass>
   private readonly lives: Life[] = []
@@ -143,6 +145,7 @@ export class AuditedOverlay {
   constructor(identities: readonly Identity[], overlay: TestOverlay, seed: number) {
     let judging = 0
     this.identities = identities
+    this.signer = overlay
     this.random = createRandom(seed)
     this.clock = new FakeClock({
       epochMs: NOW_SECONDS * 1000,
@@ -216,6 +219,11 @@ export class AuditedOverlay {
     this.lives[from]!.links.removeNeighbour(this.identities[to]!.agentId)
   }
 
+  /** The node's own view of its link, at one end. */
+  setQuality(from: number, to: number, quality: number): void {
+    this.lives[from]!.links.setQuality(this.identities[to]!.agentId, quality)
+  }
+
   cutSockets(a: number, b: number): void {
     const [first, second] = [this.identities[a]!.agentId, this.identities[b]!.agentId]
     this.network.cut((from, to) => from.startsWith(`${first}#`) && to.startsWith(`${second}#`))
@@ -240,8 +248,9 @@ export class AuditedOverlay {
   order(change: (orders: Orders, sequence: number) => Orders, hears: (index: number) => boolean): void {
     this.sequence += 1
     this.orders = change(this.orders ?? firstOrders(), this.sequence)
+    const proof = this.signer.sign(this.orders)
     for (const [index, life] of this.lives.entries()) {
-      if (hears(index)) life.node.adopt(this.orders, 0, this.clock.monotonicMs())
+      if (hears(index)) life.node.adopt(this.orders, 0, this.clock.monotonicMs(), proof)
     }
   }
 

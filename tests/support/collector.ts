@@ -4,9 +4,9 @@ import { POST as reportRoute } from '@/app/api/agent/report/route'
 import { POST as sessionRoute } from '@/app/api/agent/session/route'
 import { JoiningCodeSchema, type Overlay, OverlaySchema } from '@/entities'
 import { hashJoiningCode, newJoiningCode } from '@/lib/auth/secrets'
+import type { Incoming } from '@/lib/collector/ingest-entry'
 import { newSigningKey } from '@/lib/data/overlays'
 import type { RouteHandler } from '@/lib/http/route'
-import type { Report } from '@/lib/method/report'
 import {
   enrolReplySchema,
   enrolText,
@@ -75,6 +75,42 @@ export function call(
   )
 }
 
+/** Any method, as a caller with a bearer token. */
+export function ask(
+  handler: RouteHandler,
+  method: string,
+  init: {
+    bearer?: string
+    params?: Record<string, string>
+    body?: unknown
+    query?: string
+    headers?: object
+  } = {},
+): Promise<Response> {
+  const { bearer, params = {}, body, query = '', headers = {} } = init
+  return handler(
+    new Request(`http://thinspan.test/api/${query}`, {
+      method,
+      headers: {
+        ...(bearer === undefined ? {} : { authorization: `Bearer ${bearer}` }),
+        ...(body === undefined ? {} : { 'content-type': 'application/json' }),
+        ...headers,
+      },
+      ...(body === undefined ? {} : { body: typeof body === 'string' ? body : JSON.stringify(body) }),
+    }),
+    { params: Promise.resolve(params) },
+  )
+}
+
+/** Status and code of a problem, or status alone. */
+export async function problemOf(response: Response): Promise<[number, string | undefined]> {
+  const body: { code?: string } = await response
+    .clone()
+    .json()
+    .catch(() => ({}))
+  return [response.status, body.code]
+}
+
 export const enrolBody = (code: string, name: string, keys: KeyPair, over: object = {}) => ({
   code,
   name,
@@ -104,11 +140,12 @@ export async function joinAgent(
   code: string,
   name: string,
   labels: Record<string, string> = {},
+  over: { node?: string; host?: string; address?: string } = {},
 ): Promise<Member> {
   const keys = generateKeys()
-  const enrolled = await call(enrolRoute, enrolBody(code, name, keys, { labels }))
+  const enrolled = await call(enrolRoute, enrolBody(code, name, keys, { labels, ...over }))
   const { agentId } = enrolReplySchema.parse(await enrolled.json())
-  const opened = await call(sessionRoute, sessionBody(agentId, keys))
+  const opened = await call(sessionRoute, sessionBody(agentId, keys, new Date(), over))
   const { token } = sessionReplySchema.parse(await opened.json())
   return { agentId, name, keys, token }
 }
@@ -117,7 +154,7 @@ export function sendReport(member: Pick<Member, 'token'>, report: unknown): Prom
   return call(reportRoute, report, { authorization: `Bearer ${member.token}` })
 }
 
-export async function deliver(member: Pick<Member, 'token'>, report: Report): Promise<ReportReply> {
+export async function deliver(member: Pick<Member, 'token'>, report: Incoming): Promise<ReportReply> {
   const response = await sendReport(member, report)
   return reportReplySchema.parse(await response.json())
 }

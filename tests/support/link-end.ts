@@ -6,6 +6,7 @@ import {
   silentLogger,
   type Transport,
 } from '@/agent'
+import type { LinkManagerInit } from '@/agent/link/link-contract'
 import { LinkManager } from '@/agent/link/link-manager'
 import { WalkNode } from '@/lib/method/node'
 import { createRandom } from '@/lib/method/random'
@@ -17,23 +18,48 @@ export const realClock = createClock({
   epochMs: () => NOW_SECONDS * 1000,
 })
 
+const TICK_MS = 10
+
+export interface LinkEndInit
+  extends Partial<
+    Pick<
+      LinkManagerInit,
+      | 'handshakeTimeoutMs'
+      | 'maxUnproven'
+      | 'maxUnprovenPerAddress'
+      | 'maxLinks'
+      | 'acceptUnknown'
+      | 'versions'
+      | 'onOrders'
+      | 'onRelay'
+    >
+  > {
+  /** Tells the starts of one agent apart. */
+  life?: number
+  transport?: Transport
+  host?: string
+}
+
 /** Walkers and links of one agent on real time and real sockets, without a collector. */
 export class LinkEnd {
   readonly node: WalkNode
   readonly links: LinkManager
   readonly events: LinkEvent[] = []
+  /** What its clock says, seconds since 1970: passes are judged by it. */
+  nowSeconds = NOW_SECONDS
+  pass: string
   private readonly transport: Transport
-  private listening: Listening | null = null
+  private readonly host: string
+  private readonly doors: Listening[] = []
   private timer: NodeJS.Timeout | null = null
   private wake: () => void = () => {}
 
-  constructor(
-    overlay: TestOverlay,
-    identity: Identity,
-    init: { handshakeTimeoutMs?: number; maxUnproven?: number; acceptUnknown?: boolean; life?: number } = {},
-  ) {
+  constructor(overlay: TestOverlay, identity: Identity, init: LinkEndInit = {}) {
     const random = createRandom(identity.agentId)
-    this.transport = createWsTransport({ clock: realClock })
+    const now = () => new Date(this.nowSeconds * 1000)
+    this.pass = identity.pass
+    this.host = init.host ?? '127.0.0.1'
+    this.transport = init.transport ?? createWsTransport({ clock: realClock })
     const incarnation = `incarnation-${identity.agentId}-${init.life ?? 0}`
     this.node = new WalkNode({ random }, { agentId: identity.agentId, incarnation })
     this.links = new LinkManager(
@@ -45,19 +71,18 @@ export class LinkEnd {
         node: this.node,
         keys: identity.keys,
         passes: {
-          own: () => identity.pass,
-          judge: (token) =>
-            verifyPass(token, overlay.keys.publicKey, overlay.id, new Date(NOW_SECONDS * 1000)),
-          hasExpired: () => false,
+          own: () => this.pass,
+          judge: (token) => verifyPass(token, overlay.keys.publicKey, overlay.id, now()),
+          hasExpired: (seconds) => this.nowSeconds > seconds,
         },
+        trust: overlay.trust,
         nonce: freshNonce,
       },
       {
+        ...init,
         acceptUnknown: init.acceptUnknown ?? true,
         backoff: { baseMs: 10, capMs: 50 },
-        tickMs: () => 10,
-        handshakeTimeoutMs: init.handshakeTimeoutMs,
-        maxUnproven: init.maxUnproven,
+        tickMs: () => TICK_MS,
         onEvent: (event) => {
           this.events.push(event)
           this.wake()
@@ -66,15 +91,27 @@ export class LinkEnd {
     )
   }
 
-  async start(port = 0): Promise<string> {
-    this.listening = await this.transport.listen({ host: '127.0.0.1', port }, (connection) =>
-      this.links.accept(connection),
-    )
+  /** Ticks without a door: an agent that only dials. */
+  startDialOnly(): void {
     this.timer = setInterval(() => {
       this.links.deliver(this.node.tick(realClock.monotonicMs(), (peer) => this.links.isCarried(peer)))
       this.wake()
-    }, 10)
-    return this.listening.address
+    }, TICK_MS)
+  }
+
+  async start(port = 0): Promise<string> {
+    const address = await this.open(port)
+    this.startDialOnly()
+    return address
+  }
+
+  /** Opens one more door. @returns its address */
+  async open(port = 0): Promise<string> {
+    const listening = await this.transport.listen({ host: this.host, port }, (connection) =>
+      this.links.accept(connection),
+    )
+    this.doors.push(listening)
+    return listening.address
   }
 
   /** Looks after every tick and link event. */
@@ -93,6 +130,6 @@ export class LinkEnd {
   async stop(): Promise<void> {
     if (this.timer) clearInterval(this.timer)
     this.links.stop()
-    await this.listening?.close()
+    for (const door of this.doors.splice(0)) await door.close()
   }
 }

@@ -2,7 +2,7 @@ import { randomBytes } from 'node:crypto'
 import { MemoryNetwork, silentLogger } from '@/agent'
 import { createRandom, type Random } from '@/lib/method/random'
 import { parseEdgeList } from '@/lib/topology'
-import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
+import { createFleet, type Fleet, type FleetInit } from '@/scripts/fleet/fleet'
 import { FakeClock } from './fake-clock'
 import { TestCollector, type TestCollectorInit } from './test-collector'
 
@@ -11,6 +11,10 @@ export interface Swarm {
   collector: TestCollector
   fleet: Fleet
   network: MemoryNetwork
+  /** Sets an agent's wall clock forward, or back. */
+  stepWall(name: string, ms: number): void
+  /** An agent's program stands still: its timers fire late and what arrives waits. */
+  stall(name: string, ms: number): void
   stop(): Promise<void>
 }
 
@@ -20,6 +24,7 @@ export interface SwarmInit extends TestCollectorInit {
   seed: string
   /** How wrong an agent's clock is. */
   offsetMs?: (name: string, random: Random) => number
+  fleet?: Pick<FleetInit, 'spoolOf' | 'onUpgradeOffer' | 'onEnded'>
 }
 
 /** A fleet on a fake clock over memory, with a collector in the same process. */
@@ -29,17 +34,31 @@ export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
   const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12) })
   const random = createRandom(init.seed)
   const collector = new TestCollector({ clock, random: createRandom(`${init.seed} collector`) }, init)
-  const network = new MemoryNetwork({ clock }, { weather: () => [0.5 + 2 * random.uniform()] })
+  const stalledUntilMs = new Map<string, number>()
+  const stillMs = (name: string) => Math.max(0, (stalledUntilMs.get(name) ?? 0) - clock.monotonicMs())
+  const stepsMs = new Map<string, number>()
+  const network = new MemoryNetwork(
+    { clock },
+    { weather: ({ to }) => [stillMs(to) + 0.5 + 2 * random.uniform()] },
+  )
   const fleet = createFleet(
     {
       transport: network.transport('fleet'),
+      transportOf: (name) => network.transport(name),
       collector,
       clockOf: (name, own) => {
         const offsetMs = init.offsetMs?.(name, own) ?? 0
         return {
           monotonicMs: () => clock.monotonicMs(),
-          epochMs: () => clock.epochMs() + offsetMs,
-          after: (ms, run) => clock.after(ms, run),
+          epochMs: () => clock.epochMs() + offsetMs + (stepsMs.get(name) ?? 0),
+          after: (ms, run) => {
+            let cancel = clock.after(ms, function fire() {
+              const lateMs = stillMs(name)
+              if (lateMs > 0) cancel = clock.after(lateMs, fire)
+              else run()
+            })
+            return () => cancel()
+          },
         }
       },
       clock,
@@ -47,7 +66,7 @@ export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
       randomBytes,
       logger: silentLogger,
     },
-    { topology: topology.graph, code: collector.code },
+    { topology: topology.graph, code: collector.code, ...init.fleet },
   )
   collector.start()
   return {
@@ -55,6 +74,8 @@ export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
     collector,
     fleet,
     network,
+    stepWall: (name, ms) => void stepsMs.set(name, (stepsMs.get(name) ?? 0) + ms),
+    stall: (name, ms) => void stalledUntilMs.set(name, clock.monotonicMs() + ms),
     stop: async () => {
       collector.stop()
       await during(clock, fleet.stop())

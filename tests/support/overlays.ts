@@ -19,6 +19,7 @@ export function simulateOn(
       nodes: graph.nodes,
       links: edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight })),
       settings: STEADY,
+      audits: false,
       ...init,
     },
   )

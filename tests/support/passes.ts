@@ -1,5 +1,8 @@
 import { randomBytes } from 'node:crypto'
-import { generateKeys, type KeyPair, signPass } from '@/lib/protocol'
+import type { LinkTrust } from '@/agent/link/link-contract'
+import type { OrdersProof } from '@/lib/method/frame'
+import type { Orders } from '@/lib/method/orders'
+import { generateKeys, type KeyPair, signOrders, signPass, verifyOrders, verifyReceipt } from '@/lib/protocol'
 
 export const NOW_SECONDS = Date.UTC(2031, 4, 6, 12) / 1000
 export const OVERLAY_ID = 'overlay-harbourline'
@@ -13,6 +16,9 @@ export interface Identity {
 export interface TestOverlay {
   id: string
   keys: KeyPair
+  /** What its agents trust. */
+  trust: LinkTrust
+  sign(orders: Orders): OrdersProof
   identity(agentId: string, over?: { keys?: KeyPair; expiresAt?: number }): Promise<Identity>
 }
 
@@ -22,6 +28,11 @@ export function testOverlay(id = OVERLAY_ID, nowSeconds = NOW_SECONDS): TestOver
   return {
     id,
     keys,
+    trust: {
+      judgeOrders: (proof) => verifyOrders(id, proof, [keys.publicKey]),
+      judgeStatement: (statement) => verifyReceipt(id, statement, [keys.publicKey]),
+    },
+    sign: (orders) => signOrders(id, JSON.stringify(orders), keys),
     async identity(agentId, over = {}) {
       const own = over.keys ?? generateKeys()
       const pass = await signPass(keys.privateKey, {

@@ -1,4 +1,4 @@
-import type { ColonyCounters, Report } from '@/lib/method/report'
+import type { AgentHealth, ColonyCounters, Report } from '@/lib/method/report'
 
 /** A report of one colony whose counters grow with its number. */
 export function someReport(
@@ -43,4 +43,31 @@ export function someReport(
       uptimeSeconds: number,
     },
   }
+}
+
+/** How an agent says it fares, since version 2. */
+export function someHealth(over: Partial<AgentHealth> = {}): AgentHealth {
+  return {
+    clockSkewMs: -3,
+    reportTookMs: 12,
+    reportsFailed: 0,
+    ticks: 200,
+    ticksLate: 10,
+    lastError: null,
+    linkKind: 'path',
+    withoutAgent: 0,
+    source: null,
+    weakestWeight: 0.8,
+    meanWeight: 0.9,
+    keyRing: 1,
+    refused: 0,
+    upgrade: null,
+    ...over,
+  }
+}
+
+/** As `someReport`, with health. */
+export function healthyReport(number: number, over: Partial<AgentHealth> = {}): Report {
+  const report = someReport(number)
+  return { ...report, node: { ...report.node, health: someHealth(over) } }
 }

@@ -1,5 +1,8 @@
 import { describe, expect, test } from 'vitest'
-import { readListen, readOptions } from '@/agent/command/options'
+import { COMMANDS, FLAG_NAMES } from '@/agent/command/flags'
+import { HELP } from '@/agent/command/help'
+import { type OptionsComponents, readOptions } from '@/agent/command/options'
+import { readListen } from '@/agent/command/values'
 
 const nothing = {
   collector: null,
@@ -10,7 +13,32 @@ const nothing = {
   labels: {},
   config: 'thinspan-agent.json',
   neighbours: [],
+  node: null,
+  source: null,
+  agentsAt: null,
+  listenMetrics: null,
+  spool: null,
+  tls: null,
+  upgrades: null,
+  enrolIfNeeded: false,
+  json: false,
+  yes: false,
+  reason: '',
 }
+
+const files: Record<string, string> = {
+  '/etc/thinspan/code': 'tsj_from-a-file\n',
+  '/etc/thinspan/labels': '# of this rack\noffice = Tarnwick\n\nrack=3\n',
+}
+const machine = (env: Record<string, string> = {}): OptionsComponents => ({
+  env,
+  hostname: () => 'tar-01.harbourline.example',
+  readFile: (path) => {
+    const text = files[path]
+    if (text === undefined) throw new Error(`no file ${path}`)
+    return text
+  },
+})
 
 describe('the agent’s command line', () => {
   test('all flags of enrol', () => {
@@ -41,10 +69,11 @@ describe('the agent’s command line', () => {
         '/etc/thinspan/agent.json',
       ],
     ]
-    expect(readOptions(args, {})).toEqual({
+    expect(readOptions(args, machine())).toEqual({
       ok: true,
       command: 'enrol',
       options: {
+        ...nothing,
         collector: 'https://thinspan.harbourline.example',
         code: 'abc',
         name: 'tar-01',
@@ -64,7 +93,7 @@ describe('the agent’s command line', () => {
       THINSPAN_LABELS: 'office=Eelholm,rack=3',
       THINSPAN_LISTEN: ':4711',
     }
-    expect(readOptions(['run', '--config', 'flag.json'], env)).toEqual({
+    expect(readOptions(['run', '--config', 'flag.json'], machine(env))).toEqual({
       ok: true,
       command: 'run',
       options: {
@@ -88,15 +117,77 @@ describe('the agent’s command line', () => {
       ['run', '--neighbour', 'http://x.example'],
       /--neighbour: Give a ws/,
     ],
+    ['an option of a variable that is neither', ['run'], /THINSPAN_UPGRADES is yes or no, not "perhaps"/],
+    ['a source of no kind', ['run', '--neighbours-from', 'gossip:x'], /is no source/],
+    [
+      'a path that leads nowhere',
+      ['run', '--neighbours-from', 'file:/x', '--neighbours-at', 'a..b'],
+      /cannot be followed/,
+    ],
+    ['a rule that gives no address', ['run', '--agents-at', 'http://{host}'], /--agents-at: .* is no rule/],
+    ['a certificate without its key', ['run', '--cert', 'cert.pem'], /--cert and --key go together/],
+    ['a file that is not there', ['enrol', '--code-file', '/nowhere'], /--code-file: no file/],
     ['a port that is none', ['run', '--listen', '127.0.0.1:70000'], /host:port/],
   ]
   test.each(wrong)('%s is named', (_, args, issue) => {
-    expect(readOptions(args, {})).toEqual({ ok: false, issue: expect.stringMatching(issue) })
+    const env: Record<string, string> = String(issue).includes('perhaps')
+      ? { THINSPAN_UPGRADES: 'perhaps' }
+      : {}
+    expect(readOptions(args, machine(env))).toEqual({ ok: false, issue: expect.stringMatching(issue) })
+  })
+
+  test('everything of an unattended enrolment comes from variables, files and the host', () => {
+    const env = {
+      THINSPAN_COLLECTOR: 'https://thinspan.harbourline.example',
+      THINSPAN_CODE_FILE: '/etc/thinspan/code',
+      THINSPAN_LABELS_FILE: '/etc/thinspan/labels',
+      THINSPAN_LABELS: 'rack=4',
+      THINSPAN_NODE: 'tar-01:4000',
+      THINSPAN_NEIGHBOURS_FROM: 'http://127.0.0.1:8080/peers',
+      THINSPAN_NEIGHBOURS_AT: 'peers[].address',
+      THINSPAN_NEIGHBOURS_EVERY: '10',
+      THINSPAN_AGENTS_AT: 'directory',
+      THINSPAN_METRICS: '9200',
+      THINSPAN_SPOOL: '/var/lib/thinspan/spool',
+      THINSPAN_CA: '/etc/thinspan/ca.pem',
+      THINSPAN_UPGRADES: 'yes',
+      THINSPAN_ENROL_IF_NEEDED: 'yes',
+      // As unit files and containers do with what is not set.
+      THINSPAN_ADDRESS: '',
+    }
+    expect(readOptions(['run'], machine(env))).toEqual({
+      ok: true,
+      command: 'run',
+      options: {
+        ...nothing,
+        collector: 'https://thinspan.harbourline.example',
+        code: 'tsj_from-a-file',
+        name: 'tar-01.harbourline.example',
+        labels: { office: 'Tarnwick', rack: '4' },
+        node: 'tar-01:4000',
+        source: { kind: 'http', url: 'http://127.0.0.1:8080/peers', at: 'peers[].address', everySeconds: 10 },
+        agentsAt: 'directory',
+        listenMetrics: { host: '127.0.0.1', port: 9200, anywhere: false },
+        spool: '/var/lib/thinspan/spool',
+        tls: { ca: '/etc/thinspan/ca.pem', cert: null, key: null },
+        upgrades: true,
+        enrolIfNeeded: true,
+      },
+    })
+  })
+
+  test('a joining code’s file is not read by commands that do not enrol', () => {
+    const read = readOptions(['status'], machine({ THINSPAN_CODE_FILE: '/gone/since' }))
+    expect(read).toMatchObject({ ok: true, options: { code: null, name: null } })
+  })
+
+  test('the help names every flag and command', () => {
+    for (const word of [...COMMANDS, ...FLAG_NAMES]) expect(HELP).toContain(word)
   })
 
   test('no command and --help show the help', () => {
-    expect(readOptions([], {})).toEqual({ ok: true, command: 'help' })
-    expect(readOptions(['run', '--help'], {})).toEqual({ ok: true, command: 'help' })
+    expect(readOptions([], machine())).toEqual({ ok: true, command: 'help' })
+    expect(readOptions(['run', '--help'], machine())).toEqual({ ok: true, command: 'help' })
   })
 
   test.each([
@@ -104,6 +195,6 @@ describe('the agent’s command line', () => {
     ['[::1]:4711', { host: '::1', port: 4711 }],
     ['node.example:1', { host: 'node.example', port: 1 }],
   ])('listens at %s', (text, listen) => {
-    expect(readListen(text)).toEqual({ ok: true, listen })
+    expect(readListen('--listen', text)).toEqual(listen)
   })
 })

@@ -1,6 +1,6 @@
 import { describe, expect, test } from 'vitest'
 import { decodeFrame, encodeFrame, MAX_FRAME_BYTES } from '@/lib/protocol'
-import { someFrame, someOrders } from '../support/frames'
+import { someFrame, someOrders, someProof, someStatement, withoutLaterFields } from '../support/frames'
 
 const colonyAt = (colony: number, sent: number) => ({
   colony,
@@ -16,6 +16,12 @@ const colonyAt = (colony: number, sent: number) => ({
 test('nine colonies that have exchanged 100,000 walkers a link take under 200 bytes', () => {
   const colonies = [0, 1, 2, 3, 4, 5, 6, 7, 8].map((colony) => colonyAt(colony, 100_000))
   expect(encodeFrame(someFrame({ number: 900_000, heardNumber: 899_990, colonies })).length).toBeLessThan(200)
+})
+
+test('an ordinary frame of five colonies takes at most 115 bytes after an hour', () => {
+  const colonies = [0, 1, 2, 3, 4].map((colony) => colonyAt(colony, 4_000 * (colony + 1)))
+  const frame = someFrame({ number: 3_600_000, heardNumber: 3_599_800, heardFrames: 18_000, colonies })
+  expect(encodeFrame({ ...frame, weight: 1, ordersSequence: 300_000 }).length).toBeLessThanOrEqual(115)
 })
 
 test('z̄ is kept to half a step of 1/1024', () => {
@@ -50,7 +56,7 @@ describe('what a program may not say', () => {
 })
 
 describe('what a peer may not say', () => {
-  const good = encodeFrame(someFrame())
+  const good = encodeFrame(someFrame(), 1)
   const withBytes = (change: (bytes: number[]) => void) => {
     const bytes = [...good]
     change(bytes)
@@ -60,7 +66,7 @@ describe('what a peer may not say', () => {
   const cases: Record<string, [Uint8Array, object]> = {
     'nothing at all': [new Uint8Array(), { code: 'not-a-frame', kind: null }],
     'another kind of message': [withBytes((b) => b.splice(0, 1, 9)), { code: 'not-a-frame', kind: 9 }],
-    'a later version': [withBytes((b) => b.splice(1, 1, 2)), { code: 'unsupported-version', version: 2 }],
+    'a later version': [withBytes((b) => b.splice(1, 1, 3)), { code: 'unsupported-version', version: 3 }],
     'frame number 0': [
       withBytes((b) => b.splice(3, 2, 0)),
       { code: 'out-of-range', field: 'number', value: 0 },
@@ -107,13 +113,23 @@ describe('what a peer may not say', () => {
   })
 
   test('orders whose sequence is not the one the frame follows', () => {
-    const bytes = encodeFrame(someFrame({ ordersSequence: 8, orders: { orders: someOrders(7), ageMs: 0 } }))
-    expect(decodeFrame(bytes)).toMatchObject({ ok: false, error: { code: 'bad-orders' } })
+    const orders = { orders: someOrders(7), ageMs: 0, proof: someProof(someOrders(7)) }
+    for (const version of [1, 2]) {
+      const bytes = encodeFrame(someFrame({ ordersSequence: 8, orders }), version)
+      expect(decodeFrame(bytes)).toMatchObject({ ok: false, error: { code: 'bad-orders' } })
+    }
   })
 
   test('orders with a rate that no number can be', () => {
     const orders = someOrders(7, { linkTimePerSecond: Number.POSITIVE_INFINITY })
-    expect(decodeFrame(encodeFrame(someFrame({ orders: { orders, ageMs: 0 } })))).toMatchObject({
+    const passed = { orders, ageMs: 0, proof: someProof(orders) }
+    expect(decodeFrame(encodeFrame(someFrame({ orders: passed }), 1))).toMatchObject({
+      ok: false,
+      error: { code: 'bad-orders', issue: expect.stringContaining('linkTimePerSecond') },
+    })
+    const text = JSON.stringify(someOrders(7)).replace('"linkTimePerSecond":2.5', '"linkTimePerSecond":1e999')
+    const signed = { ...passed, proof: { ...passed.proof, text } }
+    expect(decodeFrame(encodeFrame(someFrame({ orders: signed })))).toMatchObject({
       ok: false,
       error: { code: 'bad-orders', issue: expect.stringContaining('linkTimePerSecond') },
     })
@@ -126,8 +142,44 @@ describe('what later versions may add', () => {
     expect(decodeFrame(bytes)).toEqual({ ok: true, frame: someFrame() })
   })
 
+  test('a link of version 1 hears a frame without what came later, signatures included', () => {
+    const orders = { orders: someOrders(7), ageMs: 5, proof: someProof(someOrders(7)) }
+    const frame = someFrame({ orders, statement: someStatement() })
+    expect(decodeFrame(encodeFrame(frame, 1))).toEqual({
+      ok: true,
+      frame: { ...withoutLaterFields(frame), orders: { orders: someOrders(7), ageMs: 5 } },
+    })
+  })
+
+  test('orders without a signature are not said on a link of version 2', () => {
+    const frame = someFrame({ orders: { orders: someOrders(7), ageMs: 5 } })
+    expect(decodeFrame(encodeFrame(frame))).toEqual({ ok: true, frame: { ...frame, orders: null } })
+  })
+
+  test('a frame of another version than the link agreed on is refused', () => {
+    for (const [said, agreed] of [
+      [1, 2],
+      [2, 1],
+    ] as const) {
+      expect(decodeFrame(encodeFrame(someFrame(), said), { version: agreed })).toEqual({
+        ok: false,
+        error: { code: 'unsupported-version', version: said },
+      })
+    }
+  })
+
+  test('a statement given twice, or that is none, is refused', () => {
+    const bytes = encodeFrame(someFrame({ statement: someStatement() }))
+    const part = bytes.subarray(encodeFrame(someFrame()).length)
+    const refused = { ok: false, error: { code: 'bad-statement' } }
+    expect(decodeFrame(Buffer.concat([bytes, part]))).toMatchObject(refused)
+    const blank = Uint8Array.from(bytes)
+    blank[Buffer.from(bytes).indexOf('tar-01')] = 0x20
+    expect(decodeFrame(blank)).toMatchObject(refused)
+  })
+
   test('further fields of a colony are skipped', () => {
-    const bytes = [...encodeFrame(someFrame())]
+    const bytes = [...encodeFrame(someFrame(), 1)]
     bytes.splice(11, 1, 1, 9, 4, 0, 1, 2, 3, 4, 6, 55, 66)
     expect(decodeFrame(Uint8Array.from(bytes))).toMatchObject({
       ok: true,
@@ -139,7 +191,8 @@ describe('what later versions may add', () => {
 })
 
 test('orders that are held already are not read again', () => {
-  const bytes = encodeFrame(someFrame({ orders: { orders: someOrders(7), ageMs: 5 } }))
+  const orders = { orders: someOrders(7), ageMs: 5, proof: someProof(someOrders(7)) }
+  const bytes = encodeFrame(someFrame({ orders }))
   expect(decodeFrame(bytes, { heldOrdersSequence: 7 })).toEqual({ ok: true, frame: someFrame() })
   expect(decodeFrame(bytes, { heldOrdersSequence: 6 })).toMatchObject({ frame: { orders: { ageMs: 5 } } })
 })

@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest'
 import {
+  decodeHello,
   encodeHello,
   encodeProof,
   Handshake,
@@ -8,6 +9,7 @@ import {
   type LinkRole,
   linkStatement,
   MESSAGE_KIND,
+  ProvenNonces,
   signBytes,
   verifyPass,
 } from '@/lib/protocol'
@@ -22,8 +24,15 @@ class End {
   outcome: Exclude<HandshakeEffect, { kind: 'send' | 'judge-pass' }> | null = null
   readonly handshake: Handshake
   readonly init: HandshakeInit
+  readonly nonces: ProvenNonces
 
-  constructor(role: LinkRole, identity: Identity, over: Partial<HandshakeInit> = {}) {
+  constructor(
+    role: LinkRole,
+    identity: Identity,
+    over: Partial<HandshakeInit> = {},
+    nonces = new ProvenNonces(),
+  ) {
+    this.nonces = nonces
     this.init = {
       role,
       agentId: identity.agentId,
@@ -33,7 +42,10 @@ class End {
       nonce: freshNonce(),
       ...over,
     }
-    this.handshake = new Handshake({ sign: (bytes) => signBytes(identity.keys.privateKey, bytes) }, this.init)
+    this.handshake = new Handshake(
+      { sign: (bytes) => signBytes(identity.keys.privateKey, bytes), nonces },
+      this.init,
+    )
   }
 
   start(): void {
@@ -82,11 +94,22 @@ test('two agents of one overlay learn each other and the start they talk to', as
       name: 'gul-04',
       key: gul.keys.publicKey,
       incarnation: 'incarnation-gul-04',
-      version: 1,
+      version: 2,
       passExpiresAt: NOW_SECONDS + 86_400,
     },
   })
   expect(listener.outcome).toMatchObject({ kind: 'established', peer: { agentId: 'tar-01' } })
+})
+
+test.each([
+  ['dialer', 'listener'],
+  ['listener', 'dialer'],
+] as const)('with a %s of version 1, its %s speaks version 1 too', async (oldRole, newRole) => {
+  const old = new End(oldRole, tar, { versions: [1] })
+  const now = new End(newRole, gul)
+  await converse(old, now)
+  expect(old.outcome).toMatchObject({ kind: 'established', peer: { version: 1 } })
+  expect(now.outcome).toMatchObject({ kind: 'established', peer: { version: 1 } })
 })
 
 test('a proof that overtakes the judging of its pass is kept until then', async () => {
@@ -172,6 +195,46 @@ describe('a listener meets', () => {
         const recorded = await recording()
         listener.start()
         for (const bytes of recorded) await listener.receive(bytes)
+      },
+    },
+    'a conversation that it has had itself, once more': {
+      close: 'replayed',
+      attack: async (listener) => {
+        const dialer = new End('dialer', tar)
+        const first = new End('listener', gul, {}, listener.nonces)
+        dialer.start()
+        first.start()
+        const [hello] = dialer.outbox
+        await first.receive(hello!)
+        await dialer.receive(first.outbox[0]!)
+        await first.receive(dialer.outbox[1]!)
+        expect(first.outcome).toMatchObject({ kind: 'established' })
+        listener.start()
+        for (const bytes of dialer.outbox) await listener.receive(bytes)
+      },
+    },
+    'a hello whose nonce was changed on the way': {
+      close: 'proof-wrong',
+      attack: async (listener) => {
+        const dialer = new End('dialer', tar)
+        dialer.start()
+        listener.start()
+        const hello = decodeHello(dialer.outbox[0]!)!
+        await listener.receive(encodeHello({ ...hello, nonce: freshNonce() }))
+        await dialer.receive(listener.outbox[0]!)
+        await listener.receive(dialer.outbox[1]!)
+      },
+    },
+    'proofs swapped between two exchanges that run at once': {
+      close: 'proof-wrong',
+      attack: async (listener) => {
+        const [one, two] = [new End('dialer', tar), new End('dialer', tar)]
+        const other = new End('listener', gul, {}, listener.nonces)
+        for (const end of [one, two, listener, other]) end.start()
+        await listener.receive(one.outbox[0]!)
+        await other.receive(two.outbox[0]!)
+        await two.receive(other.outbox[0]!)
+        await listener.receive(two.outbox[1]!)
       },
     },
     'an honest hello with the proof of another conversation spliced in': {

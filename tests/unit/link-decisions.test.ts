@@ -11,6 +11,8 @@ const candidate: AdmissionCase = {
   acceptUnknown: true,
   incarnation: 'second',
   isRetired: false,
+  shut: null,
+  isFull: false,
   opened: 7,
   latest: null,
 }
@@ -38,6 +40,18 @@ describe('whether a proven peer may have a link', () => {
       'a start that was replaced and comes back on a new connection',
       { isRetired: true, latest: { incarnation: 'third', opened: 6 } },
       'stale-incarnation',
+    ],
+    ['an agent that the orders shut out', { shut: 'revoked' }, 'revoked'],
+    [
+      'the same when it was dialed, and whatever else there is to say',
+      { role: 'dialer', shut: 'left-overlay', isRetired: true },
+      'left-overlay',
+    ],
+    ['one agent more than there may be', { isFull: true }, 'too-many-links'],
+    [
+      'a stranger where there are enough',
+      { isFull: true, isKnown: false, acceptUnknown: false },
+      'not-a-neighbour',
     ],
     [
       'the same when it was dialed',

@@ -39,6 +39,7 @@ const signedIn = [...people, 'owner elsewhere']
 /** Who may do what to the things of the team "ours": written out, not derived. */
 const ALLOWED: Record<ActionName, string[]> = {
   'health.read': everyone,
+  'agent-file.read': everyone,
   'first-run.read': everyone,
   'first-run.create': everyone,
   'session.create': everyone,
@@ -55,6 +56,7 @@ const ALLOWED: Record<ActionName, string[]> = {
   'overlay.list': [...signedIn, 'read token', 'write token', "viewer's write token"],
   'overlay.read': looking,
   'overlay.create': ['operator', 'owner', 'write token'],
+  'overlay.change': ['operator', 'owner', 'write token'],
   'reading.read': looking,
   'node.list': looking,
   'link.list': looking,
@@ -65,6 +67,17 @@ const ALLOWED: Record<ActionName, string[]> = {
   'agent.enrol': ['agent'],
   'agent.session': ['agent'],
   'agent.report': ['agent'],
+  'agent.leave': ['agent'],
+  'agent.key': ['agent'],
+  'agent.directory': ['agent'],
+  'agent.revoke': ['operator', 'owner', 'write token'],
+  'agent.retire': ['operator', 'owner', 'write token'],
+  'agent.readmit': ['operator', 'owner', 'write token'],
+  'upgrade.read': looking,
+  'upgrade.offer': ['operator', 'owner', 'write token'],
+  'upgrade.halt': ['operator', 'owner', 'write token'],
+  'signing-key.read': ['operator', 'owner', 'read token', 'write token'],
+  'signing-key.rotate': ['owner'],
   'user.create': [],
   'token.create': [],
 }
@@ -84,6 +97,7 @@ describe('the permission table', () => {
     expect(silent.filter((action) => !/\.(read|list|read-link)$/.test(action))).toEqual([
       'agent.session',
       'agent.report',
+      'agent.directory',
     ])
   })
 

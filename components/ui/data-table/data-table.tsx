@@ -63,14 +63,17 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
                 key={group.id}
                 className={cx('border-b border-ink', stacks && 'max-sm:flex max-sm:flex-wrap')}
               >
-                {group.headers.map((header) => (
-                  <HeaderCell
-                    key={header.id}
-                    column={byId.get(header.column.id)}
-                    sorted={header.column.getIsSorted()}
-                    onSort={header.column.getToggleSortingHandler()}
-                  />
-                ))}
+                {group.headers.map((header) => {
+                  const column = byId.get(header.column.id)
+                  return column && isShown(column) ? (
+                    <HeaderCell
+                      key={header.id}
+                      column={column}
+                      sorted={header.column.getIsSorted()}
+                      onSort={header.column.getToggleSortingHandler()}
+                    />
+                  ) : null
+                })}
               </tr>
             ))}
           </thead>
@@ -80,13 +83,14 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
                 key={row.id}
                 className={cx('border-b border-hairline', stacks && 'max-sm:block max-sm:py-3')}
               >
-                {columns.map((c) => (
+                {columns.filter(isShown).map((c) => (
                   <td
                     key={c.id}
                     className={cx(
                       'py-2 pr-5 align-baseline last:pr-0',
                       c.figures && 'text-right font-figures whitespace-nowrap',
-                      c.words && 'min-w-56',
+                      c.words && 'sm:min-w-56',
+                      c.roomy && 'max-sm:hidden',
                       stacks && 'max-sm:flex max-sm:gap-3 max-sm:py-1 max-sm:pr-0 max-sm:text-left',
                     )}
                   >
@@ -98,11 +102,9 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
                         {c.heading ?? c.header}
                       </span>
                     ) : null}
-                    {c.cell ? (
-                      <Cell stacks={stacks}>{c.cell(row.original)}</Cell>
-                    ) : (
-                      (c.value(row.original) ?? '–')
-                    )}
+                    <Cell stacks={stacks}>
+                      {c.cell ? c.cell(row.original) : (c.value(row.original) ?? '–')}
+                    </Cell>
                   </td>
                 ))}
               </tr>
@@ -126,9 +128,11 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
   )
 }
 
+const isShown = <Row,>(column: Column<Row>): boolean => column.shown !== false
+
 /** One box beside the cell's name, whatever the cell is made of. */
 function Cell({ stacks, children }: { stacks: boolean; children: ReactNode }) {
-  return stacks ? <div className="min-w-0">{children}</div> : children
+  return stacks ? <div className="min-w-0 max-sm:wrap-anywhere">{children}</div> : children
 }
 
 function HeaderCell<Row>({
@@ -136,11 +140,10 @@ function HeaderCell<Row>({
   sorted,
   onSort,
 }: {
-  column: Column<Row> | undefined
+  column: Column<Row>
   sorted: false | 'asc' | 'desc'
   onSort: ((event: unknown) => void) | undefined
 }) {
-  if (!column) return null
   const end = column.figures
   if (column.data === false) {
     return (
@@ -153,7 +156,11 @@ function HeaderCell<Row>({
     <th
       scope="col"
       aria-sort={sorted === 'asc' ? 'ascending' : sorted === 'desc' ? 'descending' : undefined}
-      className={cx('pr-5 pb-1 align-bottom font-normal last:pr-0', end && 'text-right')}
+      className={cx(
+        'pr-5 pb-1 align-bottom font-normal last:pr-0',
+        end && 'text-right',
+        column.roomy && 'max-sm:hidden',
+      )}
     >
       <button
         type="button"

@@ -15,6 +15,10 @@ export interface Column<Row> {
   figures?: boolean
   /** Longer text: keeps a readable width where the table scrolls sideways. */
   words?: boolean
+  /** False for what is searched and exported but has no column of its own: there is not room for everything. */
+  shown?: boolean
+  /** True for what a narrow screen leaves out: a row must then say it elsewhere. */
+  roomy?: boolean
   /** False for a column of buttons: neither sorted, searched nor exported. */
   data?: boolean
 }

@@ -7,6 +7,12 @@ export const MOST_LEAVING = 0.5
 /** z̄ averages over this many report intervals, and over less while the seeding is younger. */
 export const AVERAGING_INTERVALS = 4
 
+/**
+ * Walkers of one type that one agent holds; more are given up. No honest overlay comes near it; a neighbour that makes
+ * walkers up would else make this agent's own frames larger than its other neighbours may take.
+ */
+export const MOST_HELD = 2 ** 20
+
 /** One colony's walkers and counters at one agent. Cumulative over (incarnation, seeding). */
 export interface Colony {
   orders: ColonyOrders
@@ -70,6 +76,16 @@ export function place(colony: Colony): void {
   colony.seeded += colony.toPlaceX + colony.toPlaceY
   colony.toPlaceX = 0
   colony.toPlaceY = 0
+}
+
+/** Takes walkers in; what is too many goes. */
+export function arrive(colony: Colony, x: number, y: number): void {
+  colony.received += x + y
+  const heldX = Math.min(MOST_HELD, colony.x + x)
+  const heldY = Math.min(MOST_HELD, colony.y + y)
+  colony.dropped += colony.x + x - heldX + (colony.y + y - heldY)
+  colony.x = heldX
+  colony.y = heldY
 }
 
 /** A detached or refusing agent holds nothing: it would gather all walkers within minutes. */

@@ -1,3 +1,5 @@
+import { type Delivery, openDelivery } from './delivery'
+import { HeardFrames } from './heard'
 import type { Ledger } from './ledger'
 import { isSettled, openLedger } from './ledger'
 
@@ -15,9 +17,13 @@ export interface Link {
   peer: string
   peerIncarnation: string
   state: LinkState
-  /** Own view of the weight, and the other end's as last heard; both ends use the smaller. */
+  /** The node's own view of the link, 0 (down) to 1. */
+  view: number
+  /** Own weight as last said, and the other end's as last heard; both ends use the smaller. */
   ownWeight: number
   heardWeight: number
+  delivery: Delivery
+  heard: HeardFrames
   /** Number of the last frame sent; highest number heard; highest of ours that the peer says it heard. */
   number: number
   heardNumber: number
@@ -30,6 +36,8 @@ export interface Link {
   /** The peer does not get orders by itself, so each new one is passed on at once. */
   passesOrders: boolean
   passedSequence: number
+  /** Number of the report whose statement was last said on this link. */
+  statementSaid: number
   peerConsents: boolean
   peerClosing: boolean
   ledgers: Map<number, Ledger>
@@ -40,8 +48,11 @@ export function openLink(peer: string, peerIncarnation: string, nowMs: number): 
     peer,
     peerIncarnation,
     state: 'open',
+    view: 1,
     ownWeight: 1,
     heardWeight: 1,
+    delivery: openDelivery(),
+    heard: new HeardFrames(),
     number: 0,
     heardNumber: 0,
     acknowledgedNumber: 0,
@@ -51,6 +62,7 @@ export function openLink(peer: string, peerIncarnation: string, nowMs: number): 
     peerOrdersAtMs: nowMs,
     passesOrders: false,
     passedSequence: 0,
+    statementSaid: 0,
     peerConsents: false,
     peerClosing: false,
     ledgers: new Map(),
@@ -62,10 +74,14 @@ export function unacknowledgedLimitMs(tickMs: number): number {
   return Math.max(UNACKNOWLEDGED_MS, UNACKNOWLEDGED_TICKS * tickMs)
 }
 
+/** Nothing was acknowledged for too long: nobody sends walkers there. */
+export function isOut(link: Link, nowMs: number, tickMs: number): boolean {
+  return link.heardNumber === 0 || nowMs - link.acknowledgedAtMs > unacknowledgedLimitMs(tickMs)
+}
+
 /** Agreed weight now: 0 unless the link is open, heard and acknowledged in time. */
 export function liveWeight(link: Link, nowMs: number, tickMs: number): number {
-  if (link.state !== 'open' || link.peerClosing || link.heardNumber === 0) return 0
-  if (nowMs - link.acknowledgedAtMs > unacknowledgedLimitMs(tickMs)) return 0
+  if (link.state !== 'open' || link.peerClosing || isOut(link, nowMs, tickMs)) return 0
   return Math.min(link.ownWeight, link.heardWeight)
 }
 

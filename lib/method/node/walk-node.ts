@@ -1,13 +1,16 @@
-import type { Frame } from '../frame'
-import { type Orders, ordersLifeMs } from '../orders'
+import { NeighbourAudit } from '../audit'
+import type { CollectorDistance, Frame, OrdersProof } from '../frame'
+import { type Orders, ordersLifeMs, type WeightMode } from '../orders'
 import { hash32, type Random } from '../random'
-import { type NodeFacts, type Report, SUMS_SCALE } from '../report'
+import type { AuditFault, Complaint, Report } from '../report'
+import type { SignedStatement } from '../statement'
 import { average, type Colony, dropAll, openColony, place, walk } from './colony'
-import { CoarseValue, namedLinks } from './facts'
-import { notePeerOrders, shouldPassOrders } from './gossip'
-import { isFlood, type LedgerFault, ledgerFault, settle } from './ledger'
+import { forgive, noteSent, noteTime, sayWeight } from './delivery'
+import { CoarseValue } from './facts'
+import type { LedgerFault } from './ledger'
 import {
   FORGET_MS,
+  isOut,
   isWoundUp,
   type Link,
   type LinkState,
@@ -16,24 +19,17 @@ import {
   openLink,
   unacknowledgedLimitMs,
 } from './link'
-import { exitsFor, measuredLink, valuedLink } from './live-link'
-import { colonySums, energiesAndMoments, fiedlerValue, sweepSums } from './sums'
+import { exitsFor } from './live-link'
+import { type HostFacts, type LinkFacts, type LiveLink, linkFacts, reportOf } from './report-of'
+import { Retired } from './retired'
+import { frameFor, type HeldOrders } from './say'
+import { noteFrame, takeIn } from './take-in'
 import { TimeDebt } from './time-debt'
 
 export type ReceiveOutcome =
   | { kind: 'ok' }
   | { kind: 'ignored'; reason: 'unknown-peer' | 'retired-incarnation' }
-  | { kind: 'refuse'; reason: LedgerFault }
-
-/** Replaced incarnations remembered per peer; a process that died longer ago has no frames on the way. */
-const RETIRED_KEPT = 16
-
-/** What the program around the walkers knows of the node. */
-export interface HostFacts {
-  linksKnown: number
-  version: string
-  uptimeSeconds: number
-}
+  | { kind: 'refuse'; reason: LedgerFault | 'left-out' }
 
 export interface WalkNodeComponents {
   random: Random
@@ -44,6 +40,10 @@ export interface WalkNodeInit {
   /** Random per process start. */
   incarnation: string
   consents?: boolean
+  /** As enrolment said; orders of version 2 and later say it themselves. */
+  weights?: WeightMode
+  /** False only where nobody lies and time is short: in simulations of the method alone. */
+  audits?: boolean
 }
 
 /**
@@ -54,13 +54,19 @@ export class WalkNode {
   readonly agentId: string
   readonly incarnation: string
   private readonly random: Random
+  private readonly weights: WeightMode
   private readonly debt = new TimeDebt()
   private readonly links = new Map<string, Link>()
-  private readonly retired = new Map<string, Set<string>>()
+  private readonly retired = new Retired()
   private readonly colonies = new Map<number, Colony>()
   private readonly coarse = new CoarseValue()
-  private orders: Orders | null = null
-  private ordersIssuedAtMs = 0
+  /** Neighbours' figures against what arrives from them. */
+  readonly audit = new NeighbourAudit()
+  private readonly audits: boolean
+  private readonly complaints = new Map<string, { incarnation: string; complaint: Complaint }>()
+  private following: HeldOrders | null = null
+  private statement: SignedStatement | null = null
+  private distance: CollectorDistance = 3
   private consents: boolean
   private startedAtMs: number | null = null
   private tickedAtMs: number | null = null
@@ -73,6 +79,16 @@ export class WalkNode {
     this.agentId = init.agentId
     this.incarnation = init.incarnation
     this.consents = init.consents ?? true
+    this.weights = init.weights ?? 'delivered'
+    this.audits = init.audits ?? true
+  }
+
+  private get orders(): Orders | null {
+    return this.following?.orders ?? null
+  }
+
+  private get tickMs(): number {
+    return this.orders?.pace.tickMs ?? 0
   }
 
   get ordersSequence(): number {
@@ -81,8 +97,8 @@ export class WalkNode {
 
   /** True when there are no orders, or they are too old to walk by. */
   isFrozen(nowMs: number): boolean {
-    if (!this.orders) return true
-    return nowMs - this.ordersIssuedAtMs > ordersLifeMs(this.orders.pace.intervalMs)
+    if (!this.following) return true
+    return nowMs - this.following.issuedAtMs > ordersLifeMs(this.following.orders.pace.intervalMs)
   }
 
   /** Opens or reopens a link after a handshake. Another incarnation of the peer closes the ledgers with the old one. */
@@ -96,7 +112,9 @@ export class WalkNode {
       }
       return
     }
-    if (present) this.retire(peer, present.peerIncarnation)
+    if (present) this.retired.add(peer, present.peerIncarnation)
+    // Another start may be another program: it is judged anew.
+    this.complaints.delete(peer)
     this.links.set(peer, openLink(peer, peerIncarnation, nowMs))
   }
 
@@ -116,22 +134,60 @@ export class WalkNode {
     return this.links.get(peer)?.state ?? 'unknown'
   }
 
-  /** Own view of a link's weight, 0 (down) to 1. @throws RangeError outside */
+  /** Agreed weight of a link now, 0 where nothing crosses it. */
+  linkWeight(peer: string, nowMs: number): number {
+    const link = this.links.get(peer)
+    return link ? liveWeight(link, nowMs, this.tickMs) : 0
+  }
+
+  /** The node's own view of a link, 0 (down) to 1: it lowers what is measured. @throws RangeError outside */
   setWeight(peer: string, weight: number): void {
     if (!(weight >= 0 && weight <= 1)) throw new RangeError(`a link's weight lies in 0..1, not ${weight}`)
     const link = this.links.get(peer)
-    if (link) link.ownWeight = Math.round(weight * 1000) / 1000
+    if (link) link.view = Math.round(weight * 1000) / 1000
   }
 
   setConsent(consents: boolean): void {
     this.consents = consents
   }
 
+  /** How many links away the collector is, said in every frame. */
+  setDistance(distance: CollectorDistance): void {
+    this.distance = distance
+  }
+
+  /** What the collector has been told and has given a receipt for: said once on every link. */
+  setStatement(statement: SignedStatement): void {
+    this.statement = statement
+  }
+
+  /** Takes nothing from this start of a peer any more, because its figures do not hold. Its walkers here stay. */
+  leaveOut(peer: string, fault: AuditFault, ratio: number): void {
+    const link = this.links.get(peer)
+    if (!link || this.isLeftOut(peer, link.peerIncarnation)) return
+    this.complaints.set(peer, { incarnation: link.peerIncarnation, complaint: { peer, fault, ratio } })
+    this.endLink(peer)
+  }
+
+  isLeftOut(peer: string, incarnation: string): boolean {
+    return this.complaints.get(peer)?.incarnation === incarnation
+  }
+
+  /** The collector says that the peer may come back. */
+  readmit(peer: string): void {
+    this.complaints.delete(peer)
+  }
+
+  /** Agents that nobody keeps a link to, by the orders held. */
+  get shut(): Orders['shut'] {
+    return this.orders?.shut
+  }
+
   /** Follows orders unless newer ones are held. @returns whether they were taken */
-  adopt(orders: Orders, ageMs: number, nowMs: number): boolean {
+  adopt(orders: Orders, ageMs: number, nowMs: number, proof?: OrdersProof): boolean {
     if (orders.sequence <= this.ordersSequence) return false
-    this.orders = orders
-    this.ordersIssuedAtMs = nowMs - ageMs
+    this.following = { orders, issuedAtMs: nowMs - ageMs, proof }
+    for (const peer of this.audit.noteOrders(orders, ageMs, nowMs)) this.readmit(peer)
     const wanted = new Set(orders.colonies.map((colony) => colony.colony))
     for (const slot of [...this.colonies.keys()]) if (!wanted.has(slot)) this.discard(slot)
     for (const colonyOrders of orders.colonies) this.adoptColony(colonyOrders, nowMs)
@@ -173,8 +229,11 @@ export class WalkNode {
   tick(nowMs: number, isCarried: (peer: string) => boolean = () => true): { peer: string; frame: Frame }[] {
     this.startedAtMs ??= nowMs
     this.forgiveOwnGap(nowMs)
-    if (this.isFrozen(nowMs)) this.debt.drop(nowMs)
-    else this.walkDue(this.orders!, nowMs)
+    const isFrozen = this.isFrozen(nowMs)
+    if (isFrozen) this.debt.drop(nowMs)
+    else this.walkDue(this.following!.orders, nowMs)
+    const { following: orders, consents, distance, statement } = this
+    const sayings = { orders, isFrozen, consents, distance, statement }
     const frames: { peer: string; frame: Frame }[] = []
     for (const link of this.links.values()) {
       if (link.state === 'closed') continue
@@ -184,19 +243,36 @@ export class WalkNode {
         continue
       }
       const last = link.state === 'closing' && isWoundUp(link)
-      frames.push({ peer: link.peer, frame: this.frameFor(link, nowMs) })
+      const number = this.measure(link, nowMs)
+      const frame = frameFor(link, number, this.colonies.values(), sayings, nowMs)
+      if (this.audits) this.audit.noteSent(link.peer, number, frame.colonies)
+      frames.push({ peer: link.peer, frame })
       if (last) link.state = 'closed'
     }
     return frames
   }
 
+  /** Brings a link's own weight up to date. @returns the number of the frame that is about to leave */
+  private measure(link: Link, nowMs: number): number {
+    // Numbers follow the clock so that a link forgotten and made anew still counts upwards.
+    const number = Math.max(link.number + 1, Math.floor(nowMs - this.startedAtMs!))
+    noteTime(link.delivery, nowMs, this.tickMs)
+    noteSent(link.delivery, number, nowMs, isOut(link, nowMs, this.tickMs))
+    link.ownWeight = sayWeight(link.delivery, link.view, this.orders?.weights ?? this.weights, nowMs)
+    return number
+  }
+
   /** Acknowledgements that wait unread while this process itself stood still are not the neighbours' fault. */
   private forgiveOwnGap(nowMs: number): void {
-    const tickMs = this.orders?.pace.tickMs ?? 0
+    const { tickMs } = this
     const gapMs = this.tickedAtMs === null ? 0 : nowMs - this.tickedAtMs
     this.tickedAtMs = nowMs
     const excessMs = Math.max(0, gapMs - tickMs)
-    for (const link of this.links.values()) link.acknowledgedAtMs += excessMs
+    this.audit.noteOwnGap(gapMs)
+    for (const link of this.links.values()) {
+      link.acknowledgedAtMs += excessMs
+      forgive(link.delivery, excessMs)
+    }
     this.detachedMs += Math.min(Math.max(0, gapMs), tickMs)
   }
 
@@ -223,157 +299,63 @@ export class WalkNode {
     }
   }
 
-  private liveLinks(nowMs: number): { link: Link; weight: number }[] {
-    const tickMs = this.orders?.pace.tickMs ?? 0
-    const live: { link: Link; weight: number }[] = []
+  private liveLinks(nowMs: number): LiveLink[] {
+    const live: LiveLink[] = []
     for (const link of this.links.values()) {
-      const weight = liveWeight(link, nowMs, tickMs)
+      const weight = liveWeight(link, nowMs, this.tickMs)
       if (weight > 0) live.push({ link, weight })
     }
     return live
   }
 
-  private frameFor(link: Link, nowMs: number): Frame {
-    // Numbers follow the clock so that a link forgotten and made anew still counts upwards.
-    link.number = Math.max(link.number + 1, Math.floor(nowMs - this.startedAtMs!))
-    const orders = this.orders
-    let passed: Frame['orders'] = null
-    if (
-      orders &&
-      !this.isFrozen(nowMs) &&
-      shouldPassOrders(link, orders.sequence, nowMs, orders.pace.intervalMs)
-    ) {
-      passed = { orders, ageMs: Math.max(0, Math.round(nowMs - this.ordersIssuedAtMs)) }
-      link.passedSequence = orders.sequence
-    }
-    return {
-      number: link.number,
-      heardNumber: link.heardNumber,
-      weight: link.ownWeight,
-      closing: link.state === 'closing',
-      consents: this.consents,
-      ordersSequence: this.ordersSequence,
-      orders: passed,
-      colonies: [...this.colonies.values()].map((colony) => {
-        const { colony: slot, seeding } = colony.orders
-        const ledger = ledgerFor(link, slot, seeding)
-        return {
-          colony: slot,
-          seeding,
-          refused: colony.refuses,
-          sentX: ledger.sentX,
-          sentY: ledger.sentY,
-          receivedX: ledger.receivedX,
-          receivedY: ledger.receivedY,
-          meanOccupancy: colony.mean,
-        }
-      }),
-    }
-  }
-
   /** Takes in a frame from an incarnation of a peer, as its handshake named it. */
   receive(peer: string, peerIncarnation: string, frame: Frame, nowMs: number): ReceiveOutcome {
+    if (this.isLeftOut(peer, peerIncarnation)) return { kind: 'refuse', reason: 'left-out' }
     const link = this.links.get(peer)
     if (!link) return { kind: 'ignored', reason: 'unknown-peer' }
     if (link.peerIncarnation !== peerIncarnation) return { kind: 'ignored', reason: 'retired-incarnation' }
-    if (frame.orders) this.adopt(frame.orders.orders, frame.orders.ageMs, nowMs)
+    if (frame.orders) this.adopt(frame.orders.orders, frame.orders.ageMs, nowMs, frame.orders.proof)
+    const taken = takeIn(link, this.colonies, frame)
+    if ('fault' in taken) return { kind: 'refuse', reason: taken.fault }
+    const { arrivals } = taken
     const newest = frame.number > link.heardNumber
-    const parts = frame.colonies.flatMap((part) => {
-      const colony = this.colonies.get(part.colony)
-      if (!colony || colony.orders.seeding !== part.seeding) return []
-      return [{ part, colony, ledger: ledgerFor(link, part.colony, part.seeding) }]
-    })
-    for (const { part, ledger } of parts) {
-      if (isFlood(ledger, part)) return { kind: 'refuse', reason: 'too-many-arriving' }
-      const fault = newest ? ledgerFault(ledger, part) : null
-      if (fault) return { kind: 'refuse', reason: fault }
-    }
-    for (const { part, colony, ledger } of parts) {
-      const { x, y } = settle(ledger, part)
-      colony.x += x
-      colony.y += y
-      colony.received += x + y
-      if (newest) {
-        ledger.peerMean = part.meanOccupancy
-        ledger.peerRefuses = part.refused
-      }
-    }
-    if (newest) this.noteNewest(link, frame, nowMs)
-    return { kind: 'ok' }
-  }
-
-  private noteNewest(link: Link, frame: Frame, nowMs: number): void {
-    link.heardNumber = frame.number
-    link.heardWeight = frame.weight
-    link.peerConsents = frame.consents
-    if (frame.heardNumber > link.acknowledgedNumber) {
-      link.acknowledgedNumber = frame.heardNumber
-      link.acknowledgedAtMs = nowMs
-    }
-    notePeerOrders(link, frame.ordersSequence, nowMs)
-    if (frame.closing && !link.peerClosing) {
-      link.peerClosing = true
-      if (link.state === 'open') link.state = 'closing'
-    }
+    const weight = liveWeight(link, nowMs, this.tickMs)
+    noteFrame(link, frame, nowMs, this.tickMs)
+    const heard = { peer, incarnation: peerIncarnation, frame, newest, weight, arrivals }
+    const complaint = this.audits ? this.audit.hear(heard, this.colonies, nowMs) : null
+    if (!complaint) return { kind: 'ok' }
+    this.leaveOut(peer, complaint.fault, complaint.ratio)
+    return { kind: 'refuse', reason: 'left-out' }
   }
 
   /** The cumulative report of this moment. `host` is what the program around the walkers knows. */
   report(nowMs: number, host: HostFacts): Report {
-    const orders = this.orders
-    const live = this.liveLinks(nowMs)
-    const attached = live.length > 0
-    const colonies = [...this.colonies.values()].sort((a, b) => a.orders.colony - b.orders.colony)
-    const measured = live.map(({ link, weight }) => measuredLink(link, weight, colonies))
-    const own = orders?.sweep && attached ? fiedlerValue(orders.sweep, this.ownMean) : null
-    const valued = measured.map((link) => valuedLink(link, orders, this.colonies))
-    const walked = attached ? colonies : []
     this.reports += 1
-    return {
-      incarnation: this.incarnation,
-      number: this.reports,
-      ordersSequence: this.ordersSequence,
-      sums: {
-        attached: attached ? 1 : 0,
-        colonies: colonies.map((colony) => colonySums(colony, attached)),
-        ...energiesAndMoments(walked, measured),
-        linkEnds: live.length,
-        linkEndWeight: Math.round(live.reduce((sum, { weight }) => sum + weight, 0) * SUMS_SCALE),
-        sweep: orders?.sweep && own !== null ? sweepSums(orders.sweep, own, valued) : null,
-      },
-      node: {
-        degree: live.length,
-        weightedDegree: live.reduce((sum, { weight }) => sum + weight, 0),
-        linksKnown: Math.max(host.linksKnown, live.length),
-        value: this.disclosedValue(own, nowMs),
-        links: orders ? namedLinks(orders, own, valued, this.consents) : [],
-        version: host.version,
-        uptimeSeconds: host.uptimeSeconds,
-      },
-    }
+    const { incarnation, reports: number, orders, colonies, consents, coarse } = this
+    const live = this.liveLinks(nowMs)
+    const facts = this.factsOf(live)
+    return reportOf({ incarnation, number, orders, colonies, live, consents, coarse, facts }, host, nowMs)
   }
 
-  private readonly ownMean = (slot: number, seeding: number): number | null => {
-    const colony = this.colonies.get(slot)
-    return colony && colony.orders.seeding === seeding && !colony.refuses ? colony.mean : null
+  linkFacts(nowMs: number): LinkFacts {
+    return this.factsOf(this.liveLinks(nowMs))
   }
 
-  private disclosedValue(own: number | null, nowMs: number): NodeFacts['value'] {
-    const { orders } = this
-    if (!orders?.sweep || own === null) return null
-    if (orders.disclosure === 'named') return { sweep: orders.sweep.id, value: Math.round(own * 1000) / 1000 }
-    return this.coarse.say(orders.sweep.id, own, nowMs, orders.pace.intervalMs)
-  }
-
-  private retire(peer: string, incarnation: string): void {
-    const gone = this.retired.get(peer) ?? new Set()
-    gone.add(incarnation)
-    if (gone.size > RETIRED_KEPT) gone.delete(gone.values().next().value!)
-    this.retired.set(peer, gone)
+  private factsOf(live: readonly LiveLink[]): LinkFacts {
+    return linkFacts(
+      live,
+      [...this.complaints.values()].map(({ complaint }) => complaint),
+    )
   }
 
   /** Whether an incarnation of a peer has been replaced by a later one and may not come back. */
   isRetired(peer: string, incarnation: string): boolean {
-    return this.retired.get(peer)?.has(incarnation) ?? false
+    return this.retired.has(peer, incarnation)
+  }
+
+  /** The colonies themselves: for simulations of agents that lie. */
+  walking(): Iterable<Colony> {
+    return this.colonies.values()
   }
 
   /** Walkers held now, per colony: for audits and status. */

@@ -1,1 +1,2 @@
+export type { Lie } from './lie'
 export { Simulation, type SimulationInit } from './simulation'

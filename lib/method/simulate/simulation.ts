@@ -2,10 +2,24 @@ import { type ControlSettings, type Estimate, evaluate, initialControl, type Sna
 import type { ControlState } from '../control/state'
 import type { Frame } from '../frame'
 import { WalkNode } from '../node'
+import type { Orders } from '../orders'
 import { PACES } from '../pace'
 import { forkRandom, type Random } from '../random'
 import type { Report } from '../report'
+import { statementOf } from '../statement'
 import { EventQueue } from './event-queue'
+import { bentFrame, bentOrders, bentReport, type Lie } from './lie'
+
+interface SimulatedLink {
+  a: number
+  b: number
+  delayMs: number
+  weight: number
+  /** Share of frames lost, in each direction. */
+  loss: number
+  /** Lives of both ends in which one has refused the other. */
+  shut: string | null
+}
 
 export interface SimulationComponents {
   random: Random
@@ -25,6 +39,12 @@ export interface SimulationInit {
   /** Share of reports, and of the orders in reply, lost at random. */
   reportLoss?: number
   ordersLoss?: number
+  /** The collector's judgement of agents, once per evaluation and before it: ids to leave out from now on. */
+  leaveOut?: (now: Snapshot, control: ControlState, orders: Orders | null) => readonly string[]
+  /** Agents know version 2: their frames carry receipts. */
+  speaksTwo?: boolean
+  /** Neighbours audit each other. */
+  audits?: boolean
   /** Wall time of the virtual clock's 0. */
   startAtMs?: number
 }
@@ -37,6 +57,7 @@ interface SimulatedAgent {
   stalledUntilMs: number
   /** Lives, but does not reach the collector. */
   silent: boolean
+  lie: Lie | null
   stopped: boolean
   /** Bumped on every restart, so that a former life's timers end. */
   life: number
@@ -57,9 +78,13 @@ export class Simulation {
   collectorUp = true
   readonly agents: SimulatedAgent[] = []
   private readonly random: Random
-  private readonly init: Required<SimulationInit>
+  private readonly init: Required<Omit<SimulationInit, 'leaveOut'>> & Pick<SimulationInit, 'leaveOut'>
   private readonly queue = new EventQueue()
-  private readonly links = new Map<string, { a: number; b: number; delayMs: number; weight: number }>()
+  private readonly links = new Map<string, SimulatedLink>()
+  /** Agents left out, in order. */
+  readonly leftOut: string[] = []
+  /** Refusals so far, by whom and of whom; links between the two are closed. */
+  readonly refusals: { atMs: number; by: number; of: number; reason: string }[] = []
   private orders: { orders: Frame['orders']; issuedAtMs: number } | null = null
   private before: Snapshot | null = null
 
@@ -73,6 +98,8 @@ export class Simulation {
       reportLoss: 0,
       ordersLoss: 0,
       startAtMs: 0,
+      speaksTwo: true,
+      audits: true,
       ...init,
     }
     this.nowMs = this.init.startAtMs
@@ -91,6 +118,7 @@ export class Simulation {
       slowness: 1,
       stalledUntilMs: 0,
       silent: false,
+      lie: null,
       stopped: false,
       life: 0,
       last: null,
@@ -98,7 +126,8 @@ export class Simulation {
   }
 
   private createNode(index: number, random: Random, life: number): WalkNode {
-    return new WalkNode({ random }, { agentId: this.init.nameOf(index), incarnation: `${index}.${life}` })
+    const { nameOf, audits } = this.init
+    return new WalkNode({ random }, { agentId: nameOf(index), incarnation: `${index}.${life}`, audits })
   }
 
   /** Runs until the virtual clock has moved on by `ms`. */
@@ -125,7 +154,7 @@ export class Simulation {
   join(a: number, b: number, weight = 1): void {
     const [lowest, highest] = this.init.linkDelayMs
     const delayMs = lowest + this.random.uniform() * (highest - lowest)
-    this.links.set(linkKey(a, b), { a, b, delayMs, weight })
+    this.links.set(linkKey(a, b), { a, b, delayMs, weight, loss: 0, shut: null })
     this.connect(a, b)
     this.weaken(a, b, weight)
   }
@@ -153,6 +182,12 @@ export class Simulation {
     this.agents[b]!.node.setWeight(this.agents[a]!.node.agentId, weight)
   }
 
+  /** Lets a share of a link's frames be lost. */
+  setLoss(a: number, b: number, loss: number): void {
+    const link = this.links.get(linkKey(a, b))
+    if (link) link.loss = loss
+  }
+
   /** Kills an agent's process: its walkers and ledgers are gone. */
   stop(index: number): void {
     const agent = this.agents[index]!
@@ -174,11 +209,43 @@ export class Simulation {
     this.startTimers(index)
   }
 
-  /** Live links of running agents, as they truly are. */
+  /** Live links of running agents, as they truly are; agents left out have none. */
   liveLinks(): { a: number; b: number; weight: number }[] {
-    return [...this.links.values()].filter(
-      ({ a, b, weight }) => weight > 0 && !this.agents[a]!.stopped && !this.agents[b]!.stopped,
-    )
+    const runs = (index: number): boolean => {
+      const { stopped, node } = this.agents[index]!
+      return !stopped && !this.leftOut.includes(node.agentId)
+    }
+    return [...this.links.values()].filter(({ a, b, weight }) => weight > 0 && runs(a) && runs(b))
+  }
+
+  private livesOf({ a, b }: { a: number; b: number }): string {
+    return `${this.agents[a]!.life} ${this.agents[b]!.life}`
+  }
+
+  /** Whether the two ends hold a connection: not once one has refused the other in these lives, or is left out. */
+  private isCarried(index: number, peerId: string): boolean {
+    const link = this.links.get(linkKey(index, this.indexOf(peerId)))
+    return link !== undefined && link.shut !== this.livesOf(link)
+  }
+
+  private refuse(by: number, of: number, reason: string): void {
+    const link = this.links.get(linkKey(by, of))
+    if (!link || link.shut === this.livesOf(link)) return
+    link.shut = this.livesOf(link)
+    this.agents[by]!.node.endLink(this.agents[of]!.node.agentId)
+    this.agents[of]!.node.endLink(this.agents[by]!.node.agentId)
+    this.refusals.push({ atMs: this.nowMs, by, of, reason })
+  }
+
+  private honourShut(index: number, { shut = [] }: Orders): void {
+    for (const { agentId } of shut) {
+      const of = this.indexOf(agentId)
+      const link = this.links.get(linkKey(index, of))
+      if (!link || link.shut === this.livesOf(link)) continue
+      link.shut = this.livesOf(link)
+      this.agents[index]!.node.endLink(agentId)
+      this.agents[of]!.node.endLink(this.agents[index]!.node.agentId)
+    }
   }
 
   private startTimers(index: number): void {
@@ -199,7 +266,11 @@ export class Simulation {
       this.queue.push(agent.stalledUntilMs, () => this.tick(index, life))
       return
     }
-    for (const { peer, frame } of agent.node.tick(this.nowMs)) this.deliver(index, peer, frame)
+    agent.node.setDistance(agent.silent ? 1 : 0)
+    const frames = agent.node.tick(this.nowMs, (peer) => this.isCarried(index, peer))
+    for (const { peer, frame } of frames) {
+      this.deliver(index, peer, bentFrame(frame, peer, agent.lie))
+    }
     const nextMs = this.vary(this.init.settings.pace.tickMs, agent.random) * agent.slowness
     this.queue.push(this.nowMs + nextMs, () => this.tick(index, life))
   }
@@ -207,17 +278,19 @@ export class Simulation {
   private deliver(from: number, peerId: string, frame: Frame): void {
     const to = this.indexOf(peerId)
     const link = this.links.get(linkKey(from, to))
-    if (!link) return
+    if (!link || (link.loss > 0 && this.random.uniform() < link.loss)) return
     const sender = this.agents[from]!.node
     const { life } = this.agents[to]!
+    const lives = this.livesOf(link)
     const arrive = (): void => {
       const receiver = this.agents[to]!
       // A frame belongs to a socket, and a socket to one life of the other end.
-      if (receiver.life !== life) return
+      if (receiver.life !== life || link.shut === lives) return
       if (receiver.stalledUntilMs > this.nowMs) this.queue.push(receiver.stalledUntilMs, arrive)
       else {
         const outcome = receiver.node.receive(sender.agentId, sender.incarnation, frame, this.nowMs)
-        if (outcome.kind === 'refuse') throw new Error(`honest frame refused: ${outcome.reason}`)
+        if (outcome.kind === 'refuse') this.refuse(to, from, outcome.reason)
+        else if (frame.orders) this.honourShut(to, frame.orders.orders)
       }
     }
     this.queue.push(this.nowMs + this.vary(link.delayMs, this.random), arrive)
@@ -236,11 +309,9 @@ export class Simulation {
     const { pace } = this.init.settings
     this.queue.push(this.nowMs + this.vary(pace.intervalMs, agent.random), () => this.report(index, life))
     if (agent.silent || agent.stalledUntilMs > this.nowMs || !this.collectorUp) return
-    const report = agent.node.report(this.nowMs, {
-      linksKnown: 0,
-      version: 'simulated',
-      uptimeSeconds: 0,
-    })
+    const report = bentReport(agent.node, agent.lie, () =>
+      agent.node.report(this.nowMs, { linksKnown: 0, version: 'simulated', uptimeSeconds: 0 }),
+    )
     if (this.random.uniform() < this.init.reportLoss) return
     const [lowest, highest] = this.init.reportDelayMs
     const delayMs = lowest + this.random.uniform() * (highest - lowest)
@@ -255,10 +326,22 @@ export class Simulation {
       agent.last = { report, receivedAtMs: this.nowMs }
     }
     const current = this.orders
+    if (current && this.init.speaksTwo) {
+      this.queue.push(this.nowMs + delayMs, () => {
+        if (agent.life === life)
+          agent.node.setStatement({
+            statement: statementOf(agent.node.agentId, report),
+            key: '',
+            receipt: '',
+          })
+      })
+    }
     if (!current || this.random.uniform() < this.init.ordersLoss) return
     const ageMs = this.nowMs - current.issuedAtMs + delayMs
     this.queue.push(this.nowMs + delayMs, () => {
-      if (agent.life === life) agent.node.adopt(current.orders!.orders, ageMs, this.nowMs)
+      if (agent.life !== life) return
+      const orders = bentOrders(current.orders!.orders, agent.lie)
+      if (agent.node.adopt(orders, ageMs, this.nowMs)) this.honourShut(index, orders)
     })
   }
 
@@ -270,13 +353,16 @@ export class Simulation {
   }
 
   private evaluate(): void {
-    const now: Snapshot = {
-      atMs: this.nowMs,
-      agents: this.agents.flatMap(({ node, stopped, last }) =>
-        stopped && !last ? [] : [{ agentId: node.agentId, joinedAtMs: this.init.startAtMs, last }],
-      ),
-    }
-    const { control, orders, estimate } = evaluate({
+    const joined = this.agents.flatMap(({ node, stopped, last }) =>
+      this.leftOut.includes(node.agentId) || (stopped && !last)
+        ? []
+        : [{ agentId: node.agentId, joinedAtMs: this.init.startAtMs, last }],
+    )
+    const all: Snapshot = { atMs: this.nowMs, agents: joined }
+    const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
+    this.leftOut.push(...out)
+    const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
+    const { control, estimate, ...planned } = evaluate({
       control: this.control,
       before: this.before,
       now,
@@ -284,6 +370,8 @@ export class Simulation {
       sequence: this.control.sequence + 1,
       random: this.random,
     })
+    const shut = this.leftOut.map((agentId) => ({ agentId, reason: 'left-out' as const }))
+    const orders: Orders = { ...planned.orders, shut }
     this.before = now
     this.control = control
     this.orders = { orders: { orders, ageMs: 0 }, issuedAtMs: this.nowMs }

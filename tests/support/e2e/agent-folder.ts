@@ -1,12 +1,9 @@
-import { mkdtemp, rm, symlink } from 'node:fs/promises'
+import { mkdtemp, rm } from 'node:fs/promises'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
-import { Child, ROOT } from './child'
+import { Child } from './child'
 
-/** What an agent needs of Thinspan's folder. */
-const PARTS = ['agent', 'lib', 'node_modules', 'package.json', 'tsconfig.json']
-
-/** A folder on a node's machine in which commands for the agent are typed. */
+/** An empty folder on a node's machine, in which commands for the agent are typed. */
 export class AgentFolder {
   readonly #path: string
   readonly #running: Child[] = []
@@ -16,22 +13,20 @@ export class AgentFolder {
   }
 
   static async make(): Promise<AgentFolder> {
-    const path = await mkdtemp(join(tmpdir(), 'thinspan-agent-'))
-    for (const part of PARTS) await symlink(join(ROOT, part), join(path, part))
-    return new AgentFolder(path)
+    return new AgentFolder(await mkdtemp(join(tmpdir(), 'thinspan-agent-')))
   }
 
   /** Through a shell, as typed; resolves once it is done. @throws with what it said, where it fails */
   async type(command: string): Promise<string> {
-    const child = this.#begin(command, {})
+    const child = this.#begin(command)
     const how = await child.end
     if (how !== 'ended with code 0') throw new Error(`${command}\n${how}\n${child.tail()}`)
     return child.tail()
   }
 
   /** A command that goes on until `stop`. */
-  run(command: string, env: Record<string, string>): Child {
-    return this.#begin(command, env)
+  run(command: string): Child {
+    return this.#begin(command)
   }
 
   /** What all that was typed has said, for a failure. */
@@ -44,11 +39,10 @@ export class AgentFolder {
     await rm(this.#path, { recursive: true, force: true })
   }
 
-  #begin(command: string, env: Record<string, string>): Child {
+  #begin(command: string): Child {
     const child = new Child('/bin/sh', ['-c', command], {
       cwd: this.#path,
       group: true,
-      env: { ...env, npm_config_update_notifier: 'false' },
     })
     this.#running.push(child)
     return child

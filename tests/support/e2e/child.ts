@@ -10,6 +10,12 @@ const STOP_SIGNALS = [
 ]
 const TAIL_LINES = 40
 
+/** Programs that still run when the test's process ends are killed, each by the function kept here. */
+const killers = new Set<() => void>()
+process.once('exit', () => {
+  for (const kill of killers) kill()
+})
+
 export interface ChildInit {
   env?: Record<string, string>
   cwd?: string
@@ -46,7 +52,7 @@ export class Child {
     this.end = new Promise((resolve) => {
       const settle = (how: string) => {
         this.ended = how
-        process.off('exit', kill)
+        killers.delete(kill)
         resolve(how)
       }
       this.#process.once('error', (error) => settle(error.message))
@@ -54,9 +60,14 @@ export class Child {
     })
     const { pid } = this.#process
     const kill = () => {
-      if (pid !== undefined) process.kill(this.#group ? -pid : pid, 'SIGKILL')
+      if (pid === undefined) return
+      try {
+        process.kill(this.#group ? -pid : pid, 'SIGKILL')
+      } catch {
+        // It has just ended by itself.
+      }
     }
-    process.once('exit', kill)
+    killers.add(kill)
   }
 
   /** The last lines of what it said on either stream. */
@@ -66,6 +77,10 @@ export class Child {
 
   write(line: string): void {
     this.#process.stdin?.write(`${line}\n`)
+  }
+
+  signal(name: NodeJS.Signals): void {
+    this.#process.kill(name)
   }
 
   async stop(): Promise<void> {

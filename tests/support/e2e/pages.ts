@@ -30,19 +30,28 @@ export async function readingOnPage(on: Page, exact: number): Promise<void> {
   )
 }
 
-/** A command of the Joining page with its capitals filled in, and its port. */
-export function filledIn(command: string | undefined, name: string, port: number): string {
-  return (command ?? '')
-    .replaceAll('NAME', name)
-    .replaceAll(/HOST|PEER/g, '127.0.0.1')
-    .replaceAll('7600', `${port}`)
+/** The text of a block that is ready to copy, of those in sight. */
+export async function commandOn(on: Page, label: string): Promise<string> {
+  return (await on.getByRole('figure', { name: label, exact: true }).locator('pre').textContent()) ?? ''
+}
+
+/** Opens one of the parts that are closed behind their heading. */
+export async function unfold(on: Page, title: string): Promise<void> {
+  await on.getByRole('heading', { level: 3, name: title, exact: true }).click()
+}
+
+/** Commands of the trial, with a range of ports that is free instead of 7600 to 7609. */
+export function onPorts(command: string, firstOfTen: number): string {
+  return command.replaceAll('760', String(firstOfTen / 10))
 }
 
 /** Names of visible buttons and links with which something could be changed. */
 export async function offers(on: Page): Promise<string[]> {
-  const offering = on
-    .locator('button, a')
-    .filter({ visible: true, hasText: /\b(create|new|add|revoke|remove|save the|joining|audit)\b/i })
+  const offering = on.locator('button, a').filter({
+    visible: true,
+    hasText:
+      /\b(create|new|add|revoke|retire|readmit|remove|save(?! as)|offer it|halt|replace|joining|audit)\b/i,
+  })
   return offering.allInnerTexts()
 }
 

@@ -9,11 +9,19 @@ const echo: RouteHandler = Object.assign(
   async (request: Request) => Response.json({ url: request.url, body: await request.text() }),
   { permission: 'health.read' as const },
 )
+const unchanged: RouteHandler = Object.assign(
+  async (request: Request) =>
+    new Response(null, {
+      status: request.headers.get('if-none-match') === '"a"' ? 304 : 200,
+      headers: { etag: '"a"' },
+    }),
+  { permission: 'health.read' as const },
+)
 let server: ReturnType<typeof createRouteServer>
 let port: number
 
 beforeEach(async () => {
-  server = createRouteServer({ 'POST /echo': echo })
+  server = createRouteServer({ 'POST /echo': echo, 'GET /unchanged': unchanged })
   server.listen(0, '127.0.0.1')
   await once(server, 'listening')
   const address = server.address()
@@ -39,6 +47,16 @@ describe('the server of a collector alone', () => {
   it('hands a request to its handler', async () => {
     const answer = await say(['POST /echo?a=b HTTP/1.1', 'host: collector.test:3100'], 'tide')
     expect(answer).toEqual({ status: 200, body: { url: 'http://collector.invalid/echo?a=b', body: 'tide' } })
+  })
+
+  it('answers without a body where nothing has changed', async () => {
+    const ask = (tag: string) =>
+      fetch(`http://127.0.0.1:${port}/unchanged`, { headers: { 'if-none-match': tag } })
+    const answers = [await ask('"a"'), await ask('"b"')]
+    expect(answers.map(({ status, headers }) => [status, headers.get('etag')])).toEqual([
+      [304, '"a"'],
+      [200, '"a"'],
+    ])
   })
 
   it('says 404 for anything else', async () => {

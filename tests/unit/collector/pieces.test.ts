@@ -87,10 +87,10 @@ describe('a report', () => {
     expect(judgeReport(null, someReport(1))).toEqual({ kind: 'new' })
   })
 
-  it('is repeated when it is of the incarnation before, whatever its number', () => {
+  it('is late when it is of an incarnation before, whatever its number', () => {
     const restarted = heldOf(held, { ...someReport(1), incarnation: 'incarnation-2' })
     const later = heldOf(restarted, { ...someReport(2), incarnation: 'incarnation-2' })
-    expect(judgeReport(later, someReport(6))).toEqual({ kind: 'repeated' })
+    expect(judgeReport(later, someReport(6))).toEqual({ kind: 'late' })
     expect(judgeReport(later, { ...someReport(1), incarnation: 'incarnation-3' })).toEqual({ kind: 'new' })
   })
 

@@ -27,11 +27,18 @@ async function rounds(forkEm: () => Promise<never>) {
     load: async () => ({
       pace: 'steady' as const,
       disclosure: 'named' as const,
+      weights: 'unit' as const,
+      retireAfterHours: null,
+      shut: [],
+      leftOutNames: [],
+      key: { publicKey: 'public', privateKey: 'private' },
+      keysInTurn: [],
       snapshot: { atMs: clock.monotonicMs(), agents: [agent] },
     }),
     write: async (round: Round) => written.push(round) > 0,
   }
-  const term = new Term({ store, usual, clock, random: createRandom(1), log }, { overlayId: 'tides' })
+  const upkeep = { look: async () => {} }
+  const term = new Term({ store, usual, upkeep, clock, random: createRandom(1), log }, { overlayId: 'tides' })
   const ended = term.run(stop.signal)
   await clock.advance(PACES.steady.intervalMs)
   stop.abort()

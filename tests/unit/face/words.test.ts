@@ -3,7 +3,7 @@ import type { Cut, OverlayLink, OverlayNode, Reading } from '@/lib/data/dto'
 import { ifItGoes, whyHidden } from '@/lib/face/crossing'
 import { firstReadingSeconds, staleAfterMs } from '@/lib/face/expect'
 import { titleFigures } from '@/lib/face/figures'
-import { filterKeys, labelText } from '@/lib/face/node-columns'
+import { labelText } from '@/lib/face/node-columns'
 import { overlayOfPath, overlayPages } from '@/lib/face/pages'
 import { parseSheetChoice, sheetCookie } from '@/lib/face/sheet-choice'
 import { slugOf } from '@/lib/face/slug'
@@ -214,6 +214,7 @@ describe('small words', () => {
       'A /overlays/harbourline',
       'B /overlays/harbourline/nodes',
       'C /overlays/harbourline/joining',
+      'D /overlays/harbourline/upkeep',
     ])
   })
 
@@ -228,21 +229,7 @@ describe('small words', () => {
     expect(sheetCookie('system')).toContain('max-age=0')
   })
 
-  it('writes labels the same way whatever their order, and offers filters worth having', () => {
+  it('writes labels the same way whatever their order', () => {
     expect(labelText({ rack: 'r2', harbour: 'Tarnwick' })).toBe('harbour=Tarnwick; rack=r2')
-    const node = (labels: Record<string, string>): OverlayNode => ({
-      name: 'n',
-      labels,
-      side: null,
-      value: null,
-      degree: null,
-      weightedDegree: null,
-      heardAt: null,
-      version: null,
-      state: 'heard',
-    })
-    expect(filterKeys([node({ harbour: 'B', os: 'x' }), node({ harbour: 'A', os: 'x' })])).toEqual([
-      { key: 'harbour', values: ['A', 'B'] },
-    ])
   })
 })

@@ -3,7 +3,7 @@ import { getIngest } from '@/lib/collector/process'
 import { AppError } from '@/lib/http/app-error'
 import { authorise } from '@/lib/http/call'
 import { route } from '@/lib/http/route'
-import { MAX_REPORT_BYTES, reportSchema } from '@/lib/protocol'
+import { MAX_REPORT_BYTES, reportRequestSchema } from '@/lib/protocol'
 
 const tickets = new WeakMap<Request, Ticket>()
 
@@ -11,7 +11,7 @@ const tickets = new WeakMap<Request, Ticket>()
 export const POST = route(
   'agent.report',
   {
-    body: reportSchema,
+    body: reportRequestSchema,
     maxBytes: MAX_REPORT_BYTES,
     authenticate: async (_em, { body, request, facts }) => {
       if (!facts.bearer)

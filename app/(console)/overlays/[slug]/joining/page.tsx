@@ -4,6 +4,7 @@ import { PageHeading, ProblemState } from '@/components/ui'
 import { listJoiningCodes } from '@/lib/data'
 import { page } from '@/lib/http'
 import { createJoiningCodeAction, revokeJoiningCodeAction } from './actions'
+import { readExample } from './example'
 
 export const metadata: Metadata = { title: 'Joining' }
 
@@ -18,5 +19,13 @@ export default async function JoiningPage({ params }: { params: Promise<{ slug: 
       </>
     )
   }
-  return <Joining slug={slug} create={createJoiningCodeAction} revoke={revokeJoiningCodeAction} />
+  return (
+    <Joining
+      slug={slug}
+      create={createJoiningCodeAction}
+      revoke={revokeJoiningCodeAction}
+      nodeVersion={process.versions.node}
+      example={await readExample()}
+    />
+  )
 }

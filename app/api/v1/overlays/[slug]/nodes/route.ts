@@ -1,10 +1,9 @@
 import { z } from 'zod'
-import { listNodes } from '@/lib/data/nodes'
-import { pageSchema } from '@/lib/data/paging'
+import { listNodes, nodesQuerySchema } from '@/lib/data/nodes'
 import { route } from '@/lib/http/route'
 
 const params = z.object({ slug: z.string() })
 
-export const GET = route('node.list', { params, query: pageSchema }, (call, { params, query }) =>
+export const GET = route('node.list', { params, query: nodesQuerySchema }, (call, { params, query }) =>
   listNodes(call, params.slug, query),
 )

@@ -1,0 +1,87 @@
+import type { Frame } from '@/lib/method/frame'
+import type { ReceiveOutcome } from '@/lib/method/node'
+import type { CloseName, LinkPeer } from '@/lib/protocol'
+import type { LinkManagerComponents, LinkManagerInit } from './link-contract'
+import type { LinkTable } from './link-table'
+import { RateLimits } from './rate-limits'
+import { readMessage } from './read-message'
+import type { LinkSession } from './session'
+
+export type IntakeComponents = Pick<LinkManagerComponents, 'clock' | 'logger' | 'node' | 'passes' | 'trust'>
+
+export interface IntakeInit extends Pick<LinkManagerInit, 'tickMs' | 'onOrders' | 'onRelay'> {
+  table: LinkTable
+}
+
+/** What proven peers send: limited, read, judged, and given to whom it is meant for. */
+export class Intake {
+  private readonly components: IntakeComponents
+  private readonly init: IntakeInit
+  private readonly limits: RateLimits
+
+  constructor(components: IntakeComponents, init: IntakeInit) {
+    this.components = components
+    this.init = init
+    this.limits = new RateLimits({ tickMs: init.tickMs })
+  }
+
+  keepHouse(nowMs: number): void {
+    this.limits.prune(nowMs)
+  }
+
+  message(session: LinkSession, peer: LinkPeer, bytes: Uint8Array): void {
+    const { node, clock, logger, trust } = this.components
+    const nowMs = clock.monotonicMs()
+    if (!this.limits.take(peer.agentId, bytes.length, nowMs)) {
+      logger.warn({ peer: peer.agentId }, 'more came than the pace allows')
+      session.close('too-fast')
+      return
+    }
+    const message = readMessage(bytes, peer, trust, node.ordersSequence)
+    switch (message.kind) {
+      case 'frame':
+        this.takeFrame(session, peer, message.frame, nowMs)
+        break
+      case 'pass':
+        void this.judgeRenewal(session, peer, message.token)
+        break
+      case 'refused':
+        logger.warn({ peer: peer.agentId, reason: message.detail }, 'a message was refused')
+        session.close(message.close, message.detail)
+        break
+      default:
+        this.init.onRelay?.(peer.agentId, message.kind, message.bytes)
+    }
+  }
+
+  private takeFrame(session: LinkSession, peer: LinkPeer, frame: Frame, nowMs: number): void {
+    const { node, logger } = this.components
+    const { table, onOrders } = this.init
+    table.heard(session, peer.agentId)
+    table.noteDistance(peer.agentId, frame.distance ?? null)
+    const heldOrdersSequence = node.ordersSequence
+    const outcome = node.receive(peer.agentId, peer.incarnation, frame, nowMs)
+    if (outcome.kind === 'refuse') {
+      logger.warn({ peer: peer.agentId, reason: outcome.reason }, 'a link was refused')
+      session.close(closeOf(outcome.reason), outcome.reason)
+    }
+    if (frame.orders && node.ordersSequence > heldOrdersSequence) onOrders?.(frame.orders.orders)
+  }
+
+  private async judgeRenewal(session: LinkSession, peer: LinkPeer, token: string): Promise<void> {
+    if (session.isJudging) return
+    session.isJudging = true
+    const judged = await this.components.passes.judge(token)
+    session.isJudging = false
+    // One that cannot be judged, as by a newer ring of keys than is held here, changes nothing.
+    if (!session.isOpen || !judged.ok) return
+    const { agentId, key, expiresAt } = judged.claims
+    if (agentId !== peer.agentId || key !== peer.key) session.close('pass-of-another-agent')
+    else this.init.table.renew(agentId, expiresAt)
+  }
+}
+
+function closeOf(reason: Extract<ReceiveOutcome, { kind: 'refuse' }>['reason']): CloseName {
+  if (reason === 'left-out') return 'left-out'
+  return reason === 'acknowledged-more-than-sent' ? 'counter-exceeded' : 'counter-fell'
+}

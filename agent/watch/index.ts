@@ -1,0 +1,5 @@
+export { type AgentVerdict, judge, STUCK_AFTER_MS, type WatchFacts } from './facts'
+export { METRICS_MEDIA_TYPE, metricsText } from './metrics-text'
+export { isLoopback, WatchServer } from './server'
+export { ServiceNotice } from './service-notice'
+export { TickWatch } from './tick-watch'

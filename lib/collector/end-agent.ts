@@ -1,0 +1,28 @@
+import { type EntityManager, notify } from '@/lib/db'
+import { enterEvent } from './events-store'
+import type { EventDraft } from './judge'
+import { ORDERS_CHANNEL } from './notices'
+import { query } from './query'
+
+/**
+ * Ends an agent's membership, in the caller's transaction: no session of it works any more, and the next orders, which
+ * go out at once, shut its links. @returns false where it is in that state already
+ */
+export async function endAgent(
+  em: EntityManager,
+  agent: { id: string; overlayId: string },
+  state: 'left' | 'revoked',
+  event: EventDraft,
+): Promise<boolean> {
+  const [ended] = await query(
+    em,
+    `update agents set state = ?, ended_at = clock_timestamp(), left_out_because = null
+     where id = ? and state <> ? returning id`,
+    [state, agent.id, state],
+  )
+  if (!ended) return false
+  await query(em, 'delete from agent_sessions where agent_id = ?', [agent.id])
+  await enterEvent(em, agent.overlayId, event)
+  await notify(em, ORDERS_CHANNEL, agent.overlayId)
+  return true
+}

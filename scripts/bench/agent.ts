@@ -1,0 +1,127 @@
+import { parseArgs } from 'node:util'
+import { bareCpuShare } from './agent/bare'
+import { type Measured, measure } from './agent/measure'
+import { BenchOverlay, type BenchOverlayInit } from './agent/overlay'
+import { tickCosts } from './agent/walkers'
+
+/** What the agent is to stay under at steady pace with 8 neighbours. */
+const LIMITS = { cpuShare: 0.01, rssMib: 90, bytesPerLinkSecond: 2_000, reportBytes: 4_000 }
+/** Five of a reading, four of a rehearsal. */
+const COLONIES = 5 + 4
+const NEIGHBOURS = 8
+const HUB_NEIGHBOURS = 1_000
+const WALKERS = [100, 10_000, 1_000_000]
+const WARM_UP_MS = 30_000
+const BARE_WARM_UP_MS = 10_000
+
+type Print = (line: string) => void
+
+/**
+ * `npm run bench -- agent [--seconds 60] [--only steady,walkers,hub] [--node-flags=…] [--agent-file FILE]`: what one agent costs. The one-file
+ * agent runs in a process of its own, its neighbours are real agents in another one, the collector a small one in this.
+ */
+export async function benchAgent(args: readonly string[], print: Print): Promise<void> {
+  const { values } = parseArgs({
+    args: [...args],
+    options: {
+      seconds: { type: 'string', default: '60' },
+      only: { type: 'string', default: 'steady,walkers,hub' },
+      'node-flags': { type: 'string', default: '' },
+      'agent-file': { type: 'string' },
+    },
+  })
+  const ms = Number(values.seconds) * 1000
+  const nodeFlags = values['node-flags'].split(' ').filter((flag) => flag !== '')
+  const parts = values.only.split(',')
+  print(`Node ${process.version}, steady pace, ${COLONIES} colonies (5 and a rehearsal's 4).`)
+  const shared = { colonies: COLONIES, nodeFlags, agentFile: values['agent-file'] ?? null }
+  if (parts.includes('steady')) {
+    const steady: BenchOverlayInit = {
+      ...shared,
+      neighbours: NEIGHBOURS,
+      linkedAmongThemselves: true,
+      disclosure: 'named',
+      countsBytes: true,
+    }
+    const measured = await run(steady, ms)
+    printSteady(measured, await bareCpuShare(NEIGHBOURS, BARE_WARM_UP_MS, ms / 2), print)
+  }
+  if (parts.includes('walkers')) printWalkers(print)
+  if (parts.includes('hub')) {
+    const hub: BenchOverlayInit = {
+      ...shared,
+      neighbours: HUB_NEIGHBOURS,
+      linkedAmongThemselves: false,
+      disclosure: 'sealed',
+      countsBytes: false,
+    }
+    printHub(await run(hub, ms), print)
+  }
+}
+
+async function run(init: BenchOverlayInit, ms: number): Promise<Measured> {
+  const overlay = new BenchOverlay(init)
+  try {
+    await overlay.start()
+    return await measure(overlay, WARM_UP_MS, ms)
+  } finally {
+    await overlay.stop()
+  }
+}
+
+function printSteady(measured: Measured, bare: number, print: Print): void {
+  const { cpuShare, rssMib, peakRssMib, bytesPerLinkSecond, reportBytesMost, reportBytesMean } = measured
+  print('')
+  print(headline(measured))
+  const row = (what: string, value: string, limit: string, holds: boolean) =>
+    print(`  ${what.padEnd(34)} ${value.padStart(22)}   ${limit.padEnd(16)} ${holds ? 'held' : 'MISSED'}`)
+  row('CPU, share of a core', percent(cpuShare), 'under 1 %', cpuShare < LIMITS.cpuShare)
+  print(`    of it the same messages over bare WebSockets, here and now: ${percent(bare)}`)
+  row(
+    'resident memory (peak)',
+    `${rssMib.toFixed(1)} MiB (${peakRssMib.toFixed(1)})`,
+    'under 90 MiB',
+    rssMib < LIMITS.rssMib,
+  )
+  const perLink = bytesPerLinkSecond ?? Number.NaN
+  row(
+    'per link, both ways, on the socket',
+    `${Math.round(perLink)} B/s`,
+    'under 2 kB/s',
+    perLink < LIMITS.bytesPerLinkSecond,
+  )
+  row(
+    'report, largest (mean)',
+    `${reportBytesMost} B (${Math.round(reportBytesMean)})`,
+    'under 4 kB',
+    reportBytesMost < LIMITS.reportBytes,
+  )
+  row('ticks more than a tick late', share(measured.lateShare), '', true)
+}
+
+function printWalkers(print: Print): void {
+  print('')
+  print(`A tick with its frames, ${NEIGHBOURS} links, ${COLONIES} colonies, on a virtual clock:`)
+  const costs = tickCosts(WALKERS, COLONIES)
+  const first = costs[0]?.microseconds ?? Number.NaN
+  for (const { walkersPerNode, microseconds } of costs)
+    print(
+      `  ${String(walkersPerNode).padStart(9)} walkers per node and type  ${microseconds.toFixed(0).padStart(6)} µs  ×${(microseconds / first).toFixed(2)}`,
+    )
+}
+
+function printHub(measured: Measured, print: Print): void {
+  print('')
+  print(headline(measured))
+  const late = share(measured.lateShare)
+  const rate = measured.ticksPerSecond?.toFixed(2) ?? 'not told'
+  print(`  CPU ${percent(measured.cpuShare)} of a core`)
+  print(`  resident memory ${measured.rssMib.toFixed(1)} MiB (peak ${measured.peakRssMib.toFixed(1)})`)
+  print(`  ${rate} ticks per second, more than a tick late: ${late}`)
+  print(`  report ${Math.round(measured.reportBytesMean)} B`)
+}
+
+const headline = ({ links, colonies, seconds }: Measured): string =>
+  `${links} neighbours, ${colonies} colonies, ${seconds.toFixed(0)} s:`
+const percent = (value: number): string => `${(100 * value).toFixed(2)} %`
+const share = (value: number | null): string => (value === null ? 'not told' : percent(value))

@@ -1,0 +1,60 @@
+import { type BenchOverlay, MEASURED } from './overlay'
+import { figuresOf } from './process-figures'
+
+export interface Measured {
+  seconds: number
+  /** Of one core. */
+  cpuShare: number
+  rssMib: number
+  peakRssMib: number
+  /** Both ways together, per link; null where not counted. */
+  bytesPerLinkSecond: number | null
+  /** Largest and mean size of the reports. */
+  reportBytesMost: number
+  reportBytesMean: number
+  ticksPerSecond: number | null
+  /** Share of ticks that came more than a whole tick late. */
+  lateShare: number | null
+  links: number
+  colonies: number
+}
+
+/** Lets the overlay warm up, then watches the measured agent. */
+export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: number): Promise<Measured> {
+  await delay(warmUpMs)
+  const { proxy, collector, pid } = overlay
+  const joined = collector.find(MEASURED)
+  const before = figuresOf(pid)
+  const healthBefore = joined.last?.report.node.health
+  const bytesBefore = proxy.bytesIn + proxy.bytesOut
+  const startedAtMs = performance.now()
+  joined.reportBytes.length = 0
+  let rssMib = 0
+  let links = 0
+  while (performance.now() - startedAtMs < ms) {
+    await delay(Math.min(1_000, ms))
+    rssMib = Math.max(rssMib, figuresOf(pid).rssMib)
+    links = Math.max(links, overlay.links)
+  }
+  const after = figuresOf(pid)
+  const seconds = (performance.now() - startedAtMs) / 1000
+  const health = joined.last?.report.node.health
+  const ticks = health && healthBefore ? health.ticks - healthBefore.ticks : null
+  const late = health && healthBefore ? health.ticksLate - healthBefore.ticksLate : null
+  const bytes = proxy.bytesIn + proxy.bytesOut - bytesBefore
+  return {
+    seconds,
+    cpuShare: (after.cpuSeconds - before.cpuSeconds) / seconds,
+    rssMib,
+    peakRssMib: after.peakRssMib,
+    bytesPerLinkSecond: bytes === 0 ? null : bytes / seconds / links,
+    reportBytesMost: Math.max(...joined.reportBytes),
+    reportBytesMean: joined.reportBytes.reduce((sum, size) => sum + size, 0) / joined.reportBytes.length,
+    ticksPerSecond: ticks === null ? null : ticks / seconds,
+    lateShare: ticks === null || late === null ? null : late / ticks,
+    links,
+    colonies: joined.last?.report.sums.colonies.length ?? 0,
+  }
+}
+
+const delay = (ms: number): Promise<void> => new Promise((resolve) => setTimeout(resolve, ms))

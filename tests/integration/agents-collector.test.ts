@@ -1,0 +1,148 @@
+import { randomBytes } from 'node:crypto'
+import type { AddressInfo } from 'node:net'
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import {
+  createClock,
+  createHttpCollector,
+  createPost,
+  createWsTransport,
+  type Ending,
+  silentLogger,
+} from '@/agent'
+import { GET as directory } from '@/app/api/agent/directory/route'
+import { POST as enrol } from '@/app/api/agent/enrol/route'
+import { POST as key } from '@/app/api/agent/key/route'
+import { POST as leave } from '@/app/api/agent/leave/route'
+import { POST as report } from '@/app/api/agent/report/route'
+import { POST as session } from '@/app/api/agent/session/route'
+import { AgentSchema, AgentStateSchema } from '@/entities'
+import { createRouteServer } from '@/lib/collector/http-server'
+import { revokeAgent } from '@/lib/data/agents'
+import { rotateSigningKey } from '@/lib/data/signing-key'
+import { createRandom } from '@/lib/method/random'
+import { parseEdgeList } from '@/lib/topology'
+import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
+import { seedCode, seedOverlay } from '../support/collector'
+import { startTestLeader, type TestLeader } from '../support/leaders'
+import { openTestTeam, type TestTeam } from '../support/team'
+
+/** A ring of six with a chord. */
+const EDGES = [
+  'tar-01,tar-02',
+  'tar-02,gul-04',
+  'gul-04,gul-05',
+  'gul-05,eel-08',
+  'eel-08,eel-09',
+  'eel-09,tar-01',
+  'tar-02,eel-08',
+].join('\n')
+
+const base = { monotonicMs: () => performance.now(), epochMs: () => Date.now() }
+const clock = createClock(base)
+const never = new AbortController().signal
+const server = createRouteServer({
+  'POST /api/agent/enrol': enrol,
+  'POST /api/agent/session': session,
+  'POST /api/agent/report': report,
+  'POST /api/agent/key': key,
+  'POST /api/agent/leave': leave,
+  'GET /api/agent/directory': directory,
+})
+
+describe('agents of today and the collector of today', () => {
+  let team: TestTeam
+  let overlay: { id: string; slug: string }
+  let leader: TestLeader
+  let fleet: Fleet
+  const endings: { name: string; ending: Ending }[] = []
+
+  beforeAll(async () => {
+    team = await openTestTeam()
+    overlay = await seedOverlay(team.database, team.teamId, { slug: 'tides' })
+    leader = startTestLeader(team.database, 7)
+    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
+    const { port } = server.address() as AddressInfo
+    const topology = parseEdgeList(EDGES)
+    if (!topology.ok) throw new Error('bad edges')
+    fleet = createFleet(
+      {
+        transport: createWsTransport({ clock }),
+        collector: createHttpCollector(
+          { post: createPost(), clock },
+          { baseUrl: `http://127.0.0.1:${port}` },
+        ),
+        clockOf: () => clock,
+        clock,
+        random: createRandom('agents and collector'),
+        randomBytes,
+        logger: silentLogger,
+      },
+      {
+        topology: topology.graph,
+        code: await seedCode(team.database, overlay.id, { uses: 6 }),
+        onEnded: (name, ending) => endings.push({ name, ending }),
+      },
+    )
+    await fleet.start()
+  })
+  afterAll(async () => {
+    await fleet.stop()
+    server.closeAllConnections()
+    server.close()
+    await leader.stop()
+    await team.close()
+  })
+
+  const em = () => team.database.orm.em.fork()
+  const agent = (name: string) => fleet.member(name).agent!
+  const status = (name: string) => agent(name).status()
+  const stateOf = (name: string) => em().findOneOrFail(AgentStateSchema, fleet.member(name).agentId)
+  const rowOf = (name: string) => em().findOneOrFail(AgentSchema, fleet.member(name).agentId)
+
+  test('follow each other: signed orders, receipts, health', async () => {
+    await until(async () => fleet.names.every((name) => !status(name).frozen))
+    const { node } = await stateOf('tar-01')
+    expect(node.health).toMatchObject({ linkKind: 'path', keyRing: 1, source: null, upgrade: null })
+    expect(status('tar-01').reports.lastError).toBeNull()
+  })
+
+  test('a report goes round by a neighbour where the agent’s own way is cut', async () => {
+    fleet.detour('gul-05')
+    await until(async () => (await stateOf('gul-05')).relayed === true)
+    const { reportNumber } = await stateOf('gul-05')
+    await until(async () => Number((await stateOf('gul-05')).reportNumber) > Number(reportNumber) + 2)
+    await until(async () => status('gul-05').reports.relayed > 2)
+    expect(status('gul-05')).toMatchObject({ distance: 1, frozen: false })
+    fleet.hear('gul-05')
+    await until(async () => (await stateOf('gul-05')).relayed !== true)
+  })
+
+  test('the overlay’s key and an agent’s own are replaced while all goes on', async () => {
+    fleet.detour('gul-05')
+    await until(async () => (await stateOf('gul-05')).relayed === true)
+    await rotateSigningKey(await team.callAs('owner'), overlay.slug)
+    await until(async () => fleet.names.every((name) => status(name).keyRing > 1))
+    fleet.hear('gul-05')
+    const before = (await rowOf('tar-02')).publicKey
+    expect(await agent('tar-02').rotateKey(never)).toMatchObject({ ok: true })
+    expect((await rowOf('tar-02')).publicKey).not.toBe(before)
+    const { delivered } = status('tar-02').reports
+    await until(async () => status('tar-02').reports.delivered > delivered + 2)
+    await until(async () => status('tar-02').links.every(({ up }) => up))
+    for (const name of fleet.names) expect(status(name)).toMatchObject({ frozen: false })
+  })
+
+  test('one that leaves is gone, one that is revoked is told so and shut out', async () => {
+    expect(await agent('eel-09').leave(never, 'moved')).toMatchObject({ ok: true })
+    expect((await rowOf('eel-09')).state).toBe('left')
+    await revokeAgent(await team.callAs('operator'), overlay.slug, 'gul-04')
+    await until(async () => endings.length > 0)
+    expect(endings).toMatchObject([{ name: 'gul-04' }])
+    await until(async () => !agent('tar-02').isLinked(fleet.member('gul-04').agentId))
+    expect(leader.failures).toEqual([])
+  })
+})
+
+async function until(done: () => Promise<boolean>): Promise<void> {
+  while (!(await done())) await new Promise((resolve) => setTimeout(resolve, 25))
+}

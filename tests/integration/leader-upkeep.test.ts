@@ -1,0 +1,274 @@
+import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { POST as sessionRoute } from '@/app/api/agent/session/route'
+import { GET as keyRoute, POST as rotateRoute } from '@/app/api/v1/overlays/[slug]/signing-key/route'
+import { AgentSchema, OverlayEventSchema, OverlaySchema } from '@/entities'
+import { takeOver } from '@/lib/collector/key-turn'
+import { LeaderStore, type Loaded } from '@/lib/collector/leader-store'
+import { BLANK_MEMORY } from '@/lib/collector/memory'
+import { systemClock } from '@/lib/collector/process'
+import { Upkeep } from '@/lib/collector/upkeep'
+import { readmitAgent, revokeAgent } from '@/lib/data/agents'
+import { signingKeySchema } from '@/lib/data/dto'
+import { setRetireAfter } from '@/lib/data/overlays'
+import { sql } from '@/lib/db'
+import { keyRingSchema, sessionReplySchema } from '@/lib/protocol'
+import {
+  ask,
+  call,
+  deliver,
+  joinAgent,
+  type Member,
+  problemOf,
+  seedCode,
+  seedOverlay,
+  sessionBody,
+} from '@/tests/support/collector'
+import { startTestLeader, type TestLeader } from '@/tests/support/leaders'
+import { someReport } from '@/tests/support/reports'
+import { RingHolder } from '@/tests/support/ring-holder'
+import { openTestTeam, type TestTeam } from '@/tests/support/team'
+
+let team: TestTeam
+let overlay: { id: string; slug: string }
+let overlayKey: string
+const leaders: TestLeader[] = []
+let count = 0
+
+beforeAll(async () => {
+  team = await openTestTeam()
+})
+afterAll(() => team.close())
+beforeEach(async () => {
+  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
+  overlayKey = (await em().findOneOrFail(OverlaySchema, overlay.id)).publicKey
+})
+afterEach(async () => {
+  await Promise.all(leaders.splice(0).map((leader) => leader.stop()))
+  await sql(em(), `update agents set state = 'left'`)
+})
+
+const em = () => team.database.orm.em.fork()
+const lead = (seed: number) => {
+  const leader = startTestLeader(team.database, seed)
+  leaders.push(leader)
+  return leader
+}
+const join = async (...names: string[]): Promise<Member[]> => {
+  const code = await seedCode(team.database, overlay.id, { uses: names.length })
+  const members: Member[] = []
+  for (const name of names) members.push(await joinAgent(code, name))
+  return members
+}
+const holder = (member: Member) => new RingHolder(member, { overlayId: overlay.id, overlayKey })
+const params = () => ({ slug: overlay.slug })
+const signingKey = async () =>
+  signingKeySchema.parse(
+    await (await ask(keyRoute, 'GET', { bearer: team.token('operator'), params: params() })).json(),
+  )
+const rotateAs = (role: 'owner' | 'operator') =>
+  ask(rotateRoute, 'POST', { bearer: team.token(role), params: params() })
+const rotate = async () => signingKeySchema.parse(await (await rotateAs('owner')).json())
+const eventsOf = async (kind: 'agent-left' | 'key-rotated' | 'agent-left-out' | 'agent-readmitted') =>
+  (await em().find(OverlayEventSchema, { overlayId: overlay.id, kind })).map(({ text }) => text)
+
+/** Reports go on, one after the other, until it is as wanted. */
+async function reportUntil(
+  agents: readonly RingHolder[],
+  wanted: () => boolean | Promise<boolean>,
+): Promise<void> {
+  for (let round = 0; round < 400; round++) {
+    for (const agent of agents) await agent.report()
+    if (await wanted()) return
+  }
+  throw new Error('It did not come about.')
+}
+
+describe('a new signing key', () => {
+  it('takes over without an agent missing orders, and lets the old one go when its passes have ended', async () => {
+    const first = lead(1)
+    const agents = (await join('tar-01', 'gul-04')).map(holder)
+    await reportUntil(agents, () => agents.every(({ sequence }) => sequence > 0))
+    const started = await rotate()
+    expect(started).toMatchObject({ publicKey: overlayKey, ringVersion: 2, previous: null })
+    const next = started.next!.publicKey
+    expect(await problemOf(await rotateAs('owner'))).toEqual([409, 'rotation-running'])
+    // One that is heard and has not followed yet keeps the old key in force.
+    await agents[0]!.report()
+    await agents[0]!.report()
+    await first.leads(1)
+    expect((await signingKey()).publicKey).toBe(overlayKey)
+    await leaders.splice(0)[0]!.stop()
+    lead(2)
+    await reportUntil(agents, async () => (await signingKey()).publicKey === next)
+    await reportUntil(agents, () =>
+      agents.every(({ held, signedBy }) => held.version === 3 && signedBy.at(-1) === next),
+    )
+    expect(agents.map(({ signedBy, refused }) => [signedBy, refused])).toEqual([
+      [[overlayKey, next], []],
+      [[overlayKey, next], []],
+    ])
+    expect(await signingKey()).toMatchObject({
+      ringVersion: 3,
+      next: null,
+      previous: { publicKey: overlayKey },
+    })
+    const until = Date.parse((await signingKey()).previous!.until)
+    const { passEndsAt } = await em().findOneOrFail(AgentSchema, agents[0]!.member.agentId)
+    expect(until).toBeGreaterThanOrEqual(passEndsAt!.getTime())
+    await sql(em(), 'update overlay_keys set until = clock_timestamp() where overlay_id = ?', [overlay.id])
+    await reportUntil(agents, () => agents.every(({ held }) => held.version === 4))
+    expect(agents.map(({ held, refused }) => [held.keys, refused])).toEqual([
+      [[next], []],
+      [[next], []],
+    ])
+    expect(await eventsOf('key-rotated')).toEqual(['A new key signs passes and orders'])
+    expect(team.failures).toEqual([])
+  })
+
+  it('is followed by one that slept through two rotations, and by one that enrols after them', async () => {
+    lead(3)
+    const [tar, gul] = await join('tar-01', 'gul-04')
+    const awake = holder(tar!)
+    const asleep = holder(gul!)
+    await sql(em(), 'delete from agent_states where agent_id = ?', [gul!.agentId])
+    for (let turn = 0; turn < 2; turn++) {
+      const { next } = await rotate()
+      await reportUntil([awake], () => awake.signedBy.at(-1) === next!.publicKey)
+    }
+    const response = await call(sessionRoute, sessionBody(gul!.agentId, gul!.keys))
+    const session = sessionReplySchema.parse(await response.json())
+    expect(await asleep.takes(session.pass)).toBe(false)
+    asleep.follow(session.keyRings ?? [])
+    expect([asleep.held, await asleep.takes(session.pass)]).toEqual([awake.held, true])
+    const { publicKey } = await em().findOneOrFail(OverlaySchema, overlay.id)
+    const [eel] = await join('eel-09')
+    const late = new RingHolder(eel!, { overlayId: overlay.id, overlayKey: publicKey })
+    await late.report()
+    expect(late.held).toEqual(awake.held)
+    await late.report()
+    expect([late.refused, awake.refused]).toEqual([[], []])
+  })
+
+  it('takes over once, whatever leaders do at the same time, and each ring is signed by the one before', async () => {
+    await join('tar-01')
+    await rotate()
+    const turn = () => em().transactional((tx) => takeOver(tx, overlay.id))
+    await Promise.all([turn(), turn(), turn()])
+    const rings = await sql(
+      em(),
+      `select version, keys, signed_by as "signedBy", signature from overlay_key_rings where overlay_id = ? order by version`,
+      [overlay.id],
+    )
+    expect(rings).toHaveLength(2)
+    const agent = new RingHolder(
+      { agentId: '', name: '', keys: undefined!, token: '' },
+      { overlayId: overlay.id, overlayKey },
+    )
+    agent.follow(rings.map((ring) => keyRingSchema.parse(ring)))
+    expect(agent.held.version).toBe(3)
+  })
+
+  it('is for owners to begin and for operators to look at', async () => {
+    expect(await problemOf(await rotateAs('operator'))).toEqual([403, 'forbidden'])
+    const looked = await ask(keyRoute, 'GET', { bearer: team.token('viewer'), params: params() })
+    expect(await problemOf(looked)).toEqual([403, 'forbidden'])
+  })
+})
+
+describe('orders', () => {
+  it('name who was revoked at once, before the next round, and say the overlay’s weights', async () => {
+    // A round every ten seconds: what comes sooner was sent for the occasion.
+    await sql(em(), `update overlays set pace = 'calm' where id = ?`, [overlay.id])
+    const leader = lead(4)
+    const [tar, gul] = await join('tar-01', 'gul-04')
+    await leader.leads(1)
+    const agent = holder(tar!)
+    await reportUntil([agent], () => agent.sequence > 0)
+    const [before, startedAt] = [agent.sequence, Date.now()]
+    await revokeAgent(await team.callAs('operator'), overlay.slug, 'gul-04')
+    await reportUntil([agent], () => agent.sequence > before)
+    expect(Date.now() - startedAt).toBeLessThan(8_000)
+    expect(agent.shut).toEqual([{ agentId: gul!.agentId, reason: 'revoked' }])
+    expect((await agent.report()).signedOrders!.text).toContain('"weights":"unit"')
+    expect(leader.failures).toEqual([])
+  })
+
+  it('leave out whom a round leaves out, until an operator readmits it', async () => {
+    const [tar] = await join('tar-01', 'gul-04')
+    const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'one' })
+    const { key } = (await store.load())!
+    await store.claim()
+    const round = {
+      state: { version: 1 as const, control: {} as never, memory: BLANK_MEMORY },
+      orders: { sequence: 1 } as never,
+      key,
+      reading: null,
+      events: [],
+    }
+    const because = 'its declared births do not fit its walkers'
+    expect(await store.write({ ...round, sequence: 1, leftOut: [{ agentId: tar!.agentId, because }] })).toBe(
+      true,
+    )
+    expect(await em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
+      state: 'left-out',
+      leftOutBecause: because,
+    })
+    expect(await eventsOf('agent-left-out')).toEqual([`tar-01 left out: ${because}`])
+    const loaded: Loaded = (await store.load())!
+    expect(loaded.shut).toEqual([{ agentId: tar!.agentId, reason: 'left-out' }])
+    expect([loaded.leftOutNames, loaded.snapshot.agents.map(({ name }) => name)]).toEqual([
+      [{ name: 'tar-01', because }],
+      ['gul-04'],
+    ])
+    // Once out, a second word for it changes nothing.
+    expect(await store.write({ ...round, sequence: 2, leftOut: [{ agentId: tar!.agentId, because }] })).toBe(
+      true,
+    )
+    expect(await eventsOf('agent-left-out')).toHaveLength(1)
+    await readmitAgent(await team.callAs('operator'), overlay.slug, 'tar-01')
+    expect(await em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
+      state: 'joined',
+      leftOutBecause: null,
+    })
+    expect((await store.load())?.shut).toEqual([])
+  })
+})
+
+describe('agents unheard for longer than the overlay allows', () => {
+  const names = ['tar-01', 'tar-02', 'gul-04', 'pin-02']
+  const look = async (holderName: string, listeningSinceMs: number) => {
+    const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'leader' })
+    const init = { overlayId: overlay.id, holder: holderName }
+    const upkeep = new Upkeep({ forkEm: async () => em(), clock: systemClock }, init)
+    const { snapshot, ...rest } = (await store.load())!
+    await upkeep.look({ snapshot, ...rest }, { ...BLANK_MEMORY, listeningSinceMs })
+    // At most once a minute.
+    await upkeep.look({ snapshot, ...rest }, { ...BLANK_MEMORY, listeningSinceMs: 0 })
+  }
+  const joined = async () =>
+    (await em().find(AgentSchema, { overlay: overlay.id, state: 'joined' })).map(({ name }) => name).sort()
+
+  it('are retired by whoever leads, while it has been listening, and said', async () => {
+    const members = await join(...names)
+    for (const member of members) await deliver(member, someReport(1))
+    const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'leader' })
+    await store.claim()
+    await sql(
+      em(),
+      `update agent_states set received_at = clock_timestamp() - interval '3 hours' where agent_id = ?`,
+      [members[3]!.agentId],
+    )
+    await look('leader', 0)
+    expect(await joined()).toEqual([...names].sort())
+    await setRetireAfter(await team.callAs('operator'), overlay.slug, 2)
+    await look('leader', Date.now() - 1_000)
+    await look('another', 0)
+    expect(await joined()).toEqual([...names].sort())
+    await look('leader', 0)
+    expect(await joined()).toEqual(['gul-04', 'tar-01', 'tar-02'])
+    expect(await eventsOf('agent-left')).toEqual(['pin-02 retired: unheard for 2 hours'])
+    expect(
+      await problemOf(await call(sessionRoute, sessionBody(members[3]!.agentId, members[3]!.keys))),
+    ).toEqual([403, 'agent-ended'])
+  })
+})

@@ -1,0 +1,47 @@
+import { describe, expect, it } from 'vitest'
+import type { Reading } from '@/lib/data/dto'
+import { coverageMeaning, coverageParts } from '@/lib/face/coverage'
+import { linkKindWords } from '@/lib/face/link-kind'
+
+const last = { at: '2031-03-12T11:46:00.000Z', lambda2: 0.238 }
+const full = { linksKnown: 118, linksMeasured: 118, joined: 36, heard: 36, unheard: 0 }
+const told = (coverage: Partial<Reading['coverage']>, seen: Reading['last'] = last) =>
+  coverageParts({ coverage: { ...full, ...coverage }, last: seen }).map(({ text, grave, strong }) =>
+    [text, grave && 'grave', strong && 'strong'].filter(Boolean).join(' | '),
+  )
+const meaning = (coverage: Partial<Reading['coverage']>) =>
+  coverageMeaning({ coverage: { ...full, ...coverage } })
+
+describe('coverage', () => {
+  it('is a line without warning while it is full', () => {
+    expect(told({})).toEqual(['36 of 36 agents heard', '118 of 118 links measured'])
+    expect(meaning({})).toBeNull()
+  })
+
+  it('says what is short of full, and what that means', () => {
+    expect(told({ linksMeasured: 112, withoutAgent: 4, leftOut: 1 })).toEqual([
+      '36 of 36 agents heard',
+      '112 of 118 links measured | strong',
+      '4 neighbours without an agent | strong',
+      '1 agent left out | strong',
+    ])
+    expect(meaning({ withoutAgent: 4, leftOut: 1 })).toBe(
+      'Links that no agent measures are not in the reading: the overlay can be weaker there than it says, and a false calm is possible. The figures of one agent did not hold, so the reading does without that part of the overlay.',
+    )
+  })
+
+  it('is red for what is unheard, but not before anything was heard', () => {
+    expect(told({ heard: 18, unheard: 18 })[0]).toBe('18 of 36 agents heard | grave')
+    expect(told({ heard: 0, unheard: 36 }, null)[0]).toBe('0 of 36 agents heard')
+    expect(meaning({ heard: 18, unheard: 18 })).toMatch(/^What unheard agents would say is missing/)
+  })
+})
+
+describe('what the links measured are', () => {
+  it('has a short name and one sentence for each, and nothing where no agent says', () => {
+    for (const kind of ['path', 'path-with-view', 'connection', 'mixed'] as const)
+      expect(linkKindWords(kind)?.sentence).toMatch(/^[A-Z].*\.$/)
+    expect(linkKindWords('path')?.sentence).toContain('beside the overlay’s own connections')
+    expect([linkKindWords(null), linkKindWords(undefined)]).toEqual([null, null])
+  })
+})
