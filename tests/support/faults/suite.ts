@@ -13,6 +13,7 @@ import { faithfully, type Meddling, MeddlingRelay } from './meddling-relay'
 
 const HOUR_MS = 3_600_000
 const FLAP_MS = 50
+const HOOK_MS = 60_000
 const VICTIM = 'eel-05'
 const STEPPED = 'tar-05'
 const SPOOLING = 'tar-01'
@@ -65,14 +66,14 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
       const agentId = `agent-${to}`
       overlay.member(from).agent?.addNeighbour({ agentId, address: overlay.addressOf(to) })
     }
-  })
+  }, HOOK_MS)
   afterAll(async () => {
     await victim?.stop()
     await overlay.stop()
     await flaky?.stop()
     await relay?.stop()
     disk.remove()
-  })
+  }, HOOK_MS)
 
   describe('an overlay of ten agents over real sockets', () => {
     it('is read within 5 % where two ends dial each other at once, over one link and with balanced books', async () => {
@@ -174,6 +175,7 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
 
     it('loses what a killed agent held and nothing else, and is read as before after its restart', async () => {
       const before = incarnationOf(VICTIM)
+      const events = overlay.events.length
       await overlay.standStill()
       const held = new Map(overlay.booksOf(VICTIM).map(({ slot, held }) => [slot, held]))
       const made = new Map(overlay.booksOf(VICTIM).map(({ slot, made }) => [slot, made]))
@@ -181,8 +183,9 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
       victim.signal('SIGKILL')
       expect(await victim.ended()).toBe('ended with SIGKILL')
       victim.run()
-      await until(() => incarnationOf(VICTIM) !== before)
-      // Not before: what neighbours send before they notice would be lost as well, and nobody could say how much.
+      const isUpAgain = () => overlay.events.slice(events).filter(isVictimUp).length >= 4
+      await until(() => incarnationOf(VICTIM) !== before && isUpAgain())
+      // Not before: what neighbours send before they notice is lost as well, and nobody could say here how much.
       overlay.walkOn()
       await overlay.reads()
       const books = (await overlay.standStill()).filter(({ slot }) => held.has(slot))
@@ -219,6 +222,10 @@ function downsOf([one, other]: readonly [string, string]): string[] {
   return overlay.events
     .filter(({ at, kind, peer }) => kind === 'link-down' && at === one && peer === `agent-${other}`)
     .map(({ reason }) => reason)
+}
+
+function isVictimUp({ kind, peer }: { kind: string; peer: string }): boolean {
+  return kind === 'link-up' && peer === `agent-${VICTIM}`
 }
 
 function incarnationOf(name: string): string | undefined {

@@ -19,6 +19,7 @@ const SLUG = 'namespaces'
 const PORT = 3100
 const TOLERANCE = 0.05
 const IN_A_ROW = 3
+const HOOK_MS = 90_000
 const ANSWER_MS = 45_000
 /** Enough that fewer than 85 % of those joined are heard. */
 const SILENT = 3
@@ -79,15 +80,14 @@ export function namespaceSuite({ pace, partsOutside, inside }: NamespaceSuiteIni
         },
       )
       await timed('start', () => agents.start())
-    }, 60_000)
+    }, HOOK_MS)
     afterAll(async () => {
       await agents?.stop()
       await collector?.stop()
       lab.remove()
       await database?.close()
       process.stdout.write(`namespaces: ${times.join(', ')}\n`)
-    })
-
+    }, HOOK_MS)
     afterEach(() => lab.join('links', 'reports-a', 'reports-b'))
 
     it('are read within 5 % of the exact value, each half a side, with the collector outside of both', async () => {
