@@ -135,28 +135,28 @@ export class ArrivalAudit {
       noise += variance
       size += Math.max(net ** 2, declared ** 2)
       crossed += (net * declared) / variance
-      squared += Math.max(0, net ** 2 - total) / variance
+      squared += declared ** 2 / variance
     }
     if (freedom === 0 || size === 0) return null
     const deviation = Math.sqrt(Math.max(0, off - noise) / size)
     const surety = deviationsOut(chiSquare, freedom)
-    const ratio = squared > 0 ? crossed / squared : Number.POSITIVE_INFINITY
+    const ratio = crossed === 0 ? Number.POSITIVE_INFINITY : squared / crossed
     this.last = { deviation, surety, ratio }
     this.badBlocks = surety > SURE && deviation > MOST_OFF ? this.badBlocks + 1 : 0
     if (this.badBlocks >= BAD_BLOCKS) return ratio
     return this.judgeLong(crossed, squared)
   }
 
-  /** A small lie shows in the long run: crossed and squared sums of blocks, forgotten over `LONG_BLOCKS`. */
+  /** A small lie shows in the long run: found = declared / ratio, by least squares; D has hardly any noise, so ΣD²/V is how sure that is. */
   private judgeLong(crossed: number, squared: number): number | null {
     this.blocks += 1
     const forget = 1 - 1 / LONG_BLOCKS
     this.crossed = forget * this.crossed + crossed
     this.squared = forget * this.squared + squared
-    if (this.blocks < LONG_BLOCKS || this.squared <= 0) return null
-    const ratio = this.crossed / this.squared
+    if (this.blocks < LONG_BLOCKS || this.squared <= 0 || this.crossed === 0) return null
+    const ratio = this.squared / this.crossed
     this.longRatio = ratio
-    const sure = Math.abs(ratio - 1) * Math.sqrt(this.squared) > SURE
+    const sure = Math.abs(this.crossed / this.squared - 1) * Math.sqrt(this.squared) > SURE
     return sure && (ratio > MOST_LASTING || ratio < 1 / MOST_LASTING) ? ratio : null
   }
 }

@@ -99,7 +99,8 @@ export class NeighbourAudit {
     if (record.standing || intervalMs === 0) return record.standing
     if (newest && nowMs - record.heardAtMs > this.gapMs) startAfresh(record)
     const elapsedMs = newest ? Math.max(0, Math.min(nowMs - record.heardAtMs, this.mostElapsedMs)) : 0
-    record.heardAtMs = nowMs
+    // An overtaken frame does not end a stretch: its time belongs to the next one that is counted.
+    if (newest) record.heardAtMs = nowMs
     const parts = heardColonies(heard.arrivals, colonies, { nowMs, intervalMs })
     record.claims.noteFrame(parts, { elapsedMs, weight, intervalMs })
     const sends = parts.some(({ x, y }) => x + y > 0)
