@@ -12,7 +12,7 @@ import {
 import { type Clock, sleep } from '../clock'
 import type { Logger } from '../logger'
 import { type CollectorError, type CollectorResult, describeCollectorError, isEnded } from './client'
-import { attemptLimitMs, RECEIPT_INTERVALS, waitAfter } from './report-plan'
+import { attemptLimitMs, LEAST_WAIT_MS, RECEIPT_INTERVALS, waitAfter } from './report-plan'
 import type { Reporter } from './reporter'
 
 /** What carries reports where the collector cannot be reached, and brings others' along. */
@@ -96,16 +96,37 @@ export class ReportLoop {
     const report = this.components.report()
     const wasNeeded = carriers.isNeeded
     if (wasNeeded) this.relay(report)
-    const result = await this.attempt(report, signal)
+    const waiting = this.relayWhileWaiting()
+    const result = await this.attempt(report, signal).finally(waiting.end)
     if (signal.aborted) return 0
     const intervalMs = this.init.intervalMs()
     if (result.ok) this.succeeded(result.value, report, sentAtMs)
     else this.noteFailure(result.error)
     carriers.noteOwn(result.ok)
-    if (!wasNeeded && carriers.isNeeded) this.relay(report)
+    if (!wasNeeded && carriers.isNeeded && !waiting.hasRelayed()) this.relay(report)
     this.init.onAttempt(result.ok)
     const error = result.ok ? null : result.error
     return waitAfter(error, { failedInARow: this.failedInARow, intervalMs, uniform: random.uniform() })
+  }
+
+  /**
+   * A way that swallows what is sent gives no answer for as long as an attempt may take, and an agent that only waits for it
+   * is soon unheard: from the second interval of waiting on, neighbours carry what is new.
+   */
+  private relayWhileWaiting(): { end: () => void; hasRelayed: () => boolean } {
+    const { clock, carriers } = this.components
+    let hasRelayed = false
+    let cancel = () => {}
+    const arm = () => {
+      cancel = clock.after(Math.max(LEAST_WAIT_MS, this.init.intervalMs()), () => {
+        carriers.noteOwn(false)
+        if (carriers.isNeeded) this.relay(this.components.report())
+        hasRelayed ||= carriers.isNeeded
+        arm()
+      })
+    }
+    arm()
+    return { end: () => cancel(), hasRelayed: () => hasRelayed }
   }
 
   private async attempt(report: Report, signal: AbortSignal): Promise<CollectorResult<ReportReply>> {

@@ -10,6 +10,8 @@ export const REFUSED_RETRY_MS = 60_000
 export const LEAST_ATTEMPT_MS = 2_000
 /** Of the attempts while it is away every so-many-eth may take as long as any: one that is merely slow is not away. */
 export const LONG_ATTEMPT_EVERY = 5
+/** An answer is late after an interval, but not before this. */
+export const LEAST_WAIT_MS = 500
 /** The collector is asked for a receipt this often. */
 export const RECEIPT_INTERVALS = 4
 

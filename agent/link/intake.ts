@@ -62,7 +62,11 @@ export class Intake {
     const heldOrdersSequence = node.ordersSequence
     const outcome = node.receive(peer.agentId, peer.incarnation, frame, nowMs)
     if (outcome.kind === 'refuse') {
-      logger.warn({ peer: peer.agentId, reason: outcome.reason }, 'a link was refused')
+      const found = 'complaint' in outcome ? outcome.complaint : undefined
+      logger.warn(
+        { peer: peer.agentId, reason: outcome.reason, fault: found?.fault, ratio: found?.ratio },
+        'a link was refused',
+      )
       session.close(closeOf(outcome.reason), outcome.reason)
     }
     if (frame.orders && node.ordersSequence > heldOrdersSequence) onOrders?.(frame.orders.orders)

@@ -29,7 +29,9 @@ import { TimeDebt } from './time-debt'
 export type ReceiveOutcome =
   | { kind: 'ok' }
   | { kind: 'ignored'; reason: 'unknown-peer' | 'retired-incarnation' }
-  | { kind: 'refuse'; reason: LedgerFault | 'left-out' }
+  | { kind: 'refuse'; reason: LedgerFault }
+  /** With what was found, the first time it is. */
+  | { kind: 'refuse'; reason: 'left-out'; complaint?: Complaint }
 
 export interface WalkNodeComponents {
   random: Random
@@ -325,7 +327,7 @@ export class WalkNode {
     const complaint = this.audits ? this.audit.hear(heard, this.colonies, nowMs) : null
     if (!complaint) return { kind: 'ok' }
     this.leaveOut(peer, complaint.fault, complaint.ratio)
-    return { kind: 'refuse', reason: 'left-out' }
+    return { kind: 'refuse', reason: 'left-out', complaint }
   }
 
   /** The cumulative report of this moment. `host` is what the program around the walkers knows. */
