@@ -1,4 +1,5 @@
 import { defineConfig } from 'vitest/config'
+import { LongestFirst } from './tests/support/longest-first'
 
 const alias = {
   '@': import.meta.dirname,
@@ -13,11 +14,15 @@ const soak = {
   test: { name: 'soak', include: ['tests/soak/**/*.test.ts'], testTimeout: 3_600_000 },
 }
 
+/** These replace modules, or wait most of the time while others run: each in a process of its own. */
+const apart = ['tests/integration/actions-people.test.ts', 'tests/e2e/namespaces.test.ts']
+
 /** What a project does not need (a database, a build) it does not wait for, not even when run by file name. */
 export default defineConfig({
   resolve: { alias },
   test: {
     passWithNoTests: false,
+    sequence: { sequencer: LongestFirst },
     projects: [
       ...(process.env.THINSPAN_SOAK ? [soak] : []),
       {
@@ -25,6 +30,9 @@ export default defineConfig({
         test: {
           name: 'quick',
           include: ['tests/{unit,property,reference,contract}/**/*.test.ts'],
+          // Half of the time went into loading the same modules for every file.
+          pool: 'threads',
+          isolate: false,
           sequence: { groupOrder: 0 },
         },
       },
@@ -33,9 +41,24 @@ export default defineConfig({
         test: {
           name: 'integration',
           include: ['tests/integration/**/*.test.ts'],
+          exclude: apart,
+          isolate: false,
           globalSetup: [database],
           testTimeout: 30_000,
           hookTimeout: 60_000,
+          maxWorkers: 3,
+          sequence: { groupOrder: 1 },
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'apart',
+          include: apart,
+          globalSetup: [database],
+          testTimeout: 120_000,
+          hookTimeout: 120_000,
+          maxWorkers: 3,
           sequence: { groupOrder: 1 },
         },
       },
@@ -44,6 +67,7 @@ export default defineConfig({
         test: {
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
+          exclude: apart,
           globalSetup: [database, build],
           env: { THINSPAN_DIST_DIR: '.next-test' },
           testTimeout: 120_000,
