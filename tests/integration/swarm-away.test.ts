@@ -95,6 +95,17 @@ describe('a collector that one half does not reach', () => {
     expect(status('gul-01').away.isAway).toBe(true)
   })
 
+  test('hears it without a gap where its way swallows reports, through neighbours and before any attempt is over', async () => {
+    await begin({ pace: 'brisk', settleMs: 30_000 })
+    swarm.collector.swallows = new Set(half('gul').map((name) => `agent-${name}`))
+    const from = estimates.length
+    await swarm.clock.advance(30_000)
+    const unheard = estimates.slice(from).filter(({ estimate }) => estimate.coverage.heard < 6)
+    expect(unheard).toEqual([])
+    expect(estimates.length - from).toBeGreaterThan(20)
+    for (const name of half('gul')) expect(status(name).reports.relayed).toBeGreaterThan(10)
+  })
+
   test('hears nothing of it where it is silenced: then neighbours carry nothing either', async () => {
     await begin({ pace: 'drill', settleMs: 3_000 })
     for (const name of half('gul')) swarm.fleet.silence(name)
