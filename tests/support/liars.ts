@@ -57,6 +57,7 @@ export const LIES: Record<string, Lie> = {
     meanToCollector: 5,
     report: (report) => withCounters(report, cooked),
   },
+  'shows no receipt': { frame: ({ statement: _, ...frame }) => frame },
   'acknowledges half of what comes': { frame: halfAcknowledged() },
 }
 

@@ -26,6 +26,7 @@ describe('a liar on the cut', () => {
     ['births denied', 10, 'do not add up'],
     ['moments 0', 10, 'moments'],
     ['walker-time ×3', 20, 'time does not fit'],
+    ['shows no receipt', 150, 'no receipt'],
     ['acknowledges half of what comes', 30, 'acknowledges fewer'],
   ])('is left out for %s within %i s, and the reading is right afterwards', (name, seconds, because) => {
     const outcome = tryLie({
