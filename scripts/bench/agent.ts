@@ -91,11 +91,12 @@ function printSteady(measured: Measured, bare: number, print: Print): void {
     perLink < LIMITS.bytesPerLinkSecond,
   )
   row(
-    'report, largest (mean)',
+    'report on the wire, largest (mean)',
     `${reportBytesMost} B (${Math.round(reportBytesMean)})`,
     'under 4 kB',
     reportBytesMost < LIMITS.reportBytes,
   )
+  print(`    the largest as JSON: ${measured.reportJsonBytesMost} B`)
   row('ticks more than a tick late', share(measured.lateShare), '', true)
 }
 
@@ -118,7 +119,7 @@ function printHub(measured: Measured, print: Print): void {
   print(`  CPU ${percent(measured.cpuShare)} of a core`)
   print(`  resident memory ${measured.rssMib.toFixed(1)} MiB (peak ${measured.peakRssMib.toFixed(1)})`)
   print(`  ${rate} ticks per second, more than a tick late: ${late}`)
-  print(`  report ${Math.round(measured.reportBytesMean)} B`)
+  print(`  report ${Math.round(measured.reportBytesMean)} B, as JSON ${measured.reportJsonBytesMost} B`)
 }
 
 const headline = ({ links, colonies, seconds }: Measured): string =>

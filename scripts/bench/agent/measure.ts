@@ -9,9 +9,10 @@ export interface Measured {
   peakRssMib: number
   /** Both ways together, per link; null where not counted. */
   bytesPerLinkSecond: number | null
-  /** Largest and mean size of the reports. */
+  /** Sizes of the reports' bodies as they crossed the wire, and the largest as JSON. */
   reportBytesMost: number
   reportBytesMean: number
+  reportJsonBytesMost: number
   ticksPerSecond: number | null
   /** Share of ticks that came more than a whole tick late. */
   lateShare: number | null
@@ -48,8 +49,9 @@ export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: numbe
     rssMib,
     peakRssMib: after.peakRssMib,
     bytesPerLinkSecond: bytes === 0 ? null : bytes / seconds / links,
-    reportBytesMost: Math.max(...joined.reportBytes),
-    reportBytesMean: joined.reportBytes.reduce((sum, size) => sum + size, 0) / joined.reportBytes.length,
+    reportBytesMost: Math.max(...joined.reportBytes.map(({ wire }) => wire)),
+    reportBytesMean: joined.reportBytes.reduce((sum, { wire }) => sum + wire, 0) / joined.reportBytes.length,
+    reportJsonBytesMost: Math.max(...joined.reportBytes.map(({ plain }) => plain)),
     ticksPerSecond: ticks === null ? null : ticks / seconds,
     lateShare: ticks === null || late === null ? null : late / ticks,
     links,
