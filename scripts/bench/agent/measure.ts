@@ -3,8 +3,9 @@ import { figuresOf } from './process-figures'
 
 export interface Measured {
   seconds: number
-  /** Of one core. */
+  /** Of one core; and of the warm-up before, in which much is still being compiled. */
   cpuShare: number
+  warmUpCpuShare: number
   rssMib: number
   peakRssMib: number
   /** Both ways together, per link; null where not counted. */
@@ -22,8 +23,11 @@ export interface Measured {
 
 /** Lets the overlay warm up, then watches the measured agent. */
 export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: number): Promise<Measured> {
-  await delay(warmUpMs)
   const { proxy, collector, pid } = overlay
+  const linked = figuresOf(pid)
+  const linkedAtMs = performance.now()
+  await delay(warmUpMs)
+  const warmUpSeconds = (performance.now() - linkedAtMs) / 1000
   const joined = collector.find(MEASURED)
   const before = figuresOf(pid)
   const healthBefore = joined.last?.report.node.health
@@ -46,6 +50,7 @@ export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: numbe
   return {
     seconds,
     cpuShare: (after.cpuSeconds - before.cpuSeconds) / seconds,
+    warmUpCpuShare: (before.cpuSeconds - linked.cpuSeconds) / warmUpSeconds,
     rssMib,
     peakRssMib: after.peakRssMib,
     bytesPerLinkSecond: bytes === 0 ? null : bytes / seconds / links,
