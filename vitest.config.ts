@@ -1,10 +1,21 @@
 import { defineConfig } from 'vitest/config'
-import { LongestFirst } from './tests/support/longest-first'
+import { BaseSequencer, type TestSpecification } from 'vitest/node'
 
 const alias = {
   '@': import.meta.dirname,
   'server-only': `${import.meta.dirname}/tests/support/server-only.ts`,
 }
+/** They take longest by far: begun last, one of them would go on alone at the end. */
+const LONGEST = ['tests/e2e/namespaces.test.ts', 'tests/unit/method/simulate-traps.test.ts']
+
+class LongestFirst extends BaseSequencer {
+  override async sort(files: TestSpecification[]): Promise<TestSpecification[]> {
+    const sorted = await super.sort(files)
+    const isLong = ({ moduleId }: TestSpecification) => LONGEST.some((path) => moduleId.endsWith(path))
+    return [...sorted.filter(isLong), ...sorted.filter((file) => !isLong(file))]
+  }
+}
+
 const database = 'tests/support/global-setup.ts'
 const build = 'tests/support/global-setup-build.ts'
 
