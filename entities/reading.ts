@@ -1,13 +1,14 @@
 import { defineEntity, type InferEntity, p } from '@mikro-orm/core'
 import { DATA_STATES, LEVELS, type Reading as ReadingDto, TRENDS } from '@/lib/data/dto'
 
-/** What the columns do not hold of a reading. */
+/** What the columns do not hold of a reading: they have the headline's λ₂, low and high, of the core where there is one. */
 export type ReadingBody = Omit<
   ReadingDto,
   | 'at'
   | 'lambda2'
   | 'low'
   | 'high'
+  | 'core'
   | 'crossCheck'
   | 'usual'
   | 'level'
@@ -16,7 +17,10 @@ export type ReadingBody = Omit<
   | 'verdict'
   | 'detail'
   | 'demo'
->
+> & {
+  /** With the loose ends, where the columns are of the core. */
+  whole?: Pick<ReadingDto, 'lambda2' | 'low' | 'high'> | null
+}
 
 const real = () => p.float().columnType('double precision').nullable()
 

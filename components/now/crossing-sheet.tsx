@@ -57,7 +57,9 @@ export function CrossingSheet({ slug }: { slug: string }) {
         <CrossingLinks
           slug={slug}
           cut={cut.data}
-          lambda2={reading.data?.lambda2 ?? reading.data?.last?.lambda2 ?? null}
+          lambda2={
+            reading.data?.core?.lambda2 ?? reading.data?.lambda2 ?? reading.data?.last?.lambda2 ?? null
+          }
           disclosure={overlay.data?.disclosure ?? 'sealed'}
           silent={silent}
           unheard={unheard}

@@ -1,6 +1,6 @@
 import type { Estimate } from '@/lib/method/control'
 import { type Follows, labelFollowed } from './follows'
-import type { JudgedAgent, JudgeInput } from './judge'
+import type { HeadlineInput, JudgedAgent } from './judge'
 import type { LevelVerdict } from './level'
 import type { Memory } from './memory'
 import type { Together } from './unheard'
@@ -16,13 +16,14 @@ export interface Judged {
   level: LevelNow
   trend: Memory['trend']
   together: Together | null
+  loose: VerdictFacts['loose']
 }
 
 /** What the sentence is made from. */
 export function verdictFacts(
-  input: JudgeInput,
+  input: HeadlineInput,
   memory: Memory,
-  { level, trend, together }: Judged,
+  { level, trend, together, loose }: Judged,
 ): VerdictFacts {
   const { estimate, agents, usual } = input
   const { coverage, lambda2 } = estimate
@@ -41,6 +42,8 @@ export function verdictFacts(
     cut: memory.cut,
     follows: memory.singleCut === false ? null : followsOf(agents, memory),
     leftOut: input.leftOut ?? [],
+    loose,
+    whole: input.whole?.lambda2 ?? null,
     shareOfUsual: usual !== null && usual > 0 && lambda2 !== null ? lambda2 / usual : null,
   }
 }

@@ -1,7 +1,8 @@
 import type { EVENT_KINDS, Reading } from '@/lib/data/dto'
-import type { Estimate } from '@/lib/method/control'
+import type { CoreEstimate, Estimate } from '@/lib/method/control'
 import { type LevelNow, stateOf, verdictFacts } from './facts'
 import { happenings } from './happenings'
+import { type Headline, headlineOf, looseTexts, memoryFor } from './headline'
 import { levelOf, worse } from './level'
 import type { Memory, Side } from './memory'
 import { readingOf } from './reading'
@@ -31,7 +32,12 @@ export interface JudgedAgent {
 }
 
 export interface JudgeInput {
+  /** Of the whole overlay. */
   estimate: Estimate
+  /** Null or missing while nothing hangs loose. */
+  core?: CoreEstimate | null
+  /** Links are named, so loose nodes may be. */
+  isNamed?: boolean
   agents: readonly JudgedAgent[]
   memory: Memory
   /** Combination now in the orders; null while there is none. */
@@ -57,7 +63,15 @@ export interface Judgement {
 }
 
 /** From an estimate in numbers to what is said of the overlay. Pure. */
-export function judge(input: JudgeInput): Judgement {
+export function judge(given: JudgeInput): Judgement {
+  const headline = headlineOf(given.estimate, given.core ?? null, given.memory)
+  return judgeHeadline({ ...given, ...headline, memory: memoryFor(given.memory, headline) })
+}
+
+/** `estimate` is the headline here. */
+export type HeadlineInput = JudgeInput & Pick<Headline, 'estimate' | 'whole'>
+
+function judgeHeadline(input: HeadlineInput): Judgement {
   const { estimate, agents, intervalMs } = input
   const memory = withCut(listening(input.memory, estimate.atMs, intervalMs), input)
   const data = dataOf(estimate, agents)
@@ -68,7 +82,8 @@ export function judge(input: JudgeInput): Judgement {
       ? withReading(memory.recent, [estimate.atMs, estimate.lambda2, halfOf(estimate)], intervalMs)
       : memory.recent
   const trend = data === 'fresh' ? trendOf(recent) : memory.trend
-  const facts = verdictFacts(input, memory, { level, trend, together })
+  const loose = looseTexts(input.core ?? null, agents, input.isNamed ?? false)
+  const facts = verdictFacts(input, memory, { level, trend, together, loose })
   const { verdict, detail } = verdictOf(facts)
   const next: Memory = {
     ...memory,

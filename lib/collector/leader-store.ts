@@ -7,6 +7,7 @@ import { type Loaded, loadOverlay } from './leader-load'
 import { type StoredState, storedStateSchema } from './memory'
 import { overlayChannel } from './notices'
 import { type Bindable, query } from './query'
+import { columnsOf } from './reading-columns'
 import { type KeyText, signerOf } from './signer'
 
 export type { Loaded, LoadedAgent } from './leader-load'
@@ -119,8 +120,24 @@ async function leaveOut(em: EntityManager, agents: Round['leftOut']): Promise<Ev
 }
 
 async function insertReading(em: EntityManager, overlayId: string, reading: Reading): Promise<void> {
-  const { at, lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, demo, ...body } =
-    reading
+  const {
+    at,
+    lambda2,
+    low,
+    high,
+    core,
+    crossCheck,
+    usual,
+    level,
+    trend,
+    data,
+    verdict,
+    detail,
+    demo,
+    ...rest
+  } = reading
+  const { headline, whole } = columnsOf({ core, lambda2, low, high })
+  const body = { ...rest, whole }
   await query(
     em,
     `insert into readings (overlay_id, at, lambda2, low, high, cross_check, usual, level, trend, data, verdict,
@@ -128,9 +145,9 @@ async function insertReading(em: EntityManager, overlayId: string, reading: Read
     [
       overlayId,
       at,
-      lambda2,
-      low,
-      high,
+      headline.lambda2,
+      headline.low,
+      headline.high,
       crossCheck,
       usual,
       level,

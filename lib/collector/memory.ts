@@ -41,6 +41,8 @@ export interface Memory {
   judgedAtMs: number | null
   listeningSinceMs: number | null
   stored: { atMs: number; key: string } | null
+  /** Nodes that the headline leaves out; '' or missing for none. */
+  apart?: string
 }
 
 export const BLANK_MEMORY: Memory = {

@@ -1,25 +1,26 @@
 import type { Reading } from '@/lib/data/dto'
-import { CONFIDENCE, type Coverage } from '@/lib/method/control'
-import type { JudgeInput } from './judge'
+import { CONFIDENCE, type Coverage, type Estimate } from '@/lib/method/control'
+import type { HeadlineInput } from './judge'
 import type { Memory } from './memory'
 
 /** The reading as people and programs see it. */
 export function readingOf(
-  { estimate, usual }: JudgeInput,
+  { estimate, whole, usual, core }: HeadlineInput,
   memory: Memory,
   said: Pick<Reading, 'verdict' | 'detail' | 'data'>,
 ): Reading {
   const { cut, singleCut, last } = memory
+  const all = whole ?? estimate
   const drawn = singleCut !== false && cut !== null ? cut : null
   return {
     at: new Date(estimate.atMs).toISOString(),
-    lambda2: estimate.lambda2,
-    low: estimate.low,
-    high: estimate.high,
+    lambda2: all.lambda2,
+    low: all.low,
+    high: all.high,
     confidence: CONFIDENCE,
-    core: null,
+    core: whole ? coreOf(estimate) : null,
     lambda3AtMost: estimate.lambda3AtMost,
-    crossCheck: estimate.crossCheck,
+    crossCheck: all.crossCheck,
     level: memory.level,
     trend: memory.trend,
     ...said,
@@ -32,7 +33,7 @@ export function readingOf(
     ],
     crossingLinks: drawn?.links ?? null,
     crossingWeight: drawn?.weight ?? null,
-    looseEnds: [],
+    looseEnds: (core?.ends ?? []).map(({ agents, links }) => ({ nodes: agents.length, links })),
     coverage: coverageDto(estimate.coverage),
     seedings: estimate.seedings,
     last:
@@ -41,6 +42,10 @@ export function readingOf(
         : null,
     demo: false,
   }
+}
+
+function coreOf({ lambda2, low, high }: Estimate): Reading['core'] {
+  return lambda2 === null ? null : { lambda2, low: low ?? lambda2, high: high ?? lambda2 }
 }
 
 function coverageDto({ joined, heard, linksKnown, linksMeasured }: Coverage): Reading['coverage'] {

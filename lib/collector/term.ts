@@ -1,5 +1,11 @@
 import type { Log } from '@/lib/http/runtime'
-import { DEFAULT_SETTINGS, evaluate, initialControl, isHeard, type Snapshot } from '@/lib/method/control'
+import {
+  DEFAULT_SETTINGS,
+  evaluateOverlay,
+  initialControl,
+  isHeard,
+  type Snapshot,
+} from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
@@ -155,7 +161,7 @@ export class Term {
     })
     this.#audit = audited.memory
     const { snapshot, shut, leftOutNames } = withoutLeftOut(loaded, audited.leftOut)
-    const { control, orders, estimate } = evaluate({
+    const { control, orders, estimate, core } = evaluateOverlay({
       control: before,
       before: this.#before,
       now: snapshot,
@@ -165,9 +171,11 @@ export class Term {
     })
     const { reading, memory, events, store } = judge({
       estimate,
+      core,
+      isNamed: disclosure === 'named',
       agents: snapshot.agents.map((agent) => toJudged(agent, snapshot.atMs, pace.intervalMs)),
       memory: this.#state?.memory ?? BLANK_MEMORY,
-      combination: control.combination?.id ?? null,
+      combination: orders.sweep?.id ?? null,
       meanWeightedDegree: estimate.coverage.meanWeightedDegree,
       usual,
       intervalMs: pace.intervalMs,

@@ -27,6 +27,17 @@ export interface VerdictFacts {
   shareOfUsual: number | null
   /** Agents whose figures did not hold, the latest first. */
   leftOut?: readonly LeftOut[]
+  /** What is set apart, hanging on by little. */
+  loose?: readonly LooseText[]
+  /** λ₂ with all of that, where the reading spoken of is of the rest; null where it is of all. */
+  whole?: number | null
+}
+
+export interface LooseText {
+  nodes: number
+  links: number
+  /** Where they may be named. */
+  names: readonly string[]
 }
 
 export interface LeftOut {
@@ -125,6 +136,22 @@ function followsText({ follows, singleCut, level, trend }: VerdictFacts): string
   return `It follows the label ${follows.key}: ${listOf(follows.a)} on one side, ${listOf(follows.b)} on the other.`
 }
 
+/** More nodes than this are counted, not named. */
+const MOST_LOOSE_NAMES = 3
+
+function looseText({ loose = [], whole = null }: VerdictFacts): string {
+  if (loose.length === 0) return ''
+  const ends = loose.map(({ nodes, links, names }) => {
+    const who = names.length > 0 && names.length <= MOST_LOOSE_NAMES ? listOf(names) : countOf(nodes, 'node')
+    return `${who} ${nodes === 1 ? 'hangs' : 'hang'} on ${countOf(links, 'link')}`
+  })
+  const rest =
+    whole === null
+      ? 'What remains without that is being read'
+      : `With that the reading is ${whole.toPrecision(3)}`
+  return `Told apart: ${ends.join('; ')}. ${rest}.`
+}
+
 /** Agents left out beyond this many are counted, not named. */
 const MOST_LEFT_OUT = 2
 
@@ -141,6 +168,7 @@ function remarks(facts: VerdictFacts): string[] {
   const { joined, heard, detached, shareOfUsual, rule, singleCut } = facts
   const unheard = joined - heard
   return [
+    looseText(facts),
     rule === 'below-usual' && singleCut !== false && shareOfUsual !== null
       ? `The reading is at ${Math.round(shareOfUsual * 100)} % of its usual.`
       : '',

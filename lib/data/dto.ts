@@ -24,6 +24,7 @@ export const readingSchema = z.object({
   low: z.number().nullable(),
   high: z.number().nullable(),
   confidence: z.number(),
+  /** Without the loose ends, where there are any: level, trend, usual, λ₃ and cut are of it then. */
   core: z.object({ lambda2: z.number(), low: z.number(), high: z.number() }).nullable(),
   lambda3AtMost: z.number().nullable(),
   crossCheck: z.number().nullable(),

@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { ControlSchema, type Overlay, type Reading as ReadingRow, ReadingSchema } from '@/entities'
 import { storedStateSchema } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
+import { fromColumns } from '@/lib/collector/reading-columns'
 import { verdictOf } from '@/lib/collector/verdict'
 import type { Reading, ReadingPoint } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
@@ -72,14 +73,13 @@ const NO_STANDING: Standing = { pace: 'steady', joined: 0, judgedAtMs: null, now
 
 /** While nothing changes not every look at a withheld reading is stored; the leader's last one says how old it is. */
 function toReading(row: ReadingRow, judgedAtMs: number | null): Reading {
-  const { at, lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, body, demo } = row
+  const { at, lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, demo } = row
+  const { whole, ...body } = row.body
   const lookedAt = lambda2 == null && judgedAtMs !== null ? new Date(Math.max(judgedAtMs, at.getTime())) : at
   return {
     ...body,
     at: lookedAt.toISOString(),
-    lambda2: lambda2 ?? null,
-    low: low ?? null,
-    high: high ?? null,
+    ...fromColumns({ lambda2: lambda2 ?? null, low: low ?? null, high: high ?? null }, whole),
     crossCheck: crossCheck ?? null,
     usual: usual ?? null,
     level: level ?? null,

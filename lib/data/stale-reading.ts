@@ -12,7 +12,8 @@ export function isStale(ageMs: number, intervalMs: number): boolean {
 
 /** What is left of a reading once nobody evaluates the overlay any more: the last value, and the level as last judged. */
 export function staleReading(reading: Reading, nowMs: number): Reading {
-  const { at, lambda2, level, treatAsSplit } = reading
+  const { at, core, level, treatAsSplit } = reading
+  const lambda2 = core?.lambda2 ?? reading.lambda2
   const last = lambda2 === null ? reading.last : { at, lambda2 }
   const since = last ? ` since ${formatMoment(Date.parse(last.at), nowMs, { timeZone: 'UTC' })} UTC` : ' yet'
   const before = treatAsSplit ? 'to be treated as split' : level && `judged ${level}`
@@ -21,6 +22,7 @@ export function staleReading(reading: Reading, nowMs: number): Reading {
     lambda2: null,
     low: null,
     high: null,
+    core: null,
     lambda3AtMost: null,
     crossCheck: null,
     singleCut: null,

@@ -6,7 +6,7 @@ import {
   type ControlState,
   DEFAULT_SETTINGS,
   type Estimate,
-  evaluate,
+  evaluateOverlay,
   initialControl,
   type JoinedAgent,
   type Snapshot,
@@ -325,7 +325,7 @@ export class TestCollector implements CollectorClient {
         .filter(({ state }) => state === 'joined')
         .map(({ agentId, joinedAtMs, last }) => ({ agentId, joinedAtMs, last })),
     }
-    const { control, orders, estimate } = evaluate({
+    const { control, orders, estimate } = evaluateOverlay({
       control: this.control,
       before: this.before,
       now,

@@ -1,6 +1,6 @@
 import { birthsOff } from '@/lib/method/audit'
 import type { ControlState, Snapshot } from '@/lib/method/control'
-import { isHeard } from '@/lib/method/control'
+import { coloniesOf, isHeard } from '@/lib/method/control'
 import { halfOf } from '@/lib/method/node'
 import type { Pace } from '@/lib/method/pace'
 import type { ColonySums } from '@/lib/method/report'
@@ -83,7 +83,8 @@ export interface AuditVerdict {
  * energies that stay within what the largest means allow. The reading's disagreement with the walkers' own death rate
  * remains as an alarm for those: energies and means do not enter into that.
  */
-export function auditAgents({ now, control, pace, memory, leftOutBefore }: AuditInput): AuditVerdict {
+export function auditAgents({ now, pace, memory, leftOutBefore, ...before }: AuditInput): AuditVerdict {
+  const control = { ...before.control, colonies: coloniesOf(before.control) }
   if (isDisturbed(now, memory.roundAtMs, pace))
     return { leftOut: [], memory: { ...BLANK_AUDIT, roundAtMs: now.atMs } }
   const ordered = [

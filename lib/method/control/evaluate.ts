@@ -136,7 +136,10 @@ function steer(control: ControlState, input: EvaluateInput): ControlState {
     .map(({ agentId }) => agentId)
   const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, random }
   if (control.colonies.length === 0) {
-    const colonies = Array.from({ length: settings.colonies }, (_, slot) => seedColony(slot, null, seeder))
+    const first = settings.firstSlot ?? 0
+    const colonies = Array.from({ length: settings.colonies }, (_, index) =>
+      seedColony(first + index, null, seeder),
+    )
     return {
       ...control,
       colonies,

@@ -1,4 +1,6 @@
+export { type CoreEstimate, coloniesOf, evaluateOverlay, type OverlayEvaluation } from './core'
 export { type Coverage, LEAST_HEARD } from './coverage'
+export type { LooseEnd } from './ends'
 export { type Estimate, type EvaluateInput, type Evaluation, evaluate, type Withheld } from './evaluate'
 export { CONFIDENCE } from './interval'
 export { heldMs, isHeard, type JoinedAgent, type Snapshot } from './snapshot'

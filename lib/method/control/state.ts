@@ -2,6 +2,7 @@ import type { Disclosure, SweepOrders } from '../orders'
 import type { Pace } from '../pace'
 import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
+import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
 
 export const COLONIES = 5
@@ -15,6 +16,8 @@ export interface ControlSettings {
   /** Walkers per node and type. */
   walkersPerNode: number
   colonies: number
+  /** Slot of the first colony; 0 by default. */
+  firstSlot?: number
 }
 
 export const DEFAULT_SETTINGS: Omit<ControlSettings, 'pace' | 'disclosure'> = {
@@ -67,6 +70,8 @@ export interface ControlState {
   /** Since when walkers are missing though agents are not; null while they are not. */
   walkersGoneSinceMs: number | null
   drifts: ColonyDrift[]
+  /** The core and what is set apart from it; missing where nobody has looked for it yet. */
+  core?: CoreControl
 }
 
 export function initialControl(atMs: number, pace: Pace): ControlState {

@@ -1,4 +1,11 @@
-import { type ControlSettings, type Estimate, evaluate, initialControl, type Snapshot } from '../control'
+import {
+  type ControlSettings,
+  type CoreEstimate,
+  type Estimate,
+  evaluateOverlay,
+  initialControl,
+  type Snapshot,
+} from '../control'
 import type { ControlState } from '../control/state'
 import type { Frame } from '../frame'
 import { WalkNode } from '../node'
@@ -47,6 +54,8 @@ export class Simulation {
   nowMs: number
   control: ControlState
   estimate: Estimate | null = null
+  /** Without its loose ends; null while nothing hangs loose. */
+  core: CoreEstimate | null = null
   /** Called after each evaluation. */
   onEstimate: ((estimate: Estimate) => void) | null = null
   /** While false the collector neither hears reports nor answers: an outage. */
@@ -352,7 +361,7 @@ export class Simulation {
     const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
     this.leftOut.push(...out)
     const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
-    const { control, estimate, ...planned } = evaluate({
+    const { control, estimate, core, ...planned } = evaluateOverlay({
       control: this.control,
       before: this.before,
       now,
@@ -366,6 +375,7 @@ export class Simulation {
     this.control = control
     this.orders = { orders: { orders, ageMs: 0 }, issuedAtMs: this.nowMs }
     this.estimate = estimate
+    this.core = core
     this.onEstimate?.(estimate)
   }
 }

@@ -6,7 +6,7 @@ import {
   type ControlSettings,
   type ControlState,
   type Estimate,
-  evaluate,
+  evaluateOverlay,
   initialControl,
   type JoinedAgent,
   type Snapshot,
@@ -179,7 +179,7 @@ export class BenchCollector {
       agents: [...this.joined].map(([agentId, { joinedAtMs, last }]) => ({ agentId, joinedAtMs, last })),
     }
     const sequence = this.control.sequence + 1
-    const { control, orders, estimate } = evaluate({
+    const { control, orders, estimate } = evaluateOverlay({
       control: this.control,
       before: this.before,
       now,
