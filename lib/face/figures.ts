@@ -66,12 +66,13 @@ function nextFigure({ core, lambda2: whole, lambda3AtMost, singleCut }: Reading)
   }
 }
 
-function checkFigure({ lambda2, crossCheck, data }: Reading): FigureText {
+function checkFigure({ lambda2, core, crossCheck, data }: Reading): FigureText {
   if (crossCheck === null) return { id: 'check', value: '–', remark: 'not known' }
   const value = formatReading(crossCheck)
   if (lambda2 === null || lambda2 <= 0) return { id: 'check', value, remark: 'nothing to compare with' }
   const apart = Math.abs(crossCheck - lambda2) / lambda2
-  if (apart <= CHECK_TOLERANCE) return { id: 'check', value, remark: 'agrees' }
+  if (apart <= CHECK_TOLERANCE)
+    return { id: 'check', value, remark: core ? 'agrees, loose ends and all' : 'agrees' }
   if (data === 'settling') return { id: 'check', value, remark: 'settling with the reading' }
   return {
     id: 'check',

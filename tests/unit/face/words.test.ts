@@ -95,6 +95,7 @@ describe('title block', () => {
     expect(told({ core, looseEnds: [{ nodes: 3, links: 1 }] })).toMatchObject({
       reading: '0.510 | 90 %: 0.490–0.534, with loose ends 0.238',
       ends: '3 nodes | on 1 link',
+      check: '0.241 | agrees, loose ends and all',
     })
   })
 
