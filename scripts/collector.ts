@@ -12,10 +12,11 @@ import { POST as report } from '@/app/api/agent/report/route'
 import { POST as session } from '@/app/api/agent/session/route'
 import { createRouteServer } from '@/lib/collector/http-server'
 import { getIngest, startLeader } from '@/lib/collector/process'
-import { closeDatabase, sql } from '@/lib/db'
+import { closeDatabase, ensurePartitions, forkEm, sql } from '@/lib/db'
 import { authorise } from '@/lib/http/call'
 import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { route } from '@/lib/http/route'
+import { startJobs } from '@/lib/jobs/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
 // Beside a running `npm start` it needs no address.
@@ -42,9 +43,12 @@ const server = createRouteServer({
   'GET /api/agent/directory': directory,
   'GET /api/health': health,
 })
+// Before anything is to be stored, whether or not the job that makes them ahead has run.
+await ensurePartitions(await forkEm(), new Date())
 server.listen(port, host)
 await once(server, 'listening')
 const leader = startLeader(processSignal())
+const jobs = startJobs(processSignal())
 const address = server.address()
 const listening = typeof address === 'object' && address ? address.port : port
 process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
@@ -56,5 +60,6 @@ server.close()
 server.closeIdleConnections()
 await getIngest().stop()
 await leader.stop()
+await jobs.stop()
 await closeDatabase()
 server.closeAllConnections()

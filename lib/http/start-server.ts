@@ -1,12 +1,11 @@
 /** Start and end of the web process: composition root. */
 import { setTimeout as sleep } from 'node:timers/promises'
 import { ensurePartitions, forkEm } from '@/lib/db'
-import { processSignal, stopProcess } from './process-signal'
+import { stopProcess } from './process-signal'
 import { getRuntime } from './runtime'
 
 const ATTEMPTS = 8
 const FIRST_WAIT_MS = 250
-const PARTITIONS_EVERY_MS = 6 * 60 * 60 * 1000
 
 /**
  * Waits for the database before the first request. A throw out of instrumentation would leave a process that
@@ -28,19 +27,5 @@ export async function startServer(): Promise<void> {
       }
       await sleep(FIRST_WAIT_MS * 2 ** (attempt - 1))
     }
-  }
-  void keepPartitions()
-}
-
-async function keepPartitions(): Promise<void> {
-  const { log, now } = getRuntime()
-  while (!processSignal().aborted) {
-    await sleep(PARTITIONS_EVERY_MS, undefined, { signal: processSignal(), ref: false }).catch(
-      () => undefined,
-    )
-    if (processSignal().aborted) return
-    await forkEm()
-      .then((em) => ensurePartitions(em, now()))
-      .catch((error: unknown) => log.warn({ err: error }, 'partitions could not be made ahead'))
   }
 }

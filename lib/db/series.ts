@@ -1,0 +1,46 @@
+/** A table that grows with time: partitioned by range of its column `at`, made ahead, dropped once kept long enough. */
+export interface Series {
+  table: string
+  width: 'day' | 'month' | 'year'
+  keepDays: number
+  /** Partitions made before and after that of now. */
+  back: number
+  ahead: number
+  /** What must have taken over a time before it is dropped: a row of the table `roll_ups`. */
+  rolledInto: 'minutes' | 'hours' | 'snapshot-hours' | null
+}
+
+/** Every reading: two seconds apart at steady pace. */
+export const READINGS_KEEP_DAYS = 14
+export const MINUTES_KEEP_DAYS = 90
+export const HOURS_KEEP_DAYS = 5 * 366
+/** A snapshot of the nodes every minute, then one every hour. */
+export const SNAPSHOTS_KEEP_DAYS = 30
+export const SNAPSHOT_HOURS_KEEP_DAYS = 366
+
+export const SERIES = [
+  {
+    table: 'readings',
+    width: 'day',
+    keepDays: READINGS_KEEP_DAYS,
+    back: READINGS_KEEP_DAYS,
+    ahead: 3,
+    rolledInto: 'minutes',
+  },
+  {
+    table: 'reading_minutes',
+    width: 'month',
+    keepDays: MINUTES_KEEP_DAYS,
+    back: 3,
+    ahead: 1,
+    rolledInto: 'hours',
+  },
+  {
+    table: 'reading_hours',
+    width: 'year',
+    keepDays: HOURS_KEEP_DAYS,
+    back: 1,
+    ahead: 1,
+    rolledInto: null,
+  },
+] as const satisfies readonly Series[]

@@ -1,0 +1,166 @@
+import { epochMs, query } from '@/lib/collector/query'
+import type { EntityManager } from '@/lib/db'
+
+const MINUTE_MS = 60_000
+const HOUR_MS = 60 * MINUTE_MS
+const DAY_MS = 24 * HOUR_MS
+/** So long after its end a minute may still get a reading: a round is given up on after ten seconds. */
+export const MINUTE_RESTS_MS = 30_000
+/** Taken over anew each time, so that a round which was late after all is not left out for good. */
+export const TAKEN_ANEW_MS = 5 * MINUTE_MS
+/** One transaction takes over at most so much at once. */
+const CHUNK_MS = DAY_MS
+/** A day of readings of a large server. */
+const CHUNK_MOST_MS = 10 * 60_000
+
+export interface Stretch {
+  fromMs: number
+  toMs: number
+}
+
+/** Whole parts of the calendar that have come to rest, from where the last run ended; null where there is none. */
+export function stretchDue(throughMs: number, restedMs: number, partMs: number): Stretch | null {
+  const toMs = Math.floor(restedMs / partMs) * partMs
+  const fromMs = Math.floor((throughMs - TAKEN_ANEW_MS) / partMs) * partMs
+  return toMs > throughMs ? { fromMs, toMs } : null
+}
+
+/** Cut at days, oldest first. */
+export function chunksOf({ fromMs, toMs }: Stretch): Stretch[] {
+  const chunks: Stretch[] = []
+  for (let at = fromMs; at < toMs; ) {
+    const end = Math.min(toMs, (Math.floor(at / CHUNK_MS) + 1) * CHUNK_MS)
+    chunks.push({ fromMs: at, toMs: end })
+    at = end
+  }
+  return chunks
+}
+
+const WORST_LEVEL = `(array['firm', 'weak', 'split'])[max(array_position(array['firm', 'weak', 'split'], level))]`
+const WORST_DATA = `(array['fresh', 'settling', 'unheard'])[max(array_position(array['fresh', 'settling', 'unheard'], data))]`
+
+/** Least heard of joined, with both: arrays compare by their first element, then by the next. */
+const leastCoverage = (heard: string, joined: string) =>
+  `min(array[${heard}::float8 / nullif(${joined}, 0), ${heard}, ${joined}]) filter (where ${heard} is not null)`
+
+const MINUTES = `
+  select date_trunc('minute', at, 'UTC') as part, count(*) as readings, count(lambda2) as valued,
+    count(lambda2) filter (where data = 'fresh') as fresh, min(lambda2) as least, max(lambda2) as most,
+    avg(lambda2) as mean, percentile_cont(0.5) within group (order by lambda2) filter (where data = 'fresh') as fresh_median,
+    min(low) as low, max(high) as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    ${leastCoverage("(body->'coverage'->>'heard')::int", "(body->'coverage'->>'joined')::int")} as coverage,
+    min((body->>'crossingLinks')::int) as crossing_links, bool_or(demo) as demo
+  from readings`
+
+const HOURS = `
+  select date_trunc('hour', at, 'UTC') as part, sum(readings) as readings, sum(valued) as valued,
+    sum(fresh) as fresh, min(least) as least, max(most) as most,
+    sum(mean * valued) / nullif(sum(valued), 0) as mean,
+    percentile_cont(0.5) within group (order by fresh_median) as fresh_median,
+    min(low) as low, max(high) as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    ${leastCoverage('heard', 'joined')} as coverage, min(crossing_links) as crossing_links, bool_or(demo) as demo
+  from reading_minutes`
+
+const COLUMNS = [
+  ...['readings', 'valued', 'fresh', 'least', 'most', 'mean', 'fresh_median', 'low', 'high', 'level', 'data'],
+  ...['heard', 'joined', 'crossing_links', 'demo'],
+]
+
+/**
+ * Takes readings over into minutes, or minutes into hours. Repeating it changes nothing; where what it takes from has
+ * been dropped, what was taken stays. One overlay after the other, so that each is looked up by its key.
+ */
+async function takeOver(
+  em: EntityManager,
+  into: 'minutes' | 'hours',
+  { fromMs, toMs }: Stretch,
+  overlayId: string | null,
+): Promise<void> {
+  await query(
+    em,
+    `insert into reading_${into} (overlay_id, at, ${COLUMNS.join(', ')})
+     select o.id, p.part, p.readings, p.valued, p.fresh, p.least, p.most, p.mean, p.fresh_median, p.low, p.high,
+       p.level, p.data, p.coverage[2], p.coverage[3], p.crossing_links, p.demo
+     from overlays o cross join lateral (
+       ${into === 'minutes' ? MINUTES : HOURS} where overlay_id = o.id and at >= ? and at < ? group by 1) p
+     ${overlayId === null ? '' : 'where o.id = ?'}
+     on conflict (overlay_id, at) do update set ${COLUMNS.map((name) => `${name} = excluded.${name}`).join(', ')}`,
+    [new Date(fromMs), new Date(toMs), ...(overlayId === null ? [] : [overlayId])],
+  )
+}
+
+/** What came late, or was put in for another time, of one overlay or of all. The stretch is widened to whole hours. */
+export async function rollUpAgain(
+  em: EntityManager,
+  { fromMs, toMs }: Stretch,
+  overlayId: string | null = null,
+): Promise<void> {
+  const whole = { fromMs: Math.floor(fromMs / HOUR_MS) * HOUR_MS, toMs: Math.ceil(toMs / HOUR_MS) * HOUR_MS }
+  for (const chunk of chunksOf(whole)) {
+    await inTransaction(em, async (tx) => {
+      await takeOver(tx, 'minutes', chunk, overlayId)
+      await takeOver(tx, 'hours', chunk, overlayId)
+    })
+  }
+}
+
+/** Takes over what has come to rest since the last run. @returns up to when minutes and hours now reach */
+export async function rollUp(em: EntityManager, nowMs: number): Promise<Record<'minutes' | 'hours', number>> {
+  const minutes = await advance(em, 'minutes', nowMs - MINUTE_RESTS_MS)
+  const hours = await advance(em, 'hours', minutes)
+  return { minutes, hours }
+}
+
+async function advance(em: EntityManager, into: 'minutes' | 'hours', restedMs: number): Promise<number> {
+  const partMs = into === 'minutes' ? MINUTE_MS : HOUR_MS
+  const before = (await throughOf(em, into)) ?? (await oldestMs(em, into)) ?? restedMs
+  const due = stretchDue(before, restedMs, partMs)
+  if (!due) return before
+  for (const chunk of chunksOf(due)) {
+    await inTransaction(em, async (tx) => {
+      await takeOver(tx, into, chunk, null)
+      await query(
+        tx,
+        `insert into roll_ups (into_what, through) values (?, ?)
+         on conflict (into_what) do update set through = greatest(roll_ups.through, excluded.through)`,
+        [into, new Date(chunk.toMs)],
+      )
+    })
+  }
+  return due.toMs
+}
+
+/** Up to when everything has been taken over; null before the first run. */
+export async function throughOf(
+  em: EntityManager,
+  into: 'minutes' | 'hours' | 'snapshot-hours',
+): Promise<number | null> {
+  const [row] = await query<{ atMs: number }>(
+    em,
+    `select ${epochMs('through')} as "atMs" from roll_ups where into_what = ?`,
+    [into],
+  )
+  return row?.atMs ?? null
+}
+
+async function oldestMs(em: EntityManager, into: 'minutes' | 'hours'): Promise<number | null> {
+  const [row] = await query<{ atMs: number | null }>(
+    em,
+    `select min(first."atMs") as "atMs" from overlays o cross join lateral (
+       select ${epochMs('at')} as "atMs" from ${into === 'minutes' ? 'readings' : 'reading_minutes'}
+       where overlay_id = o.id order by at limit 1) first`,
+  )
+  return row?.atMs ?? null
+}
+
+/** One at a time on the server. */
+export async function inTransaction(
+  em: EntityManager,
+  run: (tx: EntityManager) => Promise<void>,
+): Promise<void> {
+  await em.transactional(async (tx) => {
+    await query(tx, `select set_config('statement_timeout', ?, true)`, [String(CHUNK_MOST_MS)])
+    await query(tx, `select pg_advisory_xact_lock(hashtextextended('thinspan:roll-up', 0))`)
+    await run(tx)
+  })
+}
