@@ -12,6 +12,7 @@ export const TRENDS = ['steady', 'falling', 'rising'] as const
 export const DATA_STATES = ['fresh', 'settling', 'unheard'] as const
 export const ROLES = ['owner', 'operator', 'viewer'] as const
 export const SIDES = ['a', 'b'] as const
+export const KEPT_KINDS = ['reading', 'minute', 'hour'] as const
 export const WEIGHTS = ['unit', 'delivered'] as const
 
 const at = z.iso.datetime()
@@ -74,9 +75,23 @@ export const readingPointSchema = z.object({
   level: z.enum(LEVELS).nullable(),
   data: z.enum(DATA_STATES),
   demo: z.boolean(),
+  /** The coarsest of what it is made from: single readings, or what is kept of a minute or an hour. */
+  kept: z.enum(KEPT_KINDS).optional(),
+  /** Of minutes and hours: how many readings, the lowest and highest of them, and the least covered moment. */
+  readings: z.number().int().optional(),
+  least: z.number().nullable().optional(),
+  most: z.number().nullable().optional(),
+  heard: z.number().int().nullable().optional(),
+  joined: z.number().int().nullable().optional(),
+  /** The fewest in the step. */
+  crossingLinks: z.number().int().nullable().optional(),
 })
 export type ReadingPoint = z.infer<typeof readingPointSchema>
-export const readingsSchema = z.object({ items: z.array(readingPointSchema), stepSeconds: z.number() })
+export const readingsSchema = z.object({
+  items: z.array(readingPointSchema),
+  stepSeconds: z.number(),
+  kept: z.enum(KEPT_KINDS).optional(),
+})
 
 export const NODE_STATES = ['heard', 'unheard', 'detached', 'left', 'revoked', 'left-out'] as const
 export const nodeSchema = z.object({
