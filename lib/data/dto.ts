@@ -77,8 +77,10 @@ export const readingPointSchema = z.object({
   demo: z.boolean(),
   /** The coarsest of what it is made from: single readings, or what is kept of a minute or an hour. */
   kept: z.enum(KEPT_KINDS).optional(),
-  /** Of minutes and hours: how many readings, the lowest and highest of them, and the least covered moment. */
+  /** Of minutes and hours: how many readings, and how many of them fresh. */
   readings: z.number().int().optional(),
+  fresh: z.number().int().optional(),
+  /** The lowest and highest, of fresh readings where there are any; and the least covered moment. */
   least: z.number().nullable().optional(),
   most: z.number().nullable().optional(),
   heard: z.number().int().nullable().optional(),

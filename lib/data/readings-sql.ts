@@ -32,10 +32,12 @@ export function readingSteps(
   }
 }
 
+/** As minutes and hours are made: of fresh readings where there are any. */
+const ofFresh = (of: string) => `coalesce(${of} filter (where fresh > 0), ${of})`
 const ROLLED =
-  'readings, valued, mean, least, most, low, high, level, data, heard, joined, crossing_links, demo'
-const AS_ROLLED = `1 as readings, (lambda2 is not null)::int as valued, lambda2 as mean, lambda2 as least, lambda2 as most,
-  low, high, level, data, (body->'coverage'->>'heard')::int as heard, (body->'coverage'->>'joined')::int as joined,
+  'readings, valued, fresh, mean, least, most, low, high, level, data, heard, joined, crossing_links, demo'
+const AS_ROLLED = `1 as readings, (lambda2 is not null)::int as valued,
+  (lambda2 is not null and data = 'fresh')::int as fresh, lambda2 as mean, lambda2 as least, lambda2 as most, low, high, level, data, (body->'coverage'->>'heard')::int as heard, (body->'coverage'->>'joined')::int as joined,
   (body->>'crossingLinks')::int as crossing_links, demo`
 
 const FROM = {
@@ -58,9 +60,10 @@ export function rolledSteps(
       where overlay_id = ? and at >= ? and at ${index === last ? '<=' : '<'} ?`
   })
   return {
-    text: `select ${STEP}, sum(mean * valued) / nullif(sum(valued), 0) as lambda2, min(low) as low, max(high) as high,
+    text: `select ${STEP}, coalesce(sum(mean * fresh) / nullif(sum(fresh), 0), sum(mean * valued) / nullif(sum(valued), 0))
+           as lambda2, ${ofFresh('min(low)')} as low, ${ofFresh('max(high)')} as high,
          ${GRAVEST}, (array['reading', 'minute', 'hour'])[max(rank)] as kept, sum(readings)::int as readings,
-         min(least) as least, max(most) as most, min(crossing_links) as "crossingLinks",
+         sum(fresh)::int as fresh, ${ofFresh('min(least)')} as least, ${ofFresh('max(most)')} as most, min(crossing_links) as "crossingLinks",
          min(array[heard::float8 / nullif(joined, 0), heard, joined]) filter (where heard is not null) as coverage
        from (${parts.join('\nunion all ')}) part group by 1 order by 1 limit ?`,
     params: [

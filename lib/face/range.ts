@@ -15,9 +15,21 @@ export const RANGES = [
   { id: '3h', label: '3 h', seconds: 3 * hour, stepSeconds: 30 },
   { id: '24h', label: '24 h', seconds: day, stepSeconds: 4 * minute },
   { id: '7d', label: '7 d', seconds: 7 * day, stepSeconds: 30 * minute },
+  { id: '30d', label: '30 d', seconds: 30 * day, stepSeconds: 2 * hour },
+  { id: '1y', label: '1 year', seconds: 365 * day, stepSeconds: day },
 ] as const satisfies readonly Range[]
 
 export const DEFAULT_RANGE: Range = RANGES[1]
+
+/** The range of an address; null where it names none. */
+export function rangeNamed(id: string | null): Range | null {
+  return RANGES.find((range) => range.id === id) ?? null
+}
+
+/** How often a drawing of it is looked at again. */
+export function refreshMs({ stepSeconds }: Range): number {
+  return Math.min(10 * minute, Math.max(5, stepSeconds)) * 1000
+}
 
 /** The shortest range while that holds all there is, else the usual one. */
 export function fittingRange(firstAtMs: number | null, nowMs: number): Range {

@@ -43,21 +43,31 @@ const WORST_DATA = `(array['fresh', 'settling', 'unheard'])[max(array_position(a
 const leastCoverage = (heard: string, joined: string) =>
   `min(array[${heard}::float8 / nullif(${joined}, 0), ${heard}, ${joined}]) filter (where ${heard} is not null)`
 
+/**
+ * Of fresh readings where there are any: from a cold start readings come down from many times the truth, and would be
+ * the highest of every year.
+ */
+const figure = (of: string, fresh: string) => `coalesce(${of} filter (where ${fresh}), ${of})`
+const ofReadings = (of: string) => figure(of, `data = 'fresh'`)
+const ofMinutes = (of: string) => figure(of, 'fresh > 0')
+
 const MINUTES = `
   select date_trunc('minute', at, 'UTC') as part, count(*) as readings, count(lambda2) as valued,
-    count(lambda2) filter (where data = 'fresh') as fresh, min(lambda2) as least, max(lambda2) as most,
-    avg(lambda2) as mean, percentile_cont(0.5) within group (order by lambda2) filter (where data = 'fresh') as fresh_median,
-    min(low) as low, max(high) as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    count(lambda2) filter (where data = 'fresh') as fresh, ${ofReadings('min(lambda2)')} as least,
+    ${ofReadings('max(lambda2)')} as most, ${ofReadings('avg(lambda2)')} as mean,
+    percentile_cont(0.5) within group (order by lambda2) filter (where data = 'fresh') as fresh_median,
+    ${ofReadings('min(low)')} as low, ${ofReadings('max(high)')} as high,
+    ${WORST_LEVEL} as level, ${WORST_DATA} as data,
     ${leastCoverage("(body->'coverage'->>'heard')::int", "(body->'coverage'->>'joined')::int")} as coverage,
     min((body->>'crossingLinks')::int) as crossing_links, bool_or(demo) as demo
   from readings`
 
 const HOURS = `
   select date_trunc('hour', at, 'UTC') as part, sum(readings) as readings, sum(valued) as valued,
-    sum(fresh) as fresh, min(least) as least, max(most) as most,
-    sum(mean * valued) / nullif(sum(valued), 0) as mean,
+    sum(fresh) as fresh, ${ofMinutes('min(least)')} as least, ${ofMinutes('max(most)')} as most,
+    coalesce(sum(mean * fresh) / nullif(sum(fresh), 0), sum(mean * valued) / nullif(sum(valued), 0)) as mean,
     percentile_cont(0.5) within group (order by fresh_median) as fresh_median,
-    min(low) as low, max(high) as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    ${ofMinutes('min(low)')} as low, ${ofMinutes('max(high)')} as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
     ${leastCoverage('heard', 'joined')} as coverage, min(crossing_links) as crossing_links, bool_or(demo) as demo
   from reading_minutes`
 

@@ -92,8 +92,8 @@ const hoursOf = () =>
   )
 const MINUTES = [
   {
-    ...{ at: 1000, readings: 3, valued: 3, fresh: 2, least: 1, most: 6, mean: 3 },
-    ...{ median: 1.5, low: 0.9, high: 6.2, level: 'weak', data: 'settling', heard: 30, joined: 36, links: 2 },
+    ...{ at: 1000, readings: 3, valued: 3, fresh: 2, least: 1, most: 2, mean: 1.5 },
+    ...{ median: 1.5, low: 0.9, high: 2.2, level: 'weak', data: 'settling', heard: 30, joined: 36, links: 2 },
     demo: false,
   },
   {
@@ -108,9 +108,9 @@ const MINUTES = [
   },
 ]
 const HOUR = {
-  ...{ at: 1000, readings: 5, valued: 4, fresh: 3, least: 1, most: 6, mean: 3.5 },
+  ...{ at: 1000, readings: 5, valued: 4, fresh: 3, least: 1, most: 5, mean: 8 / 3 },
   // The median of what the minutes' fresh readings were: 1.5 and 5.
-  ...{ median: 3.25, low: 0.9, high: 6.2, level: 'weak', data: 'unheard', heard: 12, joined: 36, links: 2 },
+  ...{ median: 3.25, low: 0.9, high: 5.2, level: 'weak', data: 'unheard', heard: 12, joined: 36, links: 2 },
   demo: true,
 }
 

@@ -258,6 +258,7 @@ describe('readings of a long range', () => {
       demo: false,
       kept: 'hour',
       readings: 12,
+      fresh: 12,
       least: 8,
       most: 10,
       heard: 36,
