@@ -142,7 +142,12 @@ export const nodeSchema = z.object({
     .optional(),
 })
 export type OverlayNode = z.infer<typeof nodeSchema>
-export const nodesSchema = z.object({ items: z.array(nodeSchema), next: z.string().nullable() })
+export const nodesSchema = z.object({
+  items: z.array(nodeSchema),
+  next: z.string().nullable(),
+  /** Of a past moment: when the snapshot was taken. */
+  at: at.optional(),
+})
 
 /** A version of the agent that this server holds. */
 export const agentReleaseSchema = z.object({

@@ -1,4 +1,5 @@
 import { ControlSchema, type Overlay, type Reading as ReadingRow, ReadingSchema } from '@/entities'
+import { STORE_UNCHANGED_INTERVALS } from '@/lib/collector/judge'
 import { storedStateSchema } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
 import { verdictOf } from '@/lib/collector/verdict'
@@ -7,13 +8,31 @@ import type { EntityManager } from '@/lib/db'
 import type { Call } from '@/lib/http/call'
 import { CONFIDENCE } from '@/lib/method/control'
 import { PACES, type PaceName } from '@/lib/method/pace'
+import { loadMoment, type MomentQuery } from './moments'
 import { openOverlay } from './overlays'
 import { isStale, staleReading } from './stale-reading'
 
-/** The latest reading; before there is one, a reading without a value that says what is being waited for. */
-export async function getReading(call: Call, slug: string): Promise<Reading> {
+/** While a reading is withheld and nothing changes rows are so far apart, and a round may be late. */
+const APART_INTERVALS = STORE_UNCHANGED_INTERVALS + 2
+
+/**
+ * The latest reading; before there is one, a reading without a value that says what is being waited for. Of a past
+ * moment the one that stood then, or the one in the snapshot nearest before.
+ */
+export async function getReading(call: Call, slug: string, { at }: MomentQuery = {}): Promise<Reading> {
   const overlay = await openOverlay(call, 'reading.read', slug)
+  if (at !== undefined) return readingThen(call.em, overlay, new Date(at))
   return presentReading(call.em, overlay, call.now)
+}
+
+async function readingThen(em: EntityManager, { id, pace }: Overlay, at: Date): Promise<Reading> {
+  const after = new Date(at.getTime() - APART_INTERVALS * PACES[pace].intervalMs)
+  const [row] = await em.find(
+    ReadingSchema,
+    { overlayId: id, at: { $lte: at, $gt: after } },
+    { orderBy: { at: 'desc' }, limit: 1 },
+  )
+  return row ? toReading(row, null) : (await loadMoment(em, id, at)).reading
 }
 
 /** For those who have checked the caller. */

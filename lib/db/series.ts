@@ -43,4 +43,20 @@ export const SERIES = [
     ahead: 1,
     rolledInto: null,
   },
+  {
+    table: 'node_snapshots',
+    width: 'day',
+    keepDays: SNAPSHOTS_KEEP_DAYS,
+    back: 1,
+    ahead: 3,
+    rolledInto: 'snapshot-hours',
+  },
+  {
+    table: 'node_snapshot_hours',
+    width: 'month',
+    keepDays: SNAPSHOT_HOURS_KEEP_DAYS,
+    back: 1,
+    ahead: 1,
+    rolledInto: null,
+  },
 ] as const satisfies readonly Series[]

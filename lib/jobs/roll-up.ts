@@ -1,40 +1,10 @@
-import { epochMs, query } from '@/lib/collector/query'
+import { query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
+import { chunksOf, HOUR_MS, MINUTE_MS, type Stretch, stretchDue } from './stretch'
+import { inTransaction, oldestMs, setThrough, throughOf } from './through'
 
-const MINUTE_MS = 60_000
-const HOUR_MS = 60 * MINUTE_MS
-const DAY_MS = 24 * HOUR_MS
 /** So long after its end a minute may still get a reading: a round is given up on after ten seconds. */
 export const MINUTE_RESTS_MS = 30_000
-/** Taken over anew each time, so that a round which was late after all is not left out for good. */
-export const TAKEN_ANEW_MS = 5 * MINUTE_MS
-/** One transaction takes over at most so much at once. */
-const CHUNK_MS = DAY_MS
-/** A day of readings of a large server. */
-const CHUNK_MOST_MS = 10 * 60_000
-
-export interface Stretch {
-  fromMs: number
-  toMs: number
-}
-
-/** Whole parts of the calendar that have come to rest, from where the last run ended; null where there is none. */
-export function stretchDue(throughMs: number, restedMs: number, partMs: number): Stretch | null {
-  const toMs = Math.floor(restedMs / partMs) * partMs
-  const fromMs = Math.floor((throughMs - TAKEN_ANEW_MS) / partMs) * partMs
-  return toMs > throughMs ? { fromMs, toMs } : null
-}
-
-/** Cut at days, oldest first. */
-export function chunksOf({ fromMs, toMs }: Stretch): Stretch[] {
-  const chunks: Stretch[] = []
-  for (let at = fromMs; at < toMs; ) {
-    const end = Math.min(toMs, (Math.floor(at / CHUNK_MS) + 1) * CHUNK_MS)
-    chunks.push({ fromMs: at, toMs: end })
-    at = end
-  }
-  return chunks
-}
 
 const WORST_LEVEL = `(array['firm', 'weak', 'split'])[max(array_position(array['firm', 'weak', 'split'], level))]`
 const WORST_DATA = `(array['fresh', 'settling', 'unheard'])[max(array_position(array['fresh', 'settling', 'unheard'], data))]`
@@ -123,54 +93,17 @@ export async function rollUp(em: EntityManager, nowMs: number): Promise<Record<'
 
 async function advance(em: EntityManager, into: 'minutes' | 'hours', restedMs: number): Promise<number> {
   const partMs = into === 'minutes' ? MINUTE_MS : HOUR_MS
-  const before = (await throughOf(em, into)) ?? (await oldestMs(em, into)) ?? restedMs
+  const before =
+    (await throughOf(em, into)) ??
+    (await oldestMs(em, into === 'minutes' ? 'readings' : 'reading_minutes')) ??
+    restedMs
   const due = stretchDue(before, restedMs, partMs)
   if (!due) return before
   for (const chunk of chunksOf(due)) {
     await inTransaction(em, async (tx) => {
       await takeOver(tx, into, chunk, null)
-      await query(
-        tx,
-        `insert into roll_ups (into_what, through) values (?, ?)
-         on conflict (into_what) do update set through = greatest(roll_ups.through, excluded.through)`,
-        [into, new Date(chunk.toMs)],
-      )
+      await setThrough(tx, into, chunk.toMs)
     })
   }
   return due.toMs
-}
-
-/** Up to when everything has been taken over; null before the first run. */
-export async function throughOf(
-  em: EntityManager,
-  into: 'minutes' | 'hours' | 'snapshot-hours',
-): Promise<number | null> {
-  const [row] = await query<{ atMs: number }>(
-    em,
-    `select ${epochMs('through')} as "atMs" from roll_ups where into_what = ?`,
-    [into],
-  )
-  return row?.atMs ?? null
-}
-
-async function oldestMs(em: EntityManager, into: 'minutes' | 'hours'): Promise<number | null> {
-  const [row] = await query<{ atMs: number | null }>(
-    em,
-    `select min(first."atMs") as "atMs" from overlays o cross join lateral (
-       select ${epochMs('at')} as "atMs" from ${into === 'minutes' ? 'readings' : 'reading_minutes'}
-       where overlay_id = o.id order by at limit 1) first`,
-  )
-  return row?.atMs ?? null
-}
-
-/** One at a time on the server. */
-export async function inTransaction(
-  em: EntityManager,
-  run: (tx: EntityManager) => Promise<void>,
-): Promise<void> {
-  await em.transactional(async (tx) => {
-    await query(tx, `select set_config('statement_timeout', ?, true)`, [String(CHUNK_MOST_MS)])
-    await query(tx, `select pg_advisory_xact_lock(hashtextextended('thinspan:roll-up', 0))`)
-    await run(tx)
-  })
 }

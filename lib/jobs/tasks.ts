@@ -1,6 +1,7 @@
 import { dropPartitions, type EntityManager, ensurePartitions } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import { rollUp } from './roll-up'
+import { forgetNodes, thinSnapshots } from './snapshots'
 
 export interface TaskComponents {
   forkEm(): Promise<EntityManager>
@@ -22,6 +23,14 @@ export const TASKS: readonly Task[] = [
     when: '* * * * *',
     run: async ({ forkEm, now }) => {
       await rollUp(await forkEm(), now().getTime())
+    },
+  },
+  {
+    name: 'thin-snapshots',
+    when: '4 * * * *',
+    run: async ({ forkEm, now }) => {
+      await thinSnapshots(await forkEm(), now().getTime())
+      await forgetNodes(await forkEm(), now())
     },
   },
   {

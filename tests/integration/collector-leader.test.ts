@@ -1,6 +1,7 @@
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest'
 import { type Control, ControlSchema, OverlayEventSchema, ReadingSchema } from '@/entities'
 import { LeaderStore } from '@/lib/collector/leader-store'
+import { Moments } from '@/lib/collector/moments'
 import { systemClock } from '@/lib/collector/process'
 import { Term } from '@/lib/collector/term'
 import { Upkeep } from '@/lib/collector/upkeep'
@@ -77,6 +78,7 @@ const termOf = (overlayId: string, store: Pick<LeaderStore, 'claim' | 'load' | '
       store,
       usual: new Usual({ forkEm, clock: systemClock, log }, { overlayId }),
       upkeep: new Upkeep({ forkEm, clock: systemClock }, { overlayId, holder: 'one' }),
+      moments: new Moments({ forkEm }, { overlayId, holder: 'one' }),
       clock: systemClock,
       random: createRandom(3),
       log,

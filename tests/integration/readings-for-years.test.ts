@@ -181,9 +181,7 @@ describe('partitions', () => {
 
     const muchLater = new Date('2031-05-22T12:00:00.000Z')
     await rows('delete from roll_ups')
-    expect(
-      (await dropPartitions(em(), muchLater)).filter((name) => !name.startsWith('reading_hours')),
-    ).toEqual([])
+    expect((await dropPartitions(em(), muchLater)).filter((name) => !/_hours_/.test(name))).toEqual([])
     await rows(`insert into roll_ups values ('minutes', '2031-05-06T00:00:00Z'), ('hours', '2031-01-01')`)
     await dropPartitions(em(), muchLater)
     // Kept for fourteen days, and what has not been taken over yet for longer.

@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest'
 import { cutoffOf, endOf, partitionsAround } from '@/lib/db/partitions'
 import { SERIES } from '@/lib/db/series'
-import { chunksOf, MINUTE_RESTS_MS, stretchDue, TAKEN_ANEW_MS } from '@/lib/jobs/roll-up'
+import { MINUTE_RESTS_MS } from '@/lib/jobs/roll-up'
+import { chunksOf, stretchDue, TAKEN_ANEW_MS } from '@/lib/jobs/stretch'
 import { TASKS } from '@/lib/jobs/tasks'
 
 const series = {
