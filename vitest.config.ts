@@ -10,7 +10,12 @@ const build = 'tests/support/global-setup-build.ts'
 /** Hours-long courses: only by `npm run soak`. */
 const soak = {
   extends: true as const,
-  test: { name: 'soak', include: ['tests/soak/**/*.test.ts'], testTimeout: 3_600_000 },
+  test: {
+    name: 'soak',
+    include: ['tests/soak/**/*.test.ts'],
+    globalSetup: ['tests/support/global-setup.ts'],
+    testTimeout: 3_600_000,
+  },
 }
 
 /** What a project does not need (a database, a build) it does not wait for, not even when run by file name. */

@@ -1,16 +1,10 @@
-import type { Bindable } from '@/lib/collector/query'
-import { epochMs } from '@/lib/collector/query'
+import { type Bindable, epochMs, gravest } from '@/lib/collector/query'
+import { DATA_STATES, LEVELS } from '@/lib/data/dto'
 import type { Source } from './readings-range'
 
-const worst = (column: string, grades: readonly string[]): string => {
-  const list = `array[${grades.map((grade) => `'${grade}'`).join(', ')}]`
-  return `(${list})[max(array_position(${list}, ${column}))]`
-}
+const GRAVEST = `${gravest('level', LEVELS)} as level, ${gravest('data', DATA_STATES)} as data, bool_or(demo) as demo`
 
-const GRAVEST = `${worst('level', ['firm', 'weak', 'split'])} as level,
-  ${worst('data', ['fresh', 'settling', 'unheard'])} as data, bool_or(demo) as demo`
-
-const STEP = '(floor(extract(epoch from at) / ?::float8) * ?::float8 * 1000)::float8 as "atMs"'
+const STEP = `floor(date_part('epoch', at) / ?::float8) * ?::float8 * 1000 as "atMs"`
 
 export interface Statement {
   text: string
@@ -64,7 +58,8 @@ export function rolledSteps(
            as lambda2, ${ofFresh('min(low)')} as low, ${ofFresh('max(high)')} as high,
          ${GRAVEST}, (array['reading', 'minute', 'hour'])[max(rank)] as kept, sum(readings)::int as readings,
          sum(fresh)::int as fresh, ${ofFresh('min(least)')} as least, ${ofFresh('max(most)')} as most, min(crossing_links) as "crossingLinks",
-         min(array[heard::float8 / nullif(joined, 0), heard, joined]) filter (where heard is not null) as coverage
+         coalesce(min(array[heard::float8 / joined, heard, joined]) filter (where heard < joined),
+           array[1, min(heard), min(heard)]) as coverage
        from (${parts.join('\nunion all ')}) part group by 1 order by 1 limit ?`,
     params: [
       stepSeconds,

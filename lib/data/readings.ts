@@ -12,6 +12,7 @@ import { loadMoment, type MomentQuery } from './moments'
 import { openOverlay } from './overlays'
 import { isStale, staleReading } from './stale-reading'
 
+const LATELY_MS = 3_600_000
 /** While a reading is withheld and nothing changes rows are so far apart, and a round may be late. */
 const APART_INTERVALS = STORE_UNCHANGED_INTERVALS + 2
 
@@ -41,7 +42,7 @@ export async function presentReading(
   { id }: Pick<Overlay, 'id'>,
   now: Date,
 ): Promise<Reading> {
-  const [row] = await em.find(ReadingSchema, { overlayId: id }, { orderBy: { at: 'desc' }, limit: 1 })
+  const row = await latestReading(em, id, now)
   // After the reading, so that it is not newer than its evaluation.
   const [standing] = await query<Standing>(
     em,
@@ -58,6 +59,18 @@ export async function presentReading(
   if (isHistory) return reading
   const ageMs = nowMs - (judgedAtMs ?? row.at.getTime())
   return isStale(ageMs, PACES[pace].intervalMs) ? staleReading(reading, nowMs) : reading
+}
+
+/** Looked for where it nearly always is, so that not every day is looked through. */
+async function latestReading(
+  em: EntityManager,
+  overlayId: string,
+  now: Date,
+): Promise<ReadingRow | undefined> {
+  const last = { orderBy: { at: 'desc' }, limit: 1 } as const
+  const lately = { $gt: new Date(now.getTime() - LATELY_MS) }
+  const [row] = await em.find(ReadingSchema, { overlayId, at: lately }, last)
+  return row ?? (await em.find(ReadingSchema, { overlayId }, last))[0]
 }
 
 /** All by the database's time. */

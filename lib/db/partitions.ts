@@ -12,9 +12,10 @@ export interface Partition {
   to: string
 }
 
-/** Calendar days, months or years in UTC, from `back` before `now` to `ahead` after it. */
-export function partitionsAround({ table, width, back, ahead }: Series, now: Date): Partition[] {
-  return Array.from({ length: back + ahead + 1 }, (_, index) => {
+/** Calendar days, months or years in UTC, from `back` before `now` to `ahead` after it; none that would go at once. */
+export function partitionsAround({ table, width, back, ahead, keepDays }: Series, now: Date): Partition[] {
+  const keptFrom = new Date(now.getTime() - keepDays * DAY_MS).toISOString()
+  const all = Array.from({ length: back + ahead + 1 }, (_, index) => {
     const from = startOf(width, now, index - back)
     return {
       name: `${table}_${from.slice(0, NAMED_BY[width]).replaceAll('-', '_')}`,
@@ -22,6 +23,7 @@ export function partitionsAround({ table, width, back, ahead }: Series, now: Dat
       to: startOf(width, now, index - back + 1),
     }
   })
+  return all.filter(({ to }) => to > keptFrom)
 }
 
 const NAMED_BY = { year: 4, month: 7, day: 10 } as const

@@ -10,8 +10,11 @@ export interface Series {
   rolledInto: 'minutes' | 'hours' | 'snapshot-hours' | null
 }
 
-/** Every reading: two seconds apart at steady pace. */
-export const READINGS_KEEP_DAYS = 14
+/**
+ * Every reading: two seconds apart at steady pace. Nothing draws them so close together over more than a quarter of an
+ * hour, they take 140 times the room of minutes, and the whole reading of each minute is in its snapshot.
+ */
+export const READINGS_KEEP_DAYS = 7
 export const MINUTES_KEEP_DAYS = 90
 export const HOURS_KEEP_DAYS = 5 * 366
 /** A snapshot of the nodes every minute, then one every hour. */

@@ -1,4 +1,5 @@
-import { query } from '@/lib/collector/query'
+import { gravest, query } from '@/lib/collector/query'
+import { DATA_STATES, LEVELS } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import { chunksOf, HOUR_MS, MINUTE_MS, type Stretch, stretchDue } from './stretch'
 import { inTransaction, oldestMs, setThrough, throughOf } from './through'
@@ -6,8 +7,7 @@ import { inTransaction, oldestMs, setThrough, throughOf } from './through'
 /** So long after its end a minute may still get a reading: a round is given up on after ten seconds. */
 export const MINUTE_RESTS_MS = 30_000
 
-const WORST_LEVEL = `(array['firm', 'weak', 'split'])[max(array_position(array['firm', 'weak', 'split'], level))]`
-const WORST_DATA = `(array['fresh', 'settling', 'unheard'])[max(array_position(array['fresh', 'settling', 'unheard'], data))]`
+const GRAVEST = `${gravest('level', LEVELS)} as level, ${gravest('data', DATA_STATES)} as data`
 
 /** Least heard of joined, with both: arrays compare by their first element, then by the next. */
 const leastCoverage = (heard: string, joined: string) =>
@@ -27,7 +27,7 @@ const MINUTES = `
     ${ofReadings('max(lambda2)')} as most, ${ofReadings('avg(lambda2)')} as mean,
     percentile_cont(0.5) within group (order by lambda2) filter (where data = 'fresh') as fresh_median,
     ${ofReadings('min(low)')} as low, ${ofReadings('max(high)')} as high,
-    ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    ${GRAVEST},
     ${leastCoverage("(body->'coverage'->>'heard')::int", "(body->'coverage'->>'joined')::int")} as coverage,
     min((body->>'crossingLinks')::int) as crossing_links, bool_or(demo) as demo
   from readings`
@@ -37,7 +37,7 @@ const HOURS = `
     sum(fresh) as fresh, ${ofMinutes('min(least)')} as least, ${ofMinutes('max(most)')} as most,
     coalesce(sum(mean * fresh) / nullif(sum(fresh), 0), sum(mean * valued) / nullif(sum(valued), 0)) as mean,
     percentile_cont(0.5) within group (order by fresh_median) as fresh_median,
-    ${ofMinutes('min(low)')} as low, ${ofMinutes('max(high)')} as high, ${WORST_LEVEL} as level, ${WORST_DATA} as data,
+    ${ofMinutes('min(low)')} as low, ${ofMinutes('max(high)')} as high, ${GRAVEST},
     ${leastCoverage('heard', 'joined')} as coverage, min(crossing_links) as crossing_links, bool_or(demo) as demo
   from reading_minutes`
 

@@ -32,10 +32,10 @@ describe('a range of readings is made from', () => {
   })
 
   it('what reaches back so far, however fine a step is asked for', () => {
-    expect(plan(1, 2, 13 * 24)).toBe('reading 4')
-    expect(plan(1, 2, 15 * 24)).toBe('minute 60')
+    expect(plan(1, 2, 6 * 24)).toBe('reading 4')
+    expect(plan(1, 2, 8 * 24)).toBe('minute 60')
     expect(plan(1, 2, 91 * 24)).toBe('hour 3600')
-    expect(plan(1, 90, 15 * 24)).toBe('minute 120')
+    expect(plan(1, 90, 8 * 24)).toBe('minute 120')
     expect(plan(1, 2, 50 * 366 * 24)).toBe('hour 3600')
   })
 })

@@ -25,10 +25,19 @@ describe('partitions', () => {
       { name: 'tides_2026_12', from: '2026-12-01T00:00:00.000Z', to: '2027-01-01T00:00:00.000Z' },
       { name: 'tides_2027_01', from: '2027-01-01T00:00:00.000Z', to: '2027-02-01T00:00:00.000Z' },
     ])
-    expect(partitionsAround({ ...series, width: 'year', back: 1, ahead: 0 }, now)).toEqual([
+    expect(partitionsAround({ ...series, width: 'year', keepDays: 800, back: 1, ahead: 0 }, now)).toEqual([
       { name: 'tides_2025', from: '2025-01-01T00:00:00.000Z', to: '2026-01-01T00:00:00.000Z' },
       { name: 'tides_2026', from: '2026-01-01T00:00:00.000Z', to: '2027-01-01T00:00:00.000Z' },
     ])
+  })
+
+  it('are not made where they would go at once', () => {
+    const now = new Date('2026-12-31T00:00:00Z')
+    const names = partitionsAround({ ...series, back: 3, ahead: 0 }, now).map(({ name }) => name)
+    expect(names).toEqual(['tides_2026_10', 'tides_2026_11', 'tides_2026_12'])
+    for (const one of SERIES)
+      for (const { to } of partitionsAround(one, now))
+        expect(new Date(to) > cutoffOf({ ...one, rolledInto: null }, now, null)).toBe(true)
   })
 
   it('say by their names when they end, as they were made; the default one has no end', () => {
