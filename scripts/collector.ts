@@ -12,10 +12,11 @@ import { POST as report } from '@/app/api/agent/report/route'
 import { POST as session } from '@/app/api/agent/session/route'
 import { createRouteServer } from '@/lib/collector/http-server'
 import { getIngest, startLeader } from '@/lib/collector/process'
-import { closeDatabase, ensurePartitions, forkEm, sql } from '@/lib/db'
+import { closeDatabase, sql } from '@/lib/db'
 import { authorise } from '@/lib/http/call'
 import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { route } from '@/lib/http/route'
+import { untilStorable } from '@/lib/http/start-server'
 import { startJobs } from '@/lib/jobs/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
@@ -43,8 +44,7 @@ const server = createRouteServer({
   'GET /api/agent/directory': directory,
   'GET /api/health': health,
 })
-// Before anything is to be stored, whether or not the job that makes them ahead has run.
-await ensurePartitions(await forkEm(), new Date())
+await untilStorable()
 server.listen(port, host)
 await once(server, 'listening')
 const leader = startLeader(processSignal())

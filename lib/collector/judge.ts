@@ -2,7 +2,7 @@ import type { EVENT_KINDS, Reading } from '@/lib/data/dto'
 import type { Estimate } from '@/lib/method/control'
 import { type LevelNow, stateOf, verdictFacts } from './facts'
 import { happenings } from './happenings'
-import { levelOf, worse } from './level'
+import { isGrave, levelOf, worse } from './level'
 import type { Memory, Side } from './memory'
 import { readingOf } from './reading'
 import { nameSides } from './sides'
@@ -83,6 +83,7 @@ export function judge(input: JudgeInput): Judgement {
         : memory.last,
     unheard: unheardNow(agents),
     usual: input.usual,
+    graveSinceMs: isGrave(level.rules) ? (memory.graveSinceMs ?? estimate.atMs) : null,
     withheld: data === 'unheard',
     judgedAtMs: estimate.atMs,
   }

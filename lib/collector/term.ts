@@ -13,7 +13,7 @@ import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
 import type { Upkeep } from './upkeep'
-import type { Usual } from './usual'
+import { type Usual, usualNow } from './usual'
 
 /** A round that fails is tried anew at the next interval; after so many in a row the overlay is given up. */
 export const FAILURES_MOST = 5
@@ -125,11 +125,9 @@ export class Term {
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
     onInterval(PACES[loaded.pace].intervalMs)
-    const known = usual.at(loaded.snapshot.atMs)
-    const { round, reading } = this.#plan(
-      loaded,
-      known === undefined ? (this.#state?.memory.usual ?? null) : known,
-    )
+    const { atMs } = loaded.snapshot
+    const usualIs = usualNow(usual.at(atMs), this.#state?.memory ?? BLANK_MEMORY, atMs)
+    const { round, reading } = this.#plan(loaded, usualIs)
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state

@@ -1,6 +1,7 @@
 import type { EntityManager } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import type { Clock } from './clock'
+import type { Memory } from './memory'
 import { epochMs, query } from './query'
 import { median } from './trend'
 
@@ -24,6 +25,24 @@ export function usualOf(hours: ReadonlyMap<number, number>, nowMs: number): numb
   const firstMs = Math.min(...kept.map(([hourMs]) => hourMs))
   if (kept.length === 0 || nowMs - firstMs < USUAL_LEAST_DAYS * 24 * HOUR_MS) return null
   return median(kept.map(([, value]) => value))
+}
+
+/** So long a grave state is an incident; after that it begins to be what is usual. */
+export const USUAL_FROZEN_MOST_DAYS = 7
+
+/**
+ * What is usual stays as it was while an overlay is split or far below it: the hours of an incident would make it look
+ * as if nothing were wrong. Nobody has to end it.
+ * @param looked undefined while nothing has been looked up
+ */
+export function usualNow(
+  looked: number | null | undefined,
+  { usual, graveSinceMs }: Pick<Memory, 'usual' | 'graveSinceMs'>,
+  nowMs: number,
+): number | null {
+  if (looked === undefined) return usual
+  const isFrozen = graveSinceMs != null && nowMs - graveSinceMs < USUAL_FROZEN_MOST_DAYS * 24 * HOUR_MS
+  return isFrozen && usual !== null ? usual : looked
 }
 
 /** What an overlay usually reads, from what is kept of each hour. Hours that have passed are looked at once. */

@@ -1,10 +1,13 @@
 import { HOURS_KEEP_DAYS, MINUTES_KEEP_DAYS, READINGS_KEEP_DAYS } from '@/lib/db/series'
 
-/** What is kept of readings, the finest first, with how long and in parts of how many seconds. */
+/**
+ * What is kept of readings, the finest first: in parts of how many seconds, for how long, and how many rows one answer
+ * is made from at most, so that it takes some 20 ms (8,760 hours: 16 ms).
+ */
 export const KEPT = [
-  { what: 'reading', partSeconds: 0, keepDays: READINGS_KEEP_DAYS },
-  { what: 'minute', partSeconds: 60, keepDays: MINUTES_KEEP_DAYS },
-  { what: 'hour', partSeconds: 3_600, keepDays: HOURS_KEEP_DAYS },
+  { what: 'reading', partSeconds: 0, keepDays: READINGS_KEEP_DAYS, rowsMost: 6_000 },
+  { what: 'minute', partSeconds: 60, keepDays: MINUTES_KEEP_DAYS, rowsMost: 12_000 },
+  { what: 'hour', partSeconds: 3_600, keepDays: HOURS_KEEP_DAYS, rowsMost: Number.POSITIVE_INFINITY },
 ] as const
 export type Kept = (typeof KEPT)[number]['what']
 
@@ -21,7 +24,7 @@ export interface RangeAsked {
 }
 
 export interface RangePlan {
-  /** The coarsest that still has steps so fine, of what reaches back so far. */
+  /** The coarsest that still has steps so fine, of what reaches back so far and is not too many rows. */
   kept: Kept
   /** A whole number of parts. */
   stepSeconds: number
@@ -31,7 +34,11 @@ export function planRange({ fromMs, toMs, stepSeconds, intervalMs, nowMs }: Rang
   // Steps are parts of the calendar, not of the range: at both ends there may be a part of one.
   const finest = Math.ceil((toMs - fromMs) / (READINGS_MOST - 1) / 1000)
   const wanted = Math.max(stepSeconds ?? intervalMs / 1000, finest)
-  const reaching = KEPT.filter(({ keepDays }) => fromMs >= nowMs - keepDays * DAY_MS)
+  const rowsOf = (partSeconds: number) => (toMs - fromMs) / (partSeconds * 1000 || intervalMs)
+  const reaching = KEPT.filter(
+    ({ keepDays, partSeconds, rowsMost }) =>
+      fromMs >= nowMs - keepDays * DAY_MS && rowsOf(partSeconds) <= rowsMost,
+  )
   const [finestReaching = KEPT[2]] = reaching
   const { what, partSeconds } =
     [...reaching].reverse().find((kept) => kept.partSeconds <= wanted) ?? finestReaching

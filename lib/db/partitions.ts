@@ -69,7 +69,7 @@ export async function ensurePartitions(
       const known = new Set(await partitionNames(tx, one.table))
       for (const partition of partitionsAround(one, now)) {
         if (known.has(partition.name)) continue
-        await make(tx, one.table, partition)
+        await make(tx, one, partition)
         made.push(partition.name)
       }
     }
@@ -77,8 +77,14 @@ export async function ensurePartitions(
   })
 }
 
-async function make(em: EntityManager, table: string, { name, from, to }: Partition): Promise<void> {
+async function make(
+  em: EntityManager,
+  { table, uncounted }: Series,
+  { name, from, to }: Partition,
+): Promise<void> {
   await sql(em, `create table ${name} (like ${table} including defaults including constraints)`)
+  for (const column of uncounted)
+    await sql(em, `alter table ${name} alter column "${column}" set statistics 0`)
   await sql(
     em,
     `with moved as (delete from ${table}_default where at >= ? and at < ? returning *)

@@ -31,6 +31,11 @@ describe('a range of readings is made from', () => {
     }
   })
 
+  it('no more rows than can be looked at quickly, though steps get coarser', () => {
+    expect(plan(4, 30)).toBe('minute 60')
+    expect(plan(10 * 24, 900)).toBe('hour 3600')
+  })
+
   it('what reaches back so far, however fine a step is asked for', () => {
     expect(plan(1, 2, 6 * 24)).toBe('reading 4')
     expect(plan(1, 2, 8 * 24)).toBe('minute 60')

@@ -33,7 +33,7 @@ describe('the choice of range', () => {
   })
 
   it('is looked at again at least every ten minutes, and at most every five seconds', () => {
-    expect(RANGES.map((range) => refreshMs(range) / 1000)).toEqual([5, 30, 240, 600, 600, 600])
+    expect(RANGES.map((range) => refreshMs(range) / 1000)).toEqual([5, 30, 120, 600, 600, 600])
   })
 })
 

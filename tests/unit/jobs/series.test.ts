@@ -12,6 +12,7 @@ const series = {
   back: 0,
   ahead: 1,
   rolledInto: 'hours',
+  uncounted: [],
 } as const
 
 describe('partitions', () => {
