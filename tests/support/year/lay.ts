@@ -3,8 +3,11 @@
  * as far back as it is kept, and a little further, so that there is something to roll up and to drop.
  */
 import { BLANK_MEMORY, STATE_VERSION } from '@/lib/collector/memory'
+import { newSigningKey } from '@/lib/data/overlays'
 import { ensurePartitions, type Orm, SERIES, sql } from '@/lib/db'
 import { setThrough } from '@/lib/jobs/through'
+import { initialControl } from '@/lib/method/control'
+import { PACES } from '@/lib/method/pace'
 import { agentRows, eventRows, minuteRows, readingRows, snapshotRows } from './rows'
 
 export const DAY_MS = 86_400_000
@@ -56,12 +59,13 @@ export async function layYear(orm: Orm, teamId: string, init: YearInit): Promise
 
 async function layOverlays(orm: Orm, teamId: string, { overlays, nodes, now }: YearInit): Promise<string[]> {
   const em = orm.em.fork()
+  const { publicKey, privateKey } = newSigningKey()
   const rows = await sql<{ id: string }>(
     em,
     `insert into overlays (team_id, slug, name, pace, disclosure, weights, public_key, private_key, created_at)
-     select ?, 'overlay-' || n, 'Overlay ' || n, 'steady', 'named', 'unit', 'p', 's', now()
+     select ?, 'overlay-' || n, 'Overlay ' || n, 'steady', 'named', 'unit', ?, ?, now()
      from generate_series(1, ?::int) n returning id`,
-    [teamId, overlays],
+    [teamId, publicKey, privateKey, overlays],
   )
   const ids = rows.map(({ id }) => id)
   for (const text of agentRows(nodes)) await sql(em, text)
@@ -78,7 +82,15 @@ async function layOverlays(orm: Orm, teamId: string, { overlays, nodes, now }: Y
     await sql(
       em,
       `insert into controls (overlay_id, state, sequence, updated_at) values (?, ?::jsonb, 9, ?)`,
-      [overlayId, JSON.stringify({ version: STATE_VERSION, control: {}, memory }), now],
+      [
+        overlayId,
+        JSON.stringify({
+          version: STATE_VERSION,
+          control: initialControl(now.getTime(), PACES.steady),
+          memory,
+        }),
+        now,
+      ],
     )
   }
   return ids
