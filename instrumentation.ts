@@ -8,4 +8,6 @@ export async function register(): Promise<void> {
   const { processSignal } = await import('./lib/http/process-signal')
   const { startLeader } = await import('./lib/collector/process')
   startLeader(processSignal())
+  const { startJobs } = await import('./lib/jobs/process')
+  startJobs(processSignal())
 }

@@ -22,7 +22,12 @@ const build = 'tests/support/global-setup-build.ts'
 /** Hours-long courses: only by `npm run soak`. */
 const soak = {
   extends: true as const,
-  test: { name: 'soak', include: ['tests/soak/**/*.test.ts'], testTimeout: 3_600_000 },
+  test: {
+    name: 'soak',
+    include: ['tests/soak/**/*.test.ts'],
+    globalSetup: ['tests/support/global-setup.ts'],
+    testTimeout: 3_600_000,
+  },
 }
 
 /** These replace modules, or wait most of the time while others run: each in a process of its own. */

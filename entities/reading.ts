@@ -24,7 +24,7 @@ export type ReadingBody = Omit<
 
 const real = () => p.float().columnType('double precision').nullable()
 
-/** Partitioned by `at` (months); the migration is written by hand and there are no foreign keys to it. */
+/** Partitioned by `at` (days); the migration is written by hand and there are no foreign keys to it. */
 export const ReadingSchema = defineEntity({
   name: 'Reading',
   tableName: 'readings',

@@ -4,6 +4,8 @@ import { Readings20261203 } from './migration-2026-12-03-readings'
 import { AgentProofs20261204 } from './migration-2026-12-04-agent-proofs'
 import { LateArrivals20261205 } from './migration-2026-12-05-late-arrivals'
 import { AgentsInService20261206 } from './migration-2026-12-06-agents-in-service'
+import { ReadingsForYears20261207 } from './migration-2026-12-07-readings-for-years'
+import { NodeSnapshots20261208 } from './migration-2026-12-08-node-snapshots'
 
 /** In order; a migration that has landed is never edited. */
 export const migrations = [
@@ -13,4 +15,6 @@ export const migrations = [
   { name: '2026-12-04-agent-proofs', class: AgentProofs20261204 },
   { name: '2026-12-05-late-arrivals', class: LateArrivals20261205 },
   { name: '2026-12-06-agents-in-service', class: AgentsInService20261206 },
+  { name: '2026-12-07-readings-for-years', class: ReadingsForYears20261207 },
+  { name: '2026-12-08-node-snapshots', class: NodeSnapshots20261208 },
 ]

@@ -18,6 +18,8 @@ import { closeDatabase, sql } from '@/lib/db'
 import { authorise } from '@/lib/http/call'
 import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { route } from '@/lib/http/route'
+import { untilStorable } from '@/lib/http/start-server'
+import { startJobs } from '@/lib/jobs/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
 // Beside a running `npm start` it needs no address.
@@ -46,9 +48,11 @@ const server = createRouteServer({
   'GET /agent/thinspan-agent.json': agentFacts,
   'GET /api/health': health,
 })
+await untilStorable()
 server.listen(port, host)
 await once(server, 'listening')
 const leader = startLeader(processSignal())
+const jobs = startJobs(processSignal())
 const address = server.address()
 const listening = typeof address === 'object' && address ? address.port : port
 process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
@@ -60,5 +64,6 @@ server.close()
 server.closeIdleConnections()
 await getIngest().stop()
 await leader.stop()
+await jobs.stop()
 await closeDatabase()
 server.closeAllConnections()

@@ -44,6 +44,12 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/namespaces.test.ts',
     env: {},
   },
+  year: {
+    about:
+      'a year of 20 overlays of 200 nodes (THINSPAN_YEAR_OVERLAYS, THINSPAN_YEAR_NODES) rolled up, thinned and looked at, with figures; some 20 GB of disk',
+    file: 'tests/soak/year.test.ts',
+    env: {},
+  },
 }
 
 const root = resolve(import.meta.dirname, '..')

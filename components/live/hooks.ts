@@ -16,7 +16,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
-import { type Range, rangeQuery } from '@/lib/face/range'
+import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
 import { AGENT_FILE_URL, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
 import { POLL_MS, useStreaming } from './live-provider'
@@ -126,6 +126,7 @@ export interface History {
   fromMs: number
   toMs: number
   stepSeconds: number
+  kept: ReadingPoint['kept']
 }
 
 /** Readings of the last while; the key holds the range, so that each look asks up to the present. */
@@ -135,9 +136,9 @@ export function useHistory(slug: string, range: Range) {
     `${url}#${range.id}`,
     async () => {
       const { query, fromMs, toMs } = rangeQuery(range, Date.now())
-      const { items, stepSeconds } = await getJson(`${url}?${query}`, readingsSchema)
-      return { points: items, fromMs, toMs, stepSeconds }
+      const { items, stepSeconds, kept } = await getJson(`${url}?${query}`, readingsSchema)
+      return { points: items, fromMs, toMs, stepSeconds, kept }
     },
-    { streamingMs: Math.max(5, range.stepSeconds) * 1000 },
+    { streamingMs: refreshMs(range) },
   )
 }

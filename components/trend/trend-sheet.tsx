@@ -1,33 +1,43 @@
 'use client'
 
+import { useSearchParams } from 'next/navigation'
 import { useState } from 'react'
 import { Freshness } from '@/components/live/freshness'
 import { useEvents, useHistory, useReading } from '@/components/live/hooks'
 import { EmptyState, FailedState, Sheet, Waiting } from '@/components/ui'
 import { cx } from '@/lib/face/cx'
-import { DEFAULT_RANGE, fittingRange, RANGES, type Range } from '@/lib/face/range'
+import { DEFAULT_RANGE, fittingRange, RANGES, type Range, rangeNamed } from '@/lib/face/range'
 import { Trend } from './trend'
+
+const RANGE_PARAMETER = 'last'
+
+/** In the address, so that it can be passed on and outlives a reload; no step back for each choice. */
+function pick(range: Range): void {
+  const url = new URL(location.href)
+  url.searchParams.set(RANGE_PARAMETER, range.id)
+  history.replaceState(null, '', url)
+}
 
 /** The trend of one overlay with its choice of range. */
 export function TrendSheet({ slug }: { slug: string }) {
-  const [picked, setPicked] = useState<Range | null>(null)
+  const picked = rangeNamed(useSearchParams().get(RANGE_PARAMETER))
   const [fitting, setFitting] = useState<Range | null>(null)
   const range = picked ?? fitting ?? DEFAULT_RANGE
-  const history = useHistory(slug, range)
-  if (fitting === null && history.data?.points[0]) {
+  const past = useHistory(slug, range)
+  if (fitting === null && past.data?.points[0]) {
     // Chosen once: a drawing that changes its scale by itself cannot be read.
-    setFitting(fittingRange(Date.parse(history.data.points[0].at), history.data.toMs))
+    setFitting(fittingRange(Date.parse(past.data.points[0].at), past.data.toMs))
   }
   const events = useEvents(slug)
   const reading = useReading(slug)
 
   return (
-    <Sheet heading="Trend" aside={<RangeChoice range={range} onRange={setPicked} />}>
-      <Freshness of={history} unless={reading} />
-      {history.data ? (
-        history.data.points.length > 0 ? (
+    <Sheet heading="Trend" aside={<RangeChoice range={range} onRange={pick} />}>
+      <Freshness of={past} unless={reading} />
+      {past.data ? (
+        past.data.points.length > 0 ? (
           <Trend
-            {...history.data}
+            {...past.data}
             rangeLabel={range.label}
             events={events.data ?? []}
             usual={reading.data?.usual ?? null}
@@ -39,10 +49,10 @@ export function TrendSheet({ slug }: { slug: string }) {
             </EmptyState>
           </div>
         )
-      ) : history.error ? (
+      ) : past.error ? (
         <div className="min-h-64">
-          <FailedState quiet title="The trend could not be loaded." onRetry={history.retry}>
-            {history.error.message}
+          <FailedState quiet title="The trend could not be loaded." onRetry={past.retry}>
+            {past.error.message}
           </FailedState>
         </div>
       ) : (

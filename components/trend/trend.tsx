@@ -5,7 +5,16 @@ import { useWidth } from '@/components/stretch/use-width'
 import type { OverlayEvent, ReadingPoint } from '@/lib/data/dto'
 import { formatInterval, formatReading } from '@/lib/face/format'
 import { formatMoment } from '@/lib/face/time'
-import { placeEvents, scaleTop, spansWhere, trendColumns, trendSummary } from '@/lib/face/trend'
+import {
+  isWithheld,
+  placeEvents,
+  pointDetail,
+  pointsAre,
+  scaleTop,
+  spansWhere,
+  trendColumns,
+  trendSummary,
+} from '@/lib/face/trend'
 import { Chart } from './chart'
 import { AXIS_LEFT, AXIS_RIGHT, type Marks } from './chart-options'
 import { EventStrip } from './event-strip'
@@ -15,6 +24,8 @@ export interface TrendProps {
   fromMs: number
   toMs: number
   stepSeconds: number
+  /** What the points are made from. */
+  kept?: ReadingPoint['kept']
   rangeLabel: string
   events: readonly OverlayEvent[]
   usual: number | null
@@ -37,7 +48,7 @@ export function Trend(props: TrendProps) {
       fromSeconds: fromMs / 1000,
       toSeconds: toMs / 1000,
       top: scaleTop(columns, [usual, floor]),
-      withheld: span((p) => p.data === 'unheard'),
+      withheld: span(isWithheld),
       demo: span((p) => p.demo),
       usual,
       floor,
@@ -63,6 +74,7 @@ export function Trend(props: TrendProps) {
   )
 
   const summary = trendSummary(points, props.rangeLabel, marks.withheld, usual)
+  const whole = pointsAre(props.kept, stepSeconds)
   return (
     <div ref={frame} className="min-w-0 overflow-hidden">
       {width !== null && width > 0 ? (
@@ -72,19 +84,27 @@ export function Trend(props: TrendProps) {
         </>
       ) : null}
       <p className="mt-1 min-h-6 text-sm text-soft">
-        <Readout columns={columns} index={index} toMs={toMs} withheld={marks.withheld.length > 0} />
+        <Readout
+          columns={columns}
+          points={points}
+          index={index}
+          toMs={toMs}
+          withheld={marks.withheld.length > 0}
+        />
       </p>
+      {whole === null ? null : <p className="text-sm text-soft">{whole}</p>}
     </div>
   )
 }
 
 function Readout(props: {
   columns: ReturnType<typeof trendColumns>
+  points: readonly ReadingPoint[]
   index: number | null
   toMs: number
   withheld: boolean
 }) {
-  const { columns, index, toMs, withheld } = props
+  const { columns, points, index, toMs, withheld } = props
   const at = index === null ? undefined : columns.x[index]
   if (index === null || at === undefined) {
     return withheld
@@ -97,5 +117,6 @@ function Readout(props: {
   const moment = formatMoment(at * 1000, toMs)
   if (value === null || value === undefined) return `${moment} · withheld`
   const between = low != null && high != null ? ` (${formatInterval(low, high, value)})` : ''
-  return `${moment} · ${formatReading(value)}${between}`
+  const point = points.find((p) => Date.parse(p.at) === at * 1000)
+  return `${moment} · ${formatReading(value)}${between}${point ? pointDetail(point) : ''}`
 }

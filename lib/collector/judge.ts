@@ -3,7 +3,7 @@ import type { CoreEstimate, Estimate } from '@/lib/method/control'
 import { type LevelNow, stateOf, verdictFacts } from './facts'
 import { happenings } from './happenings'
 import { type Headline, headlineOf, looseTexts, memoryFor } from './headline'
-import { levelOf, worse } from './level'
+import { isGrave, levelOf, worse } from './level'
 import type { Memory, Side } from './memory'
 import { readingOf } from './reading'
 import { nameSides } from './sides'
@@ -98,6 +98,7 @@ function judgeHeadline(input: HeadlineInput): Judgement {
         : memory.last,
     unheard: unheardNow(agents),
     usual: input.usual,
+    graveSinceMs: isGrave(level.rules) ? (memory.graveSinceMs ?? estimate.atMs) : null,
     withheld: data === 'unheard',
     judgedAtMs: estimate.atMs,
   }

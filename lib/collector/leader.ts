@@ -3,6 +3,7 @@ import type { Log } from '@/lib/http/runtime'
 import { forkRandom, type Random } from '@/lib/method/random'
 import { type Clock, sleep } from './clock'
 import { findLed, LeaderStore } from './leader-store'
+import { Moments } from './moments'
 import { LEADERS_CHANNEL, ORDERS_CHANNEL } from './notices'
 import { Term } from './term'
 import { Upkeep } from './upkeep'
@@ -112,8 +113,17 @@ export class Leader {
     const holder = newHolder()
     const store = new LeaderStore({ forkEm }, { overlayId, holder })
     const upkeep = new Upkeep({ forkEm, clock }, { overlayId, holder })
+    const moments = new Moments({ forkEm }, { overlayId, holder })
     const usual = new Usual({ forkEm, clock, log }, { overlayId })
-    const components = { store, usual, upkeep, clock, random: forkRandom(random, this.#count++), log }
+    const components = {
+      store,
+      usual,
+      upkeep,
+      moments,
+      clock,
+      random: forkRandom(random, this.#count++),
+      log,
+    }
     const term = new Term(components, { overlayId })
     const done = this.#serve(term, overlayId, session, signal).then(() => {
       const left = usual.stop().finally(() => this.#left.delete(left))

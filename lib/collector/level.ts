@@ -82,6 +82,13 @@ export function levelOf(facts: LevelFacts, inForce: readonly string[]): LevelVer
   return { level: matching[0]?.level ?? 'firm', rule: rules[0] ?? null, rules }
 }
 
+/** Whether any of these rules says that the overlay is not as it usually is. Few links may be how it is built. */
+export function isGrave(rules: readonly string[]): boolean {
+  return LEVEL_RULES.some(
+    ({ name, level }) => rules.includes(name) && (level === 'split' || name === 'below-usual'),
+  )
+}
+
 const ORDER: Record<Level, number> = { firm: 0, weak: 1, split: 2 }
 
 export function worse(a: Level | null, b: Level | null): Level | null {

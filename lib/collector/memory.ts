@@ -36,6 +36,8 @@ export interface Memory {
   unheard: Record<string, number>
   /** What the overlay usually reads, as last known: whoever leads next need not wait for it. */
   usual: number | null
+  /** Since when the overlay has been split or far below its usual; absent in states from before it was kept. */
+  graveSinceMs?: number | null
   withheld: boolean
   /** When the last evaluation was, and since when there has been no gap between them. */
   judgedAtMs: number | null
@@ -58,6 +60,7 @@ export const BLANK_MEMORY: Memory = {
   last: null,
   unheard: {},
   usual: null,
+  graveSinceMs: null,
   withheld: false,
   judgedAtMs: null,
   listeningSinceMs: null,

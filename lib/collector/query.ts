@@ -21,3 +21,9 @@ export async function query<Row extends object = Record<string, unknown>>(
 export function epochMs(expression: string): string {
   return `(extract(epoch from ${expression}) * 1000)::float8`
 }
+
+/** The gravest of a column of names, over a group; compared as numbers, which is faster than as places in a list. */
+export function gravest(column: string, fromLeast: readonly string[]): string {
+  const ranks = fromLeast.map((name, rank) => `when '${name}' then ${rank + 1}`)
+  return `(array[${fromLeast.map((name) => `'${name}'`).join(', ')}])[max(case ${column} ${ranks.join(' ')} end)]`
+}

@@ -64,3 +64,9 @@ function nameOfAbove(
 export function other(side: Side): Side {
   return side === 'a' ? 'b' : 'a'
 }
+
+/** Null where no single cut stands out: a side would say something that is not so. */
+export function sideOf(memory: Memory | null, agentId: string): Side | null {
+  if (!memory?.cut || memory.singleCut === false) return null
+  return memory.sides[agentId] ?? null
+}

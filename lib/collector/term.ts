@@ -1,3 +1,4 @@
+import type { Reading } from '@/lib/data/dto'
 import type { Log } from '@/lib/http/runtime'
 import {
   DEFAULT_SETTINGS,
@@ -16,8 +17,9 @@ import { type JudgedAgent, judge } from './judge'
 import type { LeaderStore, Loaded, LoadedAgent, Round } from './leader-store'
 import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
+import type { Moments } from './moments'
 import type { Upkeep } from './upkeep'
-import type { Usual } from './usual'
+import { type Usual, usualNow } from './usual'
 
 /** A round that fails is tried anew at the next interval; after so many in a row the overlay is given up. */
 export const FAILURES_MOST = 5
@@ -26,6 +28,7 @@ export interface TermComponents {
   store: Pick<LeaderStore, 'claim' | 'load' | 'write'>
   usual: Pick<Usual, 'at'>
   upkeep: Pick<Upkeep, 'look'>
+  moments: Pick<Moments, 'look'>
   clock: Clock
   random: Random
   log: Log
@@ -123,13 +126,14 @@ export class Term {
   }
 
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
-    const { clock, store, usual, upkeep, log } = this.#components
+    const { clock, store, usual, upkeep, moments, log } = this.#components
     const startedMs = clock.monotonicMs()
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
     onInterval(PACES[loaded.pace].intervalMs)
-    const known = usual.at(loaded.snapshot.atMs)
-    const round = this.#plan(loaded, known === undefined ? (this.#state?.memory.usual ?? null) : known)
+    const { atMs } = loaded.snapshot
+    const usualIs = usualNow(usual.at(atMs), this.#state?.memory ?? BLANK_MEMORY, atMs)
+    const { round, reading } = this.#plan(loaded, usualIs)
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state
@@ -143,10 +147,15 @@ export class Term {
     await upkeep
       .look(loaded, round.state.memory)
       .catch((error: unknown) => log.error({ overlayId: this.#overlayId, err: error }, 'upkeep failed'))
+    await moments
+      .look(withoutLeftOut(loaded, round.leftOut), round.state.memory, reading)
+      .catch((error: unknown) =>
+        log.error({ overlayId: this.#overlayId, err: error }, 'the moment could not be kept'),
+      )
     return null
   }
 
-  #plan(loaded: Loaded, usual: number | null): Round {
+  #plan(loaded: Loaded, usual: number | null): { round: Round; reading: Reading } {
     const { pace: paceName, disclosure, weights, key } = loaded
     const pace = PACES[paceName]
     const sequence = this.#sequence + 1
@@ -186,29 +195,31 @@ export class Term {
       disclosure === 'named'
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
-    return {
+    const told = withFleetFacts(
+      reading,
+      fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
+    )
+    const round: Round = {
       sequence,
       state: { version: STATE_VERSION, control, memory },
       orders: { ...orders, weights, shut },
       key,
-      reading: store
-        ? withFleetFacts(reading, fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs))
-        : null,
+      reading: store ? told : null,
       events: [...events, ...links],
       leftOut: audited.leftOut,
     }
+    return { round, reading: told }
   }
 }
 
 /** The overlay as it is once these agents are left out: they have not joined, and nobody keeps a link to them. */
-function withoutLeftOut(
-  { snapshot, shut, leftOutNames }: Loaded,
-  leftOut: Round['leftOut'],
-): Pick<Loaded, 'snapshot' | 'shut' | 'leftOutNames'> {
-  if (leftOut.length === 0) return { snapshot, shut, leftOutNames }
+function withoutLeftOut(loaded: Loaded, leftOut: Round['leftOut']): Loaded {
+  if (leftOut.length === 0) return loaded
+  const { snapshot, shut, leftOutNames } = loaded
   const because = new Map(leftOut.map((out) => [out.agentId, out.because]))
   const gone = snapshot.agents.filter(({ agentId }) => because.has(agentId))
   return {
+    ...loaded,
     snapshot: { ...snapshot, agents: snapshot.agents.filter(({ agentId }) => !because.has(agentId)) },
     shut: [...leftOut.map(({ agentId }) => ({ agentId, reason: 'left-out' as const })), ...shut].slice(
       0,

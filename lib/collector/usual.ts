@@ -1,6 +1,7 @@
 import type { EntityManager } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import type { Clock } from './clock'
+import type { Memory } from './memory'
 import { epochMs, query } from './query'
 import { median } from './trend'
 
@@ -10,8 +11,6 @@ export const USUAL_MOST_DAYS = 30
 export const USUAL_REFRESH_MS = 5 * 60_000
 /** After a look that failed. */
 export const USUAL_RETRY_MS = 30_000
-/** Thirty days of readings take longer than a request may. */
-const LOOK_MOST_MS = 60_000
 
 export interface UsualComponents {
   forkEm(): Promise<EntityManager>
@@ -28,7 +27,25 @@ export function usualOf(hours: ReadonlyMap<number, number>, nowMs: number): numb
   return median(kept.map(([, value]) => value))
 }
 
-/** What an overlay usually reads. Hours that have passed are looked at once, so that asking again is cheap. */
+/** So long a grave state is an incident; after that it begins to be what is usual. */
+export const USUAL_FROZEN_MOST_DAYS = 7
+
+/**
+ * What is usual stays as it was while an overlay is split or far below it: the hours of an incident would make it look
+ * as if nothing were wrong. Nobody has to end it.
+ * @param looked undefined while nothing has been looked up
+ */
+export function usualNow(
+  looked: number | null | undefined,
+  { usual, graveSinceMs }: Pick<Memory, 'usual' | 'graveSinceMs'>,
+  nowMs: number,
+): number | null {
+  if (looked === undefined) return usual
+  const isFrozen = graveSinceMs != null && nowMs - graveSinceMs < USUAL_FROZEN_MOST_DAYS * 24 * HOUR_MS
+  return isFrozen && usual !== null ? usual : looked
+}
+
+/** What an overlay usually reads, from what is kept of each hour. Hours that have passed are looked at once. */
 export class Usual {
   readonly #components: UsualComponents
   readonly #overlayId: string
@@ -81,18 +98,12 @@ export class Usual {
   }
 
   async #read(em: EntityManager, fromMs: number): Promise<void> {
-    const rows = await em.transactional(async (tx) => {
-      await query(tx, `select set_config('statement_timeout', ?, true)`, [String(LOOK_MOST_MS)])
-      return query<{ hourMs: number; value: number }>(
-        tx,
-        `select ${epochMs(`date_trunc('hour', at, 'UTC')`)} as "hourMs",
-           percentile_cont(0.5) within group (order by lambda2) as value
-         from readings
-         where overlay_id = ? and at >= ? and data = 'fresh' and lambda2 is not null
-         group by 1`,
-        [this.#overlayId, new Date(fromMs)],
-      )
-    })
+    const rows = await query<{ hourMs: number; value: number }>(
+      em,
+      `select ${epochMs('at')} as "hourMs", fresh_median as value from reading_hours
+       where overlay_id = ? and at >= ? and fresh_median is not null`,
+      [this.#overlayId, new Date(fromMs)],
+    )
     for (const { hourMs, value } of rows) this.#hours.set(hourMs, value)
   }
 }

@@ -12,6 +12,7 @@ export const TRENDS = ['steady', 'falling', 'rising'] as const
 export const DATA_STATES = ['fresh', 'settling', 'unheard'] as const
 export const ROLES = ['owner', 'operator', 'viewer'] as const
 export const SIDES = ['a', 'b'] as const
+export const KEPT_KINDS = ['reading', 'minute', 'hour'] as const
 export const WEIGHTS = ['unit', 'delivered'] as const
 
 const at = z.iso.datetime()
@@ -75,9 +76,25 @@ export const readingPointSchema = z.object({
   level: z.enum(LEVELS).nullable(),
   data: z.enum(DATA_STATES),
   demo: z.boolean(),
+  /** The coarsest of what it is made from: single readings, or what is kept of a minute or an hour. */
+  kept: z.enum(KEPT_KINDS).optional(),
+  /** Of minutes and hours: how many readings, and how many of them fresh. */
+  readings: z.number().int().optional(),
+  fresh: z.number().int().optional(),
+  /** The lowest and highest, of fresh readings where there are any; and the least covered moment. */
+  least: z.number().nullable().optional(),
+  most: z.number().nullable().optional(),
+  heard: z.number().int().nullable().optional(),
+  joined: z.number().int().nullable().optional(),
+  /** The fewest in the step. */
+  crossingLinks: z.number().int().nullable().optional(),
 })
 export type ReadingPoint = z.infer<typeof readingPointSchema>
-export const readingsSchema = z.object({ items: z.array(readingPointSchema), stepSeconds: z.number() })
+export const readingsSchema = z.object({
+  items: z.array(readingPointSchema),
+  stepSeconds: z.number(),
+  kept: z.enum(KEPT_KINDS).optional(),
+})
 
 export const NODE_STATES = ['heard', 'unheard', 'detached', 'left', 'revoked', 'left-out'] as const
 export const nodeSchema = z.object({
@@ -126,7 +143,12 @@ export const nodeSchema = z.object({
     .optional(),
 })
 export type OverlayNode = z.infer<typeof nodeSchema>
-export const nodesSchema = z.object({ items: z.array(nodeSchema), next: z.string().nullable() })
+export const nodesSchema = z.object({
+  items: z.array(nodeSchema),
+  next: z.string().nullable(),
+  /** Of a past moment: when the snapshot was taken. */
+  at: at.optional(),
+})
 
 /** A version of the agent that this server holds. */
 export const agentReleaseSchema = z.object({

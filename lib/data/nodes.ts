@@ -2,6 +2,7 @@ import { z } from 'zod'
 import type { AgentStateName, Overlay } from '@/entities'
 import type { Memory } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
+import { sideOf } from '@/lib/collector/sides'
 import type { OverlayNode } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
@@ -9,12 +10,14 @@ import type { Call } from '@/lib/http/call'
 import { heldMs } from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
 import type { NodeFacts, Sums } from '@/lib/method/report'
+import { loadMoment, momentQuerySchema, type PastMoment } from './moments'
 import { healthOf } from './node-health'
 import { openOverlay } from './overlays'
 import { pageSchema } from './paging'
 import { memoryOf } from './readings'
 
 export const nodesQuerySchema = pageSchema.extend({
+  ...momentQuerySchema.shape,
   /** Only nodes with this label, as key=value. */
   label: z
     .string()
@@ -53,12 +56,13 @@ const SELECT = `select a.id, a.name, a.labels, a.version, a.state, a.node as "no
 export async function listNodes(
   call: Call,
   slug: string,
-  { after, limit, label }: NodesQuery,
-): Promise<{ items: OverlayNode[]; next: string | null }> {
+  { after, limit, label, at }: NodesQuery,
+): Promise<{ items: OverlayNode[]; next: string | null; at?: string }> {
   const overlay = await openOverlay(call, 'node.list', slug)
+  if (at !== undefined)
+    return nodesThen(await loadMoment(call.em, overlay.id, new Date(at)), { after, limit, label })
   const memory = await memoryOf(call.em, overlay.id)
-  const equals = label?.indexOf('=') ?? -1
-  const wanted = label === undefined ? null : { [label.slice(0, equals)]: label.slice(equals + 1) }
+  const wanted = label === undefined ? null : Object.fromEntries([labelOf(label)])
   const rows = await query<Row>(
     call.em,
     `${SELECT} where a.overlay_id = ? and a.name collate "C" > ? ${wanted ? 'and a.labels @> ?::jsonb' : ''}
@@ -70,6 +74,28 @@ export async function listNodes(
   const { intervalMs } = PACES[overlay.pace]
   const items = rows.slice(0, limit).map((row) => toNode(row, memory, intervalMs))
   return { items, next: rows.length > limit ? (items[items.length - 1]?.name ?? null) : null }
+}
+
+function labelOf(text: string): [key: string, value: string] {
+  const equals = text.indexOf('=')
+  return [text.slice(0, equals), text.slice(equals + 1)]
+}
+
+/** Of those that had joined then. How they fared is not kept. */
+function nodesThen(
+  { at, nodes }: PastMoment,
+  { after = '', limit, label }: Omit<NodesQuery, 'at'>,
+): { items: OverlayNode[]; next: string | null; at: string } {
+  const wanted = label === undefined ? null : labelOf(label)
+  const found = nodes
+    .filter(({ name, labels }) => name > after && (!wanted || labels[wanted[0]] === wanted[1]))
+    .sort((one, other) => (one.name < other.name ? -1 : 1))
+  const items = found.slice(0, limit).map(({ name, labels, side, value, degree, weightedDegree, state }) => ({
+    ...{ name, labels: { ...labels }, side, value, degree, weightedDegree, state },
+    heardAt: state === 'unheard' ? null : at,
+    version: null,
+  }))
+  return { items, next: found.length > limit ? (items.at(-1)?.name ?? null) : null, at }
 }
 
 /** For those who have checked the caller. */
@@ -106,12 +132,6 @@ function toNode(row: Row, memory: Memory | null, intervalMs: number): OverlayNod
 
 function timeOf(atMs: number | null): string | null {
   return atMs === null ? null : new Date(atMs).toISOString()
-}
-
-/** Null where no single cut stands out: a side would say something that is not so. */
-export function sideOf(memory: Memory | null, agentId: string): OverlayNode['side'] {
-  if (!memory?.cut || memory.singleCut === false) return null
-  return memory.sides[agentId] ?? null
 }
 
 function stateOf({ state, ageMs, attached }: Row, intervalMs: number): OverlayNode['state'] {

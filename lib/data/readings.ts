@@ -1,37 +1,40 @@
-import { z } from 'zod'
 import { ControlSchema, type Overlay, type Reading as ReadingRow, ReadingSchema } from '@/entities'
+import { STORE_UNCHANGED_INTERVALS } from '@/lib/collector/judge'
 import { storedStateSchema } from '@/lib/collector/memory'
 import { epochMs, query } from '@/lib/collector/query'
 import { fromColumns } from '@/lib/collector/reading-columns'
 import { verdictOf } from '@/lib/collector/verdict'
-import type { Reading, ReadingPoint } from '@/lib/data/dto'
+import type { Reading } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
-import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { CONFIDENCE } from '@/lib/method/control'
 import { PACES, type PaceName } from '@/lib/method/pace'
-import { fillWithheld } from './fill-withheld'
+import { loadMoment, type MomentQuery } from './moments'
 import { openOverlay } from './overlays'
 import { isStale, staleReading } from './stale-reading'
 
-export const READINGS_MOST = 2_000
-export const READINGS_DEFAULT_SECONDS = 3 * 3_600
-/** Every reading of the range is looked at. */
-export const READINGS_MOST_DAYS = 31
-const DAY_MS = 86_400_000
+const LATELY_MS = 3_600_000
+/** While a reading is withheld and nothing changes rows are so far apart, and a round may be late. */
+const APART_INTERVALS = STORE_UNCHANGED_INTERVALS + 2
 
-export const readingsQuerySchema = z.object({
-  from: z.iso.datetime({ offset: true }).optional(),
-  to: z.iso.datetime({ offset: true }).optional(),
-  /** Seconds; left out: as fine as the number of points allows. */
-  step: z.coerce.number().positive().max(31_536_000).optional(),
-})
-export type ReadingsQuery = z.infer<typeof readingsQuerySchema>
-
-/** The latest reading; before there is one, a reading without a value that says what is being waited for. */
-export async function getReading(call: Call, slug: string): Promise<Reading> {
+/**
+ * The latest reading; before there is one, a reading without a value that says what is being waited for. Of a past
+ * moment the one that stood then, or the one in the snapshot nearest before.
+ */
+export async function getReading(call: Call, slug: string, { at }: MomentQuery = {}): Promise<Reading> {
   const overlay = await openOverlay(call, 'reading.read', slug)
+  if (at !== undefined) return readingThen(call.em, overlay, new Date(at))
   return presentReading(call.em, overlay, call.now)
+}
+
+async function readingThen(em: EntityManager, { id, pace }: Overlay, at: Date): Promise<Reading> {
+  const after = new Date(at.getTime() - APART_INTERVALS * PACES[pace].intervalMs)
+  const [row] = await em.find(
+    ReadingSchema,
+    { overlayId: id, at: { $lte: at, $gt: after } },
+    { orderBy: { at: 'desc' }, limit: 1 },
+  )
+  return row ? toReading(row, null) : (await loadMoment(em, id, at)).reading
 }
 
 /** For those who have checked the caller. */
@@ -40,7 +43,7 @@ export async function presentReading(
   { id }: Pick<Overlay, 'id'>,
   now: Date,
 ): Promise<Reading> {
-  const [row] = await em.find(ReadingSchema, { overlayId: id }, { orderBy: { at: 'desc' }, limit: 1 })
+  const row = await latestReading(em, id, now)
   // After the reading, so that it is not newer than its evaluation.
   const [standing] = await query<Standing>(
     em,
@@ -57,6 +60,18 @@ export async function presentReading(
   if (isHistory) return reading
   const ageMs = nowMs - (judgedAtMs ?? row.at.getTime())
   return isStale(ageMs, PACES[pace].intervalMs) ? staleReading(reading, nowMs) : reading
+}
+
+/** Looked for where it nearly always is, so that not every day is looked through. */
+async function latestReading(
+  em: EntityManager,
+  overlayId: string,
+  now: Date,
+): Promise<ReadingRow | undefined> {
+  const last = { orderBy: { at: 'desc' }, limit: 1 } as const
+  const lately = { $gt: new Date(now.getTime() - LATELY_MS) }
+  const [row] = await em.find(ReadingSchema, { overlayId, at: lately }, last)
+  return row ?? (await em.find(ReadingSchema, { overlayId }, last))[0]
 }
 
 /** All by the database's time. */
@@ -140,42 +155,4 @@ export async function memoryOf(em: EntityManager, overlayId: string) {
   const control = await em.findOne(ControlSchema, overlayId)
   const stored = storedStateSchema.safeParse(control?.state)
   return stored.success ? stored.data.memory : null
-}
-
-/**
- * Readings in steps: the median of each, the lowest and highest bound in it, and the gravest level and state. Ordered
- * by time; empty steps are left out.
- */
-export async function getReadings(
-  call: Call,
-  slug: string,
-  input: ReadingsQuery,
-): Promise<{ items: ReadingPoint[]; stepSeconds: number }> {
-  const overlay = await openOverlay(call, 'reading.read', slug)
-  const toMs = input.to ? Date.parse(input.to) : call.now.getTime()
-  const fromMs = input.from ? Date.parse(input.from) : toMs - READINGS_DEFAULT_SECONDS * 1000
-  if (fromMs >= toMs) throw new AppError('invalid-input', '"from" must be before "to". Correct one of them.')
-  if (toMs - fromMs > READINGS_MOST_DAYS * DAY_MS) {
-    const detail = `At most ${READINGS_MOST_DAYS} days can be asked for at a time. Move "from" and "to" closer together, and ask for longer stretches in several parts.`
-    throw new AppError('invalid-input', detail, {
-      errors: [{ path: 'from', message: `Choose a time at most ${READINGS_MOST_DAYS} days before "to".` }],
-    })
-  }
-  const { intervalMs } = PACES[overlay.pace]
-  // Steps are parts of the calendar, not of the range: at both ends there may be a part of one.
-  const finest = Math.ceil((toMs - fromMs) / (READINGS_MOST - 1) / 1000)
-  const stepSeconds = Math.max(input.step ?? intervalMs / 1000, finest)
-  const rows = await query<Omit<ReadingPoint, 'at'> & { atMs: number }>(
-    call.em,
-    `select (floor(extract(epoch from at) / ?::float8) * ?::float8 * 1000)::float8 as "atMs",
-       percentile_cont(0.5) within group (order by lambda2) as lambda2, min(low) as low, max(high) as high,
-       (array['firm', 'weak', 'split'])[max(array_position(array['firm', 'weak', 'split'], level))] as level,
-       (array['fresh', 'settling', 'unheard'])[max(array_position(array['fresh', 'settling', 'unheard'], data))] as data,
-       bool_or(demo) as demo
-     from readings where overlay_id = ? and at >= ? and at <= ? group by 1 order by 1 limit ?`,
-    [stepSeconds, stepSeconds, overlay.id, new Date(fromMs), new Date(toMs), READINGS_MOST],
-  )
-  const points = rows.map(({ atMs, ...point }) => ({ at: new Date(atMs).toISOString(), ...point }))
-  const items = fillWithheld(points, { stepMs: stepSeconds * 1000, intervalMs, most: READINGS_MOST })
-  return { items, stepSeconds }
 }

@@ -3,7 +3,7 @@ export { acquireLock as acquireLockAt, type HeldLock, LockSession, type LockSett
 export { migrate } from './migrate'
 export { NOTICE_MAX_BYTES, notify } from './notify'
 export { type EntityManager, type Orm, openOrm, sql } from './orm'
-export { ensurePartitions } from './partitions'
+export { cutoffOf, dropPartitions, endOf, ensurePartitions, partitionsAround } from './partitions'
 export {
   acquireLock,
   closeDatabase,
@@ -15,3 +15,4 @@ export {
   subscribe,
   withOverlayLock,
 } from './process'
+export * from './series'

@@ -1,3 +1,4 @@
+import { runMigrations } from 'graphile-worker'
 import { withLock } from './lock'
 import type { Orm } from './orm'
 import { ensurePartitions } from './partitions'
@@ -7,6 +8,7 @@ export async function migrate(orm: Orm, now: Date, signal: AbortSignal): Promise
   const url = orm.config.getClientUrl()
   return withLock({ url }, 'migrate', signal, async () => {
     const done = await orm.migrator.up()
+    await runMigrations({ connectionString: url })
     await ensurePartitions(orm.em.fork(), now)
     return done.map((migration) => migration.name)
   })

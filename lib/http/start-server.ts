@@ -1,25 +1,29 @@
-/** Start and end of the web process: composition root. */
+/** Start and end of a web process, and what every process waits for: composition root. */
 import { setTimeout as sleep } from 'node:timers/promises'
-import { ensurePartitions, forkEm } from '@/lib/db'
-import { processSignal, stopProcess } from './process-signal'
+import { ensurePartitions } from '@/lib/db'
+import { stopProcess } from './process-signal'
 import { getRuntime } from './runtime'
 
 const ATTEMPTS = 8
 const FIRST_WAIT_MS = 250
-const PARTITIONS_EVERY_MS = 6 * 60 * 60 * 1000
 
-/**
- * Waits for the database before the first request. A throw out of instrumentation would leave a process that
- * answers 500 for ever, so after the last attempt the process ends and whoever supervises it starts it anew.
- */
 export async function startServer(): Promise<void> {
-  const { log, now } = getRuntime()
   // The database stays open: requests under way still need it, and Next ends the process after them.
   for (const name of ['SIGTERM', 'SIGINT'] as const) process.once(name, () => stopProcess(`received ${name}`))
+  await untilStorable()
+}
+
+/**
+ * Waits for the database before the first request, and for the partitions of now, whether or not the job that makes
+ * them ahead has run. A throw out of instrumentation would leave a process that answers 500 for ever, so after the last
+ * attempt the process ends and whoever supervises it starts it anew.
+ */
+export async function untilStorable(): Promise<void> {
+  const { log, now, forkEm } = getRuntime()
   for (let attempt = 1; ; attempt++) {
     try {
       await ensurePartitions(await forkEm(), now())
-      break
+      return
     } catch (error) {
       log.warn({ attempt, err: error }, 'the database is not ready')
       if (attempt === ATTEMPTS) {
@@ -28,19 +32,5 @@ export async function startServer(): Promise<void> {
       }
       await sleep(FIRST_WAIT_MS * 2 ** (attempt - 1))
     }
-  }
-  void keepPartitions()
-}
-
-async function keepPartitions(): Promise<void> {
-  const { log, now } = getRuntime()
-  while (!processSignal().aborted) {
-    await sleep(PARTITIONS_EVERY_MS, undefined, { signal: processSignal(), ref: false }).catch(
-      () => undefined,
-    )
-    if (processSignal().aborted) return
-    await forkEm()
-      .then((em) => ensurePartitions(em, now()))
-      .catch((error: unknown) => log.warn({ err: error }, 'partitions could not be made ahead'))
   }
 }

@@ -1,5 +1,6 @@
 import { query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
+import { rollUpAgain } from '@/lib/jobs'
 import type { History } from './history'
 
 const ROWS_PER_INSERT = 1000
@@ -51,6 +52,10 @@ export async function storeHistory(em: EntityManager, overlayId: string, history
       [overlayId, JSON.stringify(history.events)],
     )
   })
+  const times = history.readings.map(({ at }) => Date.parse(at))
+  if (times.length > 0)
+    // Minutes and hours may have got past that time already.
+    await rollUpAgain(em, { fromMs: Math.min(...times), toMs: Math.max(...times) + 1 }, overlayId)
 }
 
 function chunks<T>(rows: readonly T[]): T[][] {

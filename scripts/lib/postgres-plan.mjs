@@ -56,6 +56,21 @@ export function parseAccount(passwd, name) {
   return fields === undefined ? null : { uid: Number(fields[2]), gid: Number(fields[3]), home: fields[5] }
 }
 
+/** Where PostgreSQL's tools connect to, by their variables: a command line can be read by everybody on the machine. */
+export function clientEnv(env, url) {
+  const { hostname, port, username, password, pathname, searchParams } = new URL(url)
+  const sslmode = searchParams.get('sslmode')
+  return {
+    ...env,
+    PGHOST: searchParams.get('host') ?? hostname.replace(/^\[|\]$/g, ''),
+    PGPORT: port || '5432',
+    PGUSER: decodeURIComponent(username),
+    PGPASSWORD: decodeURIComponent(password),
+    PGDATABASE: decodeURIComponent(pathname.slice(1)),
+    ...(sslmode === null ? {} : { PGSSLMODE: sslmode }),
+  }
+}
+
 /** Unsafe on a crash, and only there: never for a cluster whose data anybody wants back. */
 export const TEST_SETTINGS = {
   fsync: 'off',

@@ -1,12 +1,14 @@
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest'
 import { type Control, ControlSchema, OverlayEventSchema, ReadingSchema } from '@/entities'
 import { LeaderStore } from '@/lib/collector/leader-store'
+import { Moments } from '@/lib/collector/moments'
 import { systemClock } from '@/lib/collector/process'
 import { Term } from '@/lib/collector/term'
 import { Upkeep } from '@/lib/collector/upkeep'
 import { Usual } from '@/lib/collector/usual'
-import { Listener } from '@/lib/db'
+import { Listener, sql } from '@/lib/db'
 import { setRuntime } from '@/lib/http/runtime'
+import { rollUpAgain } from '@/lib/jobs'
 import { createRandom } from '@/lib/method/random'
 import { deliver, joinAgent, seedCode, seedOverlay } from '@/tests/support/collector'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
@@ -76,6 +78,7 @@ const termOf = (overlayId: string, store: Pick<LeaderStore, 'claim' | 'load' | '
       store,
       usual: new Usual({ forkEm, clock: systemClock, log }, { overlayId }),
       upkeep: new Upkeep({ forkEm, clock: systemClock }, { overlayId, holder: 'one' }),
+      moments: new Moments({ forkEm }, { overlayId, holder: 'one' }),
       clock: systemClock,
       random: createRandom(3),
       log,
@@ -216,6 +219,9 @@ it('the usual comes from seven days of readings, and later hours are added', asy
        case when n % 5 = 0 then 'settling' else 'fresh' end, '', '', '{}' from generate_series(1, 24 * 2 * 8) n`,
       [overlay.id, new Date(nowMs)],
     )
+  const rolledUp = (fromMs: number) =>
+    rollUpAgain(database.orm.em.fork(), { fromMs, toMs: nowMs }, overlay.id)
+  await rolledUp(nowMs - 9 * 24 * hourMs)
   let monotonicMs = 0
   const clock = { ...systemClock, monotonicMs: () => monotonicMs }
   const looked = async (usual: Usual) => {
@@ -226,11 +232,17 @@ it('the usual comes from seven days of readings, and later hours are added', asy
   const usual = new Usual({ forkEm, clock, log }, { overlayId: overlay.id })
   expect(usual.at(nowMs)).toBeUndefined()
   expect(await looked(usual)).toBeCloseTo(0.7)
-  await database.orm.em
-    .fork()
-    .nativeDelete(ReadingSchema, { overlayId: overlay.id, at: { $lt: new Date(nowMs - hourMs) } })
+  const drop = (table: string) =>
+    sql(database.orm.em.fork(), `delete from ${table} where overlay_id = ? and at < ?`, [
+      overlay.id,
+      new Date(nowMs - hourMs),
+    ])
+  // Readings go after two weeks; what is usual looks back for a month.
+  await drop('readings')
   monotonicMs += 10 * 60_000
   expect(await looked(usual)).toBeCloseTo(0.7)
-  const other = new Usual({ forkEm, clock, log }, { overlayId: overlay.id })
-  expect(await looked(other)).toBeNull()
+  const other = () => new Usual({ forkEm, clock, log }, { overlayId: overlay.id })
+  expect(await looked(other())).toBeCloseTo(0.7)
+  await drop('reading_hours')
+  expect(await looked(other())).toBeNull()
 })

@@ -3,7 +3,6 @@ import { OverlayEventSchema, OverlaySchema, type Reading, ReadingSchema, TeamSch
 import {
   acquireLockAt,
   closeDatabase,
-  ensurePartitions,
   getOrm,
   Listener,
   LockSession,
@@ -113,29 +112,6 @@ describe('a statement', () => {
     process.env.DATABASE_URL = database.url
     expect(await limitOf(await getOrm())).toEqual([{ statement_timeout: '10s' }])
     await closeDatabase()
-  })
-})
-
-describe('partitions of readings', () => {
-  it('take in the rows that had landed in the default partition, and are made once', async () => {
-    const em = database.orm.em.fork()
-    const overlayId = '00000000-0000-4000-8000-000000000001'
-    const later = new Date('2031-05-06T07:08:09.000Z')
-    await em.insert<Reading>(ReadingSchema, reading(overlayId, later))
-    const count = async (table: string) =>
-      (
-        await sql<{ n: string }>(em, `select count(*) as n from ${table} where overlay_id = ?`, [overlayId])
-      )[0]?.n
-    expect(Number(await count('readings_default'))).toBe(1)
-    expect(await ensurePartitions(em, later, 1, 0)).toEqual(['readings_2031_05', 'readings_2031_06'])
-    expect(Number(await count('readings_default'))).toBe(0)
-    expect(Number(await count('readings_2031_05'))).toBe(1)
-    expect(
-      await Promise.all([
-        ensurePartitions(database.orm.em.fork(), later, 1, 0),
-        ensurePartitions(em.fork(), later, 1, 0),
-      ]),
-    ).toEqual([[], []])
   })
 })
 

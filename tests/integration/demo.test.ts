@@ -120,9 +120,9 @@ test('history is stored whole, marked as demo, and tells what is usual from the 
   const [stored] = await sql<{ count: number; demo: boolean; confidence: number; partitioned: boolean }>(
     em,
     `select count(*)::int as count, bool_and(demo) as demo, min((body->>'confidence')::float8) as confidence,
-       bool_and(tableoid <> 'readings_default'::regclass) as partitioned
+       bool_and(tableoid <> 'readings_default'::regclass) filter (where at > ?) as partitioned
      from readings where overlay_id = ?`,
-    [overlayId],
+    [new Date(Date.now() - 7 * 86_400_000), overlayId],
   )
   expect(stored).toEqual({ count: history.readings.length, demo: true, confidence: 0.9, partitioned: true })
   const events = await sql(

@@ -1,10 +1,13 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
 import { AgentSchema, type Reading as ReadingRow, ReadingSchema } from '@/entities'
 import { getCut } from '@/lib/data/cut'
-import { readingSchema } from '@/lib/data/dto'
+import { readingSchema, readingsSchema } from '@/lib/data/dto'
 import { followOverlay, LOOK_BACK_EVENTS } from '@/lib/data/events'
-import { getReading, getReadings, READINGS_MOST } from '@/lib/data/readings'
-import { sql } from '@/lib/db'
+import { getReading } from '@/lib/data/readings'
+import { getReadings } from '@/lib/data/readings-list'
+import { READINGS_MOST } from '@/lib/data/readings-range'
+import { HOURS_KEEP_DAYS, sql } from '@/lib/db'
+import { rollUp } from '@/lib/jobs'
 import { seedOverlay } from '@/tests/support/collector'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { callAsUser, seedTeam } from '@/tests/support/people'
@@ -141,18 +144,18 @@ describe('a reading', () => {
 })
 
 describe('readings of a range', () => {
-  it('of more than 31 days are refused with the limit', async () => {
+  it('longer than anything is kept are refused with the limit', async () => {
     const to = new Date('2026-11-30T00:00:00.000Z')
     const range = (days: number, moreMs = 0) => ({
       from: new Date(to.getTime() - days * DAY_MS - moreMs).toISOString(),
       to: to.toISOString(),
     })
-    await expect(getReadings(await call(), overlay.slug, range(31, 1))).rejects.toMatchObject({
+    await expect(getReadings(await call(), overlay.slug, range(HOURS_KEEP_DAYS, 1))).rejects.toMatchObject({
       code: 'invalid-input',
-      detail: expect.stringContaining('At most 31 days'),
+      detail: expect.stringContaining(`At most ${HOURS_KEEP_DAYS} days`),
       data: { errors: [{ path: 'from' }] },
     })
-    expect((await getReadings(await call(), overlay.slug, range(31))).items).toEqual([])
+    expect((await getReadings(await call(), overlay.slug, range(HOURS_KEEP_DAYS))).items).toEqual([])
   })
 
   it('end with the newest one even where they fill all the points there may be', async () => {
@@ -209,5 +212,60 @@ describe('an event stream', () => {
     expect(texts(await load('event'))).toEqual(Array.from({ length: 400 }, (_, index) => `${1_001 + index}`))
     await many(2_001, 2_001)
     expect(texts(await load('event'))).toEqual(['2001'])
+  })
+})
+
+describe('readings of a long range', () => {
+  const nowMs = Date.parse('2026-12-01T12:00:00.000Z')
+  const hourMs = 3_600_000
+  /** One every ten minutes for three days, higher by one each hour; one is weak and half heard. */
+  const lay = () =>
+    sql(
+      em(),
+      `insert into readings (overlay_id, at, lambda2, low, high, level, data, verdict, detail, body)
+       select ?, ?::timestamptz - n * interval '10 minutes', n / 6, n / 6 - 0.5, n / 6 + 0.5,
+         case n when 61 then 'weak' else 'firm' end, 'fresh', '', '',
+         jsonb_build_object('coverage', jsonb_build_object('heard', case n when 61 then 18 else 36 end, 'joined', 36),
+           'crossingLinks', 4)
+       from generate_series(1, 3 * 144) n`,
+      [overlay.id, new Date(nowMs)],
+    )
+  const ask = async (hours: number, step: number) =>
+    getReadings(await call(new Date(nowMs)), overlay.slug, {
+      from: new Date(nowMs - hours * hourMs).toISOString(),
+      to: new Date(nowMs).toISOString(),
+      step,
+    })
+
+  it('come from hours, and from what is not an hour yet, and are the same as from single readings', async () => {
+    await lay()
+    await sql(em(), 'delete from roll_ups')
+    const early = await ask(48, 7_200)
+    expect(new Set(early.items.map(({ kept }) => kept))).toEqual(new Set(['reading']))
+    await rollUp(em(), nowMs - 25 * 60_000)
+    const { items, stepSeconds, kept } = readingsSchema.parse(await ask(48, 7_200))
+    expect([kept, stepSeconds, items.length]).toEqual(['hour', 7_200, 24])
+    expect(items.map(({ kept: _, ...point }) => point)).toEqual(
+      early.items.map(({ kept: _, ...point }) => point),
+    )
+    expect(items.at(-5)).toEqual({
+      at: '2026-12-01T02:00:00.000Z',
+      lambda2: expect.closeTo((5 * 8 + 6 * 9 + 10) / 12),
+      low: 7.5,
+      high: 10.5,
+      level: 'firm',
+      data: 'fresh',
+      demo: false,
+      kept: 'hour',
+      readings: 12,
+      fresh: 12,
+      least: 8,
+      most: 10,
+      heard: 36,
+      joined: 36,
+      crossingLinks: 4,
+    })
+    const weak = items.find(({ level }) => level === 'weak')
+    expect(weak).toMatchObject({ heard: 18, joined: 36, at: '2026-12-01T00:00:00.000Z' })
   })
 })

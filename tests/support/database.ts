@@ -54,10 +54,14 @@ function migrationsHash(): string {
   const hash = createHash('sha256')
   const root = new URL('../../', import.meta.url)
   const files = readdirSync(new URL('migrations', root)).sort()
-  for (const file of [...files.map((name) => `migrations/${name}`), 'lib/db/partitions.ts'])
+  for (const file of [
+    ...files.map((name) => `migrations/${name}`),
+    'lib/db/partitions.ts',
+    'lib/db/series.ts',
+  ])
     hash.update(readFileSync(new URL(file, root)))
-  // Partitions follow the calendar, so a template serves for one month.
-  hash.update(new Date().toISOString().slice(0, 7))
+  // Partitions follow the calendar, so a template serves for one day.
+  hash.update(new Date().toISOString().slice(0, 10))
   return hash.digest('hex').slice(0, 16)
 }
 

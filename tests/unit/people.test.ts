@@ -7,7 +7,6 @@ import { problemSchema } from '@/lib/data/dto'
 import { stateOf } from '@/lib/data/joining-codes'
 import { slugFrom } from '@/lib/data/teams'
 import { reconnectDelayMs } from '@/lib/db/listener'
-import { monthsAround } from '@/lib/db/partitions'
 import { AppError } from '@/lib/http/app-error'
 import { readJson } from '@/lib/http/body'
 import { invalidInput, problemResponse, toProblem } from '@/lib/http/problem'
@@ -158,13 +157,6 @@ describe('a JSON body', () => {
 })
 
 describe('the database’s housekeeping', () => {
-  it('counts months in UTC across the turn of a year', () => {
-    expect(monthsAround(new Date('2026-12-31T23:59:59Z'), 0, 1)).toEqual([
-      { name: 'readings_2026_12', from: '2026-12-01T00:00:00.000Z', to: '2027-01-01T00:00:00.000Z' },
-      { name: 'readings_2027_01', from: '2027-01-01T00:00:00.000Z', to: '2027-02-01T00:00:00.000Z' },
-    ])
-  })
-
   it('reconnects after ever longer waits, up to a limit', () => {
     expect([0, 1, 2, 10].map((attempt) => reconnectDelayMs(attempt, 1))).toEqual([200, 400, 800, 5000])
     expect(reconnectDelayMs(0, 0)).toBe(100)

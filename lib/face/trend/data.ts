@@ -30,11 +30,16 @@ export function trendColumns(points: readonly ReadingPoint[], stepSeconds: numbe
     const apart = before !== null && x - before > BREAK_STEPS * stepSeconds
     if (before !== null && apart) push(columns, before + stepSeconds, null)
     if (apart || point.lambda2 === null) cold = true
-    if (point.data === 'fresh') cold = false
+    if (point.data === 'fresh' || (point.fresh ?? 0) > 0) cold = false
     push(columns, x, cold ? null : point)
     before = x
   }
   return columns
+}
+
+/** Of what is kept of a longer while only what has no reading at all: a minute unheard does not shade a day. */
+export function isWithheld({ data, kept = 'reading', lambda2 }: ReadingPoint): boolean {
+  return data === 'unheard' && (kept === 'reading' || lambda2 === null)
 }
 
 function push(columns: TrendColumns, x: number, point: ReadingPoint | null): void {

@@ -1,5 +1,6 @@
 import type { ReadingPoint } from '@/lib/data/dto'
 import { formatReading } from '@/lib/face/format'
+import { formatDuration } from '@/lib/face/time'
 import type { Span } from './data'
 
 /** The chart in words. */
@@ -21,4 +22,19 @@ export function trendSummary(
     parts.push(`Withheld ${withheld.length === 1 ? 'once' : `${withheld.length} times`}.`)
   if (points.some((p) => p.demo)) parts.push('The earlier part is demo history, computed by simulation.')
   return parts.join(' ')
+}
+
+/** What a point stands for, where it is more than one reading. */
+export function pointsAre(kept: ReadingPoint['kept'], stepSeconds: number): string | null {
+  if (kept === undefined || kept === 'reading') return null
+  const [of, each] = [formatDuration(stepSeconds), kept === 'hour' ? 'hour' : 'minute']
+  return `Each point is the mean of ${of}, from what is kept of each ${each}; the band holds every interval in it.`
+}
+
+/** What is kept of a while beside its mean. */
+export function pointDetail({ kept, least, most, heard, joined }: ReadingPoint): string {
+  if (kept === undefined || kept === 'reading') return ''
+  const range = least != null && most != null ? ` · ${formatReading(least)} to ${formatReading(most)}` : ''
+  const silent = heard != null && joined != null && heard < joined
+  return `${range}${silent ? ` · at least ${heard} of ${joined} heard` : ''}`
 }

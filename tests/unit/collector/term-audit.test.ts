@@ -81,7 +81,14 @@ it('an agent whose walkers do not add up is left out: shut in the orders, not jo
     load,
     write: async (round: Round) => written.push(round) > 0,
   }
-  const components = { store, usual: { at: () => null }, upkeep: { look: async () => {} }, clock, log }
+  const components = {
+    store,
+    usual: { at: () => null },
+    upkeep: { look: async () => {} },
+    moments: { look: async () => {} },
+    clock,
+    log,
+  }
   const term = new Term({ ...components, random: createRandom(1) }, { overlayId: 'tides' })
   const ended = term.run(stop.signal)
   while (written.length < 14) await clock.advance(PACES.steady.intervalMs)

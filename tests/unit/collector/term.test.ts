@@ -38,7 +38,11 @@ async function rounds(forkEm: () => Promise<never>) {
     write: async (round: Round) => written.push(round) > 0,
   }
   const upkeep = { look: async () => {} }
-  const term = new Term({ store, usual, upkeep, clock, random: createRandom(1), log }, { overlayId: 'tides' })
+  const moments = { look: async () => {} }
+  const term = new Term(
+    { store, usual, upkeep, moments, clock, random: createRandom(1), log },
+    { overlayId: 'tides' },
+  )
   const ended = term.run(stop.signal)
   await clock.advance(PACES.steady.intervalMs)
   stop.abort()

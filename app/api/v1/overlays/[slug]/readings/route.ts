@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { getReadings, readingsQuerySchema } from '@/lib/data/readings'
+import { getReadings, readingsQuerySchema } from '@/lib/data/readings-list'
 import { route } from '@/lib/http/route'
 
 const params = z.object({ slug: z.string() })
