@@ -1,3 +1,4 @@
+import { z } from 'zod'
 import { type ReportReply, reportReplySchema } from '@/lib/protocol'
 
 /** A collector that does not answer within this is passed over for the next. */
@@ -6,8 +7,12 @@ const PATIENCE_MS = 800
 export interface ReportAnswer {
   status: number
   retryAfter: string | null
+  /** Of a problem. */
+  code: string | null
   body: unknown
 }
+
+const answerSchema = z.looseObject({ code: z.string().optional() })
 
 /** @throws where nothing answers */
 export async function postReport(
@@ -22,11 +27,9 @@ export async function postReport(
     body: JSON.stringify(report),
     signal,
   })
-  return {
-    status: response.status,
-    retryAfter: response.headers.get('retry-after'),
-    body: await response.json(),
-  }
+  const body: unknown = await response.json()
+  const retryAfter = response.headers.get('retry-after')
+  return { status: response.status, retryAfter, code: answerSchema.parse(body).code ?? null, body }
 }
 
 /** Tells one of several collectors, the one that answered last before the others, as a balancer in front would. */
