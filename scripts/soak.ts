@@ -32,6 +32,18 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/faults.test.ts',
     env: {},
   },
+  handover: {
+    about:
+      'twelve times (THINSPAN_SOAK_HANDOVERS) a leading collector is killed, stopped, or stopped in the middle of a round, with a table',
+    file: 'tests/soak/handover.test.ts',
+    env: {},
+  },
+  kills: {
+    about:
+      'fifteen times (THINSPAN_SOAK_KILLS) the collector, and then the database, is killed with reports of forty agents under way',
+    file: 'tests/soak/kills.test.ts',
+    env: {},
+  },
   liars: {
     about:
       'every lie at three places, and 30 simulated minutes (THINSPAN_SOAK_MINUTES) of honest trouble on five graphs, with a table',

@@ -10,7 +10,7 @@ import { Upkeep } from './upkeep'
 import { Usual } from './usual'
 
 /** How often to look for overlays without a leader: also how long one can be without after a leader ended. */
-export const LOOK_MS = 1_000
+export const LOOK_MS = 500
 
 export interface LeaderComponents {
   forkEm(): Promise<EntityManager>

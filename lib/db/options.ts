@@ -5,7 +5,14 @@ import { migrations } from '@/migrations'
 
 export const POOL_MAX_CONNECTIONS = 10
 
-export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS, statementTimeoutMs?: number) {
+/** What the server puts up with from one session; no limit where left out. */
+export interface SessionLimits {
+  statementMs?: number
+  /** A process that is stopped in the middle of a transaction would keep its rows locked for as long as it is. */
+  idleInTransactionMs?: number
+}
+
+export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS, limits: SessionLimits = {}) {
   return defineConfig({
     clientUrl: url,
     entities,
@@ -15,9 +22,7 @@ export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS, statemen
     allowGlobalContext: false,
     discovery: { warnWhenNoEntities: false },
     pool: { min: 0, max: poolMax },
-    ...(statementTimeoutMs === undefined
-      ? {}
-      : { driverOptions: { connection: { options: `-c statement_timeout=${statementTimeoutMs}` } } }),
+    driverOptions: { connection: { options: sessionOptions(limits) } },
     migrations: {
       tableName: 'thinspan_migrations',
       migrationsList: migrations,
@@ -27,4 +32,8 @@ export function ormOptions(url: string, poolMax = POOL_MAX_CONNECTIONS, statemen
       silent: true,
     },
   })
+}
+
+function sessionOptions({ statementMs = 0, idleInTransactionMs = 0 }: SessionLimits): string {
+  return `-c statement_timeout=${statementMs} -c idle_in_transaction_session_timeout=${idleInTransactionMs}`
 }

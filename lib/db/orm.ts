@@ -1,12 +1,11 @@
 import { MikroORM, type SqlEntityManager } from '@mikro-orm/postgresql'
-import { ormOptions } from './options'
+import { ormOptions, type SessionLimits } from './options'
 
 export type { EntityManager } from '@mikro-orm/postgresql'
 export type Orm = MikroORM
 
-/** @param statementTimeoutMs the server gives up on a statement after so long; none where left out */
-export async function openOrm(url: string, poolMax?: number, statementTimeoutMs?: number): Promise<Orm> {
-  return MikroORM.init(ormOptions(url, poolMax, statementTimeoutMs))
+export async function openOrm(url: string, poolMax?: number, limits?: SessionLimits): Promise<Orm> {
+  return MikroORM.init(ormOptions(url, poolMax, limits))
 }
 
 /** Runs one statement on the manager's connection, inside its transaction if it has one. */

@@ -9,6 +9,8 @@ import { type EntityManager, type Orm, openOrm } from './orm'
 
 /** Requests and rounds are short; what may take longer says so in its transaction. Migrations have no limit. */
 export const STATEMENT_TIMEOUT_MS = 10_000
+/** About as long as a stopped leader keeps its lead, so that whoever takes over finds its rows free. */
+export const IDLE_IN_TRANSACTION_MS = 3_000
 
 interface Held {
   orm?: Promise<Orm>
@@ -27,7 +29,10 @@ export function databaseUrl(): string {
 
 export function getOrm(): Promise<Orm> {
   if (!held.orm) {
-    const opening = openOrm(databaseUrl(), undefined, STATEMENT_TIMEOUT_MS)
+    const opening = openOrm(databaseUrl(), undefined, {
+      statementMs: STATEMENT_TIMEOUT_MS,
+      idleInTransactionMs: IDLE_IN_TRANSACTION_MS,
+    })
     held.orm = opening
     // A failure must not be remembered: the database may be there at the next request.
     opening.catch(() => {

@@ -4,6 +4,7 @@ import { type ActionName, permissionOf } from '@/lib/auth/permissions'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from './app-error'
 import { type AuditNote, assertAllowed, type Call, type CallRequest } from './call'
+import { asAppError } from './problem'
 import type { Runtime } from './runtime'
 
 export interface Performance<T> {
@@ -62,7 +63,10 @@ export async function perform<T>(
     )
   } catch (error) {
     const known = error instanceof AppError
-    if (!known) runtime.log.error({ action, err: error }, 'a call failed')
+    // While the database is away there is one for each call: a line each, and no more.
+    if (asAppError(error).code === 'unavailable')
+      runtime.log.warn({ action, reason: String(error) }, 'a call found no database')
+    else if (!known) runtime.log.error({ action, err: error }, 'a call failed')
     if (audit && !isAnswerable(caller, note)) {
       const code = known ? error.code : 'internal'
       runtime.log.warn({ action, code, subject: note.subject }, 'a call by a stranger was refused')

@@ -103,14 +103,19 @@ describe('the entities and the migrations', () => {
 })
 
 describe('a statement', () => {
-  it('of a request is given up on after a while; one of a migration is not', async () => {
-    const limited = await openOrm(database.url, 1, 50)
+  it('of a request is given up on after a while, as is its transaction; one of a migration is not', async () => {
+    const limited = await openOrm(database.url, 1, { statementMs: 50 })
     await expect(sql(limited.em.fork(), 'select pg_sleep(20)')).rejects.toThrow('statement timeout')
     await limited.close(true)
-    const limitOf = async (orm: typeof limited) => sql(orm.em.fork(), 'show statement_timeout')
-    expect(await limitOf(database.orm)).toEqual([{ statement_timeout: '0' }])
+    const limitsOf = async (orm: typeof limited) =>
+      sql(
+        orm.em.fork(),
+        `select current_setting('statement_timeout') as statement,
+           current_setting('idle_in_transaction_session_timeout') as idle`,
+      )
+    expect(await limitsOf(database.orm)).toEqual([{ statement: '0', idle: '0' }])
     process.env.DATABASE_URL = database.url
-    expect(await limitOf(await getOrm())).toEqual([{ statement_timeout: '10s' }])
+    expect(await limitsOf(await getOrm())).toEqual([{ statement: '10s', idle: '3s' }])
     await closeDatabase()
   })
 })

@@ -14,8 +14,7 @@ export interface TestDatabase {
  * A database of its own for one test file: a copy of a template that is migrated once for each state of the
  * migrations. TEST_DATABASE_URL names any database of a server where databases may be created.
  */
-export async function createTestDatabase(): Promise<TestDatabase> {
-  const adminUrl = process.env.TEST_DATABASE_URL
+export async function createTestDatabase(adminUrl = process.env.TEST_DATABASE_URL): Promise<TestDatabase> {
   if (!adminUrl) throw new Error('Set TEST_DATABASE_URL to a PostgreSQL server for tests, or run "npm test".')
   const name = `thinspan_test_${randomUUID().replaceAll('-', '')}`
   await asAdmin(adminUrl, async (admin) => {

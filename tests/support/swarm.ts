@@ -1,10 +1,10 @@
 import type { Frame } from '@/lib/method/frame'
 import { WalkNode } from '@/lib/method/node'
-import { PACES } from '@/lib/method/pace'
+import { PACES, type PaceName } from '@/lib/method/pace'
 import { createRandom, type Random } from '@/lib/method/random'
+import type { Report } from '@/lib/method/report'
+import type { ReportReply } from '@/lib/protocol'
 import { deliver, joinAgent, type Member } from './collector'
-
-const PACE = PACES.drill
 
 interface SwarmNode {
   member: Member
@@ -12,7 +12,13 @@ interface SwarmNode {
   silent: boolean
 }
 
-/** Agents' walkers in this process at drill pace: frames are function calls, reports go through the routes. */
+export interface SwarmInit {
+  pace?: PaceName
+  /** Where reports go, instead of to this process's routes. */
+  send?: (member: Member, report: Report) => Promise<Pick<ReportReply, 'orders' | 'ordersAgeMs'>>
+}
+
+/** Agents' walkers in this process, at drill pace or as said: frames are function calls, reports go through the routes. */
 export class Swarm {
   readonly nodes: SwarmNode[] = []
   /** The last report that failed, for the test to look at. */
@@ -21,8 +27,11 @@ export class Swarm {
   readonly #timers = new Set<NodeJS.Timeout>()
   readonly #index = new Map<string, number>()
 
-  constructor(seed: number) {
+  readonly #init: Required<SwarmInit>
+
+  constructor(seed: number, init: SwarmInit = {}) {
     this.#random = createRandom(seed)
+    this.#init = { pace: 'drill', send: deliver, ...init }
   }
 
   async join(
@@ -53,9 +62,10 @@ export class Swarm {
   }
 
   start(): void {
+    const { tickMs, intervalMs } = PACES[this.#init.pace]
     for (const swarmNode of this.nodes) {
-      this.#every(PACE.tickMs, () => this.#tick(swarmNode))
-      this.#every(PACE.intervalMs, () => void this.#report(swarmNode))
+      this.#every(tickMs, () => this.#tick(swarmNode))
+      this.#every(intervalMs, () => void this.#report(swarmNode))
     }
   }
 
@@ -90,7 +100,7 @@ export class Swarm {
     if (silent) return
     const report = node.report(performance.now(), { linksKnown: 0, version: '0.1.0', uptimeSeconds: 1 })
     try {
-      const { orders, ordersAgeMs } = await deliver(member, report)
+      const { orders, ordersAgeMs } = await this.#init.send(member, report)
       if (orders) node.adopt(orders, ordersAgeMs, performance.now())
     } catch (error) {
       this.failure ??= error

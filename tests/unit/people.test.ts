@@ -97,6 +97,23 @@ describe('problems', () => {
     expect([response.status, response.headers.get('retry-after')]).toEqual([503, '2'])
   })
 
+  it('that came of a database that went away say when to come back, whatever the driver calls it', () => {
+    const coded = (code: string) => Object.assign(new Error('of the driver'), { code })
+    const away = [
+      new Error('Connection terminated unexpectedly'),
+      new Error('select 1 from berths - Connection terminated unexpectedly'),
+      new Error('begin; - Client has encountered a connection error and is not queryable'),
+      Object.assign(new Error('no connection was free'), { name: 'KnexTimeoutError' }),
+      ...['57P01', '57P02', '57P03', '53300', '25P03', '08006', 'EPIPE'].map(coded),
+    ]
+    for (const error of away) {
+      const { status, headers } = problemResponse(error)
+      expect([status, headers.get('retry-after')]).toEqual([503, '2'])
+    }
+    for (const error of [coded('23505'), coded('42P01'), new Error('Connection terminated? Hardly.')])
+      expect(problemResponse(error).status).toBe(500)
+  })
+
   it('name each field that was wrong', () => {
     const result = z.object({ a: z.object({ b: z.number() }) }).safeParse({ a: { b: 'x' } })
     expect(invalidInput(result.error!).data.errors).toMatchObject([{ path: 'a.b' }])

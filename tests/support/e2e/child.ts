@@ -32,6 +32,7 @@ export class Child {
   readonly lines: string[] = []
   readonly #process: ChildProcess
   readonly #group: boolean
+  readonly #awaited = new Set<(line: string) => void>()
 
   constructor(command: string, args: readonly string[], init: ChildInit = {}) {
     this.#group = init.group ?? false
@@ -46,6 +47,7 @@ export class Child {
       if (!stream) continue
       createInterface({ input: stream }).on('line', (line) => {
         this.lines.push(line)
+        for (const look of this.#awaited) look(line)
         if (stream === stdout) init.onLine?.(line)
       })
     }
@@ -73,6 +75,22 @@ export class Child {
   /** The last lines of what it said on either stream. */
   tail(): string {
     return this.lines.slice(-TAIL_LINES).join('\n')
+  }
+
+  /** The next line as wanted, from now on. */
+  nextLine(wanted: (line: string) => boolean): Promise<string> {
+    const found = new Promise<string>((resolve) => {
+      const look = (line: string) => {
+        if (!wanted(line)) return
+        this.#awaited.delete(look)
+        resolve(line)
+      }
+      this.#awaited.add(look)
+    })
+    const ended = this.end.then((how) => {
+      throw new Error(`The program ${how} before it said so.\n${this.tail()}`)
+    })
+    return Promise.race([found, ended])
   }
 
   write(line: string): void {

@@ -1,0 +1,3 @@
+import { killTests } from '../support/processes/kills'
+
+killTests({ agents: 12, times: 1 })
