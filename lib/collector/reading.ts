@@ -20,6 +20,8 @@ export function readingOf(
     core: null,
     lambda3AtMost: estimate.lambda3AtMost,
     crossCheck: estimate.crossCheck,
+    settlesInMs: estimate.settlesInMs,
+    answersInMs: estimate.answersInMs,
     level: memory.level,
     trend: memory.trend,
     ...said,

@@ -124,6 +124,8 @@ export class Term {
     onInterval(PACES[loaded.pace].intervalMs)
     const known = usual.at(loaded.snapshot.atMs)
     const round = this.#plan(loaded, known === undefined ? (this.#state?.memory.usual ?? null) : known)
+    // In haste the next round is due sooner than the pace says.
+    onInterval(round.orders.pace.intervalMs)
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state

@@ -26,7 +26,7 @@ export function gather(
   colonies: readonly ColonyControl[],
   heard: readonly HeardAgent[],
   drifts: readonly ColonyDrift[],
-  { atMs, intervalMs }: { atMs: number; intervalMs: number },
+  atMs: number,
 ): Subspace | null {
   const attached = heard.filter(({ last }) => last.report.sums.attached === 1)
   const reports = ({ last }: HeardAgent, { colony, seeding }: ColonyControl): boolean =>
@@ -47,8 +47,7 @@ export function gather(
   for (const { last } of full) {
     const reported = last.report.sums
     const at = usable.map(({ colony }) => reported.colonies.findIndex((sum) => sum.colony === colony))
-    const ageIntervals = (atMs - last.receivedAtMs) / intervalMs
-    const drift = driftOf.map((known) => driftOver(known, ageIntervals))
+    const drift = driftOf.map((known) => driftOver(known, atMs - last.receivedAtMs))
     const mean = at.map((position) => reported.colonies[position]!.mean / SUMS_SCALE)
     for (let r = 0; r < size; r++) {
       const a = drift[r]!

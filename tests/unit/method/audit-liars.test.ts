@@ -19,7 +19,7 @@ describe('a liar on the cut', () => {
     ['z̄ ×0.1 to all', 40, 'declares'],
     ['z̄ of the other sign to all', 40, 'declares'],
     ['z̄ ×5 to the collector alone', 40, 'one thing'],
-    ['z̄ ×5, all counts cooked to match', 60, 'neighbours counted'],
+    ['z̄ ×5, all counts cooked to match', 60, 'neighbours'],
     ['births denied', 10, 'do not add up'],
     ['moments 0', 10, 'moments'],
     ['walker-time ×3', 20, 'time does not fit'],
