@@ -23,6 +23,8 @@ export function staleReading(reading: Reading, nowMs: number): Reading {
     high: null,
     lambda3AtMost: null,
     crossCheck: null,
+    settlesInMs: null,
+    answersInMs: null,
     singleCut: null,
     data: 'unheard',
     last,
