@@ -12,7 +12,7 @@ type Print = (line: string) => void
 const MOST_ROUNDS = 100_000
 
 /**
- * `npm run bench -- reading [--runs 3] [--only PART-OF-A-NAME]`: how soon and how well the walkers read λ₂, beside synchronous power
+ * `npm run bench -- reading [--runs 3] [--only PART-OF-A-NAME,…]`: how soon and how well the walkers read λ₂, beside synchronous power
  * iteration and Krylov rounds on the same graphs (both exchange with neighbours only, and would need a common clock).
  * Virtual time at steady pace, no audits; exact λ₂ by eigendecomposition of the links as they are.
  */
@@ -22,7 +22,8 @@ export function benchReading(args: readonly string[], print: Print): void {
     options: { runs: { type: 'string', default: '3' }, only: { type: 'string', default: '' } },
   })
   const runs = Number(values.runs)
-  const cases = readingCases().filter(({ name }) => name.includes(values.only))
+  const parts = values.only.split(',')
+  const cases = readingCases().filter(({ name }) => parts.some((part) => name.includes(part)))
   explain(runs, print)
   print(row(HEAD))
   const summaries = cases.map((each) => {

@@ -1,6 +1,6 @@
 import type { EvaluateInput } from './estimate'
 import { mayRise, paceNow } from './haste'
-import { COLD_LOOP_GAIN, LOOP_GAIN, nextLinkTimePerSecond } from './law'
+import { nextLinkTimePerSecond } from './law'
 import type { ControlState } from './state'
 
 /** Agents report every interval ±10 %, and are told then. */
@@ -21,12 +21,10 @@ export function nextStep(
   control: ControlState,
   last: ControlState,
   lambda: number | null,
-  isCold: boolean,
   { now, settings }: EvaluateInput,
 ): ControlState['next'] {
   const present = paceNow(control, settings)
-  const gain = isCold ? COLD_LOOP_GAIN : LOOP_GAIN
-  const linkTimePerSecond = nextLinkTimePerSecond(control.linkTimePerSecond, lambda, present, gain)
+  const linkTimePerSecond = nextLinkTimePerSecond(control.linkTimePerSecond, lambda, present)
   if (linkTimePerSecond === control.linkTimePerSecond) return null
   if (linkTimePerSecond > control.linkTimePerSecond && !mayRise(control, settings.pace, now.atMs)) return null
   const heardByMs = HEARD_BY_INTERVALS * paceNow(last, settings).intervalMs

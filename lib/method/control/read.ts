@@ -20,8 +20,6 @@ import { riseWithoutOne, watcher, watchYoung } from './young'
 /** A younger colony is left out of the sums: its average still holds the random start. From cold all are alike. */
 export const LEAST_AGE_INTERVALS = 4
 export const COLD_LEAST_AGE_INTERVALS = 2
-/** This long after a cold start ω is nearer its limit. */
-export const COLD_INTERVALS = 25
 /** A young colony that lowers the Ritz value by more than this shows that the old ones are set in an old cut. */
 export const LOWERED = 0.05
 /** Second Ritz value over first under which no single cut is weakest. */
@@ -55,7 +53,6 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
     ({ atMs }) => atMs >= fromMs,
   )
   const slowest = lambda2 === null ? null : walkingLambda(lambda2, crossCheck)
-  const isCold = now.atMs - control.coldSinceMs < COLD_INTERVALS * pace.intervalMs
   const next: ControlState = {
     ...control,
     drift: drifts,
@@ -111,7 +108,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
       ? null
       : intervalOf({ lambda2, trend, rise: riseWithoutOne(subspace, lambda2), settling })
   if (settling || lambda2 === null) next.unsettledAtMs = now.atMs
-  next.next = control.next ?? nextStep(next, input.control, slowest, isCold, input)
+  next.next = control.next ?? nextStep(next, input.control, slowest, input)
   const answers =
     lambda2 === null
       ? null
