@@ -17,8 +17,8 @@ import {
 import { createRandom } from '@/lib/method/random'
 import { emptyTally, lineOf, merge, quantile, type Tally, tallyRun } from '../support/interval-tally'
 
-const RUNS = Number(process.env.THINSPAN_SOAK_RUNS ?? 17)
-const RUN_MS = 180_000
+const RUNS = Number(process.env.THINSPAN_SOAK_RUNS ?? 16)
+const RUN_MS = 90_000
 
 /** None of them was looked at when the interval's constants were chosen. */
 const graphs = {

@@ -14,11 +14,9 @@ export function windowIntervals(since: number): number {
 }
 
 /**
- * Half-width at least, as a share of the reading. Found on one set of graphs under churn, held on another: `npm run soak -- interval`.
+ * Half-width at least, as a share of the reading. Found on nine graphs under churn, held on thirteen others: `npm run soak -- interval`.
  */
-export const LEAST_HALF_WIDTH = 0.0008
-/** Each colony less would put the reading up by a little; that one more would bring it down by about as much goes below. */
-export const LOWER_PER_RISE = 1
+export const LEAST_HALF_WIDTH = 0.0003
 /** Share by which the truth may lie further down while a reading is settling. */
 export const SETTLING_ALLOWANCE = 0.1
 
@@ -26,19 +24,19 @@ export interface IntervalInput {
   lambda2: number
   /** Of the readings in the window. */
   trend: TrendLine | null
-  /** By how much leaving out one colony raises the Ritz value on average: ≥ 0, share of the reading. */
-  rise: number
+  /** By how much more colonies would bring it down, share of the reading: see `fallWithMore`. */
+  fall: number
   settling: boolean
 }
 
 /**
- * Sampling interval of a reading. Upwards what recent readings scatter about a straight line; downwards also what the colonies still
- * lower among themselves, for Ritz values lie above λ₂ (B. Parlett, "The Symmetric Eigenvalue Problem", ch. 11) and come down with
- * every colony. It knows of nothing else: not of agents unheard, nor of lies.
+ * Sampling interval of a reading. Upwards what recent readings scatter about a straight line; downwards also what more colonies would
+ * bring, for Ritz values lie above λ₂ (B. Parlett, "The Symmetric Eigenvalue Problem", ch. 11) and come down with every one.
+ * It knows of nothing else: not of agents unheard, nor of lies.
  */
-export function intervalOf({ lambda2, trend, rise, settling }: IntervalInput): { low: number; high: number } {
+export function intervalOf({ lambda2, trend, fall, settling }: IntervalInput): { low: number; high: number } {
   const half = NORMAL_90 * (trend?.scatter ?? 0) + LEAST_HALF_WIDTH * lambda2
-  const below = LOWER_PER_RISE * Math.max(0, rise) * lambda2
+  const below = Math.max(0, fall) * lambda2
   const unsure = settling ? SETTLING_ALLOWANCE * lambda2 : 0
   return { low: Math.max(0, lambda2 - half - below - unsure), high: lambda2 + half + unsure / 2 }
 }

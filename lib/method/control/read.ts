@@ -13,9 +13,9 @@ import { ordersFrom } from './orders-from'
 import { settlesInMs } from './settling'
 import { heardAgents } from './snapshot'
 import type { ColonyControl, ControlState } from './state'
-import { combinationOf, gather, ritzOf } from './subspace'
+import { combinationOf, fallWithMore, gather, ritzOf } from './subspace'
 import { trendLine } from './trend-line'
-import { riseWithoutOne, watcher, watchYoung } from './young'
+import { watcher, watchYoung } from './young'
 
 /** A younger colony is left out of the sums: its average still holds the random start. From cold all are alike. */
 export const LEAST_AGE_INTERVALS = 4
@@ -106,7 +106,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const interval =
     lambda2 === null || !subspace
       ? null
-      : intervalOf({ lambda2, trend, rise: riseWithoutOne(subspace, lambda2), settling })
+      : intervalOf({ lambda2, trend, fall: fallWithMore(subspace, lambda2), settling })
   if (settling || lambda2 === null) next.unsettledAtMs = now.atMs
   next.next = control.next ?? nextStep(next, input.control, slowest, input)
   const answers =

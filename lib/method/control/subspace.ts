@@ -88,6 +88,19 @@ export function ritzOf(subspace: Subspace, chosen?: (colony: ColonyControl) => b
 }
 
 /**
+ * By how much ever more colonies would bring the reading down, as a share of it. Where other modes are nearly as slow the colonies never part
+ * them quite, and what remains falls about as 1/R with their number R: so it is R − 1 times what leaving one out puts it up.
+ */
+export function fallWithMore(subspace: Subspace, lambda2: number): number {
+  const { colonies } = subspace
+  if (colonies.length < 2 || lambda2 <= 0) return 0
+  const values = colonies.flatMap((out) => ritzOf(subspace, (colony) => colony !== out)?.values[0] ?? [])
+  if (values.length === 0) return 0
+  const mean = values.reduce((sum, value) => sum + value, 0) / values.length
+  return (colonies.length - 1) * (mean / lambda2 - 1)
+}
+
+/**
  * The combination agents need to tell their own Fiedler value, with its sign kept close to the one before so that
  * sides keep their names.
  */

@@ -36,12 +36,3 @@ export function watchYoung(
   if (value === undefined || lambda2 <= 0) return { seeding: colony.seeding, ratios: known }
   return { seeding: colony.seeding, ratios: [...known, { atMs, ratio: value / lambda2 }].slice(-KEPT) }
 }
-
-/** By how much leaving one colony out raises the Ritz value on average, as a share of it. */
-export function riseWithoutOne(subspace: Subspace, lambda2: number): number {
-  const { colonies } = subspace
-  if (colonies.length < 2 || lambda2 <= 0) return 0
-  const values = colonies.flatMap((out) => ritzOf(subspace, (colony) => colony !== out)?.values[0] ?? [])
-  if (values.length === 0) return 0
-  return values.reduce((sum, value) => sum + value, 0) / values.length / lambda2 - 1
-}
