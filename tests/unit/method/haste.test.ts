@@ -3,8 +3,9 @@ import { hastyIntervalMs, isChanged, isHasty, mayRise } from '@/lib/method/contr
 import { inForce } from '@/lib/method/control/link-time'
 import type { Snapshot } from '@/lib/method/control/snapshot'
 import { initialControl } from '@/lib/method/control/state'
+import { COARSE_INTERVALS, CoarseValue } from '@/lib/method/node/facts'
 import { linkTimeBetween } from '@/lib/method/orders'
-import { PACES } from '@/lib/method/pace'
+import { ordinaryIntervalMs, PACES } from '@/lib/method/pace'
 import { SUMS_SCALE } from '@/lib/method/report'
 import { someReport } from '../../support/reports'
 
@@ -152,5 +153,18 @@ describe('ω that is ordered for later', () => {
     }
     expect(inForce(control, 4_999)).toEqual({ linkTimePerSecond: 1, next: control.next })
     expect(inForce(control, 5_000)).toEqual({ linkTimePerSecond: 3, next: null })
+  })
+})
+
+describe('a value that is said coarsely and rarely', () => {
+  it('is renewed no more often in haste', () => {
+    const hasty = { ...PACES.steady, intervalMs: 500 }
+    expect(ordinaryIntervalMs(hasty)).toBe(2_000)
+    expect(ordinaryIntervalMs(PACES.calm)).toBe(10_000)
+    expect(ordinaryIntervalMs({ tickMs: 33, intervalMs: 700 })).toBe(700)
+    const coarse = new CoarseValue()
+    const say = (value: number, atMs: number) => coarse.say(1, value, atMs, ordinaryIntervalMs(hasty)).value
+    const renewedMs = COARSE_INTERVALS * 2_000
+    expect([say(0.6, 0), say(2, renewedMs - 1), say(2, renewedMs)]).toEqual([0.5, 0.5, 2])
   })
 })
