@@ -1,12 +1,12 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
 import { benchAgent } from './bench/agent'
-import { benchMethod } from './bench/method'
+import { benchReading } from './bench/reading'
 
 type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
 
 const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
-  method: benchMethod,
+  reading: benchReading,
 }
 
 const [name, ...args] = process.argv.slice(2)

@@ -44,6 +44,12 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/kills.test.ts',
     env: {},
   },
+  interval: {
+    about:
+      'the 90 % interval, settling and what it foretells, over 208 (16 per graph: THINSPAN_SOAK_RUNS) simulated overlays under churn, with a table',
+    file: 'tests/soak/interval.test.ts',
+    env: {},
+  },
   liars: {
     about:
       'every lie at three places, and 30 simulated minutes (THINSPAN_SOAK_MINUTES) of honest trouble on five graphs, with a table',

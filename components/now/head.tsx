@@ -8,6 +8,7 @@ import { roleReaches } from '@/lib/auth/permissions'
 import type { Overlay, Reading } from '@/lib/data/dto'
 import { cx } from '@/lib/face/cx'
 import { staleAfterMs } from '@/lib/face/expect'
+import { settlingText } from '@/lib/face/settling'
 import { formatDuration } from '@/lib/face/time'
 import { FirstReading, FirstSteps } from './first'
 import { TitleFigures } from './title-figures'
@@ -82,10 +83,12 @@ function Verdict({ reading, overlay }: { reading: Reading; overlay: Overlay }) {
         {reading.verdict}
       </h1>
       {reading.detail ? <p className="mt-4 max-w-2xl text-lg text-soft">{reading.detail}</p> : null}
-      {reading.data === 'settling' && reading.level !== null ? (
+      {reading.data === 'settling' && reading.lambda2 !== null ? (
         <Note className="mt-4 max-w-2xl">
-          Settling: a different cut may be becoming the weakest. The level shown is that of the last settled
-          reading.
+          {settlingText(reading.settlesInMs)}{' '}
+          {reading.level === null
+            ? 'Then the first level follows.'
+            : 'The overlay has just changed, or another cut may be becoming the weakest. The level shown is that of the last settled reading.'}
         </Note>
       ) : null}
       <Actions overlay={overlay} urgent={grave || reading.level === 'weak'} />

@@ -21,6 +21,8 @@ export function readingOf(
     core: whole ? coreOf(estimate) : null,
     lambda3AtMost: estimate.lambda3AtMost,
     crossCheck: all.crossCheck,
+    settlesInMs: estimate.settlesInMs,
+    answersInMs: estimate.answersInMs,
     level: memory.level,
     trend: memory.trend,
     ...said,

@@ -134,6 +134,8 @@ export class Term {
     const { atMs } = loaded.snapshot
     const usualIs = usualNow(usual.at(atMs), this.#state?.memory ?? BLANK_MEMORY, atMs)
     const { round, reading } = this.#plan(loaded, usualIs)
+    // In haste the next round is due sooner than the pace says.
+    onInterval(round.orders.pace.intervalMs)
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state

@@ -5,6 +5,7 @@ export const TREND_INTERVALS = 60
 export const TREND_LEAST_READINGS = 20
 /** A change over the window of less than this share of the reading is no trend. */
 export const TREND_LEAST_CHANGE = 0.1
+const LEAST_SPACING_INTERVALS = 0.75
 /** Pairs grow with the square; this many readings, evenly chosen, tell the same slope. */
 const MOST_COMPARED = 60
 
@@ -13,6 +14,9 @@ type Recent = Memory['recent']
 export function withReading(recent: Recent, next: Recent[number], intervalMs: number): Recent {
   // Kept with the state of every round: no more digits than a slope needs.
   const short = (value: number): number => Number(value.toPrecision(6))
+  // In haste readings come several times as often; a slope needs the span, not the number.
+  const last = recent[recent.length - 1]
+  if (last && next[0] - last[0] < LEAST_SPACING_INTERVALS * intervalMs) return recent
   const kept: Recent[number] = [Math.round(next[0]), short(next[1]), short(next[2])]
   return [...recent, kept].filter(([atMs]) => next[0] - atMs <= TREND_INTERVALS * intervalMs)
 }

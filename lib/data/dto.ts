@@ -29,6 +29,10 @@ export const readingSchema = z.object({
   core: z.object({ lambda2: z.number(), low: z.number(), high: z.number() }).nullable(),
   lambda3AtMost: z.number().nullable(),
   crossCheck: z.number().nullable(),
+  /** While settling: how long until the reading is expected to be fresh, milliseconds. */
+  settlesInMs: z.number().nullable().optional(),
+  /** How long a change of links takes to show in a fresh reading, milliseconds. */
+  answersInMs: z.number().nullable().optional(),
   /** Level and trend of the last good reading stay visible while data is not fresh; null before the first. */
   level: z.enum(LEVELS).nullable(),
   trend: z.enum(TRENDS).nullable(),

@@ -43,6 +43,21 @@ export function star(leaves: number): SparseGraph {
   )
 }
 
+/** Every node has four neighbours, across the edges too. At least 3 rows and columns. */
+export function torus(rows: number, columns: number): SparseGraph {
+  if (rows < 3 || columns < 3) throw new RangeError(`torus: needs 3 rows and columns, got ${rows}×${columns}`)
+  const at = (row: number, column: number) => (row % rows) * columns + (column % columns)
+  return fromEdges(
+    rows * columns,
+    range(rows).flatMap((row) =>
+      range(columns).flatMap((column): Edge[] => [
+        [at(row, column), at(row, column + 1)],
+        [at(row, column), at(row + 1, column)],
+      ]),
+    ),
+  )
+}
+
 /** Two complete graphs of `perSide` nodes, node i of one joined to node i of the other for i < bridges. */
 export function dumbbell(perSide: number, bridges: number): SparseGraph {
   const links = range(bridges).map((i): Edge => [i, perSide + i])
@@ -128,6 +143,25 @@ export function twoClusters(
     ...second.map(([a, b]): Edge => [a + perSide, b + perSide]),
     ...left.map((node, i): Edge => [node, perSide + right[i]!]),
   ])
+}
+
+/** Random regular graphs of `perCluster` nodes in a row, neighbours in it joined by `joints[i]` links that share no end. */
+export function clustersInRow(
+  init: { perCluster: number; degree: number; joints: readonly number[] },
+  random: Random,
+): SparseGraph {
+  const { perCluster, degree, joints } = init
+  const clusters = range(joints.length + 1).flatMap((cluster) =>
+    edgesOf(randomRegular(perCluster, degree, random)).map(
+      ([a, b]): Edge => [a + cluster * perCluster, b + cluster * perCluster],
+    ),
+  )
+  const links = joints.flatMap((count, joint) => {
+    const left = sample(perCluster, count, random)
+    const right = sample(perCluster, count, random)
+    return left.map((node, i): Edge => [joint * perCluster + node, (joint + 1) * perCluster + right[i]!])
+  })
+  return fromEdges((joints.length + 1) * perCluster, [...clusters, ...links])
 }
 
 /** Random regular graph of `nodes` nodes with one node more, the last, linked to `hubDegree` of them. */

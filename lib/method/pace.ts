@@ -14,4 +14,10 @@ export const PACES: Record<PaceName, Pace> = {
   drill: { tickMs: 20, intervalMs: 200 },
 }
 
+/** Report interval of the pace that orders stand for, though they may be in haste: paces tell apart by their ticks. */
+export function ordinaryIntervalMs({ tickMs, intervalMs }: Pace): number {
+  const ordinary = Object.values(PACES).find((pace) => pace.tickMs === tickMs)
+  return Math.max(intervalMs, ordinary?.intervalMs ?? 0)
+}
+
 export const DEFAULT_PACE: PaceName = 'steady'

@@ -40,6 +40,9 @@ export const ordersSchema: z.ZodType<Orders> = z
     sequence: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
     pace: z.object({ tickMs: tick, intervalMs: interval }),
     linkTimePerSecond: z.number().min(0).max(1e6),
+    next: z
+      .object({ linkTimePerSecond: z.number().min(0).max(1e6), fromAgeMs: z.number().min(0).max(3_600_000) })
+      .optional(),
     colonies: z.array(colonyOrdersSchema).max(MAX_COLONIES),
     sweep: sweepOrdersSchema.nullable(),
     disclosure: z.enum(DISCLOSURES),
@@ -51,7 +54,9 @@ export const ordersSchema: z.ZodType<Orders> = z
     weights: z.enum(WEIGHT_MODES).optional(),
   })
   .refine(
-    ({ linkTimePerSecond, pace }) => (linkTimePerSecond * pace.tickMs) / 1000 <= MOST_LINK_TIME_PER_TICK,
+    ({ linkTimePerSecond, next, pace }) =>
+      (Math.max(linkTimePerSecond, next?.linkTimePerSecond ?? 0) * pace.tickMs) / 1000 <=
+      MOST_LINK_TIME_PER_TICK,
     {
       message: 'more link time per tick than can be walked',
     },

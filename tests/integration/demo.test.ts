@@ -151,6 +151,8 @@ function sampleOf(lambda2: number): Sample {
       lambda3AtMost: lambda2 * 1.1,
       crossCheck: lambda2,
       settling: false,
+      settlesInMs: null,
+      answersInMs: null,
       singleCut: false,
       cut: null,
       coverage: { ...coverage, meanWeightedDegree: 6, walkersHeard: 1 },

@@ -114,7 +114,7 @@ export class TestCollector implements CollectorClient {
   }
 
   start(): void {
-    this.cancel = this.clock.after(PACES[this.pace].intervalMs, () => {
+    this.cancel = this.clock.after(this.control.intervalMs ?? PACES[this.pace].intervalMs, () => {
       if (!this.isAway) this.evaluate()
       this.start()
     })

@@ -7,15 +7,20 @@ import { type ColonySums, SUMS_SCALE } from '@/lib/method/report'
 /** What was ordered at one time. */
 export interface Ordered {
   atMs: number
+  /** The larger, where it changed meanwhile. */
   linkTimePerSecond: number
+  /** Report interval in those orders: agents average over a few of them. */
+  intervalMs: number | null
   colonies: readonly { colony: number; seeding: number; x: number; y: number }[]
 }
-export const ORDERED_KEPT = 16
+/** In haste they come several times as often. */
+export const ORDERED_KEPT = 48
 
 export function orderedNow(atMs: number, control: ControlState): Ordered {
   return {
     atMs,
-    linkTimePerSecond: control.linkTimePerSecond,
+    linkTimePerSecond: Math.max(control.linkTimePerSecond, control.next?.linkTimePerSecond ?? 0),
+    intervalMs: control.intervalMs ?? null,
     colonies: control.colonies.map(({ colony, seeding, birthRateX, birthRateY }) => ({
       colony,
       seeding,
@@ -72,6 +77,7 @@ export function noteStretch(
   const inForce = ordered.slice(Math.max(0, first)).filter(({ atMs }) => atMs <= stretch.toMs)
   const mostLinkTimePerTick =
     (Math.max(0, ...inForce.map((order) => order.linkTimePerSecond)) * MOST_TICKS * pace.tickMs) / 1000
+  const averagedOver = oneInterval(inForce, pace)
   let off = 0
   let size = 0
   let wrongTime = false
@@ -97,7 +103,8 @@ export function noteStretch(
       stretch.toMs -
       (ordered.find(({ colonies }) => colonies.some((c) => c.seeding === now.seeding))?.atMs ?? stretch.toMs)
     if (ageMs < LEAST_AGE_INTERVALS * pace.intervalMs) continue
-    const share = -Math.expm1((stretch.fromMs - stretch.toMs) / (AVERAGING_INTERVALS * pace.intervalMs))
+    if (averagedOver === null) continue
+    const share = -Math.expm1((stretch.fromMs - stretch.toMs) / (AVERAGING_INTERVALS * averagedOver))
     const declared = (linkTime * (before.mean + (now.mean - before.mean) / share)) / SUMS_SCALE
     off += (x - y - declared) ** 2
     size += Math.max((x - y) ** 2, declared ** 2) + (MIXED_SHARE * (x + y)) ** 2
@@ -106,4 +113,10 @@ export function noteStretch(
   next.meanOff = size > 0 && Math.sqrt(off / size) > MOST_OFF ? course.meanOff + 1 : 0
   next.birthsOff = birthsOff(next) === 1 ? 0 : course.birthsOff + 1
   return next
+}
+
+/** The report interval in force all the time; null where it changed. */
+function oneInterval(ordered: readonly Ordered[], { intervalMs }: Pace): number | null {
+  const [first = intervalMs, ...rest] = ordered.map((order) => order.intervalMs ?? intervalMs)
+  return rest.every((other) => other === first) ? first : null
 }

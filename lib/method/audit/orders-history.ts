@@ -12,6 +12,7 @@ interface Remembered {
   adoptedAtMs: number
   lifeMs: number
   linkTimePerSecond: number
+  next: Orders['next']
   rates: { colony: number; seeding: number; x: number; y: number }[]
 }
 
@@ -26,6 +27,7 @@ export class OrdersHistory {
       adoptedAtMs: nowMs,
       lifeMs: ordersLifeMs(orders.pace.intervalMs),
       linkTimePerSecond: orders.linkTimePerSecond,
+      next: orders.next,
       rates: orders.colonies.map(({ colony, seeding, birthRateX, birthRateY }) => ({
         colony,
         seeding,
@@ -42,9 +44,9 @@ export class OrdersHistory {
    */
   linkTimePerSecond(sequence: number, sendsWalkers: boolean, nowMs: number): number {
     const followed = this.kept.findLast((known) => known.sequence <= sequence)
-    if (followed && nowMs - followed.issuedAtMs <= followed.lifeMs) return followed.linkTimePerSecond
+    if (followed && nowMs - followed.issuedAtMs <= followed.lifeMs) return inForce(followed, nowMs)
     const newest = this.kept[this.kept.length - 1]
-    return sendsWalkers && newest ? newest.linkTimePerSecond : 0
+    return sendsWalkers && newest ? inForce(newest, nowMs) : 0
   }
 
   /**
@@ -64,4 +66,8 @@ export class OrdersHistory {
       ({ rates }) => rates.find((known) => known.colony === colony && known.seeding === seeding) ?? [],
     )
   }
+}
+
+function inForce({ linkTimePerSecond, next, issuedAtMs }: Remembered, nowMs: number): number {
+  return next && nowMs - issuedAtMs >= next.fromAgeMs ? next.linkTimePerSecond : linkTimePerSecond
 }

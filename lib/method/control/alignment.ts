@@ -2,10 +2,11 @@ import { type ColonySums, type Report, SUMS_SCALE } from '../report'
 import { heardAgents, heldMs, type Snapshot } from './snapshot'
 import type { ColonyControl } from './state'
 
-/** How one colony's z̄ went over one report interval, the same at every agent: z̄ → scale·z̄ + shift. */
+/** How one colony's z̄ went between two looks, the same at every agent: dz̄/dt = growth·z̄ + push, per millisecond. */
 export interface DriftStep {
-  scale: number
-  shift: number
+  growthPerMs: number
+  pushPerMs: number
+  spanMs: number
 }
 
 export interface ColonyDrift {
@@ -15,11 +16,18 @@ export interface ColonyDrift {
   steps: DriftStep[]
 }
 
+/** Over a stretch of time: z̄ → scale·z̄ + shift. */
+export interface Drift {
+  scale: number
+  shift: number
+}
+
 /** Agents needed to tell a drift from noise. */
 export const LEAST_AGENTS = 4
 /** Reports further apart than this do not measure one interval's drift. */
 export const MOST_APART_INTERVALS = 1.6
-const STILL: DriftStep = { scale: 1, shift: 0 }
+/** Nor does one by which z̄ would more than double or halve between two looks. */
+const MOST_GROWTH = Math.LN2
 
 /**
  * Populations breathe by a few percent per interval, so reports of different ages do not fit together: directions in which
@@ -39,17 +47,19 @@ export function noteDrift(
     if (!old || old.report.incarnation !== last.report.incarnation) return []
     const apartMs = last.receivedAtMs - old.receivedAtMs
     return apartMs > 0 && apartMs <= MOST_APART_INTERVALS * intervalMs
-      ? [{ from: old.report, to: last.report }]
+      ? [{ from: old.report, to: last.report, apartMs }]
       : []
   })
+  const spanMs = Math.max(1, now.atMs - before.atMs)
   return colonies.map(({ colony, seeding }) => {
     const known = drifts.find((drift) => drift.colony === colony && drift.seeding === seeding)
     const step = fit(
-      pairs.flatMap(({ from, to }) => {
+      pairs.flatMap(({ from, to, apartMs }) => {
         const x = presentSums(from, colony, seeding)
         const y = presentSums(to, colony, seeding)
-        return x && y ? [{ x: x.mean / SUMS_SCALE, y: y.mean / SUMS_SCALE }] : []
+        return x && y ? [{ x: x.mean / SUMS_SCALE, y: y.mean / SUMS_SCALE, apartMs }] : []
       }),
+      spanMs,
     )
     return {
       colony,
@@ -59,28 +69,43 @@ export function noteDrift(
   })
 }
 
-/** Least-squares line through the agents' means before and after. */
-function fit(points: readonly { x: number; y: number }[]): DriftStep {
-  if (points.length < LEAST_AGENTS) return STILL
-  const meanX = points.reduce((sum, { x }) => sum + x, 0) / points.length
-  const meanY = points.reduce((sum, { y }) => sum + y, 0) / points.length
-  const sxx = points.reduce((sum, { x }) => sum + (x - meanX) ** 2, 0)
-  if (sxx === 0) return STILL
-  const scale = points.reduce((sum, { x, y }) => sum + (x - meanX) * (y - meanY), 0) / sxx
-  return scale > 0.5 && scale < 2 ? { scale, shift: meanY - scale * meanX } : STILL
+/** Least-squares line through the agents' speeds over where they were; the longer apart, the surer. */
+function fit(points: readonly { x: number; y: number; apartMs: number }[], spanMs: number): DriftStep {
+  const still = { growthPerMs: 0, pushPerMs: 0, spanMs }
+  if (points.length < LEAST_AGENTS) return still
+  let weight = 0
+  let meanX = 0
+  let meanV = 0
+  for (const { x, y, apartMs } of points) {
+    weight += apartMs ** 2
+    meanX += apartMs ** 2 * x
+    meanV += apartMs * (y - x)
+  }
+  meanX /= weight
+  meanV /= weight
+  let sxx = 0
+  let sxv = 0
+  for (const { x, y, apartMs } of points) {
+    sxx += apartMs ** 2 * (x - meanX) ** 2
+    sxv += apartMs ** 2 * (x - meanX) * ((y - x) / apartMs - meanV)
+  }
+  if (sxx === 0) return still
+  const growthPerMs = sxv / sxx
+  if (Math.abs(growthPerMs) * spanMs > MOST_GROWTH) return still
+  return { growthPerMs, pushPerMs: meanV - growthPerMs * meanX, spanMs }
 }
 
-/** The drift over the last `ageIntervals` (may be a fraction). */
-export function driftOver(drift: ColonyDrift | undefined, ageIntervals: number): DriftStep {
+/** The drift over the last `ageMs`. */
+export function driftOver(drift: ColonyDrift | undefined, ageMs: number): Drift {
   let scale = 1
   let shift = 0
-  let left = ageIntervals
-  const taken: DriftStep[] = []
-  for (const step of drift?.steps ?? []) {
+  let left = ageMs
+  const taken: Drift[] = []
+  for (const { growthPerMs, pushPerMs, spanMs } of drift?.steps ?? []) {
     if (left <= 0) break
-    const part = Math.min(1, left)
-    taken.push({ scale: step.scale ** part, shift: step.shift * part })
-    left -= part
+    const ms = Math.min(spanMs, left)
+    taken.push({ scale: Math.exp(growthPerMs * ms), shift: pushPerMs * ms })
+    left -= ms
   }
   // Oldest first, as it happened.
   for (const step of taken.reverse()) {

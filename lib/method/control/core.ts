@@ -1,5 +1,9 @@
 import { isReleased, isTakenApart, type LooseEnd, looseEndOf } from './ends'
-import { type Estimate, type EvaluateInput, type Evaluation, evaluate } from './evaluate'
+import type { Estimate, EvaluateInput, Evaluation } from './estimate'
+import { evaluate } from './evaluate'
+import { paceNow } from './haste'
+import { HEARD_BY_INTERVALS } from './link-time'
+import { nextOrders } from './orders-from'
 import type { Snapshot } from './snapshot'
 import { type ControlState, initialControl } from './state'
 
@@ -44,20 +48,20 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
   const core = coreOf(before, whole, input)
   if (core.ends.length === 0) return { ...whole, control: { ...whole.control, core }, core: null }
   const within = evaluateCore(core, input)
-  // All colonies walk at one rate, so the one that asks for less decides.
-  const linkTimePerSecond = Math.min(whole.control.linkTimePerSecond, within.control.linkTimePerSecond)
+  const walking = sharedWalking(whole.control, within.control, input)
   const refused = core.ends.flatMap(({ agents }) => agents)
   const estimate = within.estimate
   return {
     ...whole,
     control: {
       ...whole.control,
-      linkTimePerSecond,
-      core: { ...core, control: { ...within.control, linkTimePerSecond } },
+      ...walking,
+      core: { ...core, control: { ...within.control, ...walking } },
     },
     orders: {
       ...whole.orders,
-      linkTimePerSecond: whole.orders.linkTimePerSecond === 0 ? 0 : linkTimePerSecond,
+      pace: paceNow(walking, input.settings),
+      next: whole.orders.linkTimePerSecond === 0 ? undefined : nextOrders(walking, input.now.atMs),
       colonies: [
         ...whole.orders.colonies,
         ...within.orders.colonies.map((colony) => ({ ...colony, refused })),
@@ -72,6 +76,27 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
 /** All colonies that walk, the core's among them. */
 export function coloniesOf({ colonies, core }: ControlState): ControlState['colonies'] {
   return [...colonies, ...(core?.control?.colonies ?? [])]
+}
+
+/** All colonies walk at one rate and report as often: the one that asks for less ω decides, and the one in more haste. */
+function sharedWalking(
+  whole: ControlState,
+  within: ControlState,
+  { control, now, settings }: EvaluateInput,
+): Pick<ControlState, 'linkTimePerSecond' | 'next' | 'intervalMs'> {
+  const { linkTimePerSecond } = whole
+  const intervalMs = Math.min(paceNow(whole, settings).intervalMs, paceNow(within, settings).intervalMs)
+  // What agents have been told to begin later stays.
+  const pending = control.next && control.next.fromAtMs > now.atMs ? control.next : null
+  if (pending) return { linkTimePerSecond, intervalMs, next: pending }
+  const wanted = Math.min(
+    whole.next?.linkTimePerSecond ?? linkTimePerSecond,
+    within.next?.linkTimePerSecond ?? within.linkTimePerSecond,
+  )
+  const heardByMs = HEARD_BY_INTERVALS * paceNow(control, settings).intervalMs
+  const next =
+    wanted === linkTimePerSecond ? null : { linkTimePerSecond: wanted, fromAtMs: now.atMs + heardByMs }
+  return { linkTimePerSecond, intervalMs, next }
 }
 
 function evaluateCore({ ends, control }: CoreControl, input: EvaluateInput): Evaluation {

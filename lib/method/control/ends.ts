@@ -1,5 +1,5 @@
 import { SUMS_SCALE } from '../report'
-import type { Evaluation } from './evaluate'
+import type { Evaluation } from './estimate'
 import { type HeardAgent, heardAgents, type Snapshot } from './snapshot'
 import type { ControlState, CutCount } from './state'
 

@@ -1,7 +1,8 @@
 export { type CoreEstimate, coloniesOf, evaluateOverlay, type OverlayEvaluation } from './core'
 export { type Coverage, LEAST_HEARD } from './coverage'
 export type { LooseEnd } from './ends'
-export { type Estimate, type EvaluateInput, type Evaluation, evaluate, type Withheld } from './evaluate'
+export type { Estimate, EvaluateInput, Evaluation, Withheld } from './estimate'
+export { evaluate } from './evaluate'
 export { CONFIDENCE } from './interval'
 export { heldMs, isHeard, type JoinedAgent, type Snapshot } from './snapshot'
 export {

@@ -1,3 +1,4 @@
+import type { Pace } from '../pace'
 import type { Random } from '../random'
 import { birthRates } from './law'
 import { type ColonyRates, colonyRates } from './rates'
@@ -21,6 +22,8 @@ export interface Seeder {
   sequence: number
   agentIds: readonly string[]
   settings: ControlSettings
+  /** As the orders now have it: reports come more often while in haste. */
+  present: Pace
   random: Random
 }
 
@@ -70,7 +73,7 @@ export function steerColony(
       populationX,
       populationY,
       target: walkersPerNode * rates.present,
-      intervalLinkTime: (linkTimePerSecond * pace.intervalMs) / 1000,
+      intervalLinkTime: (linkTimePerSecond * seeder.present.intervalMs) / 1000,
       tickLinkTime: (linkTimePerSecond * pace.tickMs) / 1000,
     }),
   }

@@ -4,6 +4,7 @@ import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
 import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
+import type { Young } from './young'
 
 export const COLONIES = 5
 export const WALKERS_PER_NODE = 200
@@ -69,7 +70,20 @@ export interface ControlState {
   meanWeightedDegree: number
   /** Since when walkers are missing though agents are not; null while they are not. */
   walkersGoneSinceMs: number | null
-  drifts: ColonyDrift[]
+  /** Absent in states of before it was kept by time. */
+  drift?: ColonyDrift[]
+  /** Report interval now in the orders. Absent in states of before there was haste: then the pace's. */
+  intervalMs?: number
+  isHasty?: boolean
+  /** ω that is ordered from then on. */
+  next?: { linkTimePerSecond: number; fromAtMs: number } | null
+  /** When links last came, went or changed their weight. */
+  changedAtMs?: number
+  /** When the reading was last settling. */
+  unsettledAtMs?: number
+  /** When walking last stood still because too little was heard. */
+  stoodUntilMs?: number
+  young?: Young | null
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */
   core?: CoreControl
 }
@@ -89,6 +103,5 @@ export function initialControl(atMs: number, pace: Pace): ControlState {
     attached: { count: 0, sinceMs: atMs },
     meanWeightedDegree: 0,
     walkersGoneSinceMs: null,
-    drifts: [],
   }
 }

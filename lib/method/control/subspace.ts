@@ -26,7 +26,7 @@ export function gather(
   colonies: readonly ColonyControl[],
   heard: readonly HeardAgent[],
   drifts: readonly ColonyDrift[],
-  { atMs, intervalMs }: { atMs: number; intervalMs: number },
+  atMs: number,
 ): Subspace | null {
   const attached = heard.filter(({ last }) => last.report.sums.attached === 1)
   const reports = ({ last }: HeardAgent, { colony, seeding }: ColonyControl): boolean =>
@@ -47,8 +47,7 @@ export function gather(
   for (const { last } of full) {
     const reported = last.report.sums
     const at = usable.map(({ colony }) => reported.colonies.findIndex((sum) => sum.colony === colony))
-    const ageIntervals = (atMs - last.receivedAtMs) / intervalMs
-    const drift = driftOf.map((known) => driftOver(known, ageIntervals))
+    const drift = driftOf.map((known) => driftOver(known, atMs - last.receivedAtMs))
     const mean = at.map((position) => reported.colonies[position]!.mean / SUMS_SCALE)
     for (let r = 0; r < size; r++) {
       const a = drift[r]!
@@ -86,6 +85,19 @@ export function ritzOf(subspace: Subspace, chosen?: (colony: ColonyControl) => b
   const kept = subspace.colonies.flatMap((colony, index) => (chosen(colony) ? [index] : []))
   if (kept.length === 0) return null
   return ritz(subspace.energies.selection(kept, kept), subspace.moments.selection(kept, kept))
+}
+
+/**
+ * By how much ever more colonies would bring the reading down, as a share of it. Where other modes are nearly as slow the colonies never part
+ * them quite, and what remains falls about as 1/R with their number R: so it is R − 1 times what leaving one out puts it up.
+ */
+export function fallWithMore(subspace: Subspace, lambda2: number): number {
+  const { colonies } = subspace
+  if (colonies.length < 2 || lambda2 <= 0) return 0
+  const values = colonies.flatMap((out) => ritzOf(subspace, (colony) => colony !== out)?.values[0] ?? [])
+  if (values.length === 0) return 0
+  const mean = values.reduce((sum, value) => sum + value, 0) / values.length
+  return (colonies.length - 1) * (mean / lambda2 - 1)
 }
 
 /**

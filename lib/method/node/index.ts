@@ -1,3 +1,4 @@
+export { AVERAGING_INTERVALS } from './colony'
 export {
   CHANGE_MS,
   DEADLINE_MS,

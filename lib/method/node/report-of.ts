@@ -1,4 +1,5 @@
 import type { Orders } from '../orders'
+import { ordinaryIntervalMs } from '../pace'
 import { type AgentHealth, type Complaint, type NodeFacts, type Report, SUMS_SCALE } from '../report'
 import type { Colony } from './colony'
 import { type CoarseValue, namedLinks } from './facts'
@@ -106,5 +107,5 @@ function disclosedValue(
 ): NodeFacts['value'] {
   if (!orders?.sweep || own === null) return null
   if (orders.disclosure === 'named') return { sweep: orders.sweep.id, value: Math.round(own * 1000) / 1000 }
-  return coarse.say(orders.sweep.id, own, nowMs, orders.pace.intervalMs)
+  return coarse.say(orders.sweep.id, own, nowMs, ordinaryIntervalMs(orders.pace))
 }

@@ -1,6 +1,7 @@
 import { NeighbourAudit } from '../audit'
 import type { CollectorDistance, Frame, OrdersProof } from '../frame'
-import { type Orders, ordersLifeMs, type WeightMode } from '../orders'
+import { linkTimeBetween, type Orders, ordersLifeMs, type WeightMode } from '../orders'
+import type { Pace } from '../pace'
 import { hash32, type Random } from '../random'
 import type { AuditFault, Complaint, Report } from '../report'
 import type { SignedStatement } from '../statement'
@@ -87,6 +88,11 @@ export class WalkNode {
 
   private get orders(): Orders | null {
     return this.following?.orders ?? null
+  }
+
+  /** As the orders held say it; null without any. */
+  get pace(): Pace | null {
+    return this.orders?.pace ?? null
   }
 
   private get tickMs(): number {
@@ -233,7 +239,7 @@ export class WalkNode {
     this.forgiveOwnGap(nowMs)
     const isFrozen = this.isFrozen(nowMs)
     if (isFrozen) this.debt.drop(nowMs)
-    else this.walkDue(this.following!.orders, nowMs)
+    else this.walkDue(this.following!, nowMs)
     const { following: orders, consents, distance, statement } = this
     const sayings = { orders, isFrozen, consents, distance, statement }
     const frames: { peer: string; frame: Frame }[] = []
@@ -278,9 +284,10 @@ export class WalkNode {
     this.detachedMs += Math.min(Math.max(0, gapMs), tickMs)
   }
 
-  private walkDue(orders: Orders, nowMs: number): void {
+  private walkDue({ orders, issuedAtMs }: HeldOrders, nowMs: number): void {
     const dueMs = this.debt.due(nowMs, orders.pace.tickMs)
-    const linkTime = (orders.linkTimePerSecond * dueMs) / 1000
+    const ageMs = nowMs - issuedAtMs
+    const linkTime = linkTimeBetween(orders, ageMs - dueMs, ageMs)
     const live = this.liveLinks(nowMs)
     if (live.length > 0) this.detachedMs = 0
     const detached = this.detachedMs > unacknowledgedLimitMs(orders.pace.tickMs)

@@ -69,6 +69,8 @@ export class Simulation {
   readonly leftOut: string[] = []
   /** Refusals so far, by whom and of whom; links between the two are closed. */
   readonly refusals: { atMs: number; by: number; of: number; reason: string }[] = []
+  /** Agents that left and have not come back. */
+  private readonly gone = new Set<string>()
   private orders: { orders: Frame['orders']; issuedAtMs: number } | null = null
   private before: Snapshot | null = null
 
@@ -180,11 +182,21 @@ export class Simulation {
     agent.life += 1
   }
 
+  /** Takes an agent out of the overlay: it hands over, its links end, and it is counted no more. */
+  leave(index: number): void {
+    const { node } = this.agents[index]!
+    for (const { a, b, weight } of [...this.links.values()])
+      if (weight > 0 && (a === index || b === index)) this.cut(a, b)
+    this.stop(index)
+    this.gone.add(node.agentId)
+  }
+
   /** Starts it again with the same key and a new incarnation. */
   start(index: number): void {
     const agent = this.agents[index]!
     agent.stopped = false
     agent.life += 1
+    if (this.gone.delete(agent.node.agentId)) agent.last = null
     agent.node = this.createNode(index, agent.random, agent.life)
     for (const { a, b, weight } of this.links.values()) {
       if ((a !== index && b !== index) || weight === 0) continue
@@ -308,7 +320,8 @@ export class Simulation {
     const agent = this.agents[index]!
     if (agent.life !== life) return
     const { pace } = this.init.settings
-    this.queue.push(this.nowMs + this.vary(pace.intervalMs, agent.random), () => this.report(index, life))
+    const { intervalMs } = agent.node.pace ?? pace
+    this.queue.push(this.nowMs + this.vary(intervalMs, agent.random), () => this.report(index, life))
     if (agent.silent || agent.stalledUntilMs > this.nowMs || !this.collectorUp) return
     const report = bentReport(agent.node, agent.lie, () =>
       agent.node.report(this.nowMs, { linksKnown: 0, version: 'simulated', uptimeSeconds: 0 }),
@@ -345,15 +358,16 @@ export class Simulation {
   }
 
   private scheduleEvaluation(): void {
-    this.queue.push(this.nowMs + this.init.settings.pace.intervalMs, () => {
-      this.scheduleEvaluation()
+    const { intervalMs = this.init.settings.pace.intervalMs } = this.control
+    this.queue.push(this.nowMs + intervalMs, () => {
       if (this.collectorUp) this.evaluate()
+      this.scheduleEvaluation()
     })
   }
 
   private evaluate(): void {
     const joined = this.agents.flatMap(({ node, stopped, last }) =>
-      this.leftOut.includes(node.agentId) || (stopped && !last)
+      this.leftOut.includes(node.agentId) || this.gone.has(node.agentId) || (stopped && !last)
         ? []
         : [{ agentId: node.agentId, joinedAtMs: this.init.startAtMs, last }],
     )

@@ -23,6 +23,8 @@ const estimate = (over: Partial<Estimate>): Estimate => ({
   lambda3AtMost: 4,
   crossCheck: 0.81,
   settling: false,
+  settlesInMs: null,
+  answersInMs: 20_000,
   singleCut: true,
   cut: { threshold: 2, sweep: 6, above: 1, below: 19, links: 1, weight: 1 },
   coverage: {

@@ -37,6 +37,8 @@ function estimate(over: Partial<Estimate> = {}, heard = 8): Estimate {
     lambda3AtMost: 2,
     crossCheck: 0.61,
     settling: false,
+    settlesInMs: null,
+    answersInMs: null,
     singleCut: true,
     cut: CUT,
     coverage: {

@@ -102,6 +102,8 @@ describe('graph builders', () => {
     expect(degrees(graphs.tree(7))).toEqual([2, 3, 3, 1, 1, 1, 1])
     expect(of(graphs.complete(6))).toEqual({ nodes: 6, links: 15, components: 1 })
     expect(degrees(graphs.star(4))).toEqual([4, 1, 1, 1, 1])
+    expect(of(graphs.torus(3, 5))).toEqual({ nodes: 15, links: 30, components: 1 })
+    expect(new Set(degrees(graphs.torus(4, 6)))).toEqual(new Set([4]))
     expect(of(graphs.dumbbell(5, 2))).toEqual({ nodes: 10, links: 22, components: 1 })
     expect(of(graphs.preferentialAttachment(300, 3, random))).toEqual({
       nodes: 300,
@@ -134,6 +136,18 @@ describe('graph builders', () => {
     expect(linkCount(graph)).toBe(24 * 6 + 5)
   })
 
+  it('join clusters in a row by exactly the links asked for, and by no others', () => {
+    const graph = graphs.clustersInRow({ perCluster: 10, degree: 4, joints: [3, 6] }, createRandom('row'))
+    const joints = edgesOf(graph).flatMap(([a, b]) => {
+      const clusters = [a, b].map((node) => Math.floor(node / 10))
+      return clusters[0] === clusters[1] ? [] : [clusters.sort().join('-')]
+    })
+    expect(joints.filter((joint) => joint === '0-1')).toHaveLength(3)
+    expect(joints.filter((joint) => joint === '1-2')).toHaveLength(6)
+    expect(joints).toHaveLength(9)
+    expect(of(graph)).toEqual({ nodes: 30, links: 3 * 20 + 9, components: 1 })
+  })
+
   it('repeat with the seed and differ without', () => {
     const make = (seed: number) => edgesOf(graphs.preferentialAttachment(40, 2, createRandom(seed)))
     expect(make(1)).toEqual(make(1))
@@ -146,6 +160,7 @@ describe('graph builders', () => {
     expect(() => graphs.randomRegular(4, 4, random)).toThrow(RangeError)
     expect(() => graphs.randomRegular(4, 1, random)).toThrow(RangeError)
     expect(() => graphs.ring(2)).toThrow(RangeError)
+    expect(() => graphs.torus(2, 5)).toThrow(RangeError)
     expect(() => graphs.twoClusters({ perSide: 4, degree: 3, links: 5 }, random)).toThrow(
       'cannot choose 5 of 4',
     )

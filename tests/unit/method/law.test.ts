@@ -36,11 +36,11 @@ describe('birth rates', () => {
       { birthRateX: 0.4 / T, birthRateY: 0.4 / T },
     ],
     [
-      'steer the imbalance to 0: the richer type is born less',
+      'steer the imbalance to 0: the richer type is born less, and both the less the larger it is',
       { populationX: 1200, populationY: 800 },
       {
-        birthRateX: 0.2 - ((0.2 + 0.25 / T) * 400) / 2400,
-        birthRateY: 0.2 + ((0.2 + 0.25 / T) * 400) / 1600,
+        birthRateX: 0.16 - ((0.16 + 0.25 / T) * 400) / 2400,
+        birthRateY: 0.16 + ((0.16 + 0.25 / T) * 400) / 1600,
       },
     ],
     [
@@ -67,10 +67,11 @@ describe('ω', () => {
   it.each([
     ['stays where nothing is known of λ₂', 0.1, null, 0.1],
     ['is the loop gain over λ₂ and two intervals', wanted(0.4), 0.4, wanted(0.4)],
-    ['falls by at most half in one interval', 1, 100, 0.5],
-    ['rises by at most half in one interval', 0.1, 0.001, 0.15],
-    ['goes to one unit of link time per tick where λ₂ is 0', 5, 0, 5],
-    ['never exceeds one unit of link time per tick', 4.5, 0, 5],
+    ['falls to a fifth at most in one step', 1, 100, 0.2],
+    ['doubles at most in one step', 0.1, 0.001, 0.2],
+    ['stays while it is near what is wanted', 1.1 * wanted(0.4), 0.4, 1.1 * wanted(0.4)],
+    ['goes to one unit of link time per tick where λ₂ is 0', 4, 0, 5],
+    ['never exceeds one unit of link time per tick', 6, 0, 5],
   ])('%s', (_, current, lambda, expected) => {
     expect(nextLinkTimePerSecond(current, lambda, PACES.steady)).toBeCloseTo(expected, 12)
   })

@@ -1,0 +1,89 @@
+import type { Pace } from '../pace'
+import { SUMS_SCALE } from '../report'
+import { GROWN_RATIO } from './settling'
+import { heardAgents, type Snapshot } from './snapshot'
+import type { ControlSettings, ControlState } from './state'
+
+/** While a reading is on its way, agents report and are answered this many times as often: the control loop can then bear as much more ω. */
+export const HASTE = 4
+/** But no more often than this: a report there and back, and a few ticks, have to fit in. */
+export const HASTY_AT_LEAST_MS = 500
+/** Nor with more reports per second from one overlay than this: beyond it haste costs the collector more than it brings. */
+export const MOST_REPORTS_PER_SECOND = 200
+/** Haste lasts this many of the pace's intervals after a cold start or a change, and on while the reading is settling. */
+export const HASTY_INTERVALS = 10
+export const SETTLED_FOR_INTERVALS = 3
+export const MOST_HASTY_INTERVALS = 60
+
+/** Report interval of an overlay in haste. */
+export function hastyIntervalMs({ intervalMs }: Pace, agents: number): number {
+  const affordable = (1000 * agents) / MOST_REPORTS_PER_SECOND
+  return Math.min(intervalMs, Math.round(Math.max(intervalMs / HASTE, HASTY_AT_LEAST_MS, affordable)))
+}
+
+/** The pace as the orders now have it. */
+export function paceNow(
+  { intervalMs }: Pick<ControlState, 'intervalMs'>,
+  { pace }: Pick<ControlSettings, 'pace'>,
+): Pace {
+  return { tickMs: pace.tickMs, intervalMs: intervalMs ?? pace.intervalMs }
+}
+
+/** Whether the next orders are to be in haste. */
+export function isHasty(
+  control: Pick<ControlState, 'colonies' | 'coldSinceMs' | 'changedAtMs' | 'unsettledAtMs' | 'isHasty'>,
+  { intervalMs }: Pace,
+  attached: number,
+  atMs: number,
+): boolean {
+  const { coldSinceMs, changedAtMs = coldSinceMs, unsettledAtMs = coldSinceMs } = control
+  // Agents that have no links yet may be a long time without.
+  if (control.colonies.length === 0) return attached >= 2
+  const since = (atMs - Math.max(coldSinceMs, changedAtMs)) / intervalMs
+  if (since < HASTY_INTERVALS) return true
+  // Once over it does not begin again without a new cause.
+  if (!control.isHasty || since >= MOST_HASTY_INTERVALS) return false
+  return (atMs - unsettledAtMs) / intervalMs < SETTLED_FOR_INTERVALS
+}
+
+/** So long after a change the colony seeded at it should have grown; where it has not, more ω is worth its price. */
+export const WAIT_INTERVALS = 8
+const COLD_INTERVALS = 25
+
+/**
+ * Whether ω may rise to what the loop bears in haste. The rise itself stirs the walkers up (links fill with more of them), by 10 % for some
+ * seconds, which is more than the loss of a link does where one cut is clearly weakest: such a reading is right before that.
+ */
+export function mayRise(
+  {
+    coldSinceMs,
+    changedAtMs,
+    young,
+    isHasty,
+  }: Pick<ControlState, 'coldSinceMs' | 'changedAtMs' | 'young' | 'isHasty'>,
+  { intervalMs }: Pace,
+  atMs: number,
+): boolean {
+  if (!isHasty || changedAtMs === undefined || changedAtMs <= coldSinceMs + COLD_INTERVALS * intervalMs)
+    return true
+  const last = young?.ratios[young.ratios.length - 1]
+  return atMs - changedAtMs >= WAIT_INTERVALS * intervalMs && last !== undefined && last.ratio > GROWN_RATIO
+}
+
+/** More than this share of all link weight, changed between two looks, is a change of the overlay. */
+export const WEIGHT_CHANGED = 0.01
+
+/** Whether links came, went or changed their weight since the last look. */
+export function isChanged(before: Snapshot, now: Snapshot, intervalMs: number): boolean {
+  const earlier = new Map(before.agents.map(({ agentId, last }) => [agentId, last?.report.sums]))
+  let changed = 0
+  let all = 0
+  for (const { agentId, last } of heardAgents(now, intervalMs)) {
+    const { linkEnds, linkEndWeight } = last.report.sums
+    const old = earlier.get(agentId)
+    if (old && old.linkEnds !== linkEnds) return true
+    all += linkEndWeight
+    changed += Math.abs(linkEndWeight - (old?.linkEndWeight ?? linkEndWeight))
+  }
+  return changed > WEIGHT_CHANGED * all && changed > SUMS_SCALE / 100
+}

@@ -1,0 +1,142 @@
+import { noteDrift } from './alignment'
+import { answersInMs } from './answer'
+import { noteBound } from './bound'
+import type { Coverage } from './coverage'
+import { crossCheckOf } from './cross-check'
+import { bestCut, THRESHOLDS } from './cut'
+import type { EvaluateInput, Evaluation } from './estimate'
+import { paceNow } from './haste'
+import { intervalOf, windowIntervals } from './interval'
+import { walkingLambda } from './law'
+import { nextStep } from './link-time'
+import { ordersFrom } from './orders-from'
+import { settlesInMs } from './settling'
+import { heardAgents } from './snapshot'
+import type { ColonyControl, ControlState } from './state'
+import { combinationOf, fallWithMore, gather, ritzOf } from './subspace'
+import { trendLine } from './trend-line'
+import { watcher, watchYoung } from './young'
+
+/** A younger colony is left out of the sums: its average still holds the random start. From cold all are alike. */
+export const LEAST_AGE_INTERVALS = 4
+export const COLD_LEAST_AGE_INTERVALS = 2
+/** A young colony that lowers the Ritz value by more than this shows that the old ones are set in an old cut. */
+export const LOWERED = 0.05
+/** Second Ritz value over first under which no single cut is weakest. */
+export const NEAR = 1.2
+/** A combination is replaced at the latest after this long, counted or not. */
+export const COMBINATION_INTERVALS = 8
+
+/** The reading, the cut and the orders from a steered state. */
+export function read(control: ControlState, input: EvaluateInput, coverage: Coverage): Evaluation {
+  const { now, settings, sequence } = input
+  const { pace } = settings
+  const present = paceNow(control, settings)
+  const heard = heardAgents(now, pace.intervalMs)
+  const aged = control.colonies.filter(({ seededAtMs }) => {
+    const least = seededAtMs > control.coldSinceMs ? LEAST_AGE_INTERVALS : COLD_LEAST_AGE_INTERVALS
+    return now.atMs - seededAtMs >= least * present.intervalMs
+  })
+  const drifts = input.before
+    ? noteDrift(control.drift ?? [], control.colonies, input.before, now, pace.intervalMs)
+    : (control.drift ?? [])
+  const subspace = gather(aged, heard, drifts, now.atMs)
+  const result = subspace && ritzOf(subspace)
+  const crossCheck = crossCheckOf(control.colonies)
+  const lambda2 = result?.values[0] ?? null
+  const sinceMs = Math.max(control.coldSinceMs, control.changedAtMs ?? 0, control.stoodUntilMs ?? 0)
+  const fromMs = Math.max(
+    sinceMs,
+    now.atMs - windowIntervals((now.atMs - sinceMs) / pace.intervalMs) * pace.intervalMs,
+  )
+  const ritz = [...control.ritz, ...(lambda2 === null ? [] : [{ atMs: now.atMs, value: lambda2 }])].filter(
+    ({ atMs }) => atMs >= fromMs,
+  )
+  const slowest = lambda2 === null ? null : walkingLambda(lambda2, crossCheck)
+  const next: ControlState = {
+    ...control,
+    drift: drifts,
+    ritz,
+  }
+  const isYoung = ({ seededAtMs }: ColonyControl): boolean =>
+    seededAtMs === control.renewedAtMs && seededAtMs > control.coldSinceMs
+  const mature = subspace && lambda2 !== null ? ritzOf(subspace, (colony) => !isYoung(colony)) : null
+  const lowered =
+    mature !== null && lambda2 !== null && lambda2 < (mature.values[0] ?? lambda2) * (1 - LOWERED)
+  if (subspace && result) {
+    const counted = next.combination ? bestCut(next.combination.id, THRESHOLDS, heard) : undefined
+    if (counted !== undefined) next.cut = counted
+    const old = now.atMs - next.combinationAtMs >= COMBINATION_INTERVALS * pace.intervalMs
+    const gone = next.combination?.terms.some(
+      ({ colony, seeding }) => !control.colonies.some((c) => c.colony === colony && c.seeding === seeding),
+    )
+    if (!next.combination || counted !== undefined || old || gone) {
+      next.combination = combinationOf(subspace, result, control.combination, {
+        id: sequence,
+        thresholds: THRESHOLDS,
+      })
+      next.combinationAtMs = now.atMs
+    }
+  }
+  const bounds =
+    lambda2 === null
+      ? control.bounds
+      : noteBound(control.bounds, now.atMs, lambda2, result?.values[1] ?? null, pace.intervalMs)
+  next.bounds = bounds
+  const second = bounds.length > 0 ? Math.min(...bounds.map(({ value }) => value)) : null
+  const singleCut = lambda2 === null || second === null ? null : second > NEAR * lambda2
+  const trend = trendLine(ritz)
+  const young = watcher(control, sinceMs, pace.intervalMs)
+  next.young =
+    young && lambda2 !== null ? watchYoung(control.young ?? null, young, subspace, lambda2, now.atMs) : null
+  const settles =
+    lambda2 === null
+      ? null
+      : settlesInMs({
+          atMs: now.atMs,
+          intervalMs: pace.intervalMs,
+          sinceMs,
+          lambda2,
+          trend,
+          young: next.young?.ratios ?? null,
+          lowered,
+          wasFresh: control.unsettledAtMs !== input.before?.atMs,
+        })
+  const settling = settles !== null && settles > 0
+  const interval =
+    lambda2 === null || !subspace
+      ? null
+      : intervalOf({ lambda2, trend, fall: fallWithMore(subspace, lambda2), settling })
+  if (settling || lambda2 === null) next.unsettledAtMs = now.atMs
+  next.next = control.next ?? nextStep(next, input.control, slowest, input)
+  const answers =
+    lambda2 === null
+      ? null
+      : answersInMs({
+          pace,
+          agents: coverage.joined,
+          linkTimePerSecond: control.linkTimePerSecond,
+          lambda2,
+          lambda3AtMost: second,
+        })
+  return {
+    control: next,
+    orders: ordersFrom(next, settings, now.atMs, true),
+    estimate: {
+      atMs: now.atMs,
+      withheld: lambda2 === null ? 'starting' : null,
+      lambda2,
+      low: interval?.low ?? null,
+      high: interval?.high ?? null,
+      lambda3AtMost: second,
+      crossCheck,
+      settling,
+      settlesInMs: settling ? Math.round(settles) : null,
+      answersInMs: answers,
+      singleCut,
+      cut: next.cut,
+      coverage,
+      seedings: subspace?.colonies.map(({ seeding }) => seeding) ?? [],
+    },
+  }
+}

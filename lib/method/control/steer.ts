@@ -1,0 +1,74 @@
+import { crossCheckOf } from './cross-check'
+import type { EvaluateInput } from './estimate'
+import { paceNow } from './haste'
+import { firstLinkTimePerSecond } from './law'
+import { type Seeder, seedColony, steerColony } from './populations'
+import { RENEWAL_INTERVALS } from './renewal'
+import { heardAgents } from './snapshot'
+import type { ControlState } from './state'
+import { AS_GOOD_AS_AT_INTERVALS } from './young'
+
+/** From cold all colonies are young. */
+const LEAST_SINCE_COLD_INTERVALS = 5
+
+/** New birth rates, seedings and ω. */
+export function steer(control: ControlState, input: EvaluateInput): ControlState {
+  const { before, now, settings, sequence, random } = input
+  const { intervalMs } = settings.pace
+  const agentIds = heardAgents(now, intervalMs)
+    .filter(({ last }) => last.report.sums.attached === 1)
+    .map(({ agentId }) => agentId)
+  const present = paceNow(control, settings)
+  const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, present, random }
+  if (control.colonies.length === 0) {
+    const first = settings.firstSlot ?? 0
+    const colonies = Array.from({ length: settings.colonies }, (_, index) =>
+      seedColony(first + index, null, seeder),
+    )
+    return {
+      ...control,
+      colonies,
+      renewedAtMs: now.atMs,
+      coldSinceMs: now.atMs,
+      ritz: [],
+      next: null,
+      linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, present),
+    }
+  }
+  if (!before) return control
+  const colonies = control.colonies.map((colony) =>
+    steerColony(colony, before, now, control.linkTimePerSecond, seeder),
+  )
+  const cold = colonies.every(({ seeding }) => seeding === sequence)
+  const next: ControlState = cold
+    ? {
+        ...control,
+        colonies,
+        renewedAtMs: now.atMs,
+        coldSinceMs: now.atMs,
+        ritz: [],
+        combination: null,
+        cut: null,
+        bounds: [],
+      }
+    : { ...control, colonies }
+  return cold ? next : renew(next, seeder)
+}
+
+/**
+ * The oldest colony is seeded anew from time to time, and at a change of links: then the youngest instead, where it is young still, so
+ * that overlays that change all the time keep colonies that know them.
+ */
+function renew(control: ControlState, seeder: Seeder): ControlState {
+  const { intervalMs } = seeder.settings.pace
+  const age = (seeder.atMs - control.renewedAtMs) / intervalMs
+  const isChange = control.changedAtMs === seeder.atMs
+  if (age < (isChange ? AS_GOOD_AS_AT_INTERVALS : RENEWAL_INTERVALS)) return control
+  if (isChange && seeder.atMs - control.coldSinceMs < LEAST_SINCE_COLD_INTERVALS * intervalMs) return control
+  const order = age < RENEWAL_INTERVALS && control.renewedAtMs > control.coldSinceMs ? -1 : 1
+  const replaced = control.colonies.reduce((a, b) => (order * (b.seededAtMs - a.seededAtMs) < 0 ? b : a))
+  const colonies = control.colonies.map((colony) =>
+    colony === replaced ? seedColony(colony.colony, crossCheckOf(control.colonies), seeder) : colony,
+  )
+  return { ...control, colonies, renewedAtMs: seeder.atMs }
+}

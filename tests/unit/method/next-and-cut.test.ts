@@ -1,0 +1,70 @@
+/** What is said beside λ₂, against the exact spectrum: the bound for λ₃, whether one cut stands out, and the sweep cut. */
+import { UndirectedGraph } from 'graphology'
+import { florentineFamilies } from 'graphology-generators/social'
+import { describe, expect, it, vi } from 'vitest'
+import { fromGraphology, type SparseGraph } from '@/lib/method/graph'
+import { ring, twoClusters } from '@/lib/method/graphs'
+import { createRandom } from '@/lib/method/random'
+import { algebraicConnectivity, crossingOf, sweepCut } from '@/lib/method/spectrum'
+import { simulateOn } from '../../support/overlays'
+
+vi.setConfig({ testTimeout: 30_000 })
+
+function readingsOf(graph: SparseGraph, seed: string) {
+  const simulation = simulateOn(graph, seed)
+  const bounds: number[] = []
+  simulation.run(30_000)
+  simulation.onEstimate = ({ lambda3AtMost }) => {
+    if (lambda3AtMost !== null) bounds.push(lambda3AtMost)
+  }
+  simulation.run(60_000)
+  return { estimate: simulation.estimate!, least: Math.min(...bounds) }
+}
+
+describe('two clusters', () => {
+  const graph = twoClusters({ perSide: 12, degree: 5, links: 3 }, createRandom('next'))
+  const exact = algebraicConnectivity(graph)
+  const { estimate, least } = readingsOf(graph, 'next')
+
+  it('bounds λ₃ from above, and says that one cut is weakest', () => {
+    expect(least).toBeGreaterThan(0.97 * exact.lambda3!)
+    expect(estimate.singleCut).toBe(true)
+  })
+
+  it('finds the joint', () => {
+    expect(estimate.cut).toMatchObject({ above: 12, below: 12, links: 3 })
+  })
+})
+
+describe('a ring, whose λ₂ is double', () => {
+  const graph = ring(14)
+  const exact = algebraicConnectivity(graph)
+  const { estimate, least } = readingsOf(graph, 'double')
+
+  it('shows a second cut as weak as the first', () => {
+    expect(exact.lambda3!).toBeCloseTo(exact.lambda2, 9)
+    expect(estimate.singleCut).toBe(false)
+    expect(least).toBeGreaterThan(0.97 * exact.lambda3!)
+    expect(estimate.lambda3AtMost! / exact.lambda2).toBeLessThan(1.2)
+  })
+})
+
+describe('the Florentine families, whose halves by sign hang on more than their weakest place does', () => {
+  const { graph } = fromGraphology(florentineFamilies(UndirectedGraph))
+  const exact = algebraicConnectivity(graph)
+
+  it('are cut by ratio, not by sign', () => {
+    const bySign = crossingOf(
+      graph,
+      Uint8Array.from(exact.fiedler, (value) => (value > 0 ? 1 : 0)),
+    )
+    const signs = exact.fiedler.filter((value) => value > 0).length
+    const signRatio = bySign.weight / Math.min(signs, graph.nodes - signs)
+    const best = sweepCut(graph, exact.fiedler)!.ratio.value
+    const { cut } = readingsOf(graph, 'families').estimate
+    const ratio = cut!.weight / Math.min(cut!.above, cut!.below)
+    expect(best).toBeLessThanOrEqual(signRatio)
+    // Nine thresholds do not try every cut.
+    expect(ratio).toBeLessThanOrEqual(1.35 * best)
+  })
+})
