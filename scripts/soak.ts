@@ -32,6 +32,12 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/faults.test.ts',
     env: {},
   },
+  happenings: {
+    about:
+      'what happens to overlays: churn, restarts, silence, splits, merges, shapes, 2,000 and 10,000 nodes, with a table',
+    file: 'tests/soak/happenings.test.ts',
+    env: {},
+  },
   handover: {
     about:
       'twelve times (THINSPAN_SOAK_HANDOVERS) a leading collector is killed, stopped, or stopped in the middle of a round, with a table',
