@@ -7,10 +7,13 @@ import { DISCLOSURES } from '@/lib/method/orders'
 import { PACE_NAMES } from '@/lib/method/pace'
 import { LINK_KINDS, UPGRADE_STATES } from '@/lib/method/report'
 
+import { ROLES } from './people-dto'
+
+export * from './people-dto'
+
 export const LEVELS = ['firm', 'weak', 'split'] as const
 export const TRENDS = ['steady', 'falling', 'rising'] as const
 export const DATA_STATES = ['fresh', 'settling', 'unheard'] as const
-export const ROLES = ['owner', 'operator', 'viewer'] as const
 export const SIDES = ['a', 'b'] as const
 export const KEPT_KINDS = ['reading', 'minute', 'hour'] as const
 export const WEIGHTS = ['unit', 'delivered'] as const
@@ -359,65 +362,3 @@ export const problemSchema = z.object({
   errors: z.array(z.object({ path: z.string(), message: z.string() })).optional(),
 })
 export type Problem = z.infer<typeof problemSchema>
-
-const email = z
-  .email('Write the address like name@example.org.')
-  .max(200)
-  .transform((text) => text.toLowerCase())
-
-export const signInSchema = z.object({
-  email: z.string().trim().toLowerCase().min(1, 'Write your e-mail address.').max(200),
-  password: z.string().min(1, 'Write your password.').max(200),
-})
-
-/** Length beats rules on characters (NIST SP 800-63B §5.1.1.2, from memory). */
-export const PASSWORD_MIN_LENGTH = 10
-export const newPasswordSchema = z
-  .string()
-  .min(PASSWORD_MIN_LENGTH, `Use at least ${PASSWORD_MIN_LENGTH} characters.`)
-  .max(200, 'Use at most 200 characters.')
-
-export const firstRunSchema = z.object({
-  team: z.string().trim().min(1, 'Give the team a name.').max(80),
-  name: z.string().trim().min(1, 'Write your name.').max(80),
-  email: z.string().trim().pipe(email),
-  password: newPasswordSchema,
-})
-
-export const newMemberSchema = z.object({
-  name: z.string().trim().min(1, 'Write the name.').max(80),
-  email: z.string().trim().pipe(email),
-  role: z.enum(ROLES),
-})
-
-export const memberSchema = z.object({
-  id: z.string(),
-  name: z.string(),
-  email: z.string(),
-  role: z.enum(ROLES),
-  /** False until the person has set a password. */
-  active: z.boolean(),
-  you: z.boolean(),
-  /** The only owner left: cannot be removed or given another role. */
-  lastOwner: z.boolean(),
-  addedAt: at,
-})
-export type Member = z.infer<typeof memberSchema>
-
-export const teamSchema = z.object({ slug: z.string(), name: z.string(), role: z.enum(ROLES) })
-export type Team = z.infer<typeof teamSchema>
-
-export const AUDIT_ACTOR_KINDS = ['user', 'token', 'agent', 'system'] as const
-export const AUDIT_OUTCOMES = ['ok', 'denied', 'failed'] as const
-export const auditEntrySchema = z.object({
-  id: z.string(),
-  at,
-  actorKind: z.enum(AUDIT_ACTOR_KINDS),
-  actor: z.string(),
-  action: z.string(),
-  subject: z.string(),
-  outcome: z.enum(AUDIT_OUTCOMES),
-  data: z.record(z.string(), z.unknown()).nullable(),
-})
-export type AuditItem = z.infer<typeof auditEntrySchema>
-export const auditSchema = z.object({ items: z.array(auditEntrySchema), next: z.string().nullable() })
