@@ -216,6 +216,7 @@ export class Agent {
   }
 
   private tick(): void {
+    this.links.takeIn()
     this.correspondence.relay.refresh()
     const isCarried = (peer: string) => this.links.isCarried(peer)
     this.links.deliver(this.node.tick(this.components.clock.monotonicMs(), isCarried))

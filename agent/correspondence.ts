@@ -89,6 +89,7 @@ export class Correspondence {
 
   private report(): Report {
     const { clock, node, links, membership } = this.components
+    links.takeIn()
     const nowMs = clock.monotonicMs()
     const { failed, tookMs, lastError } = this.reports.counts
     const { count, late } = this.init.ticks()

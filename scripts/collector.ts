@@ -4,6 +4,8 @@
  */
 import { once } from 'node:events'
 import { resolve } from 'node:path'
+import { GET as agentFacts } from '@/app/agent/thinspan-agent.json/route'
+import { GET as agentFile } from '@/app/agent/thinspan-agent.mjs/route'
 import { GET as directory } from '@/app/api/agent/directory/route'
 import { POST as enrol } from '@/app/api/agent/enrol/route'
 import { POST as key } from '@/app/api/agent/key/route'
@@ -40,6 +42,8 @@ const server = createRouteServer({
   'POST /api/agent/key': key,
   'POST /api/agent/leave': leave,
   'GET /api/agent/directory': directory,
+  'GET /agent/thinspan-agent.mjs': agentFile,
+  'GET /agent/thinspan-agent.json': agentFacts,
   'GET /api/health': health,
 })
 server.listen(port, host)

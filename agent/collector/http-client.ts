@@ -9,6 +9,7 @@ import {
   sessionReplySchema,
 } from '@/lib/protocol'
 import type { Clock } from '../clock'
+import { type Body, BodyPacking } from './body-packing'
 import type { CollectorClient, CollectorResult, DirectoryReply } from './client'
 import type { Post, PostReply } from './post'
 
@@ -32,6 +33,7 @@ export function createHttpCollector(
   { baseUrl, timeoutMs = COLLECTOR_TIMEOUT_MS }: HttpCollectorInit,
 ): CollectorClient {
   const base = new URL(baseUrl.endsWith('/') ? baseUrl : `${baseUrl}/`)
+  const packing = new BodyPacking()
   const post = async <T>(
     path: string,
     body: object,
@@ -39,7 +41,7 @@ export function createHttpCollector(
     signal: AbortSignal,
     token?: string,
   ): Promise<CollectorResult<T>> => {
-    const reply = await call(components, new URL(path, base), { body, signal, token, timeoutMs })
+    const reply = await call(components, new URL(path, base), { body, signal, token, timeoutMs, packing })
     return reply.ok ? judge(reply.value.status, reply.value.text, schema) : reply
   }
   return {
@@ -50,7 +52,7 @@ export function createHttpCollector(
     leave: (request, token, signal) => post('api/agent/leave', request, leaveReplySchema, signal, token),
     directory: async (etag, token, signal) => {
       const url = new URL('api/agent/directory', base)
-      const reply = await call(components, url, { body: null, signal, token, timeoutMs, etag })
+      const reply = await call(components, url, { body: null, signal, token, timeoutMs, etag, packing })
       return reply.ok ? judgeDirectory(reply.value, etag) : reply
     },
   }
@@ -63,6 +65,7 @@ interface Call {
   token: string | undefined
   timeoutMs: number
   etag?: string | null
+  packing: BodyPacking
 }
 
 async function call(
@@ -80,14 +83,19 @@ async function call(
   init.signal.addEventListener('abort', onAbort, { once: true })
   if (init.signal.aborted) abort.abort()
   try {
-    const value = await post(url, {
-      method: init.body === null ? 'GET' : 'POST',
-      headers: headersOf(init),
-      body: init.body === null ? '' : JSON.stringify(init.body),
-      signal: abort.signal,
-      maxReplyBytes: MAX_REPLY_BYTES,
-    })
-    return { ok: true, value }
+    const send = (body: Body) =>
+      post(url, {
+        method: init.body === null ? 'GET' : 'POST',
+        headers: headersOf(init, body),
+        body: body.content,
+        signal: abort.signal,
+        maxReplyBytes: MAX_REPLY_BYTES,
+      })
+    const text = init.body === null ? '' : JSON.stringify(init.body)
+    const body = init.packing.pack(text)
+    const value = await send(body)
+    if (!init.packing.note(body, value)) return { ok: true, value }
+    return { ok: true, value: await send({ content: text, isPacked: false }) }
   } catch (error) {
     if (timedOut) return { ok: false, error: { code: 'timeout', timeoutMs: init.timeoutMs } }
     const reason = init.signal.aborted ? 'stopped' : error instanceof Error ? error.message : String(error)
@@ -98,10 +106,11 @@ async function call(
   }
 }
 
-function headersOf({ body, token, etag }: Call): Record<string, string> {
+function headersOf({ body, token, etag }: Call, { isPacked }: Body): Record<string, string> {
   return {
     accept: 'application/json',
     ...(body === null ? {} : { 'content-type': 'application/json' }),
+    ...(isPacked ? { 'content-encoding': 'gzip' } : {}),
     ...(token === undefined ? {} : { authorization: `Bearer ${token}` }),
     ...(etag === null || etag === undefined ? {} : { 'if-none-match': etag }),
   }

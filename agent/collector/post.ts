@@ -6,7 +6,7 @@ export interface PostInit {
   method?: 'GET' | 'POST'
   headers: Record<string, string>
   /** Empty for a GET. */
-  body: string
+  body: string | Uint8Array
   signal: AbortSignal
   maxReplyBytes: number
 }
@@ -16,6 +16,8 @@ export interface PostReply {
   status: number
   text: string | null
   etag?: string | null
+  /** How the server lets bodies be packed (RFC 7694). */
+  acceptEncoding?: string | null
 }
 
 /** Sends one body and reads one reply. @throws Error where there is none, or when aborted */
@@ -65,8 +67,12 @@ function attempt(
     request.on('response', (response) => {
       isAnswered = true
       const status = response.statusCode ?? 0
-      const etag = response.headers.etag ?? null
-      read(response, init.maxReplyBytes).then((text) => resolve({ status, text, etag }), reject)
+      const { etag = null, 'accept-encoding': packings } = response.headers
+      const acceptEncoding = packings?.toString() ?? null
+      read(response, init.maxReplyBytes).then(
+        (text) => resolve({ status, text, etag, acceptEncoding }),
+        reject,
+      )
     })
     request.end(init.method === 'GET' ? undefined : init.body)
   })

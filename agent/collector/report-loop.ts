@@ -1,6 +1,7 @@
 import type { KeyObject } from 'node:crypto'
 import type { Random } from '@/lib/method/random'
 import type { Report } from '@/lib/method/report'
+import { MOST_RECEIPT_AGE_INTERVALS, RECEIPT_INTERVALS } from '@/lib/method/statement'
 import {
   AGENT_PROTOCOL,
   type AwaySummary,
@@ -12,7 +13,7 @@ import {
 import { type Clock, sleep } from '../clock'
 import type { Logger } from '../logger'
 import { type CollectorError, type CollectorResult, describeCollectorError, isEnded } from './client'
-import { attemptLimitMs, LEAST_WAIT_MS, RECEIPT_INTERVALS, waitAfter } from './report-plan'
+import { attemptLimitMs, LEAST_WAIT_MS, waitAfter } from './report-plan'
 import type { Reporter } from './reporter'
 
 /** What carries reports where the collector cannot be reached, and brings others' along. */
@@ -162,10 +163,13 @@ export class ReportLoop {
     this.error = null
     this.deliveredAtMs = nowMs
     this.tookMs = nowMs - sentAtMs
-    this.sinceReceipt = reply.receipt ? 1 : this.sinceReceipt + 1
+    // Neighbours hold a receipt against what they heard of late: one that was long on its way would accuse its bearer.
+    const isLate = this.tookMs > MOST_RECEIPT_AGE_INTERVALS * this.init.intervalMs()
+    const kept = isLate ? { ...reply, receipt: undefined } : reply
+    this.sinceReceipt = kept.receipt ? 1 : this.sinceReceipt + 1
     if (reply.relayed) carriers.answer(reply.relayed)
     // The orders aged on the way too; counting the whole exchange makes them expire early rather than late.
-    this.init.onReply(reply, report, reply.ordersAgeMs + this.tookMs)
+    this.init.onReply(kept, report, reply.ordersAgeMs + this.tookMs)
   }
 
   private noteFailure(error: CollectorError): void {

@@ -12,8 +12,6 @@ export const LEAST_ATTEMPT_MS = 2_000
 export const LONG_ATTEMPT_EVERY = 5
 /** An answer is late after an interval, but not before this. */
 export const LEAST_WAIT_MS = 500
-/** The collector is asked for a receipt this often. */
-export const RECEIPT_INTERVALS = 4
 
 /**
  * How long from the start of one report to the start of the next. One that is away is tried every interval, without

@@ -252,7 +252,13 @@ export class LinkManager implements SessionOwner {
     this.intake.message(session, peer, bytes)
   }
 
+  /** What has come on all links, before ticks and reports. */
+  takeIn(): void {
+    this.intake.takeWaiting()
+  }
+
   closed(session: LinkSession, event: CloseEvent, own: CloseName | null): void {
+    this.takeIn()
     this.unproven.remove(session)
     const name = own ?? closeName(event.code)
     const reason = name ?? `closed with ${event.code}`

@@ -17,6 +17,7 @@ export interface CloseEvent {
 }
 
 export interface ConnectionListener {
+  /** The bytes are not changed later. */
   message(bytes: Uint8Array): void
   /** Once, and last. */
   closed(event: CloseEvent): void

@@ -11,6 +11,8 @@ export const ERRORS = {
   'invalid-input': { status: 400, title: 'Some values cannot be used', retry: false },
   'too-large': { status: 413, title: 'The body is too large', retry: false },
   'wrong-media-type': { status: 415, title: 'The body must be JSON', retry: false },
+  'wrong-encoding': { status: 415, title: 'The body is packed in a way that is not read here', retry: false },
+  'malformed-gzip': { status: 400, title: 'The body is not gzip', retry: false },
   'not-signed-in': { status: 401, title: 'Not signed in', retry: false },
   'bad-credentials': { status: 401, title: 'E-mail address or password is wrong', retry: false },
   'bad-token': { status: 401, title: 'The token is not valid', retry: false },

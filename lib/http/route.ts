@@ -12,6 +12,7 @@ import { invalidInput, problemResponse } from './problem'
 import { type RequestFacts, requestFacts } from './request-facts'
 import { getRuntime } from './runtime'
 import { assertStorable } from './storable'
+import { BODY_ENCODING } from './unpack'
 
 type Schema = z.ZodType | undefined
 type Output<S extends Schema> = S extends z.ZodType ? z.output<S> : undefined
@@ -57,7 +58,7 @@ export function route<
   spec: RouteSpec<P, Q, B>,
   run: (call: Call, input: RouteInput<P, Q, B>) => Promise<T>,
 ): RouteHandler {
-  const handler = async (request: Request, context: { params: Promise<unknown> }): Promise<Response> => {
+  const answer = async (request: Request, context: { params: Promise<unknown> }): Promise<Response> => {
     try {
       const runtime = getRuntime()
       const facts = requestFacts(request.headers, request.method, runtime)
@@ -85,6 +86,11 @@ export function route<
     } catch (error) {
       return problemResponse(error)
     }
+  }
+  const handler: typeof answer = async (request, context) => {
+    const response = await answer(request, context)
+    if (spec.body) response.headers.set('accept-encoding', BODY_ENCODING)
+    return response
   }
   return Object.assign(handler, { permission: action })
 }

@@ -1,5 +1,10 @@
 import type { Report } from './report'
 
+/** The collector is asked for a receipt this often. */
+export const RECEIPT_INTERVALS = 4
+/** A receipt that comes longer than this after its report is not shown to neighbours. */
+export const MOST_RECEIPT_AGE_INTERVALS = 4
+
 /** What one agent says of one colony, to its neighbours and to the collector alike. Counters as in `ColonyCounters`. */
 export interface ColonyStatement {
   colony: number

@@ -106,6 +106,18 @@ describe('agents of today and the collector of today', () => {
     expect(status('tar-01').reports.lastError).toBeNull()
   })
 
+  test('reports come packed', async () => {
+    const packed = new Promise<string | undefined>((resolve) =>
+      server.on('request', ({ url, headers }) => {
+        if (url === '/api/agent/report' && headers['content-encoding']) resolve(headers['content-encoding'])
+      }),
+    )
+    expect(await packed).toBe('gzip')
+    const { delivered, failed } = status('tar-01').reports
+    await until(async () => status('tar-01').reports.delivered > delivered + 2)
+    expect(status('tar-01').reports.failed).toBe(failed)
+  })
+
   test('a report goes round by a neighbour where the agent’s own way is cut', async () => {
     fleet.detour('gul-05')
     await until(async () => (await stateOf('gul-05')).relayed === true)

@@ -1,8 +1,11 @@
 import { createServer, type RequestListener, type Server } from 'node:http'
 import type { AddressInfo } from 'node:net'
+import { buffer } from 'node:stream/consumers'
+import { gunzipSync } from 'node:zlib'
 import { afterEach, describe, expect, test } from 'vitest'
 import { createClock, createHttpCollector, createPost } from '@/agent'
 import { MAX_REPLY_BYTES } from '@/agent/collector/http-client'
+import { someReport } from '../support/reports'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const never = new AbortController().signal
@@ -79,6 +82,60 @@ describe('a collector that', () => {
       ['GET', '/api/agent/directory', 'Bearer token', undefined, undefined],
       ['GET', '/api/agent/directory', 'Bearer token', '"7"', undefined],
     ])
+  })
+
+  describe('is sent reports', () => {
+    const { sums, ...rest } = someReport(7)
+    const colonies = Array.from({ length: 9 }, (_, colony) => ({ ...sums.colonies[0]!, colony }))
+    const sent = { ...rest, sums: { ...sums, colonies }, protocol: 2 }
+    const answer = { orders: null, ordersAgeMs: 0 }
+    /** Servers one after the other behind one address, and what came to them. */
+    async function servers(...kinds: ('new' | 'old')[]) {
+      const came: { encoding: string | undefined; bytes: number; isWhole: boolean }[] = []
+      const collector = await collectorWhere(async (request, response) => {
+        const kind = kinds[Math.min(came.length, kinds.length - 1)]
+        const bytes = await buffer(request)
+        const encoding = request.headers['content-encoding']
+        const plain = encoding === 'gzip' && kind === 'new' ? gunzipSync(bytes) : bytes
+        const isWhole = plain.toString('utf8') === JSON.stringify(sent)
+        came.push({ encoding, bytes: bytes.length, isWhole })
+        const headers = kind === 'new' ? { 'accept-encoding': 'gzip' } : {}
+        const problem = { status: 400, title: 'The body is not JSON', detail: '', code: 'malformed-json' }
+        if (isWhole) response.writeHead(200, headers).end(JSON.stringify(answer))
+        else response.writeHead(400, headers).end(JSON.stringify({ ...problem, retry: false }))
+      })
+      return { collector, came }
+    }
+
+    test('packed, once it has said that it unpacks them', async () => {
+      const { collector, came } = await servers('new')
+      for (let count = 0; count < 3; count++)
+        expect(await collector.report(sent, 'token', never)).toEqual({ ok: true, value: answer })
+      expect(came.map(({ encoding, isWhole }) => [encoding, isWhole])).toEqual([
+        [undefined, true],
+        ['gzip', true],
+        ['gzip', true],
+      ])
+      expect(came[1]?.bytes).toBeLessThan((came[0]?.bytes ?? 0) / 2)
+    })
+
+    test('as they are, where it says nothing of the kind', async () => {
+      const { collector, came } = await servers('old')
+      for (let count = 0; count < 2; count++) await collector.report(sent, 'token', never)
+      expect(came.map(({ encoding }) => encoding)).toEqual([undefined, undefined])
+    })
+
+    test('anew as they are, where an older one has taken its place', async () => {
+      const { collector, came } = await servers('new', 'old')
+      for (let count = 0; count < 3; count++)
+        expect(await collector.report(sent, 'token', never)).toEqual({ ok: true, value: answer })
+      expect(came.map(({ encoding, isWhole }) => [encoding, isWhole])).toEqual([
+        [undefined, true],
+        ['gzip', false],
+        [undefined, true],
+        [undefined, true],
+      ])
+    })
   })
 
   test('says 304 unasked is no collector', async () => {

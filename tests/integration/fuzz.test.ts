@@ -3,6 +3,8 @@ import { FuzzedLink } from '../support/fuzzed-link'
 import { testOverlay } from '../support/passes'
 
 const MESSAGES = 3_000
+/** How the agent must have ended connections, each at least once. */
+const MEANT = ['bad-frame', 'not-a-hello', 'proof-wrong', 'too-large', 'counter-fell', 'orders-forged']
 
 test(`${MESSAGES} random and mutated messages at an agent: it lives, its honest link stays up, no walker is lost there`, async () => {
   const overlay = testOverlay()
@@ -14,6 +16,9 @@ test(`${MESSAGES} random and mutated messages at an agent: it lives, its honest 
   )
   await world.start()
   await world.attack(MESSAGES)
+  // What is rare may not have come yet: how the lanes take turns is chance.
+  const isMissed = () => MEANT.some((name) => !world.count.closes.has(name))
+  for (let more = 0; more < 10 && isMissed(); more++) await world.attack(MESSAGES / 3)
   const { victim, honest } = await world.settle()
   for (const end of [world.victim, world.honest]) {
     const about = end === world.victim ? 'tar-01' : 'gul-04'
@@ -26,14 +31,6 @@ test(`${MESSAGES} random and mutated messages at an agent: it lives, its honest 
   // The attack must have reached what it is meant for.
   const { closes, links, handshakes, read } = world.count
   expect([links > 50, handshakes > 50, read > 500]).toEqual([true, true, true])
-  for (const name of [
-    'bad-frame',
-    'not-a-hello',
-    'proof-wrong',
-    'too-large',
-    'counter-fell',
-    'orders-forged',
-  ])
-    expect([name, closes.get(name) ?? 0]).toEqual([name, expect.toSatisfy((times: number) => times > 0)])
+  expect([...closes.keys()]).toEqual(expect.arrayContaining(MEANT))
   await world.stop()
 })

@@ -59,7 +59,9 @@ describe('a collector that was away from all for a minute', () => {
       await swarm.clock.advance(5_000)
       const first = estimates.find(({ estimate }) => isGood(estimate))
       expect((first?.atMs ?? Number.NaN) - backAtMs).toBeLessThanOrEqual(5_000)
-      expect(first!.estimate.seedings.filter((seeding) => !seedings.has(seeding))).toEqual([])
+      // The oldest colony is replaced in turn, as ever; after a minute that may just be due.
+      const renewed = first!.estimate.seedings.filter((seeding) => !seedings.has(seeding))
+      expect(renewed.length).toBeLessThanOrEqual(1)
       expect(swarm.fleet.names.map((name) => status(name).frozen)).not.toContain(true)
       expect(swarm.collector.away).toHaveLength(swarm.fleet.names.length)
       expect(swarm.collector.away[0]!.spans).toMatchObject([{ linkDowns: 0 }])
@@ -91,6 +93,17 @@ describe('a collector that one half does not reach', () => {
     expect(last()).toMatchObject({ withheld: 'unheard', lambda2: null, coverage: { joined: 6, heard: 3 } })
     expect(half('gul').map((name) => status(name).distance)).toEqual([3, 3, 3])
     expect(status('gul-01').away.isAway).toBe(true)
+  })
+
+  test('hears it without a gap where its way swallows reports, through neighbours and before any attempt is over', async () => {
+    await begin({ pace: 'brisk', settleMs: 30_000 })
+    swarm.collector.swallows = new Set(half('gul').map((name) => `agent-${name}`))
+    const from = estimates.length
+    await swarm.clock.advance(30_000)
+    const unheard = estimates.slice(from).filter(({ estimate }) => estimate.coverage.heard < 6)
+    expect(unheard).toEqual([])
+    expect(estimates.length - from).toBeGreaterThan(20)
+    for (const name of half('gul')) expect(status(name).reports.relayed).toBeGreaterThan(10)
   })
 
   test('hears nothing of it where it is silenced: then neighbours carry nothing either', async () => {

@@ -87,8 +87,8 @@ export class Fuzz {
     return bytes
   }
 
-  /** Messages for a connection that has not proved itself. */
-  handshake(identity: Identity): Uint8Array[] {
+  /** Messages for a connection that has not proved itself; with `isTooLarge` the first is longer than any may be. */
+  handshake(identity: Identity, isTooLarge: boolean): Uint8Array[] {
     const hello = encodeHello({
       versions: [2, 1],
       key: identity.keys.publicKey,
@@ -101,8 +101,7 @@ export class Fuzz {
     const messages = Array.from({ length: 1 + this.below(4) }, (_, index) =>
       this.chance(0.5) ? (spoken[index] ?? hello) : this.mutated(spoken[this.below(4)] ?? hello),
     )
-    if (this.chance(0.05))
-      messages.unshift(new Uint8Array(9_000 + this.below(9_000)).fill(MESSAGE_KIND.hello))
+    if (isTooLarge) messages.unshift(new Uint8Array(9_000 + this.below(9_000)).fill(MESSAGE_KIND.hello))
     return messages
   }
 }

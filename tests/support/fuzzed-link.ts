@@ -12,6 +12,7 @@ import { Stranger } from './stranger'
 const ATTACKERS = 48
 const AT_ONCE = 8
 const MESSAGES_PER_LINK = 24
+const TOO_LARGE_EVERY = 20
 /** Attackers that give themselves away at once reach less than those that behave for a while. */
 const HONESTIES = [0.2, 0.8, 0.95, 1]
 const REORDER_MS = 500
@@ -116,7 +117,8 @@ export class FuzzedLink {
   private async attackDoor(attacker: Identity): Promise<void> {
     const stranger = await Stranger.dial(this.address)
     this.count.handshakes += 1
-    for (const bytes of this.fuzz.handshake(attacker)) this.say(stranger, bytes)
+    const isTooLarge = this.count.handshakes % TOO_LARGE_EVERY === 0
+    for (const bytes of this.fuzz.handshake(attacker, isTooLarge)) this.say(stranger, bytes)
     await this.end(stranger)
   }
 

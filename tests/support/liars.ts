@@ -48,11 +48,16 @@ export const LIES: Record<string, Lie> = {
         occupancyY: 3 * occupancyY,
       })),
   },
+  'z̄ ×5 and counts cooked to match, to the collector alone': {
+    meanToCollector: 5,
+    report: (report) => withCounters(report, cooked),
+  },
   'z̄ ×5, all counts cooked to match': {
     meanToNeighbours: 5,
     meanToCollector: 5,
     report: (report) => withCounters(report, cooked),
   },
+  'shows no receipt': { frame: ({ statement: _, ...frame }) => frame },
   'acknowledges half of what comes': { frame: halfAcknowledged() },
 }
 
@@ -95,12 +100,13 @@ export function auditedOn(
   let memory: AuditMemory = BLANK_AUDIT
   const because: string[] = []
   const settings = { ...(init.settings ?? STEADY), disclosure: init.disclosure ?? 'named' }
-  const simulation = simulateOn(graph, seed, {
+  const simulation: Simulation = simulateOn(graph, seed, {
     ...init,
     settings,
     audits: true,
     leaveOut: (now, control) => {
-      const verdict = auditAgents({ now, control, pace: settings.pace, memory, leftOutBefore: 0 })
+      const leftOutBefore = simulation.leftOut.length
+      const verdict = auditAgents({ now, control, pace: settings.pace, memory, leftOutBefore })
       memory = verdict.memory
       because.push(...verdict.leftOut.map((out) => out.because))
       return verdict.leftOut.map(({ agentId }) => agentId)

@@ -94,6 +94,7 @@ export class LinkEnd {
   /** Ticks without a door: an agent that only dials. */
   startDialOnly(): void {
     this.timer = setInterval(() => {
+      this.links.takeIn()
       this.links.deliver(this.node.tick(realClock.monotonicMs(), (peer) => this.links.isCarried(peer)))
       this.wake()
     }, TICK_MS)

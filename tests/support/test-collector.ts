@@ -1,5 +1,7 @@
 import { randomBytes } from 'node:crypto'
 import type { Clock, CollectorClient, CollectorResult } from '@/agent'
+import type { CollectorError } from '@/agent/collector/client'
+import { COLLECTOR_TIMEOUT_MS } from '@/agent/collector/http-client'
 import {
   type ControlState,
   DEFAULT_SETTINGS,
@@ -80,6 +82,8 @@ export class TestCollector implements CollectorClient {
   isAway = false
   /** Out of reach, but at work: a server cut off. */
   isUnreachable = false
+  /** Agents whose way swallows what they send: no answer comes, until they give up. */
+  swallows: ReadonlySet<string> = new Set()
   upgrade: UpgradeOffer | null = null
   readonly away: { agentId: string; spans: AwaySummary[] }[] = []
   /** Answers that are lost on their way back, by route. */
@@ -187,10 +191,11 @@ export class TestCollector implements CollectorClient {
       return { ok: true, value }
     })
 
-  report: CollectorClient['report'] = (body, token) =>
+  report: CollectorClient['report'] = (body, token, signal) =>
     this.reach(async () => {
       const joined = this.holderOf(token)
       if (!joined.ok) return joined
+      if (this.swallows.has(joined.value.agentId)) return this.swallow(signal)
       const request = reportRequestSchema.parse(JSON.parse(JSON.stringify(body)))
       const report = reportSchema.parse(request)
       this.store(joined.value, report, false)
@@ -254,6 +259,19 @@ export class TestCollector implements CollectorClient {
 
   private async reach<T>(call: () => Promise<CollectorResult<T>>): Promise<CollectorResult<T>> {
     return this.isAway || this.isUnreachable ? lost() : call()
+  }
+
+  private swallow(signal: AbortSignal): Promise<CollectorResult<ReportReply>> {
+    const timeoutMs = COLLECTOR_TIMEOUT_MS
+    return new Promise((resolve) => {
+      const end = (error: CollectorError) => {
+        cancel()
+        resolve({ ok: false, error })
+      }
+      const cancel = this.clock.after(timeoutMs, () => end({ code: 'timeout', timeoutMs }))
+      const stopped = () => end({ code: 'unreachable', reason: 'stopped' })
+      signal.addEventListener('abort', stopped, { once: true })
+    })
   }
 
   private holderOf(token: string): CollectorResult<Joined> {

@@ -1,3 +1,4 @@
+import { gzipSync } from 'node:zlib'
 import { describe, expect, it } from 'vitest'
 import { z } from 'zod'
 import { canonicalJoiningCode, hashJoiningCode, newJoiningCode } from '@/lib/auth/secrets'
@@ -129,6 +130,30 @@ describe('a JSON body', () => {
     })
     await expect(readJson(post(endless), 10_000)).rejects.toMatchObject({ code: 'too-large' })
     expect(sent).toBeLessThan(20_000)
+  })
+
+  const packed = (bytes: Uint8Array<ArrayBuffer>, encoding = 'gzip') =>
+    post(new Blob([bytes]), { 'content-type': 'application/json', 'content-encoding': encoding })
+  const gzip = (text: string) => new Uint8Array(gzipSync(text))
+
+  it('may come packed', async () => expect(await readJson(packed(gzip('{"a":1}')))).toEqual({ a: 1 }))
+  it('packed in another way is refused', async () =>
+    await expect(readJson(packed(gzip('{"a":1}'), 'br'))).rejects.toMatchObject({
+      code: 'wrong-encoding',
+      detail: expect.stringContaining('content-encoding: gzip'),
+    }))
+  it('that is not what it says, or is cut short, is refused', async () => {
+    for (const bytes of [new Uint8Array(Buffer.from('{"a":1}')), gzip('{"a":1}').slice(0, -9)])
+      await expect(readJson(packed(bytes))).rejects.toMatchObject({ code: 'malformed-gzip' })
+  })
+  it('of few bytes that would become many is unpacked to the limit and no further', async () => {
+    const bomb = gzip(JSON.stringify('tide'.repeat(1_000_000)))
+    expect(bomb.length).toBeLessThan(10_000)
+    await expect(readJson(packed(bomb), 10_000)).rejects.toMatchObject({
+      code: 'too-large',
+      detail: 'Send at most 10000 bytes, counted before they are packed.',
+    })
+    expect(await readJson(packed(gzip(JSON.stringify('t'.repeat(9_998)))), 10_000)).toHaveLength(9_998)
   })
 })
 

@@ -1,5 +1,5 @@
 import { getAgentFile } from '@/lib/data/agent-file'
-import { route } from '@/lib/http'
+import { route } from '@/lib/http/route'
 
 export const dynamic = 'force-dynamic'
 

@@ -1,6 +1,6 @@
 import { z } from 'zod'
 import { getAgentFile } from '@/lib/data/agent-file'
-import { route } from '@/lib/http'
+import { route } from '@/lib/http/route'
 
 export const dynamic = 'force-dynamic'
 

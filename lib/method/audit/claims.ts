@@ -1,48 +1,34 @@
 import { type AuditFault, SUMS_SCALE } from '../report'
-import type { Statement } from '../statement'
+import { MOST_RECEIPT_AGE_INTERVALS, RECEIPT_INTERVALS, type Statement } from '../statement'
 import type { HeardColony } from './arrivals'
-import { addBirths, type BirthClaim, birthsOff, noBirths, SURE } from './births'
+import { addBirths, type BirthClaim, birthsOff, noBirths } from './births'
 import type { OrdersHistory } from './orders-history'
+import { type Mark, WalkerTimeAudit } from './walker-time'
 
-/**
- * Declared walker-time over what arrived. Kills come between the count of walker-time and the departures, so honest nodes lie
- * above 1 where many die (up to 1.6); on links that lose a third of their frames the sender holds them to be down more often than
- * the receiver (2.7 measured). The collector sees smaller lies exactly.
- */
-export const MOST_WALKER_TIME = 4
-export const LEAST_WALKER_TIME = 0.6
+/** A statement is of the time up to this long before it came: its receipt and the frame were on their way. */
+export const STATEMENT_AGE_INTERVALS = MOST_RECEIPT_AGE_INTERVALS + 2
 /** Share of its size by which a stated z̄ may lie outside what was heard in frames of late. */
 export const MOST_APART = 0.35
 /** Fewer arrivals between two statements do not tell what its walkers are made of. */
 export const LEAST_FOUND = 20
 /** What a block still counts for when the next one is judged: rates of births swing from one order to the next. */
 export const KEPT_PER_BLOCK = 0.75
-/** So many blocks, or statements, in a row are a fault. */
+/** So many statements in a row are a fault. */
 export const BAD_CLAIMS = 3
 /** Births are summed over blocks, so that one outlier is bad several times over. */
 export const BAD_BIRTHS = 5
 
-/** What came of one colony since the last statement, and how z̄ went of late. */
+/** What came of one colony since it was first heard, and how z̄ went of late. */
 interface Heard {
   seeding: number
   x: number
   y: number
   weightMs: number
   ms: number
-  /** Lowest and highest z̄ in buckets of one report interval: this one and the three before. */
+  /** Lowest and highest z̄ in buckets of one report interval: this one and those before. */
   means: { least: number; most: number }[]
 }
-const MEAN_BUCKETS = 4
-
-interface Block extends BirthClaim {
-  found: number
-  declared: number
-  ms: number
-}
-
-const blank = (): Block => ({ ...noBirths(), found: 0, declared: 0, ms: 0 })
-
-const KEYS = Object.keys(blank()) as (keyof Block)[]
+const MEAN_BUCKETS = STATEMENT_AGE_INTERVALS + 1
 
 export interface ClaimFault {
   fault: AuditFault
@@ -53,15 +39,14 @@ export interface ClaimFault {
 export class ClaimAudit {
   private readonly heard = new Map<number, Heard>()
   private bucketMs = 0
-  private last: { statement: Statement; atMs: number } | null = null
-  private block = blank()
-  private readonly bad: Record<'walker-time' | 'births' | 'two-accounts', number> = {
-    'walker-time': 0,
-    births: 0,
-    'two-accounts': 0,
-  }
+  private last: { statement: Statement; mark: Mark } | null = null
+  private block: BirthClaim = noBirths()
+  private blockMs = 0
+  private badBirths = 0
+  private twoAccountsInARow = 0
   /** Blocks added up, older ones forgotten. */
-  readonly kept = blank()
+  readonly kept: BirthClaim = noBirths()
+  readonly walkerTime = new WalkerTimeAudit()
   /** How far a stated z̄ was from those heard, as a share. */
   lastApart = 0
 
@@ -99,18 +84,30 @@ export class ClaimAudit {
   ): ClaimFault | null {
     const { last } = this
     if (last && statement.reportNumber <= last.statement.reportNumber) return null
-    this.last = { statement, atMs: nowMs }
+    const mark = this.markOf(statement, nowMs)
+    this.last = { statement, mark }
     const apart = this.twoAccounts(statement)
-    if (last) this.add(last.statement, statement, orders, last.atMs - 2 * intervalMs)
-    for (const since of this.heard.values()) {
-      since.x = 0
-      since.y = 0
-      since.weightMs = 0
-      since.ms = 0
+    if (last) this.addBirths(last, { statement, mark }, orders, intervalMs)
+    const spacing = {
+      baseMs: BASE_RECEIPTS * RECEIPT_INTERVALS * intervalMs,
+      ageMs: STATEMENT_AGE_INTERVALS * intervalMs,
+      leastMs: (RECEIPT_INTERVALS / 2) * intervalMs,
     }
-    this.block.ms += last ? nowMs - last.atMs : 0
+    const walkerTime = this.walkerTime.note(mark, spacing)
     if (apart) return apart
-    return this.block.ms >= blockMs ? this.judge() : null
+    if (walkerTime !== null) return { fault: 'walker-time', ratio: walkerTime }
+    return this.blockMs >= blockMs ? this.judgeBirths() : null
+  }
+
+  private markOf({ colonies }: Statement, atMs: number): Mark {
+    const mark: Mark = { atMs, colonies: new Map() }
+    for (const { colony, seeding, walkerTime } of colonies) {
+      const heard = this.heard.get(colony)
+      if (heard?.seeding !== seeding) continue
+      const { x, y, weightMs, ms } = heard
+      mark.colonies.set(colony, { seeding, walkerTime: walkerTime / SUMS_SCALE, x, y, weightMs, ms })
+    }
+    return mark
   }
 
   private twoAccounts({ colonies }: Statement): ClaimFault | null {
@@ -136,51 +133,44 @@ export class ClaimAudit {
       }
     }
     this.lastApart = size > 0 ? Math.sqrt(Math.max(0, apart - noise) / size) : 0
-    return this.streak('two-accounts', this.lastApart > MOST_APART, ratio)
+    this.twoAccountsInARow = this.lastApart > MOST_APART ? this.twoAccountsInARow + 1 : 0
+    return this.twoAccountsInARow >= BAD_CLAIMS ? { fault: 'two-accounts', ratio } : null
   }
 
-  private add(before: Statement, now: Statement, orders: OrdersHistory, sinceMs: number): void {
-    const { block } = this
-    for (const claim of now.colonies) {
-      const old = before.colonies.find(
-        ({ colony, seeding }) => colony === claim.colony && seeding === claim.seeding,
-      )
-      const since = this.heard.get(claim.colony)
-      if (!old || since?.seeding !== claim.seeding || since.ms === 0) continue
-      const walkerTime = (claim.walkerTime - old.walkerTime) / SUMS_SCALE
-      block.declared += (walkerTime * since.weightMs) / since.ms
-      const found = since.x + since.y
-      block.found += found
+  private addBirths(
+    before: { statement: Statement; mark: Mark },
+    now: { statement: Statement; mark: Mark },
+    orders: OrdersHistory,
+    intervalMs: number,
+  ): void {
+    const sinceMs = before.mark.atMs - STATEMENT_AGE_INTERVALS * intervalMs
+    this.blockMs += now.mark.atMs - before.mark.atMs
+    for (const claim of now.statement.colonies) {
+      const { colony, seeding } = claim
+      const said = before.statement.colonies.find((old) => old.colony === colony && old.seeding === seeding)
+      const [from, to] = [before.mark.colonies.get(colony), now.mark.colonies.get(colony)]
+      if (!said || !from || to?.seeding !== from.seeding) continue
+      const x = to.x - from.x
+      const found = x + to.y - from.y
       // Which of its walkers it is that come says which rate counts.
-      const rates = orders.ratesSince(sinceMs, claim.colony, claim.seeding)
+      const rates = orders.ratesSince(sinceMs, colony, seeding)
       if (rates.length === 0 || found < LEAST_FOUND) continue
-      const declared = { births: claim.births - old.births, culls: claim.culls - old.culls }
-      addBirths(block, declared, rates, since.x / found, walkerTime)
+      const declared = { births: claim.births - said.births, culls: claim.culls - said.culls }
+      addBirths(this.block, declared, rates, x / found, to.walkerTime - from.walkerTime)
     }
   }
 
-  private judge(): ClaimFault | null {
+  private judgeBirths(): ClaimFault | null {
     const { block, kept } = this
-    for (const key of KEYS) kept[key] = KEPT_PER_BLOCK * kept[key] + block[key]
-    this.block = blank()
-    const { found, declared } = kept
-    const out = Math.abs(declared - found) > SURE * Math.sqrt(Math.max(declared, found))
-    const ratio = found > 0 ? declared / found : declared > 0 ? Number.POSITIVE_INFINITY : 1
-    const walkerTime = this.streak(
-      'walker-time',
-      out && (ratio > MOST_WALKER_TIME || ratio < LEAST_WALKER_TIME),
-      ratio,
-    )
-    const births = birthsOff(kept)
-    return walkerTime ?? this.streak('births', births !== 1, births)
-  }
-
-  private streak(
-    fault: 'walker-time' | 'births' | 'two-accounts',
-    isBad: boolean,
-    ratio: number,
-  ): ClaimFault | null {
-    this.bad[fault] = isBad ? this.bad[fault] + 1 : 0
-    return this.bad[fault] >= (fault === 'births' ? BAD_BIRTHS : BAD_CLAIMS) ? { fault, ratio } : null
+    for (const key of BIRTH_KEYS) kept[key] = KEPT_PER_BLOCK * kept[key] + block[key]
+    this.block = noBirths()
+    this.blockMs = 0
+    const ratio = birthsOff(kept)
+    this.badBirths = ratio === 1 ? 0 : this.badBirths + 1
+    return this.badBirths >= BAD_BIRTHS ? { fault: 'births', ratio } : null
   }
 }
+
+const BIRTH_KEYS = ['net', 'turnover', 'least', 'most'] as const
+/** Walker-time is judged over so many receipts. */
+const BASE_RECEIPTS = 4

@@ -28,6 +28,12 @@ export const GAP_TICKS = MOST_TICKS_AT_ONCE
 export const GAP_AT_LEAST_MS = 150
 /** Where more than this share of the neighbours, and more than one, would be refused, the fault is more likely here. */
 export const MOST_REFUSED = 0.25
+/**
+ * What one agent alone found ends by itself, at first after this: the collector, which hears of it from all neighbours, leaves liars
+ * out for good. Found again, it lasts twice as long each time.
+ */
+export const REFUSED_FOR_MS = 600_000
+export const MOST_REFUSED_FOR_MS = 86_400_000
 /** Ratios say how far off, not more: a figure over nothing found is said as this. */
 export const MOST_RATIO = 1_000
 
@@ -65,15 +71,21 @@ export class NeighbourAudit {
   private readonly orders = new OrdersHistory()
   private pace: Pace = { tickMs: 0, intervalMs: 0 }
   private listed: ReadonlySet<string> = new Set()
+  private readonly refused = new Map<string, { incarnation: string; forMs: number; untilMs: number }>()
   /** When any neighbour's statement last came. */
   private statementAtMs = Number.NEGATIVE_INFINITY
 
-  /** @returns peers that orders have ceased to list: readmitted, with a clean sheet */
+  /** @returns peers that are readmitted, with a clean sheet: orders have ceased to list them, or their time is over */
   noteOrders(orders: Orders, ageMs: number, nowMs: number): string[] {
     this.orders.note(orders, ageMs, nowMs)
     this.pace = orders.pace
     const listed = new Set((orders.shut ?? []).map(({ agentId }) => agentId))
     const readmitted = [...this.listed].filter((peer) => !listed.has(peer))
+    for (const peer of readmitted) this.refused.delete(peer)
+    for (const [peer, { untilMs }] of this.refused) {
+      if (nowMs >= untilMs && this.peers.get(peer)?.standing) readmitted.push(peer)
+      if (nowMs >= untilMs + MOST_REFUSED_FOR_MS) this.refused.delete(peer)
+    }
     for (const peer of readmitted) this.peers.delete(peer)
     this.listed = listed
     for (const [peer, { heardAtMs, standing }] of this.peers)
@@ -107,14 +119,15 @@ export class NeighbourAudit {
     const linkTimePerSecond = this.orders.linkTimePerSecond(frame.ordersSequence, sends, nowMs)
     const step = { elapsedMs, linkTimePerSecond, weight, blockMs: this.blockMs }
     const mean = record.arrivals.note(parts, step)
-    if (mean !== null) return this.stand(record, { peer, fault: 'mean', ratio: mean })
+    if (mean !== null) return this.stand(record, { peer, fault: 'mean', ratio: mean }, nowMs)
     if (!newest) return null
     const acknowledged = record.acknowledgements.noteHeard(frame.heardNumber, frame.colonies)
-    if (acknowledged !== null) return this.stand(record, { peer, fault: 'ledger', ratio: acknowledged })
+    if (acknowledged !== null)
+      return this.stand(record, { peer, fault: 'ledger', ratio: acknowledged }, nowMs)
     const claim = this.hearStatement(record, peer, frame, nowMs)
-    if (claim) return this.stand(record, { peer, ...claim })
+    if (claim) return this.stand(record, { peer, ...claim }, nowMs)
     const isMissing = this.isReceiptMissing(record, frame, elapsedMs, nowMs)
-    return isMissing ? this.stand(record, { peer, fault: 'no-receipt', ratio: 0 }) : null
+    return isMissing ? this.stand(record, { peer, fault: 'no-receipt', ratio: 0 }, nowMs) : null
   }
 
   private hearStatement(record: PeerRecord, peer: string, frame: Frame, nowMs: number): ClaimFault | null {
@@ -136,7 +149,7 @@ export class NeighbourAudit {
   }
 
   /** @returns null where too many would be refused: their evidence is dropped instead */
-  private stand(record: PeerRecord, complaint: Complaint): Complaint | null {
+  private stand(record: PeerRecord, complaint: Complaint, nowMs: number): Complaint | null {
     const standing = [...this.peers.values()].filter((known) => known.standing !== null).length
     if (standing + 1 > Math.max(1, MOST_REFUSED * this.peers.size)) {
       startAfresh(record)
@@ -144,6 +157,11 @@ export class NeighbourAudit {
     }
     const ratio = Number.isNaN(complaint.ratio) ? MOST_RATIO : complaint.ratio
     record.standing = { ...complaint, ratio: Math.max(-MOST_RATIO, Math.min(MOST_RATIO, ratio)) }
+    const { incarnation } = record
+    const before = this.refused.get(complaint.peer)
+    const forMs =
+      before?.incarnation === incarnation ? Math.min(MOST_REFUSED_FOR_MS, 2 * before.forMs) : REFUSED_FOR_MS
+    this.refused.set(complaint.peer, { incarnation, forMs, untilMs: nowMs + forMs })
     return record.standing
   }
 
@@ -182,7 +200,7 @@ export class NeighbourAudit {
     if (!record) return null
     const { arrivals, claims } = record
     const { last, longRatio } = arrivals
-    return { arrivals: last, longRatio, claims: claims.kept, apart: claims.lastApart }
+    return { arrivals: last, longRatio, births: claims.kept, apart: claims.lastApart }
   }
 }
 

@@ -1,7 +1,7 @@
 import { type Orders, ordersLifeMs } from '../orders'
 
 /** Orders remembered: neighbours follow newer or older ones by a few. */
-export const ORDERS_KEPT = 12
+export const ORDERS_KEPT = 24
 
 /** Orders come once per report interval; a longer gap than this share of their life means that some were missed. */
 export const MOST_GAP = 0.9

@@ -16,7 +16,7 @@ export function windowIntervals(since: number): number {
 /**
  * Half-width at least, as a share of the reading. Found on nine graphs under churn, held on thirteen others: `npm run soak -- interval`.
  */
-export const LEAST_HALF_WIDTH = 0.0003
+export const LEAST_HALF_WIDTH = 0.0006
 /** Share by which the truth may lie further down while a reading is settling. */
 export const SETTLING_ALLOWANCE = 0.1
 

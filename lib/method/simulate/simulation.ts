@@ -6,20 +6,10 @@ import type { Orders } from '../orders'
 import { PACES } from '../pace'
 import { forkRandom, type Random } from '../random'
 import type { Report } from '../report'
-import { statementOf } from '../statement'
+import { RECEIPT_INTERVALS, statementOf } from '../statement'
 import { EventQueue } from './event-queue'
-import { bentFrame, bentOrders, bentReport, type Lie } from './lie'
-
-interface SimulatedLink {
-  a: number
-  b: number
-  delayMs: number
-  weight: number
-  /** Share of frames lost, in each direction. */
-  loss: number
-  /** Lives of both ends in which one has refused the other. */
-  shut: string | null
-}
+import { bentFrame, bentOrders, bentReport } from './lie'
+import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink } from './parts'
 
 export interface SimulationComponents {
   random: Random
@@ -47,21 +37,6 @@ export interface SimulationInit {
   audits?: boolean
   /** Wall time of the virtual clock's 0. */
   startAtMs?: number
-}
-
-interface SimulatedAgent {
-  node: WalkNode
-  random: Random
-  /** Ticks take this many times their nominal length. */
-  slowness: number
-  stalledUntilMs: number
-  /** Lives, but does not reach the collector. */
-  silent: boolean
-  lie: Lie | null
-  stopped: boolean
-  /** Bumped on every restart, so that a former life's timers end. */
-  life: number
-  last: Snapshot['agents'][number]['last']
 }
 
 /**
@@ -119,6 +94,7 @@ export class Simulation {
       random,
       slowness: 1,
       stalledUntilMs: 0,
+      receiptDelayMs: 0,
       silent: false,
       lie: null,
       stopped: false,
@@ -260,6 +236,22 @@ export class Simulation {
     }
   }
 
+  /** Connects again what is refused by neither end any more. */
+  private reopen(index: number): void {
+    for (const link of this.links.values()) {
+      const { a, b, shut, weight } = link
+      if ((a !== index && b !== index) || shut !== this.livesOf(link)) continue
+      const [one, other] = [this.agents[a]!.node, this.agents[b]!.node]
+      const isRefused =
+        one.isLeftOut(other.agentId, other.incarnation) || other.isLeftOut(one.agentId, one.incarnation)
+      const isListed = this.leftOut.includes(one.agentId) || this.leftOut.includes(other.agentId)
+      if (isRefused || isListed) continue
+      link.shut = null
+      this.connect(a, b)
+      this.weaken(a, b, weight)
+    }
+  }
+
   private startTimers(index: number): void {
     const { pace } = this.init.settings
     const { life, random } = this.agents[index]!
@@ -301,7 +293,7 @@ export class Simulation {
       if (receiver.stalledUntilMs > this.nowMs) this.queue.push(receiver.stalledUntilMs, arrive)
       else {
         const outcome = receiver.node.receive(sender.agentId, sender.incarnation, frame, this.nowMs)
-        if (outcome.kind === 'refuse') this.refuse(to, from, outcome.reason)
+        if (outcome.kind === 'refuse') this.refuse(to, from, reasonOf(outcome))
         else if (frame.orders) this.honourShut(to, frame.orders.orders)
       }
     }
@@ -339,14 +331,10 @@ export class Simulation {
       agent.last = { report, receivedAtMs: this.nowMs }
     }
     const current = this.orders
-    if (current && this.init.speaksTwo) {
-      this.queue.push(this.nowMs + delayMs, () => {
-        if (agent.life === life)
-          agent.node.setStatement({
-            statement: statementOf(agent.node.agentId, report),
-            key: '',
-            receipt: '',
-          })
+    if (current && this.init.speaksTwo && report.number % RECEIPT_INTERVALS === 0) {
+      const statement = statementOf(agent.node.agentId, report)
+      this.queue.push(this.nowMs + delayMs + agent.receiptDelayMs, () => {
+        if (agent.life === life) agent.node.setStatement({ statement, key: '', receipt: '' })
       })
     }
     if (!current || this.random.uniform() < this.init.ordersLoss) return
@@ -354,7 +342,9 @@ export class Simulation {
     this.queue.push(this.nowMs + delayMs, () => {
       if (agent.life !== life) return
       const orders = bentOrders(current.orders!.orders, agent.lie)
-      if (agent.node.adopt(orders, ageMs, this.nowMs)) this.honourShut(index, orders)
+      if (!agent.node.adopt(orders, ageMs, this.nowMs)) return
+      this.honourShut(index, orders)
+      this.reopen(index)
     })
   }
 
@@ -392,8 +382,4 @@ export class Simulation {
     this.estimate = estimate
     this.onEstimate?.(estimate)
   }
-}
-
-function linkKey(a: number, b: number): string {
-  return a < b ? `${a}-${b}` : `${b}-${a}`
 }

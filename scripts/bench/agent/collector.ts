@@ -1,6 +1,7 @@
 import { randomBytes } from 'node:crypto'
 import { createServer, type IncomingMessage, type Server } from 'node:http'
 import type { AddressInfo } from 'node:net'
+import { gunzipSync } from 'node:zlib'
 import {
   type ControlSettings,
   type ControlState,
@@ -33,7 +34,8 @@ interface Joined {
   key: string
   joinedAtMs: number
   last: JoinedAgent['last']
-  reportBytes: number[]
+  /** Of each report: its JSON, and as it came. */
+  reportBytes: { plain: number; wire: number }[]
 }
 
 export interface BenchCollectorInit {
@@ -67,7 +69,10 @@ export class BenchCollector {
     this.control = initialControl(performance.now(), PACES[init.pace])
     this.server = createServer((request, response) => {
       this.answer(request).then(
-        (reply) => response.writeHead(200, { 'content-type': 'application/json' }).end(JSON.stringify(reply)),
+        (reply) =>
+          response
+            .writeHead(200, { 'content-type': 'application/json', 'accept-encoding': 'gzip' })
+            .end(JSON.stringify(reply)),
         (error: unknown) => response.writeHead(500).end(String(error)),
       )
     })
@@ -96,14 +101,18 @@ export class BenchCollector {
     const chunks: Buffer[] = []
     for await (const chunk of request) chunks.push(chunk)
     const body = Buffer.concat(chunks)
-    const content: unknown = JSON.parse(body.toString('utf8'))
+    const plain = request.headers['content-encoding'] === 'gzip' ? gunzipSync(body) : body
+    const content: unknown = JSON.parse(plain.toString('utf8'))
     switch (request.url) {
       case '/api/agent/enrol':
         return this.enrol(content)
       case '/api/agent/session':
         return this.session(content)
       case '/api/agent/report':
-        return this.report(content, request.headers.authorization?.slice('Bearer '.length) ?? '', body.length)
+        return this.report(content, request.headers.authorization?.slice('Bearer '.length) ?? '', {
+          plain: plain.length,
+          wire: body.length,
+        })
       default:
         throw new Error(`There is nothing at ${request.url}.`)
     }
@@ -146,7 +155,11 @@ export class BenchCollector {
     }
   }
 
-  private async report(content: unknown, token: string, bytes: number): Promise<ReportReply> {
+  private async report(
+    content: unknown,
+    token: string,
+    bytes: Joined['reportBytes'][number],
+  ): Promise<ReportReply> {
     const { protocol, wantsReceipt, relayed: _, ...report } = reportRequestSchema.parse(content)
     const agentId = this.tokens.get(token) ?? ''
     const joined = this.of(agentId)

@@ -3,15 +3,17 @@ import { figuresOf } from './process-figures'
 
 export interface Measured {
   seconds: number
-  /** Of one core. */
+  /** Of one core; and of the warm-up before, in which much is still being compiled. */
   cpuShare: number
+  warmUpCpuShare: number
   rssMib: number
   peakRssMib: number
   /** Both ways together, per link; null where not counted. */
   bytesPerLinkSecond: number | null
-  /** Largest and mean size of the reports. */
+  /** Sizes of the reports' bodies as they crossed the wire, and the largest as JSON. */
   reportBytesMost: number
   reportBytesMean: number
+  reportJsonBytesMost: number
   ticksPerSecond: number | null
   /** Share of ticks that came more than a whole tick late. */
   lateShare: number | null
@@ -21,8 +23,11 @@ export interface Measured {
 
 /** Lets the overlay warm up, then watches the measured agent. */
 export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: number): Promise<Measured> {
-  await delay(warmUpMs)
   const { proxy, collector, pid } = overlay
+  const linked = figuresOf(pid)
+  const linkedAtMs = performance.now()
+  await delay(warmUpMs)
+  const warmUpSeconds = (performance.now() - linkedAtMs) / 1000
   const joined = collector.find(MEASURED)
   const before = figuresOf(pid)
   const healthBefore = joined.last?.report.node.health
@@ -45,11 +50,13 @@ export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: numbe
   return {
     seconds,
     cpuShare: (after.cpuSeconds - before.cpuSeconds) / seconds,
+    warmUpCpuShare: (before.cpuSeconds - linked.cpuSeconds) / warmUpSeconds,
     rssMib,
     peakRssMib: after.peakRssMib,
     bytesPerLinkSecond: bytes === 0 ? null : bytes / seconds / links,
-    reportBytesMost: Math.max(...joined.reportBytes),
-    reportBytesMean: joined.reportBytes.reduce((sum, size) => sum + size, 0) / joined.reportBytes.length,
+    reportBytesMost: Math.max(...joined.reportBytes.map(({ wire }) => wire)),
+    reportBytesMean: joined.reportBytes.reduce((sum, { wire }) => sum + wire, 0) / joined.reportBytes.length,
+    reportJsonBytesMost: Math.max(...joined.reportBytes.map(({ plain }) => plain)),
     ticksPerSecond: ticks === null ? null : ticks / seconds,
     lateShare: ticks === null || late === null ? null : late / ticks,
     links,

@@ -20,6 +20,8 @@ export interface NamespacedAgentsInit {
   nodes: readonly NamespacedNode[]
 }
 
+const TAIL_LINES = 12
+
 /** The one-file agent beside every node, each a process in the node's namespace. */
 export class NamespacedAgents {
   readonly #lab: NamespaceLab
@@ -48,7 +50,9 @@ export class NamespacedAgents {
   /** What has ended that should run, and the last words of all, for a failure. */
   tail(): string {
     return [...this.#running]
-      .map(([name, child]) => `${name} ${child.ended ?? 'runs'}: ${child.lines.slice(-4).join('\n')}`)
+      .map(
+        ([name, child]) => `${name} ${child.ended ?? 'runs'}: ${child.lines.slice(-TAIL_LINES).join('\n')}`,
+      )
       .join('\n')
   }
 

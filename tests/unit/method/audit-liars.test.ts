@@ -5,8 +5,10 @@
 import { describe, expect, it, vi } from 'vitest'
 import { edgesOf } from '@/lib/method/graph'
 import { randomRegular, twoClusters } from '@/lib/method/graphs'
+import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { auditedOn, LIES, tryLie } from '../../support/liars'
+import { STEADY } from '../../support/overlays'
 
 vi.setConfig({ testTimeout: 60_000 })
 const clusters = twoClusters({ perSide: 6, degree: 3, links: 2 }, createRandom('few'))
@@ -18,11 +20,13 @@ describe('a liar on the cut', () => {
     ['z̄ ×5 to all', 40, 'declares'],
     ['z̄ ×0.1 to all', 40, 'declares'],
     ['z̄ of the other sign to all', 40, 'declares'],
-    ['z̄ ×5 to the collector alone', 40, 'one thing'],
+    ['z̄ ×5 to the collector alone', 40, 'counts itself'],
+    ['z̄ ×5 and counts cooked to match, to the collector alone', 60, 'one thing'],
     ['z̄ ×5, all counts cooked to match', 60, 'neighbours'],
     ['births denied', 10, 'do not add up'],
     ['moments 0', 10, 'moments'],
     ['walker-time ×3', 20, 'time does not fit'],
+    ['shows no receipt', 150, 'no receipt'],
     ['acknowledges half of what comes', 30, 'acknowledges fewer'],
   ])('is left out for %s within %i s, and the reading is right afterwards', (name, seconds, because) => {
     const outcome = tryLie({
@@ -55,13 +59,29 @@ describe('where links are not named', () => {
     const outcome = tryLie({ graph: regular, liar: 3, lie, disclosure: 'sealed', settleMs: 30_000 })
     expect(outcome.refusedMs).toBeLessThanOrEqual(60_000)
     expect(outcome.detectedMs).toBeLessThanOrEqual(90_000)
-    expect(outcome.because).toBeNull()
     expect(Math.abs(outcome.worst - 1)).toBeLessThan(0.05)
     expect(outcome.wronged).toEqual([])
   })
 })
 
 describe('honest trouble', () => {
+  it('accuses nobody of one half whose receipts come late for a while, again and again', () => {
+    const settings = { ...STEADY, pace: PACES.brisk, disclosure: 'named' as const }
+    const { simulation, because } = auditedOn(clusters, 'late receipts', { settings })
+    const half = simulation.agents.slice(6)
+    simulation.run(40_000)
+    for (let turn = 1; turn <= 8; turn++) {
+      for (const agent of half) agent.receiptDelayMs = 10_000
+      simulation.run(turn * 3_000)
+      for (const agent of half) agent.receiptDelayMs = 0
+      // Frames that stop for half a second make the neighbours begin anew, with a receipt that is old already.
+      for (const agent of half) agent.stalledUntilMs = simulation.nowMs + 600
+      simulation.run(25_000)
+    }
+    expect(because).toEqual([])
+    expect(simulation.refusals).toEqual([])
+  })
+
   it('accuses nobody: slow, stalled, restarted agents, a lossy link, a weakened one and a lost crossing link', () => {
     const { simulation, because } = auditedOn(clusters, 'honest')
     simulation.agents[1]!.slowness = 3
