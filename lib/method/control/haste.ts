@@ -49,10 +49,13 @@ export function isHasty(
 /** So long after a change the colony seeded at it should have grown; where it has not, more ω is worth its price. */
 export const WAIT_INTERVALS = 8
 const COLD_INTERVALS = 25
+/** And where λ₂ is no smaller than this share of the mean weighted degree, what ω stirs up is no more than noise. */
+export const STURDY_SHARE = 0.25
 
 /**
  * Whether ω may rise to what the loop bears in haste. The rise itself stirs the walkers up (links fill with more of them), by 10 % for some
- * seconds, which is more than the loss of a link does where one cut is clearly weakest: such a reading is right before that.
+ * seconds, which is more than the loss of a link does where one cut is clearly weakest: such a reading is right before that. Without
+ * the rise a complete graph of 12 nodes read 20 % high for minutes after it had lost a link.
  */
 export function mayRise(
   {
@@ -60,12 +63,15 @@ export function mayRise(
     changedAtMs,
     young,
     isHasty,
-  }: Pick<ControlState, 'coldSinceMs' | 'changedAtMs' | 'young' | 'isHasty'>,
+    meanWeightedDegree,
+  }: Pick<ControlState, 'coldSinceMs' | 'changedAtMs' | 'young' | 'isHasty' | 'meanWeightedDegree'>,
+  lambda2: number,
   { intervalMs }: Pace,
   atMs: number,
 ): boolean {
   if (!isHasty || changedAtMs === undefined || changedAtMs <= coldSinceMs + COLD_INTERVALS * intervalMs)
     return true
+  if (lambda2 >= STURDY_SHARE * meanWeightedDegree) return true
   const last = young?.ratios[young.ratios.length - 1]
   return atMs - changedAtMs >= WAIT_INTERVALS * intervalMs && last !== undefined && last.ratio > GROWN_RATIO
 }

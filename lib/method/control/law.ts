@@ -42,8 +42,8 @@ export function birthRates(input: BirthRateInput): { birthRateX: number; birthRa
   const replaced = deathRate / Math.max(0.5, 1 - input.tickLinkTime * deathRate)
   const back = clip((RETURN_RATE * Math.log(target / mean)) / t, RETURN_RATE / t)
   const imbalance = populationX - populationY
-  // Births in proportion to a type's number would widen a large imbalance faster than it is steered.
-  const evenness = 1 - Math.abs(imbalance) / (populationX + populationY)
+  // Births in proportion to a type's number would widen an imbalance of more than half faster than it is steered.
+  const evenness = Math.min(1, 2 * (1 - Math.abs(imbalance) / (populationX + populationY)))
   const common = evenness * clip(replaced + back, MOST_COMMON / t)
   const gain = Math.max(0, common) + IMBALANCE_RATE / t
   return {

@@ -26,7 +26,11 @@ export function nextStep(
   const present = paceNow(control, settings)
   const linkTimePerSecond = nextLinkTimePerSecond(control.linkTimePerSecond, lambda, present)
   if (linkTimePerSecond === control.linkTimePerSecond) return null
-  if (linkTimePerSecond > control.linkTimePerSecond && !mayRise(control, settings.pace, now.atMs)) return null
+  if (
+    linkTimePerSecond > control.linkTimePerSecond &&
+    !mayRise(control, lambda ?? 0, settings.pace, now.atMs)
+  )
+    return null
   const heardByMs = HEARD_BY_INTERVALS * paceNow(last, settings).intervalMs
   return { linkTimePerSecond, fromAtMs: now.atMs + heardByMs }
 }

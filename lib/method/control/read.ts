@@ -106,7 +106,13 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const interval =
     lambda2 === null || !subspace
       ? null
-      : intervalOf({ lambda2, trend, fall: fallWithMore(subspace, lambda2), settling })
+      : intervalOf({
+          lambda2,
+          trend,
+          fall: fallWithMore(subspace, lambda2),
+          settling,
+          near: singleCut === false,
+        })
   if (settling || lambda2 === null) next.unsettledAtMs = now.atMs
   next.next = control.next ?? nextStep(next, input.control, slowest, input)
   const answers =

@@ -189,9 +189,9 @@ describe('small words', () => {
       firstReadingSeconds('steady'),
       firstReadingSeconds('brisk'),
     ]).toEqual([
-      { low: 90, high: 250 },
-      { low: 18, high: 50 },
-      { low: 9, high: 25 },
+      { low: 50, high: 250 },
+      { low: 10, high: 50 },
+      { low: 5, high: 25 },
     ])
     expect([staleAfterMs('steady'), staleAfterMs('calm')]).toEqual([15_000, 60_000])
   })

@@ -93,6 +93,7 @@ describe('the collector', () => {
   })
 
   it('leaves out nobody while many reports are late', () => {
+    // In haste agents report four times as often: so many have to be lost for them to be late.
     const { simulation } = auditedOn(complete(12), 'late', { reportLoss: 0.93 })
     lieOf(simulation, [4])
     expect(simulation.leftOut).toEqual([])

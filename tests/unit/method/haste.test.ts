@@ -64,13 +64,20 @@ describe('haste', () => {
 
   it('lets ω rise at once from cold, after a change only where the new colony does not grow by itself', () => {
     const young = (ratio: number) => ({ seeding: 9, ratios: [{ atMs: 0, ratio }] })
-    const changed = { coldSinceMs: 0, changedAtMs: 100_000, isHasty: true, young: young(3) }
-    expect(mayRise({ coldSinceMs: 0, isHasty: true }, pace, 3_000)).toBe(true)
-    expect(mayRise(changed, pace, 104_000)).toBe(false)
-    expect(mayRise(changed, pace, 116_000)).toBe(true)
-    expect(mayRise({ ...changed, young: young(1.2) }, pace, 116_000)).toBe(false)
-    expect(mayRise({ ...changed, young: null }, pace, 116_000)).toBe(false)
-    expect(mayRise({ ...changed, isHasty: false }, pace, 130_000)).toBe(true)
+    const changed = {
+      coldSinceMs: 0,
+      changedAtMs: 100_000,
+      isHasty: true,
+      young: young(3),
+      meanWeightedDegree: 6,
+    }
+    expect(mayRise({ coldSinceMs: 0, isHasty: true, meanWeightedDegree: 6 }, 0.2, pace, 3_000)).toBe(true)
+    expect(mayRise(changed, 0.2, pace, 104_000)).toBe(false)
+    expect(mayRise(changed, 0.2, pace, 116_000)).toBe(true)
+    expect(mayRise(changed, 2, pace, 104_000)).toBe(true)
+    expect(mayRise({ ...changed, young: young(1.2) }, 0.2, pace, 116_000)).toBe(false)
+    expect(mayRise({ ...changed, young: null }, 0.2, pace, 116_000)).toBe(false)
+    expect(mayRise({ ...changed, isHasty: false }, 0.2, pace, 130_000)).toBe(true)
   })
 })
 

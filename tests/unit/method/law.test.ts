@@ -36,12 +36,17 @@ describe('birth rates', () => {
       { birthRateX: 0.4 / T, birthRateY: 0.4 / T },
     ],
     [
-      'steer the imbalance to 0: the richer type is born less, and both the less the larger it is',
+      'steer the imbalance to 0: the richer type is born less',
       { populationX: 1200, populationY: 800 },
       {
-        birthRateX: 0.16 - ((0.16 + 0.25 / T) * 400) / 2400,
-        birthRateY: 0.16 + ((0.16 + 0.25 / T) * 400) / 1600,
+        birthRateX: 0.2 - ((0.2 + 0.25 / T) * 400) / 2400,
+        birthRateY: 0.2 + ((0.2 + 0.25 / T) * 400) / 1600,
       },
+    ],
+    [
+      'are fewer for both types where one is nearly gone',
+      { populationX: 1800, populationY: 200 },
+      { birthRateX: 0.08 - ((0.08 + 0.25 / T) * 1600) / 3600, birthRateY: 0.6 / T },
     ],
     [
       'cull the richer type when it is much too many',

@@ -73,22 +73,29 @@ describe('a reading', () => {
 describe('the interval', () => {
   const trend = { perMs: 0, scatter: 0.01 }
   it('is 1.645 standard deviations either way, and a little', () => {
-    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: false })
+    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
     expect(high - 1).toBeCloseTo(0.01645 + LEAST_HALF_WIDTH, 12)
     expect(1 - low).toBeCloseTo(high - 1, 12)
   })
 
   it('reaches further down where more colonies would bring the reading down, and not up', () => {
-    const plain = intervalOf({ lambda2: 1, trend, fall: 0, settling: false })
-    const near = intervalOf({ lambda2: 1, trend, fall: 0.02, settling: false })
+    const plain = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
+    const near = intervalOf({ lambda2: 1, trend, fall: 0.02, settling: false, near: false })
     expect(near.high).toBe(plain.high)
     expect(plain.low - near.low).toBeCloseTo(0.02, 12)
   })
 
+  it('reaches further up where other modes are about as slow: the smallest of several values is picked', () => {
+    const plain = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
+    const near = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: true })
+    expect(near.low).toBe(plain.low)
+    expect(near.high - plain.high).toBeCloseTo(0.004, 12)
+  })
+
   it('is wide while settling, and never below 0', () => {
-    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: true })
+    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: true, near: false })
     expect(low).toBeLessThan(0.9)
     expect(high).toBeGreaterThan(1.05)
-    expect(intervalOf({ lambda2: 0.001, trend, fall: 0, settling: true }).low).toBe(0)
+    expect(intervalOf({ lambda2: 0.001, trend, fall: 0, settling: true, near: false }).low).toBe(0)
   })
 })
