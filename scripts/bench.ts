@@ -1,11 +1,13 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
 import { benchAgent } from './bench/agent'
+import { benchIngest } from './bench/ingest'
 import { benchMethod } from './bench/method'
 
 type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
 
 const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
+  ingest: benchIngest,
   method: benchMethod,
 }
 

@@ -1,7 +1,6 @@
 import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
-import { assertStorable } from '@/lib/http/storable'
 import type { Report } from '@/lib/method/report'
 import type { PassGrant } from '@/lib/protocol'
 import { enterAway } from './away'
@@ -74,13 +73,6 @@ export class Ingest {
     }
     // Whoever has been refused as a caller does not ask for the answer as well.
     entry.answer.promise.catch(() => undefined)
-    try {
-      // Relayed ones are looked at each by itself.
-      assertStorable({ ...request, relayed: null })
-    } catch (error) {
-      refuse(entry, error)
-      return { caller: entry.caller.promise, answer: entry.answer.promise }
-    }
     this.#waiting.push(entry)
     if (this.#waiting.length >= BATCH_MOST) this.#flush()
     else this.#cancel ??= this.#components.clock.after(BATCH_MS, () => this.#flush())

@@ -9,6 +9,7 @@ import { slugFrom } from '@/lib/data/teams'
 import { reconnectDelayMs } from '@/lib/db/listener'
 import { monthsAround } from '@/lib/db/partitions'
 import { AppError } from '@/lib/http/app-error'
+import { askedOf } from '@/lib/http/asked'
 import { readJson } from '@/lib/http/body'
 import { invalidInput, problemResponse, toProblem } from '@/lib/http/problem'
 
@@ -127,13 +128,13 @@ describe('a JSON body', () => {
     headers: Record<string, string> = { 'content-type': 'application/json' },
   ) => new Request('http://t/', { method: 'POST', body, headers, duplex: 'half' } as RequestInit)
 
-  it('is read', async () => expect(await readJson(post('{"a":1}'))).toEqual({ a: 1 }))
+  it('is read', async () => expect(await readJson(askedOf(post('{"a":1}')))).toEqual({ a: 1 }))
   it('must be JSON', async () =>
-    await expect(readJson(post('{"a":'))).rejects.toMatchObject({ code: 'malformed-json' }))
+    await expect(readJson(askedOf(post('{"a":')))).rejects.toMatchObject({ code: 'malformed-json' }))
   it('must be there', async () =>
-    await expect(readJson(post(null))).rejects.toMatchObject({ code: 'malformed-json' }))
+    await expect(readJson(askedOf(post(null)))).rejects.toMatchObject({ code: 'malformed-json' }))
   it('must say that it is JSON', async () =>
-    await expect(readJson(post('{}', { 'content-type': 'text/plain' }))).rejects.toMatchObject({
+    await expect(readJson(askedOf(post('{}', { 'content-type': 'text/plain' })))).rejects.toMatchObject({
       code: 'wrong-media-type',
     }))
 
@@ -145,7 +146,7 @@ describe('a JSON body', () => {
         controller.enqueue(new Uint8Array(1000).fill(32))
       },
     })
-    await expect(readJson(post(endless), 10_000)).rejects.toMatchObject({ code: 'too-large' })
+    await expect(readJson(askedOf(post(endless)), 10_000)).rejects.toMatchObject({ code: 'too-large' })
     expect(sent).toBeLessThan(20_000)
   })
 

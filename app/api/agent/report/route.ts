@@ -5,7 +5,7 @@ import { authorise } from '@/lib/http/call'
 import { route } from '@/lib/http/route'
 import { MAX_REPORT_BYTES, reportRequestSchema } from '@/lib/protocol'
 
-const tickets = new WeakMap<Request, Ticket>()
+const tickets = new WeakMap<object, Ticket>()
 
 /** Who reports and what is reported go to the database together, so the proof is a part of taking it in. */
 export const POST = route(
