@@ -2,6 +2,7 @@
 import { benchAgent } from './bench/agent'
 import { benchIngest } from './bench/ingest'
 import { benchMethod } from './bench/method'
+import { benchScale } from './bench/scale'
 
 type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
 
@@ -9,6 +10,7 @@ const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
   ingest: benchIngest,
   method: benchMethod,
+  scale: benchScale,
 }
 
 const [name, ...args] = process.argv.slice(2)

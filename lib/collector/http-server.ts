@@ -94,7 +94,10 @@ class AskedByMessage implements Asked {
 
 async function send(response: ServerResponse, answer: Response | PlainAnswer): Promise<void> {
   if (!(answer instanceof Response)) {
-    response.writeHead(answer.status, answer.headers).end(answer.body ?? undefined)
+    // With its length said, head and body leave in one piece.
+    const body = answer.body ?? ''
+    const length = answer.body === null ? {} : { 'content-length': Buffer.byteLength(body) }
+    response.writeHead(answer.status, { ...answer.headers, ...length }).end(body)
     return
   }
   response.writeHead(answer.status, Object.fromEntries(answer.headers))
