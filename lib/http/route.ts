@@ -35,6 +35,8 @@ export interface RouteSpec<P extends Schema, Q extends Schema, B extends Schema>
   maxBytes?: number
   /** Status of a plain result; default 200. */
   status?: number
+  /** The call leaves its entity manager alone. */
+  withoutManager?: boolean
   /** In place of cookie and bearer token: proves who calls from the parsed request, or throws an AppError. */
   authenticate?: (em: EntityManager, input: RouteInput<P, Q, B>, now: Date) => Promise<Caller>
 }
@@ -74,6 +76,7 @@ export function route<
       const value = await perform(runtime, {
         action,
         facts,
+        withoutManager: spec.withoutManager,
         authenticate: async (em, now) => {
           if (spec.authenticate) return spec.authenticate(em, await parsed(), now)
           refuseForeign(action, facts)

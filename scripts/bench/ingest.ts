@@ -108,7 +108,6 @@ async function startWeb(
     NEXT_TELEMETRY_DISABLED: '1',
     DATABASE_URL: database.url,
     THINSPAN_DIST_DIR: TEST_DIST_FOLDER,
-    THINSPAN_SECRET: 'of the bench, which nobody signs in to',
   })
   const healthy = untilHealthy(`${url}/api/health`, { ended: () => null, patienceMs: HEALTHY_MS, signal })
   await add(

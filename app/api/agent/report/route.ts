@@ -13,6 +13,7 @@ export const POST = route(
   {
     body: reportRequestSchema,
     maxBytes: MAX_REPORT_BYTES,
+    withoutManager: true,
     authenticate: async (_em, { body, request, facts }) => {
       if (!facts.bearer)
         throw new AppError('bad-token', 'Send the session token as "Authorization: Bearer …".')
