@@ -120,6 +120,7 @@ function printRow(row: Row, seconds: number, print: Print): void {
   print(
     `${String(row.agents).padStart(6)}  ${row.pace.padEnd(6)} ${(row.due / seconds).toFixed(0).padStart(10)} ${percent(row.answeredWithinInterval).padStart(8)} ${String(row.failed).padStart(8)} ${row.p50Ms.toFixed(0).padStart(7)} ${row.p99Ms.toFixed(0).padStart(7)}  ${orders.padStart(23)}  ${`${row.rounds} of ${row.roundsDue.toFixed(0)}`.padEnd(9)} ${String(row.readings).padStart(9)}`,
   )
+  if (row.failure !== null) print(`        failed, such as: ${row.failure}`)
   const who = ['collector', 'database', 'agents'] as const
   const told = who.map(
     (name) => `${name} ${row.cpu[name].toFixed(2)} of a core, ${row.rssMib[name].toFixed(0)} MiB`,

@@ -36,6 +36,8 @@ export const walkersResultSchema = z.object({
   due: z.number(),
   answeredWithinInterval: z.number(),
   failed: z.number(),
+  /** One of them, where there were any. */
+  failure: z.string().nullable(),
   p50Ms: z.number(),
   p99Ms: z.number(),
   ordersOnTime: z.number(),
@@ -62,6 +64,7 @@ async function run(job: WalkersJob): Promise<WalkersResult> {
   }
   const result = { due: 0, within: 0, failed: 0, onTime: 0, oldestOrdersMs: 0 }
   const times: number[] = []
+  let failure: string | null = null
   let isMeasured = false
   const stopping = new AbortController()
   const { signal } = stopping
@@ -101,7 +104,8 @@ async function run(job: WalkersJob): Promise<WalkersResult> {
         maxReplyBytes: MOST_REPLY_BYTES,
       })
       const tookMs = performance.now() - dueAtMs
-      if (reply.status !== 200 || reply.text === null) throw new Error(`Status ${reply.status}`)
+      if (reply.status !== 200 || reply.text === null)
+        throw new Error(`${reply.status} ${reply.text?.slice(0, 200)}`)
       const { signedOrders, ordersAgeMs } = reportReplySchema.parse(JSON.parse(reply.text))
       if (counts) {
         times.push(tookMs)
@@ -112,8 +116,10 @@ async function run(job: WalkersJob): Promise<WalkersResult> {
       if (!isFirst || !signedOrders) return
       const orders = parseOrders(new TextEncoder().encode(signedOrders.text))
       if (orders.ok) node.adopt(orders.orders, ordersAgeMs + tookMs / 2, performance.now())
-    } catch {
-      if (counts && !signal.aborted) result.failed += 1
+    } catch (error) {
+      if (!counts || signal.aborted) return
+      result.failed += 1
+      failure ??= String(error)
     }
   }
 
@@ -146,6 +152,7 @@ async function run(job: WalkersJob): Promise<WalkersResult> {
     due: result.due,
     answeredWithinInterval: result.within / result.due,
     failed: result.failed,
+    failure,
     p50Ms: at(0.5),
     p99Ms: at(0.99),
     ordersOnTime: result.onTime / Math.max(1, times.length),
