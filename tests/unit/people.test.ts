@@ -106,7 +106,7 @@ describe('problems', () => {
       new Error('select 1 from berths - Connection terminated unexpectedly'),
       new Error('begin; - Client has encountered a connection error and is not queryable'),
       Object.assign(new Error('no connection was free'), { name: 'KnexTimeoutError' }),
-      ...['57P01', '57P02', '57P03', '53300', '25P03', '08006', 'EPIPE'].map(coded),
+      ...['57P01', '57P02', '57P03', '57014', '53300', '25P03', '08006', 'EPIPE'].map(coded),
     ]
     for (const error of away) {
       const { status, headers } = problemResponse(error)
