@@ -1,12 +1,16 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
 import { benchAgent } from './bench/agent'
+import { benchIngest } from './bench/ingest'
 import { benchReading } from './bench/reading'
+import { benchScale } from './bench/scale'
 
 type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
 
 const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
+  ingest: benchIngest,
   reading: benchReading,
+  scale: benchScale,
 }
 
 const [name, ...args] = process.argv.slice(2)

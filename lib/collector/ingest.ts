@@ -1,7 +1,6 @@
 import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
-import { assertStorable } from '@/lib/http/storable'
 import type { Report } from '@/lib/method/report'
 import type { PassGrant } from '@/lib/protocol'
 import { enterAway } from './away'
@@ -26,7 +25,9 @@ import { openRelayed, type Relayed, relayedReply } from './relayed'
 import { CLONE_REPORTS, type HeldReport } from './report-check'
 
 /** Reports wait this long for others to be stored with. */
-export const BATCH_MS = 20
+export const BATCH_MS = 10
+/** While so many batches are under way the next one grows instead: more at once would only wait for connections. */
+export const BATCHES_AT_ONCE = 4
 export const BATCH_MOST = 500
 /** Last reports remembered, so that judging the next needs no second look into the database. */
 export const REMEMBERED_MOST = 20_000
@@ -59,6 +60,8 @@ export class Ingest {
   readonly #running = new Set<Promise<void>>()
   #waiting: Entry[] = []
   #cancel: (() => void) | null = null
+  /** A batch is to go as soon as one of those under way is over. */
+  #isDue = false
 
   constructor(components: IngestComponents, init: { passLifeMs?: number } = {}) {
     this.#components = components
@@ -74,36 +77,33 @@ export class Ingest {
     }
     // Whoever has been refused as a caller does not ask for the answer as well.
     entry.answer.promise.catch(() => undefined)
-    try {
-      // Relayed ones are looked at each by itself.
-      assertStorable({ ...request, relayed: null })
-    } catch (error) {
-      refuse(entry, error)
-      return { caller: entry.caller.promise, answer: entry.answer.promise }
-    }
     this.#waiting.push(entry)
     if (this.#waiting.length >= BATCH_MOST) this.#flush()
-    else this.#cancel ??= this.#components.clock.after(BATCH_MS, () => this.#flush())
+    else if (!this.#isDue) this.#cancel ??= this.#components.clock.after(BATCH_MS, () => this.#flush())
     return { caller: entry.caller.promise, answer: entry.answer.promise }
   }
 
   /** Stores what waits and ends. */
   async stop(): Promise<void> {
-    this.#flush()
-    await Promise.all(this.#running)
+    for (this.#flush(); this.#running.size > 0; ) await Promise.all(this.#running)
   }
 
   #flush(): void {
     this.#cancel?.()
     this.#cancel = null
-    const batch = this.#waiting
-    this.#waiting = []
+    this.#isDue = this.#waiting.length > 0 && this.#running.size >= BATCHES_AT_ONCE
+    if (this.#isDue) return
+    const batch = this.#waiting.splice(0, BATCH_MOST)
     if (batch.length === 0) return
+    if (this.#waiting.length > 0) this.#cancel = this.#components.clock.after(BATCH_MS, () => this.#flush())
     const run = this.#take(batch).catch((error: unknown) => {
       for (const entry of batch) refuse(entry, error)
     })
-    this.#running.add(run)
-    void run.finally(() => this.#running.delete(run))
+    const over = run.finally(() => {
+      this.#running.delete(over)
+      if (this.#isDue) this.#flush()
+    })
+    this.#running.add(over)
   }
 
   async #take(batch: readonly Entry[]): Promise<void> {
@@ -125,12 +125,24 @@ export class Ingest {
     const arrivals = [...taken.map(({ own }) => own), ...taken.flatMap(({ relayed }) => arrivalsIn(relayed))]
     const held = await this.#heldBy(em, arrivals)
     const late = judgeArrivals(arrivals, held)
+    // What replies are made from is looked up while the reports are stored.
+    const making = this.#replies(em, taken)
+    making.catch(() => undefined)
     await this.#store(em, arrivals, held)
     for (const arrival of late) await refuseClone(em, arrival)
     for (const { entry, own, sender } of taken)
       if (entry.request.away && own.outcome?.kind === 'stored')
         await enterAway(em, sender, entry.request.away)
-    await this.#answer(em, taken)
+    await this.#answer(taken, await making)
+  }
+
+  async #replies(em: EntityManager, taken: readonly Taken[]): Promise<ReplyMaker> {
+    const maker = new ReplyMaker(
+      { em, clock: this.#components.clock },
+      { passLifeMs: this.#passLifeMs, relayedPasses: this.#relayedPasses },
+    )
+    await maker.load(new Set(taken.map(({ sender }) => sender.overlayId)))
+    return maker
   }
 
   async #heldBy(em: EntityManager, arrivals: readonly Arrival[]): Promise<Map<string, HeldReport>> {
@@ -178,13 +190,7 @@ export class Ingest {
     if (oldest !== undefined) this.#remembered.delete(oldest)
   }
 
-  async #answer(em: EntityManager, taken: readonly Taken[]): Promise<void> {
-    const { clock } = this.#components
-    const maker = new ReplyMaker(
-      { em, clock },
-      { passLifeMs: this.#passLifeMs, relayedPasses: this.#relayedPasses },
-    )
-    await maker.load(new Set(taken.map(({ sender }) => sender.overlayId)))
+  async #answer(taken: readonly Taken[], maker: ReplyMaker): Promise<void> {
     const isGood = ({ outcome }: Arrival) => outcome?.kind !== 'refused'
     const passes = await maker.renew(
       taken.filter(({ own }) => isGood(own)).map(({ sender }) => sender),

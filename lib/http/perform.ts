@@ -11,6 +11,8 @@ export interface Performance<T> {
   action: ActionName
   facts: CallRequest
   authenticate(em: EntityManager, now: Date): Promise<Caller>
+  /** Others do all of it in the database: a manager of each call's own would cost more than much of the rest. */
+  withoutManager?: boolean
   /** What must last though the rest is refused; while it waits for a connection the call must hold none. */
   before?(call: Call): Promise<void>
   run(call: Call): Promise<T>
@@ -23,9 +25,9 @@ export interface Performance<T> {
  */
 export async function perform<T>(
   runtime: Runtime,
-  { action, facts, authenticate, before, run }: Performance<T>,
+  { action, facts, authenticate, withoutManager = false, before, run }: Performance<T>,
 ): Promise<T> {
-  const em = await runtime.forkEm()
+  const em = await (withoutManager ? idleManager(runtime) : runtime.forkEm())
   const now = runtime.now()
   const { audit } = permissionOf(action)
   let caller: Caller = ANYONE
@@ -79,6 +81,19 @@ export async function perform<T>(
     }
     throw error
   }
+}
+
+const idle = new WeakMap<Runtime, Promise<EntityManager>>()
+
+/** One for all the calls that say that they leave theirs alone. */
+function idleManager(runtime: Runtime): Promise<EntityManager> {
+  const known = idle.get(runtime)
+  if (known) return known
+  const forked = runtime.forkEm()
+  idle.set(runtime, forked)
+  // The database may be there at the next call.
+  forked.catch(() => idle.delete(runtime))
+  return forked
 }
 
 /** A stranger, or an agent that is not let in, could repeat a refusal for ever. */

@@ -53,13 +53,17 @@ const CONNECTION_ENDED =
   /(^| - )(Connection terminated( unexpectedly| due to connection timeout)?|Client (has encountered a connection error|was closed) and is not queryable)$/
 
 /**
- * Classes 08 and 53, 57P0x, 25P03: connection lost, no room for another, the server shutting down or starting up, a
- * transaction ended because nothing came for too long (PostgreSQL documentation, appendix A); or no connection was free.
+ * Classes 08 and 53, 57P0x, 57014, 25P03: connection lost, no room for another, the server shutting down or starting up, a
+ * statement given up on, a transaction ended because nothing came for too long (PostgreSQL documentation, appendix A); or
+ * no connection was free.
  */
 function isConnectionError(error: unknown): boolean {
   if (!(error instanceof Error)) return false
   const code = 'code' in error && typeof error.code === 'string' ? error.code : ''
-  if (/^(08|53|57P0|25P03)/.test(code) || ['ECONNREFUSED', 'ECONNRESET', 'EPIPE', 'ENOENT'].includes(code))
+  if (
+    /^(08|53|57P0|57014|25P03)/.test(code) ||
+    ['ECONNREFUSED', 'ECONNRESET', 'EPIPE', 'ENOENT'].includes(code)
+  )
     return true
   if (CONNECTION_ENDED.test(error.message) || error.name === 'KnexTimeoutError') return true
   return error instanceof DriverException && error.name === 'ConnectionException'

@@ -26,7 +26,7 @@ export interface ServerSetup {
 const SAFE_METHODS = ['GET', 'HEAD', 'OPTIONS']
 
 export function requestFacts(
-  headers: Headers,
+  headers: Pick<Headers, 'get'>,
   method: string,
   { address, trustedProxies }: ServerSetup,
 ): RequestFacts {
@@ -43,7 +43,7 @@ export function requestFacts(
   }
 }
 
-function originSaid(headers: Headers): string {
+function originSaid(headers: Pick<Headers, 'get'>): string {
   const scheme = headers.get('x-forwarded-proto')?.split(',')[0]?.trim() === 'https' ? 'https' : 'http'
   const origin = `${scheme}://${headers.get('host') ?? 'localhost'}`
   return URL.canParse(origin) ? origin : `${scheme}://localhost`
@@ -60,7 +60,7 @@ function addressSaid(forwardedFor: string | null, trustedProxies: number): strin
  * header"), so one without it is refused too: no browser of ours sent it. Hosts are compared, not schemes,
  * as a proxy that ends TLS may not pass the scheme on.
  */
-function isForeign(headers: Headers, origin: string): boolean {
+function isForeign(headers: Pick<Headers, 'get'>, origin: string): boolean {
   const site = headers.get('sec-fetch-site')
   if (site && site !== 'same-origin') return true
   const claimed = headers.get('origin')

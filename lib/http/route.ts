@@ -5,6 +5,7 @@ import { type CookieToSet, cookieHeader } from '@/lib/auth/cookie'
 import { type ActionName, permissionOf } from '@/lib/auth/permissions'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from './app-error'
+import { type Asked, askedOf, type PlainAnswer, responseOf } from './asked'
 import { readJson } from './body'
 import type { Call } from './call'
 import { perform } from './perform'
@@ -21,7 +22,7 @@ export interface RouteInput<P extends Schema, Q extends Schema, B extends Schema
   params: Output<P>
   query: Output<Q>
   body: Output<B>
-  request: Request
+  request: Asked
   facts: RequestFacts
 }
 
@@ -34,6 +35,8 @@ export interface RouteSpec<P extends Schema, Q extends Schema, B extends Schema>
   maxBytes?: number
   /** Status of a plain result; default 200. */
   status?: number
+  /** The call leaves its entity manager alone. */
+  withoutManager?: boolean
   /** In place of cookie and bearer token: proves who calls from the parsed request, or throws an AppError. */
   authenticate?: (em: EntityManager, input: RouteInput<P, Q, B>, now: Date) => Promise<Caller>
 }
@@ -42,6 +45,8 @@ export interface RouteHandler {
   (request: Request, context: { params: Promise<unknown> }): Promise<Response>
   /** The row of the permission table; a test looks for it on every exported method. */
   permission: ActionName
+  /** The same for a server that has no web Request at hand, which would cost it more than the rest. */
+  answer(asked: Asked, context: { params: Promise<unknown> }): Promise<Response | PlainAnswer>
 }
 
 /**
@@ -58,7 +63,7 @@ export function route<
   spec: RouteSpec<P, Q, B>,
   run: (call: Call, input: RouteInput<P, Q, B>) => Promise<T>,
 ): RouteHandler {
-  const answer = async (request: Request, context: { params: Promise<unknown> }): Promise<Response> => {
+  const said = async (request: Asked, context: { params: Promise<unknown> }) => {
     try {
       const runtime = getRuntime()
       const facts = requestFacts(request.headers, request.method, runtime)
@@ -71,6 +76,7 @@ export function route<
       const value = await perform(runtime, {
         action,
         facts,
+        withoutManager: spec.withoutManager,
         authenticate: async (em, now) => {
           if (spec.authenticate) return spec.authenticate(em, await parsed(), now)
           refuseForeign(action, facts)
@@ -80,19 +86,25 @@ export function route<
         },
         run: async (call) => run(call, await parsed()),
       })
-      const response = value instanceof Response ? value : json(value, spec.status ?? 200)
-      if (renewed) response.headers.append('set-cookie', cookieHeader(renewed))
+      const answer = value instanceof Response ? value : json(value, spec.status ?? 200)
+      if (!renewed) return answer
+      const response = responseOf(answer)
+      response.headers.append('set-cookie', cookieHeader(renewed))
       return response
     } catch (error) {
       return problemResponse(error)
     }
   }
-  const handler: typeof answer = async (request, context) => {
-    const response = await answer(request, context)
-    if (spec.body) response.headers.set('accept-encoding', BODY_ENCODING)
-    return response
+  const answer: RouteHandler['answer'] = async (asked, context) => {
+    const answered = await said(asked, context)
+    if (!spec.body) return answered
+    if (answered instanceof Response) answered.headers.set('accept-encoding', BODY_ENCODING)
+    else answered.headers['accept-encoding'] = BODY_ENCODING
+    return answered
   }
-  return Object.assign(handler, { permission: action })
+  const handler = async (request: Request, context: { params: Promise<unknown> }) =>
+    responseOf(await answer(askedOf(request), context))
+  return Object.assign(handler, { permission: action, answer })
 }
 
 /** A page of another site can make a browser send our cookie, but not a header of its own. */
@@ -105,13 +117,13 @@ function refuseForeign(action: ActionName, facts: RequestFacts): void {
 
 async function parse<P extends Schema, Q extends Schema, B extends Schema>(
   spec: RouteSpec<P, Q, B>,
-  request: Request,
+  request: Asked,
   context: { params: Promise<unknown> },
   facts: RequestFacts,
 ): Promise<RouteInput<P, Q, B>> {
   const input = {
-    params: check(spec.params, await context.params),
-    query: check(spec.query, Object.fromEntries(new URL(request.url).searchParams)),
+    params: spec.params && check(spec.params, storable(await context.params)),
+    query: spec.query && check(spec.query, storable(Object.fromEntries(new URL(request.url).searchParams))),
     body: spec.body && check(spec.body, await readJson(request, spec.maxBytes)),
     request,
     facts,
@@ -120,15 +132,19 @@ async function parse<P extends Schema, Q extends Schema, B extends Schema>(
   return input as RouteInput<P, Q, B>
 }
 
-function check(schema: Schema, value: unknown): unknown {
-  if (!schema) return undefined
+function storable(value: unknown): unknown {
   assertStorable(value)
+  return value
+}
+
+function check(schema: z.ZodType, value: unknown): unknown {
   const result = schema.safeParse(value)
   if (!result.success) throw invalidInput(result.error)
   return result.data
 }
 
-function json(value: unknown, status: number): Response {
-  if (value === undefined) return new Response(null, { status: 204 })
-  return Response.json(value, { status, headers: { 'cache-control': 'no-store' } })
+function json(value: unknown, status: number): PlainAnswer {
+  if (value === undefined) return { status: 204, headers: {}, body: null }
+  const headers = { 'content-type': 'application/json', 'cache-control': 'no-store' }
+  return { status, headers, body: JSON.stringify(value) }
 }

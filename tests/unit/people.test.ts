@@ -8,6 +8,7 @@ import { stateOf } from '@/lib/data/joining-codes'
 import { slugFrom } from '@/lib/data/teams'
 import { reconnectDelayMs } from '@/lib/db/listener'
 import { AppError } from '@/lib/http/app-error'
+import { askedOf } from '@/lib/http/asked'
 import { readJson } from '@/lib/http/body'
 import { invalidInput, problemResponse, toProblem } from '@/lib/http/problem'
 
@@ -104,7 +105,7 @@ describe('problems', () => {
       new Error('select 1 from berths - Connection terminated unexpectedly'),
       new Error('begin; - Client has encountered a connection error and is not queryable'),
       Object.assign(new Error('no connection was free'), { name: 'KnexTimeoutError' }),
-      ...['57P01', '57P02', '57P03', '53300', '25P03', '08006', 'EPIPE'].map(coded),
+      ...['57P01', '57P02', '57P03', '57014', '53300', '25P03', '08006', 'EPIPE'].map(coded),
     ]
     for (const error of away) {
       const { status, headers } = problemResponse(error)
@@ -126,13 +127,13 @@ describe('a JSON body', () => {
     headers: Record<string, string> = { 'content-type': 'application/json' },
   ) => new Request('http://t/', { method: 'POST', body, headers, duplex: 'half' } as RequestInit)
 
-  it('is read', async () => expect(await readJson(post('{"a":1}'))).toEqual({ a: 1 }))
+  it('is read', async () => expect(await readJson(askedOf(post('{"a":1}')))).toEqual({ a: 1 }))
   it('must be JSON', async () =>
-    await expect(readJson(post('{"a":'))).rejects.toMatchObject({ code: 'malformed-json' }))
+    await expect(readJson(askedOf(post('{"a":')))).rejects.toMatchObject({ code: 'malformed-json' }))
   it('must be there', async () =>
-    await expect(readJson(post(null))).rejects.toMatchObject({ code: 'malformed-json' }))
+    await expect(readJson(askedOf(post(null)))).rejects.toMatchObject({ code: 'malformed-json' }))
   it('must say that it is JSON', async () =>
-    await expect(readJson(post('{}', { 'content-type': 'text/plain' }))).rejects.toMatchObject({
+    await expect(readJson(askedOf(post('{}', { 'content-type': 'text/plain' })))).rejects.toMatchObject({
       code: 'wrong-media-type',
     }))
 
@@ -144,7 +145,7 @@ describe('a JSON body', () => {
         controller.enqueue(new Uint8Array(1000).fill(32))
       },
     })
-    await expect(readJson(post(endless), 10_000)).rejects.toMatchObject({ code: 'too-large' })
+    await expect(readJson(askedOf(post(endless)), 10_000)).rejects.toMatchObject({ code: 'too-large' })
     expect(sent).toBeLessThan(20_000)
   })
 

@@ -2,21 +2,27 @@ import { once } from 'node:events'
 import { connect } from 'node:net'
 import { text } from 'node:stream/consumers'
 import { afterEach, beforeEach, describe, expect, it } from 'vitest'
-import { createRouteServer } from '@/lib/collector/http-server'
-import type { RouteHandler } from '@/lib/http/route'
+import { createRouteServer, type Routes } from '@/lib/collector/http-server'
+import { asAppError, problemResponse } from '@/lib/http/problem'
 
-const echo: RouteHandler = Object.assign(
-  async (request: Request) => Response.json({ url: request.url, body: await request.text() }),
-  { permission: 'health.read' as const },
-)
-const unchanged: RouteHandler = Object.assign(
-  async (request: Request) =>
+const BODY_MOST_BYTES = 8
+
+const echo: Routes[string] = {
+  answer: async (asked) => {
+    const bytes = await asked.bytes(BODY_MOST_BYTES).catch(asAppError)
+    if (bytes instanceof Error) return problemResponse(bytes)
+    const body = new TextDecoder().decode(bytes)
+    const headers = { 'content-type': 'application/json' }
+    return { status: 200, headers, body: JSON.stringify({ url: asked.url, body }) }
+  },
+}
+const unchanged: Routes[string] = {
+  answer: async (asked) =>
     new Response(null, {
-      status: request.headers.get('if-none-match') === '"a"' ? 304 : 200,
+      status: asked.headers.get('If-None-Match') === '"a"' ? 304 : 200,
       headers: { etag: '"a"' },
     }),
-  { permission: 'health.read' as const },
-)
+}
 let server: ReturnType<typeof createRouteServer>
 let port: number
 
@@ -47,6 +53,18 @@ describe('the server of a collector alone', () => {
   it('hands a request to its handler', async () => {
     const answer = await say(['POST /echo?a=b HTTP/1.1', 'host: collector.test:3100'], 'tide')
     expect(answer).toEqual({ status: 200, body: { url: 'http://collector.invalid/echo?a=b', body: 'tide' } })
+  })
+
+  it('refuses a body that is too long, said to be or not, and goes on', async () => {
+    const long = await say(['POST /echo HTTP/1.1', 'host: collector.test'], 'high tide at noon')
+    expect(long).toMatchObject({ status: 413, body: { code: 'too-large' } })
+    const unsaid = await fetch(`http://127.0.0.1:${port}/echo`, {
+      method: 'POST',
+      body: new Blob(['high tide', ' at noon']).stream(),
+      duplex: 'half',
+    } as RequestInit)
+    expect(unsaid.status).toBe(413)
+    expect((await say(['POST /echo HTTP/1.1', 'host: collector.test'], 'ebb')).status).toBe(200)
   })
 
   it('answers without a body where nothing has changed', async () => {

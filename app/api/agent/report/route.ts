@@ -5,7 +5,7 @@ import { authorise } from '@/lib/http/call'
 import { route } from '@/lib/http/route'
 import { MAX_REPORT_BYTES, reportRequestSchema } from '@/lib/protocol'
 
-const tickets = new WeakMap<Request, Ticket>()
+const tickets = new WeakMap<object, Ticket>()
 
 /** Who reports and what is reported go to the database together, so the proof is a part of taking it in. */
 export const POST = route(
@@ -13,6 +13,7 @@ export const POST = route(
   {
     body: reportRequestSchema,
     maxBytes: MAX_REPORT_BYTES,
+    withoutManager: true,
     authenticate: async (_em, { body, request, facts }) => {
       if (!facts.bearer)
         throw new AppError('bad-token', 'Send the session token as "Authorization: Bearer …".')
