@@ -45,6 +45,7 @@ export class Term {
   #sequence = 0
   #state: StoredState | null = null
   #last: Round | null = null
+  #issuedMs = 0
   #audit: AuditMemory = BLANK_AUDIT
   #hasty = false
   #wake: () => void = () => {}
@@ -112,17 +113,27 @@ export class Term {
 
   /** The orders in force under a new number, with whom nobody keeps a link to now. Evaluates nothing. */
   async #reissue(): Promise<void> {
-    const { store } = this.#components
+    const { clock, store } = this.#components
     const last = this.#last
     const loaded = last && (await store.load())
     if (!last || !loaded) return
     const sequence = this.#sequence + 1
-    const orders = { ...last.orders, sequence, shut: loaded.shut, weights: loaded.weights }
+    // Ages count from this issue on; what is to begin later still begins at the same moment.
+    const passedMs = clock.monotonicMs() - this.#issuedMs
+    const { next } = last.orders
+    const orders = {
+      ...last.orders,
+      ...(next && { next: { ...next, fromAgeMs: Math.max(0, next.fromAgeMs - passedMs) } }),
+      sequence,
+      shut: loaded.shut,
+      weights: loaded.weights,
+    }
     const round = { ...last, sequence, orders, key: loaded.key, reading: null, events: [], leftOut: [] }
     // Where another has taken over the next round finds out.
     if (!(await store.write(round))) return
     this.#sequence = sequence
     this.#last = round
+    this.#issuedMs = clock.monotonicMs()
   }
 
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
@@ -141,6 +152,7 @@ export class Term {
     this.#state = round.state
     this.#before = loaded.snapshot
     this.#last = round
+    this.#issuedMs = clock.monotonicMs()
     const tookMs = clock.monotonicMs() - startedMs
     this.rounds.count += 1
     this.rounds.totalMs += tookMs

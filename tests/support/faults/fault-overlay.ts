@@ -171,7 +171,8 @@ export class FaultOverlay {
   async standStill(): Promise<Books[]> {
     const orders = this.collector.lastOrders
     if (!orders) throw new Error('There were no orders yet.')
-    this.collector.fixedOrders = (sequence) => ({ ...orders, sequence, linkTimePerSecond: 0 })
+    const still = { ...orders, linkTimePerSecond: 0, next: undefined }
+    this.collector.fixedOrders = (sequence) => ({ ...still, sequence })
     const firstStill = orders.sequence + 1
     const startedAtMs = performance.now()
     let told = ''
