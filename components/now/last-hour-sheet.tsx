@@ -13,7 +13,7 @@ export function LastHourSheet({ slug }: { slug: string }) {
       {events.data ? (
         items.length > 0 ? (
           // biome-ignore lint/a11y/noNoninteractiveTabindex: a scrolling region must be reachable by keyboard
-          <ul tabIndex={0} aria-label="Events of the last hour" className="max-h-96 overflow-y-auto">
+          <ul tabIndex={0} aria-label="Events of the last hour" className="relative max-h-96 overflow-y-auto">
             {items.map((e) => (
               <li key={e.id} className="flex gap-x-3 border-b border-hairline py-2">
                 <span className="shrink-0 font-figures text-soft">
