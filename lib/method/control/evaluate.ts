@@ -50,13 +50,19 @@ export function evaluate(input: EvaluateInput): Evaluation {
   const withheld = whyWithheld(control, coverage, now.atMs, settings)
   if (withheld) {
     return {
-      control: { ...control, stoodUntilMs: now.atMs },
+      control: standing(control, now.atMs, input.before?.atMs ?? now.atMs),
       orders: ordersFrom(control, settings, now.atMs, false),
       estimate: withheldEstimate(now.atMs, withheld, coverage),
     }
   }
   const steered = steer(control, input)
   return read(steered, input, coverage)
+}
+
+/** Walkers that stand still stay where they are: for the readings so far that time does not pass. */
+function standing(control: ControlState, atMs: number, lastMs: number): ControlState {
+  const ritz = control.ritz.map((reading) => ({ ...reading, atMs: reading.atMs + atMs - lastMs }))
+  return { ...control, ritz, stoodUntilMs: atMs }
 }
 
 function whyWithheld(

@@ -44,7 +44,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const result = subspace && ritzOf(subspace)
   const crossCheck = crossCheckOf(control.colonies)
   const lambda2 = result?.values[0] ?? null
-  const sinceMs = Math.max(control.coldSinceMs, control.changedAtMs ?? 0, control.stoodUntilMs ?? 0)
+  const sinceMs = Math.max(control.coldSinceMs, control.changedAtMs ?? 0)
   const fromMs = Math.max(
     sinceMs,
     now.atMs - windowIntervals((now.atMs - sinceMs) / pace.intervalMs) * pace.intervalMs,
@@ -96,6 +96,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
           atMs: now.atMs,
           intervalMs: pace.intervalMs,
           sinceMs,
+          stoodUntilMs: control.stoodUntilMs ?? 0,
           lambda2,
           trend,
           young: next.young?.ratios ?? null,

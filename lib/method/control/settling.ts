@@ -3,6 +3,8 @@ import type { TrendLine } from './trend-line'
 
 /** After a cold start or a change of links a reading is settling for at least so many of the pace's intervals. */
 export const LEAST_INTERVALS = 2
+/** After a standstill, in which walkers stayed where they were, for so long. */
+export const STOOD_INTERVALS = 1
 /**
  * And until a colony seeded then has a Rayleigh quotient of at most this many times the reading: until then a cut that became
  * the weakest may not have shown. On preferential attachment readings stood up to 30 % high for 10 s, perfectly still.
@@ -24,8 +26,10 @@ export const USUAL_GROWING_INTERVALS = 4
 export interface SettlingInput {
   atMs: number
   intervalMs: number
-  /** The last cold start, change of links or end of a standstill. */
+  /** The last cold start or change of links. */
   sinceMs: number
+  /** The end of the last standstill. */
+  stoodUntilMs: number
   lambda2: number
   trend: TrendLine | null
   /**
@@ -41,10 +45,11 @@ export interface SettlingInput {
 
 /** @returns how long until the reading may be taken for good, ms; 0 once it is fresh */
 export function settlesInMs(input: SettlingInput): number {
-  const { atMs, intervalMs, sinceMs, lowered } = input
+  const { atMs, intervalMs, sinceMs, stoodUntilMs, lowered } = input
   const since = (atMs - sinceMs) / intervalMs
   const waits = [
     LEAST_INTERVALS - since,
+    STOOD_INTERVALS - (atMs - stoodUntilMs) / intervalMs,
     growing(input, since),
     moving(input, since),
     lowered ? LEAST_INTERVALS : 0,

@@ -29,6 +29,7 @@ const still: SettlingInput = {
   atMs: 60_000,
   intervalMs: 2_000,
   sinceMs: 0,
+  stoodUntilMs: 0,
   lambda2: 1,
   trend: { perMs: 0, scatter: 0.01 },
   young: null,
@@ -41,6 +42,7 @@ describe('a reading', () => {
   it.each<[string, Partial<SettlingInput>, number]>([
     ['that stands still long after a change is fresh', {}, 0],
     ['is settling for two intervals after a change', { sinceMs: 59_000 }, 3_000],
+    ['is settling for one interval after a standstill', { stoodUntilMs: 59_500 }, 1_500],
     ['is settling while the youngest colony lowers it', { lowered: true }, 4_000],
     [
       'is settling while the colony seeded at the change has not grown, for as long as its excess takes to fall to a half',
