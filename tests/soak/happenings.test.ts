@@ -2,7 +2,7 @@
  * What happens to overlays, each with its expected course; none needs a person to reset anything. Real state machines and control loop
  * on a virtual clock; exact values by eigendecomposition of the links as they then are.
  */
-import { afterAll, describe, expect, it } from 'vitest'
+import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
 import { type Edge, edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
 import {
@@ -25,8 +25,6 @@ import { exactLambda2, simulateOn } from '../support/overlays'
 const TOLERANCE = 0.05
 const MINUTE_MS = 60_000
 const clusters = twoClusters({ perSide: 18, degree: 6, links: 5 }, createRandom('traps'))
-const lines: string[] = []
-afterAll(() => process.stdout.write(`${lines.join('\n')}\n`))
 
 interface Readings {
   fresh: number
@@ -55,8 +53,8 @@ function look(simulation: Simulation, ms: number, exact = () => exactLambda2(sim
 }
 
 function tell(name: string, { fresh, settling, withheld, worst, mean }: Readings): void {
-  lines.push(
-    `${name.padEnd(54)} ${String(fresh).padStart(4)} fresh, ${settling} settling, ${withheld} withheld; mean ×${mean.toFixed(3)}, furthest ×${worst.toFixed(3)}`,
+  process.stdout.write(
+    `${name.padEnd(54)} ${String(fresh).padStart(4)} fresh, ${settling} settling, ${withheld} withheld; mean ×${mean.toFixed(3)}, furthest ×${worst.toFixed(3)}\n`,
   )
 }
 
