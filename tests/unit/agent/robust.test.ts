@@ -76,11 +76,14 @@ describe('an agent that stands still', () => {
 test('connections cut and dialed anew again and again lose no walkers', async () => {
   await begin()
   let broken = 0
-  for (let at = 0; at < 20; at++) {
+  // Signatures are judged in real time, so a busy machine dials more slowly on this clock.
+  for (let at = 0; at < 20 || (broken <= 8 && at < 100); at++) {
     broken += swarm.network.cut((a, b) => a === 'tar-01' || b === 'tar-01')
     await swarm.clock.advance(250)
   }
   expect(broken).toBeGreaterThan(8)
+  const isUp = () => status('tar-01').links.every(({ up }) => up)
+  for (let at = 0; at < 20 && !isUp(); at++) await swarm.clock.advance(500)
   await swarm.clock.advance(2_000)
   expect(status('tar-01').links.map(({ up }) => up)).toEqual([true, true])
   await expectBalance()
