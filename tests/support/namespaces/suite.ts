@@ -117,6 +117,10 @@ export function namespaceSuite({ pace, partsOutside, inside }: NamespaceSuiteIni
         )
         expect(reading).toMatchObject({ treatAsSplit: false, coverage: { heard: 12, unheard: 0 } })
         expect(reading.verdict).toBe('Split. No link is left between 6 nodes and the other 6.')
+        // The cut is counted at once; the value sinks as the halves come apart.
+        await timed('as good as zero', () =>
+          reader.until('a reading under 0.01', ({ lambda2 }) => (lambda2 ?? 1) < 0.01, ANSWER_MS, state),
+        )
         await expectHalvesAsSides()
         await expectOwnBooksBalance()
       },
