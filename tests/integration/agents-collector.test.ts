@@ -100,7 +100,10 @@ describe('agents of today and the collector of today', () => {
   const rowOf = (name: string) => em().findOneOrFail(AgentSchema, fleet.member(name).agentId)
 
   test('follow each other: signed orders, receipts, health', async () => {
-    await until(async () => fleet.names.every((name) => !status(name).frozen))
+    // Orders may come from a neighbour before an agent's own first report is stored.
+    await until(async () =>
+      fleet.names.every((name) => !status(name).frozen && status(name).reports.delivered > 0),
+    )
     const { node } = await stateOf('tar-01')
     expect(node.health).toMatchObject({ linkKind: 'path', keyRing: 1, source: null, upgrade: null })
     expect(status('tar-01').reports.lastError).toBeNull()
