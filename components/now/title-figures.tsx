@@ -5,7 +5,7 @@ import type { Reading } from '@/lib/data/dto'
 import { cx } from '@/lib/face/cx'
 import { type FigureText, titleFigures } from '@/lib/face/figures'
 
-const LABELS: Record<FigureText['id'], React.ReactNode> = {
+const LABELS: Record<Exclude<FigureText['id'], `piece-${number}`>, React.ReactNode> = {
   reading: (
     <>
       reading <Lambda n={2} />
@@ -26,7 +26,7 @@ const LABELS: Record<FigureText['id'], React.ReactNode> = {
 export function TitleFigures({ reading }: { reading: Reading }) {
   const figures: Figure[] = titleFigures(reading).map((f) => ({
     id: f.id,
-    label: LABELS[f.id],
+    label: f.label ?? LABELS[f.id as keyof typeof LABELS],
     value: f.value,
     remark:
       f.grave || f.strong ? (

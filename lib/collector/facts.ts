@@ -17,13 +17,15 @@ export interface Judged {
   trend: Memory['trend']
   together: Together | null
   loose: VerdictFacts['loose']
+  parts: VerdictFacts['parts']
+  check: VerdictFacts['check']
 }
 
 /** What the sentence is made from. */
 export function verdictFacts(
   input: HeadlineInput,
   memory: Memory,
-  { level, trend, together, loose }: Judged,
+  { level, trend, together, loose, parts, check }: Judged,
 ): VerdictFacts {
   const { estimate, agents, usual } = input
   const { coverage, lambda2 } = estimate
@@ -43,6 +45,8 @@ export function verdictFacts(
     follows: memory.singleCut === false ? null : followsOf(agents, memory),
     leftOut: input.leftOut ?? [],
     loose,
+    parts,
+    check,
     whole: input.whole?.lambda2 ?? null,
     shareOfUsual: usual !== null && usual > 0 && lambda2 !== null ? lambda2 / usual : null,
   }

@@ -1,10 +1,12 @@
 import type { EVENT_KINDS, Reading } from '@/lib/data/dto'
-import type { CoreEstimate, Estimate } from '@/lib/method/control'
+import type { CoreEstimate, Estimate, PartEstimate } from '@/lib/method/control'
+import { checkNow } from './check'
 import { type LevelNow, stateOf, verdictFacts } from './facts'
 import { happenings } from './happenings'
 import { type Headline, headlineOf, looseTexts, memoryFor } from './headline'
 import { isGrave, levelOf, worse } from './level'
 import type { Memory, Side } from './memory'
+import { partsTold } from './parts'
 import { readingOf } from './reading'
 import { nameSides } from './sides'
 import { trendOf, withReading } from './trend'
@@ -38,6 +40,8 @@ export interface JudgeInput {
   core?: CoreEstimate | null
   /** Links are named, so loose nodes may be. */
   isNamed?: boolean
+  /** Each piece by itself; empty or missing while the overlay has not come apart. */
+  parts?: readonly PartEstimate[]
   agents: readonly JudgedAgent[]
   memory: Memory
   /** Combination now in the orders; null while there is none. */
@@ -83,7 +87,10 @@ function judgeHeadline(input: HeadlineInput): Judgement {
       : memory.recent
   const trend = data === 'fresh' ? trendOf(recent) : memory.trend
   const loose = looseTexts(input.core ?? null, agents, input.isNamed ?? false)
-  const facts = verdictFacts(input, memory, { level, trend, together, loose })
+  const parts = partsTold(input.parts ?? [], agents, memory)
+  const isSplit = level.level === 'split'
+  const { apartSinceMs, check } = checkNow(memory, input.whole ?? estimate, { isSplit, intervalMs })
+  const facts = verdictFacts(input, memory, { level, trend, together, loose, parts, check })
   const { verdict, detail } = verdictOf(facts)
   const next: Memory = {
     ...memory,
@@ -100,9 +107,10 @@ function judgeHeadline(input: HeadlineInput): Judgement {
     usual: input.usual,
     graveSinceMs: isGrave(level.rules) ? (memory.graveSinceMs ?? estimate.atMs) : null,
     withheld: data === 'unheard',
+    apartSinceMs,
     judgedAtMs: estimate.atMs,
   }
-  const reading = readingOf(input, next, { verdict, detail, data })
+  const reading = readingOf(input, next, { verdict, detail, data, check, parts })
   const key = JSON.stringify([verdict, detail, reading.level, data])
   const store =
     estimate.lambda2 !== null ||

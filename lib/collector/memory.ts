@@ -43,6 +43,8 @@ export interface Memory {
   judgedAtMs: number | null
   listeningSinceMs: number | null
   stored: { atMs: number; key: string } | null
+  /** Since when reading and same-walker check have stood apart; null or missing while they do not. */
+  apartSinceMs?: number | null
   /** Nodes that the headline leaves out; '' or missing for none. */
   apart?: string
 }

@@ -7,7 +7,7 @@ import type { Memory } from './memory'
 export function readingOf(
   { estimate, whole, usual, core }: HeadlineInput,
   memory: Memory,
-  said: Pick<Reading, 'verdict' | 'detail' | 'data'>,
+  said: Pick<Reading, 'verdict' | 'detail' | 'data' | 'check' | 'parts'>,
 ): Reading {
   const { cut, singleCut, last } = memory
   const all = whole ?? estimate

@@ -184,7 +184,7 @@ export class Term {
     })
     this.#audit = audited.memory
     const { snapshot, shut, leftOutNames } = withoutLeftOut(loaded, audited.leftOut)
-    const { control, orders, estimate, core } = evaluateOverlay({
+    const { control, orders, estimate, core, parts } = evaluateOverlay({
       control: before,
       before: this.#before,
       now: snapshot,
@@ -195,6 +195,7 @@ export class Term {
     const { reading, memory, events, store } = judge({
       estimate,
       core,
+      parts,
       isNamed: disclosure === 'named',
       agents: snapshot.agents.map((agent) => toJudged(agent, snapshot.atMs, pace.intervalMs)),
       memory: this.#state?.memory ?? BLANK_MEMORY,

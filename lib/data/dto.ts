@@ -14,6 +14,7 @@ export * from './people-dto'
 export const LEVELS = ['firm', 'weak', 'split'] as const
 export const TRENDS = ['steady', 'falling', 'rising'] as const
 export const DATA_STATES = ['fresh', 'settling', 'unheard'] as const
+export const CHECKS = ['agrees', 'unsure', 'apart'] as const
 export const SIDES = ['a', 'b'] as const
 export const KEPT_KINDS = ['reading', 'minute', 'hour'] as const
 export const WEIGHTS = ['unit', 'delivered'] as const
@@ -32,6 +33,8 @@ export const readingSchema = z.object({
   core: z.object({ lambda2: z.number(), low: z.number(), high: z.number() }).nullable(),
   lambda3AtMost: z.number().nullable(),
   crossCheck: z.number().nullable(),
+  /** Whether it bears the reading out; "apart": they contradict each other and have for long, rely on neither. Null: nothing to compare. */
+  check: z.enum(CHECKS).nullable().optional(),
   /** While settling: how long until the reading is expected to be fresh, milliseconds. */
   settlesInMs: z.number().nullable().optional(),
   /** How long a change of links takes to show in a fresh reading, milliseconds. */
@@ -53,6 +56,21 @@ export const readingSchema = z.object({
   sides: z.tuple([side, side]).nullable(),
   crossingLinks: z.number().int().nullable(),
   crossingWeight: z.number().nullable(),
+  /** Each piece by itself, once the overlay has come apart; its λ₂ is null while it is being read, and for a node alone. */
+  parts: z
+    .array(
+      z.object({
+        side: z.enum(SIDES).nullable(),
+        nodes: z.number().int(),
+        /** A label whose values lie wholly in this piece or wholly outside it, and those in it. */
+        label: z.object({ key: z.string(), values: z.array(z.string()) }).nullable(),
+        lambda2: z.number().nullable(),
+        low: z.number().nullable(),
+        high: z.number().nullable(),
+        settling: z.boolean(),
+      }),
+    )
+    .optional(),
   looseEnds: z.array(z.object({ nodes: z.number().int(), links: z.number().int() })),
   coverage: z.object({
     linksKnown: z.number().int(),

@@ -25,6 +25,8 @@ export function staleReading(reading: Reading, nowMs: number): Reading {
     core: null,
     lambda3AtMost: null,
     crossCheck: null,
+    check: null,
+    parts: [],
     settlesInMs: null,
     answersInMs: null,
     singleCut: null,

@@ -1,14 +1,10 @@
 import type { Reading } from '@/lib/data/dto'
 import { formatCount, formatHigh, formatInterval, formatReading, formatShare } from './format'
 
-/**
- * Further apart than this share, the reading and its same-walker check are said to disagree. The check alone wanders by up to
- * 20 % while a colony grows up, where cuts are nearly equal; an agent that lies moves the reading by more than that.
- */
-export const CHECK_TOLERANCE = 0.3
-
 export interface FigureText {
-  id: 'reading' | 'usual' | 'next' | 'check' | 'links' | 'agents' | 'ends'
+  id: 'reading' | 'usual' | 'next' | 'check' | 'links' | 'agents' | 'ends' | `piece-${number}`
+  /** Of a piece: which it is. */
+  label?: string
   value: string
   remark: string
   /** Split or unheard: the only things that are red. */
@@ -21,6 +17,7 @@ export interface FigureText {
 export function titleFigures(reading: Reading): FigureText[] {
   return [
     readingFigure(reading),
+    ...pieceFigures(reading),
     usualFigure(reading),
     nextFigure(reading),
     checkFigure(reading),
@@ -45,6 +42,21 @@ function readingFigure(reading: Reading): FigureText {
   return { id: 'reading', value: formatReading(shown.lambda2), remark: `${interval}${whole}` }
 }
 
+/** Each piece by itself: once split, that is what its part of the operators can still rely on. */
+function pieceFigures({ parts = [] }: Reading): FigureText[] {
+  return parts.map(({ side, nodes, label, lambda2, low, high, settling }, index) => {
+    const who = [formatCount(nodes, 'node'), ...(label ? [label.values.join(', ')] : [])].join(' · ')
+    const interval =
+      low !== null && high !== null && lambda2 !== null ? formatInterval(low, high, lambda2) : null
+    return {
+      id: `piece-${index}`,
+      label: side ? `side ${side} by itself` : `piece ${index + 1} by itself`,
+      value: lambda2 === null ? (nodes === 1 ? 'alone' : 'being read') : formatReading(lambda2),
+      remark: settling ? `${who}; settling` : interval ? `${who}; ${interval}` : who,
+    }
+  })
+}
+
 function usualFigure({ lambda2, core, usual, last }: Reading): FigureText {
   const now = core?.lambda2 ?? lambda2 ?? last?.lambda2 ?? null
   if (usual === null) return { id: 'usual', value: 'not yet', remark: 'needs 7 days of readings' }
@@ -66,20 +78,24 @@ function nextFigure({ core, lambda2: whole, lambda3AtMost, singleCut }: Reading)
   }
 }
 
-function checkFigure({ lambda2, core, crossCheck, data }: Reading): FigureText {
+function checkFigure(reading: Reading): FigureText {
+  const { lambda2, crossCheck, check } = reading
   if (crossCheck === null) return { id: 'check', value: '–', remark: 'not known' }
   const value = formatReading(crossCheck)
-  if (lambda2 === null || lambda2 <= 0) return { id: 'check', value, remark: 'nothing to compare with' }
-  const apart = Math.abs(crossCheck - lambda2) / lambda2
-  if (apart <= CHECK_TOLERANCE)
-    return { id: 'check', value, remark: core ? 'agrees, loose ends and all' : 'agrees' }
-  if (data === 'settling') return { id: 'check', value, remark: 'settling with the reading' }
+  if (check !== 'apart' || lambda2 === null) return { id: 'check', value, remark: checkRemark(reading) }
+  const apart = formatShare(Math.abs(crossCheck - lambda2) / lambda2)
   return {
     id: 'check',
     value,
-    remark: `disagrees by ${formatShare(apart)}: do not rely on the reading`,
+    remark: `disagrees by ${apart}: do not rely on the reading`,
     strong: true,
   }
+}
+
+function checkRemark({ core, check, data, level }: Reading): string {
+  if (check === 'agrees') return core ? 'agrees, loose ends and all' : 'agrees'
+  if (check === 'unsure') return data === 'settling' ? 'settling with the reading' : 'not in line yet'
+  return level === 'split' ? 'as good as zero' : 'not compared'
 }
 
 function linksFigure({ coverage }: Reading): FigureText {

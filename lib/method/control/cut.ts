@@ -21,6 +21,7 @@ export function bestCut(
   })
   if (counts.length === 0 || counts.length < attached.length) return undefined
   let best: (CutCount & { ratio: number }) | null = null
+  const clean: CutCount['clean'] = []
   thresholds.forEach((threshold, index) => {
     const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
       counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
@@ -30,9 +31,10 @@ export function bestCut(
     const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
     const ratio = weight / Math.min(above, below)
     const links = Math.round(total((sums) => sums.crossing) / 2)
+    if (links === 0) clean.push({ threshold, above })
     if (!best || ratio < best.ratio) best = { threshold, sweep, above, below, links, weight, ratio }
   })
   if (!best) return null
   const { ratio: _, ...cut } = best as CutCount & { ratio: number }
-  return cut
+  return { ...cut, clean }
 }

@@ -1,9 +1,11 @@
-export { type CoreEstimate, coloniesOf, evaluateOverlay, type OverlayEvaluation } from './core'
+export type { CoreEstimate } from './core'
 export { type Coverage, LEAST_HEARD } from './coverage'
 export type { LooseEnd } from './ends'
 export type { Estimate, EvaluateInput, Evaluation, Withheld } from './estimate'
 export { evaluate } from './evaluate'
 export { CONFIDENCE } from './interval'
+export { coloniesOf, evaluateOverlay, type OverlayEvaluation } from './overlay'
+export type { PartEstimate } from './parts'
 export { heldMs, isHeard, type JoinedAgent, type Snapshot } from './snapshot'
 export {
   type ControlSettings,

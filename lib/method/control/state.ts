@@ -4,6 +4,7 @@ import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
 import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
+import type { PartControl } from './parts'
 import type { Young } from './young'
 
 export const COLONIES = 5
@@ -50,6 +51,8 @@ export interface CutCount {
   below: number
   links: number
   weight: number
+  /** All thresholds that no link crosses, rising, each with the nodes above it. Absent in states of before it was kept. */
+  clean?: { threshold: number; above: number }[]
 }
 
 /** All the control loop remembers, as plain JSON: whoever leads next goes on from it. */
@@ -86,6 +89,8 @@ export interface ControlState {
   young?: Young | null
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */
   core?: CoreControl
+  /** The pieces an overlay has come apart into; missing or empty while it has not. */
+  parts?: PartControl[]
 }
 
 export function initialControl(atMs: number, pace: Pace): ControlState {

@@ -4,6 +4,7 @@ import {
   type Estimate,
   evaluateOverlay,
   initialControl,
+  type PartEstimate,
   type Snapshot,
 } from '../control'
 import type { ControlState } from '../control/state'
@@ -56,6 +57,8 @@ export class Simulation {
   estimate: Estimate | null = null
   /** Without its loose ends; null while nothing hangs loose. */
   core: CoreEstimate | null = null
+  /** Each piece by itself; empty while the overlay has not come apart. */
+  parts: readonly PartEstimate[] = []
   /** Called after each evaluation. */
   onEstimate: ((estimate: Estimate) => void) | null = null
   /** While false the collector neither hears reports nor answers: an outage. */
@@ -375,7 +378,7 @@ export class Simulation {
     const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
     this.leftOut.push(...out)
     const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
-    const { control, estimate, core, ...planned } = evaluateOverlay({
+    const { control, estimate, core, parts, ...planned } = evaluateOverlay({
       control: this.control,
       before: this.before,
       now,
@@ -390,6 +393,7 @@ export class Simulation {
     this.orders = { orders: { orders, ageMs: 0 }, issuedAtMs: this.nowMs }
     this.estimate = estimate
     this.core = core
+    this.parts = parts
     this.onEstimate?.(estimate)
   }
 }

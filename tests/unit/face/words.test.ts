@@ -19,6 +19,7 @@ const weak: Reading = {
   core: null,
   lambda3AtMost: 0.98301,
   crossCheck: 0.2412,
+  check: 'agrees',
   level: 'weak',
   trend: 'falling',
   data: 'fresh',
@@ -100,10 +101,39 @@ describe('title block', () => {
   })
 
   it('says that a disagreeing check makes the reading unfit, and what usual still needs', () => {
-    expect(told({ crossCheck: 0.31, usual: null })).toMatchObject({
+    expect(told({ crossCheck: 0.31, check: 'apart', usual: null })).toMatchObject({
       check: '0.310 | disagrees by 30\u202f%: do not rely on the reading',
       usual: 'not yet | needs 7 days of readings',
     })
+  })
+
+  it.each([
+    ['not in line yet', { check: 'unsure' }],
+    ['settling with the reading', { check: 'unsure', data: 'settling' }],
+    ['as good as zero', { check: null, level: 'split' }],
+    ['not compared', { check: undefined }],
+  ] as [string, Partial<Reading>][])('says of a check that decides nothing: %s', (remark, over) => {
+    expect(told({ crossCheck: 0.31, ...over })).toMatchObject({ check: `0.310 | ${remark}` })
+  })
+
+  it('gives each piece of a split overlay a figure', () => {
+    const piece = { side: null, label: null, low: null, high: null, settling: false }
+    const figures = titleFigures({
+      ...weak,
+      level: 'split',
+      parts: [
+        { ...piece, side: 'a', nodes: 18, lambda2: 2.0481, low: 2.0111, high: 2.0911 },
+        { ...piece, nodes: 17, lambda2: 1.5, label: { key: 'harbour', values: ['Eelholm'] }, settling: true },
+        { ...piece, nodes: 2, lambda2: null, settling: true },
+        { ...piece, nodes: 1, lambda2: null },
+      ],
+    })
+    expect(figures.slice(1, 5).map(({ label, value, remark }) => `${label} | ${value} | ${remark}`)).toEqual([
+      'side a by itself | 2.048 | 18 nodes; 2.011–2.092',
+      'piece 2 by itself | 1.500 | 17 nodes · Eelholm; settling',
+      'piece 3 by itself | being read | 2 nodes; settling',
+      'piece 4 by itself | alone | 1 node',
+    ])
   })
 
   it('says nothing it does not know before the first reading', () => {

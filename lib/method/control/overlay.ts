@@ -1,0 +1,131 @@
+import { CORE_COLONIES, type CoreEstimate, coreOf, NO_CORE } from './core'
+import type { EvaluateInput, Evaluation } from './estimate'
+import { evaluate } from './evaluate'
+import { paceNow } from './haste'
+import { HEARD_BY_INTERVALS } from './link-time'
+import { nextOrders } from './orders-from'
+import { PART_COLONIES, type PartEstimate, partsOf } from './parts'
+import type { Snapshot } from './snapshot'
+import { type ControlState, initialControl } from './state'
+
+export interface OverlayEvaluation extends Evaluation {
+  /** Null while nothing hangs loose. `estimate` beside it is of the whole overlay. */
+  core: CoreEstimate | null
+  /** Each piece by itself; empty while the overlay has not come apart. */
+  parts: readonly PartEstimate[]
+}
+
+/**
+ * One round of the control loop for the whole overlay; for its core, where small sides hang on by little; and for every piece, where
+ * it has come apart. The whole says nothing of how those hang together: one leaf hides it, and a split reads zero. So each has
+ * spare colonies that all other agents refuse. Pure.
+ */
+export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
+  const { now, settings } = input
+  const whole = evaluate(input)
+  const core = coreOf(input.control.core ?? NO_CORE, whole, input)
+  const apart = core.ends.flatMap(({ agents }) => agents)
+  const firstSlot = (settings.firstSlot ?? 0) + settings.colonies
+  const ofCore =
+    apart.length > 0
+      ? evaluateWithin(apart, core.control, input, { firstSlot, colonies: CORE_COLONIES })
+      : null
+  const headline = ofCore?.evaluation.control.combination ? ofCore.evaluation : whole
+  const before = input.control.parts ?? []
+  const parts = headline.estimate.withheld
+    ? [...before]
+    : partsOf(before, headline.control, apart, { now, settings })
+  const ofParts = parts.map(({ agents, control }, index) => {
+    const others = now.agents.map(({ agentId }) => agentId).filter((agentId) => !agents.includes(agentId))
+    return evaluateWithin(others, control, input, {
+      firstSlot: firstSlot + CORE_COLONIES + index * PART_COLONIES,
+      colonies: PART_COLONIES,
+    })
+  })
+  const within = [...(ofCore ? [ofCore] : []), ...ofParts]
+  const walking = sharedWalking([whole, ...within.map(({ evaluation }) => evaluation)], input)
+  return {
+    ...whole,
+    control: {
+      ...whole.control,
+      ...walking,
+      core: { ...core, control: ofCore && { ...ofCore.evaluation.control, ...walking } },
+      parts: parts.map(({ agents }, index) => ({
+        agents,
+        control: { ...ofParts[index]!.evaluation.control, ...walking },
+      })),
+    },
+    orders: {
+      ...whole.orders,
+      pace: paceNow(walking, settings),
+      next: whole.orders.linkTimePerSecond === 0 ? undefined : nextOrders(walking, now.atMs),
+      colonies: [
+        ...whole.orders.colonies,
+        ...within.flatMap(({ refused, evaluation }) =>
+          evaluation.orders.colonies.map((colony) => ({ ...colony, refused })),
+        ),
+      ],
+      // Nodes tell their value, and cuts are counted, by what is the headline.
+      sweep: ofCore?.evaluation.control.combination ?? whole.orders.sweep,
+    },
+    core: ofCore && { estimate: ofCore.evaluation.estimate, ends: core.ends },
+    parts: parts.map(({ agents }, index) => ({ agents, estimate: ofParts[index]!.evaluation.estimate })),
+  }
+}
+
+/** All colonies that walk, those of the core and of the pieces among them. */
+export function coloniesOf({ colonies, core, parts = [] }: ControlState): ControlState['colonies'] {
+  const within = [core?.control, ...parts.map(({ control }) => control)]
+  return [...colonies, ...within.flatMap((control) => control?.colonies ?? [])]
+}
+
+/** The control loop of a part of the overlay: as though the others had never joined. */
+function evaluateWithin(
+  refused: readonly string[],
+  control: ControlState | null,
+  input: EvaluateInput,
+  slots: { firstSlot: number; colonies: number },
+): { refused: readonly string[]; evaluation: Evaluation } {
+  const { settings, before, now, sequence } = input
+  const apart = new Set(refused)
+  const without = (snapshot: Snapshot): Snapshot => ({
+    ...snapshot,
+    agents: snapshot.agents.filter(({ agentId }) => !apart.has(agentId)),
+  })
+  const within = without(now)
+  const fresh: ControlState = {
+    ...initialControl(now.atMs, settings.pace),
+    sequence,
+    // They have been walked on: there is no waiting for more of them to come.
+    attached: { count: within.agents.length, sinceMs: 0 },
+  }
+  const evaluation = evaluate({
+    ...input,
+    control: control ?? fresh,
+    before: before && without(before),
+    now: within,
+    settings: { ...settings, ...slots },
+  })
+  return { refused, evaluation }
+}
+
+/** All colonies walk at one rate and report as often: the one that asks for less ω decides, and the one in more haste. */
+function sharedWalking(
+  all: readonly Evaluation[],
+  { control, now, settings }: EvaluateInput,
+): Pick<ControlState, 'linkTimePerSecond' | 'next' | 'intervalMs'> {
+  const [whole] = all
+  const linkTimePerSecond = whole!.control.linkTimePerSecond
+  const intervalMs = Math.min(...all.map((one) => paceNow(one.control, settings).intervalMs))
+  if (all.length === 1) return { linkTimePerSecond, intervalMs, next: whole!.control.next }
+  // What agents have been told to begin later stays.
+  const pending = control.next && control.next.fromAtMs > now.atMs ? control.next : null
+  if (pending) return { linkTimePerSecond, intervalMs, next: pending }
+  const wanted = Math.min(
+    ...all.map((one) => one.control.next?.linkTimePerSecond ?? one.control.linkTimePerSecond),
+  )
+  const heardByMs = HEARD_BY_INTERVALS * paceNow(control, settings).intervalMs
+  const next =
+    wanted === linkTimePerSecond ? null : { linkTimePerSecond: wanted, fromAtMs: now.atMs + heardByMs }
+  return { linkTimePerSecond, intervalMs, next }
+}
