@@ -40,11 +40,11 @@ function sideOfAll(ids: readonly string[], sides: Memory['sides']): Side | null 
 /** '' where the overlay has not come apart. */
 export function partsText(parts: readonly Part[]): string {
   if (parts.length === 0) return ''
-  const each = parts.map(({ nodes, label, lambda2 }) => {
+  const each = parts.map(({ nodes, label, lambda2, settling }) => {
     const which = `${countOf(nodes, 'node')}${label ? ` of ${listOf(label.values)}` : ''}`
     if (nodes === 1) return `${which} alone`
     if (lambda2 === null) return `${which} ${isOrAre(nodes)} still being read`
-    return `${which} at ${lambda2.toPrecision(3)}`
+    return `${which} at ${lambda2.toPrecision(3)}${settling ? ', settling' : ''}`
   })
   return `Each piece by itself: ${each.join('; ')}.`
 }

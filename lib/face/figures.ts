@@ -65,12 +65,12 @@ function usualFigure({ lambda2, core, usual, last }: Reading): FigureText {
   return { id: 'usual', value: formatShare(now / usual), remark: `${when}median ${formatReading(usual)}` }
 }
 
-function nextFigure({ core, lambda2: whole, lambda3AtMost, singleCut }: Reading): FigureText {
+function nextFigure({ core, lambda2: whole, lambda3AtMost, singleCut, level }: Reading): FigureText {
   if (lambda3AtMost === null) return { id: 'next', value: '–', remark: 'not known' }
   const value = formatHigh(lambda3AtMost)
   if (singleCut === false) return { id: 'next', value, remark: 'about as strong' }
   const lambda2 = core?.lambda2 ?? whole
-  const times = lambda2 !== null && lambda2 > 0 ? lambda3AtMost / lambda2 : null
+  const times = lambda2 !== null && lambda2 > 0 && level !== 'split' ? lambda3AtMost / lambda2 : null
   return {
     id: 'next',
     value,

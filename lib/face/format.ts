@@ -13,7 +13,11 @@ export function decimalsFor(value: number): number {
   return Math.min(9, 2 - Math.floor(Math.log10(size)))
 }
 
+/** Nobody needs to tell smaller readings from nothing. */
+const LEAST_READING = 1e-6
+
 export function formatReading(value: number): string {
+  if (value > 0 && value < LEAST_READING) return `<${LEAST_READING.toFixed(6)}`
   return plain(value, decimalsFor(value))
 }
 

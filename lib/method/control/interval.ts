@@ -34,6 +34,8 @@ export interface IntervalInput {
   settling: boolean
   /** Other modes are about as slow. */
   near: boolean
+  /** The overlay has come apart: λ₂ is zero, and the reading what noise leaves of it. */
+  isApart: boolean
 }
 
 /**
@@ -41,7 +43,7 @@ export interface IntervalInput {
  * bring, for Ritz values lie above λ₂ (B. Parlett, "The Symmetric Eigenvalue Problem", ch. 11) and come down with every one.
  * It knows of nothing else: not of agents unheard, nor of lies.
  */
-export function intervalOf({ lambda2, trend, fall, settling, near }: IntervalInput): {
+export function intervalOf({ lambda2, trend, fall, settling, near, isApart }: IntervalInput): {
   low: number
   high: number
 } {
@@ -49,5 +51,6 @@ export function intervalOf({ lambda2, trend, fall, settling, near }: IntervalInp
   const below = Math.max(0, fall) * lambda2
   const above = near ? NEAR_ALLOWANCE * lambda2 : 0
   const unsure = settling ? SETTLING_ALLOWANCE * lambda2 : 0
-  return { low: Math.max(0, lambda2 - half - below - unsure), high: lambda2 + half + above + unsure / 2 }
+  const low = isApart ? 0 : Math.max(0, lambda2 - half - below - unsure)
+  return { low, high: lambda2 + half + above + unsure / 2 }
 }

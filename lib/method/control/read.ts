@@ -10,7 +10,7 @@ import { intervalOf, windowIntervals } from './interval'
 import { walkingLambda } from './law'
 import { nextStep } from './link-time'
 import { ordersFrom } from './orders-from'
-import { settlesInMs } from './settling'
+import { NEXT_TO_NOTHING, settlesInMs } from './settling'
 import { heardAgents } from './snapshot'
 import type { ColonyControl, ControlState } from './state'
 import { combinationOf, fallWithMore, gather, ritzOf } from './subspace'
@@ -89,6 +89,8 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const young = watcher(control, sinceMs, pace.intervalMs)
   next.young =
     young && lambda2 !== null ? watchYoung(control.young ?? null, young, subspace, lambda2, now.atMs) : null
+  const isApart =
+    lambda2 !== null && next.cut?.links === 0 && lambda2 < NEXT_TO_NOTHING * control.meanWeightedDegree
   const settles =
     lambda2 === null
       ? null
@@ -102,6 +104,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
           young: next.young?.ratios ?? null,
           lowered,
           wasFresh: control.unsettledAtMs !== input.before?.atMs,
+          isApart,
         })
   const settling = settles !== null && settles > 0
   const interval =
@@ -113,6 +116,7 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
           fall: fallWithMore(subspace, lambda2),
           settling,
           near: singleCut === false,
+          isApart,
         })
   if (settling || lambda2 === null) next.unsettledAtMs = now.atMs
   next.next = control.next ?? nextStep(next, input.control, slowest, input)

@@ -41,19 +41,20 @@ export interface SettlingInput {
   lowered: boolean
   /** At the last look. */
   wasFresh: boolean
+  /** No link crosses the cut, and the reading is next to nothing: it is noise about zero, with nowhere to go. */
+  isApart: boolean
 }
+
+/** A reading below this share of the mean weighted degree, where no link crosses the cut, is zero. */
+export const NEXT_TO_NOTHING = 0.01
 
 /** @returns how long until the reading may be taken for good, ms; 0 once it is fresh */
 export function settlesInMs(input: SettlingInput): number {
   const { atMs, intervalMs, sinceMs, stoodUntilMs, lowered } = input
   const since = (atMs - sinceMs) / intervalMs
-  const waits = [
-    LEAST_INTERVALS - since,
-    STOOD_INTERVALS - (atMs - stoodUntilMs) / intervalMs,
-    growing(input, since),
-    moving(input, since),
-    lowered ? LEAST_INTERVALS : 0,
-  ]
+  const least = [LEAST_INTERVALS - since, STOOD_INTERVALS - (atMs - stoodUntilMs) / intervalMs]
+  if (input.isApart) return Math.max(0, ...least) * intervalMs
+  const waits = [...least, growing(input, since), moving(input, since), lowered ? LEAST_INTERVALS : 0]
   return Math.max(0, ...waits) * intervalMs
 }
 

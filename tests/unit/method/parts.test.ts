@@ -50,6 +50,7 @@ describe('an overlay that comes apart', () => {
         expect(Math.abs(estimate.lambda2! / exactOf(simulation, agents) - 1)).toBeLessThan(0.05)
       }
       expect(simulation.estimate!.lambda2!).toBeLessThan(0.02)
+      expect(simulation.estimate).toMatchObject({ low: 0, settling: false })
 
       for (const { a, b } of crossing) simulation.join(a, b)
       simulation.run(40_000)

@@ -35,6 +35,7 @@ const still: SettlingInput = {
   young: null,
   lowered: false,
   wasFresh: false,
+  isApart: false,
 }
 const young = (...ratios: number[]) => ratios.map((ratio, index) => ({ atMs: 56_000 + 2_000 * index, ratio }))
 
@@ -67,6 +68,12 @@ describe('a reading', () => {
     ['is fresh while it moves by less', { trend: { perMs: 0.0039 / 2_000, scatter: 0.01 } }, 0],
     ['is settling while too few readings tell', { trend: null }, 4_000],
     ['of 0 that stays 0 is fresh', { lambda2: 0 }, 0],
+    [
+      'of an overlay that is apart is fresh however it wanders',
+      { trend: { perMs: 1, scatter: 1 }, isApart: true },
+      0,
+    ],
+    ['of an overlay that has just come apart is settling', { sinceMs: 59_000, isApart: true }, 3_000],
   ])('%s', (_, input, expected) => {
     expect(settlesInMs({ ...still, ...input })).toBeCloseTo(expected, 6)
   })
@@ -74,30 +81,35 @@ describe('a reading', () => {
 
 describe('the interval', () => {
   const trend = { perMs: 0, scatter: 0.01 }
+  const still = { lambda2: 1, trend, fall: 0, settling: false, near: false, isApart: false }
   it('is 1.645 standard deviations either way, and a little', () => {
-    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
+    const { low, high } = intervalOf(still)
     expect(high - 1).toBeCloseTo(0.01645 + LEAST_HALF_WIDTH, 12)
     expect(1 - low).toBeCloseTo(high - 1, 12)
   })
 
   it('reaches further down where more colonies would bring the reading down, and not up', () => {
-    const plain = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
-    const near = intervalOf({ lambda2: 1, trend, fall: 0.02, settling: false, near: false })
+    const plain = intervalOf(still)
+    const near = intervalOf({ ...still, fall: 0.02 })
     expect(near.high).toBe(plain.high)
     expect(plain.low - near.low).toBeCloseTo(0.02, 12)
   })
 
   it('reaches further up where other modes are about as slow: the smallest of several values is picked', () => {
-    const plain = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: false })
-    const near = intervalOf({ lambda2: 1, trend, fall: 0, settling: false, near: true })
+    const plain = intervalOf(still)
+    const near = intervalOf({ ...still, near: true })
     expect(near.low).toBe(plain.low)
     expect(near.high - plain.high).toBeCloseTo(0.004, 12)
   })
 
   it('is wide while settling, and never below 0', () => {
-    const { low, high } = intervalOf({ lambda2: 1, trend, fall: 0, settling: true, near: false })
+    const { low, high } = intervalOf({ ...still, settling: true })
     expect(low).toBeLessThan(0.9)
     expect(high).toBeGreaterThan(1.05)
-    expect(intervalOf({ lambda2: 0.001, trend, fall: 0, settling: true, near: false }).low).toBe(0)
+    expect(intervalOf({ ...still, lambda2: 0.001, settling: true }).low).toBe(0)
+  })
+
+  it('reaches down to 0 where no link holds the overlay together', () => {
+    expect(intervalOf({ ...still, isApart: true })).toEqual({ low: 0, high: intervalOf(still).high })
   })
 })
