@@ -42,10 +42,11 @@ async function build(args: FleetArguments): Promise<Fleet | null> {
   const topology = parseEdgeList(await readFile(args.topology, 'utf8'))
   const nodes = args.labels === null ? null : parseNodeList(await readFile(args.labels, 'utf8'))
   const problems = [
-    ...(topology.ok ? [] : topology.problems),
-    ...(nodes === null || nodes.ok ? [] : nodes.problems),
+    ...(topology.ok ? [] : topology.problems.map((problem) => ({ file: args.topology, problem }))),
+    ...(nodes === null || nodes.ok ? [] : nodes.problems.map((problem) => ({ file: args.labels, problem }))),
   ]
-  for (const problem of problems) process.stderr.write(`${describeTopologyProblem(problem)}\n`)
+  for (const { file, problem } of problems)
+    process.stderr.write(`${file}: ${describeTopologyProblem(problem)}\n`)
   if (!topology.ok || (nodes && !nodes.ok)) return null
   const clock = clockWith(0)
   return createFleet(

@@ -7,12 +7,13 @@ import { countOf, isOrAre, listOf } from './words'
 
 export type Part = NonNullable<Reading['parts']>[number]
 
-/** Each piece of an overlay that has come apart: which it is, as far as sides and labels tell, and its own reading. */
+/** Each piece of an overlay that has come apart, or what is still heard of it: which it is, as far as sides and labels tell, and its own reading. */
 export function partsTold(
   parts: readonly PartEstimate[],
   agents: readonly JudgedAgent[],
   { sides, cut }: Pick<Memory, 'sides' | 'cut'>,
 ): Part[] {
+  const isBySides = parts.length === 1 || (parts.length === 2 && cut?.links === 0)
   return parts.map(({ agents: ids, estimate }) => {
     const within = new Set(ids)
     const follows = labelFollowed(
@@ -20,7 +21,7 @@ export function partsTold(
     )
     const { lambda2, low, high, settling } = estimate
     return {
-      side: parts.length === 2 && cut?.links === 0 ? sideOfAll(ids, sides) : null,
+      side: isBySides ? sideOfAll(ids, sides) : null,
       nodes: ids.length,
       label: follows && { key: follows.key, values: follows.a },
       lambda2,
@@ -31,6 +32,13 @@ export function partsTold(
   })
 }
 
+/** What is said of those still heard while the others are not. */
+function aloneText({ nodes, label, lambda2, settling }: Part): string {
+  const which = `The ${nodes} nodes still heard${label ? `, of ${listOf(label.values)},` : ''}`
+  if (lambda2 === null) return `${which} are being read by themselves.`
+  return `${which} read ${lambda2.toPrecision(3)} among themselves${settling ? ', settling' : ''}.`
+}
+
 function sideOfAll(ids: readonly string[], sides: Memory['sides']): Side | null {
   const [first] = ids
   const side = first === undefined ? undefined : sides[first]
@@ -39,7 +47,9 @@ function sideOfAll(ids: readonly string[], sides: Memory['sides']): Side | null 
 
 /** '' where the overlay has not come apart. */
 export function partsText(parts: readonly Part[]): string {
-  if (parts.length === 0) return ''
+  const [only] = parts
+  if (!only) return ''
+  if (parts.length === 1) return aloneText(only)
   const each = parts.map(({ nodes, label, lambda2, settling }) => {
     const which = `${countOf(nodes, 'node')}${label ? ` of ${listOf(label.values)}` : ''}`
     if (nodes === 1) return `${which} alone`

@@ -2,7 +2,7 @@ import type { Check } from './check'
 import type { Follows } from './follows'
 import type { RuleName } from './level'
 import type { Level, Side, Trend } from './memory'
-import type { Part } from './parts'
+import { type Part, partsText } from './parts'
 import { leftOutText, remarks } from './remarks'
 import { countOf, isOrAre, listOf } from './words'
 
@@ -65,7 +65,7 @@ export function verdictOf(facts: VerdictFacts): Verdict {
   if (facts.state === 'reading') return ofReading(facts)
   if (facts.rule === 'links-gone') return linksGone(facts)
   const { verdict, detail } = withoutReading(facts, facts.state)
-  return { verdict, detail: sentences(detail, ...leftOutText(facts.leftOut)) }
+  return { verdict, detail: sentences(detail, partsText(facts.parts ?? []), ...leftOutText(facts.leftOut)) }
 }
 
 function treatAsSplit(facts: VerdictFacts, together: NonNullable<VerdictFacts['treatAsSplit']>): Verdict {
@@ -82,7 +82,12 @@ function treatAsSplit(facts: VerdictFacts, together: NonNullable<VerdictFacts['t
       : `What the ${facts.heard} agents still heard report says nothing about the rest.`
   return {
     verdict: `Treat as split. ${countOf(nodes, 'node')} ${isOrAre(nodes)} unheard, ${which}.`,
-    detail: `${fell} ${still}${facts.state === 'unheard' ? ' The reading is withheld.' : ''}`,
+    detail: sentences(
+      fell,
+      still,
+      facts.state === 'unheard' ? 'The reading is withheld.' : '',
+      partsText(facts.parts ?? []),
+    ),
   }
 }
 

@@ -56,7 +56,9 @@ export const readingSchema = z.object({
   sides: z.tuple([side, side]).nullable(),
   crossingLinks: z.number().int().nullable(),
   crossingWeight: z.number().nullable(),
-  /** Each piece by itself, once the overlay has come apart; its λ₂ is null while it is being read, and for a node alone. */
+  /**
+   * Each piece by itself, once the overlay has come apart; or, while too few are heard, those still heard among themselves. Its λ₂ is null while it is being read, and for a node alone.
+   */
   parts: z
     .array(
       z.object({

@@ -50,7 +50,11 @@ function pieceFigures({ parts = [] }: Reading): FigureText[] {
       low !== null && high !== null && lambda2 !== null ? formatInterval(low, high, lambda2) : null
     return {
       id: `piece-${index}`,
-      label: side ? `side ${side} by itself` : `piece ${index + 1} by itself`,
+      label: side
+        ? `side ${side} by itself`
+        : parts.length === 1
+          ? 'still heard'
+          : `piece ${index + 1} by itself`,
       value: lambda2 === null ? (nodes === 1 ? 'alone' : 'being read') : formatReading(lambda2),
       remark: settling ? `${who}; settling` : interval ? `${who}; ${interval}` : who,
     }

@@ -33,6 +33,8 @@ export interface ColonyOrders {
   birthRateY: number
   /** Ids of agents that refuse this colony's walkers. */
   refused: readonly string[]
+  /** Its walkers stay where they are, whatever ω is. Agents that do not know it let them walk, without births. */
+  still?: boolean
 }
 
 /** How agents combine their colonies' mean occupancies into a Fiedler value, and where to count cuts. */

@@ -21,6 +21,7 @@ const colonyOrdersSchema = z.object({
   birthRateX: rate,
   birthRateY: rate,
   refused: z.array(z.string().min(1).max(64)).max(MAX_REFUSED),
+  still: z.boolean().optional(),
 })
 
 const sweepOrdersSchema = z.object({

@@ -52,7 +52,7 @@ export interface HeardColony {
   mean: number
   /** τ: over how long the sender averages. */
   windowMs: number
-  /** False while either end refuses the colony, or it is too young. */
+  /** False while either end refuses the colony, or it stands still or is too young. */
   counts: boolean
 }
 

@@ -13,6 +13,7 @@ export function heardColonies(
   for (const { colony: slot, seeding, x, y, mean, refused } of arrivals) {
     const colony = colonies.get(slot)
     if (!colony) continue
+    const walks = !refused && !colony.refuses && !colony.orders.still
     const ageMs = nowMs - colony.adoptedAtMs
     heard.push({
       colony: slot,
@@ -21,7 +22,7 @@ export function heardColonies(
       y,
       mean,
       windowMs: Math.max(1, Math.min(AVERAGING_INTERVALS * intervalMs, ageMs / 2)),
-      counts: !refused && !colony.refuses && ageMs >= LEAST_AGE_INTERVALS * intervalMs,
+      counts: walks && ageMs >= LEAST_AGE_INTERVALS * intervalMs,
     })
   }
   return heard

@@ -1,10 +1,11 @@
+import type { ColonyOrders, Orders } from '../orders'
 import { CORE_COLONIES, type CoreEstimate, coreOf, NO_CORE } from './core'
 import type { EvaluateInput, Evaluation } from './estimate'
 import { evaluate } from './evaluate'
 import { paceNow } from './haste'
 import { HEARD_BY_INTERVALS } from './link-time'
 import { nextOrders } from './orders-from'
-import { PART_COLONIES, type PartEstimate, partsOf } from './parts'
+import { aloneNow, PART_COLONIES, type PartEstimate, partsAlone, partsOf } from './parts'
 import type { Snapshot } from './snapshot'
 import { type ControlState, initialControl } from './state'
 
@@ -32,9 +33,13 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
       : null
   const headline = ofCore?.evaluation.control.combination ? ofCore.evaluation : whole
   const before = input.control.parts ?? []
-  const parts = headline.estimate.withheld
-    ? [...before]
-    : partsOf(before, headline.control, apart, { now, settings })
+  const isUnheard = whole.estimate.withheld === 'unheard'
+  const alone = isUnheard ? aloneNow(input.control.alone, input) : null
+  const parts = alone
+    ? partsAlone(before, alone, input)
+    : headline.estimate.withheld
+      ? [...before]
+      : partsOf(before, headline.control, apart, input)
   const ofParts = parts.map(({ agents, control }, index) => {
     const others = now.agents.map(({ agentId }) => agentId).filter((agentId) => !agents.includes(agentId))
     return evaluateWithin(others, control, input, {
@@ -43,27 +48,34 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
     })
   })
   const within = [...(ofCore ? [ofCore] : []), ...ofParts]
-  const walking = sharedWalking([whole, ...within.map(({ evaluation }) => evaluation)], input)
+  // Of the whole nothing is known then, and what walked of it waits where it is.
+  const isStill = isUnheard && parts.length > 0
+  const walking = isStill
+    ? walkingOf(ofParts[0]!.evaluation.control)
+    : sharedWalking([whole, ...within.map(({ evaluation }) => evaluation)], input)
+  // So that the whole goes on as it was once it is heard again.
+  const kept = isStill ? { intervalMs: walking.intervalMs } : walking
+  const still = isStill ? { still: true } : {}
   return {
     ...whole,
     control: {
       ...whole.control,
-      ...walking,
-      core: { ...core, control: ofCore && { ...ofCore.evaluation.control, ...walking } },
+      ...kept,
+      core: { ...core, control: ofCore && { ...ofCore.evaluation.control, ...kept } },
       parts: parts.map(({ agents }, index) => ({
         agents,
         control: { ...ofParts[index]!.evaluation.control, ...walking },
       })),
+      alone,
     },
     orders: {
       ...whole.orders,
       pace: paceNow(walking, settings),
-      next: whole.orders.linkTimePerSecond === 0 ? undefined : nextOrders(walking, now.atMs),
+      ...walkingOrders(walking, !isStill && whole.orders.linkTimePerSecond === 0, now.atMs),
       colonies: [
-        ...whole.orders.colonies,
-        ...within.flatMap(({ refused, evaluation }) =>
-          evaluation.orders.colonies.map((colony) => ({ ...colony, refused })),
-        ),
+        ...whole.orders.colonies.map((colony) => ({ ...colony, ...still })),
+        ...(ofCore ? coloniesWithin(ofCore).map((colony) => ({ ...colony, ...still })) : []),
+        ...ofParts.flatMap(coloniesWithin),
       ],
       // Nodes tell their value, and cuts are counted, by what is the headline.
       sweep: ofCore?.evaluation.control.combination ?? whole.orders.sweep,
@@ -73,10 +85,36 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
   }
 }
 
+type Walking = Pick<ControlState, 'linkTimePerSecond' | 'next' | 'intervalMs'>
+
+const walkingOf = ({ linkTimePerSecond, next, intervalMs }: ControlState): Walking => ({
+  linkTimePerSecond,
+  next,
+  intervalMs,
+})
+
+function walkingOrders(
+  walking: Walking,
+  isStopped: boolean,
+  atMs: number,
+): Pick<Orders, 'linkTimePerSecond' | 'next'> {
+  if (isStopped) return { linkTimePerSecond: 0, next: undefined }
+  return { linkTimePerSecond: walking.linkTimePerSecond, next: nextOrders(walking, atMs) }
+}
+
+function coloniesWithin({ refused, evaluation }: Within): ColonyOrders[] {
+  return evaluation.orders.colonies.map((colony) => ({ ...colony, refused }))
+}
+
 /** All colonies that walk, those of the core and of the pieces among them. */
 export function coloniesOf({ colonies, core, parts = [] }: ControlState): ControlState['colonies'] {
   const within = [core?.control, ...parts.map(({ control }) => control)]
   return [...colonies, ...within.flatMap((control) => control?.colonies ?? [])]
+}
+
+interface Within {
+  refused: readonly string[]
+  evaluation: Evaluation
 }
 
 /** The control loop of a part of the overlay: as though the others had never joined. */
@@ -85,7 +123,7 @@ function evaluateWithin(
   control: ControlState | null,
   input: EvaluateInput,
   slots: { firstSlot: number; colonies: number },
-): { refused: readonly string[]; evaluation: Evaluation } {
+): Within {
   const { settings, before, now, sequence } = input
   const apart = new Set(refused)
   const without = (snapshot: Snapshot): Snapshot => ({
@@ -110,14 +148,11 @@ function evaluateWithin(
 }
 
 /** All colonies walk at one rate and report as often: the one that asks for less ω decides, and the one in more haste. */
-function sharedWalking(
-  all: readonly Evaluation[],
-  { control, now, settings }: EvaluateInput,
-): Pick<ControlState, 'linkTimePerSecond' | 'next' | 'intervalMs'> {
+function sharedWalking(all: readonly Evaluation[], { control, now, settings }: EvaluateInput): Walking {
   const [whole] = all
-  const linkTimePerSecond = whole!.control.linkTimePerSecond
+  if (all.length === 1) return walkingOf(whole!.control)
+  const { linkTimePerSecond } = whole!.control
   const intervalMs = Math.min(...all.map((one) => paceNow(one.control, settings).intervalMs))
-  if (all.length === 1) return { linkTimePerSecond, intervalMs, next: whole!.control.next }
   // What agents have been told to begin later stays.
   const pending = control.next && control.next.fromAtMs > now.atMs ? control.next : null
   if (pending) return { linkTimePerSecond, intervalMs, next: pending }

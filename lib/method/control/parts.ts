@@ -1,5 +1,5 @@
 import type { Estimate, EvaluateInput } from './estimate'
-import { heardAgents, type Snapshot } from './snapshot'
+import { heardAgents, lateMs, type Snapshot } from './snapshot'
 import type { ControlState, CutCount } from './state'
 
 /** Colonies that only one piece has. */
@@ -9,7 +9,13 @@ export const MOST_PARTS = 4
 /** Every piece's colonies are refused by all other agents, by name: orders must not grow beyond so many names, some 100 kB. */
 export const MOST_NAMED = 2_500
 
-/** A piece of an overlay that has come apart: no link is left between its agents and the others. */
+/** Agents heard while too few are become a piece once it has been just these for so long. */
+export const ALONE_INTERVALS = 3
+
+/**
+ * A piece of an overlay that has come apart: no link is left between its agents and the others. Or those still heard while
+ * the others are not: their reading is of the links among themselves.
+ */
 export interface PartControl {
   /** Agent ids, sorted. */
   agents: string[]
@@ -47,6 +53,35 @@ export function partsOf(
   const named = PART_COLONIES * (found.length - 1) * joined.length
   const isTooMuch = found.length > MOST_PARTS || named > MOST_NAMED
   return isTooMuch ? [] : found.map((agents) => ({ agents, control: null }))
+}
+
+/** Who is heard in time while too few are, and since when it has been just these. */
+export function aloneNow(
+  before: ControlState['alone'],
+  { now, settings }: Pick<EvaluateInput, 'now' | 'settings'>,
+): NonNullable<ControlState['alone']> {
+  const { intervalMs } = settings.pace
+  const agents = heardAgents(now, intervalMs)
+    .filter(
+      ({ last }) => now.atMs - last.receivedAtMs <= lateMs(intervalMs) && last.report.sums.attached === 1,
+    )
+    .map(({ agentId }) => agentId)
+    .sort()
+  const isSame = before?.agents.join(' ') === agents.join(' ')
+  return { agents, sinceMs: isSame ? before!.sinceMs : now.atMs }
+}
+
+/** Those still heard as a piece, once they have been the same for long enough; nobody knows how the others fare. */
+export function partsAlone(
+  before: readonly PartControl[],
+  { agents, sinceMs }: NonNullable<ControlState['alone']>,
+  { now, settings }: Pick<EvaluateInput, 'now' | 'settings'>,
+): PartControl[] {
+  const isSettled = now.atMs - sinceMs >= ALONE_INTERVALS * settings.pace.intervalMs
+  const named = PART_COLONIES * (now.agents.length - agents.length)
+  if (!isSettled || agents.length < 2 || named > MOST_NAMED) return []
+  const held = before.find((part) => part.agents.join(' ') === agents.join(' '))
+  return [{ agents, control: held?.control ?? null }]
 }
 
 /** Agents by the interval between clean thresholds that their value lies in. Null while not all have said their value. */

@@ -89,8 +89,10 @@ export interface ControlState {
   young?: Young | null
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */
   core?: CoreControl
-  /** The pieces an overlay has come apart into; missing or empty while it has not. */
+  /** The pieces an overlay has come apart into, or those still heard of it; missing or empty while it has not. */
   parts?: PartControl[]
+  /** Who alone is heard while too few are, and since when it has been just these; missing or null while enough are. */
+  alone?: { agents: string[]; sinceMs: number } | null
 }
 
 export function initialControl(atMs: number, pace: Pace): ControlState {

@@ -295,7 +295,7 @@ export class WalkNode {
       if (detached || colony.refuses) dropAll(colony)
       if (live.length === 0 || colony.refuses) continue
       place(colony)
-      if (linkTime === 0) continue
+      if (linkTime === 0 || colony.orders.still) continue
       const exits = exitsFor(live, colony)
       const difference = walk(colony, exits, linkTime, this.random)
       average(colony, difference, dueMs, nowMs, orders.pace.intervalMs)

@@ -57,6 +57,20 @@ describe('the pieces of an overlay', () => {
     expect(second?.side).toBeNull()
   })
 
+  it('are one while too few are heard: those still heard, among themselves', () => {
+    const told = (one: PartEstimate) => partsTold([one], agents, { sides, cut: { ...cut, links: 3 } })
+    expect(told(piece([0, 1, 2, 3], 2.3456))).toMatchObject([{ side: 'a', nodes: 4, lambda2: 2.3456 }])
+    expect([
+      partsText(told(piece([0, 1, 2, 3], 2.3456))),
+      partsText(told(piece([0, 1, 2, 3], 2.3456, true))),
+      partsText(told(piece([0, 2], null))),
+    ]).toEqual([
+      'The 4 nodes still heard, of Gullhythe and Tarnwick, read 2.35 among themselves.',
+      'The 4 nodes still heard, of Gullhythe and Tarnwick, read 2.35 among themselves, settling.',
+      'The 2 nodes still heard are being read by themselves.',
+    ])
+  })
+
   it('are told one by one: read, being read, alone', () => {
     const told = partsTold([piece([0, 1], 2.3456), piece([2, 3, 4], null), piece([5], null)], agents, {
       sides: {},

@@ -59,6 +59,37 @@ describe('an overlay that comes apart', () => {
     },
   )
 
+  it.each([
+    ['the other half is gone', 1],
+    ['the other half only cannot reach the collector', 0],
+  ])('has those still heard read among themselves, and goes on as it was: %s', (_, loss) => {
+    const simulation = simulateOn(two, 'alone', { audits: true })
+    simulation.run(60_000)
+    const exact = exactLambda2(simulation)
+    const own = Array.from({ length: 18 }, (_, node) => `node-${node}`)
+    const crossing = simulation.liveLinks().filter(({ a, b }) => a < 18 !== b < 18)
+    const setBeyond = (silent: boolean) => {
+      for (const { a, b } of crossing) simulation.setLoss(a, b, silent ? loss : 0)
+      for (const agent of simulation.agents.slice(18)) agent.silent = silent
+    }
+    setBeyond(true)
+    simulation.run(50_000)
+    expect(simulation.estimate).toMatchObject({ withheld: 'unheard', lambda2: null })
+    expect(simulation.parts).toHaveLength(1)
+    const [alone] = simulation.parts
+    expect(alone!.agents).toEqual(own.sort())
+    expect(Math.abs(alone!.estimate.lambda2! / exactOf(simulation, own) - 1)).toBeLessThan(0.05)
+
+    const seedings = simulation.control.colonies.map(({ seeding }) => seeding)
+    setBeyond(false)
+    simulation.run(15_000)
+    expect(simulation.parts).toEqual([])
+    expect(Math.abs(simulation.estimate!.lambda2! / exact - 1)).toBeLessThan(0.05)
+    const kept = simulation.control.colonies.filter(({ seeding }) => seedings.includes(seeding))
+    expect(kept.length).toBeGreaterThanOrEqual(seedings.length - 1)
+    expect(simulation.refusals).toEqual([])
+  })
+
   it('goes on after a change of leader: what it remembers is plain JSON', () => {
     const simulation = simulateOn(two, 'leader')
     simulation.run(60_000)
