@@ -11,6 +11,8 @@ import { Usual } from './usual'
 
 /** How often to look for overlays without a leader: also how long one can be without after a leader ended. */
 export const LOOK_MS = 500
+/** While it cannot lead it says so this often, not at every look. */
+const SAY_AGAIN_MS = 30_000
 
 export interface LeaderComponents {
   forkEm(): Promise<EntityManager>
@@ -67,13 +69,18 @@ export class Leader {
 
   async #run(signal: AbortSignal): Promise<void> {
     const { clock, log } = this.#components
+    let saidMs = Number.NEGATIVE_INFINITY
     while (!signal.aborted) {
       const session = new LockSession({ url: this.#url })
       try {
         await session.start()
+        saidMs = Number.NEGATIVE_INFINITY
         await this.#lead(session, AbortSignal.any([signal, session.lost]))
       } catch (error) {
-        if (!signal.aborted) log.warn({ err: error }, 'cannot lead at the moment')
+        if (!signal.aborted && clock.monotonicMs() - saidMs >= SAY_AGAIN_MS) {
+          saidMs = clock.monotonicMs()
+          log.warn({ err: error }, 'cannot lead at the moment; tries again every half second')
+        }
       }
       await session.stop().catch(() => undefined)
       if (!signal.aborted) await sleep(clock, LOOK_MS, signal)

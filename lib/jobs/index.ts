@@ -1,4 +1,5 @@
 /** What is done now and then by whichever process comes first. */
+export { forgetEvents } from './events'
 export { Jobs, type JobsComponents } from './jobs'
 export { rollUp, rollUpAgain } from './roll-up'
 export { forgetNodes, thinSnapshots } from './snapshots'

@@ -76,7 +76,8 @@ export class Jobs {
         })),
       ),
       logger: new Logger(() => (level, message, meta) => {
-        if (level === 'error' || level === 'warning') log.warn({ ...meta }, message)
+        // Its details hold whole connections; what is to be read of them is the error.
+        if (level === 'error' || level === 'warning') log.warn({ err: meta?.error }, message)
       }),
     })
   }

@@ -1,5 +1,6 @@
 import { dropPartitions, type EntityManager, ensurePartitions } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
+import { forgetEvents } from './events'
 import { rollUp } from './roll-up'
 import { forgetNodes, thinSnapshots } from './snapshots'
 
@@ -31,6 +32,13 @@ export const TASKS: readonly Task[] = [
     run: async ({ forkEm, now }) => {
       await thinSnapshots(await forkEm(), now().getTime())
       await forgetNodes(await forkEm(), now())
+    },
+  },
+  {
+    name: 'forget-events',
+    when: '41 3 * * *',
+    run: async ({ forkEm, now }) => {
+      await forgetEvents(await forkEm(), now())
     },
   },
   {

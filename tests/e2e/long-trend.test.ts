@@ -62,6 +62,11 @@ it('nothing runs over the edge of a narrow screen', async () => {
 it('the server runs the jobs that are due, and says nothing of faults', async () => {
   const em = server.database.orm.em.fork()
   const known = await sql(em, 'select identifier from graphile_worker._private_known_crontabs order by 1')
-  expect(known.map(({ identifier }) => identifier)).toEqual(['keep-partitions', 'roll-up', 'thin-snapshots'])
+  expect(known.map(({ identifier }) => identifier)).toEqual([
+    'forget-events',
+    'keep-partitions',
+    'roll-up',
+    'thin-snapshots',
+  ])
   expect(server.failures()).toEqual([])
 })

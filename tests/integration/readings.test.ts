@@ -7,7 +7,8 @@ import { getReading } from '@/lib/data/readings'
 import { getReadings } from '@/lib/data/readings-list'
 import { READINGS_MOST } from '@/lib/data/readings-range'
 import { HOURS_KEEP_DAYS, sql } from '@/lib/db'
-import { rollUp } from '@/lib/jobs'
+import { forgetEvents, rollUp } from '@/lib/jobs'
+import { EVENTS_KEEP_DAYS } from '@/lib/jobs/events'
 import { seedOverlay } from '@/tests/support/collector'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { callAsUser, seedTeam } from '@/tests/support/people'
@@ -268,4 +269,21 @@ describe('readings of a long range', () => {
     const weak = items.find(({ level }) => level === 'weak')
     expect(weak).toMatchObject({ heard: 18, joined: 36, at: '2026-12-01T00:00:00.000Z' })
   })
+})
+
+it('forgets events once they are older than any trend they could stand below', async () => {
+  const now = new Date('2031-03-12T03:41:00.000Z')
+  const before = (days: number) => new Date(now.getTime() - days * 86_400_000)
+  for (const [days, text] of [
+    [EVENTS_KEEP_DAYS + 1, 'older'],
+    [EVENTS_KEEP_DAYS - 1, 'kept'],
+  ] as const)
+    await sql(em(), `insert into overlay_events (overlay_id, at, kind, text) values (?, ?, 'withheld', ?)`, [
+      overlay.id,
+      before(days),
+      text,
+    ])
+  await forgetEvents(em(), now)
+  const left = await sql(em(), 'select text from overlay_events where overlay_id = ?', [overlay.id])
+  expect(left).toEqual([{ text: 'kept' }])
 })
