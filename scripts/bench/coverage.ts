@@ -15,12 +15,12 @@ import { partReadings, withoutSamples } from './coverage/without-agent'
 type Print = (line: string) => void
 
 /**
- * `npm run bench -- coverage [--seeds 2]`: what partial coverage does to the reading. Agents unheard: simulated at steady pace, in
+ * `npm run bench -- coverage [--seeds 1]`: what partial coverage does to the reading. Agents unheard: simulated at steady pace, in
  * virtual time. Nodes without an agent: by the exact spectrum of the part that has agents, which a few simulated ones are held against.
  * What lib/method/coverage-effect.ts states was measured with it.
  */
 export function benchCoverage(args: readonly string[], print: Print): void {
-  const { values } = parseArgs({ args: [...args], options: { seeds: { type: 'string', default: '2' } } })
+  const { values } = parseArgs({ args: [...args], options: { seeds: { type: 'string', default: '1' } } })
   const seeds = Number(values.seeds)
   print(`${overlaysOf(0).length} overlays of 36 to 100 nodes, ${seeds} seed${seeds === 1 ? '' : 's'} each.`)
   printUnheard(unheardRows([...unheardSamples(seeds)]), print)
@@ -34,7 +34,7 @@ const SEEDS_TIMES = 5
 function printUnheard(rows: readonly UnheardRow[], print: Print): void {
   print('')
   print(
-    `Agents unheard, the same ones from ${COLD_MS / 1000} s on for ${(MOVING_MS + WATCH_MS) / 1000} s: last fresh reading over exact λ₂.`,
+    `Agents unheard, each set of them for ${(MOVING_MS + WATCH_MS) / 1000} s, the first ${COLD_MS / 1000} s from cold: last fresh reading over exact λ₂.`,
   )
   print(`${'chosen'.padEnd(14)} unheard  cases  not fresh     5 %    50 %    95 %`)
   for (const { choice, share, cases, notFresh, low, median, high } of rows)
