@@ -66,7 +66,7 @@ function unmeasuredMeaning({ linksMeasured, linksKnown, withoutAgent = 0 }: Read
   const range = withoutAgentEffect(share)
   if (range === null)
     return 'Links that no agent measures are not in the reading: the overlay can be weaker there than it says, and a false calm is possible.'
-  return `Links that no agent measures are not in the reading: with ${formatShare(share)} of neighbours without an agent, here and there, computed readings stood ${timesText(range)} that of the whole in 9 of 10 cases. A false calm is possible: where a whole side had no agent, one in 20 stood over ${formatLow(SIDE_WITHOUT_TIMES, 0)} times too high.`
+  return `Links that no agent measures are not in the reading: with ${formatShare(share)} of neighbours without an agent, here and there, computed readings stood ${timesText(range)} that of the whole in 9 of 10 cases. A false calm is possible: where up to half of the nodes, all at one side of a cut, had none, one in 20 stood over ${formatLow(SIDE_WITHOUT_TIMES, 0)} times too high.`
 }
 
 /** Rounded outward. */

@@ -26,7 +26,7 @@ describe('coverage', () => {
       '1 agent left out | strong',
     ])
     expect(meaning({ linksMeasured: 112, withoutAgent: 4, leftOut: 1 })).toBe(
-      'Links that no agent measures are not in the reading: with 2\u202f% of neighbours without an agent, here and there, computed readings stood between 0.7 and 1.1 times that of the whole in 9 of 10 cases. A false calm is possible: where a whole side had no agent, one in 20 stood over 15 times too high. The figures of one agent did not hold, so the reading does without that part of the overlay.',
+      'Links that no agent measures are not in the reading: with 2\u202f% of neighbours without an agent, here and there, computed readings stood between 0.7 and 1.1 times that of the whole in 9 of 10 cases. A false calm is possible: where up to half of the nodes, all at one side of a cut, had none, one in 20 stood over 15 times too high. The figures of one agent did not hold, so the reading does without that part of the overlay.',
     )
   })
 
