@@ -1,5 +1,6 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
 import { benchAgent } from './bench/agent'
+import { benchCoverage } from './bench/coverage'
 import { benchIngest } from './bench/ingest'
 import { benchReading } from './bench/reading'
 import { benchScale } from './bench/scale'
@@ -8,6 +9,7 @@ type Bench = (args: readonly string[], print: (line: string) => void) => void | 
 
 const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
+  coverage: benchCoverage,
   ingest: benchIngest,
   reading: benchReading,
   scale: benchScale,
