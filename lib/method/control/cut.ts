@@ -32,9 +32,15 @@ export function bestCut(
     const ratio = weight / Math.min(above, below)
     const links = Math.round(total((sums) => sums.crossing) / 2)
     if (links === 0) clean.push({ threshold, above })
-    if (!best || ratio < best.ratio) best = { threshold, sweep, above, below, links, weight, ratio }
+    // Of several that nothing crosses the evenest: a node alone is none of the sides then.
+    const isEvener =
+      best !== null && ratio === best.ratio && even(above, below) > even(best.above, best.below)
+    if (!best || ratio < best.ratio || isEvener)
+      best = { threshold, sweep, above, below, links, weight, ratio }
   })
   if (!best) return null
   const { ratio: _, ...cut } = best as CutCount & { ratio: number }
   return { ...cut, clean }
 }
+
+const even = (above: number, below: number): number => Math.min(above, below)
