@@ -1,4 +1,4 @@
-import { type EntityManager, LockSession, overlayLockKey } from '@/lib/db'
+import { type EntityManager, LockSession, type LockSettings, overlayLockKey } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import { forkRandom, type Random } from '@/lib/method/random'
 import { type Clock, sleep } from './clock'
@@ -25,7 +25,7 @@ export interface LeaderComponents {
 /** Leads the overlays that nobody else leads. One connection holds this process's locks. */
 export class Leader {
   readonly #components: LeaderComponents
-  readonly #url: string
+  readonly #lock: LockSettings
   readonly #terms = new Map<string, { term: Term; done: Promise<void> }>()
   /** What ended terms leave behind: looks at the usual that are not over. */
   readonly #left = new Set<Promise<void>>()
@@ -34,9 +34,9 @@ export class Leader {
   #wake: () => void = () => {}
   #count = 0
 
-  constructor(components: LeaderComponents, init: { url: string }) {
+  constructor(components: LeaderComponents, init: LockSettings) {
     this.#components = components
-    this.#url = init.url
+    this.#lock = init
   }
 
   /** Ids of the overlays led now, and how long their rounds take. */
@@ -68,7 +68,7 @@ export class Leader {
   async #run(signal: AbortSignal): Promise<void> {
     const { clock, log } = this.#components
     while (!signal.aborted) {
-      const session = new LockSession({ url: this.#url })
+      const session = new LockSession(this.#lock)
       try {
         await session.start()
         await this.#lead(session, AbortSignal.any([signal, session.lost]))
