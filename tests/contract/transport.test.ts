@@ -8,6 +8,7 @@ import {
   type Transport,
 } from '@/agent'
 import { MAX_FRAME_BYTES } from '@/lib/protocol'
+import { freePort } from '../support/free-port'
 import { privateCa } from '../support/private-ca'
 import { createSocketTransport } from '../support/socket-transport'
 
@@ -150,7 +151,7 @@ describe.each(Object.entries(implementations))('a link over %s', (_, { make, hos
 
   test('an address that is taken is refused; one that was closed is free at once', async () => {
     const [, listener] = make()
-    const first = await listener.listen({ host, port: 0 }, () => {})
+    const first = await listener.listen({ host, port: await freePort() }, () => {})
     await expect(listener.listen({ host, port: first.port }, () => {})).rejects.toThrow()
     await first.close()
     const second = await listener.listen({ host, port: first.port }, () => {})

@@ -8,6 +8,7 @@ import {
   MESSAGE_KIND,
   signOrders,
 } from '@/lib/protocol'
+import { FakeClock } from '../support/fake-clock'
 import { someFrame, someOrders } from '../support/frames'
 import { LinkEnd, type LinkEndInit, realClock } from '../support/link-end'
 import { type Identity, NOW_SECONDS, testOverlay } from '../support/passes'
@@ -168,7 +169,7 @@ describe('passes', () => {
     adopt(b)
     a.pass = tar.pass
     a.links.offerPass(tar.pass)
-    await new Promise((resolve) => setTimeout(resolve, 100))
+    await b.until(() => b.judged.includes(tar.pass))
     b.nowSeconds = NOW_SECONDS + 3_600
     await new Promise((resolve) => setTimeout(resolve, 1_300))
     expect(downs(b)).toEqual([])
@@ -248,7 +249,8 @@ describe('limits', () => {
   }
 
   test('what piled up while an end stood still comes in one burst and is taken; a flood is not', async () => {
-    const { b, address } = await linked()
+    // Time stands still for the limit: what may come meanwhile does not depend on how fast this machine is.
+    const { b, address } = await linked({}, { clock: new FakeClock() })
     const stranger = await Stranger.dial(address)
     await stranger.greet(eel)
     await stranger.message(2)

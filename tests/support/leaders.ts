@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto'
+import type { Clock } from '@/lib/collector/clock'
 import { Leader } from '@/lib/collector/leader'
 import { systemClock } from '@/lib/collector/process'
 import { Listener } from '@/lib/db'
@@ -19,7 +20,11 @@ export interface TestLeader {
 }
 
 /** A leader with a listening connection of its own, as in a process of its own. */
-export function startTestLeader(database: TestDatabase, seed: number): TestLeader {
+export function startTestLeader(
+  database: TestDatabase,
+  seed: number,
+  init: { clock?: Clock } = {},
+): TestLeader {
   const failures: object[] = []
   const listener = new Listener({ random: Math.random, warn: () => {} }, { url: database.url })
   listener.start()
@@ -27,7 +32,7 @@ export function startTestLeader(database: TestDatabase, seed: number): TestLeade
     {
       forkEm: async () => database.orm.em.fork(),
       subscribe: (channel, fn, signal) => listener.subscribe(channel, fn, signal),
-      clock: systemClock,
+      clock: init.clock ?? systemClock,
       random: createRandom(seed),
       log: {
         info: () => {},

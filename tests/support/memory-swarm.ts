@@ -3,6 +3,7 @@ import { MemoryNetwork, silentLogger } from '@/agent'
 import { createRandom, type Random } from '@/lib/method/random'
 import { parseEdgeList } from '@/lib/topology'
 import { createFleet, type Fleet, type FleetInit } from '@/scripts/fleet/fleet'
+import { cryptoAtRest } from './crypto-at-rest'
 import { FakeClock } from './fake-clock'
 import { TestCollector, type TestCollectorInit } from './test-collector'
 
@@ -31,7 +32,8 @@ export interface SwarmInit extends TestCollectorInit {
 export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
   const topology = parseEdgeList(init.edges)
   if (!topology.ok) throw new Error(JSON.stringify(topology.problems))
-  const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12) })
+  // Passes are signed and judged in other threads: the clock waits for them, however long they take.
+  const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12), settle: cryptoAtRest })
   const random = createRandom(init.seed)
   const collector = new TestCollector({ clock, random: createRandom(`${init.seed} collector`) }, init)
   const stalledUntilMs = new Map<string, number>()
