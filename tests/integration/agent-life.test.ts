@@ -149,7 +149,7 @@ describe('an agent that runs', () => {
     const peers = join(folder, 'peers.json')
     await writeFile(
       peers,
-      JSON.stringify({ peers: [{ address: '127.0.0.1:4000', quality: 0.5 }, 'without.invalid'] }),
+      JSON.stringify({ peers: [{ address: '127.0.0.1:4000', quality: 0.5 }, '127.0.0.9'] }),
     )
     const stopping = new AbortController()
     const pin = options('pin-02', {

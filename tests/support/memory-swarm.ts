@@ -3,9 +3,9 @@ import { MemoryNetwork, silentLogger } from '@/agent'
 import { createRandom, type Random } from '@/lib/method/random'
 import { parseEdgeList } from '@/lib/topology'
 import { createFleet, type Fleet, type FleetInit } from '@/scripts/fleet/fleet'
-import { cryptoAtRest } from './crypto-at-rest'
 import { FakeClock } from './fake-clock'
 import { TestCollector, type TestCollectorInit } from './test-collector'
+import { within } from './until'
 
 export interface Swarm {
   clock: FakeClock
@@ -32,8 +32,7 @@ export interface SwarmInit extends TestCollectorInit {
 export async function memorySwarm(init: SwarmInit): Promise<Swarm> {
   const topology = parseEdgeList(init.edges)
   if (!topology.ok) throw new Error(JSON.stringify(topology.problems))
-  // Passes are signed and judged in other threads: the clock waits for them, however long they take.
-  const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12), settle: cryptoAtRest })
+  const clock = new FakeClock({ epochMs: Date.UTC(2031, 4, 6, 12) })
   const random = createRandom(init.seed)
   const collector = new TestCollector({ clock, random: createRandom(`${init.seed} collector`) }, init)
   const stalledUntilMs = new Map<string, number>()
@@ -92,6 +91,11 @@ export async function during<T>(clock: FakeClock, work: Promise<T>): Promise<T> 
     isOver = true
   })
   outcome.catch(() => {})
-  while (!isOver) await clock.advance(10)
+  const moving = async () => {
+    while (!isOver) await clock.advance(10)
+  }
+  await within('what a fake clock was moved on for', moving(), {
+    explain: () => `It is ${clock.monotonicMs()} ms.`,
+  })
   return outcome
 }

@@ -19,7 +19,7 @@ export async function within<T>(what: string, work: Promise<T>, patience: Patien
   const late = Symbol('late')
   const stopping = new AbortController()
   try {
-    const deadline = delay(patienceMs, late, { signal: stopping.signal })
+    const deadline = delay(patienceMs, late, { signal: stopping.signal, ref: false })
     deadline.catch(() => undefined)
     const outcome = await Promise.race([work, deadline])
     if (outcome !== late) return outcome

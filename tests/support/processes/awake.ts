@@ -7,26 +7,30 @@ const TICK_MOST_MS = 100
  * any, does not count. So a limit of some seconds is one for the programs under test and not for whatever runs beside.
  */
 export class Awake {
-  readonly #ticks: number[] = []
+  readonly #ticksMs: number[] = []
   #timer: NodeJS.Timeout | undefined
 
   start(): void {
-    this.#ticks.push(Date.now())
-    this.#timer = setInterval(() => this.#ticks.push(Date.now()), TICK_MS)
+    this.#ticksMs.push(Date.now())
+    this.#timer = setInterval(() => this.#ticksMs.push(Date.now()), TICK_MS)
   }
 
   stop(): void {
     clearInterval(this.#timer)
   }
 
-  /** Between two moments, milliseconds since 1970. What lies before the start or after the last tick counts in full. */
+  /** Between two moments, milliseconds since 1970. */
   msBetween(fromMs: number, toMs: number): number {
-    let lostMs = 0
-    for (const [index, tickMs] of this.#ticks.entries()) {
-      const beforeMs = this.#ticks[index - 1] ?? tickMs
-      const heldUpFromMs = Math.max(fromMs, beforeMs + TICK_MOST_MS)
-      lostMs += Math.max(0, Math.min(toMs, tickMs) - heldUpFromMs)
-    }
-    return toMs - fromMs - lostMs
+    return awakeMs(this.#ticksMs, fromMs, toMs)
   }
+}
+
+/** What lies before the first tick or after the last one counts in full. */
+export function awakeMs(ticksMs: readonly number[], fromMs: number, toMs: number): number {
+  let lostMs = 0
+  for (const [index, tickMs] of ticksMs.entries()) {
+    const heldUpFromMs = Math.max(fromMs, (ticksMs[index - 1] ?? tickMs) + TICK_MOST_MS)
+    lostMs += Math.max(0, Math.min(toMs, tickMs) - heldUpFromMs)
+  }
+  return toMs - fromMs - lostMs
 }
