@@ -31,9 +31,9 @@ const soak = {
 }
 
 /** For what hangs: tests wait for events, and say after less than this which one did not come (tests/support/until.ts). */
-const HANG_MS = 180_000
+const HANG_MS = 240_000
 /** Where a test has several such waits one after the other. */
-const LONG_HANG_MS = 400_000
+const LONG_HANG_MS = 600_000
 
 /** These replace modules, or wait most of the time while others run: each in a process of its own. */
 const apart = ['tests/integration/actions-people.test.ts', 'tests/e2e/namespaces.test.ts']

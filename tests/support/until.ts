@@ -2,7 +2,7 @@ import { setTimeout as delay } from 'node:timers/promises'
 import { expect, vi } from 'vitest'
 
 /** Whatever takes longer hangs: many times what a busy machine makes of it, and less than a test may take. */
-export const PATIENCE_MS = 90_000
+export const PATIENCE_MS = 120_000
 const LOOK_EVERY_MS = 20
 
 export type Look = () => boolean | Promise<boolean>
