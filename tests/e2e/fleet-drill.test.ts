@@ -1,6 +1,8 @@
 /** The acceptance test of a reading: real agents over WebSocket, a production build, and what a program is told. */
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { TOGETHER_INTERVALS } from '@/lib/collector/unheard'
 import { type Cut, LEVELS, type OverlayNode, type Reading } from '@/lib/data/dto'
+import { PACES } from '@/lib/method/pace'
 import { Api } from '@/tests/support/e2e/api'
 import { FleetProcess } from '@/tests/support/e2e/fleet-process'
 import { inOneLine, type ReadingStream } from '@/tests/support/e2e/reading-stream'
@@ -97,14 +99,7 @@ describe('thirty-two agents in two offices, read by a program', () => {
     const from = stream.seen.length
     const since = new Date()
     const before = stream.seen.at(-1)
-    for (const name of Eelholm) await fleet.tell(`silence ${name}`)
-    const reading = await timed('a side silenced', () =>
-      stream.until(
-        '"treat as split" with the whole office unheard',
-        ({ treatAsSplit, coverage }) => treatAsSplit && coverage.unheard === Eelholm.length,
-        state,
-      ),
-    )
+    const reading = await timed('a side silenced', () => silencedTogether())
     expect(reading).toMatchObject({ lambda2: null, low: null, high: null, data: 'unheard', level: 'split' })
     expect(reading.verdict).toBe('Treat as split. 16 nodes are unheard, all beyond the last weak cut.')
     expect(reading.detail).toContain('Eelholm fell silent together.')
@@ -122,7 +117,7 @@ describe('thirty-two agents in two offices, read by a program', () => {
   })
 
   it('are read within 5 % again when the office is heard again', async () => {
-    for (const name of Eelholm) await fleet.tell(`heard ${name}`)
+    await fleet.tellAll(Eelholm.map((name) => `heard ${name}`))
     const exact = await fleet.exact()
     await timed('heard again', () =>
       settledNear(exact.lambda2, {
@@ -153,6 +148,30 @@ async function settledNear(exact: number, wanted: object): Promise<Reading> {
     },
     state,
   )
+}
+
+/**
+ * The reading once the whole office has fallen silent together, as the collector has it: each agent soon after another.
+ * Where this machine stood still between their last reports they did not, and fall silent anew.
+ */
+async function silencedTogether(): Promise<Reading> {
+  for (;;) {
+    await fleet.tellAll(Eelholm.map((name) => `silence ${name}`))
+    const reading = await stream.until(
+      '"treat as split" with the whole office unheard',
+      ({ treatAsSplit, coverage }) => treatAsSplit && coverage.unheard === Eelholm.length,
+      state,
+    )
+    const { items } = await api.nodes(SLUG)
+    const lastMs = items.flatMap(({ name, heardAt }) =>
+      heardAt !== null && Eelholm.includes(name) ? [Date.parse(heardAt)] : [],
+    )
+    lastMs.sort((a, b) => a - b)
+    const apartMs = lastMs.slice(1).map((atMs, index) => atMs - (lastMs[index] ?? atMs))
+    if (Math.max(...apartMs) < TOGETHER_INTERVALS * PACES.drill.intervalMs) return reading
+    await fleet.tellAll(Eelholm.map((name) => `heard ${name}`))
+    await settledNear((await fleet.exact()).lambda2, { coverage: { heard: 32, unheard: 0 } })
+  }
 }
 
 function expectCut(cut: Cut, nodes: readonly OverlayNode[]): void {

@@ -208,7 +208,7 @@ describe('a swarm of twelve through the collector', () => {
   })
 
   it('says "treat as split" when a side falls silent, and is never judged better on the way', async () => {
-    for (const { member } of swarm.nodes.slice(6)) swarm.silence(member.agentId, true)
+    await swarm.silenceTogether(swarm.nodes.slice(6).map(({ member }) => member.agentId))
     const levels = new Set<Reading['level']>()
     const reading = await until((next) => {
       levels.add(next.level)

@@ -62,6 +62,12 @@ export class FleetProcess {
     return this.#answer(line.split(' ')[0] ?? line)
   }
 
+  /** All at once, so that hardly any time passes between the first and the last. */
+  async tellAll(lines: readonly string[]): Promise<void> {
+    this.#child.write(lines.join('\n'))
+    for (const line of lines) await this.#answer(line.split(' ')[0] ?? line)
+  }
+
   async exact(): Promise<z.infer<typeof exactSchema>> {
     return exactSchema.parse(await this.tell('exact'))
   }
