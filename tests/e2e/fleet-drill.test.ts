@@ -152,7 +152,8 @@ async function settledNear(exact: number, wanted: object): Promise<Reading> {
 
 /**
  * The reading once the whole office has fallen silent together, as the collector has it: each agent soon after another.
- * Where this machine stood still between their last reports they did not, and fall silent anew.
+ * Where this machine stood still between their last reports they did not, and where it did before them no single cut may
+ * have stood out, so that there are no sides: then they fall silent anew.
  */
 async function silencedTogether(): Promise<Reading> {
   for (;;) {
@@ -168,9 +169,13 @@ async function silencedTogether(): Promise<Reading> {
     )
     lastMs.sort((a, b) => a - b)
     const apartMs = lastMs.slice(1).map((atMs, index) => atMs - (lastMs[index] ?? atMs))
-    if (Math.max(...apartMs) < TOGETHER_INTERVALS * PACES.drill.intervalMs) return reading
+    const isTogether = Math.max(...apartMs) < TOGETHER_INTERVALS * PACES.drill.intervalMs
+    if (isTogether && reading.sides !== null) return reading
     await fleet.tellAll(Eelholm.map((name) => `heard ${name}`))
-    await settledNear((await fleet.exact()).lambda2, { coverage: { heard: 32, unheard: 0 } })
+    await settledNear((await fleet.exact()).lambda2, {
+      singleCut: true,
+      coverage: { heard: 32, unheard: 0 },
+    })
   }
 }
 
