@@ -30,6 +30,11 @@ const soak = {
   },
 }
 
+/** For what hangs: tests wait for events, and say after less than this which one did not come (tests/support/until.ts). */
+const HANG_MS = 240_000
+/** Where a test has several such waits one after the other. */
+const LONG_HANG_MS = 600_000
+
 /** These replace modules, or wait most of the time while others run: each in a process of its own. */
 const apart = ['tests/integration/actions-people.test.ts', 'tests/e2e/namespaces.test.ts']
 
@@ -38,6 +43,9 @@ export default defineConfig({
   resolve: { alias },
   test: {
     passWithNoTests: false,
+    testTimeout: HANG_MS,
+    hookTimeout: HANG_MS,
+    setupFiles: ['tests/support/fixed-seed.ts'],
     sequence: { sequencer: LongestFirst },
     projects: [
       ...(process.env.THINSPAN_SOAK ? [soak] : []),
@@ -60,8 +68,6 @@ export default defineConfig({
           exclude: apart,
           isolate: false,
           globalSetup: [database],
-          testTimeout: 30_000,
-          hookTimeout: 60_000,
           maxWorkers: 3,
           sequence: { groupOrder: 1 },
         },
@@ -72,8 +78,7 @@ export default defineConfig({
           name: 'apart',
           include: apart,
           globalSetup: [database],
-          testTimeout: 120_000,
-          hookTimeout: 120_000,
+          testTimeout: LONG_HANG_MS,
           maxWorkers: 3,
           sequence: { groupOrder: 1 },
         },
@@ -86,8 +91,7 @@ export default defineConfig({
           exclude: apart,
           globalSetup: [database, build],
           env: { THINSPAN_DIST_DIR: '.next-test' },
-          testTimeout: 120_000,
-          hookTimeout: 120_000,
+          testTimeout: LONG_HANG_MS,
           // Each has browsers, servers and a fleet of its own: side by side they would only wait for one another.
           fileParallelism: false,
           maxWorkers: 1,

@@ -1,4 +1,4 @@
-import { type EntityManager, LockSession, overlayLockKey } from '@/lib/db'
+import { type EntityManager, LockSession, type LockSettings, overlayLockKey } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import { forkRandom, type Random } from '@/lib/method/random'
 import { type Clock, sleep } from './clock'
@@ -27,7 +27,7 @@ export interface LeaderComponents {
 /** Leads the overlays that nobody else leads. One connection holds this process's locks. */
 export class Leader {
   readonly #components: LeaderComponents
-  readonly #url: string
+  readonly #lock: LockSettings
   readonly #terms = new Map<string, { term: Term; done: Promise<void> }>()
   /** What ended terms leave behind: looks at the usual that are not over. */
   readonly #left = new Set<Promise<void>>()
@@ -36,9 +36,9 @@ export class Leader {
   #wake: () => void = () => {}
   #count = 0
 
-  constructor(components: LeaderComponents, init: { url: string }) {
+  constructor(components: LeaderComponents, init: LockSettings) {
     this.#components = components
-    this.#url = init.url
+    this.#lock = init
   }
 
   /** Ids of the overlays led now, and how long their rounds take. */
@@ -71,7 +71,7 @@ export class Leader {
     const { clock, log } = this.#components
     let saidMs = Number.NEGATIVE_INFINITY
     while (!signal.aborted) {
-      const session = new LockSession({ url: this.#url })
+      const session = new LockSession(this.#lock)
       try {
         await session.start()
         saidMs = Number.NEGATIVE_INFINITY

@@ -4,8 +4,10 @@ import type { AddressInfo } from 'node:net'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { afterEach, describe, expect, test } from 'vitest'
-import { createClock, createPost } from '@/agent'
+import { type Clock, createClock, createPost } from '@/agent'
 import { createSource, type NodeItem, runProgram, type Source, type SourceConfig } from '@/agent/sources'
+import { QUIET_MS } from '@/agent/sources/read-file'
+import { Bell } from '../support/until'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 
@@ -102,23 +104,37 @@ const worlds: Record<string, () => Promise<World>> = {
 /** What a source says, to be waited for. */
 class Heard {
   readonly said: (readonly NodeItem[] | string)[] = []
-  private look = () => {}
+  private readonly bell = new Bell()
   readonly init = {
     onList: (items: readonly NodeItem[]) => this.note(items),
     onFailure: (reason: string) => this.note(reason),
   }
   private note(what: readonly NodeItem[] | string): void {
     this.said.push(what)
-    this.look()
+    this.bell.ring()
   }
   async until(isIt: (what: readonly NodeItem[] | string) => boolean): Promise<readonly NodeItem[] | string> {
-    for (;;) {
-      const found = this.said.find(isIt)
-      if (found !== undefined) return found
-      await new Promise<void>((resolve) => {
-        this.look = resolve
-      })
-    }
+    const explain = () => `${isIt}\n${JSON.stringify(this.said)}`
+    await this.bell.until(() => this.said.some(isIt), { explain })
+    return this.said.find(isIt)!
+  }
+}
+
+/** Quiet comes when told: this process may stand still between two writes for longer than a file is waited for. */
+class Quiet {
+  private hasCome = false
+  private readonly waiting = new Set<() => void>()
+  readonly clock: Clock = {
+    ...clock,
+    after: (ms, run) => {
+      if (this.hasCome || ms !== QUIET_MS) return clock.after(ms, run)
+      this.waiting.add(run)
+      return () => this.waiting.delete(run)
+    },
+  }
+  comes(): void {
+    this.hasCome = true
+    for (const run of this.waiting) run()
   }
 }
 
@@ -175,8 +191,9 @@ describe('a watched file', () => {
     await writeFile(path, '["tar-01:4000"]')
     const heard = new Heard()
     const config: SourceConfig = { kind: 'file', path, everySeconds: 3_600 }
+    const quiet = new Quiet()
     const source = createSource(
-      { clock, post: createPost(), runProgram, resolveSrv: async () => [] },
+      { clock: quiet.clock, post: createPost(), runProgram, resolveSrv: async () => [] },
       config,
       heard.init,
     )
@@ -184,6 +201,7 @@ describe('a watched file', () => {
     await heard.until(isList(['tar-01:4000']))
     await writeFile(path, '["tar-01:4000", {"address": "gul-')
     await writeFile(path, '["tar-01:4000", {"address": "gul-04:4000", "up": false}]')
+    quiet.comes()
     const items = await heard.until(isList(['tar-01:4000', 'gul-04:4000']))
     expect(items).toEqual([
       { node: 'tar-01:4000', quality: null },

@@ -8,8 +8,10 @@ import {
   type Transport,
 } from '@/agent'
 import { MAX_FRAME_BYTES } from '@/lib/protocol'
+import { freePort } from '../support/free-port'
 import { privateCa } from '../support/private-ca'
 import { createSocketTransport } from '../support/socket-transport'
+import { Bell, within } from '../support/until'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const signal = new AbortController().signal
@@ -150,7 +152,7 @@ describe.each(Object.entries(implementations))('a link over %s', (_, { make, hos
 
   test('an address that is taken is refused; one that was closed is free at once', async () => {
     const [, listener] = make()
-    const first = await listener.listen({ host, port: 0 }, () => {})
+    const first = await listener.listen({ host, port: await freePort() }, () => {})
     await expect(listener.listen({ host, port: first.port }, () => {})).rejects.toThrow()
     await first.close()
     const second = await listener.listen({ host, port: first.port }, () => {})
@@ -204,27 +206,26 @@ class Recorder {
   readonly connection: Connection
   readonly received: Uint8Array[] = []
   readonly closed: Promise<{ code: number; reason: string }>
-  private wake = () => {}
+  private readonly bell = new Bell()
 
   constructor(connection: Connection) {
     this.connection = connection
-    this.closed = new Promise((resolve) => {
+    const closed = new Promise<{ code: number; reason: string }>((resolve) => {
       connection.attach({
         message: (bytes) => {
           this.received.push(bytes)
-          this.wake()
+          this.bell.ring()
         },
         closed: resolve,
       })
     })
+    this.closed = within('the end of a connection', closed)
+    // Not every test waits for it.
+    this.closed.catch(() => undefined)
   }
 
   async take(count: number): Promise<Uint8Array[]> {
-    while (this.received.length < count) {
-      await new Promise<void>((resolve) => {
-        this.wake = resolve
-      })
-    }
+    await this.bell.until(() => this.received.length >= count)
     return this.received
   }
 }

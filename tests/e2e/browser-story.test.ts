@@ -20,6 +20,7 @@ import { sendAs } from '@/tests/support/e2e/send-as'
 import { createToken, type E2eServer, OWNER, startServer } from '@/tests/support/e2e/server'
 import { tenFreePorts } from '@/tests/support/e2e/ten-free-ports'
 import { twoSides } from '@/tests/support/e2e/two-sides'
+import { eventually } from '@/tests/support/until'
 
 const VIEWER = { name: 'Tam Quill', email: 'tam@harbourline.example', password: 'low water at six' }
 /** What a viewer tries below that would change something: eight requests to the API and nine actions of pages. */
@@ -198,7 +199,7 @@ describe('somebody else', () => {
     await press(page, 'Add to the team')
     const link = (await page.locator('pre').textContent()) ?? ''
     await page.getByRole('row').filter({ hasText: VIEWER.email }).waitFor()
-    expect(await offers(page)).toContain('Add to the team')
+    await eventually(async () => expect(await offers(page)).toContain('Add to the team'))
     expect(await seriousFindings(page)).toEqual([])
     await viewer.page.goto(link)
     await heading(viewer.page, 'Set a password')
@@ -235,7 +236,7 @@ describe('the page of an overlay', () => {
     expect(after.lambda2).toBeLessThan(0.8 * before.lambda2)
     await readingOnPage(page, after.lambda2)
     await page.getByRole('heading', { level: 1, name: 'hangs on 2 links' }).waitFor()
-    expect(await offers(page)).toContain('Add agents')
+    await eventually(async () => expect(await offers(page)).toContain('Add agents'))
     expect(await page.locator('body[data-not-reloaded]').count()).toBe(1)
     expect(await seriousFindings(page)).toEqual([])
     await page.getByRole('link', { name: 'Overlays' }).first().click()
@@ -344,7 +345,7 @@ describe('at the end', () => {
     await page.getByRole('link', { name: 'Audit' }).first().click()
     const refused = page.getByRole('row').filter({ hasText: VIEWER.email }).filter({ hasText: 'refused' })
     await refused.first().waitFor()
-    expect(await refused.count()).toBe(REFUSED)
+    await eventually(async () => expect(await refused.count()).toBe(REFUSED))
     for (const action of [
       'set up the server',
       'created an overlay',

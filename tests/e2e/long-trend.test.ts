@@ -6,6 +6,7 @@ import { rollUp } from '@/lib/jobs'
 import { launch, Person, seriousFindings } from '@/tests/support/e2e/browser'
 import { fill, press } from '@/tests/support/e2e/pages'
 import { createOwner, type E2eServer, OWNER, startServer } from '@/tests/support/e2e/server'
+import { eventually } from '@/tests/support/until'
 import { layYear } from '@/tests/support/year/lay'
 
 let server: E2eServer
@@ -61,12 +62,14 @@ it('nothing runs over the edge of a narrow screen', async () => {
 
 it('the server runs the jobs that are due, and says nothing of faults', async () => {
   const em = server.database.orm.em.fork()
-  const known = await sql(em, 'select identifier from graphile_worker._private_known_crontabs order by 1')
-  expect(known.map(({ identifier }) => identifier)).toEqual([
-    'forget-events',
-    'keep-partitions',
-    'roll-up',
-    'thin-snapshots',
-  ])
+  await eventually(async () => {
+    const known = await sql(em, 'select identifier from graphile_worker._private_known_crontabs order by 1')
+    expect(known.map(({ identifier }) => identifier)).toEqual([
+      'forget-events',
+      'keep-partitions',
+      'roll-up',
+      'thin-snapshots',
+    ])
+  })
   expect(server.failures()).toEqual([])
 })

@@ -2,15 +2,17 @@ import { mkdtemp, readdir, readFile, rm, stat, writeFile } from 'node:fs/promise
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
-import { createClock, createWsTransport, type Post } from '@/agent'
+import { createClock, type Post } from '@/agent'
 import { type CommandComponents, enrolCommand, runCommand, statusCommand } from '@/agent/command'
 import type { Options } from '@/agent/command/options'
 import { renewPass } from '@/agent/config'
 import { EXIT } from '@/agent/exit-codes'
 import { createRandom } from '@/lib/method/random'
 import { commandComponents, commandOptions } from '../support/agent-command'
+import { freePort } from '../support/free-port'
 import { TestCollector } from '../support/test-collector'
 import { serve } from '../support/test-collector-server'
+import { until } from '../support/until'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const collector = new TestCollector({ clock, random: createRandom('collector') })
@@ -145,19 +147,15 @@ describe('run', () => {
     const listening = options('gul-04', { listen: { host: '127.0.0.1', port } })
     expect(await enrolCommand(components, listening, never)).toBe(EXIT.ok)
     const stopping = new AbortController()
-    const heard = new Promise<void>((resolve) => {
-      const look = () => {
-        const reports = ['agent-tar-01', 'agent-gul-04'].map((id) => collector.agents.get(id)?.last?.report)
-        if (reports.every((report) => report?.sums.attached === 1)) resolve()
-        else clock.after(20, look)
-      }
-      look()
-    })
     const runs = [
       runCommand(components, options('gul-04', { listen: null }), stopping.signal),
       runCommand(components, options('tar-01', { neighbours: [`ws://127.0.0.1:${port}`] }), stopping.signal),
     ]
-    await heard
+    await until(() =>
+      ['agent-tar-01', 'agent-gul-04'].every(
+        (id) => collector.agents.get(id)?.last?.report.sums.attached === 1,
+      ),
+    )
     stopping.abort()
     expect(await Promise.all(runs)).toEqual([EXIT.ok, EXIT.ok])
   })
@@ -193,9 +191,3 @@ describe('run', () => {
     expect(complaints.at(-1)).toContain('Cannot listen')
   })
 })
-
-async function freePort(): Promise<number> {
-  const listening = await createWsTransport({ clock }).listen({ host: '127.0.0.1', port: 0 }, () => {})
-  await listening.close()
-  return listening.port
-}

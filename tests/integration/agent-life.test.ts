@@ -15,8 +15,10 @@ import type { Options } from '@/agent/command/options'
 import { EXIT } from '@/agent/exit-codes'
 import { createRandom } from '@/lib/method/random'
 import { commandComponents, commandOptions } from '../support/agent-command'
+import { freePort } from '../support/free-port'
 import { TestCollector } from '../support/test-collector'
 import { serve } from '../support/test-collector-server'
+import { eventually, until } from '../support/until'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const collector = new TestCollector({ clock, random: createRandom('life') })
@@ -44,16 +46,6 @@ const options = (name: string, over: Partial<Options> = {}): Options =>
     ...over,
   })
 const configOf = async (name: string) => JSON.parse(await readFile(join(folder, `${name}.json`), 'utf8'))
-
-async function freePort(): Promise<number> {
-  const listening = await createWsTransport({ clock }).listen({ host: '127.0.0.1', port: 0 }, () => {})
-  await listening.close()
-  return listening.port
-}
-
-async function until(isSo: () => boolean | Promise<boolean>): Promise<void> {
-  while (!(await isSo())) await new Promise<void>((resolve) => clock.after(20, resolve))
-}
 
 const isHeard = (name: string, since = 0) => {
   const report = collector.agents.get(`agent-${name}`)?.last?.report
@@ -157,7 +149,7 @@ describe('an agent that runs', () => {
     const peers = join(folder, 'peers.json')
     await writeFile(
       peers,
-      JSON.stringify({ peers: [{ address: '127.0.0.1:4000', quality: 0.5 }, 'without.invalid'] }),
+      JSON.stringify({ peers: [{ address: '127.0.0.1:4000', quality: 0.5 }, '127.0.0.9'] }),
     )
     const stopping = new AbortController()
     const pin = options('pin-02', {
@@ -178,14 +170,16 @@ describe('an agent that runs', () => {
     const health = collector.agents.get('agent-pin-02')?.last?.report.node.health
     expect(health?.source).toEqual({ kind: 'file', error: null })
     const ask = (path: string) => fetch(`http://127.0.0.1:${metrics}${path}`)
-    const text = await (await ask('/metrics')).text()
-    expect(text).toContain('thinspan_agent_links{state="up"} 1\n')
-    expect(text.endsWith('# EOF\n')).toBe(true)
-    expect(text).not.toMatch(/gul-04|127\.0\.0\.1/)
-    expect((await ask('/health')).status).toBe(200)
-    const components = commandComponents(clock)
-    expect(await statusCommand(components, options('pin-02'), never)).toBe(EXIT.ok)
-    expect(components.said).toContainEqual(expect.stringMatching(/^Links +1 of 2 up$/))
+    await eventually(async () => {
+      const text = await (await ask('/metrics')).text()
+      expect(text).toContain('thinspan_agent_links{state="up"} 1\n')
+      expect(text.endsWith('# EOF\n')).toBe(true)
+      expect(text).not.toMatch(/gul-04|127\.0\.0\.1/)
+      expect((await ask('/health')).status).toBe(200)
+      const components = commandComponents(clock)
+      expect(await statusCommand(components, options('pin-02'), never)).toBe(EXIT.ok)
+      expect(components.said).toContainEqual(expect.stringMatching(/^Links +1 of 2 up$/))
+    })
     await writeFile(peers, JSON.stringify({ peers: [] }))
     await until(async () => (await (await ask('/status')).json()).links.length === 0)
     stopping.abort()

@@ -15,6 +15,7 @@ import { signText, type UpgradeOffer, upgradeText } from '@/lib/protocol'
 import { buildAgentFile } from '@/scripts/lib/agent-file.mjs'
 import { TestCollector } from '../support/test-collector'
 import { serve } from '../support/test-collector-server'
+import { within } from '../support/until'
 
 const root = resolve(import.meta.dirname, '../..')
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
@@ -147,7 +148,9 @@ async function runFile(args: string[], env: Record<string, string> = {}) {
   const child = spawn(process.execPath, [ownFile, ...args], { cwd: folder, env: { ...process.env, ...env } })
   let said = ''
   for (const stream of [child.stdout, child.stderr]) stream.on('data', (chunk) => (said += chunk))
-  const code = await new Promise<number | null>((done) => child.on('exit', done))
+  // Not at its exit: what it said last is still on its way then.
+  const ended = new Promise<number | null>((done) => child.on('close', done))
+  const code = await within(`${args.join(' ')} ends`, ended, { explain: () => said })
   return { code, said }
 }
 

@@ -34,7 +34,8 @@ describe('a collector that', () => {
     }
   })
   async function collectorWhere(listener: RequestListener, init: { timeoutMs?: number } = {}) {
-    const server = createServer(listener)
+    // Longer than a process may stand still between two requests.
+    const server = createServer({ keepAliveTimeout: 600_000 }, listener)
     servers.push(server)
     await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
     const { port } = server.address() as AddressInfo

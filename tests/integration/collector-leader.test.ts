@@ -15,6 +15,7 @@ import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { startTestLeader, type TestLeader } from '@/tests/support/leaders'
 import { seedTeam, testRuntime } from '@/tests/support/people'
 import { someReport } from '@/tests/support/reports'
+import { Bell } from '@/tests/support/until'
 
 let database: TestDatabase
 let listener: Listener
@@ -57,19 +58,17 @@ const controlOf = (overlayId: string) => database.orm.em.fork().findOneOrFail(Co
 /** Waits, notice by notice, until the control row is as wanted. */
 async function until(overlayId: string, wanted: (control: Control) => boolean): Promise<Control> {
   const stop = new AbortController()
-  let wake = () => {}
-  await listener.subscribe(`overlay:${overlayId}`, () => wake(), stop.signal)
-  for (;;) {
-    const next = new Promise<void>((resolve) => {
-      wake = resolve
-    })
+  const bell = new Bell()
+  await listener.subscribe(`overlay:${overlayId}`, () => bell.ring(), stop.signal)
+  const found: Control[] = []
+  const isAsWanted = async () => {
     const control = await database.orm.em.fork().findOne(ControlSchema, overlayId)
-    if (control && wanted(control)) {
-      stop.abort()
-      return control
-    }
-    await next
+    if (control) found.push(control)
+    return control !== null && wanted(control)
   }
+  const explain = () => `${wanted}\n${JSON.stringify(found.at(-1))}`
+  await bell.until(isAsWanted, { explain }).finally(() => stop.abort())
+  return found.at(-1)!
 }
 
 const termOf = (overlayId: string, store: Pick<LeaderStore, 'claim' | 'load' | 'write'>) =>

@@ -12,6 +12,7 @@ import {
   withLock,
 } from '@/lib/db'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
+import { until as untilSo } from '@/tests/support/until'
 
 let database: TestDatabase
 const never = new AbortController().signal
@@ -104,7 +105,7 @@ describe('the entities and the migrations', () => {
 
 describe('a statement', () => {
   it('of a request is given up on after a while, as is its transaction; one of a migration is not', async () => {
-    const limited = await openOrm(database.url, 1, { statementMs: 50 })
+    const limited = await openOrm(database.url, 1, { statementMs: 1_000 })
     await expect(sql(limited.em.fork(), 'select pg_sleep(20)')).rejects.toThrow('statement timeout')
     await limited.close(true)
     const limitsOf = async (orm: typeof limited) =>
@@ -143,12 +144,11 @@ describe('a lock', () => {
   })
 
   it('is lost, and says so, when the session falls silent', async () => {
-    const silent = new LockSession({ url: database.url, sessionTimeoutMs: 150, heartbeatMs: 60_000 })
+    const silent = new LockSession({ url: database.url, sessionTimeoutMs: 2_000, heartbeatMs: 60_000 })
     await silent.start()
     expect(await silent.tryAcquire('overlay:three')).toBe(true)
-    const lost = new Promise((resolve) => silent.lost.addEventListener('abort', resolve))
     await withLock({ url: database.url }, 'overlay:three', never, async () => undefined)
-    await lost
+    await untilSo(() => silent.lost.aborted)
     await silent.stop()
   })
 })
@@ -161,16 +161,12 @@ describe('the listener', () => {
       { url: database.url },
     )
     const heard: (string | null)[] = []
-    let wake = () => {}
-    const until = async (count: number) => {
-      while (heard.length < count) await new Promise<void>((resolve) => (wake = resolve))
-    }
+    const until = (count: number) => untilSo(() => heard.length >= count, { explain: () => String(heard) })
     const stop = new AbortController()
     await listener.subscribe(
       'overlay_x',
       (payload) => {
         heard.push(payload)
-        wake()
       },
       stop.signal,
     )

@@ -10,6 +10,7 @@ import { createRandom } from '@/lib/method/random'
 import { generateKeys } from '@/lib/protocol'
 import { Child } from '@/tests/support/e2e/child'
 import { serve, TestCollector } from '@/tests/support/test-collector'
+import { within } from '@/tests/support/until'
 
 const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
 const stops: (() => unknown)[] = []
@@ -26,16 +27,15 @@ function collector(): TestCollector {
 
 /** The first estimate from now on that is near enough. */
 function reads(from: TestCollector, lambda2: number): Promise<void> {
-  return new Promise((resolve) => {
+  const near = new Promise<void>((resolve) => {
     from.onEstimate = (estimate) => {
       if (estimate.lambda2 !== null && Math.abs(estimate.lambda2 / lambda2 - 1) < 0.05) resolve()
     }
   })
+  return within(`an estimate near ${lambda2}`, near, { explain: () => JSON.stringify(from.estimate) })
 }
 
-test('frames ride on the overlay’s own connections, whose loss is the link’s', {
-  timeout: 60_000,
-}, async () => {
+test('frames ride on the overlay’s own connections, whose loss is the link’s', async () => {
   const made = collector()
   const stopping = new AbortController()
   const nodes = ['tar-01', 'gul-04', 'pin-02'].map(
@@ -75,7 +75,7 @@ test('frames ride on the overlay’s own connections, whose loss is the link’s
     gul.watch({ message: (_, channel) => channel === 1 && resolve() }),
   )
   tar.tellTide(431)
-  await told
+  await within('the tide is told', told)
   expect(gul.tides.get('tar-01')).toBe(431)
   tar.disconnect('gul-04')
   await reads(made, 1)
@@ -84,7 +84,7 @@ test('frames ride on the overlay’s own connections, whose loss is the link’s
   await reads(made, 3)
 })
 
-test('the program joins three agents to an overlay', { timeout: 60_000 }, async () => {
+test('the program joins three agents to an overlay', async () => {
   const made = collector()
   const { url, close } = await serve(made)
   stops.push(close)

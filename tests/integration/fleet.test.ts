@@ -6,6 +6,7 @@ import { parseEdgeList } from '@/lib/topology'
 import { obey } from '@/scripts/fleet/commands'
 import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
 import { serve, TestCollector } from '../support/test-collector'
+import { eventually, until } from '../support/until'
 
 const base = { monotonicMs: () => performance.now(), epochMs: () => Date.now() }
 const clock = createClock(base)
@@ -109,7 +110,7 @@ describe('a fleet over WebSocket obeys', () => {
     const silencedAt = number()
     await until(() => fleet.member('eel-09').agent!.status().reports.failed > failed + 2)
     expect(number()).toBe(silencedAt)
-    expect(fleet.member('eel-09').agent!.isLinked('agent-tar-01')).toBe(true)
+    await until(() => fleet.member('eel-09').agent!.isLinked('agent-tar-01'))
     expect(await obey(fleet, 'heard eel-09')).toMatchObject({ ok: true })
     await until(() => number() > silencedAt)
   })
@@ -120,7 +121,9 @@ describe('a fleet over WebSocket obeys', () => {
     await until(() => eel().relayed)
     const carried = eel().last!.report.number
     await until(() => eel().last!.report.number > carried + 2)
-    expect(fleet.member('eel-09').agent!.status()).toMatchObject({ distance: 1, away: { isAway: false } })
+    await eventually(() =>
+      expect(fleet.member('eel-09').agent!.status()).toMatchObject({ distance: 1, away: { isAway: false } }),
+    )
     expect(await obey(fleet, 'heard eel-09')).toMatchObject({ ok: true })
     await until(() => !eel().relayed)
   })
@@ -158,7 +161,3 @@ test('a code that is not good stops the start with the reason', async () => {
   await fleet.stop()
   await server.close()
 })
-
-async function until(done: () => boolean): Promise<void> {
-  while (!done()) await new Promise((resolve) => clock.after(10, () => resolve(null)))
-}

@@ -1,6 +1,7 @@
 import { randomBytes } from 'node:crypto'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { CLOSE, type CloseName, encodeFrame, encodeHello, MAX_HANDSHAKE_BYTES } from '@/lib/protocol'
+import { FakeClock } from '../support/fake-clock'
 import { someFrame, someOrders } from '../support/frames'
 import { LinkEnd, realClock } from '../support/link-end'
 import { freshNonce, type Identity, NOW_SECONDS, testOverlay } from '../support/passes'
@@ -11,12 +12,18 @@ const overlay = testOverlay()
 const tar = await overlay.identity('tar-01')
 const gul = await overlay.identity('gul-04')
 const eel = await overlay.identity('eel-09')
-const victim = new LinkEnd(overlay, gul, { handshakeTimeoutMs: HANDSHAKE_TIMEOUT_MS })
+const victim = new LinkEnd(overlay, gul)
 const honest = new LinkEnd(overlay, tar)
+/** A second one that waits for nobody. */
+const impatient = new LinkEnd(overlay, await overlay.identity('gul-05'), {
+  handshakeTimeoutMs: HANDSHAKE_TIMEOUT_MS,
+})
 let address = ''
+let impatientAddress = ''
 
 beforeAll(async () => {
   address = await victim.start()
+  impatientAddress = await impatient.start()
   await honest.start()
   honest.links.addNeighbour({ address, agentId: 'gul-04' })
   await victim.until(() => victim.links.isLinked('tar-01'))
@@ -26,6 +33,7 @@ beforeAll(async () => {
 afterAll(async () => {
   await honest.stop()
   await victim.stop()
+  await impatient.stop()
 })
 
 async function expectHonestLinkUp(): Promise<void> {
@@ -34,7 +42,10 @@ async function expectHonestLinkUp(): Promise<void> {
   await honest.until(() => honest.heardAgo('gul-04') < 30)
 }
 
-const attacks: Record<string, { close: CloseName; attack: (stranger: Stranger) => Promise<void> | void }> = {
+const attacks: Record<
+  string,
+  { close: CloseName; of?: 'the impatient one'; attack: (stranger: Stranger) => Promise<void> | void }
+> = {
   'random bytes': { close: 'not-a-hello', attack: (stranger) => stranger.send(randomBytes(64)) },
   'an empty message': { close: 'not-a-hello', attack: (stranger) => stranger.send(new Uint8Array()) },
   'a frame before any handshake': {
@@ -45,7 +56,7 @@ const attacks: Record<string, { close: CloseName; attack: (stranger: Stranger) =
     close: 'too-large',
     attack: (stranger) => stranger.send(new Uint8Array(MAX_HANDSHAKE_BYTES + 1).fill(1)),
   },
-  'nothing at all': { close: 'handshake-timeout', attack: () => {} },
+  'nothing at all': { close: 'handshake-timeout', of: 'the impatient one', attack: () => {} },
   'an expired pass': {
     close: 'pass-expired',
     attack: async (stranger) =>
@@ -146,8 +157,8 @@ async function heardConversation(): Promise<Uint8Array[]> {
 describe('an agent that is told', () => {
   test.each(Object.entries(attacks))(
     '%s, closes with its own code, and honest links stay',
-    async (_, { close, attack }) => {
-      const stranger = await Stranger.dial(address)
+    async (_, { close, of, attack }) => {
+      const stranger = await Stranger.dial(of ? impatientAddress : address)
       await attack(stranger)
       const { code, reason } = await stranger.closed
       expect({ code, reason }).toEqual({
@@ -160,13 +171,14 @@ describe('an agent that is told', () => {
 })
 
 test('silent connections beyond the limit are turned away at once; an honest agent gets in when they have timed out', async () => {
-  const door = new LinkEnd(overlay, await overlay.identity('pin-02'), {
-    handshakeTimeoutMs: 1_000,
-    maxUnproven: 3,
-  })
+  const clock = new FakeClock()
+  const init = { handshakeTimeoutMs: 1_000, maxUnproven: 3, clock }
+  const door = new LinkEnd(overlay, await overlay.identity('pin-02'), init)
   const doorAddress = await door.start()
   const silent: Stranger[] = []
   for (let count = 0; count < 5; count++) silent.push(await Stranger.dial(doorAddress))
+  await Promise.all(silent.slice(3).map(({ closed }) => closed))
+  await clock.advance(1_000)
   const closes = await Promise.all(silent.map(({ closed }) => closed))
   const { 'handshake-timeout': timeout, 'too-many': tooMany } = CLOSE
   expect(closes.map(({ code }) => code)).toEqual([

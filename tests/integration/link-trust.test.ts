@@ -8,6 +8,7 @@ import {
   MESSAGE_KIND,
   signOrders,
 } from '@/lib/protocol'
+import { FakeClock } from '../support/fake-clock'
 import { someFrame, someOrders } from '../support/frames'
 import { LinkEnd, type LinkEndInit, realClock } from '../support/link-end'
 import { type Identity, NOW_SECONDS, testOverlay } from '../support/passes'
@@ -158,6 +159,8 @@ test('an agent whose figures do not hold is closed with its own code, and so is 
 })
 
 describe('passes', () => {
+  /** They last as long as the tests do, so that passes can end. */
+  const lasting = someOrders(7, { pace: { tickMs: 20, intervalMs: 100_000 } })
   const expiring = (keys = tar.keys) => overlay.identity('tar-01', { keys, expiresAt: NOW_SECONDS + 60 })
 
   test('renewed on the link keep it up beyond the old one’s end', async () => {
@@ -165,10 +168,10 @@ describe('passes', () => {
     const { end: a } = await start(await expiring())
     a.links.addNeighbour({ address, agentId: 'gul-04' })
     await b.until(() => b.links.isLinked('tar-01'))
-    adopt(b)
+    adopt(b, lasting)
     a.pass = tar.pass
     a.links.offerPass(tar.pass)
-    await new Promise((resolve) => setTimeout(resolve, 100))
+    await b.until(() => b.judged.includes(tar.pass))
     b.nowSeconds = NOW_SECONDS + 3_600
     await new Promise((resolve) => setTimeout(resolve, 1_300))
     expect(downs(b)).toEqual([])
@@ -183,7 +186,7 @@ describe('passes', () => {
     b.nowSeconds = NOW_SECONDS + 3_600
     await new Promise((resolve) => setTimeout(resolve, 1_300))
     expect(downs(b)).toEqual([])
-    adopt(b)
+    adopt(b, lasting)
     await b.until(() => downs(b).length > 0)
     expect(downs(b)).toEqual(['pass-expired'])
   })
@@ -248,7 +251,8 @@ describe('limits', () => {
   }
 
   test('what piled up while an end stood still comes in one burst and is taken; a flood is not', async () => {
-    const { b, address } = await linked()
+    // Time stands still for the limit: what may come meanwhile does not depend on how fast this machine is.
+    const { b, address } = await linked({}, { clock: new FakeClock() })
     const stranger = await Stranger.dial(address)
     await stranger.greet(eel)
     await stranger.message(2)

@@ -1,4 +1,5 @@
 import { afterEach, describe, expect, test } from 'vitest'
+import { freePort } from '../support/free-port'
 import { LinkEnd } from '../support/link-end'
 import { testOverlay } from '../support/passes'
 
@@ -33,19 +34,21 @@ describe('two agents over WebSocket', () => {
 
   test('find each other whichever comes first', async () => {
     const [a, b] = [new LinkEnd(overlay, tar), new LinkEnd(overlay, gul)]
-    const address = await start(b)
+    const port = await freePort()
+    const address = await start(b, port)
     await b.stop()
     await start(a)
     a.links.addNeighbour({ address, agentId: 'gul-04' })
     await new Promise((resolve) => setTimeout(resolve, 60))
     const late = new LinkEnd(overlay, gul, { life: 1 })
-    await start(late, Number(address.split(':').at(-1)))
+    await start(late, port)
     await a.until(linked(a, late))
   })
 
   test('link again after one was started anew, and the links know the new start', async () => {
     const [a, b] = [new LinkEnd(overlay, tar), new LinkEnd(overlay, gul)]
-    const address = await start(b)
+    const port = await freePort()
+    const address = await start(b, port)
     await start(a)
     a.links.addNeighbour({ address })
     await a.until(linked(a, b))
@@ -53,7 +56,7 @@ describe('two agents over WebSocket', () => {
     await a.until(() => !a.links.isLinked('gul-04'))
     expect(a.events.at(-1)).toEqual({ kind: 'link-down', peer: 'gul-04', reason: 'going-away' })
     const again = new LinkEnd(overlay, gul, { life: 1 })
-    await start(again, Number(address.split(':').at(-1)))
+    await start(again, port)
     await a.until(linked(a, again))
     expect(a.node.isRetired('gul-04', 'incarnation-gul-04-0')).toBe(true)
   })

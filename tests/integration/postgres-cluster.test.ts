@@ -4,11 +4,12 @@ import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import pg from 'pg'
-import { afterAll, describe, expect, it } from 'vitest'
+import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { ensureDatabase, requireDatabase } from '@/scripts/lib/database.mjs'
 import { startCluster } from '@/scripts/lib/postgres.mjs'
 import { TEST_SETTINGS } from '@/scripts/lib/postgres-plan.mjs'
 import { endProcess, isAlive } from '@/scripts/lib/processes.mjs'
+import { freePort } from '@/tests/support/free-port'
 
 const folder = mkdtempSync(join(tmpdir(), 'thinspan-cluster-'))
 const password = 'pinnet/bay:&'
@@ -43,6 +44,10 @@ async function query(url: string, text: string) {
   }
 }
 
+beforeAll(async () => {
+  // So that nobody takes it while the server is down.
+  writeFileSync(join(folder, 'port'), String(await freePort()))
+})
 afterAll(async () => {
   await (await start()).stop()
   rmSync(folder, { recursive: true })
@@ -65,7 +70,7 @@ describe('a cluster of our own', () => {
   it('comes back on the port it had, after a kill of the server itself too', async () => {
     const cluster = await start()
     expect(cluster.how).toBe('started')
-    await endProcess(cluster.identity, { signals: [{ name: 'SIGKILL', patienceMs: 5_000 }] })
+    await endProcess(cluster.identity, { signals: [{ name: 'SIGKILL', patienceMs: 60_000 }] })
 
     const again = await start()
     expect(again).toMatchObject({ how: 'started', port: cluster.port })

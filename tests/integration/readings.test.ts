@@ -88,9 +88,11 @@ describe('a reading', () => {
     await joinAgent()
     const at = new Date(Date.now() - 60_000)
     await storeReading(rowOf(at))
-    await evaluated(8)
+    // Unheard after a minute at this pace.
+    await sql(em(), `update overlays set pace = 'calm' where id = ?`, [overlay.id])
+    await evaluated(40)
     expect(await getReading(await call(), overlay.slug)).toMatchObject({ lambda2: 0.58, data: 'fresh' })
-    await evaluated(14)
+    await evaluated(62)
     const stale = readingSchema.parse(await getReading(await call(), overlay.slug))
     expect(stale).toMatchObject({
       data: 'unheard',

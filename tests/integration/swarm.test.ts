@@ -13,9 +13,7 @@ function twoHarbours(): string {
   return lines.join('\n')
 }
 
-test('a swarm of real agents on a fake clock reads its own λ₂, and follows when a crossing link goes', {
-  timeout: 60_000,
-}, async () => {
+test('a swarm of real agents on a fake clock reads its own λ₂, and follows when a crossing link goes', async () => {
   const swarm = await memorySwarm({ edges: twoHarbours(), seed: 'swarm' })
   await during(swarm.clock, swarm.fleet.start())
   const values: number[] = []

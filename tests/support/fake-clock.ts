@@ -1,4 +1,5 @@
 import type { Clock } from '@/agent'
+import { cryptoAtRest } from './crypto-at-rest'
 
 interface Timer {
   atMs: number
@@ -14,11 +15,14 @@ export class FakeClock implements Clock {
   private orders = 0
   private readonly settle: () => Promise<void>
 
-  /** `settle` resolves once everything that was started has come to rest; by default after two turns of the loop. */
+  /**
+   * `settle` resolves once everything that was started has come to rest; by default after two turns of the loop, and once
+   * no pass is being signed or judged: that happens in other threads, however long it takes.
+   */
   constructor(init: { epochMs?: number; settle?: () => Promise<void> } = {}) {
     this.nowMs = 1_000
     this.epochAtZero = (init.epochMs ?? 0) - this.nowMs
-    this.settle = init.settle ?? twoTurns
+    this.settle = init.settle ?? cryptoAtRest
   }
 
   monotonicMs(): number {
@@ -54,9 +58,4 @@ export class FakeClock implements Clock {
     }
     this.nowMs = untilMs
   }
-}
-
-async function twoTurns(): Promise<void> {
-  await new Promise<void>((resolve) => setImmediate(resolve))
-  await new Promise<void>((resolve) => setImmediate(resolve))
 }

@@ -126,9 +126,11 @@ export class FuzzedLink {
     const stranger = await Stranger.dial(this.address)
     this.count.links += 1
     const versions = this.fuzz.chance(0.2) ? [1] : [2, 1]
-    await stranger.greet(attacker, { versions, incarnation: `incarnation-${this.fuzz.below(2 ** 30)}` })
+    const incarnation = `incarnation-${this.fuzz.below(2 ** 30)}`
     // Its proof comes once it has judged the pass; more than a proof before that is not the protocol.
-    await Promise.race([stranger.message(1), stranger.closed])
+    const greeting = stranger.greet(attacker, { versions, incarnation }).then(() => stranger.message(1))
+    // Whom it has turned away says the rest into a closed connection.
+    await greeting.catch(() => undefined)
     const honesty = HONESTIES[this.fuzz.below(HONESTIES.length)]
     for (let index = 0; index < MESSAGES_PER_LINK; index++) this.say(stranger, this.fuzz.message(honesty))
     await this.end(stranger)

@@ -1,9 +1,14 @@
 import { randomUUID } from 'node:crypto'
+import type { Clock } from '@/lib/collector/clock'
 import { Leader } from '@/lib/collector/leader'
 import { systemClock } from '@/lib/collector/process'
 import { Listener } from '@/lib/db'
 import { createRandom } from '@/lib/method/random'
 import type { TestDatabase } from './database'
+import { until } from './until'
+
+/** A test's process may stand still for a while; what then becomes of a leader is for tests with programs of their own. */
+const SESSION_TIMEOUT_MS = 60_000
 
 export interface TestLeader {
   leader: Leader
@@ -15,36 +20,34 @@ export interface TestLeader {
 }
 
 /** A leader with a listening connection of its own, as in a process of its own. */
-export function startTestLeader(database: TestDatabase, seed: number): TestLeader {
+export function startTestLeader(
+  database: TestDatabase,
+  seed: number,
+  init: { clock?: Clock } = {},
+): TestLeader {
   const failures: object[] = []
   const listener = new Listener({ random: Math.random, warn: () => {} }, { url: database.url })
   listener.start()
-  let changed = () => {}
   const leader = new Leader(
     {
       forkEm: async () => database.orm.em.fork(),
       subscribe: (channel, fn, signal) => listener.subscribe(channel, fn, signal),
-      clock: systemClock,
+      clock: init.clock ?? systemClock,
       random: createRandom(seed),
       log: {
-        info: () => changed(),
+        info: () => {},
         warn: (data) => failures.push(data),
         error: (data) => failures.push(data),
       },
       newHolder: randomUUID,
     },
-    { url: database.url },
+    { url: database.url, sessionTimeoutMs: SESSION_TIMEOUT_MS },
   )
   leader.start()
   return {
     leader,
     failures,
-    leads: async (count) => {
-      while (leader.led.length !== count)
-        await new Promise<void>((resolve) => {
-          changed = resolve
-        })
-    },
+    leads: (count) => until(() => leader.led.length === count),
     stop: async () => {
       await leader.stop()
       await listener.stop()

@@ -1,4 +1,5 @@
 import {
+  type Clock,
   createClock,
   createWsTransport,
   type LinkEvent,
@@ -12,6 +13,7 @@ import { WalkNode } from '@/lib/method/node'
 import { createRandom } from '@/lib/method/random'
 import { verifyPass } from '@/lib/protocol'
 import { freshNonce, type Identity, NOW_SECONDS, type TestOverlay } from './passes'
+import { Bell } from './until'
 
 export const realClock = createClock({
   monotonicMs: () => performance.now(),
@@ -19,6 +21,8 @@ export const realClock = createClock({
 })
 
 const TICK_MS = 10
+/** Unless a test is about it: a handshake must outlast a process that stands still. */
+const HANDSHAKE_MS = 60_000
 
 export interface LinkEndInit
   extends Partial<
@@ -38,6 +42,8 @@ export interface LinkEndInit
   life?: number
   transport?: Transport
   host?: string
+  /** Of its links, for their limits; the walkers and the transport go by the real one. */
+  clock?: Clock
 }
 
 /** Walkers and links of one agent on real time and real sockets, without a collector. */
@@ -48,11 +54,13 @@ export class LinkEnd {
   /** What its clock says, seconds since 1970: passes are judged by it. */
   nowSeconds = NOW_SECONDS
   pass: string
+  /** Passes of others that it has judged. */
+  readonly judged: string[] = []
   private readonly transport: Transport
   private readonly host: string
   private readonly doors: Listening[] = []
   private timer: NodeJS.Timeout | null = null
-  private wake: () => void = () => {}
+  private readonly bell = new Bell()
 
   constructor(overlay: TestOverlay, identity: Identity, init: LinkEndInit = {}) {
     const random = createRandom(identity.agentId)
@@ -65,14 +73,19 @@ export class LinkEnd {
     this.links = new LinkManager(
       {
         transport: this.transport,
-        clock: realClock,
+        clock: init.clock ?? realClock,
         random,
         logger: silentLogger,
         node: this.node,
         keys: identity.keys,
         passes: {
           own: () => this.pass,
-          judge: (token) => verifyPass(token, overlay.keys.publicKey, overlay.id, now()),
+          judge: async (token) => {
+            const judged = await verifyPass(token, overlay.keys.publicKey, overlay.id, now())
+            this.judged.push(token)
+            this.bell.ring()
+            return judged
+          },
           hasExpired: (seconds) => this.nowSeconds > seconds,
         },
         trust: overlay.trust,
@@ -81,11 +94,12 @@ export class LinkEnd {
       {
         ...init,
         acceptUnknown: init.acceptUnknown ?? true,
+        handshakeTimeoutMs: init.handshakeTimeoutMs ?? HANDSHAKE_MS,
         backoff: { baseMs: 10, capMs: 50 },
         tickMs: () => TICK_MS,
         onEvent: (event) => {
           this.events.push(event)
-          this.wake()
+          this.bell.ring()
         },
       },
     )
@@ -96,7 +110,7 @@ export class LinkEnd {
     this.timer = setInterval(() => {
       this.links.takeIn()
       this.links.deliver(this.node.tick(realClock.monotonicMs(), (peer) => this.links.isCarried(peer)))
-      this.wake()
+      this.bell.ring()
     }, TICK_MS)
   }
 
@@ -116,12 +130,13 @@ export class LinkEnd {
   }
 
   /** Looks after every tick and link event. */
-  async until(done: () => boolean): Promise<void> {
-    while (!done()) {
-      await new Promise<void>((resolve) => {
-        this.wake = resolve
-      })
-    }
+  until(done: () => boolean): Promise<void> {
+    return this.bell.until(done, { explain: () => this.told() })
+  }
+
+  private told(): string {
+    const { agentId } = this.node
+    return `${agentId}: ${JSON.stringify({ events: this.events, links: this.links.status() })}`
   }
 
   heardAgo(peer: string): number {

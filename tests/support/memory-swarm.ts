@@ -5,6 +5,7 @@ import { parseEdgeList } from '@/lib/topology'
 import { createFleet, type Fleet, type FleetInit } from '@/scripts/fleet/fleet'
 import { FakeClock } from './fake-clock'
 import { TestCollector, type TestCollectorInit } from './test-collector'
+import { within } from './until'
 
 export interface Swarm {
   clock: FakeClock
@@ -90,6 +91,11 @@ export async function during<T>(clock: FakeClock, work: Promise<T>): Promise<T> 
     isOver = true
   })
   outcome.catch(() => {})
-  while (!isOver) await clock.advance(10)
+  const moving = async () => {
+    while (!isOver) await clock.advance(10)
+  }
+  await within('what a fake clock was moved on for', moving(), {
+    explain: () => `It is ${clock.monotonicMs()} ms.`,
+  })
   return outcome
 }

@@ -5,7 +5,8 @@ import { MAX_FRAME_BYTES } from '@/lib/protocol'
 const HEADER_BYTES = 5
 const MESSAGE = 0
 const CLOSE = 1
-const CLOSE_WAIT_MS = 500
+/** What the other end has sent meanwhile must be read before, or the system throws away what was said last. */
+const CLOSE_WAIT_MS = 30_000
 
 /**
  * A transport as an embedding program might write it over its own connections: plain TCP, each message preceded by its

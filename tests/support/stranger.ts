@@ -8,13 +8,15 @@ import {
 } from '@/lib/protocol'
 import { realClock } from './link-end'
 import { freshNonce, type Identity, NOW_SECONDS } from './passes'
+import { Bell, within } from './until'
 
 /** Someone who dials an agent and says whatever a test wants. */
 export class Stranger {
   readonly connection: Connection
   readonly received: Uint8Array[] = []
-  readonly closed: Promise<{ code: number; reason: string }>
-  private wake: () => void = () => {}
+  private readonly ended: Promise<{ code: number; reason: string }>
+  private end: { code: number; reason: string } | null = null
+  private readonly bell = new Bell()
 
   static async dial(address: string): Promise<Stranger> {
     const result = await createWsTransport({ clock: realClock }).dial(address, new AbortController().signal)
@@ -24,31 +26,35 @@ export class Stranger {
 
   private constructor(connection: Connection) {
     this.connection = connection
-    this.closed = new Promise((resolve) => {
+    this.ended = new Promise((resolve) => {
       connection.attach({
         message: (bytes) => {
           this.received.push(bytes)
-          this.wake()
+          this.bell.ring()
         },
         closed: (event) => {
+          this.end = event
           resolve(event)
-          this.wake()
+          this.bell.ring()
         },
       })
     })
+  }
+
+  get closed(): Promise<{ code: number; reason: string }> {
+    return within('the end of the connection', this.ended)
   }
 
   send(bytes: Uint8Array): void {
     this.connection.send(bytes)
   }
 
+  /** @throws where the connection has ended without it */
   async message(index: number): Promise<Uint8Array> {
-    while (this.received.length <= index) {
-      await new Promise<void>((resolve) => {
-        this.wake = resolve
-      })
-    }
-    return this.received[index]!
+    await this.bell.until(() => this.received.length > index || this.end !== null)
+    const message = this.received[index]
+    if (!message) throw new Error(`Closed before message ${index}: ${JSON.stringify(this.end)}`)
+    return message
   }
 
   /** Goes through the handshake as `identity`, believing whatever the other end says of itself. */

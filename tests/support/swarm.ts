@@ -10,6 +10,8 @@ interface SwarmNode {
   member: Member
   node: WalkNode
   silent: boolean
+  /** Its last report, until that is answered. */
+  telling: Promise<void>
 }
 
 export interface SwarmInit {
@@ -45,7 +47,7 @@ export class Swarm {
         { random: createRandom(`${name}`) },
         { agentId: member.agentId, incarnation: `incarnation-of-${member.agentId}` },
       )
-      this.nodes.push({ member, node, silent: false })
+      this.nodes.push({ member, node, silent: false, telling: Promise.resolve() })
     }
   }
 
@@ -65,13 +67,21 @@ export class Swarm {
     const { tickMs, intervalMs } = PACES[this.#init.pace]
     for (const swarmNode of this.nodes) {
       this.#every(tickMs, () => this.#tick(swarmNode))
-      this.#every(intervalMs, () => void this.#report(swarmNode))
+      this.#every(intervalMs, () => this.#report(swarmNode))
     }
   }
 
   /** Lives, but does not reach the collector. */
   silence(agentId: string, silent: boolean): void {
     this.nodes[this.#index.get(agentId)!]!.silent = silent
+  }
+
+  /** As where a cable is pulled: all of these report a last time at one moment, and then none does. */
+  async silenceTogether(agentIds: readonly string[]): Promise<void> {
+    const silenced = this.nodes.filter(({ member }) => agentIds.includes(member.agentId))
+    for (const each of silenced) each.silent = true
+    await Promise.all(silenced.map(({ telling }) => telling))
+    await Promise.all(silenced.map((each) => this.#tell(each)))
   }
 
   stop(): void {
@@ -96,8 +106,13 @@ export class Swarm {
     setImmediate(() => to.receive(from.agentId, from.incarnation, frame, performance.now()))
   }
 
-  async #report({ member, node, silent }: SwarmNode): Promise<void> {
-    if (silent) return
+  #report(swarmNode: SwarmNode): void {
+    if (swarmNode.silent) return
+    const telling = Promise.all([swarmNode.telling, this.#tell(swarmNode)])
+    swarmNode.telling = telling.then(() => undefined)
+  }
+
+  async #tell({ member, node }: SwarmNode): Promise<void> {
     const report = node.report(performance.now(), { linksKnown: 0, version: '0.1.0', uptimeSeconds: 1 })
     try {
       const { orders, ordersAgeMs } = await this.#init.send(member, report)

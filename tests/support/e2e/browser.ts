@@ -1,6 +1,7 @@
 import axe, { type AxeResults, type RunOptions } from 'axe-core'
 import { type Browser, type BrowserContext, chromium, type Page, type Request } from 'playwright-core'
 import { findChromium } from '@/scripts/lib/chromium.mjs'
+import { PATIENCE_MS } from '../until'
 
 const FLAGS = [
   '--no-sandbox',
@@ -9,8 +10,6 @@ const FLAGS = [
   '--disable-component-update',
   '--disable-sync',
 ]
-/** For one step of a person, on a machine several times slower than it should be. */
-const STEP_MS = 45_000
 const SERIOUS = ['serious', 'critical']
 
 /** A server action as a browser sent it: enough to send it again as somebody else. */
@@ -38,7 +37,7 @@ export class Person {
       viewport: { width: 1440, height: 900 },
       colorScheme: 'light',
     })
-    context.setDefaultTimeout(STEP_MS)
+    context.setDefaultTimeout(PATIENCE_MS)
     const person = new Person(context, await context.newPage())
     person.#watch(person.page)
     return person

@@ -1,6 +1,7 @@
 import { type ChildProcess, spawn } from 'node:child_process'
 import { createInterface } from 'node:readline'
 import { endProcess, identify } from '@/scripts/lib/processes.mjs'
+import { within } from '../until'
 
 export const ROOT = new URL('../../../', import.meta.url).pathname
 
@@ -9,6 +10,8 @@ const STOP_SIGNALS = [
   { name: 'SIGKILL', patienceMs: 5_000 },
 ]
 const TAIL_LINES = 40
+/** What was said before the end comes just after it; what others hold open may stay open. */
+const LAST_WORDS_MS = 5_000
 
 /** Programs that still run when the test's process ends are killed, each by the function kept here. */
 const killers = new Set<() => void>()
@@ -58,7 +61,14 @@ export class Child {
         resolve(how)
       }
       this.#process.once('error', (error) => settle(error.message))
-      this.#process.once('exit', (code, signal) => settle(`ended with ${signal ?? `code ${code}`}`))
+      this.#process.once('exit', (code, signal) => {
+        const how = `ended with ${signal ?? `code ${code}`}`
+        const timer = setTimeout(() => settle(how), LAST_WORDS_MS)
+        this.#process.once('close', () => {
+          clearTimeout(timer)
+          settle(how)
+        })
+      })
     })
     const { pid } = this.#process
     const kill = () => {
@@ -90,7 +100,7 @@ export class Child {
     const ended = this.end.then((how) => {
       throw new Error(`The program ${how} before it said so.\n${this.tail()}`)
     })
-    return Promise.race([found, ended])
+    return within(`a line such that ${wanted}`, Promise.race([found, ended]), { explain: () => this.tail() })
   }
 
   write(line: string): void {

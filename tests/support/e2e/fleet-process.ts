@@ -2,6 +2,7 @@ import { mkdtemp, rm, writeFile } from 'node:fs/promises'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { z } from 'zod'
+import { within } from '../until'
 import { Child } from './child'
 
 const answerSchema = z.looseObject({ ok: z.boolean(), command: z.string(), error: z.string().optional() })
@@ -61,6 +62,12 @@ export class FleetProcess {
     return this.#answer(line.split(' ')[0] ?? line)
   }
 
+  /** All at once, so that hardly any time passes between the first and the last. */
+  async tellAll(lines: readonly string[]): Promise<void> {
+    this.#child.write(lines.join('\n'))
+    for (const line of lines) await this.#answer(line.split(' ')[0] ?? line)
+  }
+
   async exact(): Promise<z.infer<typeof exactSchema>> {
     return exactSchema.parse(await this.tell('exact'))
   }
@@ -75,7 +82,9 @@ export class FleetProcess {
       const woken = new Promise<null>((resolve) => {
         this.#wake = () => resolve(null)
       })
-      const end = await Promise.race([woken, this.#child.end])
+      const end = await within(`the fleet answers "${command}"`, Promise.race([woken, this.#child.end]), {
+        explain: () => this.#child.tail(),
+      })
       if (end !== null && this.#answers.length === 0)
         throw new Error(`The fleet ${end} instead of answering "${command}".\n${this.#child.tail()}`)
     }

@@ -1,5 +1,6 @@
 import type { Locator, Page } from 'playwright-core'
 import type { Reading } from '@/lib/data/dto'
+import { PATIENCE_MS } from '../until'
 
 export async function heading(on: Page, name: string): Promise<void> {
   await on.getByRole('heading', { level: 1, name, exact: true }).waitFor()
@@ -26,7 +27,7 @@ export async function readingOnPage(on: Page, exact: number): Promise<void> {
       return Math.abs(Number.parseFloat(shown ?? '') / wanted - 1) < 0.05
     },
     exact,
-    { timeout: 90_000 },
+    { timeout: PATIENCE_MS },
   )
 }
 

@@ -1,7 +1,7 @@
 import { type Reading, readingSchema } from '@/lib/data/dto'
 import type { readStream } from '../streams'
+import { PATIENCE_MS, within } from '../until'
 
-export const DEADLINE_MS = 90_000
 const TOLD = 8
 
 /** The readings of an event stream, in the order they come. */
@@ -35,26 +35,19 @@ export class ReadingStream {
     what: string,
     wanted: (reading: Reading) => boolean,
     explain: () => string | Promise<string> = () => '',
-    deadlineMs = DEADLINE_MS,
+    deadlineMs = PATIENCE_MS,
   ): Promise<Reading> {
-    const late = Symbol('late')
-    let timer: ReturnType<typeof setTimeout> | undefined
-    const deadline = new Promise<typeof late>((resolve) => {
-      timer = setTimeout(() => resolve(late), deadlineMs)
-    })
-    try {
+    const look = async () => {
       for (;;) {
-        const reading = await Promise.race([this.next(), deadline])
-        if (reading === late) break
+        const reading = await this.next()
         if (wanted(reading)) return reading
       }
-    } finally {
-      clearTimeout(timer)
     }
-    const last = this.seen.slice(-TOLD).map(inOneLine).join('\n')
-    throw new Error(
-      `Not within ${deadlineMs / 1000} s: ${what}.\nLast readings:\n${last}\n${await explain()}`,
-    )
+    return within(what, look(), {
+      patienceMs: deadlineMs,
+      explain: async () =>
+        `Last readings:\n${this.seen.slice(-TOLD).map(inOneLine).join('\n')}\n${await explain()}`,
+    })
   }
 }
 

@@ -2,14 +2,14 @@ import { randomBytes } from 'node:crypto'
 import { z } from 'zod'
 import { runAdminCommand } from '@/lib/data/admin-commands'
 import { nextProgram } from '@/scripts/lib/build.mjs'
-import { tryPort } from '@/scripts/lib/ports.mjs'
 import { TEST_DIST_FOLDER } from '@/scripts/lib/test-cluster.mjs'
 import { untilHealthy } from '@/scripts/lib/web.mjs'
 import { createTestDatabase, type TestDatabase } from '../database'
+import { freePort } from '../free-port'
 import { testRuntime } from '../people'
+import { PATIENCE_MS } from '../until'
 import { Child, ROOT } from './child'
 
-const HEALTH_PATIENCE_MS = 60_000
 /** From this level on a line of the log is a fault (pino's levels: 50 is error). */
 const ERROR_LEVEL = 50
 
@@ -26,8 +26,7 @@ export interface E2eServer {
 /** The production build on a random port, with a database and a secret of its own. */
 export async function startServer(): Promise<E2eServer> {
   const database = await createTestDatabase()
-  const port = await tryPort(0)
-  if (port === null) throw new Error('No port of 127.0.0.1 can be listened on.')
+  const port = await freePort()
   const args = [nextProgram(ROOT), 'start', '-H', '127.0.0.1', '-p', String(port)]
   const web = new Child(process.execPath, args, {
     env: {
@@ -46,7 +45,7 @@ export async function startServer(): Promise<E2eServer> {
   try {
     const { signal } = new AbortController()
     const ended = () => web.ended
-    await untilHealthy(`${url}/api/health`, { ended, patienceMs: HEALTH_PATIENCE_MS, signal })
+    await untilHealthy(`${url}/api/health`, { ended, patienceMs: PATIENCE_MS, signal })
   } catch (error) {
     await stop()
     throw new Error(`${error instanceof Error ? error.message : String(error)}\n${web.tail()}`)

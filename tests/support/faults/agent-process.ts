@@ -2,8 +2,8 @@ import { mkdtemp, rm } from 'node:fs/promises'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { AGENT_FILE, ensureAgentFile } from '@/scripts/lib/agent-file.mjs'
-import { tryPort } from '@/scripts/lib/ports.mjs'
 import { Child, ROOT } from '../e2e/child'
+import { freePort } from '../free-port'
 
 export interface AgentProcessInit {
   name: string
@@ -34,9 +34,7 @@ export class AgentProcess {
     await ensureAgentFile(ROOT)
     this.#folder = this.#init.folder ?? (await mkdtemp(join(tmpdir(), 'thinspan-fault-')))
     if (!this.#init.folder) this.#own = this.#folder
-    const port = await tryPort(0)
-    if (port === null) throw new Error('No port of 127.0.0.1 can be listened on.')
-    this.#port = port
+    this.#port = await freePort()
     const { name, collector, code } = this.#init
     const child = this.#spawn(['enrol', '--collector', collector, '--code', code, '--name', name])
     const how = await child.end

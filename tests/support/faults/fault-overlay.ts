@@ -8,11 +8,13 @@ import { Member, type MemberInit } from '@/scripts/fleet/member'
 import { twoSides } from '../e2e/two-sides'
 import { TestCollector } from '../test-collector'
 import { serve } from '../test-collector-server'
+import { PATIENCE_MS, until } from '../until'
 import { type Books, booksOf } from '../walker-books'
 
 const TOLERANCE = 0.05
 const IN_A_ROW = 3
-const STILL_MS = 20_000
+/** So many reports from everyone without a change: what was on its way has arrived, or never will. */
+const STILL_REPORTS = 3
 
 export interface FaultOverlayInit {
   seed: string
@@ -138,7 +140,7 @@ export class FaultOverlay {
    * Waits for readings in a row within 5 % of the exact value.
    * @returns the seedings of the first reading that was not withheld
    */
-  async reads(limitMs = 60_000): Promise<readonly number[]> {
+  async reads(limitMs = PATIENCE_MS): Promise<readonly number[]> {
     const { exact } = this
     let first: readonly number[] | null = null
     const told: string[] = []
@@ -167,27 +169,26 @@ export class FaultOverlay {
     return first ?? []
   }
 
-  /** Orders that stop all walking; resolves once every walker sent has arrived, or with what is missing after a while. */
+  /** Orders that stop all walking; resolves once every walker sent has arrived, or with what is missing when no more comes. */
   async standStill(): Promise<Books[]> {
     const orders = this.collector.lastOrders
     if (!orders) throw new Error('There were no orders yet.')
     const still = { ...orders, linkTimePerSecond: 0, next: undefined }
     this.collector.fixedOrders = (sequence) => ({ ...still, sequence })
     const firstStill = orders.sequence + 1
-    const startedAtMs = performance.now()
     let told = ''
-    for (;;) {
-      await new Promise((resolve) => setTimeout(resolve, 250))
-      const books = this.books()
-      const isStill = [...this.collector.agents.values()].every(
-        ({ last }) => (last?.report.ordersSequence ?? 0) >= firstStill,
-      )
-      const now = JSON.stringify(books)
-      // The same twice, at a distance of a report from everyone.
-      if (isStill && now === told) return books
-      told = isStill ? now : ''
-      if (performance.now() - startedAtMs > STILL_MS) return books
+    let toldAt: number[] = []
+    const reports = () => [...this.collector.agents.values()].map(({ last }) => last?.report)
+    const hasCome = () => {
+      const isStill = reports().every((report) => (report?.ordersSequence ?? 0) >= firstStill)
+      const now = isStill ? JSON.stringify(this.books()) : ''
+      const numbers = reports().map((report) => report?.number ?? 0)
+      if (now !== told) toldAt = numbers
+      told = now
+      return isStill && numbers.every((number, index) => number >= (toldAt[index] ?? 0) + STILL_REPORTS)
     }
+    await until(hasCome, { explain: () => JSON.stringify(this.books()) })
+    return this.books()
   }
 
   walkOn(): void {

@@ -4,6 +4,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { createClock, createSpoolFile } from '@/agent'
 import { createRandom } from '@/lib/method/random'
 import { MESSAGE_KIND } from '@/lib/protocol'
+import { until } from '../until'
 import { type Books, missing } from '../walker-books'
 import { AgentProcess } from './agent-process'
 import { FaultOverlay } from './fault-overlay'
@@ -13,7 +14,6 @@ import { faithfully, type Meddling, MeddlingRelay } from './meddling-relay'
 
 const HOUR_MS = 3_600_000
 const FLAP_MS = 50
-const HOOK_MS = 60_000
 const VICTIM = 'eel-05'
 const STEPPED = 'tar-05'
 const SPOOLING = 'tar-01'
@@ -66,19 +66,20 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
       const agentId = `agent-${to}`
       overlay.member(from).agent?.addNeighbour({ agentId, address: overlay.addressOf(to) })
     }
-  }, HOOK_MS)
+  })
   afterAll(async () => {
     await victim?.stop()
     await overlay.stop()
     await flaky?.stop()
     await relay?.stop()
     disk.remove()
-  }, HOOK_MS)
+  })
 
   describe('an overlay of ten agents over real sockets', () => {
     it('is read within 5 % where two ends dial each other at once, over one link and with balanced books', async () => {
       await overlay.reads()
       const [one, other] = DIALED_TWICE
+      await until(() => overlay.isLinked(one, other) && overlay.isLinked(other, one))
       const status = overlay.member(one).agent?.status().links ?? []
       expect(status.filter(({ peer }) => peer === `agent-${other}`)).toHaveLength(1)
       expect(overlay.isLinked(one, other) && overlay.isLinked(other, one)).toBe(true)
@@ -96,17 +97,24 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
       clearInterval(flapping)
       flaky.isDown = false
       await overlay.reads()
-      expect(overlay.isLinked(...FLAPPING)).toBe(true)
+      await until(() => overlay.isLinked(...FLAPPING))
       await expectBalanced()
     })
 
     it('keeps a link whose frames are late, overtaken, repeated and lost, and loses no walker on it', async () => {
       const downs = downsOf(MEDDLED)
-      await meddle(faultMs, (bytes) => {
-        if (random.uniform() < 0.1) return []
-        const copies = random.uniform() < 0.3 ? 3 : 1
-        return Array.from({ length: copies }, () => ({ bytes, delayMs: 200 * random.uniform() }))
-      })
+      // So many that more go on than come, whichever are late.
+      const MANY = 100
+      const from = relay.came
+      await meddle(
+        faultMs,
+        (bytes) => {
+          if (random.uniform() < 0.1) return []
+          const copies = random.uniform() < 0.3 ? 3 : 1
+          return Array.from({ length: copies }, () => ({ bytes, delayMs: 200 * random.uniform() }))
+        },
+        () => relay.came >= from + MANY && relay.went > relay.came,
+      )
       expect(relay.went).toBeGreaterThan(relay.came)
       expect(downsOf(MEDDLED)).toEqual(downs)
       await overlay.reads()
@@ -115,15 +123,19 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
 
     it('closes a link on frames that are cut short, dials it again, and loses no walker', async () => {
       const before = downsOf(MEDDLED).length
-      await meddle(faultMs, (bytes) => {
-        const isCut = random.uniform() < 0.05
-        return [{ bytes: isCut ? bytes.subarray(0, bytes.length >> 1) : bytes, delayMs: 0 }]
-      })
-      const reasons = downsOf(MEDDLED).slice(before)
-      expect(reasons.length).toBeGreaterThan(0)
+      const reasonsSince = () => downsOf(MEDDLED).slice(before)
+      await meddle(
+        faultMs,
+        (bytes) => {
+          const isCut = random.uniform() < 0.05
+          return [{ bytes: isCut ? bytes.subarray(0, bytes.length >> 1) : bytes, delayMs: 0 }]
+        },
+        () => reasonsSince().length > 0,
+      )
+      const reasons = reasonsSince()
       expect(reasons.filter((reason) => reason !== 'bad-frame')).toEqual([])
       await overlay.reads()
-      expect(overlay.isLinked(...MEDDLED)).toBe(true)
+      await until(() => overlay.isLinked(...MEDDLED))
       await expectBalanced()
     })
 
@@ -199,11 +211,12 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
   })
 }
 
-function meddle(forMs: number, meddling: Meddling): Promise<void> {
+/** For so long, and until it has had its effect. */
+async function meddle(forMs: number, meddling: Meddling, hasTold: () => boolean): Promise<void> {
   relay.meddling = (bytes) => (bytes[0] === MESSAGE_KIND.frame ? meddling(bytes) : faithfully(bytes))
-  return delay(forMs).then(() => {
-    relay.meddling = faithfully
-  })
+  await delay(forMs)
+  await until(hasTold)
+  relay.meddling = faithfully
 }
 
 async function expectBalanced(): Promise<void> {
@@ -237,11 +250,3 @@ function isPair(a: string, b: string, pair: readonly string[]): boolean {
 }
 
 const delay = (ms: number): Promise<void> => new Promise((resolve) => setTimeout(resolve, ms))
-
-/** @throws after a while */
-async function until(isSo: () => boolean): Promise<void> {
-  for (let look = 0; !isSo(); look++) {
-    if (look > 200) throw new Error(`Not so after ${look / 10} s: ${isSo}`)
-    await delay(100)
-  }
-}

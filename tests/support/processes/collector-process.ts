@@ -1,4 +1,5 @@
 import { Child, ROOT } from '../e2e/child'
+import { within } from '../until'
 
 const LISTENING = /^Collector listens on (http:\S+)$/
 
@@ -25,7 +26,9 @@ export class CollectorProcess {
     const ended = this.child.end.then((how) => {
       throw new Error(`The collector ${how}.\n${this.child.tail()}`)
     })
-    this.listening = Promise.race([said, ended])
+    this.listening = within('the collector listens', Promise.race([said, ended]), {
+      explain: () => this.child.tail(),
+    })
     // One that is stopped later has been waited for already.
     this.listening.catch(() => undefined)
   }

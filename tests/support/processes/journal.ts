@@ -1,4 +1,6 @@
 import pg from 'pg'
+import { until } from '../until'
+import type { Awake } from './awake'
 
 export interface Entry {
   atMs: number
@@ -53,21 +55,22 @@ export class Journal {
   /** Runs `act` while a leader is in the middle of a round: what it has written is locked and not yet there. */
   async midRound(act: () => void): Promise<void> {
     await this.#client.query('begin; lock table readings in share mode')
-    for (let waiting = 0; waiting === 0; ) {
+    const isARoundWaiting = async () => {
       const { rows } = await this.#client.query<{ waiting: number }>(
         `select count(*)::int as waiting from pg_locks where not granted and relation = 'readings'::regclass`,
       )
-      waiting = rows[0]?.waiting ?? 0
+      return (rows[0]?.waiting ?? 0) > 0
     }
+    await until(isARoundWaiting)
     act()
     await this.#client.query('rollback')
   }
 }
 
-/** Milliseconds between entries of one kind that follow each other. */
-export function gapsMs(entries: readonly Entry[], kind: Entry['kind']): number[] {
+/** Milliseconds between entries of one kind that follow each other, of those that programs could run in. */
+export function gapsMs(entries: readonly Entry[], kind: Entry['kind'], awake: Awake): number[] {
   const times = entries.filter((entry) => entry.kind === kind).map(({ atMs }) => atMs)
-  return times.slice(1).map((atMs, index) => atMs - (times[index] ?? atMs))
+  return times.slice(1).map((atMs, index) => awake.msBetween(times[index] ?? atMs, atMs))
 }
 
 /** Every number is the one after the number before, whoever wrote it. */

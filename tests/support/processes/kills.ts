@@ -5,6 +5,7 @@ import { setRuntime } from '@/lib/http/runtime'
 import { joinAgent, seedCode, seedOverlay } from '../collector'
 import { createTestDatabase, type TestDatabase } from '../database'
 import { seedTeam, testRuntime } from '../people'
+import { until } from '../until'
 import { CollectorProcess } from './collector-process'
 import { expectKept } from './kept'
 import { OwnCluster } from './own-cluster'
@@ -19,7 +20,7 @@ export interface KillsInit {
 /** The collector and the database killed with reports under way: what was answered is there, once. */
 export function killTests({ agents, times }: KillsInit): void {
   // Each begins programs and a database anew, beside other tests.
-  const patienceMs = 30_000 + 60_000 * times
+  const patienceMs = 300_000 + 60_000 * times
   const cluster = new OwnCluster()
   let database: TestDatabase
   let collector: CollectorProcess
@@ -62,7 +63,7 @@ export function killTests({ agents, times }: KillsInit): void {
       const held = new Map(rows.map(({ id, number }) => [id, Number(number)]))
       return reporters.states.every(({ member, answered }) => (held.get(member.agentId) ?? 0) > answered)
     }
-    while (!(await isAhead()));
+    await until(isAhead)
     await act()
     await client.query('rollback')
     await client.end()
@@ -112,7 +113,7 @@ export function killTests({ agents, times }: KillsInit): void {
         await cluster.start()
         await reporters.answers(5)
         await kept()
-        while ((await sequence()) < before + 2);
+        await until(async () => (await sequence()) >= before + 2)
       }
       const said = reporters.refusals.map(({ status, retryAfter, code }) => `${status} ${retryAfter} ${code}`)
       expect(

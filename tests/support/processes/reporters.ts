@@ -1,6 +1,7 @@
 import { setTimeout as delay } from 'node:timers/promises'
 import type { Member } from '../collector'
 import { someReport } from '../reports'
+import { Bell } from '../until'
 import { postReport, type ReportAnswer } from './report-client'
 
 const PATIENCE_MS = 5_000
@@ -26,7 +27,7 @@ export class Reporters {
   repeated = 0
   url: string
   readonly #stopping = new AbortController()
-  readonly #waiting = new Set<() => void>()
+  readonly #bell = new Bell()
   #running: Promise<unknown> = Promise.resolve()
 
   constructor(members: readonly Member[], init: { url: string }) {
@@ -44,11 +45,13 @@ export class Reporters {
   }
 
   /** Until `wanted` holds; looked at with every answer. */
-  async until(wanted: () => boolean): Promise<void> {
-    while (!wanted())
-      await new Promise<void>((resolve) => {
-        this.#waiting.add(resolve)
-      })
+  until(wanted: () => boolean): Promise<void> {
+    return this.#bell.until(wanted, { explain: () => this.#told() })
+  }
+
+  #told(): string {
+    const states = this.states.map(({ member, sent, answered }) => `${member.name} ${answered} of ${sent}`)
+    return [...states, ...this.refusals.slice(-3).map((refusal) => JSON.stringify(refusal))].join('\n')
   }
 
   /** Until every agent has been answered `count` times more. */
@@ -72,8 +75,7 @@ export class Reporters {
         state.answered = number
         if (isRepeated(answer.body)) this.repeated += 1
       } else if (answer) this.refusals.push(answer)
-      for (const wake of this.#waiting) wake()
-      this.#waiting.clear()
+      this.#bell.ring()
       await delay(PAUSE_MS)
     }
   }

@@ -4,6 +4,8 @@ import { seedCode, seedOverlay } from '../collector'
 import { createTestDatabase, type TestDatabase } from '../database'
 import { seedTeam, testRuntime } from '../people'
 import { Swarm } from '../swarm'
+import { Bell } from '../until'
+import { Awake } from './awake'
 import { CollectorProcess } from './collector-process'
 import { type Entry, Journal } from './journal'
 import { ReportClient } from './report-client'
@@ -19,6 +21,7 @@ const CHORDS: [number, number][] = [
 export class TwoCollectors {
   readonly journal: Journal
   readonly processes: CollectorProcess[] = []
+  readonly awake = new Awake()
   readonly #database: TestDatabase
   readonly #listener: Listener
   readonly #clients: ReportClient[] = []
@@ -53,6 +56,7 @@ export class TwoCollectors {
   }
 
   async #start(): Promise<void> {
+    this.awake.start()
     await this.journal.start()
     this.#listener.start()
     await Promise.all([this.addProcess(), this.addProcess()])
@@ -95,23 +99,22 @@ export class TwoCollectors {
   /** Looks at the journal after each round until it is as wanted. */
   async until(wanted: (entries: readonly Entry[]) => boolean): Promise<Entry[]> {
     const stop = new AbortController()
-    let wake = () => {}
-    await this.#listener.subscribe(`overlay:${this.#overlayId}`, () => wake(), stop.signal)
-    for (;;) {
-      const next = new Promise<void>((resolve) => {
-        wake = resolve
-      })
-      const entries = await this.journal.entries()
-      if (wanted(entries)) {
-        stop.abort()
-        return entries
-      }
-      await next
+    const bell = new Bell()
+    await this.#listener.subscribe(`overlay:${this.#overlayId}`, () => bell.ring(), stop.signal)
+    let entries: Entry[] = []
+    const isAsWanted = async () => {
+      entries = await this.journal.entries()
+      return wanted(entries)
     }
+    const explain = () =>
+      `${wanted}\n${JSON.stringify(entries.slice(-9))}\n${this.processes.map(({ child }) => child.tail()).join('\n')}`
+    await bell.until(isAsWanted, { explain }).finally(() => stop.abort())
+    return entries
   }
 
   async stop(): Promise<void> {
     this.#swarm.stop()
+    this.awake.stop()
     await Promise.all(
       this.processes.map(async ({ child }) => {
         child.signal('SIGCONT')
