@@ -10,6 +10,8 @@ const LIMITS = { cpuShare: 0.01, rssMib: 90, bytesPerLinkSecond: 2_000, reportBy
 const COLONIES = 5 + 4
 const NEIGHBOURS = 8
 const HUB_NEIGHBOURS = 1_000
+/** Of them, agents whole, as a control. */
+const HUB_WHOLE_NEIGHBOURS = 8
 const HUB_WARM_UP_MS = 30_000
 const WALKERS = [100, 10_000, 1_000_000]
 
@@ -40,6 +42,7 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
     const steady: BenchOverlayInit = {
       ...shared,
       neighbours: NEIGHBOURS,
+      lightNeighbours: 0,
       linkedAmongThemselves: true,
       disclosure: 'named',
       countsBytes: true,
@@ -55,7 +58,8 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
   if (parts.includes('hub')) {
     const hub: BenchOverlayInit = {
       ...shared,
-      neighbours: HUB_NEIGHBOURS,
+      neighbours: HUB_WHOLE_NEIGHBOURS,
+      lightNeighbours: HUB_NEIGHBOURS - HUB_WHOLE_NEIGHBOURS,
       linkedAmongThemselves: false,
       disclosure: 'sealed',
       countsBytes: false,
@@ -120,17 +124,25 @@ function printWalkers(print: Print): void {
 }
 
 function printHub(measured: Measured, print: Print): void {
+  const { cpuShare, ticksPerSecond, links, linksLeast, linksMean } = measured
+  const cpuMsPerTick = ticksPerSecond === null ? Number.NaN : (1000 * cpuShare) / ticksPerSecond
   print('')
+  print(`A hub with ${HUB_NEIGHBOURS} neighbours, ${HUB_WHOLE_NEIGHBOURS} of them agents whole:`)
   print(headline(measured))
-  const late = share(measured.lateShare)
-  const rate = measured.ticksPerSecond?.toFixed(2) ?? 'not told'
-  print(`  CPU ${percent(measured.cpuShare)} of a core`)
+  print(`  live at once: ${linksLeast} at least, ${Math.round(linksMean)} on average, ${links} at most`)
+  print(`  mean weight of a link ${measured.meanWeight?.toFixed(3) ?? 'not told'}`)
+  print(
+    `  CPU ${percent(cpuShare)} of a core, ${cpuMsPerTick.toFixed(1)} ms a tick with all that came since the last`,
+  )
   print(`  resident memory ${measured.rssMib.toFixed(1)} MiB (peak ${measured.peakRssMib.toFixed(1)})`)
-  print(`  ${rate} ticks per second, more than a tick late: ${late}`)
+  print(`  per link, both ways, on the socket: ${Math.round(measured.bytesPerLinkSecond ?? Number.NaN)} B/s`)
+  print(`  ${rate(ticksPerSecond)} ticks per second, more than a tick late: ${share(measured.lateShare)}`)
+  print(`  its light neighbours: ${rate(measured.lightTicksPerSecond)} ticks per second`)
   print(`  report ${Math.round(measured.reportBytesMean)} B, as JSON ${measured.reportJsonBytesMost} B`)
 }
 
 const headline = ({ links, colonies, seconds }: Measured): string =>
   `${links} neighbours, ${colonies} colonies, ${seconds.toFixed(0)} s:`
 const percent = (value: number): string => `${(100 * value).toFixed(2)} %`
+const rate = (value: number | null): string => value?.toFixed(2) ?? 'not told'
 const share = (value: number | null): string => (value === null ? 'not told' : percent(value))
