@@ -89,6 +89,7 @@ function printSteady(measured: Measured, bare: number, print: Print): void {
     `    the same messages over bare WebSockets, side by side: ${percent(bare)} (the agent ×${(cpuShare / bare).toFixed(1)})`,
   )
   print(`    the agent while it warms up: ${percent(measured.warmUpCpuShare)}`)
+  print(`    it waited for a processor that others had: ${percent(measured.waitedShare)} of the time`)
   row(
     'resident memory (peak)',
     `${rssMib.toFixed(1)} MiB (${peakRssMib.toFixed(1)})`,
@@ -134,6 +135,7 @@ function printHub(measured: Measured, print: Print): void {
   print(
     `  CPU ${percent(cpuShare)} of a core, ${cpuMsPerTick.toFixed(1)} ms a tick with all that came since the last`,
   )
+  print(`  it waited for a processor that others had: ${percent(measured.waitedShare)} of the time`)
   print(`  resident memory ${measured.rssMib.toFixed(1)} MiB (peak ${measured.peakRssMib.toFixed(1)})`)
   print(`  per link, both ways, on the socket: ${Math.round(measured.bytesPerLinkSecond ?? Number.NaN)} B/s`)
   print(`  ${rate(ticksPerSecond)} ticks per second, more than a tick late: ${share(measured.lateShare)}`)

@@ -54,7 +54,8 @@ export class LightNeighbour {
     const text = (bytes: number) => Buffer.from(randomBytes(bytes)).toString('base64url')
     this.node = new WalkNode(
       { random },
-      { agentId: this.agentId, incarnation: text(12), weights: enrolled.weights },
+      // The audit of what the hub says is the hub's neighbours' affair, and no part of what they say to it.
+      { agentId: this.agentId, incarnation: text(12), weights: enrolled.weights, audits: false },
     )
     this.links = new LinkManager(
       {

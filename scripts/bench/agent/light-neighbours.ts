@@ -15,6 +15,8 @@ import { type LightFigures, wantedSchema } from './wanted'
 
 /** Ticks and reports are spread over their periods in so many groups. */
 const GROUPS = 40
+/** Their last reports are held for six. */
+const REPORT_INTERVALS = 2
 /** Dialed at once: a listener takes no more than 64 of one address that have not proved themselves. */
 const DIALED_AT_ONCE = 16
 
@@ -69,14 +71,17 @@ const groups = Array.from({ length: GROUPS }, (_, group) =>
   neighbours.filter((_, index) => index % GROUPS === group),
 )
 
-/** Goes through the groups evenly, one period for all; what comes late is not made up for. */
+/** Goes through the groups evenly, one period for all. What is late by more than a period is not made up for. */
 function inTurn(periodMs: () => number, run: (group: LightNeighbour[]) => void): void {
   let group = 0
   let dueAtMs = monotonicMs()
   const step = () => {
-    run(groups[group] ?? [])
-    group = (group + 1) % GROUPS
-    dueAtMs = Math.max(dueAtMs + periodMs() / GROUPS, monotonicMs() - periodMs())
+    const nowMs = monotonicMs()
+    dueAtMs = Math.max(dueAtMs, nowMs - periodMs())
+    for (; dueAtMs <= nowMs; dueAtMs += periodMs() / GROUPS) {
+      run(groups[group] ?? [])
+      group = (group + 1) % GROUPS
+    }
     setTimeout(step, Math.max(0, dueAtMs - monotonicMs()))
   }
   step()
@@ -114,7 +119,7 @@ inTurn(
   },
 )
 inTurn(
-  () => paceNow().intervalMs,
+  () => REPORT_INTERVALS * paceNow().intervalMs,
   (group) => void report(group).catch((error: unknown) => process.stderr.write(`${String(error)}\n`)),
 )
 

@@ -6,6 +6,8 @@ export interface Measured {
   /** Of one core; and of the warm-up before, in which much is still being compiled. */
   cpuShare: number
   warmUpCpuShare: number
+  /** Share of the time in which the agent could have run and the machine had no processor for it. */
+  waitedShare: number
   rssMib: number
   peakRssMib: number
   /** Both ways together, per link; null where not counted. */
@@ -63,6 +65,7 @@ export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: numbe
     seconds,
     cpuShare: (after.cpuSeconds - before.cpuSeconds) / seconds,
     warmUpCpuShare: (before.cpuSeconds - linked.cpuSeconds) / warmUpSeconds,
+    waitedShare: (after.waitedSeconds - before.waitedSeconds) / seconds,
     rssMib,
     peakRssMib: after.peakRssMib,
     bytesPerLinkSecond: bytes === 0 ? ofLight('bytes') : bytes / seconds / linksMost,

@@ -16,6 +16,8 @@ import { type LightFigures, lightFiguresSchema, type Wanted } from './wanted'
 const ROOT = resolve(import.meta.dirname, '../../..')
 const CODE = 'code-for-benches'
 export const MEASURED = 'tar-01'
+/** So that a process with a thousand agents is not busy collecting their frames. */
+const YOUNG_SPACE = '--min-semi-space-size=16'
 const LINKED_WITHIN_MS = 60_000
 
 export interface BenchOverlayInit {
@@ -123,7 +125,7 @@ export class BenchOverlay {
 
   private startNeighbours(program: string, wanted: Wanted): Promise<void> {
     const script = join(import.meta.dirname, program)
-    const child = this.spawn(['--import', 'tsx', script, JSON.stringify(wanted)])
+    const child = this.spawn([YOUNG_SPACE, '--import', 'tsx', script, JSON.stringify(wanted)])
     return new Promise((resolve, reject) => {
       if (child.stdout)
         createInterface({ input: child.stdout }).on('line', (line) => {
