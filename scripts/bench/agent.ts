@@ -1,5 +1,5 @@
 import { parseArgs } from 'node:util'
-import { bareCpuShare } from './agent/bare'
+import { type Bare, bareFloor } from './agent/bare'
 import { type Measured, measure } from './agent/measure'
 import { BenchOverlay, type BenchOverlayInit } from './agent/overlay'
 import { tickCosts } from './agent/walkers'
@@ -50,7 +50,7 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
     // Side by side, so that whatever else the machine does slows both alike.
     const [measured, bare] = await Promise.all([
       run(steady, warmUpMs, ms),
-      bareCpuShare(NEIGHBOURS, warmUpMs, ms),
+      bareFloor(NEIGHBOURS, warmUpMs, ms),
     ])
     printSteady(measured, bare, print)
   }
@@ -78,16 +78,19 @@ async function run(init: BenchOverlayInit, warmUpMs: number, ms: number): Promis
   }
 }
 
-function printSteady(measured: Measured, bare: number, print: Print): void {
+function printSteady(measured: Measured, bare: Bare, print: Print): void {
   const { cpuShare, rssMib, peakRssMib, bytesPerLinkSecond, reportBytesMost, reportBytesMean } = measured
   print('')
   print(headline(measured))
   const row = (what: string, value: string, limit: string, holds: boolean) =>
     print(`  ${what.padEnd(34)} ${value.padStart(22)}   ${limit.padEnd(16)} ${holds ? 'held' : 'MISSED'}`)
   row('CPU, share of a core', percent(cpuShare), 'under 1 %', cpuShare < LIMITS.cpuShare)
+  const ratio = (cpuShare / bare.cpuShare).toFixed(1)
   print(
-    `    the same messages over bare WebSockets, side by side: ${percent(bare)} (the agent ×${(cpuShare / bare).toFixed(1)})`,
+    `    the floor, the same messages over bare WebSockets, side by side: ${percent(bare.cpuShare)} (the agent ×${ratio})`,
   )
+  const wakes = [measured.wakesPerSecond, bare.wakesPerSecond].map((perSecond) => perSecond.toFixed(0))
+  print(`    woken per second: ${wakes[0]} times, the floor ${wakes[1]} times`)
   print(`    the agent while it warms up: ${percent(measured.warmUpCpuShare)}`)
   print(`    it waited for a processor that others had: ${percent(measured.waitedShare)} of the time`)
   row(

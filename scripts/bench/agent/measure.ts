@@ -8,6 +8,7 @@ export interface Measured {
   warmUpCpuShare: number
   /** Share of the time in which the agent could have run and the machine had no processor for it. */
   waitedShare: number
+  wakesPerSecond: number
   rssMib: number
   peakRssMib: number
   /** Both ways together, per link; null where not counted. */
@@ -66,6 +67,7 @@ export async function measure(overlay: BenchOverlay, warmUpMs: number, ms: numbe
     cpuShare: (after.cpuSeconds - before.cpuSeconds) / seconds,
     warmUpCpuShare: (before.cpuSeconds - linked.cpuSeconds) / warmUpSeconds,
     waitedShare: (after.waitedSeconds - before.waitedSeconds) / seconds,
+    wakesPerSecond: (after.wakes - before.wakes) / seconds,
     rssMib,
     peakRssMib: after.peakRssMib,
     bytesPerLinkSecond: bytes === 0 ? ofLight('bytes') : bytes / seconds / linksMost,

@@ -6,6 +6,8 @@ export interface ProcessFigures {
   cpuSeconds: number
   /** Time the main thread was ready to run and none was free. */
   waitedSeconds: number
+  /** How often the main thread has gone to sleep of its own will, and so was woken. */
+  wakes: number
   rssMib: number
   /** The most that was ever resident. */
   peakRssMib: number
@@ -16,6 +18,7 @@ export function figuresOf(pid: number): ProcessFigures {
   return {
     cpuSeconds: cpuSecondsOf(pid),
     waitedSeconds: schedstatOf(pid, pid)[1] / 1e9,
+    wakes: wakesOf(pid),
     rssMib: kibOf(status, 'VmRSS') / 1024,
     peakRssMib: kibOf(status, 'VmHWM') / 1024,
   }
@@ -34,6 +37,13 @@ function cpuSecondsOf(pid: number): number {
 function schedstatOf(pid: number, thread: number | string): [number, number] {
   const [ran, waited] = readFileSync(`/proc/${pid}/task/${thread}/schedstat`, 'utf8').split(' ')
   return [Number(ran), Number(waited)]
+}
+
+function wakesOf(pid: number): number {
+  const status = readFileSync(`/proc/${pid}/task/${pid}/status`, 'utf8')
+  const wakes = Number(/^voluntary_ctxt_switches:\s+(\d+)$/m.exec(status)?.[1])
+  if (!Number.isFinite(wakes)) throw new Error('/proc says nothing of context switches.')
+  return wakes
 }
 
 function kibOf(status: string, key: string): number {
