@@ -26,6 +26,10 @@ export class ByteWriter {
   varint(value: number): void {
     if (!Number.isSafeInteger(value) || value < 0) throw new RangeError(`not an unsigned integer: ${value}`)
     this.reserve(MAX_VARINT_BYTES)
+    if (value < 0x80) {
+      this.bytes[this.at++] = value
+      return
+    }
     let rest = value
     while (rest >= 0x80) {
       this.bytes[this.at++] = (rest % 0x80) | 0x80
@@ -84,7 +88,7 @@ export class MalformedBytes extends Error {
 
 export class ByteReader {
   private readonly bytes: Uint8Array
-  private readonly end: number
+  private end: number
   at: number
 
   constructor(bytes: Uint8Array, start = 0, end = bytes.length) {
@@ -106,6 +110,10 @@ export class ByteReader {
   /** @throws MalformedBytes past the end or above 2⁵³ − 1 */
   varint(): number {
     const start = this.at
+    if (start < this.end && this.bytes[start]! < 0x80) {
+      this.at = start + 1
+      return this.bytes[start]!
+    }
     let value = 0
     let scale = 1
     for (let read = 0; read < MAX_VARINT_BYTES; read++) {
@@ -131,6 +139,20 @@ export class ByteReader {
     const inner = new ByteReader(this.bytes, this.at, this.at + length)
     this.at += length
     return inner
+  }
+
+  /** Ends this reader after the next `length` bytes. @returns what `leave` takes @throws MalformedBytes past the end */
+  enter(length: number): number {
+    if (length > this.left) throw new MalformedBytes('a block is longer than what is left', this.at)
+    const outer = this.end
+    this.end = this.at + length
+    return outer
+  }
+
+  /** Skips what is left of the block that was entered. */
+  leave(outer: number): void {
+    this.at = this.end
+    this.end = outer
   }
 
   /** The next `length` bytes as base64url. @throws MalformedBytes past the end */

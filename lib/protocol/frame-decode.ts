@@ -65,11 +65,15 @@ function read(reader: ByteReader, init: DecodeInit): DecodeResult {
   if (colonyCount > MAX_COLONIES) return outOfRange('colonies', colonyCount)
   const colonies: ColonyFrame[] = []
   for (let index = 0; index < colonyCount; index++) {
-    const colony = readColony(reader.block(reader.byte()), newestSeeding)
+    // In place: this is done for every colony of every frame.
+    const outer = reader.enter(reader.byte())
+    const colony = readColony(reader, newestSeeding)
+    reader.leave(outer)
     if (colony.seeding < 0) return outOfRange('seeding', colony.seeding)
     if (Math.abs(colony.meanOccupancy) > MAX_MEAN_OCCUPANCY)
       return outOfRange('meanOccupancy', colony.meanOccupancy)
-    if (colonies.some((other) => other.colony === colony.colony)) return outOfRange('colony', colony.colony)
+    for (const other of colonies)
+      if (other.colony === colony.colony) return outOfRange('colony', colony.colony)
     colonies.push(colony)
   }
   const parts = readParts(reader, version, ordersSequence, init.heldOrdersSequence ?? -1)

@@ -40,11 +40,20 @@ export function pemOf(privateKey: KeyObject): string {
   return privateKey.export({ format: 'pem', type: 'pkcs8' }).toString()
 }
 
+/** An agent is shown one or two keys of its overlay over and over; the engine's object for each is made once. */
+const MOST_KEPT = 64
+const kept = new Map<string, KeyObject>()
+
 /** Key object of a raw public key, or null where the text is none. */
 export function publicKeyFromRaw(raw: string): KeyObject | null {
+  const present = kept.get(raw)
+  if (present) return present
   if (!RAW_KEY.test(raw)) return null
   try {
-    return createPublicKey({ key: { kty: 'OKP', crv: 'Ed25519', x: raw }, format: 'jwk' })
+    const key = createPublicKey({ key: { kty: 'OKP', crv: 'Ed25519', x: raw }, format: 'jwk' })
+    if (kept.size >= MOST_KEPT) kept.clear()
+    kept.set(raw, key)
+    return key
   } catch {
     return null
   }

@@ -1,5 +1,5 @@
 import { parseArgs } from 'node:util'
-import { bareCpuShare } from './agent/bare'
+import { type Bare, bareFloor } from './agent/bare'
 import { type Measured, measure } from './agent/measure'
 import { BenchOverlay, type BenchOverlayInit } from './agent/overlay'
 import { tickCosts } from './agent/walkers'
@@ -10,6 +10,8 @@ const LIMITS = { cpuShare: 0.01, rssMib: 90, bytesPerLinkSecond: 2_000, reportBy
 const COLONIES = 5 + 4
 const NEIGHBOURS = 8
 const HUB_NEIGHBOURS = 1_000
+/** Of them, agents whole, as a control. */
+const HUB_WHOLE_NEIGHBOURS = 8
 const HUB_WARM_UP_MS = 30_000
 const WALKERS = [100, 10_000, 1_000_000]
 
@@ -40,6 +42,7 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
     const steady: BenchOverlayInit = {
       ...shared,
       neighbours: NEIGHBOURS,
+      lightNeighbours: 0,
       linkedAmongThemselves: true,
       disclosure: 'named',
       countsBytes: true,
@@ -47,7 +50,7 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
     // Side by side, so that whatever else the machine does slows both alike.
     const [measured, bare] = await Promise.all([
       run(steady, warmUpMs, ms),
-      bareCpuShare(NEIGHBOURS, warmUpMs, ms),
+      bareFloor(NEIGHBOURS, warmUpMs, ms),
     ])
     printSteady(measured, bare, print)
   }
@@ -55,7 +58,8 @@ export async function benchAgent(args: readonly string[], print: Print): Promise
   if (parts.includes('hub')) {
     const hub: BenchOverlayInit = {
       ...shared,
-      neighbours: HUB_NEIGHBOURS,
+      neighbours: HUB_WHOLE_NEIGHBOURS,
+      lightNeighbours: HUB_NEIGHBOURS - HUB_WHOLE_NEIGHBOURS,
       linkedAmongThemselves: false,
       disclosure: 'sealed',
       countsBytes: false,
@@ -74,17 +78,21 @@ async function run(init: BenchOverlayInit, warmUpMs: number, ms: number): Promis
   }
 }
 
-function printSteady(measured: Measured, bare: number, print: Print): void {
+function printSteady(measured: Measured, bare: Bare, print: Print): void {
   const { cpuShare, rssMib, peakRssMib, bytesPerLinkSecond, reportBytesMost, reportBytesMean } = measured
   print('')
   print(headline(measured))
   const row = (what: string, value: string, limit: string, holds: boolean) =>
     print(`  ${what.padEnd(34)} ${value.padStart(22)}   ${limit.padEnd(16)} ${holds ? 'held' : 'MISSED'}`)
   row('CPU, share of a core', percent(cpuShare), 'under 1 %', cpuShare < LIMITS.cpuShare)
+  const ratio = (cpuShare / bare.cpuShare).toFixed(1)
   print(
-    `    the same messages over bare WebSockets, side by side: ${percent(bare)} (the agent ×${(cpuShare / bare).toFixed(1)})`,
+    `    the floor, the same messages over bare WebSockets, side by side: ${percent(bare.cpuShare)} (the agent ×${ratio})`,
   )
+  const wakes = [measured.wakesPerSecond, bare.wakesPerSecond].map((perSecond) => perSecond.toFixed(0))
+  print(`    woken per second: ${wakes[0]} times, the floor ${wakes[1]} times`)
   print(`    the agent while it warms up: ${percent(measured.warmUpCpuShare)}`)
+  print(`    it waited for a processor that others had: ${percent(measured.waitedShare)} of the time`)
   row(
     'resident memory (peak)',
     `${rssMib.toFixed(1)} MiB (${peakRssMib.toFixed(1)})`,
@@ -120,17 +128,26 @@ function printWalkers(print: Print): void {
 }
 
 function printHub(measured: Measured, print: Print): void {
+  const { cpuShare, ticksPerSecond, links, linksLeast, linksMean } = measured
+  const cpuMsPerTick = ticksPerSecond === null ? Number.NaN : (1000 * cpuShare) / ticksPerSecond
   print('')
+  print(`A hub with ${HUB_NEIGHBOURS} neighbours, ${HUB_WHOLE_NEIGHBOURS} of them agents whole:`)
   print(headline(measured))
-  const late = share(measured.lateShare)
-  const rate = measured.ticksPerSecond?.toFixed(2) ?? 'not told'
-  print(`  CPU ${percent(measured.cpuShare)} of a core`)
+  print(`  live at once: ${linksLeast} at least, ${Math.round(linksMean)} on average, ${links} at most`)
+  print(`  mean weight of a link ${measured.meanWeight?.toFixed(3) ?? 'not told'}`)
+  print(
+    `  CPU ${percent(cpuShare)} of a core, ${cpuMsPerTick.toFixed(1)} ms a tick with all that came since the last`,
+  )
+  print(`  it waited for a processor that others had: ${percent(measured.waitedShare)} of the time`)
   print(`  resident memory ${measured.rssMib.toFixed(1)} MiB (peak ${measured.peakRssMib.toFixed(1)})`)
-  print(`  ${rate} ticks per second, more than a tick late: ${late}`)
+  print(`  per link, both ways, on the socket: ${Math.round(measured.bytesPerLinkSecond ?? Number.NaN)} B/s`)
+  print(`  ${rate(ticksPerSecond)} ticks per second, more than a tick late: ${share(measured.lateShare)}`)
+  print(`  its light neighbours: ${rate(measured.lightTicksPerSecond)} ticks per second`)
   print(`  report ${Math.round(measured.reportBytesMean)} B, as JSON ${measured.reportJsonBytesMost} B`)
 }
 
 const headline = ({ links, colonies, seconds }: Measured): string =>
   `${links} neighbours, ${colonies} colonies, ${seconds.toFixed(0)} s:`
 const percent = (value: number): string => `${(100 * value).toFixed(2)} %`
+const rate = (value: number | null): string => value?.toFixed(2) ?? 'not told'
 const share = (value: number | null): string => (value === null ? 'not told' : percent(value))

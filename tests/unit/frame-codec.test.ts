@@ -83,6 +83,10 @@ describe('what a peer may not say', () => {
       withBytes((b) => b.splice(11, 1, 1)),
       { code: 'malformed', reason: 'the bytes end too soon', at: 12 },
     ],
+    'a colony longer than its block, whatever follows': [
+      withBytes((b) => b.splice(11, 1, 1, 6, 0, 0, 0, 0, 0, 0, 9, 0)),
+      { code: 'malformed', reason: 'the bytes end too soon', at: 19 },
+    ],
     'the same colony twice': [
       withBytes((b) => b.splice(11, 1, 2, 7, 0, 0, 0, 0, 0, 0, 0, 7, 0, 0, 0, 0, 0, 0, 0)),
       { code: 'out-of-range', field: 'colony', value: 0 },

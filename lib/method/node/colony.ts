@@ -65,6 +65,8 @@ export function openColony(orders: ColonyOrders, nowMs: number): Colony {
 /** Where departing walkers may go: weights ≥ 0 and, filled by `walk`, the counts that left over each. */
 export interface Exits {
   weights: Float64Array
+  /** Of the weights up to and with each: the last is `totalWeight`. */
+  sums: Float64Array
   totalWeight: number
   x: Float64Array
   y: Float64Array
@@ -158,12 +160,16 @@ function depart(
   h: number,
   random: Random,
 ): number {
-  const { weights, totalWeight } = exits
+  const { weights, sums, totalWeight } = exits
   const leaving = binomial(random, count, Math.min(1, totalWeight * h))
   if (leaving === 0) return 0
   colony.sent += leaving
   if (leaving <= weights.length) {
-    for (let walker = 0; walker < leaving; walker++) out[pick(weights, totalWeight, random)]! += 1
+    for (let walker = 0; walker < leaving; walker++) {
+      const mark = random.uniform() * totalWeight
+      // Rounding may put a mark on the very end.
+      out[mark < totalWeight ? firstAbove(sums, mark) : lastLive(weights)]! += 1
+    }
     return leaving
   }
   let left = leaving
@@ -182,13 +188,16 @@ function depart(
   return leaving
 }
 
-function pick(weights: Float64Array, totalWeight: number, random: Random): number {
-  let mark = random.uniform() * totalWeight
-  for (let exit = 0; exit < weights.length; exit++) {
-    mark -= weights[exit]!
-    if (mark < 0) return exit
+/** By halving: a hub draws hundreds of walkers over hundreds of exits in a tick. */
+function firstAbove(sums: Float64Array, mark: number): number {
+  let low = 0
+  let high = sums.length - 1
+  while (low < high) {
+    const middle = (low + high) >>> 1
+    if (sums[middle]! > mark) high = middle
+    else low = middle + 1
   }
-  return lastLive(weights)
+  return low
 }
 
 function lastLive(weights: Float64Array): number {

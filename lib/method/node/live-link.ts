@@ -7,13 +7,16 @@ import { fiedlerValue, type MeasuredLink } from './sums'
 /** Where one colony's walkers may go: live links whose other end does not refuse them. */
 export function exitsFor(live: readonly { link: Link; weight: number }[], colony: Colony): Exits {
   const weights = new Float64Array(live.length)
+  const sums = new Float64Array(live.length)
   let totalWeight = 0
   live.forEach(({ link, weight }, index) => {
-    if (link.ledgers.get(colony.orders.colony)?.peerRefuses) return
-    weights[index] = weight
-    totalWeight += weight
+    if (!link.ledgers.get(colony.orders.colony)?.peerRefuses) {
+      weights[index] = weight
+      totalWeight += weight
+    }
+    sums[index] = totalWeight
   })
-  return { weights, totalWeight, x: new Float64Array(live.length), y: new Float64Array(live.length) }
+  return { weights, sums, totalWeight, x: new Float64Array(live.length), y: new Float64Array(live.length) }
 }
 
 /** A live link as the sums see it. */

@@ -2,7 +2,7 @@ import type { ColonyFrame, Frame } from '../frame'
 import { arrive, type Colony } from './colony'
 import { noteHeard } from './delivery'
 import { notePeerOrders } from './gossip'
-import { isFlood, type Ledger, type LedgerFault, ledgerFault, settle } from './ledger'
+import { isFlood, type LedgerFault, ledgerFault, settle } from './ledger'
 import { type Link, ledgerFor } from './link'
 
 /** Walkers of one colony that came in with one frame. */
@@ -23,19 +23,16 @@ export function takeIn(
   frame: Frame,
 ): { arrivals: Arrival[] } | { fault: LedgerFault } {
   const newest = frame.number > link.heardNumber
-  const parts: { part: ColonyFrame; colony: Colony; ledger: Ledger }[] = []
   for (const part of frame.colonies) {
-    const colony = colonies.get(part.colony)
-    if (!colony || colony.orders.seeding !== part.seeding) continue
-    const ledger = ledgerFor(link, part.colony, part.seeding)
-    if (isFlood(ledger, part)) return { fault: 'too-many-arriving' }
-    const fault = newest ? ledgerFault(ledger, part) : null
+    const fault = isMeant(colonies, part) ? faultOf(link, part, newest) : null
     if (fault) return { fault }
-    parts.push({ part, colony, ledger })
   }
   // Only now, so that a frame with a fault in any part changes nothing.
   const arrivals: Arrival[] = []
-  for (const { part, colony, ledger } of parts) {
+  for (const part of frame.colonies) {
+    const colony = colonies.get(part.colony)
+    if (!colony || !isMeant(colonies, part)) continue
+    const ledger = ledgerFor(link, part.colony, part.seeding)
     const { x, y } = settle(ledger, part)
     arrive(colony, x, y)
     if (newest) {
@@ -46,6 +43,15 @@ export function takeIn(
     arrivals.push({ colony: part.colony, seeding, x, y, mean: meanOccupancy, refused })
   }
   return { arrivals }
+}
+
+const isMeant = (colonies: ReadonlyMap<number, Colony>, part: ColonyFrame): boolean =>
+  colonies.get(part.colony)?.orders.seeding === part.seeding
+
+function faultOf(link: Link, part: ColonyFrame, newest: boolean): LedgerFault | null {
+  const ledger = ledgerFor(link, part.colony, part.seeding)
+  if (isFlood(ledger, part)) return 'too-many-arriving'
+  return newest ? ledgerFault(ledger, part) : null
 }
 
 /** What else a frame tells of a link, where it is the newest so far. */

@@ -26,6 +26,7 @@ import {
   signReceipt,
   statementOf,
 } from '@/lib/protocol'
+import { BATCH_PATH, type BatchReply, reportBatchSchema } from './report-batch'
 
 const PASS_SECONDS = 3_600
 
@@ -97,7 +98,9 @@ export class BenchCollector {
     return joined
   }
 
-  private async answer(request: IncomingMessage): Promise<EnrolReply | SessionReply | ReportReply> {
+  private async answer(
+    request: IncomingMessage,
+  ): Promise<EnrolReply | SessionReply | ReportReply | BatchReply> {
     const chunks: Buffer[] = []
     for await (const chunk of request) chunks.push(chunk)
     const body = Buffer.concat(chunks)
@@ -113,6 +116,8 @@ export class BenchCollector {
           plain: plain.length,
           wire: body.length,
         })
+      case BATCH_PATH:
+        return this.batch(content)
       default:
         throw new Error(`There is nothing at ${request.url}.`)
     }
@@ -171,6 +176,20 @@ export class BenchCollector {
     const statement = statementOf(agentId, report)
     const receipt = wantsReceipt ? signReceipt(this.overlayId, statement, this.keys) : undefined
     return { orders: null, signedOrders: proof, ordersAgeMs, receipt }
+  }
+
+  /** Reports of many agents, without sessions. */
+  private batch(content: unknown): BatchReply {
+    const receipts: BatchReply['receipts'] = []
+    for (const { agentId, report: request } of reportBatchSchema.parse(content)) {
+      const { protocol: _, wantsReceipt, relayed: __, ...report } = request
+      this.of(agentId).last = { report, receivedAtMs: performance.now() }
+      if (!wantsReceipt) continue
+      const receipt = signReceipt(this.overlayId, statementOf(agentId, report), this.keys)
+      receipts.push({ agentId, receipt })
+    }
+    const ordersAgeMs = performance.now() - (this.orders?.issuedAtMs ?? performance.now())
+    return { signedOrders: this.orders?.proof ?? null, ordersAgeMs, receipts }
   }
 
   /** In haste as the orders say, else at the pace. */

@@ -18,7 +18,7 @@ const transport = createWsTransport({ clock })
 const members: Member[] = []
 const addresses: string[] = []
 for (let index = 0; index < wanted.count; index++) {
-  const name = `nb-${index}`
+  const name = `${wanted.prefix}-${index}`
   const member = new Member(
     { transport, collector, clock, random: forkRandom(random, name), randomBytes, logger: silentLogger },
     {

@@ -11,14 +11,19 @@ import { AGENT_FILE, ensureAgentFile } from '../../lib/agent-file.mjs'
 import { tryPort } from '../../lib/ports.mjs'
 import { BenchCollector } from './collector'
 import { CountingProxy } from './counting-proxy'
-import type { Wanted } from './wanted'
+import { type LightFigures, lightFiguresSchema, type Wanted } from './wanted'
 
 const ROOT = resolve(import.meta.dirname, '../../..')
 const CODE = 'code-for-benches'
 export const MEASURED = 'tar-01'
+/** So that a process with a thousand agents is not busy collecting their frames. */
+const YOUNG_SPACE = '--min-semi-space-size=16'
+const LINKED_WITHIN_MS = 60_000
 
 export interface BenchOverlayInit {
   neighbours: number
+  /** Besides; in a process of their own (light-neighbours.ts). */
+  lightNeighbours: number
   linkedAmongThemselves: boolean
   colonies: number
   disclosure: Disclosure
@@ -35,6 +40,8 @@ export class BenchOverlay {
   readonly proxy: CountingProxy
   /** Of the measured agent. */
   pid = 0
+  /** Null where there are none. */
+  lightFigures: LightFigures | null = null
   private readonly init: BenchOverlayInit
   private readonly children: ChildProcess[] = []
   private readonly complaints: string[] = []
@@ -59,7 +66,7 @@ export class BenchOverlay {
     this.proxy = new CountingProxy({ targetPort: () => this.port })
   }
 
-  /** Resolves once the measured agent reports all its links. */
+  /** Resolves once the measured agent reports all its links live, or has not for a minute. */
   async start(): Promise<void> {
     const agent = [this.init.agentFile ?? (await presentAgent())]
     this.folder = await mkdtemp(join(tmpdir(), 'thinspan-bench-'))
@@ -80,14 +87,17 @@ export class BenchOverlay {
     const measured = this.spawn([...this.init.nodeFlags, ...agent, 'run', ...config])
     this.pid = measured.pid ?? 0
     const reached = this.init.countsBytes ? await this.proxy.start() : port
-    await this.startNeighbours({
-      collector,
-      code: CODE,
-      count: this.init.neighbours,
-      measured: `ws://127.0.0.1:${reached}`,
-      linkedAmongThemselves: this.init.linkedAmongThemselves,
-    })
-    while (this.links < this.init.neighbours) {
+    const { neighbours, lightNeighbours, linkedAmongThemselves } = this.init
+    const wanted = { collector, code: CODE, measured: `ws://127.0.0.1:${reached}`, linkedAmongThemselves }
+    await this.startNeighbours('neighbours.ts', { ...wanted, count: neighbours, prefix: 'nb' })
+    if (lightNeighbours > 0)
+      await this.startNeighbours('light-neighbours.ts', {
+        ...wanted,
+        count: lightNeighbours,
+        prefix: 'light',
+      })
+    const allLinkedByMs = performance.now() + LINKED_WITHIN_MS
+    while (this.links < neighbours + lightNeighbours && performance.now() < allLinkedByMs) {
       if (measured.exitCode !== null) throw new Error(`The agent ended.\n${this.complaints.join('\n')}`)
       await new Promise((resolve) => setTimeout(resolve, 200))
     }
@@ -113,11 +123,15 @@ export class BenchOverlay {
     await rm(this.folder, { recursive: true, force: true })
   }
 
-  private startNeighbours(wanted: Wanted): Promise<void> {
-    const script = join(import.meta.dirname, 'neighbours.ts')
-    const child = this.spawn(['--import', 'tsx', script, JSON.stringify(wanted)])
+  private startNeighbours(program: string, wanted: Wanted): Promise<void> {
+    const script = join(import.meta.dirname, program)
+    const child = this.spawn([YOUNG_SPACE, '--import', 'tsx', script, JSON.stringify(wanted)])
     return new Promise((resolve, reject) => {
-      if (child.stdout) createInterface({ input: child.stdout }).once('line', () => resolve())
+      if (child.stdout)
+        createInterface({ input: child.stdout }).on('line', (line) => {
+          if (line === 'ready') resolve()
+          else this.lightFigures = lightFiguresSchema.parse(JSON.parse(line))
+        })
       child.once('exit', () => reject(new Error(`The neighbours ended.\n${this.complaints.join('\n')}`)))
     })
   }

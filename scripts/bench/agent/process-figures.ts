@@ -4,6 +4,10 @@ import { readdirSync, readFileSync } from 'node:fs'
 export interface ProcessFigures {
   /** Time spent on a processor by all its threads. */
   cpuSeconds: number
+  /** Time the main thread was ready to run and none was free. */
+  waitedSeconds: number
+  /** How often the main thread has gone to sleep of its own will, and so was woken. */
+  wakes: number
   rssMib: number
   /** The most that was ever resident. */
   peakRssMib: number
@@ -13,17 +17,33 @@ export function figuresOf(pid: number): ProcessFigures {
   const status = readFileSync(`/proc/${pid}/status`, 'utf8')
   return {
     cpuSeconds: cpuSecondsOf(pid),
+    waitedSeconds: schedstatOf(pid, pid)[1] / 1e9,
+    wakes: wakesOf(pid),
     rssMib: kibOf(status, 'VmRSS') / 1024,
     peakRssMib: kibOf(status, 'VmHWM') / 1024,
   }
 }
 
-/** Nanoseconds on a processor, by thread: exact, where utime and stime are sampled a hundred times a second. */
 function cpuSecondsOf(pid: number): number {
   let nanoseconds = 0
-  for (const thread of readdirSync(`/proc/${pid}/task`))
-    nanoseconds += Number(readFileSync(`/proc/${pid}/task/${thread}/schedstat`, 'utf8').split(' ')[0])
+  for (const thread of readdirSync(`/proc/${pid}/task`)) nanoseconds += schedstatOf(pid, thread)[0]
   return nanoseconds / 1e9
+}
+
+/**
+ * Nanoseconds on a processor and waiting for one, by thread: exact, where utime and stime are sampled a hundred times a second
+ * (the kernel's scheduler/sched-stats.rst).
+ */
+function schedstatOf(pid: number, thread: number | string): [number, number] {
+  const [ran, waited] = readFileSync(`/proc/${pid}/task/${thread}/schedstat`, 'utf8').split(' ')
+  return [Number(ran), Number(waited)]
+}
+
+function wakesOf(pid: number): number {
+  const status = readFileSync(`/proc/${pid}/task/${pid}/status`, 'utf8')
+  const wakes = Number(/^voluntary_ctxt_switches:\s+(\d+)$/m.exec(status)?.[1])
+  if (!Number.isFinite(wakes)) throw new Error('/proc says nothing of context switches.')
+  return wakes
 }
 
 function kibOf(status: string, key: string): number {
