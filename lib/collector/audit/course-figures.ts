@@ -17,9 +17,15 @@ export interface Ordered {
 export const ORDERED_KEPT = 48
 
 export function orderedNow(atMs: number, control: ControlState): Ordered {
+  // While the whole stands still, those still heard walk at a rate of their own.
+  const walking = [control, ...(control.parts ?? []).flatMap((part) => part.control ?? [])]
   return {
     atMs,
-    linkTimePerSecond: Math.max(control.linkTimePerSecond, control.next?.linkTimePerSecond ?? 0),
+    linkTimePerSecond: Math.max(
+      ...walking.map(({ linkTimePerSecond, next }) =>
+        Math.max(linkTimePerSecond, next?.linkTimePerSecond ?? 0),
+      ),
+    ),
     intervalMs: control.intervalMs ?? null,
     colonies: control.colonies.map(({ colony, seeding, birthRateX, birthRateY }) => ({
       colony,

@@ -1,5 +1,6 @@
 import type { ColonyOrders, Orders } from '../orders'
 import { CORE_COLONIES, type CoreEstimate, coreOf, NO_CORE } from './core'
+import { areAgentsEnough } from './coverage'
 import type { EvaluateInput, Evaluation } from './estimate'
 import { evaluate } from './evaluate'
 import { paceNow } from './haste'
@@ -33,7 +34,7 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
       : null
   const headline = ofCore?.evaluation.control.combination ? ofCore.evaluation : whole
   const before = input.control.parts ?? []
-  const isUnheard = whole.estimate.withheld === 'unheard'
+  const isUnheard = whole.estimate.withheld === 'unheard' && !areAgentsEnough(whole.estimate.coverage)
   const alone = isUnheard ? aloneNow(input.control.alone, input) : null
   const parts = alone
     ? partsAlone(before, alone, input)
