@@ -8,7 +8,7 @@ export const MOST_REPORT_BACKOFF_INTERVALS = 4
 export const REFUSED_RETRY_MS = 60_000
 /** While the collector is away an attempt may take an interval, but this long at least. */
 export const LEAST_ATTEMPT_MS = 2_000
-/** Of the attempts while it is away every so-many-eth may take as long as any: one that is merely slow is not away. */
+/** While it is away one attempt in this many may take as long as any: a collector that is merely slow is not away. */
 export const LONG_ATTEMPT_EVERY = 5
 /** An answer is late after an interval, but not before this. */
 export const LEAST_WAIT_MS = 500

@@ -1,5 +1,5 @@
 import { SUMS_SCALE } from '../report'
-import { heardAgents, lateMs, type Snapshot } from './snapshot'
+import { heardAgents, promptAgents, type Snapshot } from './snapshot'
 
 /** Below this share of joined agents, or of walkers, heard, no reading is given and walking stops. */
 export const LEAST_HEARD = 0.85
@@ -7,7 +7,7 @@ export const LEAST_HEARD = 0.85
 export interface Coverage {
   joined: number
   heard: number
-  /** Heard within the last few intervals: what a reading needs. */
+  /** See `promptAgents`. */
   prompt: number
   attached: number
   /** Mean weighted degree of attached agents; 0 where there are none. */
@@ -21,7 +21,7 @@ export interface Coverage {
 /** @param seedings the present ones: walkers of older seedings are of no account */
 export function coverageOf(snapshot: Snapshot, intervalMs: number, seedings: ReadonlySet<number>): Coverage {
   const heard = heardAgents(snapshot, intervalMs)
-  const prompt = heard.filter(({ last }) => snapshot.atMs - last.receivedAtMs <= lateMs(intervalMs))
+  const prompt = promptAgents(snapshot, intervalMs)
   const heldBy = ({ last }: Snapshot['agents'][number]): number =>
     (last?.report.sums.colonies ?? [])
       .filter(({ seeding }) => seedings.has(seeding))

@@ -1,5 +1,5 @@
 import { SUMS_SCALE } from '../report'
-import type { HeardAgent } from './snapshot'
+import { type HeardAgent, isAttached } from './snapshot'
 import type { CutCount } from './state'
 
 /** Where agents count cuts, in units of the Fiedler vector's root mean square. Many small sides lie far out. */
@@ -14,7 +14,7 @@ export function bestCut(
   thresholds: readonly number[],
   heard: readonly HeardAgent[],
 ): CutCount | null | undefined {
-  const attached = heard.filter(({ last }) => last.report.sums.attached === 1)
+  const attached = heard.filter(isAttached)
   const counts = attached.flatMap(({ last }) => {
     const sums = last.report.sums.sweep
     return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []

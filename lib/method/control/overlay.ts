@@ -6,7 +6,7 @@ import { evaluate } from './evaluate'
 import { paceNow } from './haste'
 import { HEARD_BY_INTERVALS } from './link-time'
 import { nextOrders } from './orders-from'
-import { aloneNow, PART_COLONIES, type PartEstimate, partsAlone, partsOf } from './parts'
+import { aloneNow, PART_COLONIES, type PartEstimate, partsNow } from './parts'
 import type { Snapshot } from './snapshot'
 import { type ControlState, initialControl } from './state'
 
@@ -33,18 +33,14 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
       ? evaluateWithin(apart, core.control, input, { firstSlot, colonies: CORE_COLONIES })
       : null
   const headline = ofCore?.evaluation.control.combination ? ofCore.evaluation : whole
-  const before = input.control.parts ?? []
   const isUnheard = whole.estimate.withheld === 'unheard' && !areAgentsEnough(whole.estimate.coverage)
   const alone = isUnheard ? aloneNow(input.control.alone, input) : null
-  const parts = alone
-    ? partsAlone(before, alone, input)
-    : headline.estimate.withheld
-      ? [...before]
-      : partsOf(before, headline.control, apart, input)
-  const ofParts = parts.map(({ agents, control }, index) => {
+  const source = headline.estimate.withheld ? null : headline.control
+  const parts = partsNow(input.control, alone, { source, apart }, input)
+  const ofParts = parts.map(({ agents, place, control }) => {
     const others = now.agents.map(({ agentId }) => agentId).filter((agentId) => !agents.includes(agentId))
     return evaluateWithin(others, control, input, {
-      firstSlot: firstSlot + CORE_COLONIES + index * PART_COLONIES,
+      firstSlot: firstSlot + CORE_COLONIES + place * PART_COLONIES,
       colonies: PART_COLONIES,
     })
   })
@@ -63,8 +59,8 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
       ...whole.control,
       ...kept,
       core: { ...core, control: ofCore && { ...ofCore.evaluation.control, ...kept } },
-      parts: parts.map(({ agents }, index) => ({
-        agents,
+      parts: parts.map((part, index) => ({
+        ...part,
         control: { ...ofParts[index]!.evaluation.control, ...walking },
       })),
       alone,

@@ -36,6 +36,15 @@ export function isHeard(agent: JoinedAgent, atMs: number, intervalMs: number): a
   return agent.last !== null && atMs - agent.last.receivedAtMs <= heldMs(intervalMs)
 }
 
+/** Heard within the last few intervals: what a reading needs. */
+export function promptAgents(snapshot: Snapshot, intervalMs: number): HeardAgent[] {
+  return heardAgents(snapshot, intervalMs).filter(
+    ({ last }) => snapshot.atMs - last.receivedAtMs <= lateMs(intervalMs),
+  )
+}
+
+export const isAttached = ({ last }: HeardAgent): boolean => last.report.sums.attached === 1
+
 export function heardAgents(snapshot: Snapshot, intervalMs: number): HeardAgent[] {
   return snapshot.agents.filter((agent) => isHeard(agent, snapshot.atMs, intervalMs))
 }

@@ -4,7 +4,7 @@ import { paceNow } from './haste'
 import { firstLinkTimePerSecond } from './law'
 import { type Seeder, seedColony, steerColony } from './populations'
 import { RENEWAL_INTERVALS } from './renewal'
-import { heardAgents } from './snapshot'
+import { heardAgents, isAttached } from './snapshot'
 import type { ControlState } from './state'
 import { AS_GOOD_AS_AT_INTERVALS } from './young'
 
@@ -16,7 +16,7 @@ export function steer(control: ControlState, input: EvaluateInput): ControlState
   const { before, now, settings, sequence, random } = input
   const { intervalMs } = settings.pace
   const agentIds = heardAgents(now, intervalMs)
-    .filter(({ last }) => last.report.sums.attached === 1)
+    .filter(isAttached)
     .map(({ agentId }) => agentId)
   const present = paceNow(control, settings)
   const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, present, random }

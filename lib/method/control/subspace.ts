@@ -3,7 +3,7 @@ import type { SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
 import { type ColonyDrift, driftOver, presentSums } from './alignment'
 import { type RitzResult, ritz } from './ritz'
-import type { HeardAgent } from './snapshot'
+import { type HeardAgent, isAttached } from './snapshot'
 import type { ColonyControl } from './state'
 
 /** A colony enters the sums once this share of the attached agents heard report its seeding. */
@@ -28,7 +28,7 @@ export function gather(
   drifts: readonly ColonyDrift[],
   atMs: number,
 ): Subspace | null {
-  const attached = heard.filter(({ last }) => last.report.sums.attached === 1)
+  const attached = heard.filter(isAttached)
   const reports = ({ last }: HeardAgent, { colony, seeding }: ColonyControl): boolean =>
     presentSums(last.report, colony, seeding) !== undefined
   const usable = colonies.filter((colony) => {

@@ -11,10 +11,14 @@ const BATCH_MS = 5
 const BATCH_MOST = 500
 const CONNECTIONS = 10
 
+/** As sent; the floor checks nothing. */
+type Sent = Readonly<
+  Record<'incarnation' | 'number' | 'ordersSequence' | 'sums' | 'node' | 'complaints', unknown>
+>
+
 interface Waiting {
   agentId: string
-  // biome-ignore lint/suspicious/noExplicitAny: the floor checks nothing.
-  report: any
+  report: Sent
   response: ServerResponse
 }
 

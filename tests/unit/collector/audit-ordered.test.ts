@@ -20,8 +20,8 @@ it.each([
     control({
       linkTimePerSecond: 0.2,
       parts: [
-        { agents: ['tar-01', 'tar-02'], control: control({ linkTimePerSecond: 1.6 }) },
-        { agents: ['eel-01', 'eel-02'], control: null },
+        { agents: ['tar-01', 'tar-02'], place: 0, control: control({ linkTimePerSecond: 1.6 }) },
+        { agents: ['eel-01', 'eel-02'], place: 1, control: null },
       ],
     }),
     1.6,

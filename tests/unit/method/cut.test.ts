@@ -17,43 +17,45 @@ const heard = (counts: { above: number[]; crossing: number[] }[]) =>
 const thresholds = [-1, 0, 1]
 
 describe('the best of the counted cuts', () => {
-  it('has the least weight for each node of its smaller side', () => {
-    const counts = [
-      { above: [0, 0, 0], crossing: [1, 0, 0] },
-      { above: [1, 0, 0], crossing: [1, 1, 0] },
-      { above: [1, 1, 0], crossing: [0, 1, 1] },
-      { above: [1, 1, 1], crossing: [0, 0, 1] },
-    ]
-    expect(bestCut(7, thresholds, heard(counts))).toEqual({
-      threshold: 0,
-      sweep: 7,
-      above: 2,
-      below: 2,
-      links: 1,
-      weight: 1,
-      clean: [],
-    })
-  })
-
-  it('is the evenest of several that nothing crosses, and all of those are told', () => {
-    const counts = [
-      { above: [0, 0, 0], crossing: [0, 0, 0] },
-      { above: [1, 0, 0], crossing: [0, 0, 1] },
-      { above: [1, 1, 0], crossing: [0, 0, 1] },
-      { above: [1, 1, 1], crossing: [0, 0, 1] },
-    ]
-    expect(bestCut(7, thresholds, heard(counts))).toEqual({
-      threshold: 0,
-      sweep: 7,
-      above: 2,
-      below: 2,
-      links: 0,
-      weight: 0,
-      clean: [
-        { threshold: -1, above: 3 },
-        { threshold: 0, above: 2 },
+  const above = [
+    [0, 0, 0],
+    [1, 0, 0],
+    [1, 1, 0],
+    [1, 1, 1],
+  ]
+  const evenest = { threshold: 0, sweep: 7, above: 2, below: 2 }
+  it.each([
+    [
+      'has the least weight for each node of its smaller side',
+      [
+        [1, 0, 0],
+        [1, 1, 0],
+        [0, 1, 1],
+        [0, 0, 1],
       ],
-    })
+      { ...evenest, links: 1, weight: 1, clean: [] },
+    ],
+    [
+      'is the evenest of several that nothing crosses, and all of those are told',
+      [
+        [0, 0, 0],
+        [0, 0, 1],
+        [0, 0, 1],
+        [0, 0, 1],
+      ],
+      {
+        ...evenest,
+        links: 0,
+        weight: 0,
+        clean: [
+          { threshold: -1, above: 3 },
+          { threshold: 0, above: 2 },
+        ],
+      },
+    ],
+  ])('%s', (_, crossing, expected) => {
+    const counts = above.map((each, index) => ({ above: each, crossing: crossing[index]! }))
+    expect(bestCut(7, thresholds, heard(counts))).toEqual(expected)
   })
 
   it('is not known while not all have counted for this combination', () => {

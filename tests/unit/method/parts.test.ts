@@ -1,6 +1,6 @@
 /** An overlay that has come apart: each piece by itself. Exact values by dense eigendecomposition. */
 import { describe, expect, it, vi } from 'vitest'
-import { MOST_PARTS, type PartControl, partsOf } from '@/lib/method/control/parts'
+import { MOST_PARTS, type PartControl, partsNow, partsOf } from '@/lib/method/control/parts'
 import type { CutCount } from '@/lib/method/control/state'
 import { fromEdges, type SparseGraph } from '@/lib/method/graph'
 import { clustersInRow, twoClusters } from '@/lib/method/graphs'
@@ -131,7 +131,7 @@ describe('the pieces', () => {
       ({ agents }) => agents.join(' '),
     )
   const known = (...lists: string[]): PartControl[] =>
-    lists.map((list) => ({ agents: list.split(' '), control: null }))
+    lists.map((list, place) => ({ agents: list.split(' '), place, control: null }))
 
   it('lie between the thresholds that no link crosses', () => {
     expect(parts({}, values)).toEqual(['tar-0 tar-1', 'tar-2 tar-3', 'tar-4 tar-5'])
@@ -155,6 +155,24 @@ describe('the pieces', () => {
       'tar-0 tar-1 tar-2',
       'tar-3 tar-4 tar-5',
     ])
+  })
+
+  it('are none where one is left, or where those heard alone are so no more', () => {
+    expect(parts({ sweep: 6 }, values.slice(0, 4), known('tar-0 tar-1 tar-2 tar-3', 'tar-4 tar-5'))).toEqual(
+      [],
+    )
+    const before = { parts: known('tar-0 tar-1'), alone: { agents: ['tar-0', 'tar-1'], sinceMs: 0 } }
+    const round = { now: now(values), settings: STEADY }
+    expect(partsNow(before, null, { source: null, apart: [] }, round)).toEqual([])
+    expect(partsNow({ ...before, alone: null }, null, { source: null, apart: [] }, round)).toEqual(
+      before.parts,
+    )
+  })
+
+  it('keep their places when others end, so that no two share a slot', () => {
+    const three = known('tar-0 tar-1', 'tar-2 tar-3', 'tar-4 tar-5')
+    const round = { now: { ...now(values), agents: now(values).agents.slice(2) }, settings: STEADY }
+    expect(partsOf(three, { cut: { ...cut, sweep: 6 } }, [], round).map(({ place }) => place)).toEqual([1, 2])
   })
 
   it('are looked for anew once an agent comes that belongs to none', () => {
