@@ -1,5 +1,5 @@
 import { randomBytes } from 'node:crypto'
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { describe, expect, it } from 'vitest'
 import { GET as directoryRoute } from '@/app/api/agent/directory/route'
 import { POST as enrolRoute } from '@/app/api/agent/enrol/route'
 import { POST as keyRoute } from '@/app/api/agent/key/route'
@@ -29,35 +29,26 @@ import {
   type Member,
   problemOf,
   seedCode,
-  seedOverlay,
   sendReport,
   sessionBody,
 } from '@/tests/support/collector'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { someReport } from '@/tests/support/reports'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
-let count = 0
+const seeded = overlayPerTest()
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
-beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-})
-
-const em = () => team.database.orm.em.fork()
-const code = (uses = 5) => seedCode(team.database, overlay.id, { uses })
+const code = (uses = 5) => seedCode(seeded.team.database, seeded.overlay.id, { uses })
 const join = async (name = 'tar-01', over: object = {}) => joinAgent(await code(), name, {}, over)
-const agentOf = ({ agentId }: Member) => em().findOneOrFail(AgentSchema, agentId)
+const agentOf = ({ agentId }: Member) => seeded.em().findOneOrFail(AgentSchema, agentId)
 const eventsOf = async () =>
-  (await em().find(OverlayEventSchema, { overlayId: overlay.id }, { orderBy: { id: 'asc' } })).map(
-    ({ kind, text }) => `${kind}: ${text}`,
-  )
+  (
+    await seeded.em().find(OverlayEventSchema, { overlayId: seeded.overlay.id }, { orderBy: { id: 'asc' } })
+  ).map(({ kind, text }) => `${kind}: ${text}`)
 const shutNow = async () => {
-  const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'test' })
+  const store = new LeaderStore(
+    { forkEm: async () => seeded.em() },
+    { overlayId: seeded.overlay.id, holder: 'test' },
+  )
   return (await store.load())?.shut
 }
 const of = (incarnation: string, number: number) => ({ ...someReport(number), incarnation })
@@ -73,12 +64,12 @@ describe('an agent that leaves', () => {
     expect(response.status).toBe(200)
     leaveReplySchema.parse(await response.json())
     expect(await agentOf(member)).toMatchObject({ state: 'left', endedAt: expect.any(Date) })
-    expect(await em().count(AgentSessionSchema, { agent: member.agentId })).toBe(0)
+    expect(await seeded.em().count(AgentSessionSchema, { agent: member.agentId })).toBe(0)
     expect(await shutNow()).toEqual([{ agentId: member.agentId, reason: 'left' }])
     expect(await eventsOf()).toContain('agent-left: tar-01 left: the berth is closed')
-    const entry = await em().findOne(AuditEntrySchema, {
+    const entry = await seeded.em().findOne(AuditEntrySchema, {
       action: 'agent.leave',
-      subject: `${overlay.slug}: tar-01`,
+      subject: `${seeded.overlay.slug}: tar-01`,
     })
     expect(entry).toMatchObject({ outcome: 'ok', data: { reason: 'the berth is closed' } })
     expect(await problemOf(await sendReport(member, someReport(1)))).toEqual([401, 'bad-token'])
@@ -101,11 +92,11 @@ describe('an agent that leaves', () => {
     expect(response.status).toBe(201)
     const next = enrolReplySchema.parse(await response.json())
     expect(next.agentId).not.toBe(member.agentId)
-    expect(await em().find(AgentSchema, { overlay: overlay.id })).toMatchObject([
+    expect(await seeded.em().find(AgentSchema, { overlay: seeded.overlay.id })).toMatchObject([
       { id: next.agentId, name: 'tar-01', state: 'joined' },
     ])
     expect(await shutNow()).toEqual([{ agentId: member.agentId, reason: 'left' }])
-    await sql(em(), `update shut_agents set until = clock_timestamp() - interval '3 minutes'`)
+    await sql(seeded.em(), `update shut_agents set until = clock_timestamp() - interval '3 minutes'`)
     expect(await shutNow()).toEqual([])
   })
 
@@ -144,10 +135,10 @@ describe('an agent that changes its key', () => {
     const response = await call(keyRoute, body)
     expect(response.status).toBe(200)
     const { pass } = keyChangeReplySchema.parse(await response.json())
-    const { overlay: known } = await em().findOneOrFail(AgentSchema, member.agentId, {
+    const { overlay: known } = await seeded.em().findOneOrFail(AgentSchema, member.agentId, {
       populate: ['overlay'],
     })
-    expect(await verifyPass(pass, known.publicKey, overlay.id, new Date())).toMatchObject({
+    expect(await verifyPass(pass, known.publicKey, seeded.overlay.id, new Date())).toMatchObject({
       ok: true,
       claims: { agentId: member.agentId, key: next.publicKey },
     })
@@ -159,8 +150,8 @@ describe('an agent that changes its key', () => {
     expect((await call(sessionRoute, sessionBody(member.agentId, next))).status).toBe(200)
     // The first answer may have been lost: the same words again are answered as well, and entered once.
     expect((await call(keyRoute, body)).status).toBe(200)
-    const where = { action: 'agent.key', subject: `${overlay.slug}: tar-01` }
-    expect(await em().count(AuditEntrySchema, where)).toBe(1)
+    const where = { action: 'agent.key', subject: `${seeded.overlay.slug}: tar-01` }
+    expect(await seeded.em().count(AuditEntrySchema, where)).toBe(1)
   })
 
   it('cannot be sent back to an old key by repeating old words', async () => {
@@ -241,7 +232,7 @@ describe('the directory', () => {
       address: null,
     })
     expect((await agentOf(tar)).version).toBe('0.2.0')
-    await sql(em(), `update agents set state = 'revoked' where id = ?`, [gul.agentId])
+    await sql(seeded.em(), `update agents set state = 'revoked' where id = ?`, [gul.agentId])
     expect(directorySchema.parse(await (await read(tar.token)).json()).items).toHaveLength(1)
     expect(await problemOf(await read(gul.token))).toEqual([403, 'agent-ended'])
   })
@@ -267,7 +258,7 @@ describe('a copied key', () => {
 
   it('from another machine is refused while the first is heard, and let in when it has moved', async () => {
     // At this pace it is heard for a minute after a report.
-    await sql(em(), `update overlays set pace = 'calm' where id = ?`, [overlay.id])
+    await sql(seeded.em(), `update overlays set pace = 'calm' where id = ?`, [seeded.overlay.id])
     const member = await join('tar-01', { host: 'machine-a' })
     await deliver(member, someReport(1))
     const elsewhere = () => sessionBody(member.agentId, member.keys, new Date(), { host: 'machine-b' })
@@ -281,7 +272,7 @@ describe('a copied key', () => {
     const here = sessionBody(member.agentId, member.keys, new Date(), { host: 'machine-a' })
     expect((await call(sessionRoute, here)).status).toBe(200)
     await sql(
-      em(),
+      seeded.em(),
       `update agent_states set received_at = clock_timestamp() - interval '2 minutes' where agent_id = ?`,
       [member.agentId],
     )
@@ -328,5 +319,5 @@ it('a session says what the agent needs since version 2', async () => {
   const member = await join()
   const response = await call(sessionRoute, sessionBody(member.agentId, member.keys))
   expect(sessionReplySchema.parse(await response.json())).toMatchObject({ keyRings: [], weights: 'unit' })
-  expect(team.failures).toEqual([])
+  expect(seeded.team.failures).toEqual([])
 })

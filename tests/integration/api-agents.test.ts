@@ -1,5 +1,5 @@
 import { createHash } from 'node:crypto'
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as readmit } from '@/app/api/v1/overlays/[slug]/nodes/[name]/readmission/route'
 import { POST as revoke } from '@/app/api/v1/overlays/[slug]/nodes/[name]/revocation/route'
 import { DELETE as retire } from '@/app/api/v1/overlays/[slug]/nodes/[name]/route'
@@ -20,51 +20,51 @@ import {
   type Member,
   problemOf,
   seedCode,
-  seedOverlay,
   sendReport,
 } from '@/tests/support/collector'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { healthyReport, someReport } from '@/tests/support/reports'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
+const seeded = overlayPerTest()
+
 let tar: Member
 let eel: Member
-let count = 0
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-  const code = await seedCode(team.database, overlay.id, { uses: 9 })
+  const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 9 })
   tar = await joinAgent(code, 'tar-01', { harbour: 'Tarnwick' }, { node: '10.1.0.1' })
   eel = await joinAgent(code, 'eel-09', { harbour: 'Eelholm' })
 })
 
-const em = () => team.database.orm.em.fork()
 type Init = { params?: Record<string, string>; body?: unknown; query?: string }
 const as = (role: Role, handler: RouteHandler, method: string, init: Init = {}) =>
-  ask(handler, method, { ...init, bearer: team.token(role), params: { slug: overlay.slug, ...init.params } })
+  ask(handler, method, {
+    ...init,
+    bearer: seeded.team.token(role),
+    params: { slug: seeded.overlay.slug, ...init.params },
+  })
 const on = (name: string) => ({ params: { name } })
 const nodes = async (query = '') =>
   nodesSchema.parse(await (await as('viewer', listNodes, 'GET', { query })).json()).items
 const events = async () =>
-  (await em().find(OverlayEventSchema, { overlayId: overlay.id }, { orderBy: { id: 'asc' } })).map(
-    ({ text }) => text,
-  )
+  (
+    await seeded.em().find(OverlayEventSchema, { overlayId: seeded.overlay.id }, { orderBy: { id: 'asc' } })
+  ).map(({ text }) => text)
 
 describe('an operator', () => {
   it('revokes a node: its sessions end with it, it is entered and said, and a second time changes nothing', async () => {
     const revoked = nodeSchema.parse(await (await as('operator', revoke, 'POST', on('tar-01'))).json())
     expect(revoked).toMatchObject({ name: 'tar-01', state: 'revoked', endedAt: expect.any(String) })
-    expect(await em().count(AgentSessionSchema, { agent: tar.agentId })).toBe(0)
+    expect(await seeded.em().count(AgentSessionSchema, { agent: tar.agentId })).toBe(0)
     expect(await problemOf(await sendReport(tar, someReport(1)))).toEqual([401, 'bad-token'])
     expect((await as('operator', revoke, 'POST', on('tar-01'))).status).toBe(200)
     expect((await events()).filter((text) => text === 'tar-01 was revoked')).toHaveLength(1)
-    const where = { action: 'agent.revoke', subject: `${overlay.slug}: tar-01`, outcome: 'ok' as const }
-    expect(await em().count(AuditEntrySchema, where)).toBe(2)
+    const where = {
+      action: 'agent.revoke',
+      subject: `${seeded.overlay.slug}: tar-01`,
+      outcome: 'ok' as const,
+    }
+    expect(await seeded.em().count(AuditEntrySchema, where)).toBe(2)
     expect(await problemOf(await as('operator', readmit, 'POST', on('tar-01')))).toEqual([409, 'wrong-state'])
   })
 
@@ -81,13 +81,13 @@ describe('an operator', () => {
         409,
         'wrong-state',
       ])
-    await joinAgent(await seedCode(team.database, overlay.id), 'eel-09')
+    await joinAgent(await seedCode(seeded.team.database, seeded.overlay.id), 'eel-09')
     expect((await nodes()).map(({ state }) => state)).toEqual(['unheard', 'unheard'])
   })
 
   it('readmits one that was left out', async () => {
     const out = { state: 'left-out' as const, leftOutBecause: 'its means do not fit', endedAt: new Date() }
-    await em().nativeUpdate(AgentSchema, { id: tar.agentId }, out)
+    await seeded.em().nativeUpdate(AgentSchema, { id: tar.agentId }, out)
     expect((await nodes()).at(-1)).toMatchObject({
       state: 'left-out',
       leftOutBecause: 'its means do not fit',
@@ -206,7 +206,7 @@ describe('nodes', () => {
   })
 
   it('are listed by label, also where the value has an equals sign', async () => {
-    await joinAgent(await seedCode(team.database, overlay.id), 'pin-02', { rack: 'a=1' })
+    await joinAgent(await seedCode(seeded.team.database, seeded.overlay.id), 'pin-02', { rack: 'a=1' })
     const named = async (label: string) =>
       (await nodes(`?label=${encodeURIComponent(label)}`)).map(({ name }) => name)
     expect([await named('harbour=Tarnwick'), await named('rack=a=1'), await named('harbour=')]).toEqual([
@@ -225,25 +225,25 @@ describe('upgrades', () => {
     upgradeOfferDtoSchema.parse(await (await as('operator', offer, 'POST', { body })).json())
 
   it('are kept as releases, the last added being current, and given back byte for byte', async () => {
-    expect(await findRelease(em(), null)).toBeNull()
-    await addRelease(em(), { version: '0.1.0', sha256, bytes })
-    await addRelease(em(), { version: '0.2.0', sha256, bytes })
-    await addRelease(em(), { version: '0.2.0', sha256, bytes })
+    expect(await findRelease(seeded.em(), null)).toBeNull()
+    await addRelease(seeded.em(), { version: '0.1.0', sha256, bytes })
+    await addRelease(seeded.em(), { version: '0.2.0', sha256, bytes })
+    await addRelease(seeded.em(), { version: '0.2.0', sha256, bytes })
     expect((await all()).releases.map(({ version, bytes, current }) => [version, bytes, current])).toEqual([
       ['0.2.0', 32, true],
       ['0.1.0', 32, false],
     ])
-    expect(await findRelease(em(), '0.1.0')).toEqual({ version: '0.1.0', sha256, bytes })
-    await addRelease(em(), { version: '0.1.0', sha256, bytes })
-    expect((await findRelease(em(), null))?.version).toBe('0.1.0')
-    expect(await findRelease(em(), '0.9.0')).toBeNull()
-    await expect(addRelease(em(), { version: '0.3.0', sha256: 'ab'.repeat(32), bytes })).rejects.toThrow(
-      'digest',
-    )
+    expect(await findRelease(seeded.em(), '0.1.0')).toEqual({ version: '0.1.0', sha256, bytes })
+    await addRelease(seeded.em(), { version: '0.1.0', sha256, bytes })
+    expect((await findRelease(seeded.em(), null))?.version).toBe('0.1.0')
+    expect(await findRelease(seeded.em(), '0.9.0')).toBeNull()
+    await expect(
+      addRelease(seeded.em(), { version: '0.3.0', sha256: 'ab'.repeat(32), bytes }),
+    ).rejects.toThrow('digest')
   })
 
   it('go to the agents of a label with their replies, are counted, and stop when halted', async () => {
-    await addRelease(em(), { version: '0.2.0', sha256, bytes })
+    await addRelease(seeded.em(), { version: '0.2.0', sha256, bytes })
     const { id, counts } = await make({ version: '0.2.0', label: { key: 'harbour', value: 'Tarnwick' } })
     expect(counts).toEqual({ offered: 1, runs: 0, failed: 0, waiting: 0, declined: 0 })
     const { upgrade } = await deliver(tar, { ...healthyReport(1), protocol: 2 })
@@ -252,7 +252,7 @@ describe('upgrades', () => {
       sha256,
       path: '/agent/thinspan-agent.mjs?version=0.2.0',
     })
-    expect(verifyText(upgrade!.key, upgradeText(overlay.id, upgrade!), upgrade!.signature)).toBe(true)
+    expect(verifyText(upgrade!.key, upgradeText(seeded.overlay.id, upgrade!), upgrade!.signature)).toBe(true)
     expect((await deliver(eel, { ...healthyReport(1), protocol: 2 })).upgrade).toBeNull()
     expect(await deliver(eel, someReport(2))).not.toHaveProperty('upgrade')
     expect((await all()).offers[0]?.counts.waiting).toBe(1)
@@ -271,6 +271,6 @@ describe('upgrades', () => {
       'Version 0.2.0 offered to harbour = Tarnwick',
       'Version 0.2.0 is offered no more',
     ])
-    expect(team.failures).toEqual([])
+    expect(seeded.team.failures).toEqual([])
   })
 })

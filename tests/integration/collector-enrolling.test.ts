@@ -1,33 +1,28 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as enrol } from '@/app/api/agent/enrol/route'
 import { AgentSchema, AuditEntrySchema, JoiningCodeSchema } from '@/entities'
 import { sql } from '@/lib/db'
 import { enrolReplySchema, generateKeys, verifyPass } from '@/lib/protocol'
-import { call, enrolBody, seedCode, seedOverlay } from '@/tests/support/collector'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
+import { call, enrolBody, seedCode } from '@/tests/support/collector'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
+
+const seeded = overlayPerTest()
 
 const HOUR_MS = 3_600_000
-let team: TestTeam
-let overlay: { id: string; slug: string }
-let count = 0
 let enteredBefore = 0
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-  team.failures.length = 0
+  seeded.team.failures.length = 0
   enteredBefore = await enrolmentsInAll()
 })
 
-const em = () => team.database.orm.em.fork()
-const agentsOf = () => em().find(AgentSchema, { overlay: overlay.id })
-const enrolmentsInAll = () => em().count(AuditEntrySchema, { action: 'agent.enrol' })
+const agentsOf = () => seeded.em().find(AgentSchema, { overlay: seeded.overlay.id })
+const enrolmentsInAll = () => seeded.em().count(AuditEntrySchema, { action: 'agent.enrol' })
 const enrolmentsEntered = async () => (await enrolmentsInAll()) - enteredBefore
 const usesOf = async (code: string) => {
-  const codes = await em().find(JoiningCodeSchema, { overlay: overlay.id, hint: code.slice(0, 5) })
+  const codes = await seeded
+    .em()
+    .find(JoiningCodeSchema, { overlay: seeded.overlay.id, hint: code.slice(0, 5) })
   return codes[0]?.used
 }
 const problemOf = async (response: Response) => {
@@ -37,7 +32,7 @@ const problemOf = async (response: Response) => {
 
 describe('enrolling', () => {
   it('joins an agent, says what it needs, and gives it a pass that its neighbours can check', async () => {
-    const code = await seedCode(team.database, overlay.id)
+    const code = await seedCode(seeded.team.database, seeded.overlay.id)
     const keys = generateKeys()
     const right = await call(
       enrol,
@@ -45,8 +40,13 @@ describe('enrolling', () => {
     )
     expect(right.status).toBe(201)
     const reply = enrolReplySchema.parse(await right.json())
-    expect(reply).toMatchObject({ overlay, pace: 'drill', weights: 'unit', disclosure: 'named' })
-    const pass = await verifyPass(reply.pass, reply.overlayKey, overlay.id, new Date())
+    expect(reply).toMatchObject({
+      overlay: seeded.overlay,
+      pace: 'drill',
+      weights: 'unit',
+      disclosure: 'named',
+    })
+    const pass = await verifyPass(reply.pass, reply.overlayKey, seeded.overlay.id, new Date())
     expect(pass).toMatchObject({
       ok: true,
       claims: { agentId: reply.agentId, name: 'tar-01', key: keys.publicKey },
@@ -57,7 +57,7 @@ describe('enrolling', () => {
   })
 
   it('again with the same key and name gives the same answer and takes no use, even of a code that is used up', async () => {
-    const code = await seedCode(team.database, overlay.id)
+    const code = await seedCode(seeded.team.database, seeded.overlay.id)
     const keys = generateKeys()
     const first = enrolReplySchema.parse(await (await call(enrol, enrolBody(code, 'tar-01', keys))).json())
     const again = await call(enrol, enrolBody(code, 'tar-01', keys, { address: 'ws://127.0.0.1:4001/' }))
@@ -69,7 +69,7 @@ describe('enrolling', () => {
   })
 
   it('by many at once takes no more uses than a code has, and refuses the others', async () => {
-    const code = await seedCode(team.database, overlay.id, { uses: 3 })
+    const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 3 })
     const responses = await Promise.all(
       Array.from({ length: 8 }, (_, index) => call(enrol, enrolBody(code, `tar-0${index}`, generateKeys()))),
     )
@@ -79,7 +79,7 @@ describe('enrolling', () => {
   })
 
   it('of one agent twice at once joins it once and takes one use', async () => {
-    const code = await seedCode(team.database, overlay.id, { uses: 5 })
+    const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 5 })
     const keys = generateKeys()
     const responses = await Promise.all([1, 2, 3].map(() => call(enrol, enrolBody(code, 'tar-01', keys))))
     const ids = await Promise.all(
@@ -90,7 +90,7 @@ describe('enrolling', () => {
   })
 
   it('under a name that another holds is refused with the remedy and gives the use back', async () => {
-    const code = await seedCode(team.database, overlay.id, { uses: 2 })
+    const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 2 })
     await call(enrol, enrolBody(code, 'tar-01', generateKeys()))
     const {
       status,
@@ -116,14 +116,24 @@ describe('enrolling', () => {
     ],
     [
       'an expired code',
-      async () => enrolBody(await seedCode(team.database, overlay.id, { expiresAt: past }), 'tar-01', keys),
+      async () =>
+        enrolBody(
+          await seedCode(seeded.team.database, seeded.overlay.id, { expiresAt: past }),
+          'tar-01',
+          keys,
+        ),
       403,
       'code-refused',
       { reason: 'expired' },
     ],
     [
       'a revoked code',
-      async () => enrolBody(await seedCode(team.database, overlay.id, { revokedAt: past }), 'tar-01', keys),
+      async () =>
+        enrolBody(
+          await seedCode(seeded.team.database, seeded.overlay.id, { revokedAt: past }),
+          'tar-01',
+          keys,
+        ),
       403,
       'code-refused',
       { reason: 'revoked' },
@@ -131,8 +141,10 @@ describe('enrolling', () => {
     [
       'a used code',
       async () => {
-        const code = await seedCode(team.database, overlay.id)
-        await sql(em(), 'update joining_codes set used = uses where overlay_id = ?', [overlay.id])
+        const code = await seedCode(seeded.team.database, seeded.overlay.id)
+        await sql(seeded.em(), 'update joining_codes set used = uses where overlay_id = ?', [
+          seeded.overlay.id,
+        ])
         return enrolBody(code, 'tar-01', keys)
       },
       403,
@@ -159,6 +171,6 @@ describe('enrolling', () => {
     expect(problem.body).toMatchObject({ ...members, retry: false })
     expect(await agentsOf()).toEqual([])
     expect(await enrolmentsEntered()).toBe(0)
-    expect(team.failures).toEqual([])
+    expect(seeded.team.failures).toEqual([])
   })
 })

@@ -1,4 +1,4 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as report } from '@/app/api/agent/report/route'
 import { AgentSchema, AgentStateSchema, ControlSchema } from '@/entities'
 import { Ingest } from '@/lib/collector/ingest'
@@ -17,25 +17,18 @@ import {
   sendReport,
 } from '@/tests/support/collector'
 import { someOrders } from '@/tests/support/frames'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { someReport } from '@/tests/support/reports'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
-let count = 0
+const seeded = overlayPerTest()
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-  team.failures.length = 0
+  seeded.team.failures.length = 0
 })
 
-const em = () => team.database.orm.em.fork()
-const stateOf = (member: Member) => em().findOne(AgentStateSchema, member.agentId)
-const join = async (name = 'tar-01') => joinAgent(await seedCode(team.database, overlay.id), name)
+const stateOf = (member: Member) => seeded.em().findOne(AgentStateSchema, member.agentId)
+const join = async (name = 'tar-01') =>
+  joinAgent(await seedCode(seeded.team.database, seeded.overlay.id), name)
 
 describe('a report', () => {
   it('that was answered is stored, and the answer carries the orders and their age', async () => {
@@ -47,8 +40,8 @@ describe('a report', () => {
       node: someReport(1).node,
     })
     const orders = someOrders(5)
-    await em().insert(ControlSchema, {
-      overlayId: overlay.id,
+    await seeded.em().insert(ControlSchema, {
+      overlayId: seeded.overlay.id,
       ordersText: JSON.stringify(orders),
       sequence: 5,
       updatedAt: new Date(Date.now() - 90),
@@ -80,8 +73,8 @@ describe('a report', () => {
     const late = await sendReport(member, of('incarnation-1', 8))
     expect(await late.json()).toMatchObject({ repeated: true })
     // As of a process that judged it before it knew of the present incarnation.
-    const row = { agentId: member.agentId, overlayId: overlay.id, relayed: false }
-    await storeStates(em(), [{ ...row, report: of('incarnation-1', 9) }])
+    const row = { agentId: member.agentId, overlayId: seeded.overlay.id, relayed: false }
+    await storeStates(seeded.em(), [{ ...row, report: of('incarnation-1', 9) }])
     expect(await stateOf(member)).toMatchObject({ incarnation: 'incarnation-2', reportNumber: 2 })
     await deliver(member, of('incarnation-3', 1))
     expect(await stateOf(member)).toMatchObject({
@@ -103,7 +96,7 @@ describe('a report', () => {
   })
 
   it('one of many sent at once: each is stored under its own agent, the newest last', async () => {
-    const code = await seedCode(team.database, overlay.id, { uses: 6 })
+    const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 6 })
     const members = await Promise.all(
       Array.from({ length: 6 }, (_, index) => joinAgent(code, `eel-0${index}`)),
     )
@@ -115,7 +108,7 @@ describe('a report', () => {
   })
 
   it('that fails does not cost the others of its batch anything', async () => {
-    const code = await seedCode(team.database, overlay.id, { uses: 2 })
+    const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 2 })
     const [good, bad] = [await joinAgent(code, 'eel-01'), await joinAgent(code, 'eel-02')]
     await deliver(bad, someReport(5))
     const falling = someReport(6, (counters) => ({ ...counters, births: 1 }))
@@ -130,11 +123,9 @@ describe('a report', () => {
   })
 
   it('does not name links where the overlay is sealed', async () => {
-    overlay = await seedOverlay(team.database, team.teamId, {
-      slug: `tides-${count++}`,
-      disclosure: 'sealed',
-    })
-    const member = await join()
+    const { database, teamId } = seeded.team
+    const sealed = await seedOverlay(database, teamId, { slug: 'sealed', disclosure: 'sealed' })
+    const member = await joinAgent(await seedCode(database, sealed.id), 'tar-01')
     const open = someReport(1)
     await deliver(member, {
       ...open,
@@ -145,11 +136,22 @@ describe('a report', () => {
 
   it('is answered with a new pass once less than half of the present one is left', async () => {
     const member = await join()
-    const ingest = new Ingest({ forkEm: async () => em(), clock: systemClock }, { passLifeMs: 1_000_000 })
-    await sql(em(), `update agent_sessions set pass_expires_at = clock_timestamp() + interval '400 seconds'`)
+    const ingest = new Ingest(
+      { forkEm: async () => seeded.em(), clock: systemClock },
+      { passLifeMs: 1_000_000 },
+    )
+    await sql(
+      seeded.em(),
+      `update agent_sessions set pass_expires_at = clock_timestamp() + interval '400 seconds'`,
+    )
     const first = await ingest.submit(member.token, someReport(1)).answer
-    const passes = await em().find(AgentSchema, member.agentId, { populate: ['overlay'] })
-    const checked = await verifyPass(first.pass!.pass, passes[0]!.overlay.publicKey, overlay.id, new Date())
+    const passes = await seeded.em().find(AgentSchema, member.agentId, { populate: ['overlay'] })
+    const checked = await verifyPass(
+      first.pass!.pass,
+      passes[0]!.overlay.publicKey,
+      seeded.overlay.id,
+      new Date(),
+    )
     expect(checked).toMatchObject({
       ok: true,
       claims: { agentId: member.agentId, key: member.keys.publicKey },
@@ -200,9 +202,11 @@ describe('a report', () => {
     [
       'a session that has ended',
       async (member) => {
-        await sql(em(), `update agent_sessions set expires_at = clock_timestamp() where agent_id = ?`, [
-          member.agentId,
-        ])
+        await sql(
+          seeded.em(),
+          `update agent_sessions set expires_at = clock_timestamp() where agent_id = ?`,
+          [member.agentId],
+        )
         return sendReport(member, good)
       },
       401,
@@ -211,7 +215,7 @@ describe('a report', () => {
     [
       'the session of an agent that has been revoked',
       async (member) => {
-        await em().nativeUpdate(AgentSchema, { id: member.agentId }, { state: 'revoked' })
+        await seeded.em().nativeUpdate(AgentSchema, { id: member.agentId }, { state: 'revoked' })
         return sendReport(member, good)
       },
       403,
@@ -223,7 +227,7 @@ describe('a report', () => {
     await deliver(member, someReport(5))
     expect(await problemOf(await send(member))).toEqual([status, code])
     expect((await stateOf(member))?.reportNumber).toBe(5)
-    expect(team.failures).toEqual([])
+    expect(seeded.team.failures).toEqual([])
   })
 
   it('with a very large number is stored as well', async () => {

@@ -1,38 +1,24 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as session } from '@/app/api/agent/session/route'
 import { AgentSchema, AgentSessionSchema } from '@/entities'
 import { setRuntime } from '@/lib/http/runtime'
 import { generateKeys, sessionReplySchema } from '@/lib/protocol'
-import {
-  call,
-  joinAgent,
-  type Member,
-  problemOf,
-  seedCode,
-  seedOverlay,
-  sessionBody,
-} from '@/tests/support/collector'
+import { call, joinAgent, type Member, problemOf, seedCode, sessionBody } from '@/tests/support/collector'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { testRuntime } from '@/tests/support/people'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
+
+const seeded = overlayPerTest()
 
 const HOUR_MS = 3_600_000
-let team: TestTeam
 let runtime: ReturnType<typeof testRuntime>
-let overlay: { id: string; slug: string }
-let count = 0
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  runtime = testRuntime(team.database, () => new Date())
+  runtime = testRuntime(seeded.team.database, () => new Date())
   setRuntime(runtime)
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
 })
 
-const em = () => team.database.orm.em.fork()
-const join = async (name = 'tar-01') => joinAgent(await seedCode(team.database, overlay.id), name)
+const join = async (name = 'tar-01') =>
+  joinAgent(await seedCode(seeded.team.database, seeded.overlay.id), name)
 
 describe('opening a session', () => {
   it('gives a token for an hour, of which only a hash is kept', async () => {
@@ -42,7 +28,7 @@ describe('opening a session', () => {
     )
     expect(Date.parse(reply.expiresAt) - Date.parse(reply.serverTime)).toBe(HOUR_MS)
     expect(Buffer.from(reply.token, 'base64url')).toHaveLength(32)
-    const stored = await em().find(AgentSessionSchema, { agent: member.agentId })
+    const stored = await seeded.em().find(AgentSessionSchema, { agent: member.agentId })
     expect(stored).toHaveLength(2)
     expect(JSON.stringify(stored)).not.toContain(reply.token)
   })
@@ -50,7 +36,7 @@ describe('opening a session', () => {
   it('with a clock that is off says the server’s time; at most five minutes are allowed', async () => {
     const member = await join()
     const now = new Date()
-    setRuntime(testRuntime(team.database, () => now))
+    setRuntime(testRuntime(seeded.team.database, () => now))
     const at = (ms: number) => sessionBody(member.agentId, member.keys, new Date(now.getTime() + ms))
     for (const ms of [-300_001, 300_001]) {
       const response = await call(session, at(ms))
@@ -89,7 +75,7 @@ describe('opening a session', () => {
     [
       'the key of a revoked agent',
       async ({ agentId, keys }) => {
-        await em().nativeUpdate(AgentSchema, { id: agentId }, { state: 'revoked' })
+        await seeded.em().nativeUpdate(AgentSchema, { id: agentId }, { state: 'revoked' })
         return sessionBody(agentId, keys)
       },
       403,
@@ -99,9 +85,9 @@ describe('opening a session', () => {
   it.each(refused)('with %s is refused', async (_, body, status, code) => {
     const member = await join()
     const sent = await body(member)
-    const before = await em().count(AgentSessionSchema, {})
+    const before = await seeded.em().count(AgentSessionSchema, {})
     expect(await problemOf(await call(session, sent))).toEqual([status, code])
-    expect(await em().count(AgentSessionSchema, {})).toBe(before)
+    expect(await seeded.em().count(AgentSessionSchema, {})).toBe(before)
     expect(runtime.failures).toEqual([])
   })
 })

@@ -1,4 +1,4 @@
-import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { afterEach, beforeEach, describe, expect, it } from 'vitest'
 import { POST as sessionRoute } from '@/app/api/agent/session/route'
 import { GET as keyRoute, POST as rotateRoute } from '@/app/api/v1/overlays/[slug]/signing-key/route'
 import { AgentSchema, OverlayEventSchema, OverlaySchema } from '@/entities'
@@ -21,57 +21,49 @@ import {
   type Member,
   problemOf,
   seedCode,
-  seedOverlay,
   sessionBody,
 } from '@/tests/support/collector'
 import { startTestLeader, type TestLeader } from '@/tests/support/leaders'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { someReport } from '@/tests/support/reports'
 import { RingHolder } from '@/tests/support/ring-holder'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 import { until } from '@/tests/support/until'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
+const seeded = overlayPerTest()
+
 let overlayKey: string
 const leaders: TestLeader[] = []
-let count = 0
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-  overlayKey = (await em().findOneOrFail(OverlaySchema, overlay.id)).publicKey
+  overlayKey = (await seeded.em().findOneOrFail(OverlaySchema, seeded.overlay.id)).publicKey
 })
 afterEach(async () => {
   await Promise.all(leaders.splice(0).map((leader) => leader.stop()))
-  await sql(em(), `update agents set state = 'left'`)
+  await sql(seeded.em(), `update agents set state = 'left'`)
 })
 
-const em = () => team.database.orm.em.fork()
 const lead = (seed: number, init: Parameters<typeof startTestLeader>[2] = {}) => {
-  const leader = startTestLeader(team.database, seed, init)
+  const leader = startTestLeader(seeded.team.database, seed, init)
   leaders.push(leader)
   return leader
 }
 const join = async (...names: string[]): Promise<Member[]> => {
-  const code = await seedCode(team.database, overlay.id, { uses: names.length })
+  const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: names.length })
   const members: Member[] = []
   for (const name of names) members.push(await joinAgent(code, name))
   return members
 }
-const holder = (member: Member) => new RingHolder(member, { overlayId: overlay.id, overlayKey })
-const params = () => ({ slug: overlay.slug })
+const holder = (member: Member) => new RingHolder(member, { overlayId: seeded.overlay.id, overlayKey })
+const params = () => ({ slug: seeded.overlay.slug })
 const signingKey = async () =>
   signingKeySchema.parse(
-    await (await ask(keyRoute, 'GET', { bearer: team.token('operator'), params: params() })).json(),
+    await (await ask(keyRoute, 'GET', { bearer: seeded.team.token('operator'), params: params() })).json(),
   )
 const rotateAs = (role: 'owner' | 'operator') =>
-  ask(rotateRoute, 'POST', { bearer: team.token(role), params: params() })
+  ask(rotateRoute, 'POST', { bearer: seeded.team.token(role), params: params() })
 const rotate = async () => signingKeySchema.parse(await (await rotateAs('owner')).json())
 const eventsOf = async (kind: 'agent-left' | 'key-rotated' | 'agent-left-out' | 'agent-readmitted') =>
-  (await em().find(OverlayEventSchema, { overlayId: overlay.id, kind })).map(({ text }) => text)
+  (await seeded.em().find(OverlayEventSchema, { overlayId: seeded.overlay.id, kind })).map(({ text }) => text)
 
 /** Reports go on, one after the other, until it is as wanted. */
 async function reportUntil(
@@ -86,13 +78,16 @@ async function reportUntil(
 }
 
 const setPace = (pace: 'drill' | 'calm') =>
-  sql(em(), 'update overlays set pace = ? where id = ?', [pace, overlay.id])
+  sql(seeded.em(), 'update overlays set pace = ? where id = ?', [pace, seeded.overlay.id])
 
 /** As a leader after its round. */
 async function upkeepOf(holderName: string): Promise<{ look(memory?: Partial<Memory>): Promise<void> }> {
-  const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'leader' })
-  const init = { overlayId: overlay.id, holder: holderName }
-  const upkeep = new Upkeep({ forkEm: async () => em(), clock: systemClock }, init)
+  const store = new LeaderStore(
+    { forkEm: async () => seeded.em() },
+    { overlayId: seeded.overlay.id, holder: 'leader' },
+  )
+  const init = { overlayId: seeded.overlay.id, holder: holderName }
+  const upkeep = new Upkeep({ forkEm: async () => seeded.em(), clock: systemClock }, init)
   const loaded = (await store.load())!
   return { look: (memory = {}) => upkeep.look(loaded, { ...BLANK_MEMORY, ...memory }) }
 }
@@ -111,7 +106,10 @@ describe('a new signing key', () => {
     await setPace('calm')
     await agents[0]!.report()
     await agents[0]!.report()
-    await new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'leader' }).claim()
+    await new LeaderStore(
+      { forkEm: async () => seeded.em() },
+      { overlayId: seeded.overlay.id, holder: 'leader' },
+    ).claim()
     await (await upkeepOf('leader')).look()
     expect((await signingKey()).publicKey).toBe(overlayKey)
     await setPace('drill')
@@ -130,16 +128,18 @@ describe('a new signing key', () => {
       previous: { publicKey: overlayKey },
     })
     const until = Date.parse((await signingKey()).previous!.until)
-    const { passEndsAt } = await em().findOneOrFail(AgentSchema, agents[0]!.member.agentId)
+    const { passEndsAt } = await seeded.em().findOneOrFail(AgentSchema, agents[0]!.member.agentId)
     expect(until).toBeGreaterThanOrEqual(passEndsAt!.getTime())
-    await sql(em(), 'update overlay_keys set until = clock_timestamp() where overlay_id = ?', [overlay.id])
+    await sql(seeded.em(), 'update overlay_keys set until = clock_timestamp() where overlay_id = ?', [
+      seeded.overlay.id,
+    ])
     await reportUntil(agents, () => agents.every(({ held }) => held.version === 4))
     expect(agents.map(({ held, refused }) => [held.keys, refused])).toEqual([
       [[next], []],
       [[next], []],
     ])
     expect(await eventsOf('key-rotated')).toEqual(['A new key signs passes and orders'])
-    expect(team.failures).toEqual([])
+    expect(seeded.team.failures).toEqual([])
   })
 
   it('is followed by one that slept through two rotations, and by one that enrols after them', async () => {
@@ -147,7 +147,7 @@ describe('a new signing key', () => {
     const [tar, gul] = await join('tar-01', 'gul-04')
     const awake = holder(tar!)
     const asleep = holder(gul!)
-    await sql(em(), 'delete from agent_states where agent_id = ?', [gul!.agentId])
+    await sql(seeded.em(), 'delete from agent_states where agent_id = ?', [gul!.agentId])
     for (let turn = 0; turn < 2; turn++) {
       const { next } = await rotate()
       await reportUntil([awake], () => awake.signedBy.at(-1) === next!.publicKey)
@@ -157,9 +157,9 @@ describe('a new signing key', () => {
     expect(await asleep.takes(session.pass)).toBe(false)
     asleep.follow(session.keyRings ?? [])
     expect([asleep.held, await asleep.takes(session.pass)]).toEqual([awake.held, true])
-    const { publicKey } = await em().findOneOrFail(OverlaySchema, overlay.id)
+    const { publicKey } = await seeded.em().findOneOrFail(OverlaySchema, seeded.overlay.id)
     const [eel] = await join('eel-09')
-    const late = new RingHolder(eel!, { overlayId: overlay.id, overlayKey: publicKey })
+    const late = new RingHolder(eel!, { overlayId: seeded.overlay.id, overlayKey: publicKey })
     await late.report()
     expect(late.held).toEqual(awake.held)
     await late.report()
@@ -169,17 +169,17 @@ describe('a new signing key', () => {
   it('takes over once, whatever leaders do at the same time, and each ring is signed by the one before', async () => {
     await join('tar-01')
     await rotate()
-    const turn = () => em().transactional((tx) => takeOver(tx, overlay.id))
+    const turn = () => seeded.em().transactional((tx) => takeOver(tx, seeded.overlay.id))
     await Promise.all([turn(), turn(), turn()])
     const rings = await sql(
-      em(),
+      seeded.em(),
       `select version, keys, signed_by as "signedBy", signature from overlay_key_rings where overlay_id = ? order by version`,
-      [overlay.id],
+      [seeded.overlay.id],
     )
     expect(rings).toHaveLength(2)
     const agent = new RingHolder(
       { agentId: '', name: '', keys: undefined!, token: '' },
-      { overlayId: overlay.id, overlayKey },
+      { overlayId: seeded.overlay.id, overlayKey },
     )
     agent.follow(rings.map((ring) => keyRingSchema.parse(ring)))
     expect(agent.held.version).toBe(3)
@@ -187,7 +187,7 @@ describe('a new signing key', () => {
 
   it('is for owners to begin and for operators to look at', async () => {
     expect(await problemOf(await rotateAs('operator'))).toEqual([403, 'forbidden'])
-    const looked = await ask(keyRoute, 'GET', { bearer: team.token('viewer'), params: params() })
+    const looked = await ask(keyRoute, 'GET', { bearer: seeded.team.token('viewer'), params: params() })
     expect(await problemOf(looked)).toEqual([403, 'forbidden'])
   })
 })
@@ -209,7 +209,7 @@ describe('orders', () => {
     const agent = holder(tar!)
     await reportUntil([agent], () => agent.sequence > 0)
     const before = agent.sequence
-    await revokeAgent(await team.callAs('operator'), overlay.slug, 'gul-04')
+    await revokeAgent(await seeded.team.callAs('operator'), seeded.overlay.slug, 'gul-04')
     await reportUntil([agent], () => agent.sequence > before)
     expect(agent.shut).toEqual([{ agentId: gul!.agentId, reason: 'revoked' }])
     expect((await agent.report()).signedOrders!.text).toContain('"weights":"unit"')
@@ -218,7 +218,10 @@ describe('orders', () => {
 
   it('leave out whom a round leaves out, until an operator readmits it', async () => {
     const [tar] = await join('tar-01', 'gul-04')
-    const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'one' })
+    const store = new LeaderStore(
+      { forkEm: async () => seeded.em() },
+      { overlayId: seeded.overlay.id, holder: 'one' },
+    )
     const { key } = (await store.load())!
     await store.claim()
     const round = {
@@ -232,7 +235,7 @@ describe('orders', () => {
     expect(await store.write({ ...round, sequence: 1, leftOut: [{ agentId: tar!.agentId, because }] })).toBe(
       true,
     )
-    expect(await em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
+    expect(await seeded.em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
       state: 'left-out',
       leftOutBecause: because,
     })
@@ -248,8 +251,8 @@ describe('orders', () => {
       true,
     )
     expect(await eventsOf('agent-left-out')).toHaveLength(1)
-    await readmitAgent(await team.callAs('operator'), overlay.slug, 'tar-01')
-    expect(await em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
+    await readmitAgent(await seeded.team.callAs('operator'), seeded.overlay.slug, 'tar-01')
+    expect(await seeded.em().findOne(AgentSchema, tar!.agentId)).toMatchObject({
       state: 'joined',
       leftOutBecause: null,
     })
@@ -266,21 +269,26 @@ describe('agents unheard for longer than the overlay allows', () => {
     await upkeep.look({ listeningSinceMs: 0 })
   }
   const joined = async () =>
-    (await em().find(AgentSchema, { overlay: overlay.id, state: 'joined' })).map(({ name }) => name).sort()
+    (await seeded.em().find(AgentSchema, { overlay: seeded.overlay.id, state: 'joined' }))
+      .map(({ name }) => name)
+      .sort()
 
   it('are retired by whoever leads, while it has been listening, and said', async () => {
     const members = await join(...names)
     for (const member of members) await deliver(member, someReport(1))
-    const store = new LeaderStore({ forkEm: async () => em() }, { overlayId: overlay.id, holder: 'leader' })
+    const store = new LeaderStore(
+      { forkEm: async () => seeded.em() },
+      { overlayId: seeded.overlay.id, holder: 'leader' },
+    )
     await store.claim()
     await sql(
-      em(),
+      seeded.em(),
       `update agent_states set received_at = clock_timestamp() - interval '3 hours' where agent_id = ?`,
       [members[3]!.agentId],
     )
     await look('leader', 0)
     expect(await joined()).toEqual([...names].sort())
-    await setRetireAfter(await team.callAs('operator'), overlay.slug, 2)
+    await setRetireAfter(await seeded.team.callAs('operator'), seeded.overlay.slug, 2)
     await look('leader', Date.now() - 1_000)
     await look('another', 0)
     expect(await joined()).toEqual([...names].sort())

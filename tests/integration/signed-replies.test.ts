@@ -1,4 +1,4 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as reportRoute } from '@/app/api/agent/report/route'
 import { AgentSchema, AgentSessionSchema, AgentStateSchema, ControlSchema, OverlaySchema } from '@/entities'
 import type { Incoming } from '@/lib/collector/ingest-entry'
@@ -25,32 +25,25 @@ import {
   sendReport,
 } from '@/tests/support/collector'
 import { someOrders } from '@/tests/support/frames'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { healthyReport, someReport } from '@/tests/support/reports'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
+const seeded = overlayPerTest()
+
 let tar: Member
 let eel: Member
-let count = 0
 
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
 beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
-  const code = await seedCode(team.database, overlay.id, { uses: 2 })
+  const code = await seedCode(seeded.team.database, seeded.overlay.id, { uses: 2 })
   tar = await joinAgent(code, 'tar-01')
   eel = await joinAgent(code, 'eel-09')
 })
 
-const em = () => team.database.orm.em.fork()
 const keyOf = async () => {
-  const { publicKey, privateKey } = await em().findOneOrFail(OverlaySchema, overlay.id)
+  const { publicKey, privateKey } = await seeded.em().findOneOrFail(OverlaySchema, seeded.overlay.id)
   return { publicKey, privateKey }
 }
-const stateOf = ({ agentId }: Member) => em().findOne(AgentStateSchema, agentId)
+const stateOf = ({ agentId }: Member) => seeded.em().findOne(AgentStateSchema, agentId)
 const v2 = (number: number, over: Partial<Incoming> = {}) => ({
   ...healthyReport(number),
   protocol: 2,
@@ -59,12 +52,12 @@ const v2 = (number: number, over: Partial<Incoming> = {}) => ({
 
 async function issueOrders(sequence = 5): Promise<void> {
   const { text, key, signature } = signOrders(
-    overlay.id,
+    seeded.overlay.id,
     JSON.stringify(someOrders(sequence)),
     signerOf(await keyOf()),
   )
-  await em().insert(ControlSchema, {
-    overlayId: overlay.id,
+  await seeded.em().insert(ControlSchema, {
+    overlayId: seeded.overlay.id,
     ordersText: text,
     ordersKey: key,
     ordersSignature: signature,
@@ -82,7 +75,7 @@ describe('a reply', () => {
     const { orders, signedOrders, ordersAgeMs, ...rest } = await deliver(tar, v2(2))
     expect(orders).toBeNull()
     expect(ordersAgeMs).toBeGreaterThan(0)
-    const judged = verifyOrders(overlay.id, signedOrders!, [(await keyOf()).publicKey])
+    const judged = verifyOrders(seeded.overlay.id, signedOrders!, [(await keyOf()).publicKey])
     expect(judged).toEqual({ ok: true, orders: someOrders(5) })
     expect(rest).toEqual({ upgrade: null })
   })
@@ -101,12 +94,12 @@ describe('a reply', () => {
     const { receipt } = await deliver(tar, sent)
     const good = { statement: statementOf(tar.agentId, sent), key: receipt!.key, receipt: receipt!.receipt }
     const trusted = [(await keyOf()).publicKey]
-    expect(verifyReceipt(overlay.id, good, trusted)).toBe(true)
+    expect(verifyReceipt(seeded.overlay.id, good, trusted)).toBe(true)
     const [colony] = sent.sums.colonies
     const other = { ...sent, sums: { ...sent.sums, colonies: [{ ...colony!, mean: 77 }] } }
-    expect(verifyReceipt(overlay.id, { ...good, statement: statementOf(tar.agentId, other) }, trusted)).toBe(
-      false,
-    )
+    expect(
+      verifyReceipt(seeded.overlay.id, { ...good, statement: statementOf(tar.agentId, other) }, trusted),
+    ).toBe(false)
     const second: ReportReply & { repeated?: true } = await (await sendReport(tar, other)).json()
     expect([second.repeated, second.receipt]).toEqual([true, undefined])
     expect((await deliver(tar, v2(2))).receipt).toBeUndefined()
@@ -116,15 +109,15 @@ describe('a reply', () => {
     const complaints = [{ peer: eel.agentId, fault: 'mean' as const, ratio: 3 }]
     await deliver(tar, v2(1, { complaints }))
     expect((await stateOf(tar))?.complaints).toEqual(complaints)
-    await sql(em(), `update overlays set disclosure = 'flagged' where id = ?`, [overlay.id])
+    await sql(seeded.em(), `update overlays set disclosure = 'flagged' where id = ?`, [seeded.overlay.id])
     await deliver(tar, v2(2, { complaints }))
     expect((await stateOf(tar))?.complaints).toEqual([])
   })
 
   it('goes to one that was left out as well, but without a new pass', async () => {
     await issueOrders()
-    await em().nativeUpdate(AgentSchema, { id: tar.agentId }, { state: 'left-out' })
-    await sql(em(), 'update agent_sessions set pass_expires_at = clock_timestamp()')
+    await seeded.em().nativeUpdate(AgentSchema, { id: tar.agentId }, { state: 'left-out' })
+    await sql(seeded.em(), 'update agent_sessions set pass_expires_at = clock_timestamp()')
     const reply = await deliver(tar, v2(1))
     expect(reply.signedOrders).toBeTruthy()
     expect(reply.pass).toBeUndefined()
@@ -152,17 +145,22 @@ describe('a relayed report', () => {
   })
 
   it('brings a new pass back when it is due, and again after a while, as the first may be lost', async () => {
-    await sql(em(), `update agent_sessions set pass_expires_at = clock_timestamp() + interval '20 minutes'`)
+    await sql(
+      seeded.em(),
+      `update agent_sessions set pass_expires_at = clock_timestamp() + interval '20 minutes'`,
+    )
     const first = await carry(1, signed(eel, v2(1)))
     const pass = first.relayed?.[0]?.pass
-    expect(await verifyPass(pass!.pass, (await keyOf()).publicKey, overlay.id, new Date())).toMatchObject({
+    expect(
+      await verifyPass(pass!.pass, (await keyOf()).publicKey, seeded.overlay.id, new Date()),
+    ).toMatchObject({
       ok: true,
       claims: { agentId: eel.agentId, key: eel.keys.publicKey },
     })
-    const { passEndsAt } = await em().findOneOrFail(AgentSchema, eel.agentId)
+    const { passEndsAt } = await seeded.em().findOneOrFail(AgentSchema, eel.agentId)
     expect(passEndsAt!.getTime()).toBeGreaterThanOrEqual(Date.parse(pass!.passExpiresAt))
     expect((await carry(2, signed(eel, v2(2)))).relayed?.[0]?.pass).toBeNull()
-    const [session] = await em().find(AgentSessionSchema, { agent: eel.agentId })
+    const [session] = await seeded.em().find(AgentSessionSchema, { agent: eel.agentId })
     expect(session!.passExpiresAt!.getTime()).toBeLessThan(Date.now() + 21 * 60_000)
   })
 
@@ -181,8 +179,8 @@ describe('a relayed report', () => {
     [
       'of another overlay',
       async () => {
-        const other = await seedOverlay(team.database, team.teamId, { slug: `other-${count++}` })
-        return signed(await joinAgent(await seedCode(team.database, other.id), 'gul-04'), v2(1))
+        const other = await seedOverlay(seeded.team.database, seeded.team.teamId, { slug: 'other' })
+        return signed(await joinAgent(await seedCode(seeded.team.database, other.id), 'gul-04'), v2(1))
       },
       null,
       'unknown-agent',
@@ -190,7 +188,7 @@ describe('a relayed report', () => {
     [
       'of an agent that was revoked',
       async () => {
-        await em().nativeUpdate(AgentSchema, { id: eel.agentId }, { state: 'revoked' })
+        await seeded.em().nativeUpdate(AgentSchema, { id: eel.agentId }, { state: 'revoked' })
         return signed(eel, v2(1))
       },
       null,

@@ -1,0 +1,34 @@
+import { afterAll, beforeAll, beforeEach } from 'vitest'
+import { seedOverlay } from './collector'
+import { openTestTeam, type TestTeam } from './team'
+
+export interface OverlayPerTest {
+  /** One for the file. */
+  readonly team: TestTeam
+  /** A new one before each test. */
+  readonly overlay: { id: string; slug: string }
+  em(): ReturnType<TestTeam['database']['orm']['em']['fork']>
+}
+
+/** A team for the file this is called in, and a fresh overlay for each of its tests. */
+export function overlayPerTest(): OverlayPerTest {
+  let team: TestTeam
+  let overlay: { id: string; slug: string }
+  let count = 0
+  beforeAll(async () => {
+    team = await openTestTeam()
+  })
+  afterAll(() => team.close())
+  beforeEach(async () => {
+    overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
+  })
+  return {
+    get team() {
+      return team
+    },
+    get overlay() {
+      return overlay
+    },
+    em: () => team.database.orm.em.fork(),
+  }
+}
