@@ -4,8 +4,8 @@
  * little beside what it loads.
  */
 import { connect, type Socket } from 'node:net'
-import { createInterface } from 'node:readline'
 import { z } from 'zod'
+import { delay, doJobs } from '../server/job'
 
 const jobSchema = z.object({
   url: z.url(),
@@ -127,11 +127,4 @@ async function run(job: LoadJob): Promise<LoadResult> {
   }
 }
 
-const delay = (seconds: number): Promise<void> =>
-  new Promise((resolve) => setTimeout(resolve, 1000 * seconds))
-
-if (process.argv[1] === import.meta.filename)
-  for await (const line of createInterface({ input: process.stdin })) {
-    const result = await run(jobSchema.parse(JSON.parse(line)))
-    process.stdout.write(`${JSON.stringify(result)}\n`)
-  }
+if (process.argv[1] === import.meta.filename) await doJobs(jobSchema, run)

@@ -3,7 +3,6 @@
  * reports sent over HTTP as agents send them. A larger overlay is the same 200 nodes told again under other names, each with
  * its own session: sums are then those of so many separate copies that walk alike. Takes one line of JSON, prints one.
  */
-import { createInterface } from 'node:readline'
 import { z } from 'zod'
 import { createPost } from '@/agent/collector/post'
 import { edgesOf } from '@/lib/method/graph'
@@ -12,6 +11,7 @@ import { WalkNode } from '@/lib/method/node'
 import { PACE_NAMES, PACES } from '@/lib/method/pace'
 import { createRandom, forkRandom } from '@/lib/method/random'
 import { parseOrders, reportReplySchema } from '@/lib/protocol'
+import { delay, doJobs } from '../server/job'
 
 const DEGREE = 8
 const LINK_DELAY_MS = [20, 300] as const
@@ -160,11 +160,4 @@ async function run(job: WalkersJob): Promise<WalkersResult> {
   }
 }
 
-const delay = (seconds: number): Promise<void> =>
-  new Promise((resolve) => setTimeout(resolve, 1000 * seconds))
-
-if (process.argv[1] === import.meta.filename)
-  for await (const line of createInterface({ input: process.stdin })) {
-    const result = await run(jobSchema.parse(JSON.parse(line)))
-    process.stdout.write(`${JSON.stringify(result)}\n`)
-  }
+if (process.argv[1] === import.meta.filename) await doJobs(jobSchema, run)
