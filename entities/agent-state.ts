@@ -18,8 +18,8 @@ export const AgentStateSchema = defineEntity({
     reportNumber: p.bigint('number'),
     ordersSequence: p.bigint('number'),
     /** Only meaningful added up over agents: kept apart from the node's facts on purpose. */
-    sums: p.json<Sums>(),
-    node: p.json<NodeFacts>(),
+    sums: p.json<Sums>().columnType('json'),
+    node: p.json<NodeFacts>().columnType('json'),
     complaints: p.json<Complaint[]>().default('[]'),
     /** It came through neighbours. */
     relayed: p.boolean().default(false),

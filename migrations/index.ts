@@ -6,6 +6,7 @@ import { LateArrivals20261205 } from './migration-2026-12-05-late-arrivals'
 import { AgentsInService20261206 } from './migration-2026-12-06-agents-in-service'
 import { ReadingsForYears20261207 } from './migration-2026-12-07-readings-for-years'
 import { NodeSnapshots20261208 } from './migration-2026-12-08-node-snapshots'
+import { PlainReports20261209 } from './migration-2026-12-09-plain-reports'
 
 /** In order; a migration that has landed is never edited. */
 export const migrations = [
@@ -17,4 +18,5 @@ export const migrations = [
   { name: '2026-12-06-agents-in-service', class: AgentsInService20261206 },
   { name: '2026-12-07-readings-for-years', class: ReadingsForYears20261207 },
   { name: '2026-12-08-node-snapshots', class: NodeSnapshots20261208 },
+  { name: '2026-12-09-plain-reports', class: PlainReports20261209 },
 ]

@@ -117,7 +117,7 @@ export async function storeStates(em: EntityManager, rows: readonly StateRow[]):
   const ordered = [...rows].sort((a, b) => (a.agentId < b.agentId ? -1 : 1))
   const values = ordered.map(
     () =>
-      '(?::uuid, ?::uuid, ?, ?::bigint, ?::bigint, ?::jsonb, ?::jsonb, ?::jsonb, ?::boolean, clock_timestamp())',
+      '(?::uuid, ?::uuid, ?, ?::bigint, ?::bigint, ?::json, ?::json, ?::jsonb, ?::boolean, clock_timestamp())',
   )
   await query(
     em,

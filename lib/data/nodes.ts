@@ -47,7 +47,7 @@ interface Row {
 
 const SELECT = `select a.id, a.name, a.labels, a.version, a.state, a.node as "nodeName",
     ${epochMs('a.joined_at')} as "joinedAtMs", ${epochMs('a.ended_at')} as "endedAtMs",
-    a.left_out_because as "leftOutBecause", s.node - 'links' as facts, s.sums->'colonies' as colonies, s.relayed,
+    a.left_out_because as "leftOutBecause", s.node::jsonb - 'links' as facts, s.sums->'colonies' as colonies, s.relayed,
     (s.sums->>'attached')::int = 1 as attached, ${epochMs('s.received_at')} as "heardAtMs",
     ${epochMs('clock_timestamp()')} - ${epochMs('s.received_at')} as "ageMs"
   from agents a left join agent_states s on s.agent_id = a.id`

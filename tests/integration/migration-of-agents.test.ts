@@ -2,6 +2,7 @@ import { afterAll, beforeAll, expect, it } from 'vitest'
 import { sql } from '@/lib/db'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { someOrders } from '@/tests/support/frames'
+import { someReport } from '@/tests/support/reports'
 
 let database: TestDatabase
 beforeAll(async () => {
@@ -74,4 +75,19 @@ it('what agents and leaders left in an older database is still there after the m
     { name: 'eel-09', state: 'joined' },
     { name: 'tar-01', state: 'joined' },
   ])
+})
+
+it('reports that are held say the same before the migration to plain text, after it, and after going back', async () => {
+  const em = database.orm.em.fork()
+  const said = async () => (await sql(em, 'select sums, node from agent_states'))[0]
+  const report = someReport(7)
+  const there = { sums: report.sums, node: report.node }
+  await sql(em, 'update agent_states set sums = ?, node = ?', [
+    JSON.stringify(there.sums),
+    JSON.stringify(there.node),
+  ])
+  await database.orm.migrator.down('2026-12-09-plain-reports')
+  expect(await said()).toEqual(there)
+  await database.orm.migrator.up()
+  expect(await said()).toEqual(there)
 })
