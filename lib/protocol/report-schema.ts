@@ -9,40 +9,43 @@ import { ordersSchema } from './orders-schema'
 import { receiptSchema } from './receipt'
 import { signedOrdersSchema } from './signed-orders'
 import { relayedReplySchema, signedReportSchema } from './signed-report'
+import { allWhole, BIT, COUNT, FIXED, numbers, whole } from './whole-numbers'
 
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
-const fixed = z.number().int().min(Number.MIN_SAFE_INTEGER).max(Number.MAX_SAFE_INTEGER)
-const bit = z.number().int().min(0).max(1)
+const list = z.array(z.number())
 const MAX_PAIRS = (MAX_COLONIES * (MAX_COLONIES + 1)) / 2
 
-const colonySumsSchema = z.object({
-  colony: z.number().int().min(0).max(0xffff),
-  seeding: count,
-  present: bit,
-  counters: z.object({
-    seeded: count,
-    births: count,
-    kills: count,
-    culls: count,
-    dropped: count,
-    sent: count,
-    received: count,
-    walkerTime: count,
-    occupancyX: count,
-    occupancyY: count,
-    linkTime: count,
-  }),
-  heldX: count,
-  heldY: count,
-  mean: fixed,
-})
+const COUNTERS = {
+  seeded: COUNT,
+  births: COUNT,
+  kills: COUNT,
+  culls: COUNT,
+  dropped: COUNT,
+  sent: COUNT,
+  received: COUNT,
+  walkerTime: COUNT,
+  occupancyX: COUNT,
+  occupancyY: COUNT,
+  linkTime: COUNT,
+}
+const COLONY = {
+  colony: { least: 0, most: 0xffff },
+  seeding: COUNT,
+  present: BIT,
+  heldX: COUNT,
+  heldY: COUNT,
+  mean: FIXED,
+}
+const colonySumsSchema = z
+  .object({ ...numbers(COLONY), counters: z.object(numbers(COUNTERS)).check(whole(COUNTERS)) })
+  .check(whole(COLONY))
 
 const sweepSumsSchema = z
   .object({
     id: count,
-    above: z.array(bit).max(MAX_THRESHOLDS),
-    crossing: z.array(count).max(MAX_THRESHOLDS),
-    crossingWeight: z.array(count).max(MAX_THRESHOLDS),
+    above: list.max(MAX_THRESHOLDS).check(allWhole(BIT)),
+    crossing: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
+    crossingWeight: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
   })
   .refine(
     ({ above, crossing, crossingWeight }) =>
@@ -50,16 +53,16 @@ const sweepSumsSchema = z
     'above, crossing and crossingWeight have one entry per threshold',
   )
 
+const SUMS = { attached: BIT, linkEnds: COUNT, linkEndWeight: COUNT }
 export const sumsSchema = z
   .object({
-    attached: bit,
+    ...numbers(SUMS),
     colonies: z.array(colonySumsSchema).max(MAX_COLONIES),
-    energies: z.array(fixed).max(MAX_PAIRS),
-    moments: z.array(fixed).max(MAX_PAIRS),
-    linkEnds: count,
-    linkEndWeight: count,
+    energies: list.max(MAX_PAIRS).check(allWhole(FIXED)),
+    moments: list.max(MAX_PAIRS).check(allWhole(FIXED)),
     sweep: sweepSumsSchema.nullable(),
   })
+  .check(whole(SUMS))
   .superRefine((sums, context) => {
     const size = sums.attached === 1 ? sums.colonies.length : 0
     const pairs = (size * (size + 1)) / 2
