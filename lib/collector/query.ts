@@ -17,6 +17,31 @@ export async function query<Row extends object = Record<string, unknown>>(
   return (await raw).rows
 }
 
+/** A statement whose text never changes, by a name of its own: each connection reads and plans it once. */
+export interface Statement {
+  name: string
+  text: string
+}
+
+/**
+ * For the few statements that come with every batch of reports, outside transactions: straight to the driver, with `$1` for the
+ * first value and lists as arrays, so that neither side reads a text that is as long as the batch.
+ */
+export async function prepared<Row extends object>(
+  em: EntityManager,
+  statement: Statement,
+  values: readonly (Bindable | readonly Bindable[])[],
+): Promise<Row[]> {
+  const { client } = em.getKnex()
+  const connection = await client.acquireConnection()
+  try {
+    const { rows } = await connection.query({ ...statement, values })
+    return rows
+  } finally {
+    client.releaseConnection(connection)
+  }
+}
+
 /** Milliseconds since 1970 of a timestamp expression, as a number. */
 export function epochMs(expression: string): string {
   return `(extract(epoch from ${expression}) * 1000)::float8`
