@@ -21,9 +21,8 @@ export const FIGURES = ['colony', 'mean', 'seeding', ...COUNTERS] as const
 export type Figure = (typeof FIGURES)[number]
 
 /**
- * A report while it is taken in: texts as they are stored, and the few things that are looked at. Its hundred and more
- * objects, held by every report that waits for its answer, cost more to keep than to read: by perf, collecting was 20 % of the
- * collector's CPU.
+ * A report while it is taken in: texts as they are stored, and the few things that are looked at, in the place of the hundred
+ * and more objects that it came as, so that those need not be kept until its answer.
  */
 export interface TakenReport {
   incarnation: string
