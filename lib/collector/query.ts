@@ -1,4 +1,4 @@
-import type { EntityManager } from '@/lib/db'
+import { type EntityManager, STATEMENT_TIMEOUT_MS } from '@/lib/db'
 
 export type Bindable = string | number | boolean | Date | null
 
@@ -23,6 +23,12 @@ export interface Statement {
   text: string
 }
 
+/** The server itself gives a statement up before that; a connection on which nothing of it is heard is given up then. */
+export const PREPARED_ANSWERS_MS = STATEMENT_TIMEOUT_MS + 5_000
+
+/** As the driver says it (pg 8.20, lib/client.js). */
+export const READ_TIMEOUT = 'Query read timeout'
+
 /**
  * For the few statements that come with every batch of reports, outside transactions: straight to the driver, with `$1` for the
  * first value and lists as arrays, so that neither side reads a text that is as long as the batch.
@@ -31,12 +37,17 @@ export async function prepared<Row extends object>(
   em: EntityManager,
   statement: Statement,
   values: readonly (Bindable | readonly Bindable[])[],
+  answersMs = PREPARED_ANSWERS_MS,
 ): Promise<Row[]> {
   const { client } = em.getKnex()
   const connection = await client.acquireConnection()
   try {
-    const { rows } = await connection.query({ ...statement, values })
+    const { rows } = await connection.query({ ...statement, values, query_timeout: answersMs })
     return rows
+  } catch (error) {
+    // An answer that still comes would be taken for the next statement's: so knex is told not to use it again.
+    if (error instanceof Error && error.message === READ_TIMEOUT) connection.__knex__disposed = error
+    throw error
   } finally {
     client.releaseConnection(connection)
   }

@@ -48,9 +48,9 @@ export function invalidInput(error: ZodError): AppError {
   return new AppError('invalid-input', `Correct these and try again. ${named}`, { errors })
 }
 
-/** What the driver says, without a code, when a connection ends under a statement (pg 8.20, lib/client.js); knex puts the statement before it. */
+/** What the driver says, without a code, when a connection ends under a statement or nothing is heard of it (pg 8.20, lib/client.js); knex puts the statement before it. */
 const CONNECTION_ENDED =
-  /(^| - )(Connection terminated( unexpectedly| due to connection timeout)?|Client (has encountered a connection error|was closed) and is not queryable)$/
+  /(^| - )(Query read timeout|Connection terminated( unexpectedly| due to connection timeout)?|Client (has encountered a connection error|was closed) and is not queryable)$/
 
 /**
  * Classes 08 and 53, 57P0x, 57014, 25P03: connection lost, no room for another, the server shutting down or starting up, a
