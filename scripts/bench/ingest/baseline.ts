@@ -25,8 +25,8 @@ interface Waiting {
 const pool = new pg.Pool({ connectionString: process.env.DATABASE_URL, max: CONNECTIONS })
 await pool.query(`create table if not exists bench_states (
   agent_id uuid primary key, overlay_id uuid not null, incarnation text not null, report_number bigint not null,
-  orders_sequence bigint not null, sums jsonb not null, node jsonb not null, complaints jsonb not null,
-  relayed boolean not null, received_at timestamptz not null) with (fillfactor = 50)`)
+  orders_sequence bigint not null, sums json not null, node json not null, complaints jsonb not null,
+  relayed boolean not null, received_at timestamptz not null) with (fillfactor = 50, toast_tuple_target = 4080)`)
 await pool.query('create index if not exists bench_states_overlay on bench_states (overlay_id)')
 
 let waiting: Waiting[] = []
