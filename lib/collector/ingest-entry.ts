@@ -4,7 +4,6 @@ import type { Report } from '@/lib/method/report'
 import type { AwaySummary, ReportReply, SignedReport } from '@/lib/protocol'
 import { agentEnded } from './agent-proof'
 import type { Sender, SessionSender } from './ingest-store'
-import type { TakenReport, TakenRequest } from './taken-report'
 
 export interface Answer extends ReportReply {
   /** Nothing was stored: a report as new or newer was there already. */
@@ -22,7 +21,7 @@ export type Incoming = Report & {
 /** One request, on its way to its answer. */
 export interface Entry {
   tokenHash: string
-  request: TakenRequest
+  request: Incoming
   caller: PromiseWithResolvers<AgentCaller>
   answer: PromiseWithResolvers<Answer>
 }
@@ -36,7 +35,7 @@ export interface Admitted {
 /** One report to be judged and stored: the sender's own, or one that it delivers for another. */
 export interface Arrival {
   sender: Sender
-  report: TakenReport
+  report: Report
   relayed: boolean
   /** What became of it; null while that is not known. */
   outcome: { kind: 'stored' | 'repeated' } | { kind: 'refused'; error: unknown } | null

@@ -1,6 +1,13 @@
 import type { EntityManager } from '@/lib/db'
 import type { Orders } from '@/lib/method/orders'
-import { type KeyRing, type PassGrant, parseOrders, type ReportReply, signReceipt } from '@/lib/protocol'
+import {
+  type KeyRing,
+  type PassGrant,
+  parseOrders,
+  type ReportReply,
+  signReceipt,
+  statementOf,
+} from '@/lib/protocol'
 import type { Clock } from './clock'
 import type { Admitted, Arrival } from './ingest-entry'
 import type { Sender, SessionSender } from './ingest-store'
@@ -9,7 +16,6 @@ import { offerFor } from './offers'
 import { grantPass, isPassDue, notePasses } from './passes'
 import { findReplyFacts, notePassesOfSessions, type ReplyFacts } from './reply-store'
 import { signerOf } from './signer'
-import { takenStatement } from './taken-report'
 
 /** Whether a pass came through to an agent that is not reached directly cannot be told: it is given one anew after this. */
 export const RELAYED_PASS_MS = 60_000
@@ -57,10 +63,10 @@ export class ReplyMaker {
       orders: null,
       ordersAgeMs,
       signedOrders: signedOrdersOf(facts),
-      upgrade: offerFor(facts, sender, report),
+      upgrade: offerFor(facts, sender, report.node),
       ...(keyRings ? { keyRings } : {}),
       ...(isReceived
-        ? { receipt: signReceipt(facts.overlayId, takenStatement(sender.agentId, report), signerOf(facts)) }
+        ? { receipt: signReceipt(facts.overlayId, statementOf(sender.agentId, report), signerOf(facts)) }
         : {}),
     }
   }
@@ -68,7 +74,7 @@ export class ReplyMaker {
   /** What an agent's ring lacks; undefined where it is the overlay's. */
   async ringsFor({ sender, report }: Arrival): Promise<KeyRing[] | undefined> {
     const facts = this.#facts.get(sender.overlayId)
-    const held = report.keyRing
+    const held = report.node.health?.keyRing
     return facts && held !== undefined && held < facts.ringVersion
       ? this.#ringsAfter(facts.overlayId, held)
       : undefined

@@ -1,10 +1,9 @@
 import type { AgentStateName } from '@/entities'
 import type { EntityManager } from '@/lib/db'
 import type { Disclosure } from '@/lib/method/orders'
-import type { Sums } from '@/lib/method/report'
+import type { Report, Sums } from '@/lib/method/report'
 import { epochMs, prepared, query, type Statement } from './query'
 import { FORMER_MOST, type HeldReport } from './report-check'
-import { figuresOf, type TakenReport } from './taken-report'
 
 /** Whom a report is of. */
 export interface Sender {
@@ -100,7 +99,7 @@ export async function findHeld(
   return new Map(
     rows.map(({ id, incarnation, former, number, sums }) => [
       id,
-      { incarnation, former, number: Number(number), figures: figuresOf(sums.colonies) },
+      { incarnation, former, number: Number(number), colonies: sums.colonies },
     ]),
   )
 }
@@ -108,7 +107,7 @@ export async function findHeld(
 export interface StateRow {
   agentId: string
   overlayId: string
-  report: TakenReport
+  report: Report
   /** It came through neighbours. */
   relayed: boolean
 }
@@ -145,8 +144,8 @@ const STATES: Statement = {
 export async function storeStates(em: EntityManager, rows: readonly StateRow[]): Promise<void> {
   if (rows.length === 0) return
   const ordered = [...rows].sort((a, b) => (a.agentId < b.agentId ? -1 : 1))
-  const joined = (textOf: (report: TakenReport) => string) =>
-    ordered.map(({ report }) => textOf(report)).join(BETWEEN)
+  const joined = (textOf: (report: Report) => unknown) =>
+    ordered.map(({ report }) => JSON.stringify(textOf(report))).join(BETWEEN)
   await prepared(em, STATES, [
     ordered.map(({ agentId }) => agentId),
     ordered.map(({ overlayId }) => overlayId),
@@ -155,7 +154,7 @@ export async function storeStates(em: EntityManager, rows: readonly StateRow[]):
     ordered.map(({ report }) => report.ordersSequence),
     joined(({ sums }) => sums),
     joined(({ node }) => node),
-    joined(({ complaints }) => complaints),
+    joined(({ complaints }) => complaints ?? []),
     ordered.map(({ relayed }) => relayed),
   ])
 }
@@ -164,7 +163,7 @@ export async function storeStates(em: EntityManager, rows: readonly StateRow[]):
 export async function countLate(
   em: EntityManager,
   agentId: string,
-  { incarnation, number }: TakenReport,
+  { incarnation, number }: Report,
 ): Promise<number | null> {
   const [row] = await query<{ late: number }>(
     em,

@@ -1,6 +1,7 @@
 import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
+import type { Report } from '@/lib/method/report'
 import type { PassGrant } from '@/lib/protocol'
 import { enterAway } from './away'
 import type { Clock } from './clock'
@@ -12,6 +13,7 @@ import {
   type Arrival,
   admit,
   type Entry,
+  type Incoming,
   refuse,
   withResolvers,
 } from './ingest-entry'
@@ -21,7 +23,6 @@ import { countLate, findHeld, findSenders, type Sender, type StateRow, storeStat
 import { PASS_LIFE_MS } from './passes'
 import { openRelayed, type Relayed, relayedReply } from './relayed'
 import { CLONE_REPORTS, type HeldReport } from './report-check'
-import type { TakenReport, TakenRequest } from './taken-report'
 
 /** Reports wait this long for others to be stored with. */
 export const BATCH_MS = 10
@@ -67,7 +68,7 @@ export class Ingest {
     this.#passLifeMs = init.passLifeMs ?? PASS_LIFE_MS
   }
 
-  submit(token: string, request: TakenRequest): Ticket {
+  submit(token: string, request: Incoming): Ticket {
     const entry: Entry = {
       tokenHash: sha256Hex(token),
       request,
@@ -116,7 +117,7 @@ export class Ingest {
     const taken = admitted.map(
       (one): Taken => ({
         ...one,
-        own: { sender: one.sender, report: one.entry.request.report, relayed: false, outcome: null },
+        own: { sender: one.sender, report: one.entry.request, relayed: false, outcome: null },
         relayed: carried.get(one) ?? [],
       }),
     )
@@ -259,9 +260,8 @@ function isAboutData(error: unknown): boolean {
 }
 
 /** What the overlay does not disclose is not stored, even where an agent on old orders still says it. */
-function disclosed(report: TakenReport, { disclosure }: Sender): TakenReport {
+function disclosed(report: Report, { disclosure }: Sender): Report {
   if (disclosure === 'named') return report
-  const unnamed = { ...report, complaints: '[]' }
-  if (disclosure === 'flagged' || !report.namesLinks) return unnamed
-  return { ...unnamed, node: JSON.stringify({ ...JSON.parse(report.node), links: [] }), namesLinks: false }
+  const { complaints: _complaints, ...unnamed } = report
+  return disclosure === 'sealed' ? { ...unnamed, node: { ...report.node, links: [] } } : unnamed
 }

@@ -1,8 +1,8 @@
+import type { NodeFacts } from '@/lib/method/report'
 import { signText, type UpgradeOffer, upgradeText } from '@/lib/protocol'
 import type { Sender } from './ingest-store'
 import type { OfferFacts, ReplyFacts } from './reply-store'
 import { signerOf } from './signer'
-import type { TakenReport } from './taken-report'
 
 /** Signed offers of one process that are kept ready. */
 const REMEMBERED_MOST = 1_000
@@ -12,7 +12,7 @@ const remembered = new Map<string, UpgradeOffer>()
 export function offerFor(
   facts: ReplyFacts,
   { labels }: Pick<Sender, 'labels'>,
-  { version }: Pick<TakenReport, 'version'>,
+  { version }: Pick<NodeFacts, 'version'>,
 ): UpgradeOffer | null {
   const offer = facts.offers.find(({ labelKey, labelValue }) => isFor(labels, labelKey, labelValue))
   return offer && offer.version !== version ? signed(facts, offer) : null

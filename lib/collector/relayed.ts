@@ -3,6 +3,7 @@ import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { asAppError, invalidInput } from '@/lib/http/problem'
 import { assertStorable } from '@/lib/http/storable'
+import type { Report } from '@/lib/method/report'
 import {
   type KeyRing,
   type PassGrant,
@@ -15,7 +16,6 @@ import {
 import { agentEnded } from './agent-proof'
 import { type Admitted, type Arrival, mayReport } from './ingest-entry'
 import { findAgents, type Sender } from './ingest-store'
-import { type TakenReport, takeReport } from './taken-report'
 
 /** A relayed report as it was found: an arrival, or why it is none. */
 export interface Relayed {
@@ -66,7 +66,7 @@ function open(signed: SignedReport, sender: Sender | undefined, deliverer: Sende
   }
 }
 
-function read(body: string): TakenReport {
+function read(body: string): Report {
   let json: unknown
   try {
     json = JSON.parse(body)
@@ -76,7 +76,7 @@ function read(body: string): TakenReport {
   assertStorable(json)
   const parsed = reportSchema.safeParse(json)
   if (!parsed.success) throw invalidInput(parsed.error)
-  return takeReport(parsed.data)
+  return parsed.data
 }
 
 /** What goes back the way the report came. */

@@ -1,4 +1,4 @@
-import { FIGURES, type Figure, type TakenReport } from './taken-report'
+import type { ColonyCounters, ColonySums, Report } from '@/lib/method/report'
 
 /** What is remembered of an agent's last report, to judge the next by. */
 export interface HeldReport {
@@ -6,8 +6,7 @@ export interface HeldReport {
   /** Incarnations before, newest first. */
   former: readonly string[]
   number: number
-  /** As in `TakenReport`. */
-  figures: readonly number[]
+  colonies: readonly ColonySums[]
 }
 
 /** So many former incarnations are known again: as many programs with one key are told from restarts. */
@@ -27,48 +26,40 @@ export type ReportVerdict =
   /** Counters only grow within an incarnation and seeding. */
   | { kind: 'falling'; colony: number; counter: string; from: number; to: number }
 
-export function judgeReport(held: HeldReport | null, report: TakenReport): ReportVerdict {
+export function judgeReport(held: HeldReport | null, report: Report): ReportVerdict {
   if (!held) return { kind: 'new' }
   if (held.former.includes(report.incarnation)) return { kind: 'late' }
   if (held.incarnation !== report.incarnation) return { kind: 'new' }
   if (report.number <= held.number) return { kind: 'repeated' }
-  const fall = fallOf(held.figures, report.figures)
-  return fall ? { kind: 'falling', ...fall } : { kind: 'new' }
+  for (const next of report.sums.colonies) {
+    const before = held.colonies.find(({ colony }) => colony === next.colony)
+    if (!before) continue
+    const fall = fallOf(before, next)
+    if (fall) return { kind: 'falling', colony: next.colony, ...fall }
+  }
+  return { kind: 'new' }
 }
 
-export function heldOf(before: HeldReport | null, { incarnation, number, figures }: TakenReport): HeldReport {
+export function heldOf(before: HeldReport | null, { incarnation, number, sums }: Report): HeldReport {
   const former = before?.former ?? []
   const isSame = !before || before.incarnation === incarnation
   return {
     incarnation,
     former: isSame ? former : [before.incarnation, ...former].slice(0, FORMER_MOST),
     number,
-    figures,
+    colonies: sums.colonies,
   }
 }
 
-type Fall = { colony: number; counter: Figure; from: number; to: number }
-const SLOT = FIGURES.indexOf('colony')
-const SEEDING = FIGURES.indexOf('seeding')
+type Fall = { counter: string; from: number; to: number }
 
-/** The first counter that fell, of colonies that are still what they were. */
-function fallOf(before: readonly number[], next: readonly number[]): Fall | null {
-  for (let at = 0; at < next.length; at += FIGURES.length) {
-    const was = placeOf(next[at + SLOT], before)
-    if (was === null || figure(next, at + SEEDING) > figure(before, was + SEEDING)) continue
-    for (let place = SEEDING; place < FIGURES.length; place++) {
-      const [from, to] = [figure(before, was + place), figure(next, at + place)]
-      const counter = FIGURES[place]
-      if (to < from && counter) return { colony: figure(next, at + SLOT), counter, from, to }
-    }
+function fallOf(before: ColonySums, next: ColonySums): Fall | null {
+  if (next.seeding > before.seeding) return null
+  if (next.seeding < before.seeding) return { counter: 'seeding', from: before.seeding, to: next.seeding }
+  for (const counter of Object.keys(before.counters) as (keyof ColonyCounters)[]) {
+    const from = before.counters[counter]
+    const to = next.counters[counter]
+    if (to < from) return { counter, from, to }
   }
-  return null
-}
-
-const figure = (figures: readonly number[], place: number): number => figures[place] ?? 0
-
-/** Where a colony's figures begin. */
-function placeOf(colony: number | undefined, figures: readonly number[]): number | null {
-  for (let at = 0; at < figures.length; at += FIGURES.length) if (figures[at + SLOT] === colony) return at
   return null
 }

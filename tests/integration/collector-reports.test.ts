@@ -4,7 +4,6 @@ import { AgentSchema, AgentStateSchema, ControlSchema } from '@/entities'
 import { Ingest } from '@/lib/collector/ingest'
 import { storeStates } from '@/lib/collector/ingest-store'
 import { systemClock } from '@/lib/collector/process'
-import { takeReport, takeRequest } from '@/lib/collector/taken-report'
 import { sql } from '@/lib/db'
 import { MAX_REPORT_BYTES, verifyPass } from '@/lib/protocol'
 import {
@@ -75,7 +74,7 @@ describe('a report', () => {
     expect(await late.json()).toMatchObject({ repeated: true })
     // As of a process that judged it before it knew of the present incarnation.
     const row = { agentId: member.agentId, overlayId: seeded.overlay.id, relayed: false }
-    await storeStates(seeded.em(), [{ ...row, report: takeReport(of('incarnation-1', 9)) }])
+    await storeStates(seeded.em(), [{ ...row, report: of('incarnation-1', 9) }])
     expect(await stateOf(member)).toMatchObject({ incarnation: 'incarnation-2', reportNumber: 2 })
     await deliver(member, of('incarnation-3', 1))
     expect(await stateOf(member)).toMatchObject({
@@ -145,7 +144,7 @@ describe('a report', () => {
       seeded.em(),
       `update agent_sessions set pass_expires_at = clock_timestamp() + interval '400 seconds'`,
     )
-    const first = await ingest.submit(member.token, takeRequest(someReport(1))).answer
+    const first = await ingest.submit(member.token, someReport(1)).answer
     const passes = await seeded.em().find(AgentSchema, member.agentId, { populate: ['overlay'] })
     const checked = await verifyPass(
       first.pass!.pass,
@@ -157,7 +156,7 @@ describe('a report', () => {
       ok: true,
       claims: { agentId: member.agentId, key: member.keys.publicKey },
     })
-    expect((await ingest.submit(member.token, takeRequest(someReport(2))).answer).pass).toBeUndefined()
+    expect((await ingest.submit(member.token, someReport(2)).answer).pass).toBeUndefined()
   })
 
   const good = someReport(6)

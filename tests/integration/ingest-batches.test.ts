@@ -2,7 +2,6 @@ import { afterAll, beforeAll, expect, it } from 'vitest'
 import { AgentStateSchema } from '@/entities'
 import { BATCH_MOST, BATCHES_AT_ONCE, Ingest } from '@/lib/collector/ingest'
 import { systemClock } from '@/lib/collector/process'
-import { takeRequest } from '@/lib/collector/taken-report'
 import { setRuntime } from '@/lib/http/runtime'
 import { joinAgent, type Member, seedCode, seedOverlay } from '../support/collector'
 import { createTestDatabase, type TestDatabase } from '../support/database'
@@ -37,7 +36,7 @@ it('more reports than all batches together hold are answered all the same, the l
   })
   const count = (BATCHES_AT_ONCE + 1) * BATCH_MOST + 7
   const answers = Array.from({ length: count }, (_, index) =>
-    ingest.submit(member.token, takeRequest(someReport(index + 1))).answer.finally(() => {
+    ingest.submit(member.token, someReport(index + 1)).answer.finally(() => {
       if (index % BATCH_MOST === 0) begun -= 1
     }),
   )

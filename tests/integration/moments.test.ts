@@ -1,4 +1,4 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import { describe, expect, it } from 'vitest'
 import { loadOverlay } from '@/lib/collector/leader-load'
 import { BLANK_MEMORY } from '@/lib/collector/memory'
 import type { Moment } from '@/lib/collector/moment'
@@ -12,22 +12,12 @@ import { Listener, sql } from '@/lib/db'
 import { forgetNodes, thinSnapshots } from '@/lib/jobs'
 import { deliver, joinAgent, seedCode, seedOverlay } from '@/tests/support/collector'
 import { startTestLeader } from '@/tests/support/leaders'
+import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { someReport } from '@/tests/support/reports'
-import { openTestTeam, type TestTeam } from '@/tests/support/team'
 import { within } from '@/tests/support/until'
 
-let team: TestTeam
-let overlay: { id: string; slug: string }
-let count = 0
-beforeAll(async () => {
-  team = await openTestTeam()
-})
-afterAll(() => team.close())
-beforeEach(async () => {
-  overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}`, pace: 'steady' })
-})
-
-const em = () => team.database.orm.em.fork()
+const seeded = overlayPerTest({ pace: 'steady' })
+const { em } = seeded
 const rows = (text: string, params: unknown[] = []) => sql(em(), text, params)
 const id = (n: number) => `00000000-0000-4000-8000-0000000000${String(n).padStart(2, '0')}`
 const page = { limit: 100 }
@@ -85,18 +75,18 @@ const momentAt = (atMs: number, over: Partial<Moment> = {}): Moment => ({
   ...over,
 })
 const figures = (value: number | null) => ({ value, degree: 2, weightedDegree: 1.5 })
-const keep = (moment: Moment) => em().transactional((tx) => keepMoment(tx, overlay.id, moment))
+const keep = (moment: Moment) => em().transactional((tx) => keepMoment(tx, seeded.overlay.id, moment))
 const iso = (ms: number) => new Date(ms).toISOString()
 
 describe('a past moment', () => {
   it('is shown as it was: reading, cut with its crossing links, and nodes with sides, values and states', async () => {
     await keep(momentAt(START))
     // Since then one has been renamed, one is gone, and the cut is another.
-    await rows('update snapshot_nodes set current = false where overlay_id = ?', [overlay.id])
+    await rows('update snapshot_nodes set current = false where overlay_id = ?', [seeded.overlay.id])
     await keep(momentAt(START + MINUTE_MS, { nodes: [], links: [] }))
-    const call = await team.callAs('viewer')
+    const call = await seeded.team.callAs('viewer')
     const at = iso(START + 40_000)
-    const nodes = nodesSchema.parse(await listNodes(call, overlay.slug, { ...page, at }))
+    const nodes = nodesSchema.parse(await listNodes(call, seeded.overlay.slug, { ...page, at }))
     const common = { degree: 2, weightedDegree: 1.5, version: null }
     expect(nodes).toEqual({
       items: [
@@ -131,7 +121,7 @@ describe('a past moment', () => {
       next: null,
       at: iso(START),
     })
-    const cut = cutSchema.parse(await getCut(call, overlay.slug, { at }))
+    const cut = cutSchema.parse(await getCut(call, seeded.overlay.slug, { at }))
     expect(cut).toEqual({
       at: iso(START),
       sides: readingAt(START).sides,
@@ -152,13 +142,13 @@ describe('a past moment', () => {
       // As many values as nodes: that says nothing.
       follows: null,
     })
-    expect(readingSchema.parse(await getReading(call, overlay.slug, { at }))).toEqual(readingAt(START))
+    expect(readingSchema.parse(await getReading(call, seeded.overlay.slug, { at }))).toEqual(readingAt(START))
   })
 
   it('has pages and labels as the present has', async () => {
     await keep(momentAt(START))
-    const call = await team.callAs('viewer')
-    const ask = (over: object) => listNodes(call, overlay.slug, { limit: 2, at: iso(START), ...over })
+    const call = await seeded.team.callAs('viewer')
+    const ask = (over: object) => listNodes(call, seeded.overlay.slug, { limit: 2, at: iso(START), ...over })
     const first = await ask({})
     expect([first.items.map(({ name }) => name), first.next]).toEqual([['gul-04', 'pin-02'], 'pin-02'])
     expect((await ask({ after: 'pin-02' })).items.map(({ name }) => name)).toEqual(['tar-01'])
@@ -167,15 +157,15 @@ describe('a past moment', () => {
 
   it('of which nothing is kept is said to be so, and one of another team is not there', async () => {
     await keep(momentAt(START))
-    const call = await team.callAs('viewer')
+    const call = await seeded.team.callAs('viewer')
     for (const at of [iso(START - 1), iso(START + 6 * MINUTE_MS)])
       for (const ask of [getCut, getReading])
-        await expect(ask(call, overlay.slug, { at })).rejects.toMatchObject({
+        await expect(ask(call, seeded.overlay.slug, { at })).rejects.toMatchObject({
           code: 'not-found',
           detail: expect.stringContaining('Choose another'),
         })
     const stranger = { ...call, caller: { ...call.caller, teams: [] } } as typeof call
-    await expect(getCut(stranger, overlay.slug, { at: iso(START) })).rejects.toMatchObject({
+    await expect(getCut(stranger, seeded.overlay.slug, { at: iso(START) })).rejects.toMatchObject({
       code: 'not-found',
     })
   })
@@ -187,11 +177,13 @@ describe('a past moment', () => {
     const moved = { ...tar!, labels: { office: 'Eelholm' } }
     await keep(momentAt(START + MINUTE_MS, { nodes: [...others, moved] }))
     expect(
-      await rows('select nodes::text from node_snapshots where overlay_id = ? order by at', [overlay.id]),
+      await rows('select nodes::text from node_snapshots where overlay_id = ? order by at', [
+        seeded.overlay.id,
+      ]),
     ).toEqual([{ nodes: '{[1,4)}' }, { nodes: '{[1,3),[4,5)}' }])
-    const call = await team.callAs('viewer')
+    const call = await seeded.team.callAs('viewer')
     const labelsAt = async (atMs: number) =>
-      (await listNodes(call, overlay.slug, { ...page, at: iso(atMs) })).items.at(-1)?.labels
+      (await listNodes(call, seeded.overlay.slug, { ...page, at: iso(atMs) })).items.at(-1)?.labels
     expect([await labelsAt(START), await labelsAt(START + MINUTE_MS)]).toEqual([
       { office: 'Tarnwick' },
       { office: 'Eelholm' },
@@ -205,17 +197,17 @@ describe('a past moment', () => {
     await thinSnapshots(em(), now)
     await thinSnapshots(em(), now + 60 * MINUTE_MS)
     await thinSnapshots(em(), now)
-    await rows('delete from node_snapshots where overlay_id = ?', [overlay.id])
+    await rows('delete from node_snapshots where overlay_id = ?', [seeded.overlay.id])
     const kept = await rows(
       `select to_char(at at time zone 'UTC', 'HH24:MI') as at from node_snapshot_hours where overlay_id = ? order by 1`,
-      [overlay.id],
+      [seeded.overlay.id],
     )
     expect(kept).toEqual([{ at: '10:00' }, { at: '11:00' }, { at: '12:00' }])
-    const call = await team.callAs('viewer')
-    const then = await listNodes(call, overlay.slug, { ...page, at: iso(START + 119 * MINUTE_MS) })
+    const call = await seeded.team.callAs('viewer')
+    const then = await listNodes(call, seeded.overlay.slug, { ...page, at: iso(START + 119 * MINUTE_MS) })
     expect([then.at, then.items.length]).toEqual([iso(START + 60 * MINUTE_MS), 3])
 
-    const nodes = () => rows('select current from snapshot_nodes where overlay_id = ?', [overlay.id])
+    const nodes = () => rows('select current from snapshot_nodes where overlay_id = ?', [seeded.overlay.id])
     await forgetNodes(em(), new Date(now))
     expect(await nodes()).toEqual([{ current: false }, { current: false }, { current: false }])
     await forgetNodes(em(), new Date(now + 396 * 24 * 60 * MINUTE_MS))
@@ -226,10 +218,12 @@ describe('a past moment', () => {
 })
 
 it('whoever leads an overlay keeps its moments, and one who has been replaced keeps none', async () => {
-  const { id: overlayId, slug } = await seedOverlay(team.database, team.teamId, { slug: 'led' })
-  const member = await joinAgent(await seedCode(team.database, overlayId), 'tar-01', { office: 'Tarnwick' })
+  const { id: overlayId, slug } = await seedOverlay(seeded.team.database, seeded.team.teamId, { slug: 'led' })
+  const member = await joinAgent(await seedCode(seeded.team.database, overlayId), 'tar-01', {
+    office: 'Tarnwick',
+  })
   await deliver(member, someReport(1))
-  const listener = new Listener({ random: Math.random, warn: () => {} }, { url: team.database.url })
+  const listener = new Listener({ random: Math.random, warn: () => {} }, { url: seeded.team.database.url })
   let rounds = 0
   // With the second round the first is over, and what came after it.
   const twoRounds = new Promise<void>((resolve) => {
@@ -243,7 +237,7 @@ it('whoever leads an overlay keeps its moments, and one who has been replaced ke
     )
   })
   listener.start()
-  const leader = startTestLeader(team.database, 1)
+  const leader = startTestLeader(seeded.team.database, 1)
   await within('two rounds', twoRounds)
   await leader.stop()
   await listener.stop()
@@ -252,7 +246,7 @@ it('whoever leads an overlay keeps its moments, and one who has been replaced ke
   const minutes = (await snapshots()).map(({ at }) => Math.floor(new Date(String(at)).getTime() / MINUTE_MS))
   expect(minutes.length).toBeGreaterThan(0)
   expect(new Set(minutes).size).toBe(minutes.length)
-  const call = await team.callAs('viewer')
+  const call = await seeded.team.callAs('viewer')
   const { items } = await listNodes(call, slug, { ...page, at: new Date().toISOString() })
   expect(items).toMatchObject([{ name: 'tar-01', labels: { office: 'Tarnwick' }, side: null }])
   expect(leader.failures).toEqual([])

@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, beforeEach } from 'vitest'
+import type { PaceName } from '@/lib/method/pace'
 import { seedOverlay } from './collector'
 import { openTestTeam, type TestTeam } from './team'
 
@@ -10,8 +11,8 @@ export interface OverlayPerTest {
   em(): ReturnType<TestTeam['database']['orm']['em']['fork']>
 }
 
-/** A team for the file this is called in, and a fresh overlay for each of its tests. */
-export function overlayPerTest(): OverlayPerTest {
+/** A team for the file this is called in, and a fresh overlay for each of its tests; at drill pace unless said otherwise. */
+export function overlayPerTest(init: { pace?: PaceName } = {}): OverlayPerTest {
   let team: TestTeam
   let overlay: { id: string; slug: string }
   let count = 0
@@ -20,7 +21,7 @@ export function overlayPerTest(): OverlayPerTest {
   })
   afterAll(() => team.close())
   beforeEach(async () => {
-    overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}` })
+    overlay = await seedOverlay(team.database, team.teamId, { slug: `tides-${count++}`, ...init })
   })
   return {
     get team() {

@@ -4,14 +4,12 @@ import { LinkWatch } from '@/lib/collector/link-watch'
 import { joinNamings, type Naming } from '@/lib/collector/namings'
 import { isPassDue } from '@/lib/collector/passes'
 import { heldOf, judgeReport } from '@/lib/collector/report-check'
-import { takenStatement, takeReport } from '@/lib/collector/taken-report'
 import { theilSen, trendOf } from '@/lib/collector/trend'
 import { HOUR_MS, usualOf } from '@/lib/collector/usual'
 import { listOf } from '@/lib/collector/words'
 import { fillWithheld } from '@/lib/data/fill-withheld'
 import { isStorable } from '@/lib/http/storable'
 import type { Snapshot } from '@/lib/method/control'
-import { statementOf } from '@/lib/method/statement'
 import { someReport } from '@/tests/support/reports'
 
 describe('the trend', () => {
@@ -81,33 +79,29 @@ describe('the label a cut follows', () => {
 })
 
 describe('a report', () => {
-  const held = heldOf(null, takeReport(someReport(5)))
+  const held = heldOf(null, someReport(5))
 
   it('is new when its number is, or its incarnation', () => {
-    expect(judgeReport(held, takeReport(someReport(6)))).toEqual({ kind: 'new' })
-    expect(judgeReport(held, takeReport({ ...someReport(1), incarnation: 'incarnation-2' }))).toEqual({
-      kind: 'new',
-    })
-    expect(judgeReport(null, takeReport(someReport(1)))).toEqual({ kind: 'new' })
+    expect(judgeReport(held, someReport(6))).toEqual({ kind: 'new' })
+    expect(judgeReport(held, { ...someReport(1), incarnation: 'incarnation-2' })).toEqual({ kind: 'new' })
+    expect(judgeReport(null, someReport(1))).toEqual({ kind: 'new' })
   })
 
   it('is late when it is of an incarnation before, whatever its number', () => {
-    const restarted = heldOf(held, takeReport({ ...someReport(1), incarnation: 'incarnation-2' }))
-    const later = heldOf(restarted, takeReport({ ...someReport(2), incarnation: 'incarnation-2' }))
-    expect(judgeReport(later, takeReport(someReport(6)))).toEqual({ kind: 'late' })
-    expect(judgeReport(later, takeReport({ ...someReport(1), incarnation: 'incarnation-3' }))).toEqual({
-      kind: 'new',
-    })
+    const restarted = heldOf(held, { ...someReport(1), incarnation: 'incarnation-2' })
+    const later = heldOf(restarted, { ...someReport(2), incarnation: 'incarnation-2' })
+    expect(judgeReport(later, someReport(6))).toEqual({ kind: 'late' })
+    expect(judgeReport(later, { ...someReport(1), incarnation: 'incarnation-3' })).toEqual({ kind: 'new' })
   })
 
   it('is repeated when its number is not larger', () => {
-    expect(judgeReport(held, takeReport(someReport(5)))).toEqual({ kind: 'repeated' })
-    expect(judgeReport(held, takeReport(someReport(2)))).toEqual({ kind: 'repeated' })
+    expect(judgeReport(held, someReport(5))).toEqual({ kind: 'repeated' })
+    expect(judgeReport(held, someReport(2))).toEqual({ kind: 'repeated' })
   })
 
   it('whose counters fall within a seeding is told so; a newer seeding counts from zero', () => {
     const fallen = someReport(6, (counters) => ({ ...counters, kills: counters.kills - 40 }))
-    expect(judgeReport(held, takeReport(fallen))).toEqual({
+    expect(judgeReport(held, fallen)).toEqual({
       kind: 'falling',
       colony: 0,
       counter: 'kills',
@@ -118,31 +112,18 @@ describe('a report', () => {
       ...fallen,
       sums: { ...fallen.sums, colonies: fallen.sums.colonies.map((c) => ({ ...c, seeding: 99 })) },
     }
-    expect(judgeReport(held, takeReport(reseeded))).toEqual({ kind: 'new' })
+    expect(judgeReport(held, reseeded)).toEqual({ kind: 'new' })
     const older = {
       ...fallen,
       sums: { ...fallen.sums, colonies: fallen.sums.colonies.map((c) => ({ ...c, seeding: 1 })) },
     }
-    expect(judgeReport(held, takeReport(older))).toEqual({
+    expect(judgeReport(held, older)).toEqual({
       kind: 'falling',
       colony: 0,
       counter: 'seeding',
       from: 3,
       to: 1,
     })
-  })
-
-  it('that is taken says the statement of the report, and each of its counters is looked at', () => {
-    const report = someReport(5)
-    expect(takenStatement('tar-01', takeReport(report))).toEqual(statementOf('tar-01', report))
-    const [colony] = report.sums.colonies
-    for (const name of Object.keys(colony!.counters)) {
-      const before = heldOf(
-        null,
-        takeReport(someReport(4, (counters) => ({ ...counters, [name]: 1_000_000_000 }))),
-      )
-      expect(judgeReport(before, takeReport(report))).toMatchObject({ kind: 'falling', counter: name })
-    }
   })
 
   it('is storable unless some text has a NUL or half a surrogate pair, anywhere', () => {

@@ -1,20 +1,17 @@
 import type { Ticket } from '@/lib/collector/ingest'
 import { getIngest } from '@/lib/collector/process'
-import { takeRequest } from '@/lib/collector/taken-report'
 import { AppError } from '@/lib/http/app-error'
 import { authorise } from '@/lib/http/call'
 import { route } from '@/lib/http/route'
 import { MAX_REPORT_BYTES, reportRequestSchema } from '@/lib/protocol'
 
 const tickets = new WeakMap<object, Ticket>()
-/** Within the schema, so that nothing keeps the parts of what was sent until it is answered. */
-const takenSchema = reportRequestSchema.transform(takeRequest)
 
 /** Who reports and what is reported go to the database together, so the proof is a part of taking it in. */
 export const POST = route(
   'agent.report',
   {
-    body: takenSchema,
+    body: reportRequestSchema,
     maxBytes: MAX_REPORT_BYTES,
     withoutManager: true,
     authenticate: async (_em, { body, request, facts }) => {
