@@ -24,9 +24,21 @@ export function figuresOf(pid: number): ProcessFigures {
   }
 }
 
+/** @returns null where the process or thread has ended meanwhile */
+export function unlessEnded<T>(read: () => T): T | null {
+  try {
+    return read()
+  } catch (error) {
+    if (error instanceof Error && 'code' in error && (error.code === 'ENOENT' || error.code === 'ESRCH'))
+      return null
+    throw error
+  }
+}
+
 function cpuSecondsOf(pid: number): number {
   let nanoseconds = 0
-  for (const thread of readdirSync(`/proc/${pid}/task`)) nanoseconds += schedstatOf(pid, thread)[0]
+  for (const thread of readdirSync(`/proc/${pid}/task`))
+    nanoseconds += unlessEnded(() => schedstatOf(pid, thread)[0]) ?? 0
   return nanoseconds / 1e9
 }
 

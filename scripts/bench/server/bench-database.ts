@@ -3,7 +3,7 @@ import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import pg from 'pg'
 import { startCluster } from '../../lib/postgres.mjs'
-import { figuresOf } from '../agent/process-figures'
+import { figuresOf, unlessEnded } from '../agent/process-figures'
 import { Program } from './program'
 
 /** A PostgreSQL cluster of the bench's own with PostgreSQL's own settings: what it confirms is on disk. */
@@ -30,7 +30,7 @@ export class BenchDatabase {
   figures(): { cpuSeconds: number; rssMib: number } {
     const server = this.#cluster?.identity?.pid
     if (server === undefined) throw new Error('Start the database first.')
-    const all = [server, ...childrenOf(server)].map(figuresOf)
+    const all = [server, ...childrenOf(server)].flatMap((pid) => unlessEnded(() => figuresOf(pid)) ?? [])
     return {
       cpuSeconds: all.reduce((sum, { cpuSeconds }) => sum + cpuSeconds, endedCpuSeconds(server)),
       rssMib: all.reduce((sum, { rssMib }) => sum + rssMib, 0),
@@ -61,13 +61,10 @@ function endedCpuSeconds(pid: number): number {
 function childrenOf(pid: number): number[] {
   return readdirSync('/proc')
     .filter((name) => /^\d+$/.test(name))
-    .filter((name) => {
-      try {
-        // The fourth field, after a name in brackets: proc(5).
-        return Number(readFileSync(`/proc/${name}/stat`, 'utf8').split(') ').at(-1)?.split(' ')[1]) === pid
-      } catch {
-        return false
-      }
-    })
     .map(Number)
+    .filter((child) => unlessEnded(() => parentOf(child)) === pid)
 }
+
+/** The fourth field, after a name in brackets: proc(5). */
+const parentOf = (pid: number): number =>
+  Number(readFileSync(`/proc/${pid}/stat`, 'utf8').split(') ').at(-1)?.split(' ')[1])

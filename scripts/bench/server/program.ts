@@ -63,7 +63,10 @@ export class Program {
     const ended = this.#end.then((how): never => {
       throw new Error(`A program of the bench ${how}.\n${this.#lines.join('\n')}`)
     })
-    return Promise.race([found, ended])
+    const said = Promise.race([found, ended])
+    // Whoever fails before waiting for it says why: that all programs are then stopped is not the reason.
+    said.catch(() => undefined)
+    return said
   }
 
   async ended(): Promise<void> {
