@@ -4,9 +4,17 @@ import { AgentSessionSchema } from './agent-session'
 import { AgentStateSchema } from './agent-state'
 import { ApiTokenSchema } from './api-token'
 import { AuditEntrySchema } from './audit-entry'
+import { CallOrderSchema } from './call-order'
+import { ChannelSchema } from './channel'
 import { ControlSchema } from './control'
+import { DeliveryAttemptSchema } from './delivery-attempt'
+import { IncidentSchema } from './incident'
+import { IncidentEntrySchema } from './incident-entry'
+import { IncidentFileSchema } from './incident-file'
 import { JoiningCodeSchema } from './joining-code'
+import { MaintenanceWindowSchema } from './maintenance-window'
 import { MembershipSchema } from './membership'
+import { OutboxMessageSchema } from './outbox-message'
 import { OverlaySchema } from './overlay'
 import { OverlayEventSchema } from './overlay-event'
 import { OverlayKeySchema } from './overlay-key'
@@ -15,9 +23,13 @@ import { PasswordLinkSchema } from './password-link'
 import { ReadingSchema } from './reading'
 import { SessionSchema } from './session'
 import { ShutAgentSchema } from './shut-agent'
+import { StandInSchema } from './stand-in'
 import { TeamSchema } from './team'
+import { TurnSchema } from './turn'
 import { UpgradeOfferSchema } from './upgrade-offer'
 import { UserSchema } from './user'
+import { WarningRuleSchema } from './warning-rule'
+import { WebhookSchema } from './webhook'
 
 export * from './agent'
 export * from './agent-release'
@@ -25,9 +37,17 @@ export * from './agent-session'
 export * from './agent-state'
 export * from './api-token'
 export * from './audit-entry'
+export * from './call-order'
+export * from './channel'
 export * from './control'
+export * from './delivery-attempt'
+export * from './incident'
+export * from './incident-entry'
+export * from './incident-file'
 export * from './joining-code'
+export * from './maintenance-window'
 export * from './membership'
+export * from './outbox-message'
 export * from './overlay'
 export * from './overlay-event'
 export * from './overlay-key'
@@ -36,9 +56,13 @@ export * from './password-link'
 export * from './reading'
 export * from './session'
 export * from './shut-agent'
+export * from './stand-in'
 export * from './team'
+export * from './turn'
 export * from './upgrade-offer'
 export * from './user'
+export * from './warning-rule'
+export * from './webhook'
 
 export const entities = [
   AgentSchema,
@@ -47,9 +71,17 @@ export const entities = [
   AgentStateSchema,
   ApiTokenSchema,
   AuditEntrySchema,
+  CallOrderSchema,
+  ChannelSchema,
   ControlSchema,
+  DeliveryAttemptSchema,
+  IncidentSchema,
+  IncidentEntrySchema,
+  IncidentFileSchema,
   JoiningCodeSchema,
+  MaintenanceWindowSchema,
   MembershipSchema,
+  OutboxMessageSchema,
   OverlaySchema,
   OverlayEventSchema,
   OverlayKeySchema,
@@ -58,7 +90,11 @@ export const entities = [
   ReadingSchema,
   SessionSchema,
   ShutAgentSchema,
+  StandInSchema,
   TeamSchema,
+  TurnSchema,
   UpgradeOfferSchema,
   UserSchema,
+  WarningRuleSchema,
+  WebhookSchema,
 ]

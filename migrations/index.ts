@@ -7,6 +7,7 @@ import { AgentsInService20261206 } from './migration-2026-12-06-agents-in-servic
 import { ReadingsForYears20261207 } from './migration-2026-12-07-readings-for-years'
 import { NodeSnapshots20261208 } from './migration-2026-12-08-node-snapshots'
 import { PlainReports20261209 } from './migration-2026-12-09-plain-reports'
+import { Warnings20261210 } from './migration-2026-12-10-warnings'
 
 /** In order; a migration that has landed is never edited. */
 export const migrations = [
@@ -19,4 +20,5 @@ export const migrations = [
   { name: '2026-12-07-readings-for-years', class: ReadingsForYears20261207 },
   { name: '2026-12-08-node-snapshots', class: NodeSnapshots20261208 },
   { name: '2026-12-09-plain-reports', class: PlainReports20261209 },
+  { name: '2026-12-10-warnings', class: Warnings20261210 },
 ]
