@@ -3,6 +3,7 @@
 import { useState } from 'react'
 import useSWR from 'swr'
 import { z } from 'zod'
+import { deliveriesSchema } from '@/lib/data/delivery-dto'
 import {
   cutSchema,
   eventsSchema,
@@ -17,7 +18,7 @@ import {
   upgradesSchema,
 } from '@/lib/data/dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
-import { AGENT_FILE_URL, overlayUrls } from '@/lib/face/urls'
+import { AGENT_FILE_URL, deliveriesUrl, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
 import { POLL_MS, useStreaming } from './live-provider'
 
@@ -112,6 +113,15 @@ export function useUpgrades(slug: string) {
 export function useSigningKey(slug: string | null) {
   const url = slug === null ? null : overlayUrls(slug).signingKey
   return useLive(url, () => getJson(url ?? '', signingKeySchema), { streamingMs: UPKEEP_MS })
+}
+
+/** Attempts come and go between what the stream tells of. */
+const DELIVERIES_MS = 5_000
+
+/** Of a team, or of one of its incidents. */
+export function useDeliveries(of: { team?: string; incident?: string }) {
+  const url = deliveriesUrl(of)
+  return useLive(url, () => getJson(url, deliveriesSchema), { streamingMs: DELIVERIES_MS })
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

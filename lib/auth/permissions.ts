@@ -78,6 +78,11 @@ export const PERMISSIONS = {
   'upgrade.halt': writes('operator', 'write'),
   'signing-key.read': reads('operator', 'read'),
   'signing-key.rotate': writes('owner', 'write'),
+  'channel.test': { who: 'signed-in', role: null, tokenScope: null, audit: true },
+  'webhook.test': writes('owner', 'write'),
+  'delivery.list': reads('viewer', 'read'),
+  'delivery.retry': writes('operator', 'write'),
+  'kept-message.list': { who: 'signed-in', role: null, tokenScope: null, audit: false },
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -3,7 +3,9 @@ import 'server-only'
 
 export { readmitAgent, retireAgent, revokeAgent } from './agents'
 export { AUDIT_PAGE_SIZE, type AuditFilter, type AuditPage, auditFilterSchema, listAudit } from './audit'
+export { listDeliveries, retryDelivery } from './deliveries'
 export { createJoiningCode, listJoiningCodes, revokeJoiningCode } from './joining-codes'
+export { listKeptMessages } from './kept-messages'
 export {
   addMember,
   changeRole,
@@ -15,6 +17,7 @@ export {
 } from './members'
 export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } from './overlays'
 export { readPasswordLink, setPassword } from './password-links'
+export { testChannel, testWebhook } from './send-test'
 export { countAttempt, signIn, signOut } from './sign-in'
 export { getSigningKey, rotateSigningKey } from './signing-key'
 export { listTeams } from './teams'

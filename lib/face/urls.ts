@@ -17,3 +17,9 @@ export function overlayUrls(slug: string) {
 
 /** What this server says of the agent's file that it serves. */
 export const AGENT_FILE_URL = '/agent/thinspan-agent.json'
+
+/** What was sent, of a team or of one of its incidents. */
+export function deliveriesUrl(of: { team?: string; incident?: string }): string {
+  const query = new URLSearchParams(Object.entries(of).filter(([, value]) => value !== undefined)).toString()
+  return query === '' ? '/api/v1/deliveries' : `/api/v1/deliveries?${query}`
+}

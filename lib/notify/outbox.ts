@@ -39,13 +39,13 @@ export async function enqueue(em: EntityManager, messages: readonly NewMessage[]
   if (messages.length > 0) await notify(em, OUTBOX_CHANNEL, '')
 }
 
-/** Puts a message at the end of its line. */
+/** Puts a message at the end of its line. @returns its id */
 export async function put(
   em: EntityManager,
   message: Pick<NewMessage, 'kind' | 'body' | 'incidentId' | 'teamId'>,
   destination: Destination,
   now: Date,
-): Promise<void> {
+): Promise<string> {
   const { kind, body, incidentId, teamId } = message
   const { channelId, webhookId, quiet } = destination
   const line = lineOf(incidentId, channelId ?? webhookId ?? '')
@@ -59,12 +59,13 @@ export async function put(
       `update outbox set due_at = ? where line = ? and state = 'waiting' and tries = 0 and due_at > ?`,
       [now, line, now],
     )
-  await query(
+  const [row] = await query<{ id: string }>(
     em,
     `insert into outbox (line, sequence, incident_id, team_id, channel_id, webhook_id, kind, body, due_at, created_at)
-     select ?, coalesce(max(sequence), 0) + 1, ?, ?, ?, ?, ?, ?::jsonb, ?, ? from outbox where line = ?`,
+     select ?, coalesce(max(sequence), 0) + 1, ?, ?, ?, ?, ?, ?::jsonb, ?, ? from outbox where line = ? returning id`,
     [line, incidentId, teamId, channelId, webhookId, kind, JSON.stringify(body), dueAt, now, line],
   )
+  return row?.id ?? ''
 }
 
 /** Puts a message that has ended at the end of its line again, under the same key. In the caller's transaction. */

@@ -78,6 +78,11 @@ const ALLOWED: Record<ActionName, string[]> = {
   'upgrade.halt': ['operator', 'owner', 'write token'],
   'signing-key.read': ['operator', 'owner', 'read token', 'write token'],
   'signing-key.rotate': ['owner'],
+  'channel.test': signedIn,
+  'webhook.test': ['owner'],
+  'delivery.list': looking,
+  'delivery.retry': ['operator', 'owner', 'write token'],
+  'kept-message.list': signedIn,
   'user.create': [],
   'token.create': [],
 }
