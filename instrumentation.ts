@@ -12,4 +12,6 @@ export async function register(): Promise<void> {
   startJobs(processSignal())
   const { startSender } = await import('./lib/notify/process')
   startSender(processSignal())
+  const { startWatch } = await import('./lib/warn/process')
+  startWatch(processSignal())
 }

@@ -186,6 +186,25 @@ export class Warnings20261210 extends Migration {
         answer text,
         unique (message_id, number)
       );
+      -- Who is here already is told by mail, all operators and owners at once, of what the usual rules find.
+      insert into channels (user_id, kind, address, created_at) select id, 'email', email, now() from users;
+      insert into call_orders (team_id, name, steps, created_at)
+        select id, 'Operators and owners',
+          '[{"afterMinutes": 0, "operators": true, "turnIds": [], "userIds": [], "webhookIds": []}]', now() from teams;
+      insert into warning_rules (overlay_id, team_id, settings, severity, on_delay_seconds, clear_margin_percent,
+          off_delay_seconds, call_order_id, created_at, changed_at)
+        select o.id, o.team_id, given.settings::jsonb, given.severity, given.on_delay, given.margin, given.off_delay,
+          c.id, now(), now()
+        from overlays o join call_orders c on c.team_id = o.team_id cross join (values
+          ('{"kind": "split"}', 'urgent', 45, 0, 300),
+          ('{"kind": "few-links", "links": 2, "smallerSidePercent": 10}', 'urgent', 180, 50, 600),
+          ('{"kind": "floor", "floor": {"of": "usual", "percent": 60}}', 'warning', 300, 15, 600),
+          ('{"kind": "falling", "means": "hour", "windowHours": 24, "floor": {"of": "usual", "percent": 60},
+             "withinHours": 12, "probabilityPercent": 80}', 'warning', 300, 25, 3600),
+          ('{"kind": "unheard", "agents": 2}', 'warning', 600, 0, 300),
+          ('{"kind": "coverage", "percent": 90}', 'note', 900, 5, 600),
+          ('{"kind": "audit"}', 'warning', 300, 0, 600)
+        ) as given (settings, severity, on_delay, margin, off_delay);
       -- Signs of life of evaluating and sending, for the outbound heartbeat.
       create table watch_pulses (
         what text primary key,

@@ -21,6 +21,7 @@ import { route } from '@/lib/http/route'
 import { untilStorable } from '@/lib/http/start-server'
 import { startJobs } from '@/lib/jobs/process'
 import { startSender } from '@/lib/notify/process'
+import { startWatch } from '@/lib/warn/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
 // Beside a running `npm start` it needs no address.
@@ -55,6 +56,7 @@ await once(server, 'listening')
 const leader = startLeader(processSignal())
 const jobs = startJobs(processSignal())
 const sender = startSender(processSignal())
+const watch = startWatch(processSignal())
 const address = server.address()
 const listening = typeof address === 'object' && address ? address.port : port
 process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
@@ -67,6 +69,7 @@ server.closeIdleConnections()
 await getIngest().stop()
 await leader.stop()
 await jobs.stop()
+await watch.stop()
 await sender.stop()
 await closeDatabase()
 server.closeAllConnections()

@@ -28,6 +28,8 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'upgrade-offered': { word: 'upgrade', shape: 'hollow' },
   'upgrade-halted': { word: 'upgrade', shape: 'short' },
   'collector-away': { word: 'collector', shape: 'dashed' },
+  'incident-raised': { word: 'incident', shape: 'hollow' },
+  'incident-cleared': { word: 'incident', shape: 'full' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

@@ -360,6 +360,8 @@ export const EVENT_KINDS = [
   'upgrade-offered',
   'upgrade-halted',
   'collector-away',
+  'incident-raised',
+  'incident-cleared',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

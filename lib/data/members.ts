@@ -1,9 +1,19 @@
-import { ApiTokenSchema, type Membership, MembershipSchema, PasswordLinkSchema, UserSchema } from '@/entities'
+import {
+  ApiTokenSchema,
+  ChannelSchema,
+  type Membership,
+  MembershipSchema,
+  PasswordLinkSchema,
+  type User,
+  UserSchema,
+} from '@/entities'
 import type { Role } from '@/lib/auth/permissions'
 import { endUserSessions } from '@/lib/auth/session'
 import type { Member } from '@/lib/data/dto'
+import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
+import { ownMailbox } from './own-mailbox'
 import { issuePasswordLink } from './password-links'
 import { firstTeamOf, lockPerson, lockTeam, teamMeant } from './teams'
 
@@ -75,9 +85,7 @@ export async function addMember(
         errors: [{ path: 'email', message: 'This person is in the team already.' }],
       },
     )
-  const user =
-    known ??
-    em.create(UserSchema, { email: input.email, name: input.name, passwordHash: null, createdAt: now })
+  const user = known ?? newUser(em, input, now)
   em.create(MembershipSchema, { team: team.teamId, user, role: input.role, createdAt: now })
   await em.flush()
   const active = user.passwordHash != null
@@ -175,4 +183,10 @@ async function membershipsOf({ em }: Call, teamId: string): Promise<Membership[]
     { team: teamId },
     { populate: ['user'], orderBy: { user: { name: 'asc' } } },
   )
+}
+
+function newUser(em: EntityManager, { email, name }: { email: string; name: string }, now: Date): User {
+  const user = em.create(UserSchema, { email, name, passwordHash: null, createdAt: now })
+  em.create(ChannelSchema, ownMailbox(user, now))
+  return user
 }

@@ -7,6 +7,7 @@ import type { newOverlaySchema, Overlay as OverlayDto } from '@/lib/data/dto'
 import { sql } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
+import { createDefaultRules } from '@/lib/warn/defaults'
 import { callerTeams } from './teams'
 
 export async function listOverlays(call: Call): Promise<OverlayDto[]> {
@@ -66,6 +67,7 @@ export async function createOverlay(
       },
     )
   }
+  await createDefaultRules(call.em, { overlayId: overlay.id, teamId: team }, call.now)
   await call.em.populate(overlay, ['team'])
   const [dto] = await toDtos(call, [overlay])
   return dto!

@@ -1,4 +1,4 @@
-import { MembershipSchema, TeamSchema, type User, UserSchema } from '@/entities'
+import { ChannelSchema, MembershipSchema, TeamSchema, type User, UserSchema } from '@/entities'
 import type { CookieToSet } from '@/lib/auth/cookie'
 import { hashPassword } from '@/lib/auth/password'
 import type { Role } from '@/lib/auth/permissions'
@@ -6,6 +6,7 @@ import { createSession } from '@/lib/auth/session'
 import { type EntityManager, sql } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
+import { ownMailbox } from './own-mailbox'
 import { slugFrom } from './teams'
 
 export interface FirstRun {
@@ -68,6 +69,7 @@ async function addUser(
     createdAt: now,
   })
   em.create(MembershipSchema, { team: row, user, role, createdAt: now })
+  em.create(ChannelSchema, ownMailbox(user, now))
   await em.flush()
   return { user, teamId: row.id, teamSlug: row.slug }
 }

@@ -47,3 +47,9 @@ function isoDate(day: DateTime): string {
 }
 
 const dateOf = ({ year, month, day }: DateTime) => ({ year, month, day })
+
+/** The time of day in the zone. */
+export function timeIn(zone: string, atMs: number): Required<ClockTime> {
+  const { hour, minute } = DateTime.fromMillis(atMs, { zone })
+  return { hour, minute }
+}

@@ -6,6 +6,7 @@ import {
   TeamSchema,
   type User,
   UserSchema,
+  WarningRuleSchema,
 } from '@/entities'
 import { userCaller } from '@/lib/auth/authenticate'
 import type { Caller } from '@/lib/auth/caller'
@@ -99,7 +100,14 @@ async function ensureOverlay(runtime: Runtime): Promise<{ id: string; slug: stri
   const input = newOverlaySchema.parse({ ...OVERLAY, slug, team: team.slug })
   await as(runtime, 'overlay.create', await anOwner(em), async (call) => {
     await createOverlay(call, input)
-    await call.em.nativeUpdate(OverlaySchema, { slug }, { demo: true })
+    const { id } = await call.em.findOneOrFail(OverlaySchema, { slug })
+    await call.em.nativeUpdate(OverlaySchema, { id }, { demo: true })
+    // Its story is told in minutes.
+    await call.em.nativeUpdate(
+      WarningRuleSchema,
+      { overlay: id },
+      { onDelaySeconds: 30, offDelaySeconds: 60 },
+    )
   })
   return em.findOneOrFail(OverlaySchema, { slug })
 }
