@@ -2,13 +2,17 @@ import { once } from 'node:events'
 import { createServer } from 'node:http'
 import pg from 'pg'
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import type { Clock } from '@/lib/collector/clock'
+import { systemClock } from '@/lib/collector/process'
 import { sql } from '@/lib/db'
+import { SENDER_LIMITS } from '@/lib/notify/sender'
 import { WebhookWay } from '@/lib/notify/webhook'
 import { REPEAT_SENTENCE } from '@/lib/notify/wording'
 import { startFakeSmtp } from '@/scripts/fakes/index'
 import { portOf } from '@/scripts/fakes/port-of'
 import { freePort } from '../support/free-port'
 import { PostOffice } from '../support/post-office'
+import { CollectorProcess } from '../support/processes/collector-process'
 import { until } from '../support/until'
 
 let office: PostOffice
@@ -262,6 +266,37 @@ describe('a sender', () => {
       true,
       false,
     ])
+    expect(
+      bodiesSaid()
+        .map(({ type, data }) => [type, data.repeat ?? null])
+        .reverse(),
+    ).toEqual([
+      ['incident.raised', null],
+      ['incident.raised', REPEAT_SENTENCE],
+      ['incident.cleared', null],
+    ])
+  })
+
+  it('that is killed after a message has left leaves one repeat, which says so, to another process', async () => {
+    const webhookId = await office.webhook()
+    const body = await office.incident()
+    await office.enqueue(body, 'raised', { webhookId })
+    await office.enqueue(body, 'cleared', { webhookId })
+    await sql(office.em(), 'update outbox set due_at = to_timestamp(0)')
+    const collector = new CollectorProcess(office.database.url, { THINSPAN_FAKES_URL: office.http.url })
+    office.answer = async () => {
+      // Dead before it hears that the message was taken.
+      if (collector.child.ended !== null) return false
+      collector.child.signal('SIGKILL')
+      await collector.child.end
+      return false
+    }
+    await until(() => collector.child.ended !== null, { explain: () => collector.child.tail() })
+    // Another process looks once the lease is over.
+    const later: Clock = { ...systemClock, epochMs: () => Date.now() + SENDER_LIMITS.leaseMs + 1_000 }
+    office.sender({ clock: later })
+    await until(async () => (await office.rows()).every(({ state }) => state === 'sent'))
+    expect((await office.rows()).map(({ outcomes }) => outcomes)).toEqual([['unknown', 'sent'], ['sent']])
     expect(
       bodiesSaid()
         .map(({ type, data }) => [type, data.repeat ?? null])
