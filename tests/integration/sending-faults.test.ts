@@ -1,5 +1,7 @@
 import { once } from 'node:events'
 import { createServer } from 'node:http'
+import { createServer as createSocketServer } from 'node:net'
+import { createInterface } from 'node:readline'
 import pg from 'pg'
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
 import type { Clock } from '@/lib/collector/clock'
@@ -60,6 +62,41 @@ describe('a mail server that is down for an hour', () => {
       expect(mails.some(({ text }) => text.includes(REPEAT_SENTENCE))).toBe(false)
     }
     expect(office.clock.epochMs() - startMs).toBe(69 * MINUTE_MS)
+  })
+})
+
+describe('a mail server that goes away once it has the mail', () => {
+  it('may have taken it: the next mail says so, under the same id', async () => {
+    let isGoing = true
+    const said: string[] = []
+    const server = createSocketServer((socket) => {
+      socket.write('220 harbour mail\r\n')
+      let mail: string | null = null
+      createInterface({ input: socket }).on('line', (line) => {
+        if (mail === null) {
+          const isData = line === 'DATA'
+          if (isData) mail = ''
+          socket.write(isData ? '354 go on\r\n' : '250 fine\r\n')
+        } else if (line === '.') {
+          said.push(mail)
+          mail = null
+          if (isGoing) socket.destroy()
+          else socket.write('250 taken\r\n')
+          isGoing = false
+        } else mail += `${line}\n`
+      })
+    })
+    server.listen(0, '127.0.0.1')
+    await once(server, 'listening')
+    await office.channel('email', 'owner@harbourline.example')
+    office.sender({ settings: { THINSPAN_SMTP_URL: `smtp://127.0.0.1:${portOf(server)}` } })
+    await office.enqueue(await office.incident('urgent'), 'raised')
+    await office.pass(11_000)
+    server.close()
+    const [row] = await office.rows()
+    expect([row?.state, row?.outcomes]).toEqual(['sent', ['unknown', 'sent']])
+    expect(said.map((mail) => mail.includes('This may be a repeat'))).toEqual([false, true])
+    expect(said.every((mail) => mail.includes(`Message-ID: <${row?.id}@harbourline.example>`))).toBe(true)
   })
 })
 
