@@ -19,13 +19,7 @@ export function KeptMessages({ kept: { mails, texts, calls } }: { kept: Kept }) 
             </p>
             <Text>{mail.text}</Text>
             <Folded what="its HTML">
-              {/* Without scripts, forms, addresses or this page's cookies. */}
-              <iframe
-                title={`HTML of ${mail.subject}`}
-                sandbox=""
-                srcDoc={mail.html}
-                className="h-96 w-full bg-white"
-              />
+              <Text>{mail.html}</Text>
             </Folded>
           </article>
         ))}

@@ -132,7 +132,7 @@ export class Sender {
   /** Something is under way for longer than anything may be: the other limits do not hold. */
   #isStuck(): boolean {
     const nowMs = this.#components.clock.monotonicMs()
-    return [...this.#underWay].some(({ startedAtMs }) => nowMs - startedAtMs > this.#limits.leaseMs)
+    return [...this.#underWay].some(({ startedAtMs }) => nowMs - startedAtMs >= this.#limits.leaseMs)
   }
 
   async #takeOne(way: WayKind): Promise<boolean> {

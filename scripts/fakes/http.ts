@@ -63,7 +63,7 @@ export async function startFakeHttp(
       return refusal(400, 21211, "The 'To' number is not valid.")
     const text = form.get('Body') ?? ''
     keep(kept.texts, { at: now().toISOString(), from: form.get('From') ?? '', to, text })
-    const sid = `SMstandin${String(kept.texts.length).padStart(25, '0')}`
+    const sid = `SMkept${kept.texts.length}`
     const status = 'kept on this machine: nobody was sent anything'
     return { status: 201, value: { sid, account_sid: accountSid, status, to, body: text } }
   }

@@ -75,9 +75,10 @@ describe('quiet hours', () => {
     const body = await office.incident('warning')
     await office.enqueue(body, 'raised')
     await office.enqueue({ ...body, incident: { ...body.incident!, severity: 'urgent' } }, 'graver')
+    const now = office.now().toISOString().replace('.000Z', 'Z')
     expect((await office.rows()).map(({ kind, due_at }) => [kind, due_at])).toEqual([
-      ['raised', '2026-12-02T04:00:00Z'],
-      ['graver', '2026-12-02T04:00:00Z'],
+      ['raised', now],
+      ['graver', now],
     ])
   })
 })

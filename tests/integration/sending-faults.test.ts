@@ -1,14 +1,20 @@
 import { once } from 'node:events'
 import { createServer } from 'node:http'
+import { createServer as createSocketServer } from 'node:net'
+import { createInterface } from 'node:readline'
 import pg from 'pg'
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
+import type { Clock } from '@/lib/collector/clock'
+import { systemClock } from '@/lib/collector/process'
 import { sql } from '@/lib/db'
+import { SENDER_LIMITS } from '@/lib/notify/sender'
 import { WebhookWay } from '@/lib/notify/webhook'
 import { REPEAT_SENTENCE } from '@/lib/notify/wording'
 import { startFakeSmtp } from '@/scripts/fakes/index'
 import { portOf } from '@/scripts/fakes/port-of'
 import { freePort } from '../support/free-port'
 import { PostOffice } from '../support/post-office'
+import { CollectorProcess } from '../support/processes/collector-process'
 import { until } from '../support/until'
 
 let office: PostOffice
@@ -56,6 +62,41 @@ describe('a mail server that is down for an hour', () => {
       expect(mails.some(({ text }) => text.includes(REPEAT_SENTENCE))).toBe(false)
     }
     expect(office.clock.epochMs() - startMs).toBe(69 * MINUTE_MS)
+  })
+})
+
+describe('a mail server that goes away once it has the mail', () => {
+  it('may have taken it: the next mail says so, under the same id', async () => {
+    let isGoing = true
+    const said: string[] = []
+    const server = createSocketServer((socket) => {
+      socket.write('220 harbour mail\r\n')
+      let mail: string | null = null
+      createInterface({ input: socket }).on('line', (line) => {
+        if (mail === null) {
+          const isData = line === 'DATA'
+          if (isData) mail = ''
+          socket.write(isData ? '354 go on\r\n' : '250 fine\r\n')
+        } else if (line === '.') {
+          said.push(mail)
+          mail = null
+          if (isGoing) socket.destroy()
+          else socket.write('250 taken\r\n')
+          isGoing = false
+        } else mail += `${line}\n`
+      })
+    })
+    server.listen(0, '127.0.0.1')
+    await once(server, 'listening')
+    await office.channel('email', 'owner@harbourline.example')
+    office.sender({ settings: { THINSPAN_SMTP_URL: `smtp://127.0.0.1:${portOf(server)}` } })
+    await office.enqueue(await office.incident('urgent'), 'raised')
+    await office.pass(11_000)
+    server.close()
+    const [row] = await office.rows()
+    expect([row?.state, row?.outcomes]).toEqual(['sent', ['unknown', 'sent']])
+    expect(said.map((mail) => mail.includes('This may be a repeat'))).toEqual([false, true])
+    expect(said.every((mail) => mail.includes(`Message-ID: <${row?.id}@harbourline.example>`))).toBe(true)
   })
 })
 
@@ -262,6 +303,37 @@ describe('a sender', () => {
       true,
       false,
     ])
+    expect(
+      bodiesSaid()
+        .map(({ type, data }) => [type, data.repeat ?? null])
+        .reverse(),
+    ).toEqual([
+      ['incident.raised', null],
+      ['incident.raised', REPEAT_SENTENCE],
+      ['incident.cleared', null],
+    ])
+  })
+
+  it('that is killed after a message has left leaves one repeat, which says so, to another process', async () => {
+    const webhookId = await office.webhook()
+    const body = await office.incident()
+    await office.enqueue(body, 'raised', { webhookId })
+    await office.enqueue(body, 'cleared', { webhookId })
+    await sql(office.em(), 'update outbox set due_at = to_timestamp(0)')
+    const collector = new CollectorProcess(office.database.url, { THINSPAN_FAKES_URL: office.http.url })
+    office.answer = async () => {
+      // Dead before it hears that the message was taken.
+      if (collector.child.ended !== null) return false
+      collector.child.signal('SIGKILL')
+      await collector.child.end
+      return false
+    }
+    await until(() => collector.child.ended !== null, { explain: () => collector.child.tail() })
+    // Another process looks once the lease is over.
+    const later: Clock = { ...systemClock, epochMs: () => Date.now() + SENDER_LIMITS.leaseMs + 1_000 }
+    office.sender({ clock: later })
+    await until(async () => (await office.rows()).every(({ state }) => state === 'sent'))
+    expect((await office.rows()).map(({ outcomes }) => outcomes)).toEqual([['unknown', 'sent'], ['sent']])
     expect(
       bodiesSaid()
         .map(({ type, data }) => [type, data.repeat ?? null])
