@@ -78,6 +78,13 @@ export const PERMISSIONS = {
   'upgrade.halt': writes('operator', 'write'),
   'signing-key.read': reads('operator', 'read'),
   'signing-key.rotate': writes('owner', 'write'),
+  'channel.list': { who: 'signed-in', role: null, tokenScope: null, audit: false },
+  'channel.change': { who: 'signed-in', role: null, tokenScope: null, audit: true },
+  'turn.list': reads('viewer', 'read'),
+  'turn.change': writes('operator', 'write'),
+  'call-order.change': writes('operator', 'write'),
+  'webhook.list': reads('operator', 'read'),
+  'webhook.change': writes('owner', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

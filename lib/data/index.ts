@@ -3,6 +3,8 @@ import 'server-only'
 
 export { readmitAgent, retireAgent, revokeAgent } from './agents'
 export { AUDIT_PAGE_SIZE, type AuditFilter, type AuditPage, auditFilterSchema, listAudit } from './audit'
+export { changeCallOrder, createCallOrder, removeCallOrder } from './call-orders'
+export { addChannel, changeChannel, listChannels, removeChannel } from './channels'
 export { createJoiningCode, listJoiningCodes, revokeJoiningCode } from './joining-codes'
 export {
   addMember,
@@ -18,5 +20,8 @@ export { readPasswordLink, setPassword } from './password-links'
 export { countAttempt, signIn, signOut } from './sign-in'
 export { getSigningKey, rotateSigningKey } from './signing-key'
 export { listTeams } from './teams'
+export { getTelling } from './telling'
+export { addStandIn, changeTurn, createTurn, removeStandIn, removeTurn } from './turns'
 export { getUpgrades, haltUpgrade, offerUpgrade } from './upgrades'
 export { firstRun, isFirstRun } from './users'
+export { addWebhook, enableWebhook, listWebhooks, removeWebhook, rotateWebhook } from './webhooks'

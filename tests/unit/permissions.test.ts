@@ -78,6 +78,13 @@ const ALLOWED: Record<ActionName, string[]> = {
   'upgrade.halt': ['operator', 'owner', 'write token'],
   'signing-key.read': ['operator', 'owner', 'read token', 'write token'],
   'signing-key.rotate': ['owner'],
+  'channel.list': signedIn,
+  'channel.change': signedIn,
+  'turn.list': looking,
+  'turn.change': ['operator', 'owner', 'write token'],
+  'call-order.change': ['operator', 'owner', 'write token'],
+  'webhook.list': ['operator', 'owner', 'read token', 'write token'],
+  'webhook.change': ['owner'],
   'user.create': [],
   'token.create': [],
 }
