@@ -13,7 +13,7 @@ export const WebhookSchema = defineEntity({
     /** "whsec_" and the base64 of the key, as Standard Webhooks 1.0 has it. */
     secret: p.text().hidden(),
     /** Signs beside the new one until then. */
-    previousSecret: p.text().nullable().hidden(),
+    previousSecret: p.text().nullable(),
     previousUntil: p.datetime().nullable(),
     disabledAt: p.datetime().nullable(),
     disabledBecause: p.text().nullable(),

@@ -83,6 +83,13 @@ export const PERMISSIONS = {
   'delivery.list': reads('viewer', 'read'),
   'delivery.retry': writes('operator', 'write'),
   'kept-message.list': { who: 'signed-in', role: null, tokenScope: null, audit: false },
+  'channel.list': { who: 'signed-in', role: null, tokenScope: null, audit: false },
+  'channel.change': { who: 'signed-in', role: null, tokenScope: null, audit: true },
+  'turn.list': reads('viewer', 'read'),
+  'turn.change': writes('operator', 'write'),
+  'call-order.change': writes('operator', 'write'),
+  'webhook.list': reads('operator', 'read'),
+  'webhook.change': writes('owner', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -5,6 +5,11 @@ export function newSecret(): string {
   return randomBytes(32).toString('base64url')
 }
 
+/** Standard Webhooks 1.0: "whsec_" and the base64 of 24 to 64 bytes (from memory). */
+export function newWebhookSecret(): string {
+  return `whsec_${randomBytes(32).toString('base64')}`
+}
+
 export function sha256Hex(text: string): string {
   return createHash('sha256').update(text).digest('hex')
 }

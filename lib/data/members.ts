@@ -16,6 +16,7 @@ import { authorise, type Call } from '@/lib/http/call'
 import { ownMailbox } from './own-mailbox'
 import { issuePasswordLink } from './password-links'
 import { firstTeamOf, lockPerson, lockTeam, teamMeant } from './teams'
+import { leaveTelling } from './telling'
 
 export interface TeamMembers {
   team: { slug: string; name: string }
@@ -135,6 +136,7 @@ export async function removeMember(call: Call, memberId: string): Promise<{ name
     { team: team.id, createdBy: user.id, revokedAt: null },
     { revokedAt: call.now },
   )
+  await leaveTelling(call.em, { teamId: team.id, userId: user.id, now: call.now })
   const gaveLinks = (await firstTeamOf(call.em, user.id)) === team.id
   await call.em.removeAndFlush(membership)
   if (gaveLinks) await call.em.nativeDelete(PasswordLinkSchema, { user: user.id })

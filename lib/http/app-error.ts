@@ -32,6 +32,7 @@ export const ERRORS = {
   'already-member': { status: 409, title: 'Already in the team', retry: false },
   'last-owner': { status: 409, title: 'The team needs an owner', retry: false },
   'not-first-run': { status: 409, title: 'The server is already set up', retry: false },
+  'in-use': { status: 409, title: 'Something else uses it', retry: false },
   'name-taken': { status: 409, title: 'The name is taken', retry: false },
   'cloned-key': { status: 409, title: 'The key is in use by another program', retry: false },
   'rotation-running': { status: 409, title: 'A new signing key is on its way', retry: true },

@@ -83,6 +83,13 @@ const ALLOWED: Record<ActionName, string[]> = {
   'delivery.list': looking,
   'delivery.retry': ['operator', 'owner', 'write token'],
   'kept-message.list': signedIn,
+  'channel.list': signedIn,
+  'channel.change': signedIn,
+  'turn.list': looking,
+  'turn.change': ['operator', 'owner', 'write token'],
+  'call-order.change': ['operator', 'owner', 'write token'],
+  'webhook.list': ['operator', 'owner', 'read token', 'write token'],
+  'webhook.change': ['owner'],
   'user.create': [],
   'token.create': [],
 }

@@ -23,6 +23,10 @@ export const ACTION_WORDS: Record<string, string> = {
   'upgrade.offer': 'offered an upgrade',
   'upgrade.halt': 'halted an upgrade',
   'signing-key.rotate': 'replaced the signing key',
+  'channel.change': 'changed a channel of their own',
+  'turn.change': 'changed a turn',
+  'call-order.change': 'changed a call order',
+  'webhook.change': 'changed a webhook',
   'user.create': 'created a person (admin command)',
   'token.create': 'created a token (admin command)',
 }

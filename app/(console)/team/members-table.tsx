@@ -107,6 +107,7 @@ function actionsColumn(setShown: (shown: Shown) => void): Column<Member> {
             {member.email} loses access to all overlays of this team at once. The tokens {member.name} made
             for this team stop working and do not come back, even if {member.name} is added again.
           </p>
+          <p>{member.name} drops out of the team’s turns, stand-ins and call orders.</p>
           <p>What {member.name} did stays in the audit log.</p>
         </ConfirmDialog>
       </div>
