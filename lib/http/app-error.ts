@@ -36,6 +36,8 @@ export const ERRORS = {
   'cloned-key': { status: 409, title: 'The key is in use by another program', retry: false },
   'rotation-running': { status: 409, title: 'A new signing key is on its way', retry: true },
   'wrong-state': { status: 409, title: 'The node is not in a state for this', retry: false },
+  'incident-state': { status: 409, title: 'The incident is not in a state for this', retry: false },
+  'wrong-file': { status: 415, title: 'The file is of a kind that is not kept', retry: false },
   'has-password': { status: 409, title: 'The person has a password', retry: false },
   'other-team': { status: 409, title: 'Another team gives the link', retry: false },
   'link-spent': { status: 410, title: 'The link no longer works', retry: false },
