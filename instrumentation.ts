@@ -10,4 +10,6 @@ export async function register(): Promise<void> {
   startLeader(processSignal())
   const { startJobs } = await import('./lib/jobs/process')
   startJobs(processSignal())
+  const { startSender } = await import('./lib/notify/process')
+  startSender(processSignal())
 }

@@ -16,9 +16,12 @@ const config = {
     '@mikro-orm/postgresql',
     '@node-rs/argon2',
     'graphile-worker',
+    'nodemailer',
     'pg',
     'pino',
     'pino-pretty',
+    'standardwebhooks',
+    'twilio',
   ],
 }
 

@@ -25,6 +25,8 @@ export const OutboxMessageSchema = defineEntity({
     /** While it is being sent: after that whoever sends it is taken for gone. */
     leaseUntil: p.datetime().nullable(),
     attempts: p.integer().default(0),
+    /** Those since it was put in its line, by hand the last time: where it stands in the schedule. */
+    tries: p.integer().default(0),
     createdAt: p.datetime(),
     endedAt: p.datetime().nullable(),
   },

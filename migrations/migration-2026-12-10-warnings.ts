@@ -162,7 +162,9 @@ export class Warnings20261210 extends Migration {
         state text not null default 'waiting' check (state in ('waiting', 'sending', 'sent', 'failed', 'dropped')),
         due_at timestamptz not null,
         lease_until timestamptz,
+        -- All of them, and those since it was last put in its line: trying again by hand begins the schedule anew.
         attempts integer not null default 0,
+        tries integer not null default 0,
         created_at timestamptz not null,
         ended_at timestamptz,
         unique (line, sequence),

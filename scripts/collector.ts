@@ -20,6 +20,7 @@ import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { route } from '@/lib/http/route'
 import { untilStorable } from '@/lib/http/start-server'
 import { startJobs } from '@/lib/jobs/process'
+import { startSender } from '@/lib/notify/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
 // Beside a running `npm start` it needs no address.
@@ -53,6 +54,7 @@ server.listen(port, host)
 await once(server, 'listening')
 const leader = startLeader(processSignal())
 const jobs = startJobs(processSignal())
+const sender = startSender(processSignal())
 const address = server.address()
 const listening = typeof address === 'object' && address ? address.port : port
 process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
@@ -65,5 +67,6 @@ server.closeIdleConnections()
 await getIngest().stop()
 await leader.stop()
 await jobs.stop()
+await sender.stop()
 await closeDatabase()
 server.closeAllConnections()

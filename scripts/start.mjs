@@ -9,6 +9,7 @@ import { createChildren } from './lib/children.mjs'
 import { run } from './lib/commands.mjs'
 import { ensureDatabase, requireDatabase } from './lib/database.mjs'
 import { formatSignIns, parseDemoLine } from './lib/demo-lines.mjs'
+import { fakesEnv, fakesSentence, fakesWanted, parseFakesLine } from './lib/fakes.mjs'
 import { makeFolder, PASS_THROUGH, PRIVATE } from './lib/folders.mjs'
 import { ensureInstalled } from './lib/install.mjs'
 import { withLock } from './lib/lock.mjs'
@@ -88,6 +89,10 @@ async function main() {
   })
   await step('Agent file', () => ensureAgentFile(root))
 
+  const fakes = fakesWanted(env)
+  const hasFakes = fakes.mail || fakes.sms
+  if (hasFakes) Object.assign(childEnv, await startFakes({ step, children, childEnv }))
+
   const next = [nextProgram(root), 'start', '-H', host, '-p', String(port)]
   const web = children.start('web', next, { cwd: root, env: childEnv })
   await step('Web server', async () => {
@@ -103,6 +108,7 @@ async function main() {
   say(`\nThinspan is at ${shown} (after ${total()}).\n`)
   if (signIns.length > 0) say(`\nDemo sign-ins:\n${formatSignIns(signIns).join('\n')}\n`)
   else say('Open it in a browser: on a new server the first page creates the owner.\n')
+  if (hasFakes) say(`\n${fakesSentence(env, shown)}\n`)
   say(`\nStop with Ctrl-C. Data is in ${dataFolder}, logs are in ${logFolder}.\n`)
 
   const how = await Promise.race([web.end, aborted()])
@@ -140,6 +146,29 @@ async function watchDatabase(identity) {
     if (signal.aborted) return
   }
   stopping.abort(new Error('The database ended: see postgres.log beside its data, then start again.'))
+}
+
+/** Stand-ins for what is not set up; resolves to the variables that name them. */
+async function startFakes({ step, children, childEnv }) {
+  let said
+  await step('Stand-ins', async () => {
+    let markReady
+    const ready = new Promise((resolve) => {
+      markReady = resolve
+    })
+    const onLine = (line) => {
+      const parsed = parseFakesLine(line)
+      if (parsed) markReady(parsed)
+      return parsed !== null
+    }
+    const fakes = children.start('fakes', tsx('scripts/fakes.ts'), { cwd: root, env: childEnv, onLine })
+    said = await Promise.race([ready, fakes.end, aborted()])
+    signal.throwIfAborted()
+    if (typeof said === 'string')
+      throw new Error(`The stand-ins for mail and SMS ${said}. The end of their log:\n${fakes.logTail()}`)
+    return 'listening'
+  })
+  return fakesEnv(env, said)
 }
 
 async function startDemo({ step, note, children, childEnv }) {
