@@ -1,6 +1,6 @@
 import { createHash } from 'node:crypto'
 import { z } from 'zod'
-import { type IncidentFile, IncidentFileSchema } from '@/entities'
+import { IncidentFileSchema } from '@/entities'
 import { query } from '@/lib/collector/query'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
@@ -48,18 +48,23 @@ export async function attachFile(
   return toFile(file)
 }
 
-export async function readFile(
-  call: Call,
-  number: number,
-  id: string,
-): Promise<Pick<IncidentFile, 'name' | 'mediaType' | 'bytes' | 'sha256'>> {
+export interface ReadFile {
+  name: string
+  mediaType: string
+  bytes: Uint8Array
+}
+
+export async function readFile(call: Call, number: number, id: string): Promise<ReadFile> {
   const incident = await openIncident(call, 'incident.read', number)
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
-  const file = known
-    ? await call.em.findOne(IncidentFileSchema, { id, incident: incident.id }, { populate: ['bytes'] })
-    : null
+  const [file] = known
+    ? await query<ReadFile>(
+        call.em,
+        'select name, media_type as "mediaType", bytes from incident_files where id = ? and incident_id = ?',
+        [id, incident.id],
+      )
+    : []
   if (!file) throw new AppError('not-found', 'There is no such file. Load the incident again.')
-  const { name, mediaType, bytes, sha256 } = file
-  return { name, mediaType, bytes, sha256 }
+  return file
 }
