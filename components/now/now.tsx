@@ -7,6 +7,7 @@ import { Cautions } from './cautions'
 import { Coverage } from './coverage'
 import { CrossingSheet } from './crossing-sheet'
 import { NowHead } from './head'
+import { IncidentLines } from './incident-line'
 import { LastHourSheet } from './last-hour-sheet'
 import { StretchSheet } from './stretch-sheet'
 
@@ -17,6 +18,7 @@ export function Now({ slug }: { slug: string }) {
   const begun = !overlay.data || overlay.data.joined > 0 || (reading.data?.coverage.joined ?? 0) > 0
   return (
     <div className="space-y-5">
+      <IncidentLines slug={slug} />
       <NowHead slug={slug} />
       <Coverage slug={slug} />
       {overlay.data?.demo ? (

@@ -1,16 +1,8 @@
 import type { Incident } from '@/entities'
 import type { EntityManager } from '@/lib/db'
 import type { MessageBody, MessageKind } from '@/lib/notify/message'
-import { type Recipient, recipientsOf } from './incident-told'
-
-/** As the outbox takes it. */
-export interface NewMessage {
-  kind: MessageKind
-  body: MessageBody
-  incidentId: string | null
-  teamId: string
-  to: Recipient
-}
+import type { NewMessage } from '@/lib/notify/outbox'
+import { recipientsOf } from './incident-told'
 
 export interface IncidentComponents {
   /** Into the outbox, inside the caller's transaction. */

@@ -12,8 +12,25 @@ export function overlayUrls(slug: string) {
     codes: `${base}/joining-codes`,
     upgrades: `${base}/upgrades`,
     signingKey: `${base}/signing-key`,
+    incidents: `${base}/incidents`,
   }
 }
 
 /** What this server says of the agent's file that it serves. */
 export const AGENT_FILE_URL = '/agent/thinspan-agent.json'
+
+/** All of them begin so: what the event stream says is out of date is asked for again. */
+export const INCIDENTS_URL = '/api/v1/incidents'
+
+export function incidentUrls(number: number) {
+  const base = `${INCIDENTS_URL}/${number}`
+  const page = `/incidents/${number}`
+  return {
+    incident: base,
+    attach: (name: string) => `${base}/files?name=${encodeURIComponent(name)}`,
+    page,
+    file: (id: string) => `${page}/files/${encodeURIComponent(id)}`,
+    /** With times of the reader's zone beside those in UTC. */
+    report: (zone: string | null) => `${page}/report.pdf${zone ? `?zone=${encodeURIComponent(zone)}` : ''}`,
+  }
+}

@@ -12,10 +12,10 @@ import {
   takeIncident,
   unmuteIncident,
 } from '@/lib/data/incident-acts'
-import type { NewMessage } from '@/lib/data/incident-telling'
 import { getIncident, listIncidents } from '@/lib/data/incidents'
 import { incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { sql } from '@/lib/db'
+import type { NewMessage } from '@/lib/notify/outbox'
 import { ask, problemOf, seedOverlay } from '@/tests/support/collector'
 import { seedIncident, seedTold } from '@/tests/support/incidents'
 import { callAsUser, seedTeam } from '@/tests/support/people'
