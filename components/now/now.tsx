@@ -9,6 +9,7 @@ import { CrossingSheet } from './crossing-sheet'
 import { NowHead } from './head'
 import { IncidentLines } from './incident-line'
 import { LastHourSheet } from './last-hour-sheet'
+import { MonthReports } from './month-reports'
 import { StretchSheet } from './stretch-sheet'
 
 /** The first page of an overlay. What has nothing to show before the first agent is left out until then. */
@@ -35,6 +36,7 @@ export function Now({ slug }: { slug: string }) {
             <CrossingSheet slug={slug} />
             <LastHourSheet slug={slug} />
           </div>
+          <MonthReports slug={slug} />
         </>
       ) : null}
       <Cautions />

@@ -34,3 +34,7 @@ export function incidentUrls(number: number) {
     report: (zone: string | null) => `${page}/report.pdf${zone ? `?zone=${encodeURIComponent(zone)}` : ''}`,
   }
 }
+
+export function monthReportUrl(slug: string, month: string): string {
+  return `/overlays/${encodeURIComponent(slug)}/report.pdf?month=${month}`
+}
