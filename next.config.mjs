@@ -17,6 +17,7 @@ const config = {
     '@node-rs/argon2',
     'graphile-worker',
     'nodemailer',
+    'pdfkit',
     'pg',
     'pino',
     'pino-pretty',

@@ -17,8 +17,9 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
-import { AGENT_FILE_URL, deliveriesUrl, overlayUrls } from '@/lib/face/urls'
+import { AGENT_FILE_URL, deliveriesUrl, INCIDENTS_URL, incidentUrls, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
 import { POLL_MS, useStreaming } from './live-provider'
 
@@ -150,5 +151,40 @@ export function useHistory(slug: string, range: Range) {
       return { points: items, fromMs, toMs, stepSeconds, kept }
     },
     { streamingMs: refreshMs(range) },
+  )
+}
+
+/** Those of an overlay that are not resolved: one for each of the caller's teams at most. */
+export function useOpenIncidents(slug: string): Live<Incident[]> {
+  const url = overlayUrls(slug).incidents
+  return useLive(url, async () => (await getJson(`${url}?state=unresolved`, incidentsSchema)).items)
+}
+
+/** Of all the caller's teams: what is not resolved, or the newest of what is. */
+export function useIncidents(state: 'unresolved' | 'resolved', most: number) {
+  const url = `${INCIDENTS_URL}?state=${state}&limit=${most}`
+  return useLive(url, () => getJson(url, incidentsSchema), { pollMs: 10_000 })
+}
+
+export function useIncident(number: number) {
+  const url = incidentUrls(number).incident
+  return useLive(url, () => getJson(url, incidentWholeSchema), { streamingMs: 15_000 })
+}
+
+/** The drawing of a past moment, which does not change any more. */
+export function usePast(slug: string, at: string) {
+  const urls = overlayUrls(slug)
+  const query = `?at=${encodeURIComponent(at)}`
+  return useLive(
+    `${urls.nodes}${query}`,
+    async () => {
+      const [nodes, cut, reading] = await Promise.all([
+        getJson(`${urls.nodes}${query}&limit=1000`, nodesSchema),
+        getJson(`${urls.cut}${query}`, cutSchema),
+        getJson(`${urls.reading}${query}`, readingSchema),
+      ])
+      return { nodes: nodes.items, cut, reading }
+    },
+    { streamingMs: 0, pollMs: 0 },
   )
 }

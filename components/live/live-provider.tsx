@@ -3,7 +3,7 @@
 import { createContext, type ReactNode, useContext, useEffect, useState } from 'react'
 import { useSWRConfig } from 'swr'
 import { readingSchema } from '@/lib/data/dto'
-import { overlayUrls } from '@/lib/face/urls'
+import { INCIDENTS_URL, overlayUrls } from '@/lib/face/urls'
 import { keepEventSource } from './event-source'
 
 /** While the stream is down, pages ask at this interval instead. */
@@ -35,7 +35,8 @@ export function LiveProvider({ slug, children }: { slug: string; children: React
     const refreshLists = () => {
       listsDue ??= setTimeout(() => {
         listsDue = null
-        for (const url of [urls.nodes, urls.links, urls.cut]) void mutate(url)
+        for (const url of [urls.nodes, urls.links, urls.cut, urls.incidents]) void mutate(url)
+        void mutate((key) => typeof key === 'string' && key.startsWith(INCIDENTS_URL))
       }, LISTS_MS)
     }
     const onReading = (data: unknown) => {

@@ -7,7 +7,9 @@ import { Cautions } from './cautions'
 import { Coverage } from './coverage'
 import { CrossingSheet } from './crossing-sheet'
 import { NowHead } from './head'
+import { IncidentLines } from './incident-line'
 import { LastHourSheet } from './last-hour-sheet'
+import { MonthReports } from './month-reports'
 import { StretchSheet } from './stretch-sheet'
 
 /** The first page of an overlay. What has nothing to show before the first agent is left out until then. */
@@ -17,6 +19,7 @@ export function Now({ slug }: { slug: string }) {
   const begun = !overlay.data || overlay.data.joined > 0 || (reading.data?.coverage.joined ?? 0) > 0
   return (
     <div className="space-y-5">
+      <IncidentLines slug={slug} />
       <NowHead slug={slug} />
       <Coverage slug={slug} />
       {overlay.data?.demo ? (
@@ -33,6 +36,7 @@ export function Now({ slug }: { slug: string }) {
             <CrossingSheet slug={slug} />
             <LastHourSheet slug={slug} />
           </div>
+          <MonthReports slug={slug} />
         </>
       ) : null}
       <Cautions />

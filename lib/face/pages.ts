@@ -19,6 +19,7 @@ export function overlayPages(slug: string): PageEntry[] {
 
 export const OTHER_PAGES: readonly PageEntry[] = [
   { letter: null, label: 'Overlays', href: '/overlays' },
+  { letter: null, label: 'Incidents', href: '/incidents' },
   { letter: null, label: 'Telling', href: '/telling' },
   { letter: null, label: 'Team', href: '/team' },
   { letter: null, label: 'Audit', href: '/audit', operator: true },

@@ -12,6 +12,7 @@ export function overlayUrls(slug: string) {
     codes: `${base}/joining-codes`,
     upgrades: `${base}/upgrades`,
     signingKey: `${base}/signing-key`,
+    incidents: `${base}/incidents`,
   }
 }
 
@@ -22,4 +23,24 @@ export const AGENT_FILE_URL = '/agent/thinspan-agent.json'
 export function deliveriesUrl(of: { team?: string; incident?: string }): string {
   const query = new URLSearchParams(Object.entries(of).filter(([, value]) => value !== undefined)).toString()
   return query === '' ? '/api/v1/deliveries' : `/api/v1/deliveries?${query}`
+}
+
+/** All of them begin so: what the event stream says is out of date is asked for again. */
+export const INCIDENTS_URL = '/api/v1/incidents'
+
+export function incidentUrls(number: number) {
+  const base = `${INCIDENTS_URL}/${number}`
+  const page = `/incidents/${number}`
+  return {
+    incident: base,
+    attach: (name: string) => `${base}/files?name=${encodeURIComponent(name)}`,
+    page,
+    file: (id: string) => `${page}/files/${encodeURIComponent(id)}`,
+    /** With times of the reader's zone beside those in UTC. */
+    report: (zone: string | null) => `${page}/report.pdf${zone ? `?zone=${encodeURIComponent(zone)}` : ''}`,
+  }
+}
+
+export function monthReportUrl(slug: string, month: string): string {
+  return `/overlays/${encodeURIComponent(slug)}/report.pdf?month=${month}`
 }

@@ -38,6 +38,8 @@ export const ERRORS = {
   'rotation-running': { status: 409, title: 'A new signing key is on its way', retry: true },
   'wrong-state': { status: 409, title: 'The node is not in a state for this', retry: false },
   'not-failed': { status: 409, title: 'The message cannot be sent now', retry: false },
+  'incident-state': { status: 409, title: 'The incident is not in a state for this', retry: false },
+  'wrong-file': { status: 415, title: 'The file is of a kind that is not kept', retry: false },
   'has-password': { status: 409, title: 'The person has a password', retry: false },
   'other-team': { status: 409, title: 'Another team gives the link', retry: false },
   'link-spent': { status: 410, title: 'The link no longer works', retry: false },

@@ -6,7 +6,7 @@ import { type ActionName, permissionOf } from '@/lib/auth/permissions'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from './app-error'
 import { type Asked, askedOf, type PlainAnswer, responseOf } from './asked'
-import { readJson } from './body'
+import { BODY_MAX_BYTES, readJson } from './body'
 import type { Call } from './call'
 import { perform } from './perform'
 import { invalidInput, problemResponse } from './problem'
@@ -15,6 +15,8 @@ import { getRuntime } from './runtime'
 import { assertStorable } from './storable'
 import { BODY_ENCODING } from './unpack'
 
+const NO_BYTES = new Uint8Array()
+
 type Schema = z.ZodType | undefined
 type Output<S extends Schema> = S extends z.ZodType ? z.output<S> : undefined
 
@@ -22,6 +24,8 @@ export interface RouteInput<P extends Schema, Q extends Schema, B extends Schema
   params: Output<P>
   query: Output<Q>
   body: Output<B>
+  /** Empty unless the route takes its body raw. */
+  bytes: Uint8Array
   request: Asked
   facts: RequestFacts
 }
@@ -33,6 +37,8 @@ export interface RouteSpec<P extends Schema, Q extends Schema, B extends Schema>
   /** JSON body. */
   body?: B
   maxBytes?: number
+  /** The body is taken as it comes, up to `maxBytes`, and before a transaction begins: it may be large and slow. */
+  raw?: boolean
   /** Status of a plain result; default 200. */
   status?: number
   /** The call leaves its entity manager alone. */
@@ -84,6 +90,11 @@ export function route<
           renewed = result.renewed
           return result.caller
         },
+        before: spec.raw
+          ? async () => {
+              await parsed()
+            }
+          : undefined,
         run: async (call) => run(call, await parsed()),
       })
       const answer = value instanceof Response ? value : json(value, spec.status ?? 200)
@@ -125,6 +136,7 @@ async function parse<P extends Schema, Q extends Schema, B extends Schema>(
     params: spec.params && check(spec.params, storable(await context.params)),
     query: spec.query && check(spec.query, storable(Object.fromEntries(new URL(request.url).searchParams))),
     body: spec.body && check(spec.body, await readJson(request, spec.maxBytes)),
+    bytes: spec.raw ? await request.bytes(spec.maxBytes ?? BODY_MAX_BYTES) : NO_BYTES,
     request,
     facts,
   }

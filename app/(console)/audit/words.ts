@@ -27,6 +27,13 @@ export const ACTION_WORDS: Record<string, string> = {
   'turn.change': 'changed a turn',
   'call-order.change': 'changed a call order',
   'webhook.change': 'changed a webhook',
+  'incident.take': 'took an incident',
+  'incident.hand-over': 'handed an incident over',
+  'incident.note': 'noted something on an incident',
+  'incident.file': 'attached a file to an incident',
+  'incident.mute': 'muted an incident, or ended that',
+  'incident.resolve': 'resolved an incident',
+  'incident.reopen': 'reopened an incident',
   'user.create': 'created a person (admin command)',
   'token.create': 'created a token (admin command)',
 }
