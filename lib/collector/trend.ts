@@ -1,3 +1,5 @@
+import { median } from '@/lib/warn/stats/median'
+import { theilSen } from '@/lib/warn/stats/theil-sen'
 import type { Memory, Trend } from './memory'
 
 /** Long enough to tell a slope from noise, short enough to forget a change that is over. */
@@ -40,24 +42,6 @@ function changeOver(points: Recent): number {
   const first = points[0]!
   const last = points[points.length - 1]!
   return theilSen(points) * (last[0] - first[0])
-}
-
-/**
- * Median of the slopes of all pairs, per millisecond: up to 29 % of readings may be off without moving it
- * (P. K. Sen, J. Am. Stat. Assoc. 63, 1968; the figure from memory).
- */
-export function theilSen(points: Recent): number {
-  const slopes: number[] = []
-  points.forEach(([t1, v1], index) => {
-    for (const [t2, v2] of points.slice(index + 1)) if (t2 > t1) slopes.push((v2 - v1) / (t2 - t1))
-  })
-  return slopes.length === 0 ? 0 : median(slopes)
-}
-
-export function median(values: readonly number[]): number {
-  const sorted = [...values].sort((a, b) => a - b)
-  const middle = sorted.length >> 1
-  return sorted.length % 2 === 1 ? sorted[middle]! : (sorted[middle - 1]! + sorted[middle]!) / 2
 }
 
 function thin(recent: Recent): Recent {

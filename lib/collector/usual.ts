@@ -1,9 +1,9 @@
 import type { EntityManager } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
+import { median } from '@/lib/warn/stats/median'
 import type { Clock } from './clock'
 import type { Memory } from './memory'
 import { epochMs, query } from './query'
-import { median } from './trend'
 
 export const HOUR_MS = 3_600_000
 export const USUAL_LEAST_DAYS = 7

@@ -1,9 +1,9 @@
 import { type EventDraft, judge } from '@/lib/collector/judge'
 import { BLANK_MEMORY, type Memory } from '@/lib/collector/memory'
-import { median } from '@/lib/collector/trend'
 import { HOUR_MS, usualOf } from '@/lib/collector/usual'
 import type { Reading } from '@/lib/data/dto'
 import type { Random } from '@/lib/method/random'
+import { median } from '@/lib/warn/stats/median'
 import type { Phase, Sample } from './phases'
 
 /** Eight days, so that what is usual (seven days at the least) is known from the first minute. */
