@@ -51,6 +51,15 @@ export function CallOrderFields({ telling, order, state }: CallOrderFieldsProps)
             onChange={(event) => change(index, { ...step, afterMinutes: Number(event.target.value) })}
             error={fieldError(state, `steps.${index}.afterMinutes`)}
           />
+          <label className="mt-3 flex min-h-9 items-center gap-2">
+            <input
+              type="checkbox"
+              checked={step.operators ?? false}
+              onChange={() => change(index, { ...step, operators: !step.operators })}
+              className="size-4 accent-(--ink)"
+            />
+            All operators and owners
+          </label>
           <Several
             legend="Whoever has the turn"
             of="turnIds"

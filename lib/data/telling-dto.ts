@@ -87,7 +87,10 @@ export const newCallOrderSchema = z.object({
     .max(10, 'Use at most 10 steps.')
     .refine(
       (steps) =>
-        steps.every((step) => step.turnIds.length + step.userIds.length + step.webhookIds.length > 0),
+        steps.every(
+          ({ operators, turnIds, userIds, webhookIds }) =>
+            operators || turnIds.length + userIds.length + webhookIds.length > 0,
+        ),
       'Name somebody in each step, or remove it.',
     ),
 })

@@ -51,7 +51,8 @@ export function stepWho(telling: Telling, step: CallStep): string[] {
   const webhooks = telling.webhooks
     .filter(({ id }) => step.webhookIds.includes(id))
     .map(({ name }) => `the webhook “${name}”`)
-  const all = [...turns, ...people, ...webhooks]
+  const operators = step.operators ? ['all operators and owners'] : []
+  const all = [...turns, ...people, ...operators, ...webhooks]
   return all.length > 0 ? all : ['nobody']
 }
 

@@ -9,7 +9,7 @@ export const callStepSchema = z.object({
     .min(0)
     .max(24 * 60),
   /** All operators and owners of the team, whoever they are by then. */
-  operators: z.boolean().default(false),
+  operators: z.boolean().optional(),
   /** Whoever's turn it is. */
   turnIds: z.array(z.uuid()).max(20),
   userIds: z.array(z.uuid()).max(50),
