@@ -78,6 +78,9 @@ export const PERMISSIONS = {
   'upgrade.halt': writes('operator', 'write'),
   'signing-key.read': reads('operator', 'read'),
   'signing-key.rotate': writes('owner', 'write'),
+  'rule.list': reads('viewer', 'read'),
+  'rule.change': writes('operator', 'write'),
+  'window.change': writes('operator', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

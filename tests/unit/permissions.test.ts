@@ -78,6 +78,9 @@ const ALLOWED: Record<ActionName, string[]> = {
   'upgrade.halt': ['operator', 'owner', 'write token'],
   'signing-key.read': ['operator', 'owner', 'read token', 'write token'],
   'signing-key.rotate': ['owner'],
+  'rule.list': looking,
+  'rule.change': ['operator', 'owner', 'write token'],
+  'window.change': ['operator', 'owner', 'write token'],
   'user.create': [],
   'token.create': [],
 }
