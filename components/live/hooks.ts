@@ -16,6 +16,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
 import { AGENT_FILE_URL, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
@@ -112,6 +113,16 @@ export function useUpgrades(slug: string) {
 export function useSigningKey(slug: string | null) {
   const url = slug === null ? null : overlayUrls(slug).signingKey
   return useLive(url, () => getJson(url ?? '', signingKeySchema), { streamingMs: UPKEEP_MS })
+}
+
+export function useRules(slug: string) {
+  const url = overlayUrls(slug).rules
+  return useLive(url, () => getJson(url, warningRulesSchema), { streamingMs: UPKEEP_MS })
+}
+
+export function useWindows(slug: string) {
+  const url = overlayUrls(slug).windows
+  return useLive(url, async () => (await getJson(url, maintenanceWindowsSchema)).items)
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

@@ -32,7 +32,7 @@ export async function previewRule(
       clearedAt: clearedAtMs === null ? null : iso(clearedAtMs),
     })),
     unknownSeconds,
-    sentence: previewSentence(range, { spans, toMs, unknownSeconds, seconds: (toMs - fromMs) / 1000 }),
+    sentence: previewSentence(range, { spans, toMs, unknownSeconds, isKnown: steps.length > 0 }),
     notes: previewNotes(rule, {
       range,
       stepSeconds,

@@ -2,7 +2,7 @@ import { z } from 'zod'
 import { type MaintenanceWindow, MaintenanceWindowSchema, type Overlay, UserSchema } from '@/entities'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
-import { nextWindows, type Window } from '@/lib/warn/window'
+import { nextWindows, type WindowTimes } from '@/lib/warn/window'
 import { openOverlay } from './overlays'
 import type { MaintenanceWindowDto, NewWindow } from './rules-dto'
 
@@ -77,7 +77,7 @@ const mine = (overlay: Overlay) => ({ overlay: overlay.id, team: overlay.team.id
 /** As `isInWindow` takes it. */
 export function toWindow(
   row: Pick<MaintenanceWindow, 'startsAt' | 'endsAt' | 'repeats' | 'endedAt'>,
-): Window {
+): WindowTimes {
   return {
     startsAtMs: row.startsAt.getTime(),
     endsAtMs: row.endsAt.getTime(),

@@ -12,6 +12,9 @@ export function overlayUrls(slug: string) {
     codes: `${base}/joining-codes`,
     upgrades: `${base}/upgrades`,
     signingKey: `${base}/signing-key`,
+    rules: `${base}/rules`,
+    rulePreview: `${base}/rules/preview`,
+    windows: `${base}/windows`,
   }
 }
 

@@ -15,14 +15,14 @@ export interface PreviewFacts {
   spans: readonly { raisedAtMs: number; clearedAtMs: number | null }[]
   toMs: number
   unknownSeconds: number
-  seconds: number
+  /** Any of it. */
+  isKnown: boolean
 }
 
 /** "In the last 7 days it would have been raised twice, for 14 min in all; the longest time for 9 min." */
 export function previewSentence(range: PreviewRange, facts: PreviewFacts): string {
-  const { seconds, spans, toMs, unknownSeconds } = facts
-  if (unknownSeconds >= seconds)
-    return `No reading is known of the last ${LAST[range]}: there is nothing to try it on yet.`
+  const { isKnown, spans, toMs, unknownSeconds } = facts
+  if (!isKnown) return `No reading is known of the last ${LAST[range]}: there is nothing to try it on yet.`
   const lasted = spans.map(({ raisedAtMs, clearedAtMs }) => ((clearedAtMs ?? toMs) - raisedAtMs) / 1000)
   const total = lasted.reduce((sum, each) => sum + each, 0)
   const times = spans.length === 1 ? 'once' : spans.length === 2 ? 'twice' : `${spans.length} times`
