@@ -18,8 +18,8 @@ export class ApiError extends Error {
   }
 }
 
-export async function getJson<T>(path: string, schema: ZodType<T>): Promise<T> {
-  const response = await reach(path)
+export async function getJson<T>(path: string, schema: ZodType<T>, init?: RequestInit): Promise<T> {
+  const response = await reach(path, init)
   const body: unknown = await response.json().catch(() => null)
   if (!response.ok) throw refusal(response.status, body)
   const parsed = schema.safeParse(body)
@@ -27,6 +27,15 @@ export async function getJson<T>(path: string, schema: ZodType<T>): Promise<T> {
     throw new ApiError('unknown-shape', response.status, 'The page is older than the server. Load it again.')
   }
   return parsed.data
+}
+
+/** Asks with a body; changes nothing on the server. */
+export async function askJson<T>(path: string, body: unknown, schema: ZodType<T>): Promise<T> {
+  return getJson(path, schema, {
+    method: 'POST',
+    headers: { accept: 'application/json', 'content-type': 'application/json' },
+    body: JSON.stringify(body),
+  })
 }
 
 interface Paged<T> {
@@ -47,9 +56,9 @@ export async function getAll<T>(path: string, schema: ZodType<Paged<T>>): Promis
   return items
 }
 
-async function reach(path: string): Promise<Response> {
+async function reach(path: string, init?: RequestInit): Promise<Response> {
   try {
-    return await fetch(path, { headers: { accept: 'application/json' }, cache: 'no-store' })
+    return await fetch(path, { headers: { accept: 'application/json' }, cache: 'no-store', ...init })
   } catch {
     throw new ApiError('unreachable', null, 'The server cannot be reached.')
   }

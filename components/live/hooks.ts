@@ -17,6 +17,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
 import { AGENT_FILE_URL, deliveriesUrl, INCIDENTS_URL, incidentUrls, overlayUrls } from '@/lib/face/urls'
@@ -123,6 +124,16 @@ const DELIVERIES_MS = 5_000
 export function useDeliveries(of: { team?: string; incident?: string }) {
   const url = deliveriesUrl(of)
   return useLive(url, () => getJson(url, deliveriesSchema), { streamingMs: DELIVERIES_MS })
+}
+
+export function useRules(slug: string) {
+  const url = overlayUrls(slug).rules
+  return useLive(url, () => getJson(url, warningRulesSchema), { streamingMs: UPKEEP_MS })
+}
+
+export function useWindows(slug: string) {
+  const url = overlayUrls(slug).windows
+  return useLive(url, async () => (await getJson(url, maintenanceWindowsSchema)).items)
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

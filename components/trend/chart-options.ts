@@ -116,7 +116,7 @@ function across(u: uPlot, span: Span): { x: number; width: number } {
   return { x, width: clamp(span.to) - x }
 }
 
-function hatch(
+export function hatch(
   ctx: CanvasRenderingContext2D,
   box: { x: number; y: number; width: number; height: number },
   stroke: string,

@@ -99,6 +99,9 @@ export const PERMISSIONS = {
   'incident.mute': writes('operator', 'write'),
   'incident.resolve': writes('operator', 'write'),
   'incident.reopen': writes('operator', 'write'),
+  'rule.list': reads('viewer', 'read'),
+  'rule.change': writes('operator', 'write'),
+  'window.change': writes('operator', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -14,6 +14,7 @@ export function overlayPages(slug: string): PageEntry[] {
     { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
     { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
     { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'E', label: 'Warnings', href: `${base}/warnings` },
   ]
 }
 

@@ -13,6 +13,9 @@ export function overlayUrls(slug: string) {
     upgrades: `${base}/upgrades`,
     signingKey: `${base}/signing-key`,
     incidents: `${base}/incidents`,
+    rules: `${base}/rules`,
+    rulePreview: `${base}/rules/preview`,
+    windows: `${base}/windows`,
   }
 }
 

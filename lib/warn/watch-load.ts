@@ -11,7 +11,7 @@ import type { IncidentNow } from './incident-now'
 import type { Repeats } from './repeats'
 import type { RuleSettings, Severity } from './rule'
 import type { StandInSpan, WeeklyTurn } from './turns'
-import type { Window } from './window'
+import type { WindowTimes } from './window'
 
 /** Older readings than this are not gone through any more: what they would have raised is not news. */
 export const LOOK_BACK_MS = 60 * 60_000
@@ -206,7 +206,7 @@ export async function loadPeople(em: EntityManager, teamId: string): Promise<Tea
   }
 }
 
-export type WindowNow = Window & { reason: string; label: { key: string; value: string } | null }
+export type WindowNow = WindowTimes & { reason: string; label: { key: string; value: string } | null }
 
 export async function loadWindows(
   em: EntityManager,

@@ -12,19 +12,19 @@ export interface Span {
   endsAtMs: number
 }
 
-export interface Window extends Span {
+export interface WindowTimes extends Span {
   repeats: Repeats | null
   /** Ended by hand: from then on there is none. */
   endedAtMs: number | null
 }
 
 /** Ends are exclusive. */
-export function isInWindow(window: Window, atMs: number): boolean {
+export function isInWindow(window: WindowTimes, atMs: number): boolean {
   return nextWindows(window, atMs, 1).some(({ startsAtMs }) => startsAtMs <= atMs)
 }
 
 /** The first spans that end after a moment, the one under way first. */
-export function nextWindows(window: Window, afterMs: number, most: number): Span[] {
+export function nextWindows(window: WindowTimes, afterMs: number, most: number): Span[] {
   const { endedAtMs } = window
   const found: Span[] = []
   for (const span of spansFrom(window, afterMs)) {
@@ -36,7 +36,7 @@ export function nextWindows(window: Window, afterMs: number, most: number): Span
 }
 
 /** Without end where nothing ends it: whoever takes them stops. */
-function* spansFrom({ startsAtMs, endsAtMs, repeats }: Window, afterMs: number): Generator<Span> {
+function* spansFrom({ startsAtMs, endsAtMs, repeats }: WindowTimes, afterMs: number): Generator<Span> {
   yield { startsAtMs, endsAtMs }
   if (!repeats || repeats.weekdays.length === 0) return
   const { zone, until, weekdays } = repeats
@@ -45,11 +45,8 @@ function* spansFrom({ startsAtMs, endsAtMs, repeats }: Window, afterMs: number):
   const firstDay = addDays(dayIn(zone, startsAtMs), 1)
   // What began up to a day before its length ago may still last, whatever clocks were put to meanwhile.
   const earliest = addDays(dayIn(zone, afterMs - lastsMs), -1)
-  for (
-    let day = earliest > firstDay ? earliest : firstDay;
-    until === null || day <= until;
-    day = addDays(day, 1)
-  ) {
+  const [, from = firstDay] = [firstDay, earliest].sort()
+  for (let day = from; until === null || day <= until; day = addDays(day, 1)) {
     if (!weekdays.includes(weekdayOf(day))) continue
     const begins = momentOf(day, time, zone)
     yield { startsAtMs: begins, endsAtMs: begins + lastsMs }

@@ -99,6 +99,9 @@ const ALLOWED: Record<ActionName, string[]> = {
   'incident.mute': ['operator', 'owner', 'write token'],
   'incident.resolve': ['operator', 'owner', 'write token'],
   'incident.reopen': ['operator', 'owner', 'write token'],
+  'rule.list': looking,
+  'rule.change': ['operator', 'owner', 'write token'],
+  'window.change': ['operator', 'owner', 'write token'],
   'user.create': [],
   'token.create': [],
 }

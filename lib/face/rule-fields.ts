@@ -1,0 +1,126 @@
+import { RULE_KINDS, type Rule, type RuleKind, type RuleSettings, type Severity } from '@/lib/warn/rule'
+
+/** A rule as a form has it: every kind's fields side by side, delays in minutes. */
+export interface RuleFields {
+  kind: RuleKind
+  floorOf: 'usual' | 'value'
+  floorPercent: number
+  floorLambda2: number
+  links: number
+  smallerSidePercent: number
+  means: 'minute' | 'hour'
+  windowHours: number
+  withinHours: number
+  probabilityPercent: number
+  agents: number
+  coveragePercent: number
+  severity: Severity
+  onMinutes: number
+  clearMarginPercent: number
+  offMinutes: number
+  callOrderId: string
+}
+
+export const KIND_CHOICES: readonly { value: RuleKind; label: string }[] = [
+  { value: 'floor', label: 'The reading is under a floor' },
+  { value: 'few-links', label: 'Few links are left' },
+  { value: 'falling', label: 'The reading falls towards a floor' },
+  { value: 'split', label: 'Split, or to be treated as split' },
+  { value: 'unheard', label: 'Agents are unheard' },
+  { value: 'coverage', label: 'Too little is covered' },
+  { value: 'audit', label: 'Figures contradict each other' },
+]
+
+/** Longer than a node takes to restart: a link that comes back by itself wakes nobody. */
+export const DEFAULT_ON_MINUTES = 3
+
+const FIRST: RuleFields = {
+  kind: RULE_KINDS[0],
+  floorOf: 'usual',
+  floorPercent: 50,
+  floorLambda2: 0.5,
+  links: 2,
+  smallerSidePercent: 10,
+  means: 'minute',
+  windowHours: 6,
+  withinHours: 24,
+  probabilityPercent: 80,
+  agents: 3,
+  coveragePercent: 85,
+  severity: 'warning',
+  onMinutes: DEFAULT_ON_MINUTES,
+  clearMarginPercent: 10,
+  offMinutes: 10,
+  callOrderId: '',
+}
+
+/** @param usual what is usual; a new rule is by a value while it is not known */
+export function fieldsOf(rule: Rule | null, usual: number | null): RuleFields {
+  if (!rule) return { ...FIRST, floorOf: usual === null ? 'value' : 'usual' }
+  return {
+    ...FIRST,
+    ...ofSettings(rule.settings),
+    severity: rule.severity,
+    onMinutes: rule.onDelaySeconds / 60,
+    clearMarginPercent: rule.clearMarginPercent,
+    offMinutes: rule.offDelaySeconds / 60,
+    callOrderId: rule.callOrderId ?? '',
+  }
+}
+
+function ofSettings(settings: RuleSettings): Partial<RuleFields> {
+  const { kind } = settings
+  switch (settings.kind) {
+    case 'floor':
+      return { kind, ...ofFloor(settings.floor) }
+    case 'falling':
+      return { ...settings, ...ofFloor(settings.floor) }
+    case 'coverage':
+      return { kind, coveragePercent: settings.percent }
+    default:
+      return settings
+  }
+}
+
+function ofFloor(floor: Extract<RuleSettings, { kind: 'floor' }>['floor']): Partial<RuleFields> {
+  return floor.of === 'usual'
+    ? { floorOf: 'usual', floorPercent: floor.percent }
+    : { floorOf: 'value', floorLambda2: floor.lambda2 }
+}
+
+export function ruleOfFields(fields: RuleFields, isOn: boolean): Rule {
+  const { severity, onMinutes, offMinutes, clearMarginPercent, callOrderId } = fields
+  return {
+    settings: settingsOf(fields),
+    severity,
+    onDelaySeconds: Math.round(onMinutes * 60),
+    clearMarginPercent,
+    offDelaySeconds: Math.round(offMinutes * 60),
+    isOn,
+    callOrderId: callOrderId || null,
+  }
+}
+
+function settingsOf(fields: RuleFields): RuleSettings {
+  const { kind, links, smallerSidePercent, agents, coveragePercent } = fields
+  const floor =
+    fields.floorOf === 'usual'
+      ? { of: 'usual' as const, percent: fields.floorPercent }
+      : { of: 'value' as const, lambda2: fields.floorLambda2 }
+  switch (kind) {
+    case 'floor':
+      return { kind, floor }
+    case 'few-links':
+      return { kind, links, smallerSidePercent }
+    case 'falling': {
+      const { means, windowHours, withinHours, probabilityPercent } = fields
+      return { kind, means, windowHours, floor, withinHours, probabilityPercent }
+    }
+    case 'unheard':
+      return { kind, agents }
+    case 'coverage':
+      return { kind, percent: coveragePercent }
+    default:
+      return { kind }
+  }
+}
