@@ -196,13 +196,15 @@ export class Warnings20261210 extends Migration {
         select o.id, o.team_id, given.settings::jsonb, given.severity, given.on_delay, given.margin, given.off_delay,
           c.id, now(), now()
         from overlays o join call_orders c on c.team_id = o.team_id cross join (values
-          ('{"kind": "split"}', 'urgent', 45, 0, 300),
-          ('{"kind": "few-links", "links": 2, "smallerSidePercent": 10}', 'urgent', 180, 50, 600),
           ('{"kind": "floor", "floor": {"of": "usual", "percent": 60}}', 'warning', 300, 15, 600),
+          ('{"kind": "few-links", "links": 2, "smallerSidePercent": 10}', 'warning', 300, 15, 600),
           ('{"kind": "falling", "means": "hour", "windowHours": 24, "floor": {"of": "usual", "percent": 60},
-             "withinHours": 12, "probabilityPercent": 80}', 'warning', 300, 25, 3600),
-          ('{"kind": "unheard", "agents": 2}', 'warning', 600, 0, 300),
-          ('{"kind": "coverage", "percent": 90}', 'note', 900, 5, 600),
+             "withinHours": 12, "probabilityPercent": 80}', 'warning', 300, 15, 3600),
+          ('{"kind": "falling", "means": "minute", "windowHours": 3, "floor": {"of": "usual", "percent": 60},
+             "withinHours": 2, "probabilityPercent": 80}', 'warning', 300, 15, 1800),
+          ('{"kind": "split"}', 'urgent', 45, 0, 300),
+          ('{"kind": "unheard", "agents": 2}', 'warning', 600, 0, 600),
+          ('{"kind": "coverage", "percent": 90}', 'note', 900, 5, 900),
           ('{"kind": "audit"}', 'warning', 300, 0, 600)
         ) as given (settings, severity, on_delay, margin, off_delay);
       -- Signs of life of evaluating and sending, for the outbound heartbeat.

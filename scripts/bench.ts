@@ -4,6 +4,7 @@ import { benchCoverage } from './bench/coverage'
 import { benchIngest } from './bench/ingest'
 import { benchReading } from './bench/reading'
 import { benchScale } from './bench/scale'
+import { benchWarning } from './bench/warning'
 
 type Bench = (args: readonly string[], print: (line: string) => void) => void | Promise<void>
 
@@ -13,6 +14,7 @@ const BENCHES: Record<string, Bench> = {
   ingest: benchIngest,
   reading: benchReading,
   scale: benchScale,
+  warning: benchWarning,
 }
 
 const [name, ...args] = process.argv.slice(2)
