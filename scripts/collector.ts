@@ -14,7 +14,7 @@ import { POST as report } from '@/app/api/agent/report/route'
 import { POST as session } from '@/app/api/agent/session/route'
 import { createRouteServer } from '@/lib/collector/http-server'
 import { getIngest, startLeader } from '@/lib/collector/process'
-import { closeDatabase, sql } from '@/lib/db'
+import { closeDatabase, sql, switchOffIdleStorages } from '@/lib/db'
 import { authorise } from '@/lib/http/call'
 import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { route } from '@/lib/http/route'
@@ -24,6 +24,8 @@ import { startSender } from '@/lib/notify/process'
 import { startWatch } from '@/lib/warn/process'
 import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 
+// Or every promise would cost more from the first transaction on, and reports are taken in by many.
+switchOffIdleStorages()
 // Beside a running `npm start` it needs no address.
 process.env.DATABASE_URL ||=
   findOwnDatabase(dataFolderOf(process.env, resolve(import.meta.dirname, '..'))) ?? ''

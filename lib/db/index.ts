@@ -1,3 +1,4 @@
+export { switchOffIdleStorages } from './idle-storages'
 export { Listener, type ListenFunction } from './listener'
 export { acquireLock as acquireLockAt, type HeldLock, LockSession, type LockSettings, withLock } from './lock'
 export { migrate } from './migrate'
