@@ -1,23 +1,19 @@
 import { type NextRequest, NextResponse } from 'next/server'
 import { SESSION_COOKIE } from '@/lib/auth/cookie'
-import {
-  API_CONTENT_SECURITY_POLICY,
-  contentSecurityPolicy,
-  redirectFor,
-  securityHeaders,
-} from '@/lib/http/security-headers'
+import { contentSecurityPolicy, fixedPolicy, redirectFor, securityHeaders } from '@/lib/http/security-headers'
 
 /** Headers for everything, and a look at whether a cookie is there. Whether it is worth anything is checked later. */
 export function proxy(request: NextRequest): NextResponse {
   const { pathname, search } = request.nextUrl
   const secure = (request.headers.get('x-forwarded-proto') ?? request.nextUrl.protocol).startsWith('https')
   const target = redirectFor(pathname, search, request.cookies.has(SESSION_COOKIE))
-  const api = pathname.startsWith('/api/')
-  const policy = api
-    ? API_CONTENT_SECURITY_POLICY
-    : contentSecurityPolicy(btoa(crypto.randomUUID()), process.env.NODE_ENV === 'development')
+  const fixed = fixedPolicy(pathname)
+  const policy =
+    fixed ?? contentSecurityPolicy(btoa(crypto.randomUUID()), process.env.NODE_ENV === 'development')
   const response =
-    target === null ? pass(request, api ? null : policy) : NextResponse.redirect(new URL(target, request.url))
+    target === null
+      ? pass(request, fixed === null ? policy : null)
+      : NextResponse.redirect(new URL(target, request.url))
   response.headers.set('content-security-policy', policy)
   for (const [name, value] of Object.entries(securityHeaders(secure))) response.headers.set(name, value)
   return response

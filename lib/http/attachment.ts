@@ -1,5 +1,4 @@
-/** Runs nothing and reaches nothing, should a browser show it all the same. */
-export const ATTACHMENT_POLICY = "default-src 'none'; sandbox"
+import { ATTACHMENT_CONTENT_SECURITY_POLICY } from './security-headers'
 
 /** A file to be saved. The name is put twice, as RFC 6266 (appendix D) advises: in ASCII, and as it is (RFC 8187). */
 export function attachment(file: { name: string; mediaType: string; bytes: Uint8Array }): Response {
@@ -15,7 +14,7 @@ export function attachment(file: { name: string; mediaType: string; bytes: Uint8
       'content-type': type,
       'content-length': String(bytes.length),
       'content-disposition': `attachment; filename="${ascii}"; filename*=UTF-8''${whole}`,
-      'content-security-policy': ATTACHMENT_POLICY,
+      'content-security-policy': ATTACHMENT_CONTENT_SECURITY_POLICY,
       'x-content-type-options': 'nosniff',
       'cache-control': 'private, no-store',
     },

@@ -21,6 +21,17 @@ export function contentSecurityPolicy(nonce: string, development: boolean): stri
 /** Nothing that the API answers is meant to be looked at as a page. */
 export const API_CONTENT_SECURITY_POLICY = "default-src 'none'; frame-ancestors 'none'"
 
+/** For files that are handed back to be saved: they run nothing and reach nothing, should a browser show them all the same. */
+export const ATTACHMENT_CONTENT_SECURITY_POLICY = "default-src 'none'; frame-ancestors 'none'; sandbox"
+
+const ATTACHMENTS = [/^\/incidents\/[^/]+\/files\//, /\/report\.pdf$/]
+
+/** The policy that does not depend on the request, or null for a page. The request filter's is the one that goes out. */
+export function fixedPolicy(path: string): string | null {
+  if (path.startsWith('/api/')) return API_CONTENT_SECURITY_POLICY
+  return ATTACHMENTS.some((pattern) => pattern.test(path)) ? ATTACHMENT_CONTENT_SECURITY_POLICY : null
+}
+
 export function securityHeaders(secure: boolean): Record<string, string> {
   return {
     'x-content-type-options': 'nosniff',

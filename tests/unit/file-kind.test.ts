@@ -97,7 +97,7 @@ describe('a file name', () => {
       'cache-control': 'private, no-store',
       'content-disposition': `attachment; filename="_r_ _1_.txt"; filename*=UTF-8''%C3%86r%C3%B8%20%221%22.txt`,
       'content-length': '1',
-      'content-security-policy': "default-src 'none'; sandbox",
+      'content-security-policy': "default-src 'none'; frame-ancestors 'none'; sandbox",
       'content-type': 'text/plain; charset=utf-8',
       'x-content-type-options': 'nosniff',
     })

@@ -1,5 +1,11 @@
 import { describe, expect, it } from 'vitest'
-import { contentSecurityPolicy, redirectFor, safeNext, securityHeaders } from '@/lib/http/security-headers'
+import {
+  contentSecurityPolicy,
+  fixedPolicy,
+  redirectFor,
+  safeNext,
+  securityHeaders,
+} from '@/lib/http/security-headers'
 
 describe('the content security policy', () => {
   it('runs scripts and styles by nonce only', () => {
@@ -16,6 +22,18 @@ describe('the content security policy', () => {
       /script-src 'nonce-abc' 'strict-dynamic' 'unsafe-eval';/,
     )
   })
+})
+
+describe('a file that is handed back to be saved', () => {
+  it.each(['/incidents/12/files/3f', '/incidents/12/report.pdf', '/overlays/tides/report.pdf'])(
+    '%s may run nothing, wherever it is opened',
+    (path) => expect(fixedPolicy(path)).toBe("default-src 'none'; frame-ancestors 'none'; sandbox"),
+  )
+
+  it('is none of the pages, which have a policy for each request', () =>
+    expect(
+      ['/incidents/12', '/incidents', '/overlays/tides', '/overlays/report.pdfs'].map(fixedPolicy),
+    ).toEqual([null, null, null, null]))
 })
 
 describe('security headers', () => {
