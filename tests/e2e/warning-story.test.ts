@@ -74,7 +74,7 @@ describe('before anything happens', () => {
     await page.getByLabel('By', { exact: true }).selectOption({ label: 'SMS' })
     await fill(page, { 'Telephone number': PHONE })
     await press(page, 'Add it')
-    await page.getByRole('cell', { name: PHONE }).waitFor()
+    await page.getByRole('cell', { name: PHONE, exact: true }).waitFor()
     await press(page, 'Add a call order')
     await fill(page, { Name: ORDER })
     await step(page, 'First').getByRole('checkbox', { name: OWNER.name }).check()
