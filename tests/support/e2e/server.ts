@@ -23,10 +23,11 @@ export interface E2eServer {
   stop(): Promise<void>
 }
 
-/** The production build on a random port, with a database and a secret of its own. */
-export async function startServer(): Promise<E2eServer> {
+/** The production build on a random port, with a database and a secret of its own; `env` is set for it too. */
+export async function startServer({ env = {} }: { env?: Record<string, string> } = {}): Promise<E2eServer> {
   const database = await createTestDatabase()
   const port = await freePort()
+  const url = `http://127.0.0.1:${port}`
   const args = [nextProgram(ROOT), 'start', '-H', '127.0.0.1', '-p', String(port)]
   const web = new Child(process.execPath, args, {
     env: {
@@ -35,13 +36,14 @@ export async function startServer(): Promise<E2eServer> {
       DATABASE_URL: database.url,
       THINSPAN_DIST_DIR: TEST_DIST_FOLDER,
       THINSPAN_SECRET: randomBytes(32).toString('base64url'),
+      THINSPAN_URL: url,
+      ...env,
     },
   })
   const stop = async () => {
     await web.stop()
     await database.close()
   }
-  const url = `http://127.0.0.1:${port}`
   try {
     const { signal } = new AbortController()
     const ended = () => web.ended
