@@ -17,7 +17,10 @@ import {
   removeStandIn,
   removeTurn,
   removeWebhook,
+  retryDelivery,
   rotateWebhook,
+  testChannel,
+  testWebhook,
 } from '@/lib/data'
 import { newChannelSchema, newStandInSchema, newWebhookSchema } from '@/lib/data/telling-dto'
 import { action } from '@/lib/http'
@@ -115,4 +118,11 @@ export const removeWebhookAction = action(
   one,
   (call, { id }) => removeWebhook(call, id),
   options,
+)
+
+export const testChannelAction = action('channel.test', one, (call, { id }) => testChannel(call, id))
+export const testWebhookAction = action('webhook.test', one, (call, { id }) => testWebhook(call, id))
+
+export const retryDeliveryAction = action('delivery.retry', z.object({ id: z.string() }), (call, { id }) =>
+  retryDelivery(call, id),
 )

@@ -1,5 +1,6 @@
 import { CallOrdersSheet } from '@/components/telling/call-orders-sheet'
 import { ChannelsSheet } from '@/components/telling/channels-sheet'
+import { DeliveryLog } from '@/components/telling/delivery-log'
 import { TurnsSheet } from '@/components/telling/turns-sheet'
 import { WebhooksSheet } from '@/components/telling/webhooks-sheet'
 import { FailedState, Note, Sheet, Waiting } from '@/components/ui'
@@ -31,6 +32,7 @@ export async function TellingSheets({ team }: { team: string | undefined }) {
       <TurnsSheet telling={telling} changes={changes} actions={actions} />
       <CallOrdersSheet telling={telling} changes={changes} actions={actions} />
       {changes ? <Webhooks team={telling.team.slug} owner={telling.role === 'owner'} /> : null}
+      <DeliveryLog team={telling.team.slug} retry={actions.retryDeliveryAction} />
     </div>
   )
 }
