@@ -139,15 +139,13 @@ function actionsColumn(actions: ChannelActions): Column<Channel> {
         >
           {(state) => <ChannelFields channel={channel} state={state} />}
         </FormDialog>
-        {testChannelAction ? (
-          <ActButton
-            action={testChannelAction}
-            fields={{ id: channel.id }}
-            done="On its way: see the delivery log."
-          >
-            <Named what="Send a test" address={channel.address} />
-          </ActButton>
-        ) : null}
+        <ActButton
+          action={testChannelAction}
+          fields={{ id: channel.id }}
+          done="On its way: see the delivery log."
+        >
+          <Named what="Send a test" address={channel.address} />
+        </ActButton>
         <ConfirmDialog
           label={<Named what="Remove" address={channel.address} />}
           kind="quiet"

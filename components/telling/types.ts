@@ -8,7 +8,7 @@ export interface ChannelActions {
   changeChannelAction: Action<Channel>
   removeChannelAction: Action<void>
   /** Sends a message that says it is a test; no button without it. */
-  testChannelAction?: Action<unknown>
+  testChannelAction: Action<{ id: string }>
 }
 export interface TurnActions {
   createTurnAction: Action<void>
@@ -28,5 +28,5 @@ export interface WebhookActions {
   enableWebhookAction: Action<void>
   removeWebhookAction: Action<void>
   /** Sends an event that says it is a test; no button without it. */
-  testWebhookAction?: Action<unknown>
+  testWebhookAction: Action<{ id: string }>
 }

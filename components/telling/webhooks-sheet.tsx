@@ -134,11 +134,9 @@ function actionsColumn(actions: WebhookActions, setMade: (made: WebhookSecret) =
     value: () => null,
     cell: ({ id, name, disabledAt }) => (
       <div className="flex flex-wrap gap-2">
-        {testWebhookAction ? (
-          <ActButton action={testWebhookAction} fields={{ id }} done="On its way: see the delivery log.">
-            Send a test<span className="sr-only"> to {name}</span>
-          </ActButton>
-        ) : null}
+        <ActButton action={testWebhookAction} fields={{ id }} done="On its way: see the delivery log.">
+          Send a test<span className="sr-only"> to {name}</span>
+        </ActButton>
         {disabledAt ? (
           <ActButton action={enableWebhookAction} fields={{ id }} done="It is on.">
             Turn on<span className="sr-only"> {name}</span>

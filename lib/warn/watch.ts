@@ -8,6 +8,7 @@ import { advance, type RuleNow } from './advance'
 import { floorValue } from './condition'
 import type { WarnFacts } from './facts'
 import type { Fall, Mean } from './falling'
+import type { IncidentNow } from './incident-now'
 import { type IncidentPlan, planIncident } from './plan'
 import * as load from './watch-load'
 import * as write from './watch-write'
@@ -129,8 +130,10 @@ export class Watch {
     await write.writeIncident(em, { overlayId, teamId }, plan)
     if (!plan.incident) return
     const { id } = plan.incident
-    if (plan.incident.clearedAtMs === null && !plan.isNew)
-      await write.writeHappenings(em, id, { overlayId, sinceMs, untilMs: nowMs })
+    if (plan.incident.clearedAtMs === null) {
+      const fromMs = plan.isNew ? beganMs(plan.incident, rules) : sinceMs
+      await write.writeHappenings(em, id, { overlayId, sinceMs: fromMs, untilMs: nowMs })
+    }
     const newest = facts.at(-1)
     if (newest && plan.incident.clearedAtMs === null) await write.writeReading(em, id, newest)
     await enqueue(em, await write.messagesOf(em, id, plan.tell, nowMs), new Date(nowMs))
@@ -156,6 +159,14 @@ export class Watch {
     }
     return falls
   }
+}
+
+/** What led to it happened before its rules had held for their on-delay. */
+const LEADS_UP_MS = 5 * 60_000
+
+function beganMs({ raisedAtMs, ruleIds }: IncidentNow, rules: readonly RuleNow[]): number {
+  const delays = rules.filter(({ id }) => ruleIds.includes(id)).map(({ onDelaySeconds }) => onDelaySeconds)
+  return raisedAtMs - 1000 * Math.max(0, ...delays) - LEADS_UP_MS
 }
 
 interface TeamLook {

@@ -246,6 +246,7 @@ describe('small words', () => {
       'B /overlays/harbourline/nodes',
       'C /overlays/harbourline/joining',
       'D /overlays/harbourline/upkeep',
+      'E /overlays/harbourline/warnings',
     ])
   })
 
