@@ -106,7 +106,13 @@ function Tried({ slug, preview }: { slug: string; preview: RulePreview }) {
         rows={preview.spans}
         rowKey={({ raisedAt }) => raisedAt}
         csvName={`${slug}-rule-on-history`}
-        empty={<EmptyState title="It would not have been raised." />}
+        empty={
+          <EmptyState
+            title={
+              preview.points.length === 0 ? 'Nothing is kept of that time.' : 'It would not have been raised.'
+            }
+          />
+        }
       />
       <ul className="list-disc space-y-1 pl-5 text-sm text-soft">
         {preview.notes.map((note) => (

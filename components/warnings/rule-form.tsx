@@ -5,7 +5,7 @@ import { useForm } from 'react-hook-form'
 import { Button, Outcome, SelectField, Sheet, TextField } from '@/components/ui'
 import type { UsualState, WarningRuleDto, WarningRules } from '@/lib/data/rules-dto'
 import { formatReading } from '@/lib/face/format'
-import { fieldsOf, KIND_CHOICES, type RuleFields, ruleOfFields } from '@/lib/face/rule-fields'
+import { fieldsOf, KIND_CHOICES, type RuleFields, ruleOfFields, startOf } from '@/lib/face/rule-fields'
 import { submit } from '@/lib/http/form-state'
 import { type Rule, ruleSchema, SEVERITIES } from '@/lib/warn/rule'
 import { hasMargin, ruleSentence } from '@/lib/warn/rule-sentence'
@@ -65,7 +65,12 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
             <SelectField
               label="Warn when"
               options={KIND_CHOICES}
-              {...register('kind')}
+              {...register('kind', {
+                onChange: () => {
+                  const { kind, callOrderId } = form.getValues()
+                  form.reset({ ...startOf(kind, usual.lambda2), callOrderId })
+                },
+              })}
               className="min-w-64"
             />
           )}

@@ -1,3 +1,4 @@
+import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { floorValue } from '@/lib/warn/condition'
 import { previewNotes, previewSentence } from '@/lib/warn/preview-words'
@@ -17,6 +18,11 @@ export async function previewRule(
   { rule, range }: PreviewAsked,
 ): Promise<RulePreview> {
   const overlay = await openOverlay(call, 'rule.list', slug)
+  if (rule.settings.kind === 'audit' && range !== '24h')
+    throw new AppError(
+      'invalid-input',
+      'What the cross-check said is kept with single readings only: choose the last 24 hours.',
+    )
   const history = await loadHistory(call.em, overlay.id, range, call.now.getTime())
   const { fromMs, toMs, stepSeconds, steps } = history
   const spans = replay(rule, steps)

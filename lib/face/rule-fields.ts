@@ -1,3 +1,4 @@
+import { DEFAULT_RULES } from '@/lib/warn/default-rules'
 import { RULE_KINDS, type Rule, type RuleKind, type RuleSettings, type Severity } from '@/lib/warn/rule'
 
 /** A rule as a form has it: every kind's fields side by side, delays in minutes. */
@@ -31,34 +32,33 @@ export const KIND_CHOICES: readonly { value: RuleKind; label: string }[] = [
   { value: 'audit', label: 'Figures contradict each other' },
 ]
 
-/** Longer than a node takes to restart: a link that comes back by itself wakes nobody. */
-export const DEFAULT_ON_MINUTES = 3
-
-const FIRST: RuleFields = {
-  kind: RULE_KINDS[0],
-  floorOf: 'usual',
-  floorPercent: 50,
-  floorLambda2: 0.5,
-  links: 2,
-  smallerSidePercent: 10,
-  means: 'minute',
-  windowHours: 6,
-  withinHours: 24,
-  probabilityPercent: 80,
-  agents: 3,
-  coveragePercent: 85,
-  severity: 'warning',
-  onMinutes: DEFAULT_ON_MINUTES,
-  clearMarginPercent: 10,
-  offMinutes: 10,
-  callOrderId: '',
+/** As the default rule of the kind has it, with every other kind's fields beside it. */
+export function startOf(kind: RuleKind, usual: number | null): RuleFields {
+  const rule = DEFAULT_RULES.find(({ settings }) => settings.kind === kind)
+  // There is one of every kind; a test says so.
+  if (!rule) throw new Error(`There is no default rule of the kind ${kind}.`)
+  return {
+    ...EVERY_KIND,
+    ...ofRule({ ...rule, callOrderId: null }),
+    kind,
+    floorOf: usual === null ? 'value' : 'usual',
+  }
 }
+
+/** A floor by value has no default: nobody but the operator knows one. */
+const EVERY_KIND: RuleFields = Object.assign(
+  { floorLambda2: 0 },
+  // The second falling rule, by minutes, is the more special one.
+  ...[...DEFAULT_RULES].reverse().map((rule) => ofRule({ ...rule, callOrderId: null })),
+)
 
 /** @param usual what is usual; a new rule is by a value while it is not known */
 export function fieldsOf(rule: Rule | null, usual: number | null): RuleFields {
-  if (!rule) return { ...FIRST, floorOf: usual === null ? 'value' : 'usual' }
+  return rule ? { ...EVERY_KIND, ...ofRule(rule) } : startOf(RULE_KINDS[0], usual)
+}
+
+function ofRule(rule: Rule): Partial<RuleFields> {
   return {
-    ...FIRST,
     ...ofSettings(rule.settings),
     severity: rule.severity,
     onMinutes: rule.onDelaySeconds / 60,
