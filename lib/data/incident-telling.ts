@@ -2,7 +2,7 @@ import type { Incident } from '@/entities'
 import type { EntityManager } from '@/lib/db'
 import type { MessageBody, MessageKind } from '@/lib/notify/message'
 import type { NewMessage } from '@/lib/notify/outbox'
-import { recipientsOf } from './incident-told'
+import { toldSoFar } from '@/lib/warn/told-so-far'
 
 export interface IncidentComponents {
   /** Into the outbox, inside the caller's transaction. */
@@ -28,7 +28,8 @@ export async function tellOthers(
   { kind, because, details = [], byUserId, alsoUserId, now }: News,
 ): Promise<void> {
   if (incident.inMaintenance || (incident.mutedUntil && incident.mutedUntil > now)) return
-  const recipients = await recipientsOf(em, incident.id, byUserId)
+  const told = await toldSoFar(em, incident.id)
+  const recipients = told.filter((one) => !('userId' in one && one.userId === byUserId))
   const isNew = alsoUserId !== undefined && alsoUserId !== byUserId
   if (isNew && !recipients.some((one) => 'userId' in one && one.userId === alsoUserId))
     recipients.push({ userId: alsoUserId })

@@ -38,24 +38,3 @@ export async function toldOf(em: EntityManager, incidentId: string): Promise<Inc
     state,
   }))
 }
-
-export type Recipient = { userId: string } | { webhookId: string }
-
-/** Whoever has been told of an incident so far, but for `exceptUserId`. */
-export async function recipientsOf(
-  em: EntityManager,
-  incidentId: string,
-  exceptUserId: string | null,
-): Promise<Recipient[]> {
-  const rows = await query<{ userId: string | null; webhookId: string | null }>(
-    em,
-    `select distinct c.user_id as "userId", o.webhook_id as "webhookId"
-     from outbox o left join channels c on c.id = o.channel_id where o.incident_id = ?
-     order by 1, 2`,
-    [incidentId],
-  )
-  return rows.flatMap(({ userId, webhookId }): Recipient[] => {
-    if (webhookId !== null) return [{ webhookId }]
-    return userId === null || userId === exceptUserId ? [] : [{ userId }]
-  })
-}

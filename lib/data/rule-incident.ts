@@ -1,6 +1,7 @@
-import { type IncidentEntry, IncidentEntrySchema, type Overlay, type WarningRule } from '@/entities'
+import type { Overlay, WarningRule } from '@/entities'
 import { query } from '@/lib/collector/query'
 import type { Call } from '@/lib/http/call'
+import { enterEntry } from '@/lib/warn/incident-store'
 import { ruleSentence } from '@/lib/warn/rule-sentence'
 
 /**
@@ -20,12 +21,12 @@ export async function leaveIncident(
     [rule.id, rule.id, now, overlay.id, overlay.team.id, rule.id],
   )
   for (const { id, isOver } of left)
-    await em.insert<IncidentEntry>(IncidentEntrySchema, {
-      incident: id,
+    await enterEntry(em, {
+      incidentId: id,
       at: now,
       kind: isOver ? 'cleared-all' : 'cleared',
       text: `The rule “${ruleSentence(rule.settings)}” ${because}.`,
-      user: 'userId' in caller ? caller.userId : null,
+      userId: 'userId' in caller ? caller.userId : null,
       data: { ruleId: rule.id },
     })
 }

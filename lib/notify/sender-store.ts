@@ -174,13 +174,3 @@ export async function lookAhead(em: EntityManager, now: Date): Promise<Ahead> {
   )
   return { nextAtMs: row?.next ?? null, overdueSinceMs: row?.overdue ?? null }
 }
-
-/** A sign of life, for whoever watches the watcher. */
-export async function pulse(em: EntityManager, now: Date): Promise<void> {
-  await query(
-    em,
-    `insert into watch_pulses (what, at) values ('sending', ?)
-     on conflict (what) do update set at = greatest(watch_pulses.at, excluded.at)`,
-    [now],
-  )
-}

@@ -4,8 +4,9 @@ import type { ListenFunction } from '@/lib/db/listener'
 import type { Log } from '@/lib/http/runtime'
 import type { Answer, Letter, WayKind, Ways } from './letter'
 import { OUTBOX_CHANNEL } from './outbox'
+import { pulse } from './pulse'
 import { nextDelayMs, PERSON_DELAYS_MS, WEBHOOK_DELAYS_MS } from './schedule'
-import { type Claim, claim, lookAhead, type Outcome, pulse, record } from './sender-store'
+import { type Claim, claim, lookAhead, type Outcome, record } from './sender-store'
 
 export const WAY_KINDS: readonly WayKind[] = ['email', 'sms', 'webhook']
 
@@ -123,7 +124,7 @@ export class Sender {
     const now = this.#now()
     const ahead = await lookAhead(em, now)
     const overdueMs = ahead.overdueSinceMs === null ? 0 : now.getTime() - ahead.overdueSinceMs
-    if (!this.#isStuck() && overdueMs <= this.#limits.overdueMs) await pulse(em, now)
+    if (!this.#isStuck() && overdueMs <= this.#limits.overdueMs) await pulse(em, 'sending', now)
     const untilNextMs = ahead.nextAtMs === null ? Infinity : ahead.nextAtMs - now.getTime()
     const crowdedMs = ahead.overdueSinceMs === null ? Infinity : CROWDED_MS
     return Math.max(1, Math.min(untilNextMs, crowdedMs, this.#limits.idleMs))

@@ -5,10 +5,10 @@ import type { MessageBody } from '@/lib/notify/message'
 import type { NewMessage } from '@/lib/notify/outbox'
 import type { Advanced } from './advance'
 import type { WarnFacts } from './facts'
-import type { Recipient } from './incident-now'
 import { enterEntry } from './incident-store'
 import type { IncidentPlan } from './plan'
 import type { Tell } from './tell'
+import { toldSoFar } from './told-so-far'
 
 /** A reading for the timeline at most this often while its level stays. */
 export const READING_EVERY_MS = 10 * 60_000
@@ -107,20 +107,6 @@ export async function writeReading(
   )
 }
 
-/** Whoever has been told of an incident so far. */
-export async function toldSoFar(em: EntityManager, incidentId: string): Promise<Recipient[]> {
-  const rows = await query<{ userId: string | null; webhookId: string | null }>(
-    em,
-    `select distinct c.user_id as "userId", o.webhook_id as "webhookId"
-     from outbox o left join channels c on c.id = o.channel_id where o.incident_id = ? order by 1, 2`,
-    [incidentId],
-  )
-  return rows.flatMap(({ userId, webhookId }): Recipient[] => {
-    if (webhookId !== null) return [{ webhookId }]
-    return userId === null ? [] : [{ userId }]
-  })
-}
-
 /** What is told of an incident, as messages: read after the incident has been written. */
 export async function messagesOf(
   em: EntityManager,
@@ -159,13 +145,4 @@ export async function messagesOf(
     const recipients = to === 'told' ? before : to
     return recipients.map((one): NewMessage => ({ kind, body, incidentId, teamId, to: one }))
   })
-}
-
-export async function pulse(em: EntityManager, what: 'evaluating' | 'sending', now: Date): Promise<void> {
-  await query(
-    em,
-    `insert into watch_pulses (what, at) values (?, ?)
-     on conflict (what) do update set at = greatest(watch_pulses.at, excluded.at)`,
-    [what, now],
-  )
 }

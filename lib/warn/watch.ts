@@ -4,6 +4,7 @@ import { query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import type { NewMessage } from '@/lib/notify/outbox'
+import { pulse } from '@/lib/notify/pulse'
 import { advance, type RuleNow } from './advance'
 import { floorValue } from './condition'
 import type { WarnFacts } from './facts'
@@ -72,7 +73,7 @@ export class Watch {
         log.error({ overlayId, err: error }, 'the rules of an overlay could not be evaluated')
       }
     }
-    if (failed === 0) await write.pulse(await forkEm(), 'evaluating', now())
+    if (failed === 0) await pulse(await forkEm(), 'evaluating', now())
   }
 
   async #run(signal: AbortSignal): Promise<void> {
