@@ -5,7 +5,7 @@ import { healthyDays, thinning } from './warning/courses'
 import { incidentsOf } from './warning/incidents'
 import { deviation, fitNoise, type NoiseModel, noiseSchema, ratios } from './warning/noise'
 import { healthyOverlays, thinningOverlays } from './warning/overlays'
-import { type WalkerSample, walkerHours } from './warning/walker-hours'
+import { type WalkerRun, walkerHours } from './warning/walker-hours'
 
 type Print = (line: string) => void
 
@@ -50,12 +50,19 @@ function fit(hours: number, print: Print): void {
       })
     }),
   )
-  const noise = fitNoise(runs.slice(0, overlays.length))
+  const noise = fitNoise(runs.slice(0, overlays.length).map(({ samples }) => samples))
   writeFileSync(NOISE_FILE, `${JSON.stringify(noise, null, 2)}\n`)
   printHeldOut(runs.slice(overlays.length), noise, print)
+  for (const [index, { facts }] of runs.entries()) {
+    const rules = incidentsOf(facts).map((incident) => incident.rules.join(' and '))
+    print(
+      `Walkers themselves, ${overlays[index % overlays.length]!.name}, ${(hours / runs.length).toFixed(1)} h: false incidents ${rules.length}${rules.length > 0 ? `: ${rules.join('; ')}` : ''}`,
+    )
+  }
 }
 
-function printHeldOut(runs: readonly (readonly WalkerSample[])[], noise: NoiseModel, print: Print): void {
+function printHeldOut(heldOut: readonly WalkerRun[], noise: NoiseModel, print: Print): void {
+  const runs = heldOut.map(({ samples }) => samples)
   const held = fitNoise(runs)
   print(
     `Held-out walkers, ${held.walkerHours.toFixed(1)} h: spread ${deviation(runs.flatMap((run) => ratios(run, noise.lagSamples))).toFixed(3)} beside ${noise.spread.toFixed(3)}, φ ${held.phi.toFixed(2)} beside ${noise.phi.toFixed(2)}, settling ${held.settlingSamples} beside ${noise.settlingSamples} samples.`,

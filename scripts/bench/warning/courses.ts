@@ -5,18 +5,32 @@ import { median } from '@/lib/warn/stats/median'
 import { HealthyLife } from './healthy-life'
 import type { NoiseModel } from './noise'
 import type { ThinningOverlay } from './overlays'
+import { SAMPLE_MS } from './sampling'
 import { BareOverlay, SurrogateReading } from './surrogate'
-import { SAMPLE_MS } from './walker-hours'
 
 const MINUTE_MS = 60_000
 const PER_MINUTE = MINUTE_MS / SAMPLE_MS
 /** What is usual is of so many days of the overlay's own life. */
 const USUAL_DAYS = 7
 
+const NO_NOISE: NoiseModel = {
+  lagSamples: 0,
+  phi: 0,
+  spread: 0,
+  settlingSamples: 0,
+  freshAtRest: 1,
+  walkerHours: 0,
+}
+
 interface CourseInit {
   noise: NoiseModel
   seed: string
   startHour?: number
+}
+
+/** What is usual of healthy life on this graph, read without noise. */
+export function usualOf(graph: SparseGraph): number {
+  return new Course(graph, edgesOf(graph), { noise: NO_NOISE, seed: 'usual' }).usual()
 }
 
 /** Healthy days as the surrogate reads them. */

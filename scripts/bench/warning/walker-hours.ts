@@ -1,15 +1,14 @@
-import { type ControlSettings, DEFAULT_SETTINGS } from '@/lib/method/control'
 import { edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
-import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
-import { Simulation } from '@/lib/method/simulate'
+import type { Simulation } from '@/lib/method/simulate'
 import { algebraicConnectivity } from '@/lib/method/spectrum'
+import type { WarnFacts } from '@/lib/warn/facts'
+import { usualOf } from './courses'
 import { HealthyLife } from './healthy-life'
+import { JudgedWalkers } from './judged-walkers'
+import { SAMPLE_MS } from './sampling'
 
-const SETTINGS: ControlSettings = { ...DEFAULT_SETTINGS, pace: PACES.steady, disclosure: 'named' }
 const COLD_MS = 180_000
-/** Two readings a minute are kept. */
-export const SAMPLE_MS = 30_000
 
 /** What walkers read at one moment, beside what is. */
 export interface WalkerSample {
@@ -19,52 +18,46 @@ export interface WalkerSample {
   /** Of the core where loose ends are told apart; null while withheld. */
   lambda2: number | null
   isFresh: boolean
-  crossingLinks: number | null
-  smallerSide: number | null
-  joined: number
-  heard: number
+}
+
+export interface WalkerRun {
+  samples: WalkerSample[]
+  /** Each reading, as rules look at it. */
+  facts: WarnFacts[]
 }
 
 /** Simulated hours of healthy life: every agent the real state machine, the collector the real control loop. Virtual time. */
 export function walkerHours(
   graph: SparseGraph,
   { hours, startHour, seed }: { hours: number; startHour: number; seed: string },
-): WalkerSample[] {
-  const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
-  const simulation = new Simulation(
+): WalkerRun {
+  const links = edgesOf(graph).map(([a, b]) => ({ a, b }))
+  const walkers = new JudgedWalkers(
     { random: createRandom(`walkers ${seed}`) },
-    { nodes: graph.nodes, links, settings: SETTINGS, audits: false },
+    { graph, usual: usualOf(graph) },
   )
+  const { simulation } = walkers
   simulation.run(COLD_MS)
   const life = new HealthyLife(
     { random: createRandom(`life ${seed}`) },
     { nodes: graph.nodes, links, startHour },
   )
   const samples: WalkerSample[] = []
+  const cold = walkers.facts.length
   for (let minute = 0; minute < hours * 60; minute++) {
     life.minute(simulation)
     for (let ms = 0; ms < 60_000; ms += SAMPLE_MS) {
       simulation.run(SAMPLE_MS)
-      samples.push(sampleOf(simulation, minute + (ms + SAMPLE_MS) / 60_000))
+      const { isFresh, lambda2 } = walkers.facts[walkers.facts.length - 1]!
+      samples.push({
+        minute: minute + (ms + SAMPLE_MS) / 60_000,
+        exact: exactOf(simulation),
+        lambda2,
+        isFresh,
+      })
     }
   }
-  return samples
-}
-
-function sampleOf(simulation: Simulation, minute: number): WalkerSample {
-  const whole = simulation.estimate
-  const core = simulation.core?.estimate
-  const told = core && core.lambda2 !== null ? core : whole
-  return {
-    minute,
-    exact: exactOf(simulation),
-    lambda2: told?.lambda2 ?? null,
-    isFresh: told !== null && told.lambda2 !== null && !told.settling && told.withheld === null,
-    crossingLinks: told?.cut?.links ?? null,
-    smallerSide: told?.cut ? Math.min(told.cut.above, told.cut.below) : null,
-    joined: whole?.coverage.joined ?? 0,
-    heard: whole?.coverage.heard ?? 0,
-  }
+  return { samples, facts: walkers.facts.slice(cold) }
 }
 
 function exactOf(simulation: Simulation): number {
