@@ -12,6 +12,7 @@ import {
   Sheet,
   TextField,
   Time,
+  ZoneField,
 } from '@/components/ui'
 import type { Channel } from '@/lib/data/telling-dto'
 import { CHANNEL_WORDS } from '@/lib/face/telling'
@@ -20,7 +21,6 @@ import { SEVERITIES, type Severity } from '@/lib/warn/rule'
 import { ActButton, outcomeOf } from './act-button'
 import { FormDialog } from './form-dialog'
 import type { ChannelActions } from './types'
-import { ZoneField } from './zone-field'
 
 const LEAST_WORDS: Record<Severity, string> = {
   note: 'everything',

@@ -1,11 +1,10 @@
 'use client'
 
 import { useId, useState } from 'react'
-import { Button, inputClass, SelectField, TextField } from '@/components/ui'
+import { Button, inputClass, SelectField, TextField, ZoneField } from '@/components/ui'
 import type { Telling, Turn } from '@/lib/data/telling-dto'
 import { hourText, WEEKDAYS } from '@/lib/face/telling'
 import { type FormState, fieldError } from '@/lib/http/form-state'
-import { ZoneField } from './zone-field'
 
 export interface TurnFieldsProps {
   people: Telling['people']

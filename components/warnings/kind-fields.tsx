@@ -2,20 +2,28 @@
 
 import type { UseFormRegister } from 'react-hook-form'
 import { SelectField, TextField } from '@/components/ui'
-import type { RuleFields } from '@/lib/face/rule-fields'
+import { type RuleFields, typedNumber } from '@/lib/face/rule-fields'
 
 export interface KindFieldsProps {
   kind: RuleFields['kind']
   floorOf: RuleFields['floorOf']
   register: UseFormRegister<RuleFields>
+  /** What is wrong with a field that has been filled in. */
+  wrong: (name: keyof RuleFields) => string | undefined
 }
 
-export const numberOf = { valueAsNumber: true } as const
+export const numberOf = { setValueAs: typedNumber } as const
 
 /** What each kind of rule asks for, with its units. */
-export function KindFields({ kind, floorOf, register }: KindFieldsProps) {
+export function KindFields({ kind, floorOf, register, wrong }: KindFieldsProps) {
   const figure = (name: Parameters<typeof register>[0], label: string) => (
-    <TextField label={label} inputMode="decimal" {...register(name, numberOf)} className="w-52" />
+    <TextField
+      label={label}
+      inputMode="decimal"
+      {...register(name, numberOf)}
+      error={wrong(name)}
+      className="w-52"
+    />
   )
   switch (kind) {
     case 'floor':

@@ -5,7 +5,14 @@ import { useForm } from 'react-hook-form'
 import { Button, Outcome, SelectField, Sheet, TextField } from '@/components/ui'
 import type { UsualState, WarningRuleDto, WarningRules } from '@/lib/data/rules-dto'
 import { formatReading } from '@/lib/face/format'
-import { fieldsOf, KIND_CHOICES, type RuleFields, ruleOfFields, startOf } from '@/lib/face/rule-fields'
+import {
+  fieldProblems,
+  fieldsOf,
+  KIND_CHOICES,
+  type RuleFields,
+  ruleOfFields,
+  startOf,
+} from '@/lib/face/rule-fields'
 import { submit } from '@/lib/http/form-state'
 import { type Rule, ruleSchema, SEVERITIES } from '@/lib/warn/rule'
 import { hasMargin, ruleSentence } from '@/lib/warn/rule-sentence'
@@ -30,12 +37,16 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
   const fields = form.watch()
   const { register, formState } = form
   const draft = ruleSchema.safeParse(ruleOfFields(fields, rule?.isOn ?? true))
+  const problems = draft.success ? {} : fieldProblems(draft.error.issues)
+  // What nobody has filled in yet is not wrong yet.
+  const wrong = (name: keyof RuleFields) =>
+    formState.isSubmitted || formState.dirtyFields[name] ? problems[name] : undefined
 
   async function save() {
     setProblem(null)
     const parsed = ruleSchema.safeParse(ruleOfFields(form.getValues(), rule?.isOn ?? true))
     if (!parsed.success) {
-      setProblem('Some values cannot be used. Correct the numbers and save again.')
+      setProblem('Some values cannot be used. Correct the fields marked above and save again.')
       return
     }
     const failed = await send(parsed.data).catch(() => 'The server could not be reached. Try again.')
@@ -74,7 +85,7 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
               className="min-w-64"
             />
           )}
-          <KindFields kind={fields.kind} floorOf={fields.floorOf} register={register} />
+          <KindFields kind={fields.kind} floorOf={fields.floorOf} register={register} wrong={wrong} />
         </div>
         <div className="flex flex-wrap items-end gap-4">
           <SelectField
@@ -103,6 +114,7 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
             hint="Longer than a node takes to restart, so that a restart wakes nobody."
             inputMode="decimal"
             {...register('onMinutes', numberOf)}
+            error={wrong('onMinutes')}
             className="w-64"
           />
           {hasMargin(fields.kind) ? (
@@ -111,6 +123,7 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
               hint="So that it does not come and go at its limit."
               inputMode="decimal"
               {...register('clearMarginPercent', numberOf)}
+              error={wrong('clearMarginPercent')}
               className="w-64"
             />
           ) : null}
@@ -119,6 +132,7 @@ export function RuleForm({ slug, rule, usual, callOrders, actions, onClose, onDo
             hint="So long it must have been over."
             inputMode="decimal"
             {...register('offMinutes', numberOf)}
+            error={wrong('offMinutes')}
             className="w-64"
           />
         </div>

@@ -17,6 +17,7 @@ import {
   Time,
   useNow,
   Waiting,
+  ZoneField,
 } from '@/components/ui'
 import type { MaintenanceWindowDto } from '@/lib/data/rules-dto'
 import { labelChoices } from '@/lib/face/node-columns'
@@ -138,7 +139,6 @@ function WindowForm(props: { slug: string; create: WarningActions['createWindow'
   )
   // The reader's zone is not known before the browser has taken over.
   if (now === null) return null
-  const zone = Intl.DateTimeFormat().resolvedOptions().timeZone
   const was = (name: string, first: string) => fieldValue(state, name) ?? first
   const text = (name: string, label: string, first: string, more: object = {}) => (
     <TextField
@@ -167,7 +167,11 @@ function WindowForm(props: { slug: string; create: WarningActions['createWindow'
         {text('date', 'Day', '', { type: 'date', required: true })}
         {text('time', 'Begins at', '22:00', { type: 'time', required: true })}
         {text('minutes', 'Lasts, minutes', '60', { inputMode: 'numeric' })}
-        {text('zone', 'Time zone', zone)}
+        <ZoneField
+          defaultValue={fieldValue(state, 'zone') ?? null}
+          error={fieldError(state, 'zone')}
+          className="w-72"
+        />
         <SelectField
           label="Repeats"
           name="weekdays"

@@ -112,6 +112,13 @@ export const tellingSchema = z.object({
   turns: z.array(turnSchema),
   callOrders: z.array(callOrderSchema),
   webhooks: z.array(person),
+  /** Whether warnings themselves work: when rules were last evaluated, messages last looked for, the heartbeat last taken outside. */
+  watcher: z.object({
+    isAlive: z.boolean(),
+    evaluatedAt: at.nullable(),
+    sentAt: at.nullable(),
+    heartbeatAt: at.nullable(),
+  }),
 })
 export type Telling = z.infer<typeof tellingSchema>
 

@@ -10,6 +10,7 @@ import {
 import type { EntityManager } from '@/lib/db'
 import { authorise, type Call } from '@/lib/http/call'
 import { CHANNEL_KINDS } from '@/lib/notify/channel'
+import { isAlive, readPulses } from '@/lib/warn/heartbeat'
 import { spanAt, weeksFrom, withoutPerson } from '@/lib/warn/turns'
 import { teamMeant } from './teams'
 import type { CallOrder, Telling, Turn } from './telling-dto'
@@ -34,6 +35,18 @@ export async function getTelling(call: Call, teamSlug?: string): Promise<Telling
       id: one.id,
       name: one.name,
     })),
+    watcher: await watcherNow(em, now),
+  }
+}
+
+async function watcherNow(em: EntityManager, now: Date): Promise<Telling['watcher']> {
+  const pulses = await readPulses(em)
+  const iso = (ms: number | null) => (ms === null ? null : new Date(ms).toISOString())
+  return {
+    isAlive: isAlive(pulses, now.getTime()),
+    evaluatedAt: iso(pulses.evaluatingMs),
+    sentAt: iso(pulses.sendingMs),
+    heartbeatAt: iso(pulses.heartbeatMs),
   }
 }
 

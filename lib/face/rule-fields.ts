@@ -124,3 +124,36 @@ function settingsOf(fields: RuleFields): RuleSettings {
       return { kind }
   }
 }
+
+/** A figure as it was typed, with a decimal point or comma; NaN for what is none. */
+export function typedNumber(typed: unknown): number {
+  const text = String(typed ?? '').trim()
+  return text === '' ? Number.NaN : Number(text.replace(',', '.'))
+}
+
+/** Fields by the last part of the path under which the rule's schema names them. */
+const FIELD_OF: Readonly<Record<string, keyof RuleFields>> = {
+  lambda2: 'floorLambda2',
+  links: 'links',
+  smallerSidePercent: 'smallerSidePercent',
+  windowHours: 'windowHours',
+  withinHours: 'withinHours',
+  probabilityPercent: 'probabilityPercent',
+  agents: 'agents',
+  onDelaySeconds: 'onMinutes',
+  offDelaySeconds: 'offMinutes',
+  clearMarginPercent: 'clearMarginPercent',
+}
+
+/** What is wrong with which field. @param issues of the rule's schema */
+export function fieldProblems(
+  issues: readonly { path: readonly PropertyKey[]; message: string }[],
+): Partial<Record<keyof RuleFields, string>> {
+  return Object.fromEntries(
+    issues.map(({ path, message }) => {
+      const last = String(path[path.length - 1])
+      const ofPercent = path.includes('floor') ? 'floorPercent' : 'coveragePercent'
+      return [last === 'percent' ? ofPercent : (FIELD_OF[last] ?? last), message]
+    }),
+  )
+}

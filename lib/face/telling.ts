@@ -2,6 +2,7 @@ import type { CallOrder, Telling, Turn } from '@/lib/data/telling-dto'
 import type { ChannelKind } from '@/lib/notify/channel'
 import type { CallStep } from '@/lib/warn/call-order'
 import { formatCount } from './format'
+import { formatDuration } from './time'
 
 export const WEEKDAYS = ['Monday', 'Tuesday', 'Wednesday', 'Thursday', 'Friday', 'Saturday', 'Sunday']
 export const CHANNEL_WORDS: Record<ChannelKind, string> = { email: 'e-mail', sms: 'SMS' }
@@ -76,6 +77,40 @@ export function toldNow(telling: Telling): string[] {
     ...callOrders.map((order) => orderSentence(telling, order)),
   ]
 }
+
+/** The address outside is called once a minute: this much later it has been missed. */
+const HEARTBEAT_LATE_MS = 3 * 60_000
+
+/** Whether warnings themselves work, and whether anybody outside would hear of it if they did not. */
+export function watcherNow({ watcher, at }: Pick<Telling, 'watcher' | 'at'>): string[] {
+  const nowMs = Date.parse(at)
+  const ago = (then: string) => `${formatDuration(Math.max(0, (nowMs - Date.parse(then)) / 1000))} ago`
+  const { isAlive, evaluatedAt, sentAt, heartbeatAt } = watcher
+  const rules = evaluatedAt
+    ? `rules were last evaluated ${ago(evaluatedAt)}`
+    : 'rules have not been evaluated yet'
+  const messages = sentAt
+    ? `the outbox was last looked through ${ago(sentAt)}`
+    : 'the outbox has not been looked through yet'
+  const works = isAlive
+    ? 'Rules are being evaluated and messages sent.'
+    : `Warnings stand still: ${rules}, ${messages}. Nobody is told of anything until this server and its database work again.`
+  return [
+    works,
+    heartbeatAt === null ? UNWATCHED : heartbeatSentence(ago(heartbeatAt), isLate(heartbeatAt, nowMs)),
+  ]
+}
+
+const UNWATCHED =
+  'Nobody outside would notice if this server fell silent: no heartbeat has been taken yet. Set THINSPAN_HEARTBEAT_URL to an address that raises the alarm when it is not called.'
+
+const isLate = (heartbeatAt: string, nowMs: number): boolean =>
+  nowMs - Date.parse(heartbeatAt) > HEARTBEAT_LATE_MS
+
+const heartbeatSentence = (ago: string, late: boolean): string =>
+  late
+    ? `The heartbeat is late: it was last taken ${ago}. Whoever watches it should have raised the alarm.`
+    : `The heartbeat was last taken ${ago}.`
 
 function orderSentence(telling: Telling, order: CallOrder): string {
   const steps = order.steps.map((step, index) => {

@@ -2,7 +2,11 @@ import { query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 
 /** A sign of life, for whoever watches the watcher. */
-export async function pulse(em: EntityManager, what: 'evaluating' | 'sending', now: Date): Promise<void> {
+export async function pulse(
+  em: EntityManager,
+  what: 'evaluating' | 'sending' | 'heartbeat',
+  now: Date,
+): Promise<void> {
   await query(
     em,
     `insert into watch_pulses (what, at) values (?, ?)

@@ -2,6 +2,7 @@ import { type Clock, sleep } from '@/lib/collector/clock'
 import { epochMs, query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
+import { pulse } from '@/lib/notify/pulse'
 
 export const HEARTBEAT_EVERY_MS = 60_000
 /** Evaluating and sending must both have come round since. */
@@ -20,6 +21,8 @@ export interface HeartbeatComponents {
 export interface Pulses {
   evaluatingMs: number | null
   sendingMs: number | null
+  /** When the address outside last took the heartbeat. */
+  heartbeatMs: number | null
 }
 
 /** When rules were last evaluated and the outbox last looked through, by any process; null for never. */
@@ -29,10 +32,10 @@ export async function readPulses(em: EntityManager): Promise<Pulses> {
     `select what, ${epochMs('at')} as "atMs" from watch_pulses`,
   )
   const of = (what: string) => rows.find((row) => row.what === what)?.atMs ?? null
-  return { evaluatingMs: of('evaluating'), sendingMs: of('sending') }
+  return { evaluatingMs: of('evaluating'), sendingMs: of('sending'), heartbeatMs: of('heartbeat') }
 }
 
-export function isAlive({ evaluatingMs, sendingMs }: Pulses, nowMs: number): boolean {
+export function isAlive({ evaluatingMs, sendingMs }: Omit<Pulses, 'heartbeatMs'>, nowMs: number): boolean {
   return [evaluatingMs, sendingMs].every((atMs) => atMs !== null && nowMs - atMs <= ALIVE_MS)
 }
 
@@ -67,7 +70,8 @@ export class Heartbeat {
   async beat(signal: AbortSignal): Promise<boolean> {
     const { forkEm, now, log, fetch } = this.#components
     try {
-      const pulses = await readPulses(await forkEm())
+      const em = await forkEm()
+      const pulses = await readPulses(em)
       if (!isAlive(pulses, now().getTime())) {
         log.warn({ ...pulses }, 'no heartbeat: evaluating or sending stands still')
         return false
@@ -76,7 +80,8 @@ export class Heartbeat {
         redirect: 'manual',
         signal: AbortSignal.any([signal, AbortSignal.timeout(TIMEOUT_MS)]),
       })
-      if (!ok) log.warn({ status }, 'the heartbeat was not taken')
+      if (ok) await pulse(em, 'heartbeat', now())
+      else log.warn({ status }, 'the heartbeat was not taken')
       return ok
     } catch (error) {
       if (!signal.aborted) log.warn({ err: error }, 'the heartbeat could not be sent')

@@ -2,7 +2,7 @@ import { once } from 'node:events'
 import { createServer, type Server } from 'node:http'
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest'
 import { query } from '@/lib/collector/query'
-import { Heartbeat } from '@/lib/warn/heartbeat'
+import { Heartbeat, readPulses } from '@/lib/warn/heartbeat'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { FakeClock } from '@/tests/support/fake-clock'
 import { eventually } from '@/tests/support/until'
@@ -66,6 +66,8 @@ describe('the heartbeat', () => {
     if (evaluatingMs !== null) await pulse('evaluating', evaluatingMs)
     if (sendingMs !== null) await pulse('sending', sendingMs)
     expect([await beat(), called]).toEqual([isSent, isSent ? ['GET /beat'] : []])
+    const { heartbeatMs } = await readPulses(database.orm.em.fork())
+    expect(heartbeatMs).toBe(isSent ? clock.epochMs() : null)
     expect(said).toEqual(isSent ? [] : ['no heartbeat: evaluating or sending stands still'])
   })
 

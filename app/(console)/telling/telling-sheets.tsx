@@ -6,7 +6,7 @@ import { WebhooksSheet } from '@/components/telling/webhooks-sheet'
 import { FailedState, Note, Sheet, Waiting } from '@/components/ui'
 import { roleReaches } from '@/lib/auth/permissions'
 import { getTelling, listChannels, listWebhooks } from '@/lib/data'
-import { toldNow } from '@/lib/face/telling'
+import { toldNow, watcherNow } from '@/lib/face/telling'
 import { page } from '@/lib/http'
 import { TeamChoice } from '../team/team-choice'
 import * as actions from './actions'
@@ -32,6 +32,13 @@ export async function TellingSheets({ team }: { team: string | undefined }) {
       <TurnsSheet telling={telling} changes={changes} actions={actions} />
       <CallOrdersSheet telling={telling} changes={changes} actions={actions} />
       {changes ? <Webhooks team={telling.team.slug} owner={telling.role === 'owner'} /> : null}
+      <Sheet heading="Who watches the watcher">
+        <div className="max-w-3xl space-y-2">
+          {watcherNow(telling).map((sentence) => (
+            <p key={sentence}>{sentence}</p>
+          ))}
+        </div>
+      </Sheet>
       <DeliveryLog team={telling.team.slug} retry={actions.retryDeliveryAction} />
     </div>
   )

@@ -10,7 +10,11 @@ export const windowFieldsSchema = z
     reason: z.string(),
     date: z.iso.date('Choose a day.'),
     time: z.string().regex(/^([01]\d|2[0-3]):[0-5]\d$/, 'Give a time of day as 22:00.'),
-    minutes: z.coerce.number().int().min(1, 'Give at least one minute.').max(20_160, 'Give at most 14 days.'),
+    minutes: z.coerce
+      .number('Give a number.')
+      .int('Give whole minutes.')
+      .min(1, 'Give at least one minute.')
+      .max(20_160, 'Give at most 14 days.'),
     zone: zoneSchema,
     /** "1,3" for every Monday and Wednesday; empty for once. */
     weekdays: z.string().regex(/^([1-7](,[1-7])*)?$/),

@@ -1,15 +1,16 @@
 'use client'
 
 import { useId } from 'react'
-import { TextField } from '@/components/ui'
+import { TextField } from './field'
 
 export interface ZoneFieldProps {
   defaultValue: string | null
   error?: string
+  className?: string
 }
 
-/** Any zone by its name; the reader's own where none is chosen yet. Shown in dialogs only, so never on the server. */
-export function ZoneField({ defaultValue, error }: ZoneFieldProps) {
+/** Any zone by its name; the reader's own where none is chosen yet. Never rendered on the server, which does not know the reader's. */
+export function ZoneField({ defaultValue, error, className }: ZoneFieldProps) {
   const id = useId()
   return (
     <>
@@ -21,6 +22,7 @@ export function ZoneField({ defaultValue, error }: ZoneFieldProps) {
         autoComplete="off"
         defaultValue={defaultValue ?? Intl.DateTimeFormat().resolvedOptions().timeZone}
         error={error}
+        className={className}
       />
       <datalist id={id}>
         {Intl.supportedValuesOf('timeZone').map((zone) => (
