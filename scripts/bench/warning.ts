@@ -1,6 +1,8 @@
 import { readFileSync, writeFileSync } from 'node:fs'
 import { parseArgs } from 'node:util'
 import { median } from '@/lib/warn/stats/median'
+import { allAtOnce } from './warning/all-at-once'
+import { calibration, type Forecast, printCalibration } from './warning/calibration'
 import { healthyDays, thinning } from './warning/courses'
 import { incidentsOf } from './warning/incidents'
 import { deviation, fitNoise, type NoiseModel, noiseSchema, ratios } from './warning/noise'
@@ -36,6 +38,8 @@ export function benchWarning(args: readonly string[], print: Print): void {
   )
   falseAlarms(values.quick ? 20 : Number(values.days), noise, print)
   detection(values.quick ? 3 : Number(values.runs), noise, print)
+  foretold(values.quick ? 1 : 5, noise, print)
+  notForeseeable(values.quick ? 1 : 5, print)
 }
 
 function fit(hours: number, print: Print): void {
@@ -132,4 +136,36 @@ function warnedIn(
     leadMinutes: Math.max(0, (lastGoneAtMs - raisedAtMs) / 60_000),
     wasRaised: incidents.some((one) => one.raisedAtMs < beganAtMs && one.clearedAtMs > beganAtMs),
   }
+}
+
+function foretold(runs: number, noise: NoiseModel, print: Print): void {
+  print('')
+  print(
+    `Forecasts of falling rules while links thin over 6 or 48 hours, ${runs} runs each: how often the floor was reached within the hours asked for.`,
+  )
+  const forecasts: Forecast[] = thinningOverlays().flatMap((overlay) =>
+    [6, 48].flatMap((hours) =>
+      Array.from({ length: runs }, (_, run) =>
+        calibration(thinning(overlay, hours, { noise, seed: `forecast ${overlay.name} ${hours} ${run}` })),
+      ).flat(),
+    ),
+  )
+  printCalibration(forecasts, print)
+}
+
+function notForeseeable(runs: number, print: Print): void {
+  print('')
+  print(
+    `All links between two clusters lost at once, walkers, ${runs} runs each: not foreseeable. Seconds until a reading says so, and until people are told.`,
+  )
+  for (const overlay of thinningOverlays())
+    for (const silent of [false, true]) {
+      const seen = Array.from({ length: runs }, (_, run) => allAtOnce(overlay, { silent, seed: `${run}` }))
+      const said = seen.map(({ saidSeconds }) => saidSeconds)
+      const told = seen.map(({ seconds }) => seconds)
+      const rules = [...new Set(seen.map(({ rule }) => rule))].join(', ')
+      print(
+        `${overlay.name.padEnd(34)} ${silent ? 'one side silent' : 'both sides heard'}  said ${median(said).toFixed(0).padStart(3)} (most ${Math.max(...said).toFixed(0)})  told ${median(told).toFixed(0).padStart(3)} (most ${Math.max(...told).toFixed(0)})  by ${rules}`,
+      )
+    }
 }
