@@ -22,6 +22,8 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'level-changed': { word: 'level', shape: 'hollow' },
   'link-lost': { word: 'link', shape: 'short' },
   'link-found': { word: 'link', shape: 'full' },
+  'link-weakened': { word: 'link', shape: 'short' },
+  'link-recovered': { word: 'link', shape: 'full' },
   withheld: { word: 'withheld', shape: 'dashed' },
   resumed: { word: 'resumed', shape: 'full' },
   'key-rotated': { word: 'key', shape: 'hollow' },
@@ -30,6 +32,7 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'collector-away': { word: 'collector', shape: 'dashed' },
   'incident-raised': { word: 'incident', shape: 'hollow' },
   'incident-cleared': { word: 'incident', shape: 'full' },
+  'warnings-away': { word: 'warnings', shape: 'dashed' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

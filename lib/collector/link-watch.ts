@@ -8,6 +8,10 @@ export const LINK_STILL_INTERVALS = 3
 /** What is there when the watch begins is no news. */
 const LEARNING_INTERVALS = 10
 const MOST_NAMED = 3
+/** A link that delivers less than this share of what it did has weakened, */
+export const WEAKENED_SHARE = 0.5
+/** and is as it was from this share on. */
+export const RECOVERED_SHARE = 0.8
 
 interface Watched {
   a: string
@@ -16,9 +20,21 @@ interface Watched {
   sinceMs: number
   /** What was last said of it. */
   known: boolean
+  /** The most it has carried, of late. */
+  full: number
+  weakened: boolean
+  /** Since when its weight contradicts what was last said. */
+  weightSinceMs: number | null
 }
 
-/** Follows which links agents name, where links are named. Knows only what it saw itself. */
+interface Named {
+  a: string
+  b: string
+  /** What both ends say at most. */
+  weight: number
+}
+
+/** Follows which links agents name and what those deliver, where links are named. Knows only what it saw itself. */
 export class LinkWatch {
   readonly #links = new Map<string, Watched>()
   #sinceMs: number | null = null
@@ -27,36 +43,68 @@ export class LinkWatch {
   watch(snapshot: Snapshot, nameOf: (agentId: string) => string, intervalMs: number): EventDraft[] {
     this.#sinceMs ??= snapshot.atMs
     const heard = new Set<string>()
-    const named = new Map<string, [string, string]>()
+    const named = new Map<string, Named>()
     for (const agent of snapshot.agents) {
       if (!isHeard(agent, snapshot.atMs, intervalMs)) continue
       heard.add(agent.agentId)
-      for (const { peer } of agent.last.report.node.links) {
+      for (const { peer, weight } of agent.last.report.node.links) {
         const [a, b] = agent.agentId < peer ? [agent.agentId, peer] : [peer, agent.agentId]
-        named.set(`${a} ${b}`, [a, b])
+        const other = named.get(`${a} ${b}`)?.weight ?? weight
+        named.set(`${a} ${b}`, { a, b, weight: Math.min(weight, other) })
       }
     }
-    for (const [key, [a, b]] of named) {
-      if (!this.#links.has(key)) this.#links.set(key, { a, b, named: false, sinceMs: 0, known: false })
+    for (const [key, { a, b, weight }] of named) {
+      if (this.#links.has(key)) continue
+      const link = { a, b, named: false, sinceMs: 0, known: false }
+      this.#links.set(key, { ...link, full: weight, weakened: false, weightSinceMs: null })
     }
     const learning = snapshot.atMs - this.#sinceMs < LEARNING_INTERVALS * intervalMs
     const lost: string[] = []
     const found: string[] = []
+    const weakened: string[] = []
+    const recovered: string[] = []
     for (const [key, link] of this.#links) {
       if (!heard.has(link.a) || !heard.has(link.b)) continue
-      const now = named.has(key)
-      if (now !== link.named) Object.assign(link, { named: now, sinceMs: snapshot.atMs })
-      if (link.named === link.known) continue
-      if (!learning && snapshot.atMs - link.sinceMs < LINK_STILL_INTERVALS * intervalMs) continue
-      link.known = link.named
+      const now = named.get(key)
+      const isNamed = now !== undefined
+      const stillMs = LINK_STILL_INTERVALS * intervalMs
+      if (isNamed !== link.named) Object.assign(link, { named: isNamed, sinceMs: snapshot.atMs })
       const pair = [nameOf(link.a), nameOf(link.b)].sort().join(' – ')
+      if (now && link.known && turnsWeight(link, now.weight, { atMs: snapshot.atMs, stillMs }))
+        (link.weakened ? weakened : recovered).push(pair)
+      if (link.named === link.known) continue
+      if (!learning && snapshot.atMs - link.sinceMs < stillMs) continue
+      Object.assign(link, { known: link.named, full: now?.weight ?? 0, weakened: false })
       if (!learning) (link.named ? found : lost).push(pair)
     }
-    return [...said('link-lost', lost, 'lost'), ...said('link-found', found, 'found')]
+    return [
+      ...said('link-lost', lost, 'lost'),
+      ...said('link-found', found, 'found'),
+      ...said('link-weakened', weakened, `delivers less than ${100 * WEAKENED_SHARE} % of what it did`),
+      ...said('link-recovered', recovered, 'delivers as before'),
+    ]
   }
 }
 
-function said(kind: 'link-lost' | 'link-found', pairs: readonly string[], what: string): EventDraft[] {
+/** Whether it has weakened, or recovered, and stayed so. Takes note of the weight. */
+function turnsWeight(
+  link: Watched,
+  weight: number,
+  { atMs, stillMs }: { atMs: number; stillMs: number },
+): boolean {
+  if (!link.weakened) link.full = Math.max(link.full, weight)
+  const turns = link.weakened ? weight >= RECOVERED_SHARE * link.full : weight < WEAKENED_SHARE * link.full
+  if (!turns) {
+    link.weightSinceMs = null
+    return false
+  }
+  link.weightSinceMs ??= atMs
+  if (atMs - link.weightSinceMs < stillMs) return false
+  Object.assign(link, { weakened: !link.weakened, weightSinceMs: null })
+  return true
+}
+
+function said(kind: EventDraft['kind'], pairs: readonly string[], what: string): EventDraft[] {
   if (pairs.length === 0) return []
   const named =
     pairs.length > MOST_NAMED

@@ -351,6 +351,8 @@ export const EVENT_KINDS = [
   'level-changed',
   'link-lost',
   'link-found',
+  'link-weakened',
+  'link-recovered',
   'withheld',
   'resumed',
   'agent-left-out',
@@ -362,6 +364,7 @@ export const EVENT_KINDS = [
   'collector-away',
   'incident-raised',
   'incident-cleared',
+  'warnings-away',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

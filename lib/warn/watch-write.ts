@@ -1,4 +1,5 @@
 /** What the watch writes of one overlay. Inside its transaction. */
+import { tell } from '@/lib/collector/notices'
 import { epochMs, query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 import type { MessageBody } from '@/lib/notify/message'
@@ -82,10 +83,34 @@ export async function writeHappenings(
     `insert into incident_entries (incident_id, at, kind, text)
      select ?::uuid, at, kind, text from overlay_events
      where overlay_id = ? and at > ? and at <= ?
-       and kind in ('link-lost', 'link-found', 'agent-unheard', 'agent-heard', 'level-changed')
+       and kind in ('link-lost', 'link-found', 'link-weakened', 'link-recovered', 'agent-unheard', 'agent-heard',
+         'level-changed', 'warnings-away')
      order by at, id limit ?`,
     [incidentId, overlayId, new Date(sinceMs), new Date(untilMs), HAPPENINGS_MOST],
   )
+}
+
+/** Rules have not been evaluated from one moment to the other; whichever process comes first says so. */
+export async function writeAway(
+  em: EntityManager,
+  overlayId: string,
+  { fromMs, toMs }: { fromMs: number; toMs: number },
+): Promise<void> {
+  const text = `Rules were not evaluated for ${spanText(toMs - fromMs)}: what began meanwhile is told late.`
+  const entered = await query(
+    em,
+    `insert into overlay_events (overlay_id, at, kind, text)
+     select ?::uuid, ?, 'warnings-away', ? where not exists (
+       select from overlay_events where overlay_id = ? and at > ? and kind = 'warnings-away')
+     returning id`,
+    [overlayId, new Date(toMs), text, overlayId, new Date(fromMs)],
+  )
+  if (entered.length > 0) await tell(em, overlayId, { kind: 'event' })
+}
+
+function spanText(ms: number): string {
+  const minutes = Math.round(ms / 60_000)
+  return minutes < 120 ? `${minutes} minutes` : `${Math.round(minutes / 60)} hours`
 }
 
 /** How the reading goes on, now and then. */

@@ -9,6 +9,7 @@ import { advance, type RuleNow } from './advance'
 import { floorValue } from './condition'
 import type { WarnFacts } from './facts'
 import type { Fall, Mean } from './falling'
+import { readPulses } from './heartbeat'
 import type { IncidentNow } from './incident-now'
 import { type IncidentPlan, planIncident } from './plan'
 import * as load from './watch-load'
@@ -64,10 +65,11 @@ export class Watch {
   async look(signal: AbortSignal = new AbortController().signal): Promise<void> {
     const { forkEm, log, now } = this.#components
     let failed = 0
+    const { evaluatingMs } = await readPulses(await forkEm())
     for (const overlayId of await load.overlaysWatched(await forkEm())) {
       if (signal.aborted) return
       try {
-        await this.#lookAt(await forkEm(), overlayId)
+        await this.#lookAt(await forkEm(), overlayId, evaluatingMs)
       } catch (error) {
         failed += 1
         log.error({ overlayId, err: error }, 'the rules of an overlay could not be evaluated')
@@ -88,7 +90,7 @@ export class Watch {
     }
   }
 
-  async #lookAt(em: EntityManager, overlayId: string): Promise<void> {
+  async #lookAt(em: EntityManager, overlayId: string, evaluatingMs: number | null): Promise<void> {
     await em.transactional(async (tx) => {
       const [lock] = await query<{ taken: boolean }>(
         tx,
@@ -97,6 +99,8 @@ export class Watch {
       )
       if (!lock?.taken) return
       const nowMs = this.#components.now().getTime()
+      if (evaluatingMs !== null && nowMs - evaluatingMs > load.SILENCE_MS)
+        await write.writeAway(tx, overlayId, { fromMs: evaluatingMs, toMs: nowMs })
       const teams = await load.loadRules(tx, overlayId)
       const seen = teams.flatMap(({ rules }) => rules.flatMap(({ evaluatedAtMs }) => evaluatedAtMs ?? []))
       const sinceMs = Math.min(nowMs, ...seen)

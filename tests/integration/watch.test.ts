@@ -117,7 +117,8 @@ describe('the watch', () => {
     expect(await told()).toEqual(['raised owner'])
     await clock.advance(10 * MINUTE_MS)
     await reading({ links: 2 })
-    // Another process goes on where this one was.
+    // Two other processes go on where this one was; that nobody looked meanwhile is said once.
+    await Promise.all([watch().look(), watch().look()])
     await watch().look()
     expect(await told()).toEqual(['raised owner', 'next operator'])
     await clock.advance(MINUTE_MS)
@@ -147,6 +148,7 @@ describe('the watch', () => {
       'told',
       'reading',
       'told',
+      'warnings-away',
       'reading',
       'joined',
       'cleared',
@@ -158,7 +160,11 @@ describe('the watch', () => {
       'select kind from overlay_events where overlay_id = ? order by id',
       [seeded.overlay.id],
     )
-    expect(events).toEqual([{ kind: 'incident-raised' }, { kind: 'incident-cleared' }])
+    expect(events).toEqual([
+      { kind: 'incident-raised' },
+      { kind: 'warnings-away' },
+      { kind: 'incident-cleared' },
+    ])
     expect(errors).toEqual([])
   })
 

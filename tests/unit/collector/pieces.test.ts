@@ -243,6 +243,36 @@ describe('a link', () => {
     expect(look(31, true)).toEqual([])
     expect(look(34, true)).toEqual([{ kind: 'link-found', text: 'link tar-01 – tar-02 found' }])
   })
+
+  it('is said to have weakened, and to deliver as before, once it stays so', () => {
+    const watch = new LinkWatch()
+    const look = (second: number, weight: number) => {
+      const agent = (agentId: string, peer: string): Snapshot['agents'][number] => {
+        const report = someReport(1)
+        const links = [{ peer, weight: agentId === '1' ? weight : 1, share: null }]
+        return {
+          agentId,
+          joinedAtMs: 0,
+          last: {
+            receivedAtMs: second * 1000,
+            report: { ...report, node: { ...report.node, links } },
+          },
+        }
+      }
+      const agents = [agent('1', '2'), agent('2', '1')]
+      return watch.watch({ atMs: second * 1000, agents }, (id) => `tar-0${id}`, 1_000)
+    }
+    for (let second = 0; second < 12; second++) expect(look(second, 0.9)).toEqual([])
+    // Not yet half of what it was; then for a moment; then for long.
+    expect([look(12, 0.5), look(16, 0.4), look(18, 0.5), look(19, 0.4), look(21, 0.4)].flat()).toEqual([])
+    const weakened = 'link tar-01 – tar-02 delivers less than 50 % of what it did'
+    expect(look(22, 0.3)).toEqual([{ kind: 'link-weakened', text: weakened }])
+    expect([look(30, 0.2), look(31, 0.7), look(40, 0.75), look(41, 0.6)].flat()).toEqual([])
+    expect([look(42, 0.9), look(44, 0.4), look(45, 0.8), look(47, 0.8)].flat()).toEqual([])
+    expect(look(48, 0.8)).toEqual([
+      { kind: 'link-recovered', text: 'link tar-01 – tar-02 delivers as before' },
+    ])
+  })
 })
 
 it('names are listed in words, many of them counted', () => {
