@@ -139,7 +139,7 @@ describe('what λ₂ comes to without links', () => {
         (set) =>
           [`${set.name}, weighted: ${set.weighted}`, fromEdges(set.nodes, asEdges(set.edges))] as const,
       ),
-  ])('is never more than said for any one link of %s', (_, graph) => {
+  ] as [string, SparseGraph][])('is never more than said for any one link of %s', (_, graph) => {
     const { lambda2, fiedler } = algebraicConnectivity(graph)
     for (const [index, { share }] of linkShares(graph, fiedler, lambda2).entries())
       below(without(graph, new Set([index])), lambda2Without(lambda2, share))

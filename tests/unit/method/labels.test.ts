@@ -230,8 +230,8 @@ describe('what a cut follows', () => {
   })
 
   it('counts the nodes without the label apart', () => {
-    const { labels } = explain((index) =>
-      index % 3 === 0 ? {} : { office: offices[Math.floor(index / 9)]! },
+    const { labels } = explain(
+      (index): Record<string, string> => (index % 3 === 0 ? {} : { office: offices[Math.floor(index / 9)]! }),
     )
     expect(labels).toEqual([expect.objectContaining({ labelled: 24, unlabelled: 12 })])
     expect(labels[0]!.adjusted).toBeCloseTo(1, 9)
