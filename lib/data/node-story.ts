@@ -1,6 +1,7 @@
 import { z } from 'zod'
 import type { MomentNode } from '@/lib/collector/moment'
 import { query } from '@/lib/collector/query'
+import { SIDES } from '@/lib/data/dto'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { type KeptRange, keptOf } from './kept-moments'
@@ -75,7 +76,7 @@ async function courseOf({ em }: Call, range: KeptRange, name: string): Promise<N
         .map(({ atMs, side, state, ...rest }) => ({
           at: new Date(atMs).toISOString(),
           ...rest,
-          side: side === 'a' || side === 'b' ? side : null,
+          side: SIDES.find((each) => each === side) ?? null,
           state: LETTERS[state] ?? ('unheard' as const),
         })),
     )

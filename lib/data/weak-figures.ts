@@ -1,4 +1,5 @@
 import type { OverlayNode, Reading } from '@/lib/data/dto'
+import { headlineLambda2 } from '@/lib/face/weak-links'
 import {
   type CutSizes,
   conductanceOf,
@@ -9,11 +10,6 @@ import {
 import type { WeakPlace } from './weak-dto'
 
 export type WeakNode = Pick<OverlayNode, 'name' | 'labels' | 'side' | 'state' | 'weightedDegree'>
-
-/** λ₂ of what the cut is of: the core where nodes hang loose; the last good one while it is withheld. */
-export function headlineLambda2({ core, lambda2, last }: Reading): number | null {
-  return core?.lambda2 ?? lambda2 ?? last?.lambda2 ?? null
-}
 
 const finite = (value: number): number | null => (Number.isFinite(value) ? value : null)
 

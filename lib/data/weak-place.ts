@@ -2,6 +2,7 @@ import type { z } from 'zod'
 import type { Overlay } from '@/entities'
 import { cursorOf } from '@/lib/collector/namings'
 import type { OverlayLink, Reading } from '@/lib/data/dto'
+import { headlineLambda2 } from '@/lib/face/weak-links'
 import type { Call } from '@/lib/http/call'
 import { lambda2Without } from '@/lib/method/cut-bounds'
 import { explainSides } from '@/lib/method/labels'
@@ -13,7 +14,7 @@ import { joinedNodes } from './nodes'
 import { openOverlay } from './overlays'
 import { memoryOf, presentReading } from './readings'
 import { lastSchema, type WeakLink, type WeakPlace } from './weak-dto'
-import { figuresOf, headlineLambda2, remarkOf, runnerUpOf, type WeakNode, whyNoSides } from './weak-figures'
+import { figuresOf, remarkOf, runnerUpOf, type WeakNode, whyNoSides } from './weak-figures'
 
 export const weakQuerySchema = momentQuerySchema.extend({
   /** How far back the courses of links go. */
