@@ -12,6 +12,10 @@ const MOST_NAMED = 3
 export const WEAKENED_SHARE = 0.5
 /** and is as it was from this share on. */
 export const RECOVERED_SHARE = 0.8
+/** More links come and go at once only where an overlay begins: how old each of them is does not matter then. */
+const MOST_KEPT = 500
+
+type Pair = [a: string, b: string]
 
 interface Watched {
   a: string
@@ -59,17 +63,18 @@ export class LinkWatch {
       this.#links.set(key, { ...link, full: weight, weakened: false, weightSinceMs: null })
     }
     const learning = snapshot.atMs - this.#sinceMs < LEARNING_INTERVALS * intervalMs
-    const lost: string[] = []
-    const found: string[] = []
-    const weakened: string[] = []
-    const recovered: string[] = []
+    const lost: Pair[] = []
+    const found: Pair[] = []
+    const weakened: Pair[] = []
+    const recovered: Pair[] = []
     for (const [key, link] of this.#links) {
       if (!heard.has(link.a) || !heard.has(link.b)) continue
       const now = named.get(key)
       const isNamed = now !== undefined
       const stillMs = LINK_STILL_INTERVALS * intervalMs
       if (isNamed !== link.named) Object.assign(link, { named: isNamed, sinceMs: snapshot.atMs })
-      const pair = [nameOf(link.a), nameOf(link.b)].sort().join(' – ')
+      const [first, second] = [nameOf(link.a), nameOf(link.b)]
+      const pair: Pair = first < second ? [first, second] : [second, first]
       if (now && link.known && turnsWeight(link, now.weight, { atMs: snapshot.atMs, stillMs }))
         (link.weakened ? weakened : recovered).push(pair)
       if (link.named === link.known) continue
@@ -104,11 +109,11 @@ function turnsWeight(
   return true
 }
 
-function said(kind: EventDraft['kind'], pairs: readonly string[], what: string): EventDraft[] {
-  if (pairs.length === 0) return []
+function said(kind: EventDraft['kind'], links: readonly Pair[], what: string): EventDraft[] {
+  if (links.length === 0) return []
   const named =
-    pairs.length > MOST_NAMED
-      ? countOf(pairs.length, 'link')
-      : `${pairs.length === 1 ? 'link' : 'links'} ${listOf(pairs)}`
-  return [{ kind, text: `${named} ${what}` }]
+    links.length > MOST_NAMED
+      ? countOf(links.length, 'link')
+      : `${links.length === 1 ? 'link' : 'links'} ${listOf(links.map((pair) => pair.join(' – ')))}`
+  return [{ kind, text: `${named} ${what}`, data: { links: links.slice(0, MOST_KEPT) } }]
 }

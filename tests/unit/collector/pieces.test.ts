@@ -238,10 +238,11 @@ describe('a link', () => {
     expect(look(12, false)).toEqual([])
     expect(look(14, true)).toEqual([])
     expect([look(15, false), look(17, false)]).toEqual([[], []])
-    expect(look(18, false)).toEqual([{ kind: 'link-lost', text: 'link tar-01 – tar-02 lost' }])
+    const data = { links: [['tar-01', 'tar-02']] }
+    expect(look(18, false)).toEqual([{ kind: 'link-lost', text: 'link tar-01 – tar-02 lost', data }])
     expect([look(19, true, true), look(30, true, true)]).toEqual([[], []])
     expect(look(31, true)).toEqual([])
-    expect(look(34, true)).toEqual([{ kind: 'link-found', text: 'link tar-01 – tar-02 found' }])
+    expect(look(34, true)).toEqual([{ kind: 'link-found', text: 'link tar-01 – tar-02 found', data }])
   })
 
   it('is said to have weakened, and to deliver as before, once it stays so', () => {
@@ -265,12 +266,13 @@ describe('a link', () => {
     for (let second = 0; second < 12; second++) expect(look(second, 0.9)).toEqual([])
     // Not yet half of what it was; then for a moment; then for long.
     expect([look(12, 0.5), look(16, 0.4), look(18, 0.5), look(19, 0.4), look(21, 0.4)].flat()).toEqual([])
+    const data = { links: [['tar-01', 'tar-02']] }
     const weakened = 'link tar-01 – tar-02 delivers less than 50 % of what it did'
-    expect(look(22, 0.3)).toEqual([{ kind: 'link-weakened', text: weakened }])
+    expect(look(22, 0.3)).toEqual([{ kind: 'link-weakened', text: weakened, data }])
     expect([look(30, 0.2), look(31, 0.7), look(40, 0.75), look(41, 0.6)].flat()).toEqual([])
     expect([look(42, 0.9), look(44, 0.4), look(45, 0.8), look(47, 0.8)].flat()).toEqual([])
     expect(look(48, 0.8)).toEqual([
-      { kind: 'link-recovered', text: 'link tar-01 – tar-02 delivers as before' },
+      { kind: 'link-recovered', text: 'link tar-01 – tar-02 delivers as before', data },
     ])
   })
 })
