@@ -11,6 +11,7 @@ export function overlayPages(slug: string): PageEntry[] {
   const base = `/overlays/${encodeURIComponent(slug)}`
   return [
     { letter: 'A', label: 'Now', href: base },
+    { letter: 'D', label: 'Reinforcement', href: `${base}/reinforcement` },
     { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
     { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
     { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
