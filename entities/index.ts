@@ -20,6 +20,7 @@ import { OverlayEventSchema } from './overlay-event'
 import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { PasswordLinkSchema } from './password-link'
+import { PlannedLinkSchema } from './planned-link'
 import { ReadingSchema } from './reading'
 import { SessionSchema } from './session'
 import { ShutAgentSchema } from './shut-agent'
@@ -53,6 +54,7 @@ export * from './overlay-event'
 export * from './overlay-key'
 export * from './overlay-key-ring'
 export * from './password-link'
+export * from './planned-link'
 export * from './reading'
 export * from './session'
 export * from './shut-agent'
@@ -87,6 +89,7 @@ export const entities = [
   OverlayKeySchema,
   OverlayKeyRingSchema,
   PasswordLinkSchema,
+  PlannedLinkSchema,
   ReadingSchema,
   SessionSchema,
   ShutAgentSchema,

@@ -12,10 +12,12 @@ export function overlayPages(slug: string): PageEntry[] {
   return [
     { letter: 'A', label: 'Now', href: base },
     { letter: 'B', label: 'Weak place', href: `${base}/weak` },
-    { letter: 'C', label: 'Nodes', href: `${base}/nodes` },
-    { letter: 'D', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'E', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'F', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'C', label: 'Rehearsals', href: `${base}/rehearsals` },
+    { letter: 'D', label: 'Reinforcement', href: `${base}/reinforcement` },
+    { letter: 'E', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'F', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'G', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'H', label: 'Warnings', href: `${base}/warnings` },
   ]
 }
 

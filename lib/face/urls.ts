@@ -20,6 +20,8 @@ export function overlayUrls(slug: string) {
     rules: `${base}/rules`,
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
+    reinforcement: `${base}/reinforcement`,
+    plannedLinks: `${base}/reinforcement/planned`,
   }
 }
 
