@@ -21,6 +21,7 @@ import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { PasswordLinkSchema } from './password-link'
 import { ReadingSchema } from './reading'
+import { RehearsalSchema } from './rehearsal'
 import { SessionSchema } from './session'
 import { ShutAgentSchema } from './shut-agent'
 import { StandInSchema } from './stand-in'
@@ -54,6 +55,7 @@ export * from './overlay-key'
 export * from './overlay-key-ring'
 export * from './password-link'
 export * from './reading'
+export * from './rehearsal'
 export * from './session'
 export * from './shut-agent'
 export * from './stand-in'
@@ -88,6 +90,7 @@ export const entities = [
   OverlayKeyRingSchema,
   PasswordLinkSchema,
   ReadingSchema,
+  RehearsalSchema,
   SessionSchema,
   ShutAgentSchema,
   StandInSchema,

@@ -30,6 +30,9 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'collector-away': { word: 'collector', shape: 'dashed' },
   'incident-raised': { word: 'incident', shape: 'hollow' },
   'incident-cleared': { word: 'incident', shape: 'full' },
+  'rehearsal-planned': { word: 'rehearsal', shape: 'hollow' },
+  'rehearsal-started': { word: 'rehearsal', shape: 'hollow' },
+  'rehearsal-ended': { word: 'rehearsal', shape: 'hollow' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

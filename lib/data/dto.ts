@@ -362,6 +362,9 @@ export const EVENT_KINDS = [
   'collector-away',
   'incident-raised',
   'incident-cleared',
+  'rehearsal-planned',
+  'rehearsal-started',
+  'rehearsal-ended',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),
