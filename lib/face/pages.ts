@@ -12,9 +12,10 @@ export function overlayPages(slug: string): PageEntry[] {
   return [
     { letter: 'A', label: 'Now', href: base },
     { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
-    { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'E', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'C', label: 'Rehearsals', href: `${base}/rehearsals` },
+    { letter: 'D', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'E', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'F', label: 'Warnings', href: `${base}/warnings` },
   ]
 }
 

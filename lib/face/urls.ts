@@ -16,6 +16,8 @@ export function overlayUrls(slug: string) {
     rules: `${base}/rules`,
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
+    rehearsals: `${base}/rehearsals`,
+    rehearsal: (id: string) => `${base}/rehearsals/${encodeURIComponent(id)}`,
   }
 }
 
