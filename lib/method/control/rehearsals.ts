@@ -17,6 +17,9 @@ export const MOST_INTERVALS = 120
 /** And so long in all. */
 export const MOST_INTERVALS_IN_ALL = 300
 
+/** Evaluations further apart than this had nobody leading between them. */
+const LED_WITHIN_INTERVALS = 3
+
 /** What is to be rehearsed, by agent ids. */
 export interface Rehearsed {
   id: string
@@ -46,7 +49,7 @@ export interface RehearsalControl {
   progress: number
 }
 
-export type RehearsalFailure = 'too-old' | 'too-few' | 'unheard' | 'no-time' | 'changing'
+export type RehearsalFailure = 'too-old' | 'too-few' | 'unheard' | 'no-time'
 
 export interface RehearsalEstimate {
   id: string
@@ -93,7 +96,7 @@ export function rehearse(live: Live, input: EvaluateInput, firstSlot: number): R
   const places = new Set(kept.map(({ place }) => place))
   const all = wanted.map((each) => {
     const known = kept.find(({ id }) => id === each.id)
-    if (known) return known
+    if (known) return resumed(known, input.now.atMs, input.settings.pace.intervalMs)
     const place = [...Array(MOST_REHEARSALS).keys()].find((free) => !places.has(free)) ?? 0
     places.add(place)
     return newRehearsal(each, place, live.apart, input.now.atMs)
@@ -120,6 +123,19 @@ function newRehearsal(
     agreedSinceMs: null,
     apartSinceMs: null,
     progress: 0,
+  }
+}
+
+/** While nobody led, agents stood still: that time is none. */
+function resumed(one: RehearsalControl, atMs: number, intervalMs: number): RehearsalControl {
+  const goneMs = atMs - one.lastAtMs - LED_WITHIN_INTERVALS * intervalMs
+  if (goneMs <= 0) return one
+  return {
+    ...one,
+    askedAtMs: one.askedAtMs + goneMs,
+    lastAtMs: one.lastAtMs + goneMs,
+    agreedSinceMs: null,
+    apartSinceMs: null,
   }
 }
 
