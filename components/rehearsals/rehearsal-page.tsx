@@ -8,7 +8,7 @@ import { roleReaches } from '@/lib/auth/permissions'
 import type { RehearsalDto } from '@/lib/data/rehearsal-dto'
 import { cx } from '@/lib/face/cx'
 import { formatReading } from '@/lib/face/format'
-import { excludedWords, headline, isOpen, rehearsalsPage, rehearseHref } from '@/lib/face/rehearsal'
+import { detailOf, excludedWords, headline, isOpen, rehearsalsPage, rehearseHref } from '@/lib/face/rehearsal'
 import { incidentUrls } from '@/lib/face/urls'
 import { CancelButton, RepeatButton } from './acts'
 import { RehearsalCautions } from './cautions'
@@ -62,6 +62,7 @@ export function RehearsalPage({ slug, initial, actions }: RehearsalPageProps) {
 function Head({ slug, rehearsal }: { slug: string; rehearsal: RehearsalDto }) {
   const now = useNow()
   const { answer, verdict, state, floor } = rehearsal
+  const detail = detailOf(rehearsal)
   return (
     <header>
       <p className="flex flex-wrap gap-x-4 gap-y-1 text-soft">
@@ -90,7 +91,7 @@ function Head({ slug, rehearsal }: { slug: string; rehearsal: RehearsalDto }) {
         {headline(rehearsal, now)}
       </h1>
       <div className="mt-3 max-w-3xl space-y-1.5">
-        {verdict && state !== 'failed' ? <p className="text-lg text-soft">{verdict}</p> : null}
+        {detail ? <p className="text-lg text-soft">{detail}</p> : null}
         {verdict && state === 'failed' ? <Outcome ok={false}>{verdict}</Outcome> : null}
         <p className="break-words">
           <span className="text-soft">Taken away: </span>

@@ -19,6 +19,7 @@ export { AHEAD_MS, type SoonWindow, soonWindows } from './windows'
 export {
   ANSWER_WORDS,
   awayWords,
+  detailOf,
   headline,
   isOpen,
   lastLine,

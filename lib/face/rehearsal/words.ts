@@ -61,6 +61,12 @@ export function headline(rehearsal: RehearsalDto, nowMs: number | null): string 
     : `About to begin: ${does}.`
 }
 
+/** The rest of what the server says of it, whose first sentence is the answer that the headline has. */
+export function detailOf({ verdict, answer }: Pick<RehearsalDto, 'verdict' | 'answer'>): string | null {
+  if (verdict === null || answer === null) return null
+  return verdict.replace(/^It (holds|does not hold|splits)\.\s*/, '')
+}
+
 const ANSWERS: Record<Answer, (does: string) => string> = {
   holds: (does) => `Yes: ${does} holds`,
   'below-floor': (does) => `No: ${does} brings the reading below the floor`,

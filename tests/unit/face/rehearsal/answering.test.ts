@@ -1,6 +1,14 @@
 import { describe, expect, it } from 'vitest'
 import type { RehearsalDto } from '@/lib/data/rehearsal-dto'
-import { compared, headline, lastLine, NOTHING, progressText, stateWord } from '@/lib/face/rehearsal'
+import {
+  compared,
+  detailOf,
+  headline,
+  lastLine,
+  NOTHING,
+  progressText,
+  stateWord,
+} from '@/lib/face/rehearsal'
 import { minutesAway, NOW, rehearsal } from './fixtures'
 
 const office = { ...NOTHING, labels: [{ key: 'office', value: 'Eelholm' }] }
@@ -51,6 +59,14 @@ describe('the sentence of a rehearsal', () => {
     expect(headline(rehearsal({ ...waiting, startsAt: minutesAway(90) }), NOW)).toMatch(
       /^Planned for (1[23] Mar )?\d\d:\d\d: draining tar-01 and tar-02\.$/,
     ))
+})
+
+it('what the server says beyond the answer stands below it', () => {
+  const verdict = 'It does not hold. Without tar-01 the reading would be 0.31.'
+  expect(detailOf(rehearsal({ answer: 'below-floor', verdict }))).toBe(
+    'Without tar-01 the reading would be 0.31.',
+  )
+  expect(detailOf(rehearsal({ answer: null, state: 'failed' }))).toBeNull()
 })
 
 describe('how far it has come', () => {

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest'
 import type { Excluded } from '@/lib/data/rehearsal-dto'
 import {
   askedOf,
+  type ChooseFrom,
   choiceSentence,
   chosenOf,
   type Draft,
@@ -48,7 +49,8 @@ describe('the sentence before a rehearsal', () => {
 })
 
 describe('what stands against a rehearsal', () => {
-  const problems = (over: Partial<Excluded>, from = named) => chosenOf(exclude(over), from).problems
+  const problems = (over: Partial<Excluded>, from: ChooseFrom = named) =>
+    chosenOf(exclude(over), from).problems
 
   it('is nothing for nodes that have joined, unheard or not', () =>
     expect(problems({ nodes: ['tar-01', 'pin-02'] })).toEqual([]))
