@@ -22,6 +22,7 @@ import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { PasswordLinkSchema } from './password-link'
 import { PlannedLinkSchema } from './planned-link'
 import { ReadingSchema } from './reading'
+import { RehearsalSchema } from './rehearsal'
 import { SessionSchema } from './session'
 import { ShutAgentSchema } from './shut-agent'
 import { StandInSchema } from './stand-in'
@@ -56,6 +57,7 @@ export * from './overlay-key-ring'
 export * from './password-link'
 export * from './planned-link'
 export * from './reading'
+export * from './rehearsal'
 export * from './session'
 export * from './shut-agent'
 export * from './stand-in'
@@ -91,6 +93,7 @@ export const entities = [
   PasswordLinkSchema,
   PlannedLinkSchema,
   ReadingSchema,
+  RehearsalSchema,
   SessionSchema,
   ShutAgentSchema,
   StandInSchema,

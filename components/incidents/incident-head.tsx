@@ -2,9 +2,10 @@
 
 import Link from 'next/link'
 import { useState } from 'react'
-import { Button, buttonClass, Outcome, Time, useNow } from '@/components/ui'
+import { Button, buttonClass, LinkButton, Outcome, Time, useNow } from '@/components/ui'
 import type { IncidentWhole } from '@/lib/data/warn-dto'
 import { holderWords, isMuted } from '@/lib/face/incidents'
+import { rehearseHref } from '@/lib/face/rehearsal'
 import { incidentUrls } from '@/lib/face/urls'
 import { submit } from '@/lib/http/form-state'
 import { HandOverDialog, MuteDialog, ReopenDialog, ResolveDialog, UnmuteButton } from './act-dialogs'
@@ -56,6 +57,11 @@ export function IncidentHead({ incident, may, actions, onDone }: HeadProps) {
       <div className="mt-4 flex flex-wrap gap-2">
         {may ? (
           <Acts {...{ incident, may, actions, onDone }} muted={now !== null && isMuted(incident, now)} />
+        ) : null}
+        {may && state !== 'resolved' ? (
+          <LinkButton href={rehearseHref(overlay.slug, { incident: number })}>
+            Rehearse what to take away
+          </LinkButton>
         ) : null}
         <ReportLink number={number} />
       </div>

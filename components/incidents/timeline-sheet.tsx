@@ -40,6 +40,7 @@ const SHAPES: Record<EntryKind, MarkShape> = {
   muted: 'short',
   unmuted: 'full',
   maintenance: 'short',
+  rehearsal: 'hollow',
   resolved: 'hollow',
   reopened: 'full',
 }

@@ -17,6 +17,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { type RehearsalDto, rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { linkStorySchema, momentsSchema, nodeStorySchema, weakPlaceSchema } from '@/lib/data/weak-dto'
@@ -35,14 +36,14 @@ export interface Live<T> {
   retry: () => void
 }
 
-interface LiveOptions {
+interface LiveOptions<T = unknown> {
   /** How often to ask while the stream is open: the stream says when, this is the net below it. */
-  streamingMs?: number
+  streamingMs?: number | ((latest: T | undefined) => number)
   /** How often to ask without a stream. */
   pollMs?: number
 }
 
-function useLive<T>(key: string | null, load: () => Promise<T>, options: LiveOptions = {}): Live<T> {
+function useLive<T>(key: string | null, load: () => Promise<T>, options: LiveOptions<T> = {}): Live<T> {
   const streaming = useStreaming()
   const [seen, setSeen] = useState<{ data: T | undefined; atMs: number | null }>({
     data: undefined,
@@ -87,9 +88,10 @@ export function useNodes(slug: string) {
   return useLive(url, () => getAll(url, nodesSchema), { streamingMs: 15_000 })
 }
 
-export function useLinks(slug: string) {
-  const url = overlayUrls(slug).links
-  return useLive(url, () => getAll(url, linksSchema), { streamingMs: 15_000 })
+/** Null asks nothing. */
+export function useLinks(slug: string | null) {
+  const url = slug === null ? null : overlayUrls(slug).links
+  return useLive(url, () => getAll(url ?? '', linksSchema), { streamingMs: 15_000 })
 }
 
 export function useEvents(slug: string) {
@@ -135,6 +137,35 @@ export function useRules(slug: string) {
 export function useWindows(slug: string) {
   const url = overlayUrls(slug).windows
   return useLive(url, async () => (await getJson(url, maintenanceWindowsSchema)).items)
+}
+
+/** How far a rehearsal has come is not told by the stream; when it begins and ends is. */
+const REHEARSING_MS = 1_500
+const RESTING_MS = 15_000
+const isRehearsing = ({ state, startsAt }: RehearsalDto): boolean =>
+  state === 'running' || (state === 'waiting' && startsAt === null)
+
+export function useRehearsals(slug: string) {
+  const url = overlayUrls(slug).rehearsals
+  return useLive(url, () => getJson(url, rehearsalsSchema), {
+    streamingMs: (latest) => (latest?.items.some(isRehearsing) ? REHEARSING_MS : RESTING_MS),
+  })
+}
+
+export function useRehearsal(slug: string, id: string) {
+  const url = overlayUrls(slug).rehearsal(id)
+  return useLive(url, () => getJson(url, rehearsalSchema), {
+    streamingMs: (latest) => (!latest || isRehearsing(latest) ? REHEARSING_MS : RESTING_MS),
+  })
+}
+
+/** The overlay's reading of a past moment; null asks nothing. */
+export function useReadingThen(slug: string, at: string | null) {
+  const url = at === null ? null : `${overlayUrls(slug).reading}?at=${encodeURIComponent(at)}`
+  return useLive(url, () => getJson(url ?? '', readingSchema).catch(nullBeforeFirst), {
+    streamingMs: 0,
+    pollMs: 0,
+  })
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

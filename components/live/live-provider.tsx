@@ -50,6 +50,7 @@ export function LiveProvider({ slug, children }: { slug: string; children: React
     }
     const onEvent = () => {
       for (const url of [urls.events, urls.codes, urls.overlay]) void mutate(url)
+      void mutate((key) => typeof key === 'string' && key.startsWith(urls.rehearsals))
       refreshLists()
     }
     const on = { reading: onReading, event: onEvent }

@@ -33,6 +33,9 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'incident-raised': { word: 'incident', shape: 'hollow' },
   'incident-cleared': { word: 'incident', shape: 'full' },
   'warnings-away': { word: 'warnings', shape: 'dashed' },
+  'rehearsal-planned': { word: 'rehearsal', shape: 'hollow' },
+  'rehearsal-started': { word: 'rehearsal', shape: 'hollow' },
+  'rehearsal-ended': { word: 'rehearsal', shape: 'hollow' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

@@ -10,6 +10,7 @@ import { NowHead } from './head'
 import { IncidentLines } from './incident-line'
 import { LastHourSheet } from './last-hour-sheet'
 import { MonthReports } from './month-reports'
+import { RehearsalLine } from './rehearsal-line'
 import { StretchSheet } from './stretch-sheet'
 
 /** The first page of an overlay. What has nothing to show before the first agent is left out until then. */
@@ -22,6 +23,7 @@ export function Now({ slug }: { slug: string }) {
       <IncidentLines slug={slug} />
       <NowHead slug={slug} />
       <Coverage slug={slug} />
+      <RehearsalLine slug={slug} />
       {overlay.data?.demo ? (
         <Note>
           {overlay.data.name} is an invented overlay: its agents are real and run on this machine, its story

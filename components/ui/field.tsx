@@ -15,7 +15,7 @@ export interface FieldProps {
   /** What the value does, in plain words. */
   hint?: ReactNode
   /** What is wrong and how to put it right. */
-  error?: string | null
+  error?: ReactNode
   optional?: boolean
   className?: string
   children: (control: FieldControl) => ReactNode

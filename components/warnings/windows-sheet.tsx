@@ -1,5 +1,6 @@
 'use client'
 
+import Link from 'next/link'
 import { useActionState, useMemo } from 'react'
 import { Freshness } from '@/components/live/freshness'
 import { useNodes, useWindows } from '@/components/live/hooks'
@@ -21,6 +22,7 @@ import {
 } from '@/components/ui'
 import type { MaintenanceWindowDto } from '@/lib/data/rules-dto'
 import { labelChoices } from '@/lib/face/node-columns'
+import { rehearseHref } from '@/lib/face/rehearsal'
 import { type FormState, fieldError, fieldValue, IDLE, submit } from '@/lib/http/form-state'
 import type { WarningActions } from './types'
 
@@ -36,7 +38,7 @@ const REPEATS = [
 export function WindowsSheet({ slug, actions }: { slug: string; actions: WarningActions | null }) {
   const windows = useWindows(slug)
   const columns = useMemo(
-    () => [...COLUMNS, ...(actions ? [endColumn(slug, actions, windows.retry)] : [])],
+    () => [...COLUMNS, ...(actions ? [rehearseColumn(slug), endColumn(slug, actions, windows.retry)] : [])],
     [slug, actions, windows.retry],
   )
   return (
@@ -98,6 +100,21 @@ const COLUMNS: Column<MaintenanceWindowDto>[] = [
         : 'once',
   },
 ]
+
+function rehearseColumn(slug: string): Column<MaintenanceWindowDto> {
+  return {
+    id: 'rehearse',
+    header: 'rehearse',
+    data: false,
+    value: () => null,
+    cell: ({ id, next, label }) =>
+      next.length === 0 || label === null ? null : (
+        <Link href={rehearseHref(slug, { window: id })} className="rule-link whitespace-nowrap">
+          Rehearse this window
+        </Link>
+      ),
+  }
+}
 
 function endColumn(slug: string, actions: WarningActions, onDone: () => void): Column<MaintenanceWindowDto> {
   return {

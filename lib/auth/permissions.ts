@@ -104,6 +104,9 @@ export const PERMISSIONS = {
   'rule.list': reads('viewer', 'read'),
   'rule.change': writes('operator', 'write'),
   'window.change': writes('operator', 'write'),
+  'rehearsal.list': reads('viewer', 'read'),
+  'rehearsal.start': writes('operator', 'write'),
+  'rehearsal.cancel': writes('operator', 'write'),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -6,6 +6,8 @@ import type { Complaint, NodeFacts, Sums } from '@/lib/method/report'
 import { MAX_SHUT } from '@/lib/protocol'
 import { PASS_TAIL_MS } from './passes'
 import { epochMs, query } from './query'
+import type { OpenRehearsal, TeamFloor } from './rehearsal/open'
+import { loadFloors } from './rehearsal/store'
 import type { KeyText } from './signer'
 
 export interface LoadedAgent extends JoinedAgent {
@@ -32,6 +34,9 @@ export interface Loaded {
   leftOutNames: readonly { name: string; because: string }[]
   key: KeyText
   keysInTurn: readonly KeyInTurn[]
+  /** Rehearsals that wait or run, in the order they were asked for, and the floors they are held against. */
+  rehearsals: readonly OpenRehearsal[]
+  floors: readonly TeamFloor[]
   snapshot: Omit<Snapshot, 'agents'> & { agents: readonly LoadedAgent[] }
 }
 
@@ -56,7 +61,12 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
         from agents a where a.overlay_id = o.id and a.state = 'left-out') as "leftOutNames",
        (select coalesce(jsonb_agg(jsonb_build_object('publicKey', k.public_key, 'state', k.state,
           'untilMs', ${epochMs('k.until')}, 'ringVersion', k.ring_version)), '[]')
-        from overlay_keys k where k.overlay_id = o.id) as "keysInTurn"
+        from overlay_keys k where k.overlay_id = o.id) as "keysInTurn",
+       (select coalesce(jsonb_agg(jsonb_build_object('id', r.id, 'teamId', r.team_id, 'incidentId', r.incident_id,
+          'state', r.state, 'startsAtMs', ${epochMs('r.starts_at')}, 'startedAtMs', ${epochMs('r.started_at')},
+          'progress', r.progress, 'exclude', r.exclude, 'taken', r.taken, 'remain', r.remain, 'result', r.result,
+          'plan', r.plan) order by coalesce(r.starts_at, r.asked_at), r.id), '[]')
+        from rehearsals r where r.overlay_id = o.id and r.state in ('waiting', 'running')) as rehearsals
      from overlays o where o.id = ?`,
     [overlayId],
   )
@@ -66,6 +76,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
     ...rest,
     key: { publicKey, privateKey },
     shut: await loadShut(em, overlayId),
+    floors: overlay.rehearsals.length > 0 ? await loadFloors(em, overlayId) : [],
     // Whole milliseconds, as rows keep them; upwards, so that no report is from the future.
     snapshot: { atMs: Math.ceil(nowMs), agents: agents.map(toAgent) },
   }
@@ -84,7 +95,7 @@ async function loadShut(em: EntityManager, overlayId: string): Promise<Loaded['s
   )
 }
 
-type OverlayRow = Omit<Loaded, 'shut' | 'snapshot' | 'key'> & KeyText & { nowMs: number }
+type OverlayRow = Omit<Loaded, 'shut' | 'snapshot' | 'key' | 'floors'> & KeyText & { nowMs: number }
 
 interface AgentRow {
   agentId: string

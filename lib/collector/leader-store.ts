@@ -8,6 +8,8 @@ import { type StoredState, storedStateSchema } from './memory'
 import { overlayChannel } from './notices'
 import { type Bindable, query } from './query'
 import { columnsOf } from './reading-columns'
+import type { RehearsalChange } from './rehearsal/open'
+import { writeChanges } from './rehearsal/store'
 import { type KeyText, signerOf } from './signer'
 
 export type { Loaded, LoadedAgent } from './leader-load'
@@ -21,6 +23,7 @@ export interface Round {
   /** Null where no row is worth it. */
   reading: Reading | null
   events: readonly EventDraft[]
+  rehearsals: readonly RehearsalChange[]
   /** Agents whose figures do not hold: from here on not of the overlay, until an operator readmits them. */
   leftOut: readonly { agentId: string; because: string }[]
 }
@@ -98,6 +101,7 @@ export class LeaderStore {
       if (fenced.length === 0) return false
       if (round.reading) await insertReading(tx, this.#overlayId, round.reading)
       const leftOut = await leaveOut(tx, round.leftOut)
+      await writeChanges(tx, this.#overlayId, round.rehearsals, new Date(round.state.memory.judgedAtMs ?? 0))
       await insertEvents(tx, this.#overlayId, { ...round, events: [...round.events, ...leftOut] })
       return true
     })

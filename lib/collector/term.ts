@@ -20,6 +20,8 @@ import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
 import type { PlannedLinks } from './planned'
+import { linksFor } from './rehearsal/links'
+import { planRehearsals, tellRehearsals } from './rehearsal/round'
 import type { Upkeep } from './upkeep'
 import { type Usual, usualNow } from './usual'
 
@@ -132,7 +134,16 @@ export class Term {
       shut: loaded.shut,
       weights: loaded.weights,
     }
-    const round = { ...last, sequence, orders, key: loaded.key, reading: null, events: [], leftOut: [] }
+    const round = {
+      ...last,
+      sequence,
+      orders,
+      key: loaded.key,
+      reading: null,
+      events: [],
+      rehearsals: [],
+      leftOut: [],
+    }
     // Where another has taken over the next round finds out.
     if (!(await store.write(round))) return
     this.#sequence = sequence
@@ -199,13 +210,19 @@ export class Term {
     })
     this.#audit = audited.memory
     const { snapshot, shut, leftOutNames } = withoutLeftOut(loaded, audited.leftOut)
-    const { control, orders, estimate, core, parts } = evaluateOverlay({
+    const planned = planRehearsals(
+      loaded.rehearsals,
+      { disclosure, agents: snapshot.agents, links: linksFor(loaded, pace) },
+      atMs,
+    )
+    const { control, orders, estimate, core, parts, rehearsals } = evaluateOverlay({
       control: before,
       before: this.#before,
       now: snapshot,
       settings: { ...DEFAULT_SETTINGS, pace, disclosure },
       sequence,
       random: this.#components.random,
+      rehearsals: planned.rehearsed,
     })
     const { reading, memory, events, store } = judge({
       estimate,
@@ -236,6 +253,14 @@ export class Term {
       key,
       reading: store ? told : null,
       events: [...events, ...links],
+      rehearsals: tellRehearsals(planned, rehearsals, {
+        atMs,
+        reading,
+        memory,
+        floors: loaded.floors,
+        meanWeightedDegree: estimate.coverage.meanWeightedDegree,
+        nameOf: (agentId) => names.get(agentId) ?? agentId,
+      }),
       leftOut: audited.leftOut,
     }
     return { round, reading: told }

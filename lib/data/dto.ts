@@ -388,6 +388,9 @@ export const EVENT_KINDS = [
   'incident-raised',
   'incident-cleared',
   'warnings-away',
+  'rehearsal-planned',
+  'rehearsal-started',
+  'rehearsal-ended',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

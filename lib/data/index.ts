@@ -19,6 +19,7 @@ export {
 } from './members'
 export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } from './overlays'
 export { readPasswordLink, setPassword } from './password-links'
+export { cancelRehearsal, createRehearsal, getRehearsal, listRehearsals } from './rehearsals'
 export {
   getReinforcement,
   markJoined,

@@ -80,6 +80,20 @@ export const rehearsalSchema = z.object({
     .nullable(),
 })
 export type RehearsalDto = z.infer<typeof rehearsalSchema>
+/** What the walkers have said of it so far. */
+export type RehearsalResult = Pick<
+  RehearsalDto,
+  'reading' | 'level' | 'sides' | 'crossingLinks' | 'live' | 'floor' | 'answer' | 'waves'
+>
+/** How far the search for an order in waves has come: nodes by name. */
+export interface RehearsalPlan {
+  /** Waves that hold, in their order, and what is still to be placed. */
+  held: NonNullable<RehearsalDto['waves']>
+  left: string[]
+  /** The wave that is being rehearsed now. */
+  tried: string[]
+  tries: number
+}
 export const rehearsalsSchema = z.object({
   items: z.array(rehearsalSchema),
   /** How many may run at once, and whether the caller may start one. */

@@ -24,6 +24,7 @@ export const ENTRY_KINDS = [
   'muted',
   'unmuted',
   'maintenance',
+  'rehearsal',
   'resolved',
   'reopened',
 ] as const

@@ -1,7 +1,7 @@
 const STEP_SECONDS = 5
 
 /** To the next five seconds up, from two minutes on to the minute: nobody can tell more exactly. */
-function about(ms: number): string {
+export function about(ms: number): string {
   const seconds = Math.max(STEP_SECONDS, Math.ceil(ms / 1000 / STEP_SECONDS) * STEP_SECONDS)
   return seconds < 120 ? `${seconds} s` : `${Math.ceil(seconds / 60)} min`
 }

@@ -39,6 +39,8 @@ export const ERRORS = {
   'wrong-state': { status: 409, title: 'The node is not in a state for this', retry: false },
   'not-failed': { status: 409, title: 'The message cannot be sent now', retry: false },
   'incident-state': { status: 409, title: 'The incident is not in a state for this', retry: false },
+  'rehearsal-over': { status: 409, title: 'The rehearsal is over', retry: false },
+  'rehearsals-full': { status: 409, title: 'Too many rehearsals are waiting', retry: true },
   'wrong-file': { status: 415, title: 'The file is of a kind that is not kept', retry: false },
   'has-password': { status: 409, title: 'The person has a password', retry: false },
   'other-team': { status: 409, title: 'Another team gives the link', retry: false },

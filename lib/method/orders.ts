@@ -35,6 +35,18 @@ export interface ColonyOrders {
   refused: readonly string[]
   /** Its walkers stay where they are, whatever ω is. Agents that do not know it let them walk, without births. */
   still?: boolean
+  /** Links by the ids of their ends, which refuse each other's walkers of this colony. Absent: none. */
+  refusedLinks?: readonly (readonly [string, string])[]
+  /** An agent places what it holds of this colony; where it holds none of that seeding, by its half. Absent: by its half. */
+  cloneOf?: { colony: number; seeding: number }
+  /** ω of this colony in the place of the orders', so that a rehearsal leaves the others' alone. */
+  own?: Walk
+}
+
+/** ω, link time per second, now and from an age of the orders on. */
+export interface Walk {
+  linkTimePerSecond: number
+  next?: { linkTimePerSecond: number; fromAgeMs: number }
 }
 
 /** How agents combine their colonies' mean occupancies into a Fiedler value, and where to count cuts. */
@@ -50,6 +62,11 @@ export interface SweepOrders {
   /** The estimate the combination belongs to; shares of links are w(vᵢ−vⱼ)²/(n·λ₂) in these units. */
   lambda2: number
   nodes: number
+}
+
+/** A combination of a rehearsal's colonies; `place` tells rehearsals apart. */
+export interface PlacedSweepOrders extends SweepOrders {
+  place: number
 }
 
 export const SHUT_REASONS = ['left', 'revoked', 'left-out'] as const
@@ -73,6 +90,8 @@ export interface Orders {
   next?: { linkTimePerSecond: number; fromAgeMs: number }
   colonies: readonly ColonyOrders[]
   sweep: SweepOrders | null
+  /** Of rehearsals. Agents that do not know them count nothing. */
+  sweeps?: readonly PlacedSweepOrders[]
   disclosure: Disclosure
   /** In flagged overlays, the share of λ₂ over which a link may be named. */
   shareLimit: number
@@ -84,7 +103,7 @@ export interface Orders {
 
 /** ∫ω dt over the orders' ages from … to, link time. */
 export function linkTimeBetween(
-  { linkTimePerSecond, next }: Pick<Orders, 'linkTimePerSecond' | 'next'>,
+  { linkTimePerSecond, next }: Walk,
   fromAgeMs: number,
   toAgeMs: number,
 ): number {

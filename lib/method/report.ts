@@ -47,6 +47,14 @@ export interface SweepSums {
   crossingWeight: readonly number[]
 }
 
+/** Cut counts for a rehearsal's combination, by agents that remain in it. */
+export interface PlacedSweepSums extends SweepSums {
+  place: number
+  /** Link ends of this agent whose other end remains as well; 1 in `alone` where there are none. */
+  linkEnds: number
+  alone: number
+}
+
 export const LINK_KINDS = ['path', 'path-with-view', 'connection'] as const
 /**
  * What is measured: the path between two hosts beside the overlay's own connections; that path, lowered by the node's
@@ -108,7 +116,13 @@ export interface Sums {
   linkEnds: number
   linkEndWeight: number
   sweep: SweepSums | null
+  /** Of the rehearsals under way; absent where there are none. */
+  sweeps?: readonly PlacedSweepSums[]
 }
+
+export const SKILLS = ['rehearsal'] as const
+/** What an agent does beyond what agents of version 2 do: `rehearsal`: what orders say of clones, refused links and own rates. */
+export type Skill = (typeof SKILLS)[number]
 
 /** What may be known of one node, as disclosure allows. */
 export interface NodeFacts {
@@ -122,6 +136,8 @@ export interface NodeFacts {
   links: readonly { peer: string; weight: number; share: number | null }[]
   version: string
   uptimeSeconds: number
+  /** Absent: none. Later agents may have more than are known here. */
+  skills?: readonly string[]
   /** Absent in reports of version 1. */
   health?: AgentHealth
 }

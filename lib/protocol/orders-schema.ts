@@ -10,6 +10,10 @@ const interval = z.number().int().min(1).max(60_000)
 const MOST_LINK_TIME_PER_TICK = 4
 const rate = z.number().min(-1e6).max(1e6)
 
+const linkTime = z.number().min(0).max(1e6)
+const nextSchema = z.object({ linkTimePerSecond: linkTime, fromAgeMs: z.number().min(0).max(3_600_000) })
+const agentId = z.string().min(1).max(64)
+
 const colonyOrdersSchema = z.object({
   colony: z.number().int().min(0).max(0xffff),
   seeding: count,
@@ -20,8 +24,14 @@ const colonyOrdersSchema = z.object({
   encounterRate: z.number().min(0).max(1e6),
   birthRateX: rate,
   birthRateY: rate,
-  refused: z.array(z.string().min(1).max(64)).max(MAX_REFUSED),
+  refused: z.array(agentId).max(MAX_REFUSED),
   still: z.boolean().optional(),
+  refusedLinks: z
+    .array(z.tuple([agentId, agentId]))
+    .max(MAX_REFUSED)
+    .optional(),
+  cloneOf: z.object({ colony: z.number().int().min(0).max(0xffff), seeding: count }).optional(),
+  own: z.object({ linkTimePerSecond: linkTime, next: nextSchema.optional() }).optional(),
 })
 
 const sweepOrdersSchema = z.object({
@@ -40,24 +50,29 @@ export const ordersSchema: z.ZodType<Orders> = z
   .object({
     sequence: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
     pace: z.object({ tickMs: tick, intervalMs: interval }),
-    linkTimePerSecond: z.number().min(0).max(1e6),
-    next: z
-      .object({ linkTimePerSecond: z.number().min(0).max(1e6), fromAgeMs: z.number().min(0).max(3_600_000) })
-      .optional(),
+    linkTimePerSecond: linkTime,
+    next: nextSchema.optional(),
     colonies: z.array(colonyOrdersSchema).max(MAX_COLONIES),
     sweep: sweepOrdersSchema.nullable(),
+    sweeps: z
+      .array(sweepOrdersSchema.extend({ place: z.number().int().min(0).max(MAX_COLONIES) }))
+      .max(MAX_COLONIES)
+      .optional(),
     disclosure: z.enum(DISCLOSURES),
     shareLimit: z.number().min(0).max(1),
     shut: z
-      .array(z.object({ agentId: z.string().min(1).max(64), reason: z.enum(SHUT_REASONS) }))
+      .array(z.object({ agentId, reason: z.enum(SHUT_REASONS) }))
       .max(MAX_SHUT)
       .optional(),
     weights: z.enum(WEIGHT_MODES).optional(),
   })
   .refine(
-    ({ linkTimePerSecond, next, pace }) =>
-      (Math.max(linkTimePerSecond, next?.linkTimePerSecond ?? 0) * pace.tickMs) / 1000 <=
-      MOST_LINK_TIME_PER_TICK,
+    ({ linkTimePerSecond, next, colonies, pace }) =>
+      [{ linkTimePerSecond, next }, ...colonies.flatMap(({ own }) => own ?? [])].every(
+        (walk) =>
+          (Math.max(walk.linkTimePerSecond, walk.next?.linkTimePerSecond ?? 0) * pace.tickMs) / 1000 <=
+          MOST_LINK_TIME_PER_TICK,
+      ),
     {
       message: 'more link time per tick than can be walked',
     },

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { AUDIT_FAULTS, LINK_KINDS, type Report, UPGRADE_STATES } from '../method/report'
+import { AUDIT_FAULTS, LINK_KINDS, type Report, type SweepSums, UPGRADE_STATES } from '../method/report'
 import { upgradeOfferSchema } from './agent-life'
 import { passGrantSchema } from './enrol'
 import { INCARNATION } from './hello'
@@ -40,18 +40,21 @@ const colonySumsSchema = z
   .object({ ...numbers(COLONY), counters: z.object(numbers(COUNTERS)).check(whole(COUNTERS)) })
   .check(whole(COLONY))
 
-const sweepSumsSchema = z
-  .object({
-    id: count,
-    above: list.max(MAX_THRESHOLDS).check(allWhole(BIT)),
-    crossing: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
-    crossingWeight: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
-  })
-  .refine(
-    ({ above, crossing, crossingWeight }) =>
-      above.length === crossing.length && above.length === crossingWeight.length,
-    'above, crossing and crossingWeight have one entry per threshold',
-  )
+const SWEEP = {
+  id: count,
+  above: list.max(MAX_THRESHOLDS).check(allWhole(BIT)),
+  crossing: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
+  crossingWeight: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
+}
+const isPerThreshold = ({ above, crossing, crossingWeight }: SweepSums): boolean =>
+  above.length === crossing.length && above.length === crossingWeight.length
+const PER_THRESHOLD = 'above, crossing and crossingWeight have one entry per threshold'
+const sweepSumsSchema = z.object(SWEEP).refine(isPerThreshold, PER_THRESHOLD)
+const PLACED = { place: { least: 0, most: MAX_COLONIES }, linkEnds: COUNT, alone: BIT }
+const placedSweepSumsSchema = z
+  .object({ ...SWEEP, ...numbers(PLACED) })
+  .check(whole(PLACED))
+  .refine(isPerThreshold, PER_THRESHOLD)
 
 const SUMS = { attached: BIT, linkEnds: COUNT, linkEndWeight: COUNT }
 export const sumsSchema = z
@@ -61,6 +64,7 @@ export const sumsSchema = z
     energies: list.max(MAX_PAIRS).check(allWhole(FIXED)),
     moments: list.max(MAX_PAIRS).check(allWhole(FIXED)),
     sweep: sweepSumsSchema.nullable(),
+    sweeps: z.array(placedSweepSumsSchema).max(MAX_COLONIES).optional(),
   })
   .check(whole(SUMS))
   .superRefine((sums, context) => {
@@ -117,6 +121,7 @@ const nodeFactsSchema = z.object({
     .max(MAX_REPORT_LINKS),
   version: z.string().max(40),
   uptimeSeconds: z.number().min(0),
+  skills: z.array(z.string().max(40)).max(16).optional(),
   health: healthSchema.optional(),
 })
 

@@ -230,6 +230,7 @@ describe('orders', () => {
       key,
       reading: null,
       events: [],
+      rehearsals: [],
     }
     const because = 'its declared births do not fit its walkers'
     expect(await store.write({ ...round, sequence: 1, leftOut: [{ agentId: tar!.agentId, because }] })).toBe(

@@ -104,6 +104,9 @@ const ALLOWED: Record<ActionName, string[]> = {
   'rule.list': looking,
   'rule.change': ['operator', 'owner', 'write token'],
   'window.change': ['operator', 'owner', 'write token'],
+  'rehearsal.list': looking,
+  'rehearsal.start': ['operator', 'owner', 'write token'],
+  'rehearsal.cancel': ['operator', 'owner', 'write token'],
   'user.create': [],
   'token.create': [],
 }

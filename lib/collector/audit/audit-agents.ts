@@ -91,7 +91,9 @@ export function auditAgents({ now, pace, memory, leftOutBefore, ...before }: Aud
     ...memory.ordered,
     orderedNow(memory.roundAtMs ?? now.atMs - pace.intervalMs, control),
   ].slice(-ORDERED_KEPT)
-  const accounts = energyAccounts(now, control, pace.intervalMs)
+  // In a rehearsal links do not carry what they do else.
+  const live = { ...control, colonies: coloniesOf({ ...before.control, rehearsals: [] }) }
+  const accounts = energyAccounts(now, live, pace.intervalMs)
   const agents = new Map<string, Known>()
   const leftOut: AuditVerdict['leftOut'] = []
   const isSettledIn = ({ sinceMs }: Known): boolean => now.atMs - sinceMs >= GRACE_INTERVALS * pace.intervalMs
@@ -136,7 +138,8 @@ const seedsOf =
   (agentId: string, { colonies }: ControlState) =>
   ({ colony, seeding }: ColonySums): number | null => {
     const ordered = colonies.find((c) => c.colony === colony && c.seeding === seeding)
-    if (!ordered) return null
+    // What a clone begins with nobody has ordered.
+    if (!ordered || ordered.cloneOf) return null
     return halfOf(ordered.salt, colony, agentId) === 0 ? ordered.placeX : ordered.placeY
   }
 

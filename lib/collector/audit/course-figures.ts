@@ -17,8 +17,9 @@ export interface Ordered {
 export const ORDERED_KEPT = 48
 
 export function orderedNow(atMs: number, control: ControlState): Ordered {
-  // While the whole stands still, those still heard walk at a rate of their own.
-  const walking = [control, ...(control.parts ?? []).flatMap((part) => part.control ?? [])]
+  // While the whole stands still, those still heard walk at a rate of their own; and rehearsals always do.
+  const within = [...(control.parts ?? []), ...(control.rehearsals ?? [])]
+  const walking = [control, ...within.flatMap((part) => part.control ?? [])]
   return {
     atMs,
     linkTimePerSecond: Math.max(

@@ -61,6 +61,8 @@ export interface Step {
   elapsedMs: number
   /** ω by the orders the sender follows, and the agreed weight; either may be 0. */
   linkTimePerSecond: number
+  /** ω of a colony, where some have their own. Left out: that of all. */
+  of?: (colony: number) => number
   weight: number
   blockMs: number
 }
@@ -80,9 +82,9 @@ export class ArrivalAudit {
 
   /** @returns declared over found where that is a fault */
   note(heard: readonly HeardColony[], step: Step): number | null {
-    const walked = step.linkTimePerSecond * step.weight
-    for (const part of heard) this.noteColony(part, step.elapsedMs, walked)
-    if (walked > 0) this.walkedMs += step.elapsedMs
+    const { linkTimePerSecond, of = () => linkTimePerSecond, weight } = step
+    for (const part of heard) this.noteColony(part, step.elapsedMs, of(part.colony) * weight)
+    if (linkTimePerSecond * weight > 0) this.walkedMs += step.elapsedMs
     if (this.walkedMs < step.blockMs) return null
     this.walkedMs = 0
     return this.judge()

@@ -116,8 +116,8 @@ export class NeighbourAudit {
     const parts = heardColonies(heard.arrivals, colonies, { nowMs, intervalMs })
     record.claims.noteFrame(parts, { elapsedMs, weight, intervalMs })
     const sends = parts.some(({ x, y }) => x + y > 0)
-    const linkTimePerSecond = this.orders.linkTimePerSecond(frame.ordersSequence, sends, nowMs)
-    const step = { elapsedMs, linkTimePerSecond, weight, blockMs: this.blockMs }
+    const { shared, of } = this.orders.linkTimePerSecond(frame.ordersSequence, sends, nowMs)
+    const step = { elapsedMs, linkTimePerSecond: shared, of, weight, blockMs: this.blockMs }
     const mean = record.arrivals.note(parts, step)
     if (mean !== null) return this.stand(record, { peer, fault: 'mean', ratio: mean }, nowMs)
     if (!newest) return null

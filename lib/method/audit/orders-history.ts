@@ -1,4 +1,4 @@
-import { type Orders, ordersLifeMs } from '../orders'
+import { type Orders, ordersLifeMs, type Walk } from '../orders'
 
 /** Orders remembered: neighbours follow newer or older ones by a few. */
 export const ORDERS_KEPT = 24
@@ -11,8 +11,9 @@ interface Remembered {
   issuedAtMs: number
   adoptedAtMs: number
   lifeMs: number
-  linkTimePerSecond: number
-  next: Orders['next']
+  /** Of the orders, and of colonies that have their own. */
+  walk: Walk
+  own: ReadonlyMap<number, Walk>
   rates: { colony: number; seeding: number; x: number; y: number }[]
 }
 
@@ -26,8 +27,8 @@ export class OrdersHistory {
       issuedAtMs: nowMs - ageMs,
       adoptedAtMs: nowMs,
       lifeMs: ordersLifeMs(orders.pace.intervalMs),
-      linkTimePerSecond: orders.linkTimePerSecond,
-      next: orders.next,
+      walk: { linkTimePerSecond: orders.linkTimePerSecond, next: orders.next },
+      own: new Map(orders.colonies.flatMap(({ colony, own }) => (own ? [[colony, own] as const] : []))),
       rates: orders.colonies.map(({ colony, seeding, birthRateX, birthRateY }) => ({
         colony,
         seeding,
@@ -39,14 +40,28 @@ export class OrdersHistory {
   }
 
   /**
-   * ω of an agent that says it follows these orders; 0 where they have expired. Some that it follows went by unseen here: then it is that
+   * ω, by colony, of an agent that says it follows these orders; 0 where they have expired. Some that it follows went by unseen here: then it is that
    * of the ones before. Whoever sends walkers does walk, whatever orders it claims.
    */
-  linkTimePerSecond(sequence: number, sendsWalkers: boolean, nowMs: number): number {
-    const followed = this.kept.findLast((known) => known.sequence <= sequence)
-    if (followed && nowMs - followed.issuedAtMs <= followed.lifeMs) return inForce(followed, nowMs)
-    const newest = this.kept[this.kept.length - 1]
-    return sendsWalkers && newest ? inForce(newest, nowMs) : 0
+  linkTimePerSecond(
+    sequence: number,
+    sendsWalkers: boolean,
+    nowMs: number,
+  ): { shared: number; of: (colony: number) => number } {
+    const known = this.kept.findLast((each) => each.sequence <= sequence)
+    const isAlive = known && nowMs - known.issuedAtMs <= known.lifeMs
+    const newest = sendsWalkers ? this.kept[this.kept.length - 1] : undefined
+    const followed = isAlive ? known : newest
+    if (!followed) return { shared: 0, of: () => 0 }
+    const { walk, own, issuedAtMs } = followed
+    const shared = inForce(walk, nowMs - issuedAtMs)
+    return {
+      shared,
+      of: (colony) => {
+        const its = own.get(colony)
+        return its ? inForce(its, nowMs - issuedAtMs) : shared
+      },
+    }
   }
 
   /**
@@ -68,6 +83,6 @@ export class OrdersHistory {
   }
 }
 
-function inForce({ linkTimePerSecond, next, issuedAtMs }: Remembered, nowMs: number): number {
-  return next && nowMs - issuedAtMs >= next.fromAgeMs ? next.linkTimePerSecond : linkTimePerSecond
+function inForce({ linkTimePerSecond, next }: Walk, ageMs: number): number {
+  return next && ageMs >= next.fromAgeMs ? next.linkTimePerSecond : linkTimePerSecond
 }

@@ -23,16 +23,19 @@ interface Counted {
 
 /**
  * The best of the counted cuts by ratio (weight across ÷ nodes of the smaller side).
+ * @param place of the rehearsal it is counted for
  * @returns undefined while not every attached agent heard has counted for this combination
  */
 export function bestCut(
   sweep: number,
   thresholds: readonly number[],
   heard: readonly HeardAgent[],
+  place?: number,
 ): CutCount | null | undefined {
   const attached = heard.filter(isAttached)
   const counts = attached.flatMap(({ last }) => {
-    const sums = last.report.sums.sweep
+    const { sweep: shared, sweeps } = last.report.sums
+    const sums = place === undefined ? shared : sweeps?.find((placed) => placed.place === place)
     return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []
   })
   if (counts.length === 0 || counts.length < attached.length) return undefined

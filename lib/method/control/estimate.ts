@@ -1,6 +1,7 @@
 import type { Orders } from '../orders'
 import type { Random } from '../random'
 import type { Coverage } from './coverage'
+import type { Rehearsed } from './rehearsals'
 import type { Snapshot } from './snapshot'
 import type { ControlSettings, ControlState, CutCount } from './state'
 
@@ -35,6 +36,8 @@ export interface EvaluateInput {
   /** Drawn from the fenced source; larger than any before. */
   sequence: number
   random: Random
+  /** Rehearsals that are to run; whatever runs and is not among them ends. */
+  rehearsals?: readonly Rehearsed[]
 }
 
 export interface Evaluation {

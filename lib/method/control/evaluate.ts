@@ -34,7 +34,10 @@ export function evaluate(input: EvaluateInput): Evaluation {
     walkersGoneSinceMs !== null && now.atMs - walkersGoneSinceMs > GIVE_UP_FACTOR * heldMs(intervalMs)
   const changed = input.before !== null && isChanged(input.before, now, intervalMs)
   const changedAtMs = changed ? now.atMs : input.control.changedAtMs
-  const hasty = isHasty({ ...input.control, changedAtMs }, settings.pace, coverage.attached, now.atMs)
+  // Haste would make more noise in the live reading.
+  const hasty =
+    settings.rehearses === undefined &&
+    isHasty({ ...input.control, changedAtMs }, settings.pace, coverage.attached, now.atMs)
   const control: ControlState = {
     ...input.control,
     ...inForce(input.control, now.atMs),

@@ -6,6 +6,7 @@ export { evaluate } from './evaluate'
 export { CONFIDENCE } from './interval'
 export { coloniesOf, evaluateOverlay, type OverlayEvaluation } from './overlay'
 export type { PartEstimate } from './parts'
+export { MOST_REFUSED_NAMES, MOST_REHEARSALS, type RehearsalEstimate, type Rehearsed } from './rehearsals'
 export { heldMs, isHeard, type JoinedAgent, type Snapshot } from './snapshot'
 export {
   type ControlSettings,

@@ -78,6 +78,16 @@ export function fastestLinkTimePerSecond({ tickMs }: { tickMs: number }): number
   return (MOST_LINK_TIME_PER_TICK * 1000) / tickMs
 }
 
+/** ω that the loop bears at this λ, before any limit. */
+export function wantedLinkTimePerSecond(
+  lambda: number,
+  pace: { tickMs: number; intervalMs: number },
+): number {
+  return lambda > 0
+    ? (LOOP_GAIN * 1000) / (lambda * LOOP_INTERVALS * pace.intervalMs)
+    : fastestLinkTimePerSecond(pace)
+}
+
 /**
  * ω for the next interval, link time per second.
  * @param lambda the smaller of the smoothed cross-check and the last Ritz value; 0 or null where unknown
@@ -89,7 +99,7 @@ export function nextLinkTimePerSecond(
 ): number {
   const fastest = fastestLinkTimePerSecond(pace)
   if (lambda === null) return current
-  const wanted = lambda > 0 ? (LOOP_GAIN * 1000) / (lambda * LOOP_INTERVALS * pace.intervalMs) : fastest
+  const wanted = wantedLinkTimePerSecond(lambda, pace)
   if (Math.abs(wanted / current - 1) <= NEAR_ENOUGH && current <= fastest) return current
   return Math.max(current * SLOWEST_STEP, Math.min(current * FASTEST_STEP, wanted, fastest))
 }

@@ -30,6 +30,7 @@ export function ordersFrom(
     birthRateX: walking ? colony.birthRateX : 0,
     birthRateY: walking ? colony.birthRateY : 0,
     refused: [],
+    ...(colony.cloneOf && { cloneOf: colony.cloneOf }),
   }))
   return {
     sequence: control.sequence,

@@ -1,4 +1,4 @@
-import type { ColonyOrders, Orders } from '../orders'
+import type { Orders } from '../orders'
 import { CORE_COLONIES, type CoreEstimate, coreOf, NO_CORE } from './core'
 import { areAgentsEnough } from './coverage'
 import type { EvaluateInput, Evaluation } from './estimate'
@@ -6,15 +6,18 @@ import { evaluate } from './evaluate'
 import { paceNow } from './haste'
 import { HEARD_BY_INTERVALS } from './link-time'
 import { nextOrders } from './orders-from'
-import { aloneNow, PART_COLONIES, type PartEstimate, partsNow } from './parts'
-import type { Snapshot } from './snapshot'
-import { type ControlState, initialControl } from './state'
+import { aloneNow, MOST_PARTS, PART_COLONIES, type PartEstimate, partsNow } from './parts'
+import { type RehearsalEstimate, rehearse } from './rehearsals'
+import type { ControlState } from './state'
+import { coloniesWithin, evaluateWithin } from './within'
 
 export interface OverlayEvaluation extends Evaluation {
   /** Null while nothing hangs loose. `estimate` beside it is of the whole overlay. */
   core: CoreEstimate | null
   /** Each piece by itself; empty while the overlay has not come apart. */
   parts: readonly PartEstimate[]
+  /** Those asked for, as far as they have come. */
+  rehearsals: readonly RehearsalEstimate[]
 }
 
 /**
@@ -44,6 +47,11 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
       colonies: PART_COLONIES,
     })
   })
+  const rehearsals = rehearse(
+    { whole, headline, apart },
+    input,
+    firstSlot + CORE_COLONIES + MOST_PARTS * PART_COLONIES,
+  )
   const within = [...(ofCore ? [ofCore] : []), ...ofParts]
   // Of the whole nothing is known then, and what walked of it waits where it is.
   const isStill = isUnheard && parts.length > 0
@@ -64,6 +72,7 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
         control: { ...ofParts[index]!.evaluation.control, ...walking },
       })),
       alone,
+      rehearsals: rehearsals.map(({ control }) => control),
     },
     orders: {
       ...whole.orders,
@@ -73,12 +82,15 @@ export function evaluateOverlay(input: EvaluateInput): OverlayEvaluation {
         ...whole.orders.colonies.map((colony) => ({ ...colony, ...still })),
         ...(ofCore ? coloniesWithin(ofCore).map((colony) => ({ ...colony, ...still })) : []),
         ...ofParts.flatMap(coloniesWithin),
+        ...rehearsals.flatMap(({ colonies }) => colonies),
       ],
       // Nodes tell their value, and cuts are counted, by what is the headline.
       sweep: ofCore?.evaluation.control.combination ?? whole.orders.sweep,
+      ...(rehearsals.length > 0 && { sweeps: rehearsals.flatMap(({ sweep }) => sweep ?? []) }),
     },
     core: ofCore && { estimate: ofCore.evaluation.estimate, ends: core.ends },
     parts: parts.map(({ agents }, index) => ({ agents, estimate: ofParts[index]!.evaluation.estimate })),
+    rehearsals: rehearsals.map(({ estimate }) => estimate),
   }
 }
 
@@ -99,49 +111,15 @@ function walkingOrders(
   return { linkTimePerSecond: walking.linkTimePerSecond, next: nextOrders(walking, atMs) }
 }
 
-function coloniesWithin({ refused, evaluation }: Within): ColonyOrders[] {
-  return evaluation.orders.colonies.map((colony) => ({ ...colony, refused }))
-}
-
-/** All colonies that walk, those of the core and of the pieces among them. */
-export function coloniesOf({ colonies, core, parts = [] }: ControlState): ControlState['colonies'] {
-  const within = [core?.control, ...parts.map(({ control }) => control)]
+/** All colonies that walk, those of the core, of the pieces and of rehearsals among them. */
+export function coloniesOf({
+  colonies,
+  core,
+  parts = [],
+  rehearsals = [],
+}: ControlState): ControlState['colonies'] {
+  const within = [core?.control, ...[...parts, ...rehearsals].map(({ control }) => control)]
   return [...colonies, ...within.flatMap((control) => control?.colonies ?? [])]
-}
-
-interface Within {
-  refused: readonly string[]
-  evaluation: Evaluation
-}
-
-/** The control loop of a part of the overlay: as though the others had never joined. */
-function evaluateWithin(
-  refused: readonly string[],
-  control: ControlState | null,
-  input: EvaluateInput,
-  slots: { firstSlot: number; colonies: number },
-): Within {
-  const { settings, before, now, sequence } = input
-  const apart = new Set(refused)
-  const without = (snapshot: Snapshot): Snapshot => ({
-    ...snapshot,
-    agents: snapshot.agents.filter(({ agentId }) => !apart.has(agentId)),
-  })
-  const within = without(now)
-  const fresh: ControlState = {
-    ...initialControl(now.atMs, settings.pace),
-    sequence,
-    // They have been walked on: there is no waiting for more of them to come.
-    attached: { count: within.agents.length, sinceMs: 0 },
-  }
-  const evaluation = evaluate({
-    ...input,
-    control: control ?? fresh,
-    before: before && without(before),
-    now: within,
-    settings: { ...settings, ...slots },
-  })
-  return { refused, evaluation }
 }
 
 /** All colonies walk at one rate and report as often: the one that asks for less ω decides, and the one in more haste. */

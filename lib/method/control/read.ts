@@ -64,7 +64,9 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const lowered =
     mature !== null && lambda2 !== null && lambda2 < (mature.values[0] ?? lambda2) * (1 - LOWERED)
   if (subspace && result) {
-    const counted = next.combination ? bestCut(next.combination.id, THRESHOLDS, heard) : undefined
+    const counted = next.combination
+      ? bestCut(next.combination.id, THRESHOLDS, heard, settings.rehearses)
+      : undefined
     if (counted !== undefined) next.cut = counted
     const old = now.atMs - next.combinationAtMs >= COMBINATION_INTERVALS * pace.intervalMs
     const gone = next.combination?.terms.some(

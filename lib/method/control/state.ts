@@ -5,6 +5,7 @@ import type { Bound } from './bound'
 import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
 import type { PartControl } from './parts'
+import type { RehearsalControl } from './rehearsals'
 import type { Young } from './young'
 
 export const COLONIES = 5
@@ -20,6 +21,8 @@ export interface ControlSettings {
   colonies: number
   /** Slot of the first colony; 0 by default. */
   firstSlot?: number
+  /** Place of the rehearsal these colonies are of: they walk by themselves, and none is renewed. Absent for all others. */
+  rehearses?: number
 }
 
 export const DEFAULT_SETTINGS: Omit<ControlSettings, 'pace' | 'disclosure'> = {
@@ -41,6 +44,8 @@ export interface ColonyControl {
   birthRateY: number
   /** Death rate smoothed over a few intervals; null before the first. */
   deathRate: number | null
+  /** It began from what stood in this one. */
+  cloneOf?: { colony: number; seeding: number }
 }
 
 export interface CutCount {
@@ -95,6 +100,8 @@ export interface ControlState {
   parts?: PartControl[]
   /** Who alone is heard while too few are, and since when it has been just these; missing or null while enough are. */
   alone?: { agents: string[]; sinceMs: number } | null
+  /** Missing in states of before there were rehearsals. */
+  rehearsals?: RehearsalControl[]
 }
 
 export function initialControl(atMs: number, pace: Pace): ControlState {

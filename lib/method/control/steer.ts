@@ -52,7 +52,7 @@ export function steer(control: ControlState, input: EvaluateInput): ControlState
         bounds: [],
       }
     : { ...control, colonies }
-  return cold ? next : renew(next, seeder)
+  return cold || settings.rehearses !== undefined ? next : renew(next, seeder)
 }
 
 /**

@@ -129,6 +129,20 @@ export function combinationOf(
   }
 }
 
+/** Inner product about the mean of two combinations whose colonies are all in the subspace; null where they are not. */
+export function overlapIn(subspace: Subspace, one: Terms, other: Terms): number | null {
+  const at = ({ colony, seeding }: Terms[number]): number =>
+    subspace.colonies.findIndex((known) => known.colony === colony && known.seeding === seeding)
+  if ([...one, ...other].some((term) => at(term) < 0)) return null
+  return one.reduce(
+    (total, a) =>
+      total +
+      other.reduce((sum, b) => sum + a.coefficient * subspace.moments.get(at(a), at(b)) * b.coefficient, 0),
+    0,
+  )
+}
+type Terms = SweepOrders['terms']
+
 /** Inner product of two combinations over the nodes, in so far as their colonies are the same. */
 function overlap(subspace: Subspace, coefficients: readonly number[], previous: SweepOrders): number {
   let sum = 0

@@ -23,6 +23,8 @@ export interface Colony {
   toPlaceY: number
   adoptedAtMs: number
   refuses: boolean
+  /** Neighbours whose link is refused for this colony. */
+  refusedPeers: ReadonlySet<string>
   /** Averaged occupancy difference z̄. */
   mean: number
   seeded: number
@@ -38,6 +40,8 @@ export interface Colony {
   linkTime: number
 }
 
+const NONE: ReadonlySet<string> = new Set()
+
 export function openColony(orders: ColonyOrders, nowMs: number): Colony {
   return {
     orders,
@@ -47,6 +51,7 @@ export function openColony(orders: ColonyOrders, nowMs: number): Colony {
     toPlaceY: 0,
     adoptedAtMs: nowMs,
     refuses: false,
+    refusedPeers: NONE,
     mean: 0,
     seeded: 0,
     births: 0,

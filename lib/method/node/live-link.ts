@@ -1,4 +1,4 @@
-import type { Orders } from '../orders'
+import type { SweepOrders } from '../orders'
 import type { Colony, Exits } from './colony'
 import type { ValuedLink } from './facts'
 import type { Link } from './link'
@@ -10,7 +10,9 @@ export function exitsFor(live: readonly { link: Link; weight: number }[], colony
   const sums = new Float64Array(live.length)
   let totalWeight = 0
   live.forEach(({ link, weight }, index) => {
-    if (!link.ledgers.get(colony.orders.colony)?.peerRefuses) {
+    const isRefused =
+      colony.refusedPeers.has(link.peer) || link.ledgers.get(colony.orders.colony)?.peerRefuses
+    if (!isRefused) {
       weights[index] = weight
       totalWeight += weight
     }
@@ -22,23 +24,24 @@ export function exitsFor(live: readonly { link: Link; weight: number }[], colony
 /** A live link as the sums see it. */
 export function measuredLink(link: Link, weight: number, colonies: readonly Colony[]): MeasuredLink {
   const peerMeans = new Map(
-    colonies.map(({ orders, refuses }) => {
+    colonies.map(({ orders, refuses, refusedPeers }) => {
       const ledger = link.ledgers.get(orders.colony)
-      const known = ledger && ledger.seeding === orders.seeding && !ledger.peerRefuses && !refuses
+      const isRefused = refuses || refusedPeers.has(link.peer)
+      const known = ledger && ledger.seeding === orders.seeding && !ledger.peerRefuses && !isRefused
       return [orders.colony, known ? ledger.peerMean : null] as const
     }),
   )
   return { peer: link.peer, weight, peerMeans, consents: link.peerConsents }
 }
 
-/** The other end's Fiedler value by the combination of the present orders, where its means are known. */
+/** The other end's Fiedler value by a combination of the present orders, where its means are known. */
 export function valuedLink(
   link: MeasuredLink,
-  orders: Orders | null,
+  sweep: SweepOrders | null,
   colonies: ReadonlyMap<number, Colony>,
 ): ValuedLink {
-  const value = orders?.sweep
-    ? fiedlerValue(orders.sweep, (slot, seeding) =>
+  const value = sweep
+    ? fiedlerValue(sweep, (slot, seeding) =>
         colonies.get(slot)?.orders.seeding === seeding ? (link.peerMeans.get(slot) ?? null) : null,
       )
     : null

@@ -1,11 +1,19 @@
-import type { Orders } from '../orders'
+import type { Orders, PlacedSweepOrders } from '../orders'
 import { ordinaryIntervalMs } from '../pace'
-import { type AgentHealth, type Complaint, type NodeFacts, type Report, SUMS_SCALE } from '../report'
+import {
+  type AgentHealth,
+  type Complaint,
+  type NodeFacts,
+  type PlacedSweepSums,
+  type Report,
+  SKILLS,
+  SUMS_SCALE,
+} from '../report'
 import type { Colony } from './colony'
 import { type CoarseValue, namedLinks } from './facts'
 import type { Link } from './link'
 import { measuredLink, valuedLink } from './live-link'
-import { colonySums, energiesAndMoments, fiedlerValue, sweepSums } from './sums'
+import { colonySums, energiesAndMoments, fiedlerValue, type MeasuredLink, sweepSums } from './sums'
 
 /** Complaints said in one report; the collector takes no more. */
 export const MOST_COMPLAINTS = 64
@@ -63,7 +71,7 @@ export function reportOf(now: ReportCase, host: HostFacts, nowMs: number): Repor
   const colonies = [...now.colonies.values()].sort((a, b) => a.orders.colony - b.orders.colony)
   const measured = live.map(({ link, weight }) => measuredLink(link, weight, colonies))
   const own = orders?.sweep && attached ? fiedlerValue(orders.sweep, meanIn(now.colonies)) : null
-  const valued = measured.map((link) => valuedLink(link, orders, now.colonies))
+  const valued = measured.map((link) => valuedLink(link, orders?.sweep ?? null, now.colonies))
   const { linksKnown, version, uptimeSeconds, health } = host
   const { weakestWeight, meanWeight, refused } = facts
   const isNamed = orders?.disclosure === 'named' && facts.complaints.length > 0
@@ -78,6 +86,7 @@ export function reportOf(now: ReportCase, host: HostFacts, nowMs: number): Repor
       linkEnds: live.length,
       linkEndWeight: Math.round(weightOf(live) * SUMS_SCALE),
       sweep: orders?.sweep && own !== null ? sweepSums(orders.sweep, own, valued) : null,
+      ...(orders?.sweeps && { sweeps: attached ? placedSweeps(orders.sweeps, measured, now.colonies) : [] }),
     },
     node: {
       degree: live.length,
@@ -87,10 +96,27 @@ export function reportOf(now: ReportCase, host: HostFacts, nowMs: number): Repor
       links: orders ? namedLinks(orders, own, valued, now.consents) : [],
       version,
       uptimeSeconds,
+      skills: SKILLS,
       ...(health && { health: { ...health, weakestWeight, meanWeight, refused } }),
     },
     ...(isNamed && { complaints: facts.complaints.slice(0, MOST_COMPLAINTS) }),
   }
+}
+
+/** Of the rehearsals in which this agent remains. */
+function placedSweeps(
+  sweeps: readonly PlacedSweepOrders[],
+  measured: readonly MeasuredLink[],
+  colonies: ReadonlyMap<number, Colony>,
+): PlacedSweepSums[] {
+  return sweeps.flatMap((sweep) => {
+    const own = fiedlerValue(sweep, meanIn(colonies))
+    if (own === null) return []
+    const valued = measured.map((link) => valuedLink(link, sweep, colonies))
+    const linkEnds = valued.filter(({ value }) => value !== null).length
+    const alone = linkEnds === 0 ? 1 : 0
+    return [{ ...sweepSums(sweep, own, valued), place: sweep.place, linkEnds, alone }]
+  })
 }
 
 const meanIn =

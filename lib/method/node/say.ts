@@ -45,11 +45,12 @@ export function frameFor(
   }
 }
 
-function colonyFrame(link: Link, { orders, refuses, mean }: Colony): ColonyFrame {
+function colonyFrame(link: Link, { orders, refuses, refusedPeers, mean }: Colony): ColonyFrame {
   const { colony, seeding } = orders
   const { sentX, sentY, receivedX, receivedY } = ledgerFor(link, colony, seeding)
   const meanOccupancy = Math.max(-MOST_HELD, Math.min(MOST_HELD, mean))
-  return { colony, seeding, refused: refuses, sentX, sentY, receivedX, receivedY, meanOccupancy }
+  const refused = refuses || refusedPeers.has(link.peer)
+  return { colony, seeding, refused, sentX, sentY, receivedX, receivedY, meanOccupancy }
 }
 
 function passedOrders(link: Link, { orders: held, isFrozen }: Sayings, nowMs: number): Frame['orders'] {

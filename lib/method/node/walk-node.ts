@@ -1,6 +1,6 @@
 import { NeighbourAudit } from '../audit'
 import type { CollectorDistance, Frame, OrdersProof } from '../frame'
-import { linkTimeBetween, type Orders, ordersLifeMs, type WeightMode } from '../orders'
+import { type ColonyOrders, linkTimeBetween, type Orders, ordersLifeMs, type WeightMode } from '../orders'
 import type { Pace } from '../pace'
 import { hash32, type Random } from '../random'
 import type { AuditFault, Complaint, Report } from '../report'
@@ -205,24 +205,29 @@ export class WalkNode {
     return true
   }
 
-  private adoptColony(orders: Orders['colonies'][number], nowMs: number): void {
+  private adoptColony(orders: ColonyOrders, nowMs: number): void {
     let colony = this.colonies.get(orders.colony)
     if (!colony || colony.orders.seeding !== orders.seeding) {
       this.discard(orders.colony)
       colony = openColony(orders, nowMs)
-      if (orders.placing) {
-        const onX = halfOf(orders.salt, orders.colony, this.agentId) === 0
-        colony.toPlaceX = onX ? orders.placeX : 0
-        colony.toPlaceY = onX ? 0 : orders.placeY
-      }
+      if (orders.placing) Object.assign(colony, this.seedsFor(orders))
       this.colonies.set(orders.colony, colony)
     }
     colony.orders = orders
     colony.refuses = orders.refused.includes(this.agentId)
+    colony.refusedPeers = refusedPeersOf(orders, this.agentId)
     if (!orders.placing) {
       colony.toPlaceX = 0
       colony.toPlaceY = 0
     }
+  }
+
+  private seedsFor({ colony, salt, placeX, placeY, cloneOf }: ColonyOrders) {
+    const source = cloneOf && this.colonies.get(cloneOf.colony)
+    if (source?.orders.seeding === cloneOf?.seeding && source)
+      return { toPlaceX: source.x, toPlaceY: source.y }
+    const onX = halfOf(salt, colony, this.agentId) === 0
+    return { toPlaceX: onX ? placeX : 0, toPlaceY: onX ? 0 : placeY }
   }
 
   private discard(slot: number): void {
@@ -295,9 +300,11 @@ export class WalkNode {
       if (detached || colony.refuses) dropAll(colony)
       if (live.length === 0 || colony.refuses) continue
       place(colony)
-      if (linkTime === 0 || colony.orders.still) continue
+      const { still, own } = colony.orders
+      const due = own ? linkTimeBetween(own, ageMs - dueMs, ageMs) : linkTime
+      if (due === 0 || still) continue
       const exits = exitsFor(live, colony)
-      const difference = walk(colony, exits, linkTime, this.random)
+      const difference = walk(colony, exits, due, this.random)
       average(colony, difference, dueMs, nowMs, orders.pace.intervalMs)
       live.forEach(({ link }, index) => {
         if (exits.x[index] === 0 && exits.y[index] === 0) return
@@ -376,6 +383,10 @@ export class WalkNode {
       y,
     }))
   }
+}
+
+function refusedPeersOf({ refusedLinks = [] }: ColonyOrders, agentId: string): Set<string> {
+  return new Set(refusedLinks.flatMap(([a, b]) => (a === agentId ? [b] : b === agentId ? [a] : [])))
 }
 
 /** Which half an agent stands on in a seeding: 0 for X, 1 for Y. */

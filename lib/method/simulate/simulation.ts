@@ -1,10 +1,11 @@
 import {
-  type ControlSettings,
   type CoreEstimate,
   type Estimate,
   evaluateOverlay,
   initialControl,
   type PartEstimate,
+  type RehearsalEstimate,
+  type Rehearsed,
   type Snapshot,
 } from '../control'
 import type { ControlState } from '../control/state'
@@ -17,34 +18,10 @@ import type { Report } from '../report'
 import { RECEIPT_INTERVALS, statementOf } from '../statement'
 import { EventQueue } from './event-queue'
 import { bentFrame, bentOrders, bentReport } from './lie'
-import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink } from './parts'
+import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink, type SimulationInit } from './parts'
 
 export interface SimulationComponents {
   random: Random
-}
-
-export interface SimulationInit {
-  /** Node count; agents are named by `nameOf`. */
-  nodes: number
-  links: readonly { a: number; b: number; weight?: number }[]
-  settings: ControlSettings
-  nameOf?: (node: number) => string
-  /** Range of a link's delay; each frame adds ±20 %. */
-  linkDelayMs?: [number, number]
-  reportDelayMs?: [number, number]
-  /** Ticks and reports vary by this share. */
-  jitter?: number
-  /** Share of reports, and of the orders in reply, lost at random. */
-  reportLoss?: number
-  ordersLoss?: number
-  /** The collector's judgement of agents, once per evaluation and before it: ids to leave out from now on. */
-  leaveOut?: (now: Snapshot, control: ControlState, orders: Orders | null) => readonly string[]
-  /** Agents know version 2: their frames carry receipts. */
-  speaksTwo?: boolean
-  /** Neighbours audit each other. */
-  audits?: boolean
-  /** Wall time of the virtual clock's 0. */
-  startAtMs?: number
 }
 
 /**
@@ -59,6 +36,9 @@ export class Simulation {
   core: CoreEstimate | null = null
   /** Each piece by itself; empty while the overlay has not come apart. */
   parts: readonly PartEstimate[] = []
+  /** What is to be rehearsed from the next evaluation on, and how far each has come. */
+  rehearsed: readonly Rehearsed[] = []
+  rehearsals: readonly RehearsalEstimate[] = []
   /** Called after each evaluation. */
   onEstimate: ((estimate: Estimate) => void) | null = null
   /** While false the collector neither hears reports nor answers: an outage. */
@@ -378,13 +358,14 @@ export class Simulation {
     const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
     this.leftOut.push(...out)
     const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
-    const { control, estimate, core, parts, ...planned } = evaluateOverlay({
+    const { control, estimate, core, parts, rehearsals, ...planned } = evaluateOverlay({
       control: this.control,
       before: this.before,
       now,
       settings: this.init.settings,
       sequence: this.control.sequence + 1,
       random: this.random,
+      rehearsals: this.rehearsed,
     })
     const shut = this.leftOut.map((agentId) => ({ agentId, reason: 'left-out' as const }))
     const orders: Orders = { ...planned.orders, shut }
@@ -394,6 +375,7 @@ export class Simulation {
     this.estimate = estimate
     this.core = core
     this.parts = parts
+    this.rehearsals = rehearsals
     this.onEstimate?.(estimate)
   }
 }

@@ -37,6 +37,7 @@ function loaded(atMs: number, { oneEnd = false, disclosure = 'named' as Loaded['
   })
   return {
     ...{ pace: 'steady', disclosure, weights: 'unit', retireAfterHours: null, shut: [], leftOutNames: [] },
+    ...{ rehearsals: [], floors: [] },
     ...{ key: { publicKey: '', privateKey: '' }, keysInTurn: [], snapshot: { atMs, agents } },
   }
 }

@@ -71,6 +71,8 @@ it('an agent whose walkers do not add up is left out: shut in the orders, not jo
       retireAfterHours: null,
       shut: [],
       leftOutNames: [],
+      rehearsals: [],
+      floors: [],
       key: { publicKey: '', privateKey: '' },
       keysInTurn: [],
       snapshot: { atMs, agents },

@@ -31,6 +31,8 @@ async function rounds(forkEm: () => Promise<never>) {
       retireAfterHours: null,
       shut: [],
       leftOutNames: [],
+      rehearsals: [],
+      floors: [],
       key: { publicKey: 'public', privateKey: 'private' },
       keysInTurn: [],
       snapshot: { atMs: clock.monotonicMs(), agents: [agent] },

@@ -4,18 +4,9 @@ import { z } from 'zod'
 import { changeRule, createRule, createWindow, endWindow, removeRule } from '@/lib/data'
 import { newWindowSchema, ruleChangeSchema } from '@/lib/data/rules-dto'
 import { action } from '@/lib/http'
+import { jsonField } from '@/lib/http/json-field'
 import { ruleSchema } from '@/lib/warn/rule'
 import { windowFieldsSchema } from './window-fields'
-
-/** A form of many kinds of fields sends them as one. */
-const jsonField = z.string().transform((text, context): unknown => {
-  try {
-    return JSON.parse(text)
-  } catch {
-    context.addIssue({ code: 'custom', message: 'Load the page again.' })
-    return z.NEVER
-  }
-})
 
 export const addRuleAction = action(
   'rule.change',

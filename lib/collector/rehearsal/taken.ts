@@ -1,0 +1,146 @@
+import type { Excluded } from '@/lib/data/rehearsal-dto'
+import type { Disclosure } from '@/lib/method/orders'
+import { listOf } from '../words'
+
+/** Orders name each of them once per colony: more would make orders too long for a link's frame. */
+export const MOST_TAKEN_NODES = 1_000
+export const MOST_TAKEN_LINKS = 1_000
+/** Where links are not named, so many nodes must remain: of two it would be told whether they are linked. */
+export const LEAST_REMAIN_UNNAMED = 10
+export const LEAST_REMAIN = 2
+
+export interface TakableAgent {
+  agentId: string
+  name: string
+  labels: Readonly<Record<string, string>>
+}
+
+export interface TakableLink {
+  a: string
+  b: string
+}
+
+/** What a rehearsal takes away, by agent ids. */
+export interface Taken {
+  /** Sorted. */
+  agents: string[]
+  /** Both ends remain. */
+  links: [string, string][]
+  remain: number
+}
+
+export interface TakenFrom {
+  disclosure: Disclosure
+  /** Those that have joined. */
+  agents: readonly TakableAgent[]
+  /** By the names of their ends; empty unless links are named. */
+  links: readonly TakableLink[]
+}
+
+export interface TakenProblem {
+  path: 'exclude' | 'exclude.nodes' | 'exclude.links' | 'exclude.labels' | 'exclude.between'
+  message: string
+}
+
+/**
+ * Resolves names and labels to agents.
+ * @param isAsked false once it begins: who has left since then is away already, and is no problem
+ */
+export function takenOf(
+  exclude: Excluded,
+  from: TakenFrom,
+  isAsked: boolean,
+): { taken: Taken } | { problems: TakenProblem[] } {
+  const { nodes, links, labels, between } = exclude
+  const problems: TakenProblem[] = []
+  const byName = new Map(from.agents.map((agent) => [agent.name, agent]))
+  const say = (path: TakenProblem['path'], message: string) => problems.push({ path, message })
+  if (nodes.length + links.length + labels.length + between.length === 0)
+    return { problems: [{ path: 'exclude', message: 'Say which nodes, labels or links are to be away.' }] }
+  const unknown = [...new Set(nodes.filter((name) => !byName.has(name)))]
+  if (isAsked && unknown.length > 0)
+    say(
+      'exclude.nodes',
+      `No node of this overlay is called ${listOf(unknown)}. Choose nodes that have joined.`,
+    )
+  const empty = labels.filter(({ key, value }) => !from.agents.some((agent) => agent.labels[key] === value))
+  if (isAsked && empty.length > 0)
+    say('exclude.labels', `No node has ${listOf(empty.map(({ key, value }) => `${key} ${value}`))}.`)
+  const gone = new Set([
+    ...nodes.flatMap((name) => byName.get(name)?.agentId ?? []),
+    ...from.agents
+      .filter((agent) => labels.some(({ key, value }) => agent.labels[key] === value))
+      .map(({ agentId }) => agentId),
+  ])
+  const pairs = links.length + between.length > 0 ? pairsOf(exclude, from, isAsked, say) : []
+  const remaining = pairs.filter(([a, b]) => !gone.has(a) && !gone.has(b))
+  const remain = from.agents.length - gone.size
+  const isNamed = from.disclosure === 'named'
+  if (gone.size > MOST_TAKEN_NODES)
+    say('exclude', `That is ${gone.size} nodes; at most ${MOST_TAKEN_NODES} can be rehearsed at once.`)
+  if (remaining.length > MOST_TAKEN_LINKS)
+    say('exclude', `That is ${remaining.length} links; at most ${MOST_TAKEN_LINKS} can be rehearsed at once.`)
+  if (remain < LEAST_REMAIN)
+    say('exclude', `${remain === 0 ? 'No node' : 'One node'} would remain. Leave at least ${LEAST_REMAIN}.`)
+  else if (!isNamed && remain < LEAST_REMAIN_UNNAMED && gone.size > 0)
+    say(
+      'exclude',
+      `${remain} nodes would remain. Where links are not named leave at least ${LEAST_REMAIN_UNNAMED}: of fewer it would show who is linked to whom.`,
+    )
+  if (problems.length > 0) return { problems }
+  if (gone.size === 0 && remaining.length === 0)
+    return {
+      problems: [
+        { path: 'exclude', message: 'Nothing of what was to be away is there now. Rehearse something else.' },
+      ],
+    }
+  return { taken: { agents: [...gone].sort(), links: remaining, remain } }
+}
+
+type Say = (path: TakenProblem['path'], message: string) => void
+
+function pairsOf(
+  { links, between }: Excluded,
+  { disclosure, agents, links: named }: TakenFrom,
+  isAsked: boolean,
+  say: Say,
+): [string, string][] {
+  if (disclosure !== 'named') {
+    const path = links.length > 0 ? 'exclude.links' : 'exclude.between'
+    say(
+      path,
+      `This overlay is ${disclosure}: a rehearsal without a link would tell whether it is there. Rehearse nodes or labels instead.`,
+    )
+    return []
+  }
+  const byName = new Map(agents.map((agent) => [agent.name, agent]))
+  const known = new Set(named.map(({ a, b }) => keyOf(a, b)))
+  const missing = links.filter(([a, b]) => !known.has(keyOf(a, b)))
+  if (isAsked && missing.length > 0)
+    say(
+      'exclude.links',
+      `There is no link ${listOf(missing.map(([a, b]) => `${a} – ${b}`))} now. Choose links that are measured.`,
+    )
+  const wanted = named.filter(({ a, b }) => {
+    const [one, other] = [byName.get(a)?.labels ?? {}, byName.get(b)?.labels ?? {}]
+    return between.some(
+      (pair) =>
+        (one[pair.key] === pair.a && other[pair.key] === pair.b) ||
+        (one[pair.key] === pair.b && other[pair.key] === pair.a),
+    )
+  })
+  if (isAsked && between.length > 0 && wanted.length === 0)
+    say('exclude.between', 'No link joins nodes with these labels now.')
+  const all = [
+    ...links.filter(([a, b]) => known.has(keyOf(a, b))),
+    ...wanted.map(({ a, b }): [string, string] => [a, b]),
+  ]
+  const unique = new Map(all.map((pair) => [keyOf(...pair), pair]))
+  return [...unique.values()].flatMap(([a, b]) => {
+    const ids = [byName.get(a)?.agentId, byName.get(b)?.agentId]
+    const [one, other] = ids
+    return one && other ? [[one, other] as [string, string]] : []
+  })
+}
+
+const keyOf = (a: string, b: string): string => (a < b ? `${a}\n${b}` : `${b}\n${a}`)

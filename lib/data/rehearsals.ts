@@ -1,0 +1,179 @@
+import { z } from 'zod'
+import {
+  AgentSchema,
+  IncidentSchema,
+  type Overlay,
+  type Rehearsal,
+  RehearsalSchema,
+  UserSchema,
+} from '@/entities'
+import { decide } from '@/lib/auth/decide'
+import { permissionOf } from '@/lib/auth/permissions'
+import { enterEvent } from '@/lib/collector/events-store'
+import { enterEnd } from '@/lib/collector/rehearsal/end-store'
+import { takenOf } from '@/lib/collector/rehearsal/taken'
+import { takenWords } from '@/lib/collector/rehearsal/words'
+import { sql } from '@/lib/db'
+import { AppError } from '@/lib/http/app-error'
+import type { Call } from '@/lib/http/call'
+import { MOST_REHEARSALS } from '@/lib/method/control'
+import { namedLinks } from './links'
+import { openOverlay } from './overlays'
+import { type NewRehearsal, newRehearsalSchema, type RehearsalDto } from './rehearsal-dto'
+
+const LISTED = 100
+/** So many may wait in one overlay, planned ones among them. */
+const MOST_WAITING = 50
+
+export async function createRehearsal(call: Call, slug: string, input: NewRehearsal): Promise<RehearsalDto> {
+  const overlay = await openOverlay(call, 'rehearsal.start', slug)
+  const { caller, em, now } = call
+  const { exclude, note, incident: number, startsAt } = newRehearsalSchema.parse(input)
+  const words = takenWords(exclude)
+  call.note({ subject: `${overlay.slug}: ${words}`, data: { exclude, startsAt } })
+  const agents = await em.find(AgentSchema, { overlay: overlay.id, state: 'joined' })
+  const isOfLinks = exclude.links.length + exclude.between.length > 0
+  const resolved = takenOf(
+    exclude,
+    {
+      disclosure: overlay.disclosure,
+      agents: agents.map(({ id, name, labels }) => ({ agentId: id, name, labels })),
+      links:
+        isOfLinks && overlay.disclosure === 'named'
+          ? (await namedLinks(em, overlay, null)).filter(({ state }) => state === 'live')
+          : [],
+    },
+    true,
+  )
+  if ('problems' in resolved)
+    throw new AppError('invalid-input', resolved.problems.map(({ message }) => message).join(' '), {
+      errors: resolved.problems,
+    })
+  const incident =
+    number === null
+      ? null
+      : await em.findOne(IncidentSchema, { number, overlay: overlay.id, team: overlay.team.id })
+  if (number !== null && !incident)
+    throw new AppError('invalid-input', `There is no incident ${number} of this overlay.`, {
+      errors: [{ path: 'incident', message: 'Choose one of this overlay.' }],
+    })
+  await refuseFull(call, overlay)
+  const row = em.create(RehearsalSchema, {
+    ...mine(overlay),
+    state: 'waiting',
+    progress: 0,
+    askedBy: 'userId' in caller ? await em.findOne(UserSchema, caller.userId) : null,
+    askedAt: now,
+    startsAt: startsAt === null ? null : new Date(startsAt),
+    note,
+    incident,
+    exclude,
+  })
+  await em.flush()
+  if (row.startsAt && row.startsAt > now)
+    await enterEvent(em, overlay.id, { kind: 'rehearsal-planned', text: `Rehearsal planned: ${words} away` })
+  return toDto(row, now)
+}
+
+/** Newest first; `mayStart` says whether the caller may start or cancel one. */
+export async function listRehearsals(
+  call: Call,
+  slug: string,
+): Promise<{ items: RehearsalDto[]; most: number; mayStart: boolean }> {
+  const overlay = await openOverlay(call, 'rehearsal.list', slug)
+  const rows = await call.em.find(RehearsalSchema, mine(overlay), {
+    populate: ['askedBy', 'incident'],
+    orderBy: { askedAt: 'desc', id: 'desc' },
+    limit: LISTED,
+  })
+  const start = decide(permissionOf('rehearsal.start'), call.caller, overlay.team.id)
+  return {
+    items: rows.map((row) => toDto(row, call.now)),
+    most: MOST_REHEARSALS,
+    mayStart: start === 'allowed',
+  }
+}
+
+export async function getRehearsal(call: Call, slug: string, id: string): Promise<RehearsalDto> {
+  const overlay = await openOverlay(call, 'rehearsal.list', slug)
+  return toDto(await rowOf(call, overlay, id), call.now)
+}
+
+/** Its colonies are given up with the next orders. */
+export async function cancelRehearsal(call: Call, slug: string, id: string): Promise<RehearsalDto> {
+  const overlay = await openOverlay(call, 'rehearsal.cancel', slug)
+  const { em, now } = call
+  const row = await rowOf(call, overlay, id)
+  call.note({ subject: `${overlay.slug}: ${takenWords(row.exclude)}` })
+  const ended = await sql(
+    em,
+    `update rehearsals set state = 'cancelled', ended_at = ?, expected_at = null, plan = null
+     where id = ? and state in ('waiting', 'running') returning id`,
+    [now, id],
+  )
+  if (ended.length === 0)
+    throw new AppError('rehearsal-over', 'It is over already, and its answer is kept. Load the list again.')
+  const after = await em.refresh(row)
+  await enterEnd(em, {
+    overlayId: overlay.id,
+    incidentId: row.incident?.id ?? null,
+    at: now,
+    text: `Rehearsal cancelled: ${takenWords(row.exclude)} away`,
+    userId: 'userId' in call.caller ? call.caller.userId : null,
+  })
+  return toDto(after ?? row, now)
+}
+
+const mine = (overlay: Overlay) => ({ overlay: overlay.id, team: overlay.team.id })
+
+async function rowOf(call: Call, overlay: Overlay, id: string): Promise<Rehearsal> {
+  // PostgreSQL refuses to compare a uuid with what is none.
+  const known = z.uuid().safeParse(id).success
+  const row = known
+    ? await call.em.findOne(RehearsalSchema, { id, ...mine(overlay) }, { populate: ['askedBy', 'incident'] })
+    : null
+  if (!row) throw new AppError('not-found', 'There is no such rehearsal. Load the list again.')
+  return row
+}
+
+async function refuseFull({ em }: Call, overlay: Overlay): Promise<void> {
+  const waiting = await em.count(RehearsalSchema, {
+    overlay: overlay.id,
+    state: { $in: ['waiting', 'running'] },
+  })
+  if (waiting < MOST_WAITING) return
+  throw new AppError(
+    'rehearsals-full',
+    `${waiting} rehearsals of this overlay are waiting. Wait for some of them, or cancel those that nobody needs.`,
+  )
+}
+
+function toDto(row: Rehearsal, now: Date): RehearsalDto {
+  const result = row.result ?? null
+  const time = (at: Date | null | undefined) => at?.toISOString() ?? null
+  return {
+    id: row.id,
+    state: row.state,
+    progress: row.progress,
+    endsInMs: row.expectedAt ? Math.max(0, row.expectedAt.getTime() - now.getTime()) : null,
+    askedAt: row.askedAt.toISOString(),
+    startsAt: time(row.startsAt),
+    startedAt: time(row.startedAt),
+    endedAt: time(row.endedAt),
+    by: row.askedBy?.name ?? null,
+    note: row.note ?? null,
+    incident: row.incident?.number ?? null,
+    exclude: row.exclude,
+    taken: row.taken ?? null,
+    remain: row.remain ?? null,
+    reading: result?.reading ?? null,
+    level: result?.level ?? null,
+    sides: result?.sides ?? null,
+    crossingLinks: result?.crossingLinks ?? null,
+    live: result?.live ?? null,
+    floor: result?.floor ?? null,
+    answer: result?.answer ?? null,
+    verdict: row.verdict ?? null,
+    waves: result?.waves ?? null,
+  }
+}
