@@ -7,7 +7,7 @@ import { algebraicConnectivity } from '@/lib/method/spectrum'
 import type { Drain, Topology } from './cases'
 
 /** The live reading is looked at for so long before, to say what it was. */
-const RESTING_MS = 20_000
+const RESTING_MS = 45_000
 const FRESH_WITHIN_MS = 300_000
 const OVER_WITHIN_MS = 300_000
 
@@ -20,6 +20,8 @@ export interface RehearsalRun {
   state: RehearsalEstimate['state']
   because: RehearsalEstimate['because']
   reading: number | null
+  low: number
+  high: number
   isApart: boolean
   isCold: boolean
   seconds: number
@@ -51,7 +53,6 @@ export function runRehearsals(
     },
   )
   simulation.runUntil(({ withheld, settling }) => withheld === null && !settling, FRESH_WITHIN_MS)
-  simulation.run(RESTING_MS)
   return drains.map((drain, index) => {
     const before = watch(simulation, () => false, RESTING_MS)
     const was = before.reduce((sum, value) => sum + value, 0) / before.length
@@ -87,6 +88,8 @@ export function runRehearsals(
       state: last?.state ?? 'waiting',
       because: last?.because ?? null,
       reading: last?.estimate?.lambda2 ?? null,
+      low: last?.estimate?.low ?? 0,
+      high: last?.estimate?.high ?? 0,
       isApart: last?.found?.isApart ?? false,
       isCold,
       seconds,
@@ -99,12 +102,12 @@ export function runRehearsals(
   })
 }
 
-/** The live reading of the whole of every evaluation until `done`. */
+/** The live reading of the whole, where it is fresh, of every evaluation until `done`. */
 function watch(simulation: Simulation, done: () => boolean, limitMs: number): number[] {
   const values: number[] = []
   let isDone = false
-  simulation.onEstimate = ({ lambda2 }) => {
-    if (lambda2 !== null) values.push(lambda2)
+  simulation.onEstimate = ({ lambda2, settling }) => {
+    if (lambda2 !== null && !settling) values.push(lambda2)
     isDone ||= done()
   }
   const endMs = simulation.nowMs + limitMs
