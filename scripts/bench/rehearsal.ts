@@ -42,16 +42,16 @@ function explain(print: Print): void {
   print('taken: nodes taken away; exact: λ₂ of what remains; off: of the answer from it.')
   print('cold: the clones were of no use; held: exact lies in the answer’s interval.')
   print(
-    'live, before: farthest that fresh live readings stood from their mean of the 45 s before, meanwhile and in those.',
+    'live, alone: farthest that fresh live readings stood from their mean of the 45 s before: meanwhile, and in 45 s without one.',
   )
   print('')
   print(
-    `${'topology'.padEnd(30)} ${'drain'.padEnd(6)} ${['taken', 'exact', 'answer', 'off %', 's', 'live %', 'before'].map((head) => head.padStart(7)).join(' ')}`,
+    `${'topology'.padEnd(30)} ${'drain'.padEnd(6)} ${['taken', 'exact', 'answer', 'off %', 's', 'live %', 'alone %'].map((head) => head.padStart(7)).join(' ')}`,
   )
 }
 
 export function lineOf(run: RehearsalRun): string {
-  const { topology, what, taken, exact, reading, seconds, liveOff, liveOffBefore } = run
+  const { topology, what, taken, exact, reading, seconds, liveOff, aloneOff } = run
   const answer =
     run.state !== 'settled' ? (run.because ?? run.state) : run.isApart ? 'splits' : (reading ?? 0).toFixed(4)
   const off = offOf(run)
@@ -62,7 +62,7 @@ export function lineOf(run: RehearsalRun): string {
     off === null ? '–' : (100 * off).toFixed(1),
     seconds.toFixed(0),
     (100 * liveOff).toFixed(1),
-    (100 * liveOffBefore).toFixed(1),
+    (100 * aloneOff).toFixed(1),
   ]
   const remark = [run.isCold ? 'cold' : '', exact > 0 && isHeld(run) ? 'held' : ''].filter(
     (part) => part !== '',
@@ -90,6 +90,6 @@ export function summaryOf(all: readonly RehearsalRun[]): string[] {
   return [
     `${count(isRight)} right: within 5 % of exact, or splits where it does; farthest off ${(100 * Math.max(...offs)).toFixed(1)} %.`,
     `Seconds to the answer: median ${median(seconds).toFixed(0)}, longest ${Math.max(...seconds).toFixed(0)}.`,
-    `Live reading within 2 % of its mean before: ${count(({ liveOff }) => liveOff <= LIVE_WITHIN)}; in the 45 s before: ${count(({ liveOffBefore }) => liveOffBefore <= LIVE_WITHIN)}.`,
+    `Live reading within 2 % of its mean before: ${count(({ liveOff }) => liveOff <= LIVE_WITHIN)}; without one: ${count(({ aloneOff }) => aloneOff <= LIVE_WITHIN)}.`,
   ]
 }

@@ -6,7 +6,7 @@ import { Simulation } from '@/lib/method/simulate'
 import { algebraicConnectivity } from '@/lib/method/spectrum'
 import type { Drain, Topology } from './cases'
 
-/** The live reading is looked at for so long before, to say what it was. */
+/** The live reading is looked at for twice so long before: to say what it was, and how it goes by itself. */
 const RESTING_MS = 45_000
 const FRESH_WITHIN_MS = 300_000
 const OVER_WITHIN_MS = 300_000
@@ -25,9 +25,9 @@ export interface RehearsalRun {
   isApart: boolean
   isCold: boolean
   seconds: number
-  /** Largest share by which the live reading stood from its mean before, meanwhile and for so long before. */
+  /** Largest share by which the live reading stood from its mean of the time before: meanwhile, and in such a time without any. */
   liveOff: number
-  liveOffBefore: number
+  aloneOff: number
   /** Both halves at the end. */
   halves: readonly [number, number] | null
   sides: readonly [number, number] | null
@@ -54,8 +54,8 @@ export function runRehearsals(
   )
   simulation.runUntil(({ withheld, settling }) => withheld === null && !settling, FRESH_WITHIN_MS)
   return drains.map((drain, index) => {
+    const earlier = watch(simulation, () => false, RESTING_MS)
     const before = watch(simulation, () => false, RESTING_MS)
-    const was = before.reduce((sum, value) => sum + value, 0) / before.length
     const startMs = simulation.nowMs
     simulation.rehearsed = [
       { id: `${index}`, agents: drain.nodes.map((node) => simulation.agents[node]!.node.agentId), links: [] },
@@ -78,8 +78,6 @@ export function runRehearsals(
     simulation.rehearsed = []
     simulation.run(2_000)
     const cut = last?.estimate?.cut
-    const off = (values: readonly number[]) =>
-      Math.max(0, ...values.map((value) => Math.abs(value / was - 1)))
     return {
       topology: name,
       what: drain.what,
@@ -93,13 +91,18 @@ export function runRehearsals(
       isApart: last?.found?.isApart ?? false,
       isCold,
       seconds,
-      liveOff: off(live),
-      liveOffBefore: off(before),
+      liveOff: farthest(live, before),
+      aloneOff: farthest(before, earlier),
       halves: last?.found?.halves ?? null,
       sides: cut ? [cut.above, cut.below] : null,
       crossing: cut?.links ?? null,
     }
   })
+}
+
+function farthest(values: readonly number[], before: readonly number[]): number {
+  const was = before.reduce((sum, value) => sum + value, 0) / before.length
+  return Math.max(0, ...values.map((value) => Math.abs(value / was - 1)))
 }
 
 /** The live reading of the whole, where it is fresh, of every evaluation until `done`. */
