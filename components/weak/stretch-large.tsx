@@ -26,7 +26,7 @@ export function StretchLarge({
       left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
     </>
   ) : (
-    (place?.withheld?.sentence ?? '')
+    'left to right: Fiedler value · no sides are drawn'
   )
   return (
     <Sheet heading="Stretch" aside={remark}>
