@@ -56,6 +56,8 @@ export interface JudgeInput {
 export interface EventDraft {
   kind: (typeof EVENT_KINDS)[number]
   text: string
+  /** What a program looks up later, beside the line for a person. */
+  data?: { links: [a: string, b: string][] }
 }
 
 export interface Judgement {

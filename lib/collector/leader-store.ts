@@ -172,11 +172,14 @@ async function insertEvents(
   { state, events }: Pick<Round, 'state' | 'events'>,
 ): Promise<void> {
   const at = new Date(state.memory.judgedAtMs ?? 0)
-  const rows: Bindable[] = events.flatMap(({ kind, text }) => [overlayId, at, kind, text])
+  const rows: Bindable[] = events.flatMap(({ kind, text, data }) => [
+    ...[overlayId, at, kind, text],
+    data ? JSON.stringify(data) : null,
+  ])
   if (events.length > 0)
     await query(
       em,
-      `insert into overlay_events (overlay_id, at, kind, text) values ${events.map(() => '(?::uuid, ?::timestamptz, ?, ?)').join(', ')}`,
+      `insert into overlay_events (overlay_id, at, kind, text, data) values ${events.map(() => '(?::uuid, ?::timestamptz, ?, ?, ?::jsonb)').join(', ')}`,
       rows,
     )
   const kinds = events.length > 0 ? ['reading', 'event'] : ['reading']

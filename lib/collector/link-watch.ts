@@ -8,6 +8,8 @@ export const LINK_STILL_INTERVALS = 3
 /** What is there when the watch begins is no news. */
 const LEARNING_INTERVALS = 10
 const MOST_NAMED = 3
+/** More links come and go at once only where an overlay begins: how old each of them is does not matter then. */
+const MOST_KEPT = 500
 
 interface Watched {
   a: string
@@ -40,8 +42,8 @@ export class LinkWatch {
       if (!this.#links.has(key)) this.#links.set(key, { a, b, named: false, sinceMs: 0, known: false })
     }
     const learning = snapshot.atMs - this.#sinceMs < LEARNING_INTERVALS * intervalMs
-    const lost: string[] = []
-    const found: string[] = []
+    const lost: [string, string][] = []
+    const found: [string, string][] = []
     for (const [key, link] of this.#links) {
       if (!heard.has(link.a) || !heard.has(link.b)) continue
       const now = named.has(key)
@@ -49,18 +51,22 @@ export class LinkWatch {
       if (link.named === link.known) continue
       if (!learning && snapshot.atMs - link.sinceMs < LINK_STILL_INTERVALS * intervalMs) continue
       link.known = link.named
-      const pair = [nameOf(link.a), nameOf(link.b)].sort().join(' – ')
-      if (!learning) (link.named ? found : lost).push(pair)
+      const [a, b] = [nameOf(link.a), nameOf(link.b)]
+      if (!learning) (link.named ? found : lost).push(a < b ? [a, b] : [b, a])
     }
     return [...said('link-lost', lost, 'lost'), ...said('link-found', found, 'found')]
   }
 }
 
-function said(kind: 'link-lost' | 'link-found', pairs: readonly string[], what: string): EventDraft[] {
-  if (pairs.length === 0) return []
+function said(
+  kind: 'link-lost' | 'link-found',
+  links: readonly [string, string][],
+  what: string,
+): EventDraft[] {
+  if (links.length === 0) return []
   const named =
-    pairs.length > MOST_NAMED
-      ? countOf(pairs.length, 'link')
-      : `${pairs.length === 1 ? 'link' : 'links'} ${listOf(pairs)}`
-  return [{ kind, text: `${named} ${what}` }]
+    links.length > MOST_NAMED
+      ? countOf(links.length, 'link')
+      : `${links.length === 1 ? 'link' : 'links'} ${listOf(links.map((pair) => pair.join(' – ')))}`
+  return [{ kind, text: `${named} ${what}`, data: { links: links.slice(0, MOST_KEPT) } }]
 }

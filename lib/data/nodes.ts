@@ -109,6 +109,35 @@ export async function getNode(
   return toNode(row, await memoryOf(em, id), PACES[pace].intervalMs)
 }
 
+/** The one that has the name now, else the last that had it. For those who have checked the caller. */
+export async function nodeNamed(
+  em: EntityManager,
+  { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  memory: Memory | null,
+  name: string,
+): Promise<OverlayNode | null> {
+  const [row] = await query<Row>(
+    em,
+    `${SELECT} where a.overlay_id = ? and a.name = ? order by (a.state <> 'left') desc, a.joined_at desc limit 1`,
+    [id, name],
+  )
+  return row ? toNode(row, memory, PACES[pace].intervalMs) : null
+}
+
+/** All that have joined, by name. For those who have checked the caller. */
+export async function joinedNodes(
+  em: EntityManager,
+  { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  memory: Memory | null,
+): Promise<OverlayNode[]> {
+  const rows = await query<Row>(
+    em,
+    `${SELECT} where a.overlay_id = ? and a.state = 'joined' order by a.name collate "C"`,
+    [id],
+  )
+  return rows.map((row) => toNode(row, memory, PACES[pace].intervalMs))
+}
+
 function toNode(row: Row, memory: Memory | null, intervalMs: number): OverlayNode {
   const { name, labels, facts, version, colonies } = row
   return {

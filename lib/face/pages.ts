@@ -11,11 +11,12 @@ export function overlayPages(slug: string): PageEntry[] {
   const base = `/overlays/${encodeURIComponent(slug)}`
   return [
     { letter: 'A', label: 'Now', href: base },
-    { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'B', label: 'Weak place', href: `${base}/weak` },
     { letter: 'C', label: 'Rehearsals', href: `${base}/rehearsals` },
-    { letter: 'D', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'E', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'F', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'D', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'E', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'F', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'G', label: 'Warnings', href: `${base}/warnings` },
   ]
 }
 
