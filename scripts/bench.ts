@@ -3,6 +3,7 @@ import { benchAgent } from './bench/agent'
 import { benchCoverage } from './bench/coverage'
 import { benchIngest } from './bench/ingest'
 import { benchReading } from './bench/reading'
+import { benchRehearsal } from './bench/rehearsal'
 import { benchScale } from './bench/scale'
 import { benchWarning } from './bench/warning'
 
@@ -15,6 +16,7 @@ const BENCHES: Record<string, Bench> = {
   // From cold and at rest: the reading's table begins with what the method alone does.
   method: benchReading,
   reading: benchReading,
+  rehearsal: benchRehearsal,
   scale: benchScale,
   warning: benchWarning,
 }

@@ -68,6 +68,12 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/namespaces.test.ts',
     env: {},
   },
+  rehearsal: {
+    about:
+      'rehearsals on eight simulated overlays, four drains each, twice (THINSPAN_SOAK_RUNS), against the exact λ₂ of what remains, with a table',
+    file: 'tests/soak/rehearsal.test.ts',
+    env: {},
+  },
   year: {
     about:
       'a year of 20 overlays of 200 nodes (THINSPAN_YEAR_OVERLAYS, THINSPAN_YEAR_NODES) rolled up, thinned and looked at, with figures; some 20 GB of disk',

@@ -232,9 +232,9 @@ export function usePast(slug: string, at: string) {
   )
 }
 
-/** The present changes with each reading, a past moment never. */
+/** The present changes with each reading, but what is told of it takes its time; a past moment never changes. */
 const nowOr = (at: string | null): LiveOptions =>
-  at === null ? { streamingMs: POLL_MS } : { streamingMs: 0, pollMs: 0 }
+  at === null ? { streamingMs: UPKEEP_MS, pollMs: UPKEEP_MS } : { streamingMs: 0, pollMs: 0 }
 
 function atQuery(at: string | null): Record<string, string> {
   return at === null ? {} : { at }

@@ -3,7 +3,7 @@ import { Lambda, SideMark } from '@/components/ui'
 import type { Reading } from '@/lib/data/dto'
 import type { RehearsalDto } from '@/lib/data/rehearsal-dto'
 import { cx } from '@/lib/face/cx'
-import { type Compared, compared } from '@/lib/face/rehearsal'
+import { type Compared, compared, isOpen } from '@/lib/face/rehearsal'
 
 const LABELS: Record<Compared['id'], ReactNode> = {
   reading: (
@@ -19,7 +19,6 @@ const LABELS: Record<Compared['id'], ReactNode> = {
 
 /** The overlay as it is, beside what would be left of it. Rows stand from the beginning, so that nothing moves. */
 export function Comparison({ rehearsal, beside }: { rehearsal: RehearsalDto; beside: Reading | null }) {
-  const open = rehearsal.state === 'running' && rehearsal.answer === null
   return (
     <table className="w-full max-w-3xl border-collapse border border-ink bg-sheet text-left">
       <caption className="sr-only">The overlay as it is beside what would be left of it</caption>
@@ -30,7 +29,11 @@ export function Comparison({ rehearsal, beside }: { rehearsal: RehearsalDto; bes
             live, beside it
           </th>
           <th scope="col" className="px-3 py-1.5 font-normal">
-            {open ? 'as it would be, so far' : 'as it would be'}
+            {rehearsal.answer !== null
+              ? 'as it would be'
+              : isOpen(rehearsal)
+                ? 'as it would be, so far'
+                : 'last seen of it'}
           </th>
         </tr>
       </thead>

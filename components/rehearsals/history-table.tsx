@@ -65,7 +65,9 @@ function columnsFor(slug: string): Column<RehearsalDto>[] {
         </Mark>
       ),
     },
-    figure('would', 'would remain', ({ reading }) => reading?.lambda2 ?? null),
+    figure('would', 'would remain', ({ reading, answer }) =>
+      answer === null ? null : (reading?.lambda2 ?? null),
+    ),
     figure('live', 'live beside it', ({ live }) => live?.lambda2 ?? null),
     figure('floor', 'floor', ({ floor }) => floor?.lambda2 ?? null),
     {

@@ -8,7 +8,14 @@ import { roleReaches } from '@/lib/auth/permissions'
 import type { RehearsalDto } from '@/lib/data/rehearsal-dto'
 import { cx } from '@/lib/face/cx'
 import { formatReading } from '@/lib/face/format'
-import { detailOf, excludedWords, headline, isOpen, rehearsalsPage, rehearseHref } from '@/lib/face/rehearsal'
+import {
+  detailOf,
+  excludedInFull,
+  headline,
+  isOpen,
+  rehearsalsPage,
+  rehearseHref,
+} from '@/lib/face/rehearsal'
 import { incidentUrls } from '@/lib/face/urls'
 import { CancelButton, RepeatButton } from './acts'
 import { RehearsalCautions } from './cautions'
@@ -93,10 +100,7 @@ function Head({ slug, rehearsal }: { slug: string; rehearsal: RehearsalDto }) {
       <div className="mt-3 max-w-3xl space-y-1.5">
         {detail ? <p className="text-lg text-soft">{detail}</p> : null}
         {verdict && state === 'failed' ? <Outcome ok={false}>{verdict}</Outcome> : null}
-        <p className="break-words">
-          <span className="text-soft">Taken away: </span>
-          {excludedWords(rehearsal.exclude)}
-        </p>
+        <TakenAway exclude={rehearsal.exclude} />
         {floor ? (
           <p>
             <span className="text-soft">Held against: </span>
@@ -118,5 +122,24 @@ function Head({ slug, rehearsal }: { slug: string; rehearsal: RehearsalDto }) {
         </div>
       ) : null}
     </header>
+  )
+}
+
+function TakenAway({ exclude }: { exclude: RehearsalDto['exclude'] }) {
+  const { said, names } = excludedInFull(exclude)
+  return (
+    <p className="break-words">
+      <span className="text-soft">Taken away: </span>
+      {said}
+      {said !== '' && names.length > 0 ? ', and ' : ''}
+      {names.map((name, index) => (
+        <span key={name}>
+          <span className="inline-block max-w-full">
+            {name}
+            {index < names.length - 1 ? ',' : ''}
+          </span>{' '}
+        </span>
+      ))}
+    </p>
   )
 }

@@ -5,8 +5,8 @@ import { useWidth } from '@/components/stretch/use-width'
 import { type CurvePoint, curvePath, withBreaks, xOf, yOf } from '@/lib/face/curve'
 import { formatMoment } from '@/lib/face/time'
 
-const HEIGHT = 132
-const PAD = 14
+const HEIGHT = 140
+const PAD = 18
 
 export interface CourseProps {
   heading: string
@@ -40,7 +40,7 @@ export function Course(props: CourseProps) {
         <span>{heading}</span>
         {last && last[1] !== null ? <span className="font-figures text-ink">{format(last[1])}</span> : null}
       </figcaption>
-      <div ref={frame} className="h-33 min-w-0 overflow-hidden">
+      <div ref={frame} className="h-35 min-w-0 overflow-hidden">
         {width !== null && width > 0 ? (
           <svg viewBox={`0 0 ${width} ${HEIGHT}`} width={width} height={HEIGHT} role="img" aria-label={words}>
             {[least, most].map((value) => (

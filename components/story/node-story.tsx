@@ -114,7 +114,7 @@ function HistorySheet({ story, range }: { story: NodeStory; range: Range }) {
           <div className="grid gap-6 md:grid-cols-2">
             <Course
               {...times}
-              heading="Fiedler value: far from 0 is far from the middle"
+              heading="Fiedler value; its sign may turn when another cut is the weakest"
               points={course.map(({ at, value }) => [Date.parse(at), value])}
               least={-1}
               most={1}

@@ -23,37 +23,31 @@ export interface CrossingTableProps {
 
 /** The links that hold the sides together, and what each of them carries. */
 export function CrossingTable({ slug, place, range }: CrossingTableProps) {
-  const { crossing, links, withheld, disclosure, reading } = place
-  const measured = reading.coverage.linksMeasured
+  const { crossing, links, disclosure, reading } = place
+  if (!crossing) return null
   const why = whyHidden(asCut(place), disclosure)
   return (
-    <Sheet heading="Crossing links" aside={crossing ? `${crossing.links} of ${measured} measured` : null}>
-      {!crossing ? (
-        <p className="text-soft">
-          {withheld?.sentence ?? 'No cut stands out, so no link is one that holds it.'}
-        </p>
-      ) : (
-        <div className="space-y-3">
-          {links.length > 0 ? (
-            <Links slug={slug} place={place} range={range} />
-          ) : crossing.links === 0 ? (
-            <EmptyState title="No link crosses between the sides.">
-              Linking any node of side a with any of side b joins the overlay again.
-            </EmptyState>
-          ) : (
-            <p className="font-figures text-xl">
-              {formatCount(crossing.links, 'link')}, delivering {formatReading(crossing.weight)} together
-            </p>
-          )}
-          {why ? <Note>{why}</Note> : null}
-          {links.length > 0 ? (
-            <Note>
-              “Or lower”: without the link the reading is at most this, never surely this. It holds for one
-              link at a time; of several, take their shares together.
-            </Note>
-          ) : null}
-        </div>
-      )}
+    <Sheet heading="Crossing links" aside={`${crossing.links} of ${reading.coverage.linksMeasured} measured`}>
+      <div className="space-y-3">
+        {links.length > 0 ? (
+          <Links slug={slug} place={place} range={range} />
+        ) : crossing.links === 0 ? (
+          <EmptyState title="No link crosses between the sides.">
+            Linking any node of side a with any of side b joins the overlay again.
+          </EmptyState>
+        ) : (
+          <p className="font-figures text-xl">
+            {formatCount(crossing.links, 'link')}, delivering {formatReading(crossing.weight)} together
+          </p>
+        )}
+        {why ? <Note>{why}</Note> : null}
+        {links.length > 0 ? (
+          <Note>
+            “Or lower”: without the link the reading is at most this, never surely this. It holds for one link
+            at a time; of several, take their shares together.
+          </Note>
+        ) : null}
+      </div>
     </Sheet>
   )
 }

@@ -7,13 +7,8 @@ import { cheegerSentence, runnerUpSentence } from '@/lib/face/weak'
 
 /** Sizes of the sides, what follows from them, and the next place. */
 export function CutFigures({ place }: { place: WeakPlace }) {
-  const { sides, crossing, figures, withheld } = place
-  if (!sides || !crossing || !figures)
-    return (
-      <Sheet heading="The cut in figures">
-        <p className="text-soft">{withheld?.sentence ?? 'No cut has been counted.'}</p>
-      </Sheet>
-    )
+  const { sides, crossing, figures } = place
+  if (!sides || !crossing || !figures) return null
   const cheeger = cheegerSentence(place)
   const volume = (side: (typeof sides)[number]) =>
     side.volume === null ? '' : `, ${formatReading(side.volume)} weight on their links`

@@ -6,39 +6,36 @@ import { type FollowedLabel, followsSentence, leftOutText, pText } from '@/lib/f
 
 /** Which label the sides follow: the first thing to know about a cause. */
 export function FollowsSheet({ slug, place }: { slug: string; place: WeakPlace }) {
-  const { follows, sides, withheld } = place
+  const { follows, sides } = place
+  if (!sides) return null
   const leftOut = leftOutText(follows)
   return (
-    <Sheet heading="What the cut follows" aside={sides ? `${follows.nodes} nodes on a side` : null}>
-      {!sides ? (
-        <p className="text-soft">{withheld?.sentence ?? 'No sides are drawn.'}</p>
-      ) : (
-        <div className="space-y-3">
-          <p className="font-semibold">{followsSentence(follows)}</p>
-          <DataTable
-            caption="Labels by how much they tell of the side a node is on"
-            columns={COLUMNS}
-            rows={follows.labels}
-            rowKey={({ key }) => key}
-            csvName={`${slug}-follows`}
-            stacks
-            empty={
-              <EmptyState title="No label to compare with.">
-                Give agents labels when they enrol: office, region, provider, power supply.
-              </EmptyState>
-            }
-          />
-          {leftOut ? <p className="text-sm text-soft">{leftOut}</p> : null}
-          {follows.labels.length > 0 ? (
-            <Note>
-              1 where each value lies wholly on one side, 0 where the label says no more than chance: adjusted
-              mutual information. By chance: how often sides dealt out at random say as much, of{' '}
-              {follows.labels[0]?.permutations} draws; each label is tested by itself, so of many one may
-              stand out. Nodes without the label are left out of its row.
-            </Note>
-          ) : null}
-        </div>
-      )}
+    <Sheet heading="What the cut follows" aside={`${follows.nodes} nodes on a side`}>
+      <div className="space-y-3">
+        <p className="font-semibold">{followsSentence(follows)}</p>
+        <DataTable
+          caption="Labels by how much they tell of the side a node is on"
+          columns={COLUMNS}
+          rows={follows.labels}
+          rowKey={({ key }) => key}
+          csvName={`${slug}-follows`}
+          stacks
+          empty={
+            <EmptyState title="No label to compare with.">
+              Give agents labels when they enrol: office, region, provider, power supply.
+            </EmptyState>
+          }
+        />
+        {leftOut ? <p className="text-sm text-soft">{leftOut}</p> : null}
+        {follows.labels.length > 0 ? (
+          <Note>
+            1 where each value lies wholly on one side, 0 where the label says no more than chance: adjusted
+            mutual information. By chance: how often sides dealt out at random say as much, of{' '}
+            {follows.labels[0]?.permutations} draws; each label is tested by itself, so of many one may stand
+            out. Nodes without the label are left out of its row.
+          </Note>
+        ) : null}
+      </div>
     </Sheet>
   )
 }

@@ -41,6 +41,12 @@ export function WeakHead({ slug, place, role, onNow }: WeakHeadProps) {
               <p className="font-semibold">{withheld.sentence}</p>
             )}
             <p className="mt-1">{withheld.next}</p>
+            {withheld.because === 'nothing-joined' ? null : (
+              <p className="mt-1 text-soft">
+                Crossing links, the labels they follow and the figures of the cut stand here once one cut
+                stands out. The moment below leads back to when one did.
+              </p>
+            )}
             <p className="mt-2 flex flex-wrap gap-2">
               {withheld.because === 'nothing-joined' && roleReaches(role, 'operator') ? (
                 <LinkButton kind="main" href={`/overlays/${encodeURIComponent(slug)}/joining`}>

@@ -26,10 +26,13 @@ export function StretchLarge({
       left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
     </>
   ) : (
-    (place?.withheld?.sentence ?? '')
+    'left to right: Fiedler value · no sides are drawn'
   )
   return (
-    <Sheet heading="Stretch" aside={remark}>
+    <Sheet
+      heading="Stretch"
+      aside={at === null ? remark : <>{remark} · links within the sides are not kept of past moments</>}
+    >
       <Freshness of={nodes} />
       {nodes.data && place ? (
         nodes.data.length > 0 ? (

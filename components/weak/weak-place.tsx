@@ -40,7 +40,7 @@ export function WeakPlaceView({ slug }: { slug: string }) {
         <>
           <StretchLarge slug={slug} at={at} place={place ?? null} />
           <MomentSheet slug={slug} range={range} at={at} onAt={setAt} />
-          {place ? (
+          {place?.sides ? (
             <>
               <CrossingTable slug={slug} place={place} range={range} />
               <div className="grid gap-5 lg:grid-cols-2 lg:items-start">

@@ -40,6 +40,7 @@ const writes = (role: Role, tokenScope: TokenScope | null): Permission => ({
 export const PERMISSIONS = {
   'health.read': open(false),
   'agent-file.read': open(false),
+  'openapi.read': open(false),
   'first-run.read': open(false),
   'first-run.create': open(true),
   'session.create': open(true),

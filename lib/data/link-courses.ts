@@ -44,6 +44,9 @@ export interface LinkTurn extends Pair {
   kind: 'link-lost' | 'link-found'
 }
 
+/** So many of an overlay's newest events are looked through: pages ask every few seconds. */
+export const EVENTS_LOOKED_AT = 20_000
+
 /** When links were last lost or found up to a moment, by the names of their ends. */
 export async function lastTurns(
   em: EntityManager,
@@ -52,11 +55,11 @@ export async function lastTurns(
   const turns = await query<LinkTurn>(
     em,
     `select distinct on (a, b) pair->>0 as a, pair->>1 as b, ${epochMs('at')} as "atMs", kind
-     from overlay_events, jsonb_array_elements(data->'links') pair
-     where overlay_id = ? and at <= ? and kind in ('link-lost', 'link-found')
-       and jsonb_typeof(data->'links') = 'array'
+     from (select id, at, kind, data from overlay_events where overlay_id = ? and at <= ?
+       order by at desc limit ?) event, jsonb_array_elements(data->'links') pair
+     where kind in ('link-lost', 'link-found') and jsonb_typeof(data->'links') = 'array'
      order by a, b, at desc, id desc`,
-    [overlayId, new Date(toMs)],
+    [overlayId, new Date(toMs), EVENTS_LOOKED_AT],
   )
   return new Map(turns.map((turn) => [cursorOf(turn), turn]))
 }

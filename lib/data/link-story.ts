@@ -3,7 +3,7 @@ import { epochMs, query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 import { formatLink } from '@/lib/face/format'
 import type { Call } from '@/lib/http/call'
-import { lastTurns, linkCourses, type Pair, sinceOf } from './link-courses'
+import { EVENTS_LOOKED_AT, lastTurns, linkCourses, type Pair, sinceOf } from './link-courses'
 import { namedLinks } from './links'
 import { mentionsOf } from './mentions'
 import { noSuchNode, type StoryQuery } from './node-story'
@@ -52,10 +52,11 @@ export async function getLinkStory(
 async function eventsOf(em: EntityManager, overlayId: string, { a, b }: Pair): Promise<LinkStory['events']> {
   const rows = await query<{ id: string; atMs: number; kind: 'link-lost' | 'link-found' }>(
     em,
-    `select id::text, ${epochMs('at')} as "atMs", kind from overlay_events
-     where overlay_id = ? and kind in ('link-lost', 'link-found') and data->'links' @> ?::jsonb
+    `select id::text, ${epochMs('at')} as "atMs", kind from (
+       select id, at, kind, data from overlay_events where overlay_id = ? order by at desc limit ?) event
+     where kind in ('link-lost', 'link-found') and data->'links' @> ?::jsonb
      order by at desc, id desc limit ?`,
-    [overlayId, JSON.stringify([[a, b]]), EVENTS_MOST],
+    [overlayId, EVENTS_LOOKED_AT, JSON.stringify([[a, b]]), EVENTS_MOST],
   )
   return rows.map(({ id, atMs, kind }) => ({
     id,

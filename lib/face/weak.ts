@@ -67,7 +67,7 @@ export function runnerUpSentence({ runnerUp, figures }: Pick<WeakPlace, 'runnerU
   const [a, b] = runnerUp.sides
   const of = figures?.expansion ? runnerUp.expansion / figures.expansion : null
   const times = of === null ? '' : `, ${of.toFixed(1)} times as strong for each node of the smaller side`
-  return `The next place parts ${formatCount(a, 'node')} from ${b} and holds on ${formatCount(runnerUp.links, 'link')} of ${formatReading(runnerUp.weight)} weight together${times}.`
+  return `The next place parts ${formatCount(a, 'node')} from ${b} and holds on at most ${formatCount(runnerUp.links, 'link')} of ${formatReading(runnerUp.weight)} weight together${times}.`
 }
 
 /** Since when a link has been there: "3 h", "over 2 d" where that is only how far back anyone looked. */

@@ -47,10 +47,18 @@ export interface RouteSpec<P extends Schema, Q extends Schema, B extends Schema>
   authenticate?: (em: EntityManager, input: RouteInput<P, Q, B>, now: Date) => Promise<Caller>
 }
 
+/** What can be said of a route without calling it. */
+export type DescribedSpec = Pick<
+  RouteSpec<Schema, Schema, Schema>,
+  'params' | 'query' | 'body' | 'raw' | 'status'
+>
+
 export interface RouteHandler {
   (request: Request, context: { params: Promise<unknown> }): Promise<Response>
   /** The row of the permission table; a test looks for it on every exported method. */
   permission: ActionName
+  /** What it takes, for those who describe it. */
+  spec: DescribedSpec
   /** The same for a server that has no web Request at hand, which would cost it more than the rest. */
   answer(asked: Asked, context: { params: Promise<unknown> }): Promise<Response | PlainAnswer>
 }
@@ -115,7 +123,7 @@ export function route<
   }
   const handler = async (request: Request, context: { params: Promise<unknown> }) =>
     responseOf(await answer(askedOf(request), context))
-  return Object.assign(handler, { permission: action, answer })
+  return Object.assign(handler, { permission: action, spec, answer })
 }
 
 /** A page of another site can make a browser send our cookie, but not a header of its own. */

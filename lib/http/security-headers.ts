@@ -28,7 +28,7 @@ const ATTACHMENTS = [/^\/incidents\/[^/]+\/files\//, /\/report\.pdf$/]
 
 /** The policy that does not depend on the request, or null for a page. The request filter's is the one that goes out. */
 export function fixedPolicy(path: string): string | null {
-  if (path.startsWith('/api/')) return API_CONTENT_SECURITY_POLICY
+  if (path.startsWith('/api/') || path === '/openapi.json') return API_CONTENT_SECURITY_POLICY
   return ATTACHMENTS.some((pattern) => pattern.test(path)) ? ATTACHMENT_CONTENT_SECURITY_POLICY : null
 }
 
@@ -45,7 +45,15 @@ export function securityHeaders(secure: boolean): Record<string, string> {
   }
 }
 
-const OPEN_PATHS = ['/icon.svg', '/sign-in', '/first-run', '/set-password/', '/api/', '/agent/']
+const OPEN_PATHS = [
+  '/icon.svg',
+  '/openapi.json',
+  '/sign-in',
+  '/first-run',
+  '/set-password/',
+  '/api/',
+  '/agent/',
+]
 
 /** Where the request filter sends a request: a visitor without a session cookie to sign in; null lets it through. */
 export function redirectFor(path: string, search: string, hasCookie: boolean): string | null {

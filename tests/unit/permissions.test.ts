@@ -40,6 +40,7 @@ const signedIn = [...people, 'owner elsewhere']
 const ALLOWED: Record<ActionName, string[]> = {
   'health.read': everyone,
   'agent-file.read': everyone,
+  'openapi.read': everyone,
   'first-run.read': everyone,
   'first-run.create': everyone,
   'session.create': everyone,

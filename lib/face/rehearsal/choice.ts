@@ -70,5 +70,18 @@ export function choiceSentence(exclude: Excluded, { nodes, links, joined }: Chos
   return `Rehearse ${does.join(' and ')}: ${listOf(names, NAMED_MOST)}.`
 }
 
+/** The same with every name, for whoever has to know exactly; names apart, as they may hold commas. */
+export function excludedInFull(exclude: Excluded): { said: string; names: string[] } {
+  const { nodes, links } = exclude
+  const rest = { ...exclude, nodes: nodes.length > 4 ? [] : nodes, links: links.length > 2 ? [] : links }
+  return {
+    said: isNothing(rest) ? '' : takenWords(rest),
+    names: [
+      ...(nodes.length > 4 ? nodes : []),
+      ...(links.length > 2 ? links.map(([a, b]) => formatLink(a, b)) : []),
+    ],
+  }
+}
+
 /** Of what was asked for, for a person: "tar-01, tar-02 and all nodes with office Eelholm". */
 export const excludedWords = takenWords

@@ -50,8 +50,8 @@ export function compared(rehearsal: Rehearsed, beside: Beside | null): Compared[
     },
     {
       id: 'sides',
-      live: beside && sidesText(beside.sides),
-      would: sidesText(sides) ?? (isOver(rehearsal) ? 'none stand out' : null),
+      live: beside && (sidesText(beside.sides) ?? NO_SIDES),
+      would: sidesText(sides) ?? (isOver(rehearsal) ? NO_SIDES : null),
       liveRemark: null,
       wouldRemark: null,
     },
@@ -65,6 +65,7 @@ export function compared(rehearsal: Rehearsed, beside: Beside | null): Compared[
   ]
 }
 
+const NO_SIDES = 'none stand out'
 const isOver = ({ state }: Rehearsed): boolean => state === 'done'
 
 function sidesText(sides: RehearsalDto['sides']): string | null {

@@ -5,6 +5,7 @@ export {
   type Chosen,
   choiceSentence,
   chosenOf,
+  excludedInFull,
   excludedWords,
   isNothing,
   joinedOf,

@@ -6,8 +6,8 @@ import { Simulation } from '@/lib/method/simulate'
 import { algebraicConnectivity } from '@/lib/method/spectrum'
 import type { Drain, Topology } from './cases'
 
-/** The live reading is looked at for so long before, to say what it was. */
-const RESTING_MS = 20_000
+/** The live reading is looked at for twice so long before: to say what it was, and how it goes by itself. */
+const RESTING_MS = 45_000
 const FRESH_WITHIN_MS = 300_000
 const OVER_WITHIN_MS = 300_000
 
@@ -20,12 +20,14 @@ export interface RehearsalRun {
   state: RehearsalEstimate['state']
   because: RehearsalEstimate['because']
   reading: number | null
+  low: number
+  high: number
   isApart: boolean
   isCold: boolean
   seconds: number
-  /** Largest share by which the live reading stood from its mean before, meanwhile and for so long before. */
+  /** Largest share by which the live reading stood from its mean of the time before: meanwhile, and in such a time without any. */
   liveOff: number
-  liveOffBefore: number
+  aloneOff: number
   /** Both halves at the end. */
   halves: readonly [number, number] | null
   sides: readonly [number, number] | null
@@ -51,10 +53,9 @@ export function runRehearsals(
     },
   )
   simulation.runUntil(({ withheld, settling }) => withheld === null && !settling, FRESH_WITHIN_MS)
-  simulation.run(RESTING_MS)
   return drains.map((drain, index) => {
+    const earlier = watch(simulation, () => false, RESTING_MS)
     const before = watch(simulation, () => false, RESTING_MS)
-    const was = before.reduce((sum, value) => sum + value, 0) / before.length
     const startMs = simulation.nowMs
     simulation.rehearsed = [
       { id: `${index}`, agents: drain.nodes.map((node) => simulation.agents[node]!.node.agentId), links: [] },
@@ -77,8 +78,6 @@ export function runRehearsals(
     simulation.rehearsed = []
     simulation.run(2_000)
     const cut = last?.estimate?.cut
-    const off = (values: readonly number[]) =>
-      Math.max(0, ...values.map((value) => Math.abs(value / was - 1)))
     return {
       topology: name,
       what: drain.what,
@@ -87,11 +86,13 @@ export function runRehearsals(
       state: last?.state ?? 'waiting',
       because: last?.because ?? null,
       reading: last?.estimate?.lambda2 ?? null,
+      low: last?.estimate?.low ?? 0,
+      high: last?.estimate?.high ?? 0,
       isApart: last?.found?.isApart ?? false,
       isCold,
       seconds,
-      liveOff: off(live),
-      liveOffBefore: off(before),
+      liveOff: farthest(live, before),
+      aloneOff: farthest(before, earlier),
       halves: last?.found?.halves ?? null,
       sides: cut ? [cut.above, cut.below] : null,
       crossing: cut?.links ?? null,
@@ -99,12 +100,17 @@ export function runRehearsals(
   })
 }
 
-/** The live reading of the whole of every evaluation until `done`. */
+function farthest(values: readonly number[], before: readonly number[]): number {
+  const was = before.reduce((sum, value) => sum + value, 0) / before.length
+  return Math.max(0, ...values.map((value) => Math.abs(value / was - 1)))
+}
+
+/** The live reading of the whole, where it is fresh, of every evaluation until `done`. */
 function watch(simulation: Simulation, done: () => boolean, limitMs: number): number[] {
   const values: number[] = []
   let isDone = false
-  simulation.onEstimate = ({ lambda2 }) => {
-    if (lambda2 !== null) values.push(lambda2)
+  simulation.onEstimate = ({ lambda2, settling }) => {
+    if (lambda2 !== null && !settling) values.push(lambda2)
     isDone ||= done()
   }
   const endMs = simulation.nowMs + limitMs

@@ -113,7 +113,7 @@ describe('the figures of a cut, in words', () => {
   it('tell of the next place, or that there is none', () => {
     const runnerUp = { sides: [9, 27] as [number, number], links: 6, weight: 5.5, expansion: 0.611 }
     expect(runnerUpSentence({ runnerUp, figures })).toBe(
-      'The next place parts 9 nodes from 27 and holds on 6 links of 5.500 weight together, 1.5 times as strong for each node of the smaller side.',
+      'The next place parts 9 nodes from 27 and holds on at most 6 links of 5.500 weight together, 1.5 times as strong for each node of the smaller side.',
     )
     expect(runnerUpSentence({ runnerUp: null, figures })).toContain('No second weak place stands out')
   })

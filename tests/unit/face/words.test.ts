@@ -243,11 +243,12 @@ describe('small words', () => {
     )
     expect(overlayPages('harbourline').map((p) => `${p.letter} ${p.href}`)).toEqual([
       'A /overlays/harbourline',
-      'B /overlays/harbourline/nodes',
+      'B /overlays/harbourline/weak',
       'C /overlays/harbourline/rehearsals',
-      'D /overlays/harbourline/joining',
-      'E /overlays/harbourline/upkeep',
-      'F /overlays/harbourline/warnings',
+      'D /overlays/harbourline/nodes',
+      'E /overlays/harbourline/joining',
+      'F /overlays/harbourline/upkeep',
+      'G /overlays/harbourline/warnings',
     ])
   })
 

@@ -1,0 +1,68 @@
+import { z } from 'zod'
+import { deliveriesSchema, deliverySchema } from '@/lib/data/delivery-dto'
+import {
+  createdJoiningCodeSchema,
+  cutSchema,
+  eventSchema,
+  eventsSchema,
+  joiningCodeSchema,
+  linkSchema,
+  linksSchema,
+  nodeSchema,
+  nodesSchema,
+  overlaySchema,
+  problemSchema,
+  readingPointSchema,
+  readingSchema,
+  readingsSchema,
+  signingKeySchema,
+  upgradeOfferDtoSchema,
+  upgradesSchema,
+} from '@/lib/data/dto'
+import { rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
+import {
+  maintenanceWindowSchema,
+  maintenanceWindowsSchema,
+  rulePreviewSchema,
+  warningRuleSchema,
+  warningRulesSchema,
+} from '@/lib/data/rules-dto'
+import { incidentFileSchema, incidentSchema, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
+
+/** What answers are made of, by the name each has in the description. */
+export const ANSWERS = {
+  Problem: problemSchema,
+  Overlay: overlaySchema,
+  Overlays: z.object({ items: z.array(overlaySchema), next: z.null() }),
+  Reading: readingSchema,
+  ReadingPoint: readingPointSchema,
+  Readings: readingsSchema,
+  Cut: cutSchema,
+  Node: nodeSchema,
+  Nodes: nodesSchema,
+  Link: linkSchema,
+  Links: linksSchema,
+  Event: eventSchema,
+  Events: eventsSchema,
+  JoiningCode: joiningCodeSchema,
+  JoiningCodes: z.object({ items: z.array(joiningCodeSchema), next: z.null() }),
+  CreatedJoiningCode: createdJoiningCodeSchema,
+  SigningKey: signingKeySchema,
+  UpgradeOffer: upgradeOfferDtoSchema,
+  Upgrades: upgradesSchema,
+  Rehearsal: rehearsalSchema,
+  Rehearsals: rehearsalsSchema,
+  WarningRule: warningRuleSchema,
+  WarningRules: warningRulesSchema,
+  RulePreview: rulePreviewSchema,
+  MaintenanceWindow: maintenanceWindowSchema,
+  MaintenanceWindows: maintenanceWindowsSchema,
+  Incident: incidentSchema,
+  Incidents: incidentsSchema,
+  IncidentWhole: incidentWholeSchema,
+  IncidentFile: incidentFileSchema,
+  Delivery: deliverySchema,
+  Deliveries: deliveriesSchema,
+  Id: z.object({ id: z.string() }),
+} as const satisfies Record<string, z.ZodType>
+export type AnswerName = keyof typeof ANSWERS
