@@ -17,6 +17,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
@@ -134,6 +135,17 @@ export function useRules(slug: string) {
 export function useWindows(slug: string) {
   const url = overlayUrls(slug).windows
   return useLive(url, async () => (await getJson(url, maintenanceWindowsSchema)).items)
+}
+
+/** Worked out anew each time, which takes a moment. */
+const REINFORCEMENT_MS = 60_000
+
+export function useReinforcement(slug: string, query: string) {
+  const url = `${overlayUrls(slug).reinforcement}?${query}`
+  return useLive(url, () => getJson(url, reinforcementSchema), {
+    streamingMs: REINFORCEMENT_MS,
+    pollMs: REINFORCEMENT_MS,
+  })
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })
