@@ -1,6 +1,7 @@
 'use client'
 
 import { useMemo, useRef } from 'react'
+import { TakeAlong } from '@/components/export/take-along'
 import { useLinks, useNodes, useReading } from '@/components/live/hooks'
 import { Drawing } from '@/components/stretch/drawing'
 import { useWidth } from '@/components/stretch/use-width'
@@ -73,6 +74,7 @@ export function ProposedDrawing({ slug, found }: { slug: string; found: Reinforc
           </>
         ) : null}
       </div>
+      {layout ? <TakeAlong slug={slug} drawing={frame} of="proposed links" /> : null}
     </Sheet>
   )
 }
