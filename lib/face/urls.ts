@@ -21,6 +21,7 @@ export function overlayUrls(slug: string) {
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
     reinforcement: `${base}/reinforcement`,
+    exported: (file: string) => `${base}/export/${file}`,
     plannedLinks: `${base}/reinforcement/planned`,
     rehearsals: `${base}/rehearsals`,
     rehearsal: (id: string) => `${base}/rehearsals/${encodeURIComponent(id)}`,
