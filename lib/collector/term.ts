@@ -244,7 +244,11 @@ export class Term {
         memory,
         floors: loaded.floors,
         meanWeightedDegree: estimate.coverage.meanWeightedDegree,
-        nameOf: (agentId) => names.get(agentId) ?? agentId,
+        agents: snapshot.agents.map(({ agentId, name, labels, last }) => ({
+          ...{ agentId, name, labels },
+          value: last?.report.node.value?.value ?? null,
+        })),
+        intervalMs: pace.intervalMs,
       }),
       leftOut: audited.leftOut,
     }
