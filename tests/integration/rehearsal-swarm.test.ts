@@ -30,7 +30,7 @@ const ACROSS: [number, number][] = [
 ]
 const ALL = [...WITHIN, ...ACROSS]
 /** Waves are rehearsals one after the other. */
-const PATIENCE_MS = 300_000
+const PATIENCE_MS = 200_000
 const nameOf = (index: number): string => `${index < 6 ? 'tar' : 'eel'}-${String(index).padStart(2, '0')}`
 
 /** λ₂ of what remains. */
