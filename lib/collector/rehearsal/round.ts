@@ -73,6 +73,8 @@ export interface RoundFacts {
   meanWeightedDegree: number
   agents: readonly (WaveNode & { agentId: string })[]
   intervalMs: number
+  /** Links may be named, and so may what is known of a few nodes. */
+  isNamed: boolean
 }
 
 /** What the round says of each of them. */
@@ -117,7 +119,10 @@ function changeOf(
   }
   const result = answerOf(row, estimate, facts) ?? row.result
   if (estimate.state !== 'settled' || !result) return { ...change, result }
-  const verdict = verdictSentence(words, result, estimate)
+  const verdict = verdictSentence(words, result, {
+    alone: facts.isNamed ? (estimate.found?.alone ?? 0) : 0,
+    loose: estimate.loose,
+  })
   if (result.answer !== 'holds' && mayTakeWaves) {
     const nodes = facts.agents.filter(({ agentId }) => taken.agents.includes(agentId))
     const plan = firstWave(nodes)

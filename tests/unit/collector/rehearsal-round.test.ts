@@ -94,7 +94,7 @@ describe('what is said of the answer', () => {
     answer: 'below-floor',
     waves: null,
   }
-  const plain = { found: null, loose: 0 }
+  const plain = { alone: 0, loose: 0 }
   const table: [string, Partial<RehearsalResult>, Parameters<typeof verdictSentence>[2], string][] = [
     [
       'below the floor',
@@ -110,7 +110,7 @@ describe('what is said of the answer', () => {
         sides: null,
         crossingLinks: null,
       },
-      { found: null, loose: 2 },
+      { alone: 0, loose: 2 },
       'It holds. Without tar-01 the reading would be 0.45, now 0.52, not below the floor of 0.4. Loose ends, 2 nodes, are left out of it.',
     ],
     [
@@ -122,7 +122,7 @@ describe('what is said of the answer', () => {
     [
       'splits with a node that has no link left',
       { answer: 'splits' },
-      { found: { isSettled: true, isApart: true, alone: 1, halves: null, isTurned: null }, loose: 0 },
+      { alone: 1, loose: 0 },
       'It splits. Without tar-01 1 node would have no link left.',
     ],
     [
