@@ -74,6 +74,11 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/rehearsal.test.ts',
     env: {},
   },
+  'rehearsal-fleets': {
+    about: 'rehearsals of two fleets over WebSocket at brisk pace, four drains each, with a table',
+    file: 'tests/soak/rehearsal-fleets.test.ts',
+    env: {},
+  },
   year: {
     about:
       'a year of 20 overlays of 200 nodes (THINSPAN_YEAR_OVERLAYS, THINSPAN_YEAR_NODES) rolled up, thinned and looked at, with figures; some 20 GB of disk',

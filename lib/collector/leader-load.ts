@@ -65,7 +65,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
        (select coalesce(jsonb_agg(jsonb_build_object('id', r.id, 'teamId', r.team_id, 'incidentId', r.incident_id,
           'state', r.state, 'startsAtMs', ${epochMs('r.starts_at')}, 'startedAtMs', ${epochMs('r.started_at')},
           'progress', r.progress, 'exclude', r.exclude, 'taken', r.taken, 'remain', r.remain, 'result', r.result,
-          'plan', r.plan) order by coalesce(r.starts_at, r.asked_at), r.id), '[]')
+          'verdict', r.verdict, 'plan', r.plan) order by coalesce(r.starts_at, r.asked_at), r.id), '[]')
         from rehearsals r where r.overlay_id = o.id and r.state in ('waiting', 'running')) as rehearsals
      from overlays o where o.id = ?`,
     [overlayId],

@@ -7,6 +7,7 @@ import {
   isHeard,
   type Snapshot,
 } from '@/lib/method/control'
+import type { Walk } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
@@ -126,10 +127,13 @@ export class Term {
     const sequence = this.#sequence + 1
     // Ages count from this issue on; what is to begin later still begins at the same moment.
     const passedMs = clock.monotonicMs() - this.#issuedMs
-    const { next } = last.orders
     const orders = {
       ...last.orders,
-      ...(next && { next: { ...next, fromAgeMs: Math.max(0, next.fromAgeMs - passedMs) } }),
+      ...later(last.orders, passedMs),
+      colonies: last.orders.colonies.map((colony) => ({
+        ...colony,
+        ...(colony.own && { own: { ...colony.own, ...later(colony.own, passedMs) } }),
+      })),
       sequence,
       shut: loaded.shut,
       weights: loaded.weights,
@@ -259,13 +263,21 @@ export class Term {
         memory,
         floors: loaded.floors,
         meanWeightedDegree: estimate.coverage.meanWeightedDegree,
-        nameOf: (agentId) => names.get(agentId) ?? agentId,
+        agents: snapshot.agents.map(({ agentId, name, labels, last }) => ({
+          ...{ agentId, name, labels },
+          value: last?.report.node.value?.value ?? null,
+        })),
+        intervalMs: pace.intervalMs,
+        isNamed: disclosure === 'named',
       }),
       leftOut: audited.leftOut,
     }
     return { round, reading: told }
   }
 }
+
+const later = ({ next }: Walk, passedMs: number): Pick<Walk, 'next'> =>
+  next ? { next: { ...next, fromAgeMs: Math.max(0, next.fromAgeMs - passedMs) } } : {}
 
 /** The overlay as it is once these agents are left out: they have not joined, and nobody keeps a link to them. */
 function withoutLeftOut(loaded: Loaded, leftOut: Round['leftOut']): Loaded {

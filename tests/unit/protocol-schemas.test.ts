@@ -57,6 +57,25 @@ const withCounter = (name: string, value: unknown) =>
   withSums({ colonies: [{ ...colony, counters: { ...counters, [name]: value } }] })
 
 describe('a report', () => {
+  test('says of a rehearsal what it counts, and whether it may', () => {
+    const placed = {
+      place: 1,
+      id: 7,
+      above: [1],
+      crossing: [2],
+      crossingWeight: [2_048],
+      linkEnds: 2,
+      alone: 0,
+    }
+    const told = {
+      ...withSums({ sweeps: [placed] }),
+      node: { ...report.node, skills: ['rehearsal', 'later'] },
+    }
+    expect(reportSchema.parse(told)).toEqual(told)
+    expect(reportSchema.safeParse(withSums({ sweeps: [{ ...placed, alone: 2 }] })).success).toBe(false)
+    expect(reportSchema.safeParse(withSums({ sweeps: [{ ...placed, above: [1, 0] }] })).success).toBe(false)
+  })
+
   test('as an agent writes it is taken whole', () => {
     expect(reportSchema.parse(JSON.parse(JSON.stringify(report)))).toEqual(report)
   })
@@ -96,6 +115,33 @@ describe('a report', () => {
   test.each(bad)('with %s is refused where it is wrong', (_, input, path) => {
     const result = reportSchema.safeParse(input)
     expect(result.success ? [] : result.error.issues.map((issue) => issue.path.join('.'))).toContain(path)
+  })
+})
+
+describe('orders of a rehearsal', () => {
+  const [first, ...others] = someOrders().colonies
+  const terms = [{ colony: 0, seeding: 4, coefficient: 0.5 }]
+  const sweep = { id: 7, terms, mean: 0.1, norm: 2, thresholds: [-0.5, 0.5], lambda2: 0.3, nodes: 12 }
+  const orders = (own: object) => ({
+    ...someOrders(),
+    colonies: [
+      { ...first, cloneOf: { colony: 1, seeding: 4 }, refusedLinks: [['agent-tar-01', 'agent-gul-04']], own },
+      ...others,
+    ],
+    sweeps: [{ ...sweep, place: 2 }],
+  })
+  const own = { linkTimePerSecond: 2, next: { linkTimePerSecond: 3, fromAgeMs: 700 } }
+
+  test('are taken whole', () => {
+    expect(ordersSchema.parse(JSON.parse(JSON.stringify(orders(own))))).toEqual(orders(own))
+  })
+
+  test('may not have one colony walk more link time per tick than can be walked, now or later', () => {
+    const { tickMs } = someOrders().pace
+    const tooFast = 4_100 / tickMs
+    expect(ordersSchema.safeParse(orders({ linkTimePerSecond: tooFast })).success).toBe(false)
+    const next = { linkTimePerSecond: tooFast, fromAgeMs: 0 }
+    expect(ordersSchema.safeParse(orders({ linkTimePerSecond: 1, next })).success).toBe(false)
   })
 })
 

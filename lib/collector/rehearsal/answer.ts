@@ -8,11 +8,14 @@ import { other } from '../sides'
 import type { OpenRehearsal } from './open'
 import type { RoundFacts } from './round'
 
+/** Where links are not named a smaller side is not told of: its links would be those of a few nodes. */
+export const LEAST_SIDE_UNNAMED = 5
+
 /** What is known so far, or at the end; null while there is no value yet. */
 export function answerOf(
   { teamId }: OpenRehearsal,
   { estimate, found, state }: RehearsalEstimate,
-  { reading, memory, floors, meanWeightedDegree }: RoundFacts,
+  { reading, memory, floors, meanWeightedDegree, isNamed }: RoundFacts,
 ): RehearsalResult | null {
   if (!estimate || !found || (estimate.lambda2 === null && !found.isApart)) return null
   const { isApart } = found
@@ -37,7 +40,9 @@ export function answerOf(
     [],
   )
   const isSplit = isApart || level === 'split'
-  const sides = estimate.singleCut === false && !isSplit ? null : cut
+  const isShared = estimate.singleCut === false && !isSplit
+  const isSmall = cut !== null && Math.min(cut.above, cut.below) < LEAST_SIDE_UNNAMED
+  const sides = isShared || (isSmall && !isNamed) ? null : cut
   const isDone = state === 'settled'
   return {
     reading: value,

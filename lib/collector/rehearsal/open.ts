@@ -14,6 +14,8 @@ export interface OpenRehearsal {
   taken: number | null
   remain: number | null
   result: RehearsalResult | null
+  /** What is said already while waves are looked for. */
+  verdict: string | null
   plan: RehearsalPlan | null
 }
 

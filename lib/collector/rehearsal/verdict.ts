@@ -8,12 +8,11 @@ const figure = (value: number): string => String(Number(value.toPrecision(3)))
 export function verdictSentence(
   words: string,
   { reading, live, floor, answer, crossingLinks, sides }: RehearsalResult,
-  { found, loose }: Pick<RehearsalEstimate, 'found' | 'loose'>,
+  { alone, loose }: { alone: number; loose: number },
 ): string {
   const without = `Without ${words}`
   const apart = loose > 0 ? ` Loose ends, ${countOf(loose, 'node')}, are left out of it.` : ''
   if (answer === 'splits') {
-    const alone = found?.alone ?? 0
     const why =
       alone > 0
         ? `${countOf(alone, 'node')} would have no link left`

@@ -12,10 +12,11 @@ export const MOST_REHEARSALS = 3
 export const MOST_REFUSED_NAMES = 4_000
 /** It begins once the live reading is fresh, or has not been for so long. */
 export const BEGINS_WITHIN_INTERVALS = 20
-/** It has so long for its answer, not counting time in which nothing could walk. */
+/** It has so long for its answer, not counting time in which nothing could walk; at drill pace a busy machine alone takes longer. */
 export const MOST_INTERVALS = 120
-/** And so long in all. */
-export const MOST_INTERVALS_IN_ALL = 300
+export const MOST_AT_LEAST_MS = 100_000
+/** And so many times as long in all. */
+export const MOST_TIMES_IN_ALL = 3
 
 /** Evaluations further apart than this had nobody leading between them. */
 const LED_WITHIN_INTERVALS = 3
@@ -171,8 +172,9 @@ function rehearseOne(
   })
   if (told.tooOld.length > 0) return failed('too-old')
   if (told.remain < 2) return failed('too-few')
-  if (waitedMs > MOST_INTERVALS_IN_ALL * intervalMs) return failed('unheard')
-  if (one.walkedMs > MOST_INTERVALS * intervalMs) return failed('no-time')
+  const mostMs = Math.max(MOST_INTERVALS * intervalMs, MOST_AT_LEAST_MS)
+  if (waitedMs > MOST_TIMES_IN_ALL * mostMs) return failed('unheard')
+  if (one.walkedMs > mostMs) return failed('no-time')
   if (!one.control && !mayBegin(live, waitedMs, intervalMs))
     return {
       control: { ...one, lastAtMs: now.atMs },

@@ -1,6 +1,10 @@
 import { describe, expect, it } from 'vitest'
+import { DEFAULT_SETTINGS } from '@/lib/method/control'
+import { edgesOf } from '@/lib/method/graph'
 import { twoClusters } from '@/lib/method/graphs'
+import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
+import { Simulation } from '@/lib/method/simulate'
 import { drainsOf, topologies } from '@/scripts/bench/rehearsal/cases'
 import { runRehearsals } from '@/scripts/bench/rehearsal/course'
 
@@ -36,6 +40,29 @@ describe('a rehearsal, on simulated overlays', () => {
     expect(run).toMatchObject({ state: 'settled', isApart: false, isCold: true })
     expect(Math.abs((run?.reading ?? 0) / (run?.exact ?? 1) - 1)).toBeLessThan(0.05)
     expect(run?.liveOff).toBeLessThan(0.02)
+  })
+
+  it('is not begun while an agent is in the overlay that knows nothing of rehearsals, and says which', () => {
+    const graph = twoClusters(
+      { perSide: 6, degree: 3, links: 2 },
+      createRandom('rehearsed with an old agent'),
+    )
+    const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
+    const settings = { ...DEFAULT_SETTINGS, pace: PACES.brisk, disclosure: 'named' as const }
+    const simulation = new Simulation(
+      { random: createRandom('old') },
+      { nodes: 12, links, settings, audits: false },
+    )
+    const { node } = simulation.agents[3]!
+    const report = node.report.bind(node)
+    node.report = (nowMs, host) => {
+      const said = report(nowMs, host)
+      return { ...said, node: { ...said.node, skills: undefined } }
+    }
+    simulation.runUntil(({ withheld }) => withheld === null, 60_000)
+    simulation.rehearsed = [{ id: 'one', agents: ['node-1'], links: [] }]
+    simulation.run(3_000)
+    expect(simulation.rehearsals).toMatchObject([{ state: 'failed', because: 'too-old', tooOld: ['node-3'] }])
   })
 
   it('says that what remains falls apart', () => {
