@@ -136,7 +136,11 @@ function Figures({ slug, story, nowMs }: { slug: string; story: LinkStory; nowMs
         </>
       ),
       value: link.share === null || link.state === 'lost' ? '–' : formatShare(link.share),
-      remark: link.crossing ? 'crosses the weak cut' : 'lies within one side',
+      remark: link.crossing
+        ? 'crosses the weak cut'
+        : story.a.side && story.b.side
+          ? 'lies within one side'
+          : 'no sides are drawn now',
     },
     {
       id: 'weight',

@@ -190,7 +190,7 @@ function neighbourColumns(slug: string, own: string): Column<Neighbour>[] {
     },
     {
       id: 'share',
-      header: 'share of the reading',
+      header: 'share of reading',
       figures: true,
       value: ({ share }) => share,
       cell: ({ share }) => (share === null ? '–' : formatShare(share)),

@@ -102,7 +102,7 @@ export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref }:
         onTable={() => setAsTable((is) => !is)}
       />
       {asTable ? (
-        <StretchTable nodes={nodes} sided={sided} />
+        <StretchTable nodes={nodes} sided={sided} nodeHref={nodeHref} />
       ) : (
         <>
           {sided ? <SidesLine nodes={nodes} gap={gap.text} grave={gap.grave} /> : null}

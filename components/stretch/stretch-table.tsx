@@ -1,13 +1,20 @@
 'use client'
 
+import Link from 'next/link'
 import { useMemo } from 'react'
 import { type Column, DataTable, EmptyState, SideMark } from '@/components/ui'
 import type { OverlayNode } from '@/lib/data/dto'
 import { formatValue } from '@/lib/face/format'
 
 /** The drawing as a table: the same nodes, in the same order. */
-export function StretchTable({ nodes, sided }: { nodes: readonly OverlayNode[]; sided: boolean }) {
-  const columns = useMemo(() => columnsFor(nodes, sided), [nodes, sided])
+export function StretchTable(props: {
+  nodes: readonly OverlayNode[]
+  sided: boolean
+  /** Where a node's own page is, where there is room for it. */
+  nodeHref?: (name: string) => string
+}) {
+  const { nodes, sided, nodeHref } = props
+  const columns = useMemo(() => columnsFor(nodes, sided, nodeHref), [nodes, sided, nodeHref])
   return (
     <DataTable
       caption="Nodes by Fiedler value, from one end of the overlay to the other"
@@ -21,10 +28,26 @@ export function StretchTable({ nodes, sided }: { nodes: readonly OverlayNode[]; 
   )
 }
 
-function columnsFor(nodes: readonly OverlayNode[], sided: boolean): Column<OverlayNode>[] {
+function columnsFor(
+  nodes: readonly OverlayNode[],
+  sided: boolean,
+  nodeHref?: (name: string) => string,
+): Column<OverlayNode>[] {
   const keys = [...new Set(nodes.flatMap((n) => Object.keys(n.labels)))].sort()
   return [
-    { id: 'name', header: 'node', value: (n) => n.name },
+    {
+      id: 'name',
+      header: 'node',
+      value: (n) => n.name,
+      cell: (n) =>
+        nodeHref ? (
+          <Link href={nodeHref(n.name)} className="rule-link">
+            {n.name}
+          </Link>
+        ) : (
+          n.name
+        ),
+    },
     {
       id: 'value',
       header: 'value',

@@ -27,7 +27,7 @@ export function CrossingTable({ slug, place, range }: CrossingTableProps) {
   if (!crossing) return null
   const why = whyHidden(asCut(place), disclosure)
   return (
-    <Sheet heading="Crossing links" aside={`${crossing.links} of ${reading.coverage.linksMeasured} measured`}>
+    <Sheet heading="Crossing links" aside={crossingAside(crossing.links, reading)}>
       <div className="space-y-3">
         {links.length > 0 ? (
           <Links slug={slug} place={place} range={range} />
@@ -50,6 +50,13 @@ export function CrossingTable({ slug, place, range }: CrossingTableProps) {
       </div>
     </Sheet>
   )
+}
+
+/** While too few are heard hardly a link is measured: then it is what the last reading rested on. */
+function crossingAside(links: number, { treatAsSplit, data, coverage }: WeakPlace['reading']): string {
+  return treatAsSplit || data === 'unheard'
+    ? `${links} at the last good reading`
+    : `${links} of ${coverage.linksMeasured} measured`
 }
 
 function Links({ slug, place, range }: CrossingTableProps) {

@@ -93,8 +93,7 @@ function figuresFor({ reading, sides, crossing, links }: WeakPlace): Figure[] {
     },
   ]
   if (!sides || !crossing) return figures
-  const heaviest = Math.max(0, ...links.map(({ share }) => share ?? 0))
-  const together = links.reduce((sum, { share, state }) => sum + (state === 'lost' ? 0 : (share ?? 0)), 0)
+  const shares = links.flatMap(({ share, state }) => (state === 'lost' || share === null ? [] : [share]))
   return [
     ...figures,
     { id: 'side-a', label: 'side a', value: sides[0].nodes, remark: 'nodes, drawn round' },
@@ -109,8 +108,13 @@ function figuresFor({ reading, sides, crossing, links }: WeakPlace): Figure[] {
     {
       id: 'share',
       label: 'of the reading they carry',
-      value: links.length === 0 ? '–' : formatShare(together),
-      remark: links.length === 0 ? 'none is named' : `the heaviest ${formatShare(heaviest)}`,
+      value: shares.length === 0 ? '–' : formatShare(shares.reduce((sum, share) => sum + share, 0)),
+      remark:
+        shares.length > 0
+          ? `the heaviest ${formatShare(Math.max(...shares))}`
+          : links.length === 0
+            ? 'none is named'
+            : 'not known now',
     },
   ]
 }

@@ -23,6 +23,7 @@ export function WeakPlaceView({ slug }: { slug: string }) {
 
   return (
     <div className="space-y-5">
+      {place ? null : <h1 className="sr-only">Weak place</h1>}
       <Freshness of={weak} />
       {place ? (
         <WeakHead slug={slug} place={place} onNow={() => setAt(null)} role={overlay.data?.role ?? 'viewer'} />

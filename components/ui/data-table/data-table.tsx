@@ -97,7 +97,7 @@ export function DataTable<Row extends object>(props: DataTableProps<Row>) {
                     {stacks && c.data !== false ? (
                       <span
                         aria-hidden="true"
-                        className="hidden w-28 shrink-0 font-text text-sm text-soft max-sm:inline"
+                        className="hidden w-28 shrink-0 font-text text-sm whitespace-normal text-soft max-sm:inline"
                       >
                         {c.heading ?? c.header}
                       </span>

@@ -100,6 +100,24 @@ describe('adjusted mutual information', () => {
     expect(adjustedInformation(turned)).toBeCloseTo(adjustedInformation(table), 12)
   })
 
+  it('is 0 on average over sides dealt out at random', () => {
+    const random = createRandom('dealt')
+    const values = Array.from({ length: 24 }, (_, index) => (index < 4 ? 0 : index < 12 ? 1 : 2))
+    const dealt = Array.from({ length: 4_000 }, () => {
+      const keys = values.map((value) => ({ value, key: random.uniform() })).sort((x, y) => x.key - y.key)
+      const table = [
+        [0, 0, 0],
+        [0, 0, 0],
+      ]
+      for (const [place, { value }] of keys.entries()) table[place < 10 ? 0 : 1]![value]! += 1
+      return adjustedInformation(table)
+    })
+    const mean = dealt.reduce((sum, value) => sum + value, 0) / dealt.length
+    const deviation = Math.sqrt(dealt.reduce((sum, value) => sum + (value - mean) ** 2, 0) / dealt.length)
+    expect(Math.abs(mean)).toBeLessThan((3 * deviation) / Math.sqrt(dealt.length))
+    expect(deviation).toBeGreaterThan(0.03)
+  })
+
   it('holds for ten thousand nodes', () => {
     const table = [
       [2500, 2500],
