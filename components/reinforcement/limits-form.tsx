@@ -64,7 +64,7 @@ export function LimitsForm({ slug, onAsk, problem }: LimitsFormProps) {
           name="mostDegree"
           inputMode="numeric"
           pattern="[0-9]*"
-          className="w-56"
+          className="w-72"
         />
         <TextField
           label="Only these nodes"

@@ -63,7 +63,6 @@ export function ProposedDrawing({ slug, found }: { slug: string; found: Reinforc
             >
               {proposed.map(({ key, path, ends }) => (
                 <g key={key}>
-                  <path d={path} strokeWidth={4.5} className="stroke-sheet" />
                   <path d={path} strokeWidth={2} strokeDasharray="7 5" />
                   {ends.map(({ x, y }) => (
                     <circle key={`${x} ${y}`} cx={x} cy={y} r={layout.dotRadius + 3.5} strokeWidth={1.75} />
