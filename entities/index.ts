@@ -20,6 +20,7 @@ import { OverlayEventSchema } from './overlay-event'
 import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { PasswordLinkSchema } from './password-link'
+import { PlannedLinkSchema } from './planned-link'
 import { ReadingSchema } from './reading'
 import { RehearsalSchema } from './rehearsal'
 import { SessionSchema } from './session'
@@ -54,6 +55,7 @@ export * from './overlay-event'
 export * from './overlay-key'
 export * from './overlay-key-ring'
 export * from './password-link'
+export * from './planned-link'
 export * from './reading'
 export * from './rehearsal'
 export * from './session'
@@ -89,6 +91,7 @@ export const entities = [
   OverlayKeySchema,
   OverlayKeyRingSchema,
   PasswordLinkSchema,
+  PlannedLinkSchema,
   ReadingSchema,
   RehearsalSchema,
   SessionSchema,

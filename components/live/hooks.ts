@@ -18,6 +18,7 @@ import {
   upgradesSchema,
 } from '@/lib/data/dto'
 import { type RehearsalDto, rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
+import { reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { linkStorySchema, momentsSchema, nodeStorySchema, weakPlaceSchema } from '@/lib/data/weak-dto'
@@ -165,6 +166,17 @@ export function useReadingThen(slug: string, at: string | null) {
   return useLive(url, () => getJson(url ?? '', readingSchema).catch(nullBeforeFirst), {
     streamingMs: 0,
     pollMs: 0,
+  })
+}
+
+/** Worked out anew each time, which takes a moment. */
+const REINFORCEMENT_MS = 60_000
+
+export function useReinforcement(slug: string, query: string) {
+  const url = `${overlayUrls(slug).reinforcement}?${query}`
+  return useLive(url, () => getJson(url, reinforcementSchema), {
+    streamingMs: REINFORCEMENT_MS,
+    pollMs: REINFORCEMENT_MS,
   })
 }
 

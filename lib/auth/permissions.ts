@@ -61,6 +61,8 @@ export const PERMISSIONS = {
   'reading.read': reads('viewer', 'read'),
   'node.list': reads('viewer', 'read'),
   'link.list': reads('viewer', 'read'),
+  'reinforcement.read': reads('viewer', 'read'),
+  'reinforcement.plan': writes('operator', 'write'),
   'event.read': reads('viewer', 'read'),
   'joining-code.list': reads('operator', 'read'),
   'joining-code.create': writes('operator', 'write'),

@@ -12,12 +12,14 @@ import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
 import { type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
 import { type Clock, sleep } from './clock'
+import type { ExactCheck } from './exact'
 import { fleetFacts, withFleetFacts } from './fleet-facts'
 import { type JudgedAgent, judge } from './judge'
 import type { LeaderStore, Loaded, LoadedAgent, Round } from './leader-store'
 import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
+import type { PlannedLinks } from './planned'
 import { linksFor } from './rehearsal/links'
 import { planRehearsals, tellRehearsals } from './rehearsal/round'
 import type { Upkeep } from './upkeep'
@@ -31,6 +33,8 @@ export interface TermComponents {
   usual: Pick<Usual, 'at'>
   upkeep: Pick<Upkeep, 'look'>
   moments: Pick<Moments, 'look'>
+  planned: Pick<PlannedLinks, 'look'>
+  exact: Pick<ExactCheck, 'latest' | 'look'>
   clock: Clock
   random: Random
   log: Log
@@ -148,7 +152,7 @@ export class Term {
   }
 
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
-    const { clock, store, usual, upkeep, moments, log } = this.#components
+    const { clock, store, usual, upkeep, moments, planned, exact, log } = this.#components
     const startedMs = clock.monotonicMs()
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
@@ -176,6 +180,17 @@ export class Term {
       .look(withoutLeftOut(loaded, round.leftOut), round.state.memory, reading)
       .catch((error: unknown) =>
         log.error({ overlayId: this.#overlayId, err: error }, 'the moment could not be kept'),
+      )
+    await planned
+      .look(loaded, reading)
+      .catch((error: unknown) =>
+        log.error({ overlayId: this.#overlayId, err: error }, 'planned links could not be followed'),
+      )
+    // Not waited for: a thread of its own works it out, and a later reading says it.
+    void exact
+      .look(withoutLeftOut(loaded, round.leftOut), reading)
+      .catch((error: unknown) =>
+        log.warn({ overlayId: this.#overlayId, err: error }, 'the exact figure could not be worked out'),
       )
     return null
   }
@@ -228,7 +243,7 @@ export class Term {
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
     const told = withFleetFacts(
-      reading,
+      { ...reading, exact: this.#components.exact.latest(atMs) },
       fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
     )
     const round: Round = {

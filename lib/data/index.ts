@@ -20,6 +20,12 @@ export {
 export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } from './overlays'
 export { readPasswordLink, setPassword } from './password-links'
 export { cancelRehearsal, createRehearsal, getRehearsal, listRehearsals } from './rehearsals'
+export {
+  getReinforcement,
+  markJoined,
+  planLink,
+  withdrawLink,
+} from './reinforcement'
 export { testChannel, testWebhook } from './send-test'
 export { countAttempt, signIn, signOut } from './sign-in'
 export { getSigningKey, rotateSigningKey } from './signing-key'

@@ -13,10 +13,11 @@ export function overlayPages(slug: string): PageEntry[] {
     { letter: 'A', label: 'Now', href: base },
     { letter: 'B', label: 'Weak place', href: `${base}/weak` },
     { letter: 'C', label: 'Rehearsals', href: `${base}/rehearsals` },
-    { letter: 'D', label: 'Nodes', href: `${base}/nodes` },
-    { letter: 'E', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'F', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'G', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'D', label: 'Reinforcement', href: `${base}/reinforcement` },
+    { letter: 'E', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'F', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'G', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'H', label: 'Warnings', href: `${base}/warnings` },
   ]
 }
 

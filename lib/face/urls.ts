@@ -22,6 +22,8 @@ export function overlayUrls(slug: string) {
     windows: `${base}/windows`,
     rehearsals: `${base}/rehearsals`,
     rehearsal: (id: string) => `${base}/rehearsals/${encodeURIComponent(id)}`,
+    reinforcement: `${base}/reinforcement`,
+    plannedLinks: `${base}/reinforcement/planned`,
   }
 }
 

@@ -60,6 +60,8 @@ const ALLOWED: Record<ActionName, string[]> = {
   'overlay.change': ['operator', 'owner', 'write token'],
   'reading.read': looking,
   'node.list': looking,
+  'reinforcement.read': looking,
+  'reinforcement.plan': ['operator', 'owner', 'write token'],
   'link.list': looking,
   'event.read': looking,
   'joining-code.list': ['operator', 'owner', 'read token', 'write token'],

@@ -245,10 +245,11 @@ describe('small words', () => {
       'A /overlays/harbourline',
       'B /overlays/harbourline/weak',
       'C /overlays/harbourline/rehearsals',
-      'D /overlays/harbourline/nodes',
-      'E /overlays/harbourline/joining',
-      'F /overlays/harbourline/upkeep',
-      'G /overlays/harbourline/warnings',
+      'D /overlays/harbourline/reinforcement',
+      'E /overlays/harbourline/nodes',
+      'F /overlays/harbourline/joining',
+      'G /overlays/harbourline/upkeep',
+      'H /overlays/harbourline/warnings',
     ])
   })
 
