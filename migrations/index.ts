@@ -8,8 +8,8 @@ import { ReadingsForYears20261207 } from './migration-2026-12-07-readings-for-ye
 import { NodeSnapshots20261208 } from './migration-2026-12-08-node-snapshots'
 import { PlainReports20261209 } from './migration-2026-12-09-plain-reports'
 import { Warnings20261210 } from './migration-2026-12-10-warnings'
-import { Reinforcement20261212 } from './migration-2026-12-12-reinforcement'
 import { Rehearsals20261211 } from './migration-2026-12-11-rehearsals'
+import { Reinforcement20261212 } from './migration-2026-12-12-reinforcement'
 
 /** In order; a migration that has landed is never edited. */
 export const migrations = [

@@ -8,7 +8,9 @@ import * as events from '@/app/api/v1/overlays/[slug]/events/route'
 import * as overlayIncidents from '@/app/api/v1/overlays/[slug]/incidents/route'
 import * as joiningCode from '@/app/api/v1/overlays/[slug]/joining-codes/[id]/route'
 import * as joiningCodes from '@/app/api/v1/overlays/[slug]/joining-codes/route'
+import * as linkStory from '@/app/api/v1/overlays/[slug]/links/[a]/[b]/route'
 import * as links from '@/app/api/v1/overlays/[slug]/links/route'
+import * as moments from '@/app/api/v1/overlays/[slug]/moments/route'
 import * as readmission from '@/app/api/v1/overlays/[slug]/nodes/[name]/readmission/route'
 import * as revocation from '@/app/api/v1/overlays/[slug]/nodes/[name]/revocation/route'
 import * as node from '@/app/api/v1/overlays/[slug]/nodes/[name]/route'
@@ -17,6 +19,10 @@ import * as reading from '@/app/api/v1/overlays/[slug]/reading/route'
 import * as readings from '@/app/api/v1/overlays/[slug]/readings/route'
 import * as rehearsal from '@/app/api/v1/overlays/[slug]/rehearsals/[id]/route'
 import * as rehearsals from '@/app/api/v1/overlays/[slug]/rehearsals/route'
+import * as joinedLink from '@/app/api/v1/overlays/[slug]/reinforcement/planned/[id]/joined/route'
+import * as plannedLink from '@/app/api/v1/overlays/[slug]/reinforcement/planned/[id]/route'
+import * as plannedLinks from '@/app/api/v1/overlays/[slug]/reinforcement/planned/route'
+import * as reinforcement from '@/app/api/v1/overlays/[slug]/reinforcement/route'
 import * as overlay from '@/app/api/v1/overlays/[slug]/route'
 import * as rule from '@/app/api/v1/overlays/[slug]/rules/[id]/route'
 import * as rulePreview from '@/app/api/v1/overlays/[slug]/rules/preview/route'
@@ -24,6 +30,7 @@ import * as rules from '@/app/api/v1/overlays/[slug]/rules/route'
 import * as signingKey from '@/app/api/v1/overlays/[slug]/signing-key/route'
 import * as upgrade from '@/app/api/v1/overlays/[slug]/upgrades/[id]/route'
 import * as upgrades from '@/app/api/v1/overlays/[slug]/upgrades/route'
+import * as weakPlace from '@/app/api/v1/overlays/[slug]/weak/route'
 import * as window from '@/app/api/v1/overlays/[slug]/windows/[id]/route'
 import * as windows from '@/app/api/v1/overlays/[slug]/windows/route'
 import * as overlays from '@/app/api/v1/overlays/route'
@@ -90,6 +97,7 @@ export const PATHS: readonly PathRow[] = [
   {
     path: '/overlays/{slug}/nodes/{name}',
     methods: [
+      { method: 'GET', handler: node.GET, does: 'Reads a node and its story', answers: 'NodeStory' },
       {
         method: 'DELETE',
         handler: node.DELETE,
@@ -119,6 +127,73 @@ export const PATHS: readonly PathRow[] = [
     path: '/overlays/{slug}/links',
     methods: [
       { method: 'GET', handler: links.GET, does: 'Lists links as disclosure allows', answers: 'Links' },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/links/{a}/{b}',
+    methods: [
+      { method: 'GET', handler: linkStory.GET, does: 'Reads a link and its story', answers: 'LinkStory' },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/weak',
+    methods: [
+      {
+        method: 'GET',
+        handler: weakPlace.GET,
+        does: 'Reads where the overlay is weakest, what that follows and what each crossing link carries',
+        answers: 'WeakPlace',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/moments',
+    methods: [
+      {
+        method: 'GET',
+        handler: moments.GET,
+        does: 'Lists the moments of which a snapshot is kept',
+        answers: 'Moments',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/reinforcement',
+    methods: [
+      {
+        method: 'GET',
+        handler: reinforcement.GET,
+        does: 'Works out which new links would help most; lists those that are planned',
+        answers: 'Reinforcement',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/reinforcement/planned',
+    methods: [
+      { method: 'POST', handler: plannedLinks.POST, does: 'Plans a new link', answers: 'PlannedLink' },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/reinforcement/planned/{id}',
+    methods: [
+      {
+        method: 'DELETE',
+        handler: plannedLink.DELETE,
+        does: 'Withdraws a planned link',
+        answers: 'PlannedLink',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/reinforcement/planned/{id}/joined',
+    methods: [
+      {
+        method: 'POST',
+        handler: joinedLink.POST,
+        does: 'Says that a planned link has been joined',
+        answers: 'PlannedLink',
+      },
     ],
   },
   {

@@ -20,11 +20,11 @@ export function overlayUrls(slug: string) {
     rules: `${base}/rules`,
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
-    reinforcement: `${base}/reinforcement`,
-    exported: (file: string) => `${base}/export/${file}`,
-    plannedLinks: `${base}/reinforcement/planned`,
     rehearsals: `${base}/rehearsals`,
     rehearsal: (id: string) => `${base}/rehearsals/${encodeURIComponent(id)}`,
+    reinforcement: `${base}/reinforcement`,
+    plannedLinks: `${base}/reinforcement/planned`,
+    exported: (file: string) => `${base}/export/${file}`,
   }
 }
 

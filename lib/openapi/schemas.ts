@@ -20,6 +20,7 @@ import {
   upgradesSchema,
 } from '@/lib/data/dto'
 import { rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
+import { plannedLinkSchema, reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import {
   maintenanceWindowSchema,
   maintenanceWindowsSchema,
@@ -28,6 +29,7 @@ import {
   warningRulesSchema,
 } from '@/lib/data/rules-dto'
 import { incidentFileSchema, incidentSchema, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
+import { linkStorySchema, momentsSchema, nodeStorySchema, weakPlaceSchema } from '@/lib/data/weak-dto'
 
 /** What answers are made of, by the name each has in the description. */
 export const ANSWERS = {
@@ -52,6 +54,12 @@ export const ANSWERS = {
   Upgrades: upgradesSchema,
   Rehearsal: rehearsalSchema,
   Rehearsals: rehearsalsSchema,
+  WeakPlace: weakPlaceSchema,
+  Moments: momentsSchema,
+  NodeStory: nodeStorySchema,
+  LinkStory: linkStorySchema,
+  Reinforcement: reinforcementSchema,
+  PlannedLink: plannedLinkSchema,
   WarningRule: warningRuleSchema,
   WarningRules: warningRulesSchema,
   RulePreview: rulePreviewSchema,

@@ -39,6 +39,7 @@ function loaded(atMs: number, { oneEnd = false, disclosure = 'named' as Loaded['
     ...{ pace: 'steady', disclosure, weights: 'unit', retireAfterHours: null, shut: [], leftOutNames: [] },
     ...{ rehearsals: [], floors: [] },
     ...{ key: { publicKey: '', privateKey: '' }, keysInTurn: [], snapshot: { atMs, agents } },
+    ...{ rehearsals: [], floors: [] },
   }
 }
 
