@@ -1,5 +1,4 @@
 import { IncidentEntrySchema, IncidentSchema } from '@/entities'
-import { roleReaches } from '@/lib/auth/permissions'
 import { query } from '@/lib/collector/query'
 import type { Call } from '@/lib/http/call'
 import { toIncident } from './incident-state'
@@ -10,7 +9,7 @@ export const MENTIONS_MOST = 20
 const LINES_MOST = 5
 
 /**
- * Incidents of an overlay whose timeline names a node or a link, as far as the caller may see them; the newest first.
+ * Incidents of an overlay whose timeline names a node or a link, as far as they are of the caller's teams; the newest first.
  * @param spellings any of these, as a whole word
  */
 export async function mentionsOf(
@@ -18,9 +17,7 @@ export async function mentionsOf(
   overlayId: string,
   spellings: readonly string[],
 ): Promise<Mention[]> {
-  const teams = callerTeams(call)
-    .filter(({ role }) => roleReaches(role, 'viewer'))
-    .map(({ teamId }) => teamId)
+  const teams = callerTeams(call).map(({ teamId }) => teamId)
   if (teams.length === 0) return []
   const found = await query<{ id: string }>(
     call.em,
