@@ -102,7 +102,7 @@ describe.each([row, ...harbourline].map((topology) => [topology.name, topology] 
       )
       await fleet.start()
       await until(async () => (await freshValues()).length >= 40, { patienceMs: PATIENCE_MS })
-    })
+    }, PATIENCE_MS)
     afterAll(async () => {
       await fleet?.stop()
       await leader?.stop()

@@ -1,10 +1,9 @@
 import type { Excluded } from '@/lib/data/rehearsal-dto'
 import type { Disclosure } from '@/lib/method/orders'
-import { listOf } from '../words'
+import { countOf, listOf } from '../words'
 
-/** Orders name each of them once per colony: more would make orders too long for a link's frame. */
-export const MOST_TAKEN_NODES = 1_000
-export const MOST_TAKEN_LINKS = 1_000
+/** Orders name each of them once per colony, a link by both ends: more would make orders too long for a link's frame. */
+export const MOST_TAKEN_NAMES = 1_000
 /** Where links are not named, so many nodes must remain: of two it would be told whether they are linked. */
 export const LEAST_REMAIN_UNNAMED = 10
 export const LEAST_REMAIN = 2
@@ -76,10 +75,11 @@ export function takenOf(
   const remaining = pairs.filter(([a, b]) => !gone.has(a) && !gone.has(b))
   const remain = from.agents.length - gone.size
   const isNamed = from.disclosure === 'named'
-  if (gone.size > MOST_TAKEN_NODES)
-    say('exclude', `That is ${gone.size} nodes; at most ${MOST_TAKEN_NODES} can be rehearsed at once.`)
-  if (remaining.length > MOST_TAKEN_LINKS)
-    say('exclude', `That is ${remaining.length} links; at most ${MOST_TAKEN_LINKS} can be rehearsed at once.`)
+  if (gone.size + 2 * remaining.length > MOST_TAKEN_NAMES)
+    say(
+      'exclude',
+      `That is ${countOf(gone.size, 'node')} and ${countOf(remaining.length, 'link')}; at most ${MOST_TAKEN_NAMES} nodes can be rehearsed at once, a link counting as two.`,
+    )
   if (remain < LEAST_REMAIN)
     say('exclude', `${remain === 0 ? 'No node' : 'One node'} would remain. Leave at least ${LEAST_REMAIN}.`)
   else if (!isNamed && remain < LEAST_REMAIN_UNNAMED && gone.size > 0)

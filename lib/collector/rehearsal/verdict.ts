@@ -43,6 +43,8 @@ export function failureSentence(
       return `${listOf(tooOld)} ${isOrAre(tooOld.length)} too old to rehearse. Offer a newer agent under "Upkeep", then repeat it.`
     case 'too-few':
       return 'Fewer than two nodes would remain. Take fewer away.'
+    case 'too-many':
+      return 'With the loose ends, which are left out of it, that is more than orders can name. Take fewer away.'
     case 'unheard':
       return 'Too few agents were heard for it to begin or to go on. Repeat it once the reading is there again.'
     case 'no-time':

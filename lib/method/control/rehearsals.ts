@@ -36,6 +36,8 @@ export interface RehearsalControl {
   askedAtMs: number
   /** Agents that refuse its colonies: those taken away, and those that hang loose anyway. */
   refused: string[]
+  /** How many of them hang loose. */
+  loose: number
   links: [string, string][]
   /** Null until it begins. */
   control: ControlState | null
@@ -50,7 +52,7 @@ export interface RehearsalControl {
   progress: number
 }
 
-export type RehearsalFailure = 'too-old' | 'too-few' | 'unheard' | 'no-time'
+export type RehearsalFailure = 'too-old' | 'too-few' | 'too-many' | 'unheard' | 'no-time'
 
 export interface RehearsalEstimate {
   id: string
@@ -102,7 +104,15 @@ export function rehearse(live: Live, input: EvaluateInput, firstSlot: number): R
     places.add(place)
     return newRehearsal(each, place, live.apart, input.now.atMs)
   })
-  return all.map((one) => rehearseOne(one, live, input, firstSlot + one.place * COLONIES_EACH))
+  // Those that have begun keep their room.
+  const inTurn = all.toSorted((a, b) => Number(b.control !== null) - Number(a.control !== null))
+  let names = 0
+  return inTurn.map((one) => {
+    const its = COLONIES_EACH * (one.refused.length + 2 * one.links.length)
+    const room = names + its <= MOST_REFUSED_NAMES ? 'now' : names > 0 ? 'later' : 'never'
+    if (room === 'now') names += its
+    return rehearseOne(one, live, input, { firstSlot: firstSlot + one.place * COLONIES_EACH, room })
+  })
 }
 
 function newRehearsal(
@@ -116,6 +126,7 @@ function newRehearsal(
     place,
     askedAtMs: atMs,
     refused: [...new Set([...agents, ...apart])].sort(),
+    loose: apart.filter((agentId) => !agents.includes(agentId)).length,
     links: links.map(([a, b]) => [a, b]),
     control: null,
     isCold: false,
@@ -144,7 +155,7 @@ function rehearseOne(
   one: RehearsalControl,
   live: Live,
   input: EvaluateInput,
-  firstSlot: number,
+  { firstSlot, room }: { firstSlot: number; room: 'now' | 'later' | 'never' },
 ): RehearsalRound {
   const { now, settings } = input
   const { intervalMs } = settings.pace
@@ -152,7 +163,7 @@ function rehearseOne(
   const told = {
     id: one.id,
     remain: within.agents.length,
-    loose: live.apart.filter((agentId) => one.refused.includes(agentId)).length,
+    loose: one.loose,
     tooOld: tooOldIn(now, intervalMs),
   }
   const waitedMs = now.atMs - one.askedAtMs
@@ -172,10 +183,11 @@ function rehearseOne(
   })
   if (told.tooOld.length > 0) return failed('too-old')
   if (told.remain < 2) return failed('too-few')
+  if (room === 'never') return failed('too-many')
   const mostMs = Math.max(MOST_INTERVALS * intervalMs, MOST_AT_LEAST_MS)
   if (waitedMs > MOST_TIMES_IN_ALL * mostMs) return failed('unheard')
   if (one.walkedMs > mostMs) return failed('no-time')
-  if (!one.control && !mayBegin(live, waitedMs, intervalMs))
+  if (room === 'later' || (!one.control && !mayBegin(live, waitedMs, intervalMs)))
     return {
       control: { ...one, lastAtMs: now.atMs },
       colonies: [],
