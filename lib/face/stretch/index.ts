@@ -1,3 +1,5 @@
+export { type DotPath, dotPaths } from './dot-paths'
 export { laneKeys } from './lanes'
 export { layoutStretch } from './layout'
+export { dotFinder } from './nearest'
 export type * from './types'
