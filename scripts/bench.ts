@@ -1,6 +1,7 @@
 /** `npm run bench -- NAME [ARG …]`. Composition root. */
 import { benchAgent } from './bench/agent'
 import { benchCoverage } from './bench/coverage'
+import { benchDrawing } from './bench/drawing'
 import { benchIngest } from './bench/ingest'
 import { benchReading } from './bench/reading'
 import { benchRehearsal } from './bench/rehearsal'
@@ -12,6 +13,7 @@ type Bench = (args: readonly string[], print: (line: string) => void) => void | 
 const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
   coverage: benchCoverage,
+  drawing: benchDrawing,
   ingest: benchIngest,
   // From cold and at rest: the reading's table begins with what the method alone does.
   method: benchReading,

@@ -1,8 +1,16 @@
 'use client'
 
-import { memo } from 'react'
+import { memo, type PointerEvent, useMemo } from 'react'
 import { cx } from '@/lib/face/cx'
-import type { Bundle, Dot, StretchLayout, Taut, Text } from '@/lib/face/stretch'
+import {
+  type Bundle,
+  type Dot,
+  dotFinder,
+  type StretchLayout,
+  type Taut,
+  type Text,
+} from '@/lib/face/stretch'
+import { DOTS_MOST, ManyDots } from './many-dots'
 
 export interface DrawingProps {
   layout: StretchLayout
@@ -10,11 +18,22 @@ export interface DrawingProps {
   /** The node pointed at or walked to. */
   chosen: string | null
   onChoose: (name: string | null) => void
+  /** Left out: paths for many, elements for few. */
+  marks?: 'elements' | 'paths'
 }
 
-export function Drawing({ layout, sentence, chosen, onChoose }: DrawingProps) {
+export function Drawing({ layout, sentence, chosen, onChoose, marks }: DrawingProps) {
   const { width, height, dots } = layout
   const dot = dots.find((d) => d.node.name === chosen)
+  const many = marks === undefined ? dots.length > DOTS_MOST : marks === 'paths'
+  const find = useMemo(() => (many ? dotFinder(dots) : null), [many, dots])
+  function point(event: PointerEvent<SVGSVGElement>) {
+    const box = event.currentTarget.getBoundingClientRect()
+    const across = ((event.clientX - box.left) * width) / box.width
+    const down = ((event.clientY - box.top) * height) / box.height
+    const name = find?.(across, down)?.node.name ?? null
+    if (name !== chosen && (name !== null || dot !== undefined)) onChoose(name)
+  }
   return (
     <svg
       viewBox={`0 0 ${width} ${height}`}
@@ -23,10 +42,11 @@ export function Drawing({ layout, sentence, chosen, onChoose }: DrawingProps) {
       role="img"
       aria-label={sentence}
       className="block max-w-full select-none"
+      onPointerMove={many ? point : undefined}
       onPointerLeave={() => onChoose(null)}
     >
       <Ground layout={layout} />
-      <Dots dots={dots} onChoose={onChoose} />
+      {many ? <ManyDots dots={dots} /> : <Dots dots={dots} onChoose={onChoose} />}
       <Labels taut={layout.taut} bundle={layout.bundle} names={layout.names} />
       {dot ? <Pointed dot={dot} width={width} named={layout.names.some((n) => n.text === chosen)} /> : null}
     </svg>

@@ -61,7 +61,7 @@ export const PERMISSIONS = {
   'reading.read': reads('viewer', 'read'),
   'node.list': reads('viewer', 'read'),
   'link.list': reads('viewer', 'read'),
-  'overlay.export': reads('viewer', 'read'),
+  'export.read': reads('viewer', 'read'),
   'reinforcement.read': reads('viewer', 'read'),
   'reinforcement.plan': writes('operator', 'write'),
   'event.read': reads('viewer', 'read'),

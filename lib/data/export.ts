@@ -16,7 +16,7 @@ export async function exportOverlay(
   slug: string,
   file: ExportedFile,
 ): Promise<{ name: string; mediaType: string; bytes: Uint8Array }> {
-  await openOverlay(call, 'overlay.export', slug)
+  await openOverlay(call, 'export.read', slug)
   const nodes = async () => (await listNodes(call, slug, { limit: ALL })).items
   const links = async () => (await listLinks(call, slug, { limit: ALL })).items
   const as = (mediaType: string, text: string) => ({

@@ -60,7 +60,7 @@ const ALLOWED: Record<ActionName, string[]> = {
   'overlay.change': ['operator', 'owner', 'write token'],
   'reading.read': looking,
   'node.list': looking,
-  'overlay.export': looking,
+  'export.read': looking,
   'reinforcement.read': looking,
   'reinforcement.plan': ['operator', 'owner', 'write token'],
   'link.list': looking,

@@ -34,6 +34,7 @@ export const ACTION_WORDS: Record<string, string> = {
   'incident.mute': 'muted an incident, or ended that',
   'incident.resolve': 'resolved an incident',
   'incident.reopen': 'reopened an incident',
+  'reinforcement.plan': 'planned a new link, or noted what became of it',
   'user.create': 'created a person (admin command)',
   'token.create': 'created a token (admin command)',
 }

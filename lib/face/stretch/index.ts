@@ -1,4 +1,6 @@
+export { type DotPath, dotPaths } from './dot-paths'
 export { laneKeys } from './lanes'
 export { layoutStretch } from './layout'
+export { dotFinder } from './nearest'
 export type * from './types'
 export { findNodes, type Step, stepOf, walkFrom, ZOOMS, zoomBy } from './walk'

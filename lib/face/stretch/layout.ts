@@ -184,7 +184,8 @@ function drawLinks(
 ): Pick<StretchLayout, 'faint' | 'taut' | 'bundle' | 'names'> {
   const byName = new Map(dots.map((d) => [d.node.name, d]))
   const crossing = input.sided ? input.links.filter((l) => l.crossing) : []
-  const within = input.links.filter((l) => !crossing.includes(l) && l.state === 'live')
+  const over = new Set(crossing)
+  const within = input.links.filter((l) => !over.has(l) && l.state === 'live')
   const hidden = input.sided ? Math.max(0, (input.crossingLinks ?? 0) - crossing.length) : 0
   const occupied = new Occupied(dots, bounds, frame.labelHeight > 0 ? lanes.map(laneLabelBox) : [])
   const lines = tautLinks(crossing, byName)

@@ -5,6 +5,6 @@ import { route } from '@/lib/http/route'
 
 const params = z.object({ slug: z.string(), file: z.enum(EXPORTED_FILES) })
 
-export const GET = route('overlay.export', { params }, async (call, { params }) =>
+export const GET = route('export.read', { params }, async (call, { params }) =>
   attachment(await exportOverlay(call, params.slug, params.file)),
 )
