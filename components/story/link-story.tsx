@@ -4,6 +4,7 @@ import Link from 'next/link'
 import { Freshness } from '@/components/live/freshness'
 import { useLinkStory, useReading } from '@/components/live/hooks'
 import { StateMark } from '@/components/nodes/state-mark'
+import { RehearseLink } from '@/components/rehearsals/rehearse-link'
 import { pickRange, RangeChoice } from '@/components/trend/trend-sheet'
 import {
   type Column,
@@ -81,6 +82,11 @@ function Story({ slug, story, range }: { slug: string; story: LinkStory; range: 
               ))}
             </p>
           ))}
+          {link?.state === 'live' && disclosure === 'named' ? (
+            <RehearseLink slug={slug} exclude={{ links: [[link.a, link.b]] }}>
+              Rehearse going without it
+            </RehearseLink>
+          ) : null}
           {link ? null : <Note>{notNamed(disclosure)}</Note>}
           {link?.state === 'lost' ? (
             <Note>

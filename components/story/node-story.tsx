@@ -4,6 +4,7 @@ import Link from 'next/link'
 import { Freshness } from '@/components/live/freshness'
 import { useNodeStory } from '@/components/live/hooks'
 import { STATE_WORDS, StateMark } from '@/components/nodes/state-mark'
+import { RehearseLink } from '@/components/rehearsals/rehearse-link'
 import { pickRange, RangeChoice } from '@/components/trend/trend-sheet'
 import {
   type Column,
@@ -23,6 +24,7 @@ import type { NodeStory } from '@/lib/data/weak-dto'
 import { formatCount, formatShare, formatValue } from '@/lib/face/format'
 import { nodeConcerns } from '@/lib/face/node-concerns'
 import type { Range } from '@/lib/face/range'
+import { joinedOf } from '@/lib/face/rehearsal'
 import { hiddenLinksText, type Neighbour, neighboursOf, stepMsOf } from '@/lib/face/story'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { Course } from './course'
@@ -77,6 +79,11 @@ function Story({ slug, story, range }: { slug: string; story: NodeStory; range: 
             </span>
           ) : null}
         </p>
+        {joinedOf([node]).length > 0 ? (
+          <RehearseLink slug={slug} exclude={{ nodes: [node.name] }}>
+            Rehearse going without it
+          </RehearseLink>
+        ) : null}
         {concerns.length > 0 ? <Note>To look at: {concerns.join('; ')}</Note> : null}
       </div>
       <HistorySheet story={story} range={range} />
