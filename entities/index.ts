@@ -19,6 +19,7 @@ import { OverlaySchema } from './overlay'
 import { OverlayEventSchema } from './overlay-event'
 import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
+import { OverlayPartnerSchema } from './overlay-partner'
 import { PasswordLinkSchema } from './password-link'
 import { ReadingSchema } from './reading'
 import { SessionSchema } from './session'
@@ -52,6 +53,7 @@ export * from './overlay'
 export * from './overlay-event'
 export * from './overlay-key'
 export * from './overlay-key-ring'
+export * from './overlay-partner'
 export * from './password-link'
 export * from './reading'
 export * from './session'
@@ -86,6 +88,7 @@ export const entities = [
   OverlayEventSchema,
   OverlayKeySchema,
   OverlayKeyRingSchema,
+  OverlayPartnerSchema,
   PasswordLinkSchema,
   ReadingSchema,
   SessionSchema,

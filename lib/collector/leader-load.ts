@@ -26,6 +26,8 @@ export interface Loaded {
   disclosure: Disclosure
   weights: WeightMode
   retireAfterHours: number | null
+  /** Agents of more than the owning team are or were of it. */
+  isShared?: boolean
   /** Whom nobody keeps a link to. */
   shut: NonNullable<Orders['shut']>
   /** Agents whose figures did not hold, the latest first, with why. */
@@ -51,6 +53,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
     em,
     `select o.pace, o.disclosure, o.weights, o.retire_after_hours as "retireAfterHours",
        o.public_key as "publicKey", o.private_key as "privateKey", ${epochMs('clock_timestamp()')} as "nowMs",
+       exists (select from agent_faces f where f.overlay_id = o.id and f.team_id <> o.team_id) as "isShared",
        (select coalesce(jsonb_agg(jsonb_build_object('name', a.name, 'because', coalesce(a.left_out_because, ''))
           order by a.ended_at desc), '[]')
         from agents a where a.overlay_id = o.id and a.state = 'left-out') as "leftOutNames",

@@ -1,7 +1,8 @@
 import type { Snapshot } from '@/lib/method/control'
 import { isHeard } from '@/lib/method/control'
 import type { EventDraft } from './judge'
-import { countOf, listOf } from './words'
+import { eventOf, type Said, saidList } from './said'
+import { countOf } from './words'
 
 /** A link must be unnamed, or named, for so long before it is said to be lost, or found. */
 export const LINK_STILL_INTERVALS = 3
@@ -40,8 +41,8 @@ export class LinkWatch {
       if (!this.#links.has(key)) this.#links.set(key, { a, b, named: false, sinceMs: 0, known: false })
     }
     const learning = snapshot.atMs - this.#sinceMs < LEARNING_INTERVALS * intervalMs
-    const lost: string[] = []
-    const found: string[] = []
+    const lost: Pair[] = []
+    const found: Pair[] = []
     for (const [key, link] of this.#links) {
       if (!heard.has(link.a) || !heard.has(link.b)) continue
       const now = named.has(key)
@@ -49,18 +50,23 @@ export class LinkWatch {
       if (link.named === link.known) continue
       if (!learning && snapshot.atMs - link.sinceMs < LINK_STILL_INTERVALS * intervalMs) continue
       link.known = link.named
-      const pair = [nameOf(link.a), nameOf(link.b)].sort().join(' – ')
-      if (!learning) (link.named ? found : lost).push(pair)
+      if (!learning) (link.named ? found : lost).push([nameOf(link.a), nameOf(link.b)])
     }
     return [...said('link-lost', lost, 'lost'), ...said('link-found', found, 'found')]
   }
 }
 
-function said(kind: 'link-lost' | 'link-found', pairs: readonly string[], what: string): EventDraft[] {
+type Pair = [string, string]
+
+function said(kind: 'link-lost' | 'link-found', pairs: readonly Pair[], what: string): EventDraft[] {
   if (pairs.length === 0) return []
-  const named =
+  const each = pairs.map((pair): Said => {
+    const [a = '', b = ''] = [...pair].sort()
+    return [{ node: a }, ' – ', { node: b }]
+  })
+  const named: Said =
     pairs.length > MOST_NAMED
-      ? countOf(pairs.length, 'link')
-      : `${pairs.length === 1 ? 'link' : 'links'} ${listOf(pairs)}`
-  return [{ kind, text: `${named} ${what}` }]
+      ? [countOf(pairs.length, 'link')]
+      : [`${pairs.length === 1 ? 'link' : 'links'} `, ...saidList(each)]
+  return [eventOf(kind, [...named, ` ${what}`])]
 }

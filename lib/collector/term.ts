@@ -1,4 +1,3 @@
-import type { Reading } from '@/lib/data/dto'
 import type { Log } from '@/lib/http/runtime'
 import {
   DEFAULT_SETTINGS,
@@ -18,6 +17,7 @@ import type { LeaderStore, Loaded, LoadedAgent, Round } from './leader-store'
 import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
+import type { KeptReading } from './reading'
 import type { Upkeep } from './upkeep'
 import { type Usual, usualNow } from './usual'
 
@@ -169,7 +169,7 @@ export class Term {
     return null
   }
 
-  #plan(loaded: Loaded, usual: number | null): { round: Round; reading: Reading } {
+  #plan(loaded: Loaded, usual: number | null): { round: Round; reading: KeptReading } {
     const { pace: paceName, disclosure, weights, key } = loaded
     const pace = PACES[paceName]
     const sequence = this.#sequence + 1
@@ -192,7 +192,7 @@ export class Term {
       sequence,
       random: this.#components.random,
     })
-    const { reading, memory, events, store } = judge({
+    const { reading, memory, events, facts, store } = judge({
       estimate,
       core,
       parts,
@@ -210,10 +210,10 @@ export class Term {
       disclosure === 'named'
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
-    const told = withFleetFacts(
-      reading,
-      fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
-    )
+    const told: KeptReading = {
+      ...withFleetFacts(reading, fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs)),
+      ...(loaded.isShared && { facts }),
+    }
     const round: Round = {
       sequence,
       state: { version: STATE_VERSION, control, memory },
