@@ -17,6 +17,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { partnersSchema } from '@/lib/data/partner-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
@@ -134,6 +135,11 @@ export function useRules(slug: string) {
 export function useWindows(slug: string) {
   const url = overlayUrls(slug).windows
   return useLive(url, async () => (await getJson(url, maintenanceWindowsSchema)).items)
+}
+
+export function usePartners(slug: string | null) {
+  const url = slug === null ? null : overlayUrls(slug).partners
+  return useLive(url, () => getJson(url ?? '', partnersSchema), { streamingMs: UPKEEP_MS })
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

@@ -30,6 +30,8 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'collector-away': { word: 'collector', shape: 'dashed' },
   'incident-raised': { word: 'incident', shape: 'hollow' },
   'incident-cleared': { word: 'incident', shape: 'full' },
+  'partner-joined': { word: 'partner', shape: 'full' },
+  'partner-ended': { word: 'partner', shape: 'short' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

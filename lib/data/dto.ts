@@ -370,6 +370,8 @@ export const EVENT_KINDS = [
   'collector-away',
   'incident-raised',
   'incident-cleared',
+  'partner-joined',
+  'partner-ended',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

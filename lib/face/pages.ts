@@ -15,6 +15,7 @@ export function overlayPages(slug: string): PageEntry[] {
     { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
     { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
     { letter: 'E', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'I', label: 'Partners', href: `${base}/partners` },
   ]
 }
 

@@ -16,6 +16,7 @@ export function overlayUrls(slug: string) {
     rules: `${base}/rules`,
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
+    partners: `${base}/partners`,
   }
 }
 
