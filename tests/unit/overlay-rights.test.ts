@@ -1,6 +1,8 @@
+import { readFileSync } from 'node:fs'
 import { describe, expect, it } from 'vitest'
 import type { Caller, TeamRole } from '@/lib/auth/caller'
 import { actingFor } from '@/lib/auth/overlay-rights'
+import { OVERLAY_ROWS, overlayTable } from '@/lib/auth/overlay-table'
 import { type ActionName, PERMISSIONS, permissionOf } from '@/lib/auth/permissions'
 
 const team = (teamId: string, role: TeamRole['role']): TeamRole => ({
@@ -57,5 +59,21 @@ describe('who acts for which of an overlay’s teams', () => {
       .map(([action]) => action)
     expect(open).not.toContain('overlay.change')
     expect(open.filter((action) => /^(signing-key|audit|member|team)\./.test(action))).toEqual([])
+  })
+})
+
+describe('the table of who sees what', () => {
+  it('stands in the documentation as the checks decide it', () => {
+    const text = readFileSync(new URL('../../docs/partners.md', import.meta.url), 'utf8')
+    // Else: npx tsx scripts/write-partners-table.ts
+    expect(text).toContain(overlayTable())
+  })
+
+  it('has every action that is open to partners', () => {
+    const open = Object.entries(PERMISSIONS)
+      .filter(([, permission]) => 'partner' in permission && permission.partner)
+      .map(([action]) => action)
+    const rows = new Set<string>(OVERLAY_ROWS.map(({ action }) => action))
+    expect(open.filter((action) => !rows.has(action))).toEqual([])
   })
 })
