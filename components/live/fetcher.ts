@@ -48,7 +48,8 @@ export async function getAll<T>(path: string, schema: ZodType<Paged<T>>): Promis
   const items: T[] = []
   let next: string | null = null
   do {
-    const query: string = next === null ? '' : `?after=${encodeURIComponent(next)}`
+    const mark = path.includes('?') ? '&' : '?'
+    const query: string = next === null ? '' : `${mark}after=${encodeURIComponent(next)}`
     const page: Paged<T> = await getJson(`${path}${query}`, schema)
     items.push(...page.items)
     next = page.next

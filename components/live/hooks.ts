@@ -20,6 +20,7 @@ import {
 import { partnersSchema } from '@/lib/data/partner-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
+import { linkStorySchema, momentsSchema, nodeStorySchema, weakPlaceSchema } from '@/lib/data/weak-dto'
 import { type Range, rangeQuery, refreshMs } from '@/lib/face/range'
 import { AGENT_FILE_URL, deliveriesUrl, INCIDENTS_URL, incidentUrls, overlayUrls } from '@/lib/face/urls'
 import { ApiError, getAll, getJson } from './fetcher'
@@ -204,4 +205,42 @@ export function usePast(slug: string, at: string) {
     },
     { streamingMs: 0, pollMs: 0 },
   )
+}
+
+/** The present changes with each reading, but what is told of it takes its time; a past moment never changes. */
+const nowOr = (at: string | null): LiveOptions =>
+  at === null ? { streamingMs: UPKEEP_MS, pollMs: UPKEEP_MS } : { streamingMs: 0, pollMs: 0 }
+
+function atQuery(at: string | null): Record<string, string> {
+  return at === null ? {} : { at }
+}
+
+/** Now, or at a past moment, with the courses of links over so long before. */
+export function useWeakPlace(slug: string, range: Range, at: string | null) {
+  const url = `${overlayUrls(slug).weak}?${new URLSearchParams({ last: range.id, ...atQuery(at) })}`
+  return useLive(url, () => getJson(url, weakPlaceSchema), nowOr(at))
+}
+
+export function useNodesAt(slug: string, at: string | null) {
+  const url = overlayUrls(slug).nodes
+  const key = at === null ? url : `${url}?${new URLSearchParams({ limit: '1000', ...atQuery(at) })}`
+  return useLive(key, () => getAll(key, nodesSchema), at === null ? { streamingMs: 15_000 } : nowOr(at))
+}
+
+/** A new one is kept each minute. */
+const MOMENTS_MS = 30_000
+
+export function useKeptMoments(slug: string, range: Range) {
+  const url = `${overlayUrls(slug).moments}?last=${range.id}`
+  return useLive(url, async () => (await getJson(url, momentsSchema)).items, { streamingMs: MOMENTS_MS })
+}
+
+export function useNodeStory(slug: string, name: string, range: Range) {
+  const url = `${overlayUrls(slug).node(name)}?last=${range.id}`
+  return useLive(url, () => getJson(url, nodeStorySchema), { streamingMs: UPKEEP_MS })
+}
+
+export function useLinkStory(slug: string, ends: { a: string; b: string }, range: Range) {
+  const url = `${overlayUrls(slug).link(ends.a, ends.b)}?last=${range.id}`
+  return useLive(url, () => getJson(url, linkStorySchema), { streamingMs: UPKEEP_MS })
 }

@@ -1,9 +1,11 @@
 'use client'
 
+import Link from 'next/link'
 import { Dialog, DialogActions, SideMark, Time } from '@/components/ui'
 import type { OverlayNode } from '@/lib/data/dto'
 import { nodeConcerns } from '@/lib/face/node-concerns'
 import { nodeDetails } from '@/lib/face/node-details'
+import { overlayPageUrls } from '@/lib/face/urls'
 import { NodeActionButtons } from './node-actions'
 import { STATE_WORDS, StateMark } from './state-mark'
 import type { NodeActions } from './types'
@@ -63,6 +65,11 @@ export function NodeSheet({ slug, node, actions, onClose, onDone }: NodeSheetPro
               : 'Its agent is of version 1 and says nothing of its clock, its neighbours’ source or its errors.'}
           </p>
         ) : null}
+        <p>
+          <Link href={overlayPageUrls(slug).node(node.name)} className="rule-link">
+            History, neighbours and incidents of {node.name}
+          </Link>
+        </p>
         {actions ? (
           <section>
             <h3 className="mb-2 text-base">What can be done</h3>

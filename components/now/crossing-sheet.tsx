@@ -1,5 +1,6 @@
 'use client'
 
+import Link from 'next/link'
 import { useMemo } from 'react'
 import { useCut, useNodes, useOverlay, useReading } from '@/components/live/hooks'
 import {
@@ -16,6 +17,8 @@ import {
 import type { Cut, OverlayLink } from '@/lib/data/dto'
 import { ifItGoes, whyHidden } from '@/lib/face/crossing'
 import { formatCount, formatLink, formatReading, formatShare } from '@/lib/face/format'
+import { overlayPageUrls } from '@/lib/face/urls'
+import { headlineLambda2 } from '@/lib/face/weak-links'
 
 export function CrossingSheet({ slug }: { slug: string }) {
   const cut = useCut(slug)
@@ -57,9 +60,7 @@ export function CrossingSheet({ slug }: { slug: string }) {
         <CrossingLinks
           slug={slug}
           cut={cut.data}
-          lambda2={
-            reading.data?.core?.lambda2 ?? reading.data?.lambda2 ?? reading.data?.last?.lambda2 ?? null
-          }
+          lambda2={reading.data ? headlineLambda2(reading.data) : null}
           disclosure={overlay.data?.disclosure ?? 'sealed'}
           silent={silent}
           unheard={unheard}
@@ -81,8 +82,8 @@ function CrossingLinks(props: {
   const { slug, cut, lambda2, disclosure, silent, unheard } = props
   const why = whyHidden(cut, disclosure)
   const columns = useMemo(
-    () => columnsFor(lambda2, cut.crossingLinks, unheard),
-    [lambda2, cut.crossingLinks, unheard],
+    () => columnsFor(slug, lambda2, cut.crossingLinks, unheard),
+    [slug, lambda2, cut.crossingLinks, unheard],
   )
   return (
     <div className="space-y-3">
@@ -110,11 +111,17 @@ function CrossingLinks(props: {
         </p>
       )}
       {why ? <Note>{why}</Note> : null}
+      <p className="text-sm">
+        <Link href={overlayPageUrls(slug).weak} className="rule-link">
+          Look into the weak place: what it follows, and its links over time
+        </Link>
+      </p>
     </div>
   )
 }
 
 function columnsFor(
+  slug: string,
   lambda2: number | null,
   crossingLinks: number | null,
   unheard: ReadonlySet<string>,
@@ -124,7 +131,11 @@ function columnsFor(
       id: 'link',
       header: 'link',
       value: (l) => formatLink(l.a, l.b),
-      cell: (l) => <span className="whitespace-nowrap">{formatLink(l.a, l.b)}</span>,
+      cell: (l) => (
+        <Link href={overlayPageUrls(slug).link(l.a, l.b)} className="rule-link whitespace-nowrap">
+          {formatLink(l.a, l.b)}
+        </Link>
+      ),
     },
     {
       id: 'delivered',

@@ -101,7 +101,15 @@ export function Stretch({ nodes: all, links, reading, cut }: StretchProps) {
   )
 }
 
-function SidesLine({ nodes, gap, grave }: { nodes: readonly OverlayNode[]; gap: string; grave: boolean }) {
+export function SidesLine({
+  nodes,
+  gap,
+  grave,
+}: {
+  nodes: readonly OverlayNode[]
+  gap: string
+  grave: boolean
+}) {
   const text = (side: 'a' | 'b') => {
     const on = nodes.filter((n) => n.side === side)
     const unheard = on.filter((n) => n.state === 'unheard').length
@@ -127,7 +135,7 @@ function SidesLine({ nodes, gap, grave }: { nodes: readonly OverlayNode[]; gap: 
 }
 
 /** A slider over the nodes from left to right: keyboard, touch and screen readers walk the drawing with it. */
-function Walk(props: {
+export function Walk(props: {
   nodes: readonly OverlayNode[]
   sided: boolean
   chosen: string | null

@@ -9,10 +9,10 @@ import { cx } from '@/lib/face/cx'
 import { DEFAULT_RANGE, fittingRange, RANGES, type Range, rangeNamed } from '@/lib/face/range'
 import { Trend } from './trend'
 
-const RANGE_PARAMETER = 'last'
+export const RANGE_PARAMETER = 'last'
 
 /** In the address, so that it can be passed on and outlives a reload; no step back for each choice. */
-function pick(range: Range): void {
+export function pickRange(range: Range): void {
   const url = new URL(location.href)
   url.searchParams.set(RANGE_PARAMETER, range.id)
   history.replaceState(null, '', url)
@@ -32,7 +32,7 @@ export function TrendSheet({ slug }: { slug: string }) {
   const reading = useReading(slug)
 
   return (
-    <Sheet heading="Trend" aside={<RangeChoice range={range} onRange={pick} />}>
+    <Sheet heading="Trend" aside={<RangeChoice range={range} onRange={pickRange} />}>
       <Freshness of={past} unless={reading} />
       {past.data ? (
         past.data.points.length > 0 ? (
@@ -66,7 +66,7 @@ function TrendWaiting() {
   return <Waiting label="Loading the trend" className="h-64" />
 }
 
-function RangeChoice({ range, onRange }: { range: Range; onRange: (range: Range) => void }) {
+export function RangeChoice({ range, onRange }: { range: Range; onRange: (range: Range) => void }) {
   return (
     <fieldset className="flex flex-wrap items-center gap-x-1">
       <legend className="sr-only">Show the last</legend>

@@ -18,6 +18,7 @@ import {
 import { Chart } from './chart'
 import { AXIS_LEFT, AXIS_RIGHT, type Marks } from './chart-options'
 import { EventStrip } from './event-strip'
+import { Pickable } from './pickable'
 
 export interface TrendProps {
   points: readonly ReadingPoint[]
@@ -31,6 +32,10 @@ export interface TrendProps {
   usual: number | null
   /** Nothing is drawn for a floor that is not set. */
   floor?: number | null
+  /** A moment that stands out: drawn as a line over the chart. */
+  markMs?: number | null
+  /** Someone points at a moment, and may go on pointing. */
+  onPick?: (atMs: number) => void
 }
 
 const EVENT_ROWS = 3
@@ -79,7 +84,9 @@ export function Trend(props: TrendProps) {
     <div ref={frame} className="min-w-0 overflow-hidden">
       {width !== null && width > 0 ? (
         <>
-          <Chart width={width} columns={columns} marks={marks} summary={summary} onPoint={setIndex} />
+          <Pickable {...{ width, fromMs, toMs, markMs: props.markMs ?? null, onPick: props.onPick }}>
+            <Chart width={width} columns={columns} marks={marks} summary={summary} onPoint={setIndex} />
+          </Pickable>
           <EventStrip marks={eventMarks} width={width} />
         </>
       ) : null}

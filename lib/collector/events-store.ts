@@ -4,8 +4,8 @@ import { tell } from './notices'
 import { query } from './query'
 
 /** What is kept of an event beside its text: its parts. Events without are from before they were kept. */
-export function eventData({ said, text }: EventDraft): string {
-  return JSON.stringify({ said: said ?? [text] })
+export function eventData({ said, text, data }: EventDraft): string {
+  return JSON.stringify({ ...data, said: said ?? [text] })
 }
 
 /** Enters what happened, and says so to whoever follows the overlay. */

@@ -61,6 +61,8 @@ export interface EventDraft {
   said?: Said
   /** The one team it is told to; left out, all that share the overlay. */
   teamId?: string
+  /** What a program looks up later, beside the line for a person. */
+  data?: { links: [a: string, b: string][] }
 }
 
 export interface Judgement {

@@ -9,6 +9,8 @@ export const LINK_STILL_INTERVALS = 3
 /** What is there when the watch begins is no news. */
 const LEARNING_INTERVALS = 10
 const MOST_NAMED = 3
+/** More links come and go at once only where an overlay begins: how old each of them is does not matter then. */
+const MOST_KEPT = 500
 
 interface Watched {
   a: string
@@ -50,23 +52,21 @@ export class LinkWatch {
       if (link.named === link.known) continue
       if (!learning && snapshot.atMs - link.sinceMs < LINK_STILL_INTERVALS * intervalMs) continue
       link.known = link.named
-      if (!learning) (link.named ? found : lost).push([nameOf(link.a), nameOf(link.b)])
+      const [a, b] = [nameOf(link.a), nameOf(link.b)]
+      if (!learning) (link.named ? found : lost).push(a < b ? [a, b] : [b, a])
     }
     return [...said('link-lost', lost, 'lost'), ...said('link-found', found, 'found')]
   }
 }
 
-type Pair = [string, string]
+type Pair = [a: string, b: string]
 
-function said(kind: 'link-lost' | 'link-found', pairs: readonly Pair[], what: string): EventDraft[] {
-  if (pairs.length === 0) return []
-  const each = pairs.map((pair): Said => {
-    const [a = '', b = ''] = [...pair].sort()
-    return [{ node: a }, ' – ', { node: b }]
-  })
+function said(kind: 'link-lost' | 'link-found', links: readonly Pair[], what: string): EventDraft[] {
+  if (links.length === 0) return []
+  const each = links.map(([a, b]): Said => [{ node: a }, ' – ', { node: b }])
   const named: Said =
-    pairs.length > MOST_NAMED
-      ? [countOf(pairs.length, 'link')]
-      : [`${pairs.length === 1 ? 'link' : 'links'} `, ...saidList(each)]
-  return [eventOf(kind, [...named, ` ${what}`])]
+    links.length > MOST_NAMED
+      ? [countOf(links.length, 'link')]
+      : [`${links.length === 1 ? 'link' : 'links'} `, ...saidList(each)]
+  return [{ ...eventOf(kind, [...named, ` ${what}`]), data: { links: links.slice(0, MOST_KEPT) } }]
 }

@@ -14,6 +14,8 @@ export interface NamedCut {
   nodes: Record<Side, number>
   links: number
   weight: number
+  /** The next best cut that parts the nodes otherwise; absent where none stands out. */
+  runnerUp?: { nodes: Record<Side, number>; links: number; weight: number }
 }
 
 /** What a leader remembers beyond the control loop, as plain JSON: whoever leads next goes on from it. */

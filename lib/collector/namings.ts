@@ -2,7 +2,7 @@ import type { OverlayLink } from '@/lib/data/dto'
 import type { NodeFacts } from '@/lib/method/report'
 
 /** Names are one line each, so a line break parts them. */
-export function cursorOf({ a, b }: OverlayLink): string {
+export function cursorOf({ a, b }: Pick<OverlayLink, 'a' | 'b'>): string {
   return `${a}\n${b}`
 }
 

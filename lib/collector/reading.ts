@@ -1,7 +1,7 @@
 import type { Reading } from '@/lib/data/dto'
 import { CONFIDENCE, type Coverage, type Estimate } from '@/lib/method/control'
 import type { HeadlineInput } from './judge'
-import type { Memory } from './memory'
+import type { Memory, NamedCut } from './memory'
 import type { VerdictFacts } from './verdict'
 
 /** As it is kept: where several teams have agents, with what the sentences are made from. */
@@ -39,6 +39,7 @@ export function readingOf(
     ],
     crossingLinks: drawn?.links ?? null,
     crossingWeight: drawn?.weight ?? null,
+    ...(drawn?.runnerUp && { runnerUp: runnerUpOf(drawn.runnerUp) }),
     looseEnds: (core?.ends ?? []).map(({ agents, links }) => ({ nodes: agents.length, links })),
     coverage: coverageDto(estimate.coverage),
     seedings: estimate.seedings,
@@ -48,6 +49,10 @@ export function readingOf(
         : null,
     demo: false,
   }
+}
+
+function runnerUpOf({ nodes, links, weight }: NonNullable<NamedCut['runnerUp']>): Reading['runnerUp'] {
+  return { sides: [nodes.a, nodes.b], links, weight }
 }
 
 function coreOf({ lambda2, low, high }: Estimate): Reading['core'] {

@@ -40,8 +40,24 @@ export function nameSides({ cut, signSince, agents, last }: SidesInput): Sides |
     // What is known of a silent one is where it was.
     else if (!heard && last[agentId]) sides[agentId] = last[agentId]
   }
-  const nodes = aboveIs === 'a' ? { a: cut.above, b: cut.below } : { a: cut.below, b: cut.above }
-  return { cut: { sweep: cut.sweep, aboveIs, nodes, links: cut.links, weight: cut.weight }, sides }
+  const { sweep, links, weight, runnerUp } = cut
+  return {
+    cut: {
+      ...{ sweep, aboveIs, nodes: nodesOn(cut, aboveIs), links, weight },
+      ...(runnerUp && {
+        runnerUp: {
+          nodes: nodesOn(runnerUp, aboveIs),
+          links: runnerUp.links,
+          weight: runnerUp.weight,
+        },
+      }),
+    },
+    sides,
+  }
+}
+
+function nodesOn({ above, below }: { above: number; below: number }, aboveIs: Side): Record<Side, number> {
+  return aboveIs === 'a' ? { a: above, b: below } : { a: below, b: above }
 }
 
 function nameOfAbove(

@@ -57,6 +57,14 @@ export const readingSchema = z.object({
   sides: z.tuple([side, side]).nullable(),
   crossingLinks: z.number().int().nullable(),
   crossingWeight: z.number().nullable(),
+  /** The next best cut that parts the nodes otherwise, by nodes on side a and side b; absent where none stands out. */
+  runnerUp: z
+    .object({
+      sides: z.tuple([z.number().int(), z.number().int()]),
+      links: z.number().int(),
+      weight: z.number(),
+    })
+    .optional(),
   /**
    * Each piece by itself, once the overlay has come apart; or, while too few are heard, those still heard among themselves. Its λ₂ is null while it is being read, and for a node alone.
    */

@@ -1,5 +1,6 @@
 import type { FilterQuery } from '@mikro-orm/core'
 import {
+  type IncidentEntry as EntryRow,
   type Incident,
   IncidentEntrySchema,
   IncidentFileSchema,
@@ -127,6 +128,14 @@ export async function loadWhole(call: Call, incident: Incident): Promise<Inciden
 /** Entered from what happened in the overlay, which may name nodes. */
 const NAMING: ReadonlySet<EntryKind> = new Set(['link-lost', 'link-found', 'agent-unheard', 'agent-heard'])
 
+/** An entry's text, as its incident's team reads it. */
+export function entryText(
+  { kind, text, data }: Pick<EntryRow, 'kind' | 'text' | 'data'>,
+  sight: Sight,
+): string {
+  return sightedText({ text, data, isNaming: NAMING.has(kind) }, sight) ?? 'Something changed.'
+}
+
 async function entriesOf({ em }: Call, incidentId: string, sight: Sight): Promise<IncidentEntry[]> {
   const entries = await em.find(
     IncidentEntrySchema,
@@ -137,7 +146,7 @@ async function entriesOf({ em }: Call, incidentId: string, sight: Sight): Promis
     id: String(id),
     at: at.toISOString(),
     kind,
-    text: sightedText({ text, data, isNaming: NAMING.has(kind) }, sight) ?? 'Something changed.',
+    text: entryText({ kind, text, data }, sight),
     by: user ? { id: user.id, name: user.name } : null,
   }))
 }

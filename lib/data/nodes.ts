@@ -145,6 +145,38 @@ export async function getNode(
   return toNode(row, await memoryOf(em, id), PACES[pace].intervalMs, sight)
 }
 
+/**
+ * By the name the caller sees: the one that has it now, else the last that had it. For those who have checked the
+ * caller.
+ */
+export async function nodeNamed(
+  em: EntityManager,
+  { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  memory: Memory | null,
+  name: string,
+  sight: Sight,
+): Promise<OverlayNode | null> {
+  const [where, which] = sight.isWhole ? ['a.name = ?', name] : ['a.id = ?', sight.agentNamed(name)]
+  const [row] = await query<Row>(
+    em,
+    `${SELECT} where a.overlay_id = ? and ${where} order by (a.state <> 'left') desc, a.joined_at desc limit 1`,
+    [id, which],
+  )
+  return row ? toNode(row, memory, PACES[pace].intervalMs, sight) : null
+}
+
+/** All that have joined, by the names that are seen. For those who have checked the caller. */
+export async function joinedNodes(
+  em: EntityManager,
+  { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  memory: Memory | null,
+  sight: Sight,
+): Promise<OverlayNode[]> {
+  const rows = await query<Row>(em, `${SELECT} where a.overlay_id = ? and a.state = 'joined'`, [id])
+  const nodes = rows.map((row) => toNode(row, memory, PACES[pace].intervalMs, sight))
+  return nodes.sort((one, other) => (one.name < other.name ? -1 : 1))
+}
+
 function toNode(row: Row, memory: Memory | null, intervalMs: number, sight: Sight): OverlayNode {
   const { id, facts, version, colonies } = row
   const seen = {

@@ -34,6 +34,8 @@ export interface Sight {
   named(name: string): string
   /** Whose node a seen name stands for. */
   agentNamed(seen: string): string | null
+  /** The node's own name, to look up what is kept under it: never to be shown. Null where the reader sees no such name. */
+  nameBehind(seen: string): string | null
   /** A text, for this reader. */
   say(said: Said): string
   /** Whether what is told to one team only, or to all, is for this reader. */
@@ -76,6 +78,8 @@ export function createSight({ secret, ownerTeamId, viewers, faces, sharedKeys }:
     if (face === undefined) return SOMEBODY
     return isOwn(face) ? face.name : hidden(face)
   }
+  const faceBehind = (seen: string): Face | undefined =>
+    byName.get(seen)?.filter(isOwn).at(-1) ?? faces.find((face) => !isOwn(face) && hidden(face) === seen)
   const named = (name: string) => (isWhole ? name : shown(byName.get(name)?.at(-1)))
   return {
     isWhole,
@@ -93,11 +97,8 @@ export function createSight({ secret, ownerTeamId, viewers, faces, sharedKeys }:
     },
     seesKey: (key) => isWhole || others.every((teamId) => sharesOf(teamId).includes(key)),
     named,
-    agentNamed: (seen) => {
-      const owned = byName.get(seen)?.filter(isOwn).at(-1)
-      if (owned) return owned.agentId
-      return faces.find((face) => !isOwn(face) && hidden(face) === seen)?.agentId ?? null
-    },
+    agentNamed: (seen) => faceBehind(seen)?.agentId ?? null,
+    nameBehind: (seen) => (isWhole ? seen : (faceBehind(seen)?.name ?? null)),
     say: (said) =>
       said
         .map((piece) => {

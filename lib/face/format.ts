@@ -1,4 +1,5 @@
 /** Numbers and names as people read them. Bounds are rounded outward: never narrower than they are. */
+import { lambda2Without } from '@/lib/method/cut-bounds'
 
 const NARROW_SPACE = '\u202f'
 
@@ -45,10 +46,9 @@ export function formatShare(share: number): string {
   return `${Math.round(share * 100)}${NARROW_SPACE}%`
 }
 
-/** λ₂ is concave in the weights, so without the link it is at most λ₂(1 − share): rounded up, never down. */
+/** What the reading is at most without a link, rounded up, never down. */
 export function formatAtMostWithout(lambda2: number, share: number): string {
-  const bound = Math.max(0, lambda2 * (1 - share))
-  return formatHigh(bound, decimalsFor(lambda2))
+  return formatHigh(lambda2Without(lambda2, share), decimalsFor(lambda2))
 }
 
 export function formatCount(count: number, one: string, many = `${one}s`): string {

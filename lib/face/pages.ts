@@ -11,10 +11,11 @@ export function overlayPages(slug: string): PageEntry[] {
   const base = `/overlays/${encodeURIComponent(slug)}`
   return [
     { letter: 'A', label: 'Now', href: base },
-    { letter: 'B', label: 'Nodes', href: `${base}/nodes` },
-    { letter: 'C', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'D', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'E', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'B', label: 'Weak place', href: `${base}/weak` },
+    { letter: 'C', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'D', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'E', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'F', label: 'Warnings', href: `${base}/warnings` },
     { letter: 'I', label: 'Partners', href: `${base}/partners` },
   ]
 }

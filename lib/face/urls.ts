@@ -8,6 +8,10 @@ export function overlayUrls(slug: string) {
     cut: `${base}/cut`,
     nodes: `${base}/nodes`,
     links: `${base}/links`,
+    weak: `${base}/weak`,
+    moments: `${base}/moments`,
+    node: (name: string) => `${base}/nodes/${encodeURIComponent(name)}`,
+    link: (a: string, b: string) => `${base}/links/${encodeURIComponent(a)}/${encodeURIComponent(b)}`,
     events: `${base}/events`,
     codes: `${base}/joining-codes`,
     upgrades: `${base}/upgrades`,
@@ -17,6 +21,17 @@ export function overlayUrls(slug: string) {
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
     partners: `${base}/partners`,
+  }
+}
+
+/** Addresses of pages that tables and drawings lead to. */
+export function overlayPageUrls(slug: string) {
+  const base = `/overlays/${encodeURIComponent(slug)}`
+  return {
+    weak: `${base}/weak`,
+    nodes: `${base}/nodes`,
+    node: (name: string) => `${base}/nodes/${encodeURIComponent(name)}`,
+    link: (a: string, b: string) => `${base}/links/${encodeURIComponent(a)}/${encodeURIComponent(b)}`,
   }
 }
 
@@ -47,4 +62,13 @@ export function incidentUrls(number: number) {
 
 export function monthReportUrl(slug: string, month: string): string {
   return `/overlays/${encodeURIComponent(slug)}/report.pdf?month=${month}`
+}
+
+/** A part of a page's path as people write it; one that is no valid encoding stays as it is. */
+export function pathPart(part: string): string {
+  try {
+    return decodeURIComponent(part)
+  } catch {
+    return part
+  }
 }

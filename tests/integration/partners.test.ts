@@ -35,13 +35,17 @@ import { eventSchema, nodesSchema, type OverlayNode, readingSchema } from '@/lib
 import { followOverlay, listEvents } from '@/lib/data/events'
 import { getIncidentReport } from '@/lib/data/incident-report'
 import { getIncident, listIncidents, listOverlayIncidents } from '@/lib/data/incidents'
+import { listKeptMoments } from '@/lib/data/kept-moments'
+import { getLinkStory } from '@/lib/data/link-story'
 import { listLinks } from '@/lib/data/links'
 import { getMonthReport } from '@/lib/data/month-report'
+import { getNodeStory } from '@/lib/data/node-story'
 import { listNodes } from '@/lib/data/nodes'
 import { partnersSchema } from '@/lib/data/partner-dto'
 import { getReading } from '@/lib/data/readings'
 import { getReadings } from '@/lib/data/readings-list'
 import { previewRule } from '@/lib/data/rule-preview'
+import { getWeakPlace } from '@/lib/data/weak-place'
 import { listWindows } from '@/lib/data/windows'
 import { sql } from '@/lib/db'
 import { AppError } from '@/lib/http'
@@ -181,6 +185,10 @@ async function everythingFor(
     overlay: await getOverlay(await call(), slug),
     reading: await getReading(await call(), slug),
     readingThen: await getReading(await call(), slug, at),
+    weak: await getWeakPlace(await call(), slug, { last: '3h' }),
+    weakThen: await getWeakPlace(await call(), slug, { last: '3h', ...at }),
+    kept: await listKeptMoments(await call(), slug, { last: '3h' }),
+    ...(await storiesFor(team, role)),
     readings: await getReadings(await call(), slug, { from: at.at, to: new Date().toISOString() }),
     cut: await getCut(await call(), slug),
     cutThen: await getCut(await call(), slug, at),
@@ -207,6 +215,21 @@ async function everythingFor(
     ...answers,
     codes: await listJoiningCodes(await call(), slug),
     audit: await listAudit(await call(), {}),
+  }
+}
+
+/** Of a node of its own, one of another team, and a link between two teams. */
+async function storiesFor(team: Exclude<TeamName, 'eelholm'>, role: Reader['role']) {
+  const call = () => shared.callAs(team, role)
+  const { links } = await getCut(await call(), slug)
+  const { items } = await listNodes(await call(), slug, page)
+  const other = items.find(({ partner }) => partner)!.name
+  const own = items.find(({ partner }) => !partner)!.name
+  const last = { last: '3h' as const }
+  return {
+    ownNode: await getNodeStory(await call(), slug, own, last),
+    otherNode: await getNodeStory(await call(), slug, other, last),
+    link: await getLinkStory(await call(), slug, links[0]!, last),
   }
 }
 
@@ -269,6 +292,16 @@ describe('of another team’s nodes', () => {
     const leftOut = items.find(({ state }) => state === 'left-out')
     expect(detail).toContain(`${leftOut?.name} is left out`)
     expect(detail).not.toContain('follows')
+  })
+
+  it('what is kept of one is found by the name that is seen, and by no other', async () => {
+    const call = () => shared.callAs('skerry', 'viewer')
+    const { link } = await storiesFor('skerry', 'viewer')
+    expect([link.course.length, link.link?.crossing]).toEqual([1, true])
+    const { links } = await getWeakPlace(await call(), slug, { last: '3h' })
+    expect(links).toMatchObject([{ a: link.a.name, b: link.b.name, crossing: true }])
+    expect(links[0]?.course).toHaveLength(1)
+    await expect(getNodeStory(await call(), slug, 'tar-01', { last: '3h' })).rejects.toThrow('not-found')
   })
 
   it('each team has names of its own', async () => {

@@ -6,6 +6,22 @@ import type { CutCount } from './state'
 export const THRESHOLDS = [-2, -1.1, -0.5, -0.2, 0, 0.2, 0.5, 1.1, 2] as const
 
 /**
+ * A second cut is told of where at least so many nodes stand on another side of it than of the best, and on either side of it; the
+ * larger of the two. Fewer are loose ends, and what is counted of so few says too much of them.
+ */
+export const RUNNER_UP_LEAST_NODES = 5
+export const RUNNER_UP_LEAST_SHARE = 0.05
+
+interface Counted {
+  threshold: number
+  above: number
+  below: number
+  links: number
+  weight: number
+  ratio: number
+}
+
+/**
  * The best of the counted cuts by ratio (weight across ÷ nodes of the smaller side).
  * @returns undefined while not every attached agent heard has counted for this combination
  */
@@ -20,27 +36,48 @@ export function bestCut(
     return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []
   })
   if (counts.length === 0 || counts.length < attached.length) return undefined
-  let best: (CutCount & { ratio: number }) | null = null
-  const clean: CutCount['clean'] = []
-  thresholds.forEach((threshold, index) => {
+  const cuts = thresholds.flatMap((threshold, index): Counted[] => {
     const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
       counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
     const above = total((sums) => sums.above)
     const below = counts.length - above
-    if (above === 0 || below === 0) return
+    if (above === 0 || below === 0) return []
     const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
-    const ratio = weight / Math.min(above, below)
     const links = Math.round(total((sums) => sums.crossing) / 2)
-    if (links === 0) clean.push({ threshold, above })
-    // Of several that nothing crosses the evenest: a node alone is none of the sides then.
-    const isEvener =
-      best !== null && ratio === best.ratio && even(above, below) > even(best.above, best.below)
-    if (!best || ratio < best.ratio || isEvener)
-      best = { threshold, sweep, above, below, links, weight, ratio }
+    return [{ threshold, above, below, links, weight, ratio: weight / Math.min(above, below) }]
   })
+  let best: Counted | null = null
+  for (const cut of cuts) {
+    // Of several that nothing crosses the evenest: a node alone is none of the sides then.
+    const isEvener = best !== null && cut.ratio === best.ratio && even(cut) > even(best)
+    if (!best || cut.ratio < best.ratio || isEvener) best = cut
+  }
   if (!best) return null
-  const { ratio: _, ...cut } = best as CutCount & { ratio: number }
-  return { ...cut, clean }
+  const { ratio: _, threshold, ...cut } = best
+  const clean = cuts.filter(({ links }) => links === 0).map(({ threshold, above }) => ({ threshold, above }))
+  const other = runnerUpOf(cuts, best)
+  return { threshold, sweep, ...cut, clean, ...(other && { runnerUp: other }) }
 }
 
-const even = (above: number, below: number): number => Math.min(above, below)
+const even = ({ above, below }: Counted): number => Math.min(above, below)
+
+/**
+ * The best of the other cuts that are better than both their neighbours along the Fiedler values: a place of its own, not the slope of
+ * the best one. Null where there is none, or the overlay has come apart.
+ */
+function runnerUpOf(cuts: readonly Counted[], best: Counted): CutCount['runnerUp'] | null {
+  if (best.links === 0) return null
+  const nodes = best.above + best.below
+  const least = Math.max(RUNNER_UP_LEAST_NODES, RUNNER_UP_LEAST_SHARE * nodes)
+  // Thresholds with nobody between them make the same cut.
+  const distinct = cuts.filter(({ above }, index) => above !== cuts[index - 1]?.above)
+  const others = distinct.filter((cut, index) => {
+    const beside = [distinct[index - 1], distinct[index + 1]].filter((each) => each !== undefined)
+    const isOther = Math.abs(cut.above - best.above) >= least && even(cut) >= least
+    return isOther && beside.every(({ ratio }) => ratio > cut.ratio)
+  })
+  const [first, ...rest] = others
+  if (!first) return null
+  const { threshold, above, below, links, weight } = rest.reduce((a, b) => (b.ratio < a.ratio ? b : a), first)
+  return { threshold, above, below, links, weight }
+}

@@ -53,6 +53,8 @@ export interface CutCount {
   weight: number
   /** All thresholds that no link crosses, rising, each with the nodes above it. Absent in states of before it was kept. */
   clean?: { threshold: number; above: number }[]
+  /** The next best cut that parts the nodes otherwise; missing where none stands out. */
+  runnerUp?: { threshold: number; above: number; below: number; links: number; weight: number }
 }
 
 /** All the control loop remembers, as plain JSON: whoever leads next goes on from it. */

@@ -133,6 +133,17 @@ describe('a judgement', () => {
     expect(course.memory.cut?.nodes).toEqual({ a: 5, b: 3 })
   })
 
+  it('tells of the next best cut by the same sides, and of none where no single cut stands out', () => {
+    const runnerUp = { threshold: 1.1, above: 2, below: 6, links: 9, weight: 8.5 }
+    const course = new Course()
+    expect(course.next({ cut: { ...CUT, runnerUp } }).reading.runnerUp).toEqual({
+      sides: [6, 2],
+      links: 9,
+      weight: 8.5,
+    })
+    expect(course.next({ singleCut: false }).reading.runnerUp).toBeUndefined()
+  })
+
   it('does not put nodes on sides by values of before a change of sign', () => {
     const course = new Course()
     course.next({ cut: null }, { combination: null })

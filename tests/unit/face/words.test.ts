@@ -243,10 +243,11 @@ describe('small words', () => {
     )
     expect(overlayPages('harbourline').map((p) => `${p.letter} ${p.href}`)).toEqual([
       'A /overlays/harbourline',
-      'B /overlays/harbourline/nodes',
-      'C /overlays/harbourline/joining',
-      'D /overlays/harbourline/upkeep',
-      'E /overlays/harbourline/warnings',
+      'B /overlays/harbourline/weak',
+      'C /overlays/harbourline/nodes',
+      'D /overlays/harbourline/joining',
+      'E /overlays/harbourline/upkeep',
+      'F /overlays/harbourline/warnings',
     ])
   })
 

@@ -64,4 +64,44 @@ describe('the best of the counted cuts', () => {
     expect(bestCut(7, thresholds, [])).toBeUndefined()
     expect(bestCut(7, thresholds, heard(counts))).toBeNull()
   })
+
+  describe('and the next best that parts the nodes otherwise', () => {
+    /** Three groups in a row along the values, `between` links from one to the next, none that reaches further. */
+    const three = ([first, second, third]: number[], between: number[]) => {
+      const group = [first!, second!, third!].flatMap((nodes, place) =>
+        Array.from({ length: nodes }, () => place),
+      )
+      const counts = group.map((place, index) => {
+        const isFirst = group.indexOf(place) === index
+        // Between the groups their first nodes hold the links; within a group thresholds cut much more.
+        const at = (border: number) =>
+          isFirst && (place === border || place === border + 1) ? between[border]! : 0
+        return { above: [place > 0, place > 0, place > 1].map(Number), crossing: [at(0), at(0), at(1)] }
+      })
+      // The middle threshold halves the second group.
+      const half = first! + Math.floor(second! / 2)
+      for (const [index, count] of counts.entries()) {
+        count.above[1] = index >= half ? 1 : 0
+        count.crossing[1] = group[index] === 1 ? 3 : 0
+      }
+      return heard(counts)
+    }
+
+    it.each([
+      ['is told where it stands out', [12, 12, 12], [1, 3], { above: 12, below: 24, links: 3, weight: 3 }],
+      [
+        'is told whichever of them is the best',
+        [12, 12, 12],
+        [4, 1],
+        { above: 24, below: 12, links: 4, weight: 4 },
+      ],
+      ['is not told where it would part off fewer than five', [20, 12, 4], [1, 3], undefined],
+      ['is not told where it is the slope of the best', [12, 12, 12], [1, 40], undefined],
+      ['is not told once the overlay has come apart', [12, 12, 12], [0, 3], undefined],
+    ] as [string, number[], number[], object | undefined][])('%s', (_, groups, between, expected) => {
+      const runnerUp = bestCut(7, thresholds, three(groups, between))!.runnerUp
+      if (expected) expect(runnerUp).toMatchObject(expected)
+      else expect(runnerUp).toBeUndefined()
+    })
+  })
 })

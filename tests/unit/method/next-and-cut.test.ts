@@ -3,7 +3,7 @@ import { UndirectedGraph } from 'graphology'
 import { florentineFamilies } from 'graphology-generators/social'
 import { describe, expect, it, vi } from 'vitest'
 import { fromGraphology, type SparseGraph } from '@/lib/method/graph'
-import { ring, twoClusters } from '@/lib/method/graphs'
+import { clustersInRow, ring, twoClusters } from '@/lib/method/graphs'
 import { createRandom } from '@/lib/method/random'
 import { algebraicConnectivity, crossingOf, sweepCut } from '@/lib/method/spectrum'
 import { simulateOn } from '../../support/overlays'
@@ -31,8 +31,9 @@ describe('two clusters', () => {
     expect(estimate.singleCut).not.toBe(false)
   })
 
-  it('finds the joint', () => {
+  it('finds the joint, and no second place', () => {
     expect(estimate.cut).toMatchObject({ above: 12, below: 12, links: 3 })
+    expect(estimate.cut?.runnerUp).toBeUndefined()
   })
 })
 
@@ -46,6 +47,20 @@ describe('a ring, whose λ₂ is double', () => {
     expect(estimate.singleCut).toBe(false)
     expect(least).toBeGreaterThan(0.97 * exact.lambda3!)
     expect(estimate.lambda3AtMost! / exact.lambda2).toBeLessThan(1.2)
+  })
+})
+
+// At joints of 2 and 4 links the nine thresholds miss the second: the best one near it is crossed by 8.
+describe('three clusters in a row', () => {
+  const graph = clustersInRow({ perCluster: 12, degree: 5, joints: [3, 4] }, createRandom('row'))
+  const { cut } = readingsOf(graph, 'row').estimate
+
+  it('are cut at the thinner joint, with the other as the runner-up', () => {
+    expect(cut).toMatchObject({ links: 3, weight: 3, runnerUp: { links: 4, weight: 4 } })
+    const smaller = ({ above, below }: { above: number; below: number }) => Math.min(above, below)
+    expect([smaller(cut!), smaller(cut!.runnerUp!)]).toEqual([12, 12])
+    // At the other end: who is above the one is not who is above the other.
+    expect(Math.abs(cut!.above - cut!.runnerUp!.above)).toBe(12)
   })
 })
 

@@ -1,0 +1,8 @@
+export {
+  type ExplainingLabel,
+  type Explanation,
+  explainSides,
+  type LabelLeftOut,
+  LEFT_OUT_REASONS,
+  type SidedNode,
+} from './explain'
