@@ -15,6 +15,7 @@ const config = {
     '@mikro-orm/migrations',
     '@mikro-orm/postgresql',
     '@node-rs/argon2',
+    'esbuild',
     'graphile-worker',
     'nodemailer',
     'pdfkit',

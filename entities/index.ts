@@ -21,6 +21,7 @@ import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
 import { OverlayPartnerSchema } from './overlay-partner'
 import { PasswordLinkSchema } from './password-link'
+import { PlannedLinkSchema } from './planned-link'
 import { ReadingSchema } from './reading'
 import { SessionSchema } from './session'
 import { ShutAgentSchema } from './shut-agent'
@@ -55,6 +56,7 @@ export * from './overlay-key'
 export * from './overlay-key-ring'
 export * from './overlay-partner'
 export * from './password-link'
+export * from './planned-link'
 export * from './reading'
 export * from './session'
 export * from './shut-agent'
@@ -90,6 +92,7 @@ export const entities = [
   OverlayKeyRingSchema,
   OverlayPartnerSchema,
   PasswordLinkSchema,
+  PlannedLinkSchema,
   ReadingSchema,
   SessionSchema,
   ShutAgentSchema,

@@ -18,6 +18,7 @@ import {
   upgradesSchema,
 } from '@/lib/data/dto'
 import { partnersSchema } from '@/lib/data/partner-dto'
+import { reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
 import { type Incident, incidentsSchema, incidentWholeSchema } from '@/lib/data/warn-dto'
 import { linkStorySchema, momentsSchema, nodeStorySchema, weakPlaceSchema } from '@/lib/data/weak-dto'
@@ -141,6 +142,17 @@ export function useWindows(slug: string) {
 export function usePartners(slug: string | null) {
   const url = slug === null ? null : overlayUrls(slug).partners
   return useLive(url, () => getJson(url ?? '', partnersSchema), { streamingMs: UPKEEP_MS })
+}
+
+/** Worked out anew each time, which takes a moment. */
+const REINFORCEMENT_MS = 60_000
+
+export function useReinforcement(slug: string, query: string) {
+  const url = `${overlayUrls(slug).reinforcement}?${query}`
+  return useLive(url, () => getJson(url, reinforcementSchema), {
+    streamingMs: REINFORCEMENT_MS,
+    pollMs: REINFORCEMENT_MS,
+  })
 }
 
 const agentFileSchema = z.object({ version: z.string(), sha256: z.string(), bytes: z.number().int() })

@@ -1,5 +1,7 @@
 'use client'
 
+import { useRef } from 'react'
+import { TakeAlong } from '@/components/export/take-along'
 import { Freshness } from '@/components/live/freshness'
 import { useCut, useLinks, useNodes, useReading } from '@/components/live/hooks'
 import { Stretch } from '@/components/stretch/stretch'
@@ -10,6 +12,7 @@ export function StretchSheet({ slug }: { slug: string }) {
   const links = useLinks(slug)
   const cut = useCut(slug)
   const reading = useReading(slug)
+  const drawing = useRef<HTMLDivElement>(null)
   const sides = cut.data?.sides ?? reading.data?.sides ?? null
   const unplaced = (nodes.data ?? []).every((n) => n.value === null)
   const remark = unplaced ? (
@@ -27,12 +30,17 @@ export function StretchSheet({ slug }: { slug: string }) {
       <Freshness of={nodes} unless={reading} />
       {nodes.data ? (
         nodes.data.length > 0 ? (
-          <Stretch
-            nodes={nodes.data}
-            links={links.data ?? []}
-            reading={reading.data ?? null}
-            cut={cut.data ?? null}
-          />
+          <>
+            <div ref={drawing}>
+              <Stretch
+                nodes={nodes.data}
+                links={links.data ?? []}
+                reading={reading.data ?? null}
+                cut={cut.data ?? null}
+              />
+            </div>
+            <TakeAlong slug={slug} drawing={drawing} of="stretch" />
+          </>
         ) : (
           <EmptyState title="No nodes to draw yet.">They appear here as their agents enrol.</EmptyState>
         )

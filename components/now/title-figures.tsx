@@ -18,6 +18,11 @@ const LABELS: Record<Exclude<FigureText['id'], `piece-${number}`>, React.ReactNo
     </>
   ),
   check: 'same-walker check',
+  exact: (
+    <>
+      exact <Lambda n={2} />
+    </>
+  ),
   links: 'links measured',
   agents: 'agents heard',
   ends: 'loose ends',

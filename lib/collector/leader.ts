@@ -1,10 +1,13 @@
 import { type EntityManager, LockSession, type LockSettings, overlayLockKey } from '@/lib/db'
 import type { Log } from '@/lib/http/runtime'
 import { forkRandom, type Random } from '@/lib/method/random'
+import type { Reckoner } from '@/lib/reckon'
 import { type Clock, sleep } from './clock'
+import { ExactCheck } from './exact'
 import { findLed, LeaderStore } from './leader-store'
 import { Moments } from './moments'
 import { LEADERS_CHANNEL, ORDERS_CHANNEL } from './notices'
+import { PlannedLinks } from './planned'
 import { Term } from './term'
 import { Upkeep } from './upkeep'
 import { Usual } from './usual'
@@ -20,6 +23,8 @@ export interface LeaderComponents {
   clock: Clock
   random: Random
   log: Log
+  /** Works out what would hold this thread up. */
+  reckon: Reckoner['reckon']
   /** A name nobody else has, for each term. */
   newHolder(): string
 }
@@ -116,17 +121,21 @@ export class Leader {
   }
 
   #begin(overlayId: string, session: LockSession, signal: AbortSignal): void {
-    const { forkEm, clock, random, log, newHolder } = this.#components
+    const { forkEm, clock, random, log, reckon, newHolder } = this.#components
     const holder = newHolder()
     const store = new LeaderStore({ forkEm }, { overlayId, holder })
     const upkeep = new Upkeep({ forkEm, clock }, { overlayId, holder })
     const moments = new Moments({ forkEm }, { overlayId, holder })
+    const planned = new PlannedLinks({ forkEm }, { overlayId, holder })
+    const exact = new ExactCheck({ reckon })
     const usual = new Usual({ forkEm, clock, log }, { overlayId })
     const components = {
       store,
       usual,
       upkeep,
       moments,
+      planned,
+      exact,
       clock,
       random: forkRandom(random, this.#count++),
       log,

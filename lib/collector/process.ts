@@ -3,6 +3,7 @@ import { randomBytes, randomUUID } from 'node:crypto'
 import { databaseUrl, forkEm, subscribe } from '@/lib/db'
 import { getRuntime } from '@/lib/http/runtime'
 import { randomFromState } from '@/lib/method/random'
+import { getReckoner } from '@/lib/reckon/process'
 import type { Clock } from './clock'
 import { Feed } from './feed'
 import { Ingest } from './ingest'
@@ -54,6 +55,7 @@ export function startLeader(signal: AbortSignal): Leader {
         words.readUInt32LE(12),
       ),
       log,
+      reckon: (name, asked, until) => getReckoner().reckon(name, asked, until),
       newHolder: randomUUID,
     },
     { url: databaseUrl() },

@@ -11,12 +11,14 @@ import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
 import { type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
 import { type Clock, sleep } from './clock'
+import type { ExactCheck } from './exact'
 import { fleetFacts, withFleetFacts } from './fleet-facts'
 import { type JudgedAgent, judge } from './judge'
 import type { LeaderStore, Loaded, LoadedAgent, Round } from './leader-store'
 import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
+import type { PlannedLinks } from './planned'
 import type { KeptReading } from './reading'
 import type { Upkeep } from './upkeep'
 import { type Usual, usualNow } from './usual'
@@ -29,6 +31,8 @@ export interface TermComponents {
   usual: Pick<Usual, 'at'>
   upkeep: Pick<Upkeep, 'look'>
   moments: Pick<Moments, 'look'>
+  planned: Pick<PlannedLinks, 'look'>
+  exact: Pick<ExactCheck, 'latest' | 'look'>
   clock: Clock
   random: Random
   log: Log
@@ -137,7 +141,7 @@ export class Term {
   }
 
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
-    const { clock, store, usual, upkeep, moments, log } = this.#components
+    const { clock, store, usual, upkeep, moments, planned, exact, log } = this.#components
     const startedMs = clock.monotonicMs()
     const loaded = await store.load()
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
@@ -165,6 +169,17 @@ export class Term {
       .look(withoutLeftOut(loaded, round.leftOut), round.state.memory, reading)
       .catch((error: unknown) =>
         log.error({ overlayId: this.#overlayId, err: error }, 'the moment could not be kept'),
+      )
+    await planned
+      .look(loaded, reading)
+      .catch((error: unknown) =>
+        log.error({ overlayId: this.#overlayId, err: error }, 'planned links could not be followed'),
+      )
+    // Not waited for: a thread of its own works it out, and a later reading says it.
+    void exact
+      .look(withoutLeftOut(loaded, round.leftOut), reading)
+      .catch((error: unknown) =>
+        log.warn({ overlayId: this.#overlayId, err: error }, 'the exact figure could not be worked out'),
       )
     return null
   }
@@ -211,7 +226,10 @@ export class Term {
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
     const told: KeptReading = {
-      ...withFleetFacts(reading, fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs)),
+      ...withFleetFacts(
+        { ...reading, exact: this.#components.exact.latest(atMs) },
+        fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
+      ),
       ...(loaded.isShared && { facts }),
     }
     const round: Round = {

@@ -95,6 +95,21 @@ export const readingSchema = z.object({
   }),
   /** What the links measured are, over the agents heard; "mixed" where they differ, null where none says. */
   linkKind: z.enum(['path', 'path-with-view', 'connection', 'mixed']).nullable().optional(),
+  /** Where links are named: λ₂ of those, worked out exactly about once a minute, beside the reading of that moment. */
+  exact: z
+    .object({
+      at,
+      lambda2: z.number(),
+      links: z.number().int(),
+      /** Of the links those that only one of two heard ends names. */
+      oneEnd: z.number().int(),
+      /** The reading that it was compared with. */
+      reading: z.number().nullable(),
+      /** "apart": twice in a row they were further from each other than noise explains. */
+      check: z.enum(CHECKS),
+    })
+    .nullable()
+    .optional(),
   /** Seedings the reading rests on. */
   seedings: z.array(z.number().int()),
   /** The last good value and when, while the reading is withheld. */

@@ -22,6 +22,12 @@ export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } 
 export { endPartnership } from './partner-end'
 export { changePart, listPartners } from './partners'
 export { readPasswordLink, setPassword } from './password-links'
+export {
+  getReinforcement,
+  markJoined,
+  planLink,
+  withdrawLink,
+} from './reinforcement'
 export { testChannel, testWebhook } from './send-test'
 export { countAttempt, signIn, signOut } from './sign-in'
 export { getSigningKey, rotateSigningKey } from './signing-key'

@@ -25,6 +25,8 @@ export interface Sight {
   isWhole: boolean
   /** It is that of the team that owns the overlay. */
   isOwners: boolean
+  /** The teams as which the reader looks. */
+  viewers: readonly string[]
   isOwn(agentId: string): boolean
   nameOf(agent: { agentId: string; name: string }): string
   labelsOf(agent: { agentId: string; labels: Labels }): Record<string, string>
@@ -84,6 +86,7 @@ export function createSight({ secret, ownerTeamId, viewers, faces, sharedKeys }:
   return {
     isWhole,
     isOwners: own.has(ownerTeamId),
+    viewers,
     isOwn: (agentId) => isWhole || isOwn(byAgent.get(agentId)),
     nameOf: ({ agentId, name }) => {
       const face = byAgent.get(agentId)

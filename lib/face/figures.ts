@@ -2,7 +2,7 @@ import type { Reading } from '@/lib/data/dto'
 import { formatCount, formatHigh, formatInterval, formatReading, formatShare } from './format'
 
 export interface FigureText {
-  id: 'reading' | 'usual' | 'next' | 'check' | 'links' | 'agents' | 'ends' | `piece-${number}`
+  id: 'reading' | 'usual' | 'next' | 'check' | 'exact' | 'links' | 'agents' | 'ends' | `piece-${number}`
   /** Of a piece: which it is. */
   label?: string
   value: string
@@ -21,6 +21,7 @@ export function titleFigures(reading: Reading): FigureText[] {
     usualFigure(reading),
     nextFigure(reading),
     checkFigure(reading),
+    ...exactFigure(reading),
     linksFigure(reading),
     agentsFigure(reading),
     ...endsFigure(reading),
@@ -100,6 +101,25 @@ function checkRemark({ core, check, data, level }: Reading): string {
   if (check === 'agrees') return core ? 'agrees, loose ends and all' : 'agrees'
   if (check === 'unsure') return data === 'settling' ? 'settling with the reading' : 'not in line yet'
   return level === 'split' ? 'as good as zero' : 'not compared'
+}
+
+/** Where links are named: what they come to, worked out without any walkers. */
+function exactFigure({ exact }: Reading): FigureText[] {
+  if (!exact) return []
+  const { lambda2, links, oneEnd, reading, check } = exact
+  const value = formatReading(lambda2)
+  const of = `of ${formatCount(links, 'named link')}${oneEnd > 0 ? `, ${oneEnd} by one end only` : ''}`
+  if (check !== 'apart' || reading === null)
+    return [{ id: 'exact', value, remark: check === 'agrees' ? `agrees; ${of}` : of }]
+  const by = lambda2 > 0 ? ` by ${formatShare(Math.abs(reading - lambda2) / lambda2)}` : ''
+  return [
+    {
+      id: 'exact',
+      value,
+      remark: `the reading differs${by}: links named are not those measured, or an agent errs; ${of}`,
+      strong: true,
+    },
+  ]
 }
 
 function linksFigure({ coverage }: Reading): FigureText {

@@ -12,11 +12,12 @@ export function overlayPages(slug: string): PageEntry[] {
   return [
     { letter: 'A', label: 'Now', href: base },
     { letter: 'B', label: 'Weak place', href: `${base}/weak` },
-    { letter: 'C', label: 'Nodes', href: `${base}/nodes` },
-    { letter: 'D', label: 'Joining', href: `${base}/joining`, operator: true },
-    { letter: 'E', label: 'Upkeep', href: `${base}/upkeep` },
-    { letter: 'F', label: 'Warnings', href: `${base}/warnings` },
-    { letter: 'I', label: 'Partners', href: `${base}/partners` },
+    { letter: 'C', label: 'Reinforcement', href: `${base}/reinforcement` },
+    { letter: 'D', label: 'Nodes', href: `${base}/nodes` },
+    { letter: 'E', label: 'Joining', href: `${base}/joining`, operator: true },
+    { letter: 'F', label: 'Upkeep', href: `${base}/upkeep` },
+    { letter: 'G', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'H', label: 'Partners', href: `${base}/partners` },
   ]
 }
 

@@ -20,6 +20,9 @@ export function overlayUrls(slug: string) {
     rules: `${base}/rules`,
     rulePreview: `${base}/rules/preview`,
     windows: `${base}/windows`,
+    reinforcement: `${base}/reinforcement`,
+    exported: (file: string) => `${base}/export/${file}`,
+    plannedLinks: `${base}/reinforcement/planned`,
     partners: `${base}/partners`,
   }
 }

@@ -1,7 +1,9 @@
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest'
 import { type Control, ControlSchema, OverlayEventSchema, ReadingSchema } from '@/entities'
+import { ExactCheck } from '@/lib/collector/exact'
 import { LeaderStore } from '@/lib/collector/leader-store'
 import { Moments } from '@/lib/collector/moments'
+import { PlannedLinks } from '@/lib/collector/planned'
 import { systemClock } from '@/lib/collector/process'
 import { Term } from '@/lib/collector/term'
 import { Upkeep } from '@/lib/collector/upkeep'
@@ -78,6 +80,8 @@ const termOf = (overlayId: string, store: Pick<LeaderStore, 'claim' | 'load' | '
       usual: new Usual({ forkEm, clock: systemClock, log }, { overlayId }),
       upkeep: new Upkeep({ forkEm, clock: systemClock }, { overlayId, holder: 'one' }),
       moments: new Moments({ forkEm }, { overlayId, holder: 'one' }),
+      planned: new PlannedLinks({ forkEm }, { overlayId, holder: 'one' }),
+      exact: new ExactCheck({ reckon: () => Promise.reject(new Error('not asked for')) }),
       clock: systemClock,
       random: createRandom(3),
       log,

@@ -33,6 +33,7 @@ import {
 import { getCut } from '@/lib/data/cut'
 import { eventSchema, nodesSchema, type OverlayNode, readingSchema } from '@/lib/data/dto'
 import { followOverlay, listEvents } from '@/lib/data/events'
+import { EXPORTED_FILES, exportOverlay } from '@/lib/data/export'
 import { getIncidentReport } from '@/lib/data/incident-report'
 import { getIncident, listIncidents, listOverlayIncidents } from '@/lib/data/incidents'
 import { listKeptMoments } from '@/lib/data/kept-moments'
@@ -44,6 +45,7 @@ import { listNodes } from '@/lib/data/nodes'
 import { partnersSchema } from '@/lib/data/partner-dto'
 import { getReading } from '@/lib/data/readings'
 import { getReadings } from '@/lib/data/readings-list'
+import { getReinforcement, withdrawLink } from '@/lib/data/reinforcement'
 import { previewRule } from '@/lib/data/rule-preview'
 import { getWeakPlace } from '@/lib/data/weak-place'
 import { listWindows } from '@/lib/data/windows'
@@ -112,6 +114,9 @@ const ATTEMPTS: Partial<Record<ActionName, (call: Call, own: string) => Promise<
   'node.list': (call) => listNodes(call, slug, page),
   'link.list': (call) => listLinks(call, slug, page),
   'event.read': (call) => listEvents(call, slug),
+  'overlay.export': (call) => exportOverlay(call, slug, 'overlay.graphml'),
+  'reinforcement.read': (call) => getReinforcement(call, slug, { links: 1 }),
+  'reinforcement.plan': (call) => withdrawLink(call, slug, NOWHERE),
   'joining-code.list': (call) => listJoiningCodes(call, slug),
   'joining-code.create': (call) => createJoiningCode(call, slug, { uses: 1, expiresInHours: 1 }),
   'joining-code.revoke': (call) => revokeJoiningCode(call, slug, NOWHERE),
@@ -138,6 +143,7 @@ const BEYOND: Partial<Record<ActionName, string>> = {
   'joining-code.revoke': 'not-found',
   'upgrade.offer': 'invalid-input',
   'upgrade.halt': 'not-found',
+  'reinforcement.plan': 'not-found',
 }
 
 describe('each cell of the table', () => {
@@ -146,7 +152,7 @@ describe('each cell of the table', () => {
   it.each(cells)('$row.action, as $reader.title', async ({ row, reader }) => {
     const own = reader.team === 'owner' ? 'tar-01' : 'ske-01'
     const attempt = ATTEMPTS[row.action]!
-    const call = await readerCall(reader)
+    const call = readerCall(reader)
     const { refused } = await tried(call, (inside) => attempt(inside, own))
     if (cellOf(row, reader) !== null) return expect(refused).toBe(BEYOND[row.action])
     // Nobody outside learns that there is such an overlay.
@@ -167,7 +173,7 @@ async function everythingFor(
 ): Promise<Record<string, unknown>> {
   const at = { at: shared.at.toISOString() }
   const call = () => shared.callAs(team, role)
-  const stream = await followOverlay(await call(), slug, {
+  const stream = await followOverlay(call(), slug, {
     forkEm: async () => em(),
     now: () => new Date(),
   })
@@ -181,55 +187,66 @@ async function everythingFor(
   const month = shared.at.toISOString().slice(0, 7)
   const preview = { rule: { ...rule, isOn: true }, range: '24h' as const }
   const answers = {
-    overlays: await listOverlays(await call()),
-    overlay: await getOverlay(await call(), slug),
-    reading: await getReading(await call(), slug),
-    readingThen: await getReading(await call(), slug, at),
-    weak: await getWeakPlace(await call(), slug, { last: '3h' }),
-    weakThen: await getWeakPlace(await call(), slug, { last: '3h', ...at }),
-    kept: await listKeptMoments(await call(), slug, { last: '3h' }),
+    overlays: await listOverlays(call()),
+    overlay: await getOverlay(call(), slug),
+    reading: await getReading(call(), slug),
+    readingThen: await getReading(call(), slug, at),
+    weak: await getWeakPlace(call(), slug, { last: '3h' }),
+    weakThen: await getWeakPlace(call(), slug, { last: '3h', ...at }),
+    kept: await listKeptMoments(call(), slug, { last: '3h' }),
     ...(await storiesFor(team, role)),
-    readings: await getReadings(await call(), slug, { from: at.at, to: new Date().toISOString() }),
-    cut: await getCut(await call(), slug),
-    cutThen: await getCut(await call(), slug, at),
-    nodes: await listNodes(await call(), slug, page),
-    nodesThen: await listNodes(await call(), slug, { ...page, ...at }),
-    links: await listLinks(await call(), slug, page),
-    events: await listEvents(await call(), slug),
+    ...(await filesFor(team, role)),
+    reinforcement: await getReinforcement(call(), slug, { links: 3 }),
+    readings: await getReadings(call(), slug, { from: at.at, to: new Date().toISOString() }),
+    cut: await getCut(call(), slug),
+    cutThen: await getCut(call(), slug, at),
+    nodes: await listNodes(call(), slug, page),
+    nodesThen: await listNodes(call(), slug, { ...page, ...at }),
+    links: await listLinks(call(), slug, page),
+    events: await listEvents(call(), slug),
     streamedReading: await stream.load('reading'),
     streamedEvents: await stream.load('event'),
-    incidents: await listIncidents(await call(), page),
-    overlayIncidents: await listOverlayIncidents(await call(), slug, page),
-    incident: await getIncident(await call(), number),
-    incidentReport: await getIncidentReport(await call(), number, null),
-    monthReport: await getMonthReport(await call(), slug, month),
-    rules: await listRules(await call(), slug),
-    preview: await previewRule(await call(), slug, preview),
-    windows: await listWindows(await call(), slug),
-    upgrades: await getUpgrades(await call(), slug),
-    partners: await listPartners(await call(), slug),
-    deliveries: await listDeliveries(await call(), { limit: 100 }),
+    incidents: await listIncidents(call(), page),
+    overlayIncidents: await listOverlayIncidents(call(), slug, page),
+    incident: await getIncident(call(), number),
+    incidentReport: await getIncidentReport(call(), number, null),
+    monthReport: await getMonthReport(call(), slug, month),
+    rules: await listRules(call(), slug),
+    preview: await previewRule(call(), slug, preview),
+    windows: await listWindows(call(), slug),
+    upgrades: await getUpgrades(call(), slug),
+    partners: await listPartners(call(), slug),
+    deliveries: await listDeliveries(call(), { limit: 100 }),
   }
   if (role === 'viewer') return answers
   return {
     ...answers,
-    codes: await listJoiningCodes(await call(), slug),
-    audit: await listAudit(await call(), {}),
+    codes: await listJoiningCodes(call(), slug),
+    audit: await listAudit(call(), {}),
   }
+}
+
+async function filesFor(team: TeamName, role: Reader['role']): Promise<Record<string, string>> {
+  const texts: Record<string, string> = {}
+  for (const file of EXPORTED_FILES) {
+    const { bytes } = await exportOverlay(shared.callAs(team, role), slug, file)
+    texts[file] = new TextDecoder().decode(bytes)
+  }
+  return texts
 }
 
 /** Of a node of its own, one of another team, and a link between two teams. */
 async function storiesFor(team: Exclude<TeamName, 'eelholm'>, role: Reader['role']) {
   const call = () => shared.callAs(team, role)
-  const { links } = await getCut(await call(), slug)
-  const { items } = await listNodes(await call(), slug, page)
+  const { links } = await getCut(call(), slug)
+  const { items } = await listNodes(call(), slug, page)
   const other = items.find(({ partner }) => partner)!.name
   const own = items.find(({ partner }) => !partner)!.name
   const last = { last: '3h' as const }
   return {
-    ownNode: await getNodeStory(await call(), slug, own, last),
-    otherNode: await getNodeStory(await call(), slug, other, last),
-    link: await getLinkStory(await call(), slug, links[0]!, last),
+    ownNode: await getNodeStory(call(), slug, own, last),
+    otherNode: await getNodeStory(call(), slug, other, last),
+    link: await getLinkStory(call(), slug, links[0]!, last),
   }
 }
 
@@ -256,7 +273,7 @@ describe('of another team’s nodes', () => {
 
   it('state, side, value and links are seen, under one name everywhere', async () => {
     const call = () => shared.callAs('skerry', 'viewer')
-    const { items } = nodesSchema.parse(await listNodes(await call(), slug, page))
+    const { items } = nodesSchema.parse(await listNodes(call(), slug, page))
     const partner = items.filter((node) => node.partner)
     expect(partner).toHaveLength(3)
     expect(Object.keys(partner[0]!).sort()).toEqual(
@@ -281,14 +298,14 @@ describe('of another team’s nodes', () => {
     ])
     const [onA] = partner.filter(({ side }) => side === 'a')
     const names = new Set(items.map(({ name }) => name))
-    const { links } = await getCut(await call(), slug)
+    const { links } = await getCut(call(), slug)
     expect(links).toMatchObject([{ crossing: true, weight: 1 }])
-    const before = await getCut(await call(), slug, { at: shared.at.toISOString() })
+    const before = await getCut(call(), slug, { at: shared.at.toISOString() })
     const said = [...links, ...before.links].flatMap(({ a, b }) => [a, b])
     expect(said.filter((name) => !names.has(name))).toEqual([])
     expect(said.some((name) => name.startsWith('partner node '))).toBe(true)
     expect(onA?.name).toMatch(/^partner node [0-9a-z]{4}$/)
-    const { detail } = await getReading(await call(), slug)
+    const { detail } = await getReading(call(), slug)
     const leftOut = items.find(({ state }) => state === 'left-out')
     expect(detail).toContain(`${leftOut?.name} is left out`)
     expect(detail).not.toContain('follows')
@@ -298,15 +315,15 @@ describe('of another team’s nodes', () => {
     const call = () => shared.callAs('skerry', 'viewer')
     const { link } = await storiesFor('skerry', 'viewer')
     expect([link.course.length, link.link?.crossing]).toEqual([1, true])
-    const { links } = await getWeakPlace(await call(), slug, { last: '3h' })
+    const { links } = await getWeakPlace(call(), slug, { last: '3h' })
     expect(links).toMatchObject([{ a: link.a.name, b: link.b.name, crossing: true }])
     expect(links[0]?.course).toHaveLength(1)
-    await expect(getNodeStory(await call(), slug, 'tar-01', { last: '3h' })).rejects.toThrow('not-found')
+    await expect(getNodeStory(call(), slug, 'tar-01', { last: '3h' })).rejects.toThrow('not-found')
   })
 
   it('each team has names of its own', async () => {
     const namesFor = async (team: TeamName) =>
-      (await listNodes(await shared.callAs(team, 'viewer'), slug, page)).items.flatMap((node) =>
+      (await listNodes(shared.callAs(team, 'viewer'), slug, page)).items.flatMap((node) =>
         node.partner ? [node.name] : [],
       )
     const [skerry, pinnet, harbourline] = [
@@ -319,10 +336,10 @@ describe('of another team’s nodes', () => {
   })
 
   it('pages follow the names that are seen', async () => {
-    const whole = (await listNodes(await shared.callAs('pinnet', 'viewer'), slug, page)).items
+    const whole = (await listNodes(shared.callAs('pinnet', 'viewer'), slug, page)).items
     const paged: OverlayNode[] = []
     for (let after: string | undefined; ; ) {
-      const next = await listNodes(await shared.callAs('pinnet', 'viewer'), slug, { after, limit: 2 })
+      const next = await listNodes(shared.callAs('pinnet', 'viewer'), slug, { after, limit: 2 })
       paged.push(...next.items)
       if (next.next === null) break
       after = next.next
@@ -333,24 +350,23 @@ describe('of another team’s nodes', () => {
 
   it('labels are found by nobody else, until their team shows them', async () => {
     const withLabel = async () =>
-      (await listNodes(await shared.callAs('skerry', 'viewer'), slug, { ...page, label: 'office=Tarnwick' }))
-        .items
+      (await listNodes(shared.callAs('skerry', 'viewer'), slug, { ...page, label: 'office=Tarnwick' })).items
     expect(await withLabel()).toEqual([])
-    await changePart(await shared.callAs('harbourline', 'owner'), slug, { sharedLabels: ['office', 'shore'] })
+    await changePart(shared.callAs('harbourline', 'owner'), slug, { sharedLabels: ['office', 'shore'] })
     expect((await withLabel()).map(({ labels }) => labels)).toEqual([
       { office: 'Tarnwick', shore: 'north' },
       { office: 'Tarnwick', shore: 'north' },
     ])
-    const detailFor = async () => (await getReading(await shared.callAs('skerry', 'viewer'), slug)).detail
+    const detailFor = async () => (await getReading(shared.callAs('skerry', 'viewer'), slug)).detail
     expect(await detailFor()).not.toContain('follows')
-    await changePart(await shared.callAs('pinnet', 'owner'), slug, { sharedLabels: ['office', 'shore'] })
+    await changePart(shared.callAs('pinnet', 'owner'), slug, { sharedLabels: ['office', 'shore'] })
     expect(await detailFor()).toContain('It follows the label office: Tarnwick on one side')
-    expect((await getCut(await shared.callAs('skerry', 'viewer'), slug)).follows).toEqual({
+    expect((await getCut(shared.callAs('skerry', 'viewer'), slug)).follows).toEqual({
       ...{ key: 'shore', a: ['north'], b: ['south'] },
     })
     for (const team of ['harbourline', 'pinnet'] as const)
-      await changePart(await shared.callAs(team, 'owner'), slug, { sharedLabels: [] })
-    expect((await getCut(await shared.callAs('skerry', 'viewer'), slug)).follows).toBeNull()
+      await changePart(shared.callAs(team, 'owner'), slug, { sharedLabels: [] })
+    expect((await getCut(shared.callAs('skerry', 'viewer'), slug)).follows).toBeNull()
   })
 
   it('agents find addresses in the directory, and no names that are another team’s', async () => {
@@ -370,7 +386,7 @@ describe('of another team’s nodes', () => {
 
 describe('another team’s agent', () => {
   const seenBy = async (team: TeamName, agentId: string) => {
-    const { items } = await listNodes(await shared.callAs(team, 'viewer'), slug, page)
+    const { items } = await listNodes(shared.callAs(team, 'viewer'), slug, page)
     const own = (await sql<{ name: string }>(em(), 'select name from agents where id = ?', [agentId]))[0]!
       .name
     const state = items.filter((node) => node.partner && node.side === 'a')
@@ -381,25 +397,25 @@ describe('another team’s agent', () => {
     const { partnerNames } = await seenBy('skerry', shared.agents['tar-01']!.agentId)
     for (const name of partnerNames)
       for (const act of [revokeAgent, retireAgent, readmitAgent])
-        expect(await tried(await shared.callAs('skerry', 'owner'), (call) => act(call, slug, name))).toEqual({
+        expect(await tried(shared.callAs('skerry', 'owner'), (call) => act(call, slug, name))).toEqual({
           refused: 'forbidden',
         })
     // A partner does not even learn that a node of that name exists.
     expect(
-      await tried(await shared.callAs('skerry', 'owner'), (call) => revokeAgent(call, slug, 'tar-01')),
+      await tried(shared.callAs('skerry', 'owner'), (call) => revokeAgent(call, slug, 'tar-01')),
     ).toEqual({
       refused: 'not-found',
     })
-    const { items } = await listNodes(await shared.callAs('harbourline', 'operator'), slug, page)
+    const { items } = await listNodes(shared.callAs('harbourline', 'operator'), slug, page)
     const leftOut = items.find(({ state }) => state === 'left-out')!
-    const readmitted = await tried(await shared.callAs('harbourline', 'operator'), (call) =>
+    const readmitted = await tried(shared.callAs('harbourline', 'operator'), (call) =>
       readmitAgent(call, slug, leftOut.name),
     )
     expect(readmitted.value).toMatchObject({ name: leftOut.name, partner: true, state: 'heard' })
   })
 
   it('is not named where its name or key is asked for', async () => {
-    const { code } = await createJoiningCode(await shared.callAs('pinnet', 'operator'), slug, {
+    const { code } = await createJoiningCode(shared.callAs('pinnet', 'operator'), slug, {
       uses: 3,
       expiresInHours: 1,
     })
@@ -415,9 +431,9 @@ describe('another team’s agent', () => {
 
 describe('an invitation', () => {
   const invite = async () =>
-    createInvitation(await shared.callAs('harbourline', 'owner'), slug, { expiresInHours: 1 })
+    createInvitation(shared.callAs('harbourline', 'owner'), slug, { expiresInHours: 1 })
   const join = async (code: string, team: TeamName = 'eelholm') =>
-    tried(await shared.callAs(team, 'owner'), (call) => joinAsPartner(call, { code, contact: null }))
+    tried(shared.callAs(team, 'owner'), (call) => joinAsPartner(call, { code, contact: null }))
 
   it('is kept as a fingerprint only, and opens the overlay to one team', async () => {
     const { code, hint } = await invite()
@@ -440,7 +456,7 @@ describe('an invitation', () => {
       `select hint from overlay_partners where state = 'accepted'`,
     )
     const { invitations } = partnersSchema.parse(
-      await listPartners(await shared.callAs('harbourline', 'owner'), slug),
+      await listPartners(shared.callAs('harbourline', 'owner'), slug),
     )
     expect(
       invitations
@@ -449,7 +465,7 @@ describe('an invitation', () => {
         .sort(),
     ).toEqual(used.map(({ hint }) => hint).sort())
     const fresh = await invite()
-    const operator = await shared.callAs('eelholm', 'operator')
+    const operator = shared.callAs('eelholm', 'operator')
     expect(
       await tried(operator, (call) =>
         joinAsPartner(call, { code: fresh.code, team: 'eelholm', contact: null }),
@@ -462,13 +478,12 @@ describe('an invitation', () => {
 
 describe('each team', () => {
   it('is warned by rules of its own, and changes no other team’s', async () => {
-    const rulesOf = async (team: TeamName) =>
-      (await listRules(await shared.callAs(team, 'operator'), slug)).items
+    const rulesOf = async (team: TeamName) => (await listRules(shared.callAs(team, 'operator'), slug)).items
     const skerry = await rulesOf('skerry')
     const pinnet = await rulesOf('pinnet')
     expect(skerry.length).toBe(DEFAULT_RULES.length + 1)
     expect(skerry.filter(({ id }) => pinnet.some((other) => other.id === id))).toEqual([])
-    const other = await tried(await shared.callAs('skerry', 'operator'), (call) =>
+    const other = await tried(shared.callAs('skerry', 'operator'), (call) =>
       changeRule(call, slug, pinnet[0]!.id, { isOn: false }),
     )
     expect(other.refused).toBe('not-found')
@@ -477,7 +492,7 @@ describe('each team', () => {
   it('has incidents that no other team opens', async () => {
     for (const team of ['harbourline', 'skerry', 'pinnet'] as const)
       for (const reader of ['harbourline', 'skerry', 'pinnet', 'eelholm'] as const) {
-        const read = await tried(await shared.callAs(reader, 'owner'), (call) =>
+        const read = await tried(shared.callAs(reader, 'owner'), (call) =>
           getIncident(call, shared.incidents[team]),
         )
         expect(read.refused, `${reader} reads of ${team}`).toBe(reader === team ? undefined : 'not-found')
@@ -486,7 +501,7 @@ describe('each team', () => {
 
   it('sees the others’ contacts and how many of their agents are heard', async () => {
     const { teams, invitations, may } = partnersSchema.parse(
-      await listPartners(await shared.callAs('skerry', 'owner'), slug),
+      await listPartners(shared.callAs('skerry', 'owner'), slug),
     )
     expect(
       teams.map(({ team, standing, yours, contact, joined, heard }) => [
@@ -503,7 +518,7 @@ describe('each team', () => {
       ['pinnet', 'partner', false, 'pinnet desk', 1, 1],
     ])
     expect([invitations, may]).toEqual([null, { invite: false, change: true, end: true }])
-    const overlay = await getOverlay(await shared.callAs('skerry', 'viewer'), slug)
+    const overlay = await getOverlay(shared.callAs('skerry', 'viewer'), slug)
     expect(overlay).toMatchObject({
       ...{ standing: 'partner', role: 'viewer', runbookUrl: null, shared: true, contact: 'Harbourline desk' },
       as: { slug: 'skerry', name: 'Skerry' },
@@ -514,7 +529,7 @@ describe('each team', () => {
 
 describe('the end of a partnership', () => {
   it('takes the team’s agents, codes, rules and windows with it, and leaves what was recorded', async () => {
-    const before = await shared.callAs('skerry', 'owner')
+    const before = shared.callAs('skerry', 'owner')
     const ended = await stored(before, (call) => endPartnership(call, slug, 'skerry'))
     expect(ended).toEqual({ team: { slug: 'skerry', name: 'Skerry' }, agents: 2 })
     const states = await sql<{ name: string; state: string }>(
@@ -535,14 +550,14 @@ describe('the end of a partnership', () => {
       [...of, ...of, ...of, ...of],
     )
     expect(left).toEqual({ rules: 0, codes: 0, incidents: 0, sessions: 0 })
-    expect(
-      (await tried(await shared.callAs('skerry', 'owner'), (call) => getReading(call, slug))).refused,
-    ).toBe('not-found')
-    expect((await listOverlays(await shared.callAs('skerry', 'viewer'))).map((one) => one.slug)).toEqual([])
-    const incident = await getIncident(await shared.callAs('skerry', 'viewer'), shared.incidents.skerry)
+    expect((await tried(shared.callAs('skerry', 'owner'), (call) => getReading(call, slug))).refused).toBe(
+      'not-found',
+    )
+    expect((await listOverlays(shared.callAs('skerry', 'viewer'))).map((one) => one.slug)).toEqual([])
+    const incident = await getIncident(shared.callAs('skerry', 'viewer'), shared.incidents.skerry)
     expect(incident.state).toBe('resolved')
     expect(JSON.stringify(incident)).not.toContain('tar-01')
-    const events = (await listEvents(await shared.callAs('pinnet', 'viewer'), slug)).map((one) =>
+    const events = (await listEvents(shared.callAs('pinnet', 'viewer'), slug)).map((one) =>
       eventSchema.parse(one),
     )
     expect(events.map(({ text }) => text)).toContain('Skerry no longer shares the overlay')
@@ -567,7 +582,7 @@ describe('the end of a partnership', () => {
 
   it('leaves nothing to a reading of before that the other teams may not see', async () => {
     const reading = readingSchema.parse(
-      await getReading(await shared.callAs('pinnet', 'viewer'), slug, { at: shared.at.toISOString() }),
+      await getReading(shared.callAs('pinnet', 'viewer'), slug, { at: shared.at.toISOString() }),
     )
     expect(PRIVATE.skerry.filter((word) => JSON.stringify(reading).includes(word))).toEqual([])
   })

@@ -4,6 +4,7 @@ import { Leader } from '@/lib/collector/leader'
 import { systemClock } from '@/lib/collector/process'
 import { Listener } from '@/lib/db'
 import { createRandom } from '@/lib/method/random'
+import { getReckoner } from '@/lib/reckon/process'
 import type { TestDatabase } from './database'
 import { until } from './until'
 
@@ -39,6 +40,7 @@ export function startTestLeader(
         warn: (data) => failures.push(data),
         error: (data) => failures.push(data),
       },
+      reckon: (name, asked, until) => getReckoner().reckon(name, asked, until),
       newHolder: randomUUID,
     },
     { url: database.url, sessionTimeoutMs: SESSION_TIMEOUT_MS },

@@ -1,4 +1,6 @@
 import { POST as leaveRoute } from '@/app/api/agent/leave/route'
+import { userCaller } from '@/lib/auth/authenticate'
+import type { UserCaller } from '@/lib/auth/caller'
 import type { Role } from '@/lib/auth/permissions'
 import { enterEvent } from '@/lib/collector/events-store'
 import { BLANK_MEMORY, STATE_VERSION } from '@/lib/collector/memory'
@@ -14,7 +16,7 @@ import { setRuntime } from '@/lib/http/runtime'
 import { call as callRoute, deliver, joinAgent, type Member, seedOverlay } from './collector'
 import { createTestDatabase, type TestDatabase } from './database'
 import { seedIncident } from './incidents'
-import { callAsUser, seedTeam, testRuntime } from './people'
+import { callAs, seedTeam, testRuntime } from './people'
 import { healthyReport } from './reports'
 
 export const TEAMS = ['harbourline', 'skerry', 'pinnet', 'eelholm'] as const
@@ -37,7 +39,7 @@ export interface SharedOverlay {
   incidents: Record<'harbourline' | 'skerry' | 'pinnet', number>
   /** When everything was measured. */
   at: Date
-  callAs(team: TeamName, role: Role): ReturnType<typeof callAsUser>
+  callAs(team: TeamName, role: Role): Call
   close(): Promise<void>
 }
 
@@ -51,14 +53,15 @@ export async function openSharedOverlay(slug = 'tides'): Promise<SharedOverlay> 
   const now = () => new Date()
   const runtime = testRuntime(database, now)
   setRuntime(runtime)
-  const people = new Map<string, string>()
+  const people = new Map<string, UserCaller>()
   const teamIds: Record<string, string> = {}
   for (const team of TEAMS) {
     const seeded = await seedTeam(em(), team, ROLES, now())
     teamIds[team] = seeded.teamId
-    for (const [index, role] of ROLES.entries()) people.set(`${team} ${role}`, seeded.members[index]!.userId)
+    for (const [index, role] of ROLES.entries())
+      people.set(`${team} ${role}`, await userCaller(em(), seeded.members[index]!.userId))
   }
-  const callAs = (team: TeamName, role: Role) => callAsUser(database, people.get(`${team} ${role}`)!, now())
+  const callOf = (team: TeamName, role: Role) => callAs(em(), people.get(`${team} ${role}`)!, now())
   const overlay = await seedOverlay(database, teamIds.harbourline!, { slug, pace: 'calm' })
   await sql(
     em(),
@@ -66,14 +69,12 @@ export async function openSharedOverlay(slug = 'tides'): Promise<SharedOverlay> 
     [overlay.id],
   )
   for (const team of ['skerry', 'pinnet'] as const) {
-    const { code } = await createInvitation(await callAs('harbourline', 'owner'), slug, { expiresInHours: 1 })
-    await stored(await callAs(team, 'owner'), (call) =>
-      joinAsPartner(call, { code, contact: `${team} desk` }),
-    )
+    const { code } = await createInvitation(callOf('harbourline', 'owner'), slug, { expiresInHours: 1 })
+    await stored(callOf(team, 'owner'), (call) => joinAsPartner(call, { code, contact: `${team} desk` }))
   }
   const agents: Record<string, Member> = {}
   const join = async (team: TeamName, names: readonly string[], office: string) => {
-    const { code } = await createJoiningCode(await callAs(team, 'operator'), slug, {
+    const { code } = await createJoiningCode(callOf(team, 'operator'), slug, {
       uses: names.length,
       expiresInHours: 1,
     })
@@ -132,7 +133,7 @@ export async function openSharedOverlay(slug = 'tides'): Promise<SharedOverlay> 
     )
   }
   return {
-    ...{ database, failures: runtime.failures, overlay, teamIds, agents, incidents, at, callAs },
+    ...{ database, failures: runtime.failures, overlay, teamIds, agents, incidents, at, callAs: callOf },
     close: async () => {
       setRuntime(undefined)
       await database.close()
@@ -171,10 +172,12 @@ async function measure(
   }
   await sql(
     em(),
-    `insert into controls (overlay_id, state, updated_at) values (?, ?::jsonb, clock_timestamp())
+    `insert into controls (overlay_id, state, updated_at) values (?, ?::jsonb, clock_timestamp() + interval '1 hour')
      on conflict (overlay_id) do update set state = excluded.state, updated_at = excluded.updated_at`,
     [overlayId, JSON.stringify(state)],
   )
+  // However long the tests take: as fresh as they were.
+  await sql(em(), `update agent_states set received_at = clock_timestamp() + interval '1 hour'`)
   const facts: VerdictFacts = {
     ...{ state: 'reading', joined: 5, heard: 5, late: 0, neverHeard: 0, detached: 0, level: 'weak' },
     ...{ rule: 'few-links', trend: 'steady', treatAsSplit: null, singleCut: true, cut, shareOfUsual: null },

@@ -1,7 +1,7 @@
 export { type BaselineInit, type BaselineResult, krylovRounds, synchronousPowerIteration } from './baselines'
 export { type Cut, crossingOf, type LinkShare, linkShares, type SweepCut, sweepCut } from './cuts'
 export { NotConvergedError } from './error'
-export { applyLaplacian, laplacian, rayleighQuotient } from './laplacian'
+export { applyLaplacian, laplacian, largestEigenvalueBound, rayleighQuotient } from './laplacian'
 export {
   type AlgebraicConnectivity,
   algebraicConnectivity,

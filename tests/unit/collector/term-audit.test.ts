@@ -86,6 +86,8 @@ it('an agent whose walkers do not add up is left out: shut in the orders, not jo
     usual: { at: () => null },
     upkeep: { look: async () => {} },
     moments: { look: async () => {} },
+    planned: { look: async () => {} },
+    exact: { look: async () => {}, latest: () => null },
     clock,
     log,
   }

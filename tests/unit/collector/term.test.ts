@@ -39,8 +39,10 @@ async function rounds(forkEm: () => Promise<never>) {
   }
   const upkeep = { look: async () => {} }
   const moments = { look: async () => {} }
+  const planned = { look: async () => {} }
+  const exact = { look: async () => {}, latest: () => null }
   const term = new Term(
-    { store, usual, upkeep, moments, clock, random: createRandom(1), log },
+    { store, usual, upkeep, moments, planned, exact, clock, random: createRandom(1), log },
     { overlayId: 'tides' },
   )
   const ended = term.run(stop.signal)

@@ -244,10 +244,12 @@ describe('small words', () => {
     expect(overlayPages('harbourline').map((p) => `${p.letter} ${p.href}`)).toEqual([
       'A /overlays/harbourline',
       'B /overlays/harbourline/weak',
-      'C /overlays/harbourline/nodes',
-      'D /overlays/harbourline/joining',
-      'E /overlays/harbourline/upkeep',
-      'F /overlays/harbourline/warnings',
+      'C /overlays/harbourline/reinforcement',
+      'D /overlays/harbourline/nodes',
+      'E /overlays/harbourline/joining',
+      'F /overlays/harbourline/upkeep',
+      'G /overlays/harbourline/warnings',
+      'H /overlays/harbourline/partners',
     ])
   })
 

@@ -1,0 +1,3 @@
+export { type ExportedNode, graphMl } from './graphml'
+export { linksCsv, nodesCsv } from './tables'
+export { escapeXml } from './xml'

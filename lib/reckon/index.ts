@@ -1,0 +1,2 @@
+export type { JobName, Jobs } from './jobs'
+export { PATIENCE_MS, ReckonError, Reckoner } from './reckoner'
