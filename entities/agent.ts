@@ -1,5 +1,6 @@
 import { defineEntity, type InferEntity, p } from '@mikro-orm/core'
 import { OverlaySchema } from './overlay'
+import { TeamSchema } from './team'
 
 export const AGENT_STATES = ['joined', 'left', 'revoked', 'left-out'] as const
 export type AgentStateName = (typeof AGENT_STATES)[number]
@@ -10,6 +11,8 @@ export const AgentSchema = defineEntity({
   properties: {
     id: p.uuid().primary().defaultRaw('gen_random_uuid()'),
     overlay: () => p.manyToOne(OverlaySchema).ref(false),
+    /** Whose code it used; left out, the team that owns the overlay. */
+    team: () => p.manyToOne(TeamSchema).ref(false).nullable(),
     /** Unique in its overlay among those that have not left. */
     name: p.text(),
     /** Ed25519, base64url of the raw 32 bytes. */

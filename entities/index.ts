@@ -19,6 +19,7 @@ import { OverlaySchema } from './overlay'
 import { OverlayEventSchema } from './overlay-event'
 import { OverlayKeySchema } from './overlay-key'
 import { OverlayKeyRingSchema } from './overlay-key-ring'
+import { OverlayPartnerSchema } from './overlay-partner'
 import { PasswordLinkSchema } from './password-link'
 import { PlannedLinkSchema } from './planned-link'
 import { ReadingSchema } from './reading'
@@ -54,6 +55,7 @@ export * from './overlay'
 export * from './overlay-event'
 export * from './overlay-key'
 export * from './overlay-key-ring'
+export * from './overlay-partner'
 export * from './password-link'
 export * from './planned-link'
 export * from './reading'
@@ -90,6 +92,7 @@ export const entities = [
   OverlayEventSchema,
   OverlayKeySchema,
   OverlayKeyRingSchema,
+  OverlayPartnerSchema,
   PasswordLinkSchema,
   PlannedLinkSchema,
   ReadingSchema,

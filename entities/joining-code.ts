@@ -1,5 +1,6 @@
 import { defineEntity, type InferEntity, p } from '@mikro-orm/core'
 import { OverlaySchema } from './overlay'
+import { TeamSchema } from './team'
 import { UserSchema } from './user'
 
 export const JoiningCodeSchema = defineEntity({
@@ -8,6 +9,8 @@ export const JoiningCodeSchema = defineEntity({
   properties: {
     id: p.uuid().primary().defaultRaw('gen_random_uuid()'),
     overlay: () => p.manyToOne(OverlaySchema).ref(false),
+    /** Whose agents join with it; left out, the team that owns the overlay. */
+    team: () => p.manyToOne(TeamSchema).ref(false).nullable(),
     /** SHA-256 (hex) of the code in its canonical form. */
     hash: p.text().unique(),
     /** The first group, so that a person can tell codes apart. */

@@ -19,6 +19,13 @@ export const OverlaySchema = defineEntity({
     contact: p.text().nullable(),
     runbookUrl: p.text().nullable(),
     demo: p.boolean().default(false),
+    /** Keys of labels that partners may see of the owning team's nodes. */
+    sharedLabels: p.array<string>().columnType('text[]').defaultRaw("'{}'"),
+    /** What the names of other teams' nodes are hidden with; never leaves the server. */
+    sightSecret: p
+      .text()
+      .hidden()
+      .defaultRaw(`replace(gen_random_uuid()::text || gen_random_uuid()::text, '-', '')`),
     /** Agents unheard for so long are retired; null for never. */
     retireAfterHours: p.integer().nullable(),
     /** The key in force. Ed25519, base64url of the raw 32 bytes each; signs passes and orders. */

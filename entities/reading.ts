@@ -1,4 +1,5 @@
 import { defineEntity, type InferEntity, p } from '@mikro-orm/core'
+import type { VerdictFacts } from '@/lib/collector/verdict'
 import { DATA_STATES, LEVELS, type Reading as ReadingDto, TRENDS } from '@/lib/data/dto'
 
 /** What the columns do not hold of a reading: they have the headline's λ₂, low and high, of the core where there is one. */
@@ -20,6 +21,8 @@ export type ReadingBody = Omit<
 > & {
   /** With the loose ends, where the columns are of the core. */
   whole?: Pick<ReadingDto, 'lambda2' | 'low' | 'high'> | null
+  /** What the sentences are made from, where several teams have agents. */
+  facts?: VerdictFacts
 }
 
 const real = () => p.float().columnType('double precision').nullable()

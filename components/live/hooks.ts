@@ -17,6 +17,7 @@ import {
   signingKeySchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { partnersSchema } from '@/lib/data/partner-dto'
 import { type RehearsalDto, rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
 import { reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import { maintenanceWindowsSchema, warningRulesSchema } from '@/lib/data/rules-dto'
@@ -167,6 +168,11 @@ export function useReadingThen(slug: string, at: string | null) {
     streamingMs: 0,
     pollMs: 0,
   })
+}
+
+export function usePartners(slug: string | null) {
+  const url = slug === null ? null : overlayUrls(slug).partners
+  return useLive(url, () => getJson(url ?? '', partnersSchema), { streamingMs: UPKEEP_MS })
 }
 
 /** Worked out anew each time, which takes a moment. */

@@ -1,4 +1,4 @@
-import { type Column, SideMark, type TableFilter, Time } from '@/components/ui'
+import { type Column, Mark, SideMark, type TableFilter, Time } from '@/components/ui'
 import { NODE_STATES, type OverlayNode } from '@/lib/data/dto'
 import { cx } from '@/lib/face/cx'
 import { formatValue } from '@/lib/face/format'
@@ -40,6 +40,7 @@ export function nodeColumns(nodes: readonly OverlayNode[], open: (name: string) 
       value: (n) => STATE_WORDS[n.state],
       cell: (n) => <StateMark state={n.state} />,
     },
+    ...teamColumn(nodes),
     ...labelColumns(nodes),
     {
       id: 'side',
@@ -79,6 +80,19 @@ export function nodeColumns(nodes: readonly OverlayNode[], open: (name: string) 
       cell: (n) => <Concerns concerns={nodeConcerns(n)} />,
     },
     ...UNSHOWN,
+  ]
+}
+
+/** Only where there are nodes of other teams. */
+function teamColumn(nodes: readonly OverlayNode[]): NodeColumn[] {
+  if (!nodes.some(({ partner }) => partner)) return []
+  return [
+    {
+      id: 'whose',
+      header: 'whose',
+      value: (n) => (n.partner ? 'a partner’s' : 'yours'),
+      cell: (n) => (n.partner ? <Mark shape="hollow">a partner’s</Mark> : <Mark shape="full">yours</Mark>),
+    },
   ]
 }
 
@@ -150,6 +164,16 @@ export function nodeFilters(nodes: readonly OverlayNode[]): TableFilter<OverlayN
       options: NODE_STATES.map((value) => ({ value, label: STATE_WORDS[value] })),
       match: (n, value) => n.state === value,
     },
+    ...(nodes.some(({ partner }) => partner)
+      ? [
+          {
+            id: 'whose',
+            label: 'whose',
+            options: ['yours', 'a partner’s'].map(option),
+            match: (n: OverlayNode, value: string) => (n.partner ? 'a partner’s' : 'yours') === value,
+          },
+        ]
+      : []),
     ...(labels.length > 0
       ? [{ id: 'label', label: 'label', options: labels.map(option), match: hasLabel }]
       : []),

@@ -53,7 +53,12 @@ export function NodeSheet({ slug, node, actions, onClose, onDone }: NodeSheetPro
             </dl>
           </section>
         ))}
-        {node.health === null || node.health === undefined ? (
+        {node.partner ? (
+          <p className="text-sm text-soft">
+            It is another team’s node: its own name and how its agent fares stay with that team. The name here
+            is the one your team knows it by.
+          </p>
+        ) : node.health === null || node.health === undefined ? (
           <p className="text-sm text-soft">
             {node.heardAt === null
               ? 'Nothing has been heard of its agent yet.'

@@ -48,7 +48,7 @@ export function NodesTable({ slug, actions }: { slug: string; actions: NodeActio
         <NodeSheet
           slug={slug}
           node={node}
-          actions={may ? actions : null}
+          actions={may && (!node.partner || overlay.data?.standing === 'owner') ? actions : null}
           onClose={() => setOpened(null)}
           onDone={nodes.retry}
         />

@@ -36,6 +36,8 @@ const EVENTS: Record<OverlayEvent['kind'], EventWords> = {
   'rehearsal-planned': { word: 'rehearsal', shape: 'hollow' },
   'rehearsal-started': { word: 'rehearsal', shape: 'hollow' },
   'rehearsal-ended': { word: 'rehearsal', shape: 'hollow' },
+  'partner-joined': { word: 'partner', shape: 'full' },
+  'partner-ended': { word: 'partner', shape: 'short' },
 }
 
 /** Stands before the event's sentence, which says the same to those who see no shapes. */

@@ -10,6 +10,7 @@ import { cx } from '@/lib/face/cx'
 import { staleAfterMs } from '@/lib/face/expect'
 import { settlingText } from '@/lib/face/settling'
 import { formatDuration } from '@/lib/face/time'
+import { Contacts } from './contacts'
 import { FirstReading, FirstSteps } from './first'
 import { TitleFigures } from './title-figures'
 
@@ -92,12 +93,7 @@ function Verdict({ reading, overlay }: { reading: Reading; overlay: Overlay }) {
         </Note>
       ) : null}
       <Actions overlay={overlay} urgent={grave || reading.level === 'weak'} />
-      {overlay.contact ? (
-        <p className="mt-4 max-w-2xl break-words">
-          <span className="text-soft">Contact: </span>
-          {overlay.contact}
-        </p>
-      ) : null}
+      <Contacts overlay={overlay} />
     </div>
   )
 }

@@ -32,7 +32,8 @@ function OverlayRow({ overlay, showTeam }: { overlay: Overlay; showTeam: boolean
         </h2>
         <p className="text-sm text-soft">
           {[
-            showTeam ? overlay.team.name : null,
+            showTeam || overlay.standing === 'partner' ? overlay.team.name : null,
+            overlay.standing === 'partner' ? 'shared with you' : overlay.shared ? 'shared' : null,
             overlay.pace,
             overlay.disclosure,
             overlay.demo ? 'demo' : null,

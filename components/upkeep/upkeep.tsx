@@ -14,7 +14,18 @@ import type { UpkeepActions } from './types'
 import { VersionTables } from './version-tables'
 
 /** What keeps an overlay's agents in order: versions, those that are gone, the key they all trust. */
-export function Upkeep({ slug, role, actions }: { slug: string; role: Role; actions: UpkeepActions }) {
+export function Upkeep({
+  slug,
+  role,
+  isOwning,
+  actions,
+}: {
+  slug: string
+  role: Role
+  /** The reader's team owns the overlay: its settings and its key are theirs. */
+  isOwning: boolean
+  actions: UpkeepActions
+}) {
   const may = roleReaches(role, 'operator')
   return (
     <>
@@ -24,8 +35,8 @@ export function Upkeep({ slug, role, actions }: { slug: string; role: Role; acti
       <div className="space-y-5">
         <Coverage slug={slug} />
         <Upgrading slug={slug} may={may} actions={actions} />
-        <Gone slug={slug} may={may} actions={actions} />
-        <KeySheet slug={slug} role={role} rotate={actions.rotateKey} />
+        <Gone slug={slug} may={may && isOwning} actions={actions} />
+        {isOwning ? <KeySheet slug={slug} role={role} rotate={actions.rotateKey} /> : null}
       </div>
     </>
   )

@@ -18,6 +18,8 @@ export interface Permission {
   tokenScope: TokenScope | null
   /** Leaves an entry in the audit log, whatever the outcome; runs in one transaction with it. */
   audit: boolean
+  /** Of what belongs to an overlay: open to teams that share it, each for its own part. */
+  partner?: boolean
 }
 
 const open = (audit: boolean): Permission => ({ who: 'anyone', role: null, tokenScope: null, audit })
@@ -35,6 +37,8 @@ const writes = (role: Role, tokenScope: TokenScope | null): Permission => ({
   tokenScope,
   audit: true,
 })
+
+const shared = (permission: Permission): Permission => ({ ...permission, partner: true })
 
 /** The one table of what may be done by whom. Every route method, server action and page names its row. */
 export const PERMISSIONS = {
@@ -55,31 +59,36 @@ export const PERMISSIONS = {
   'member.remove': writes('owner', null),
   'audit.read': reads('operator', null),
   'overlay.list': { who: 'signed-in', role: null, tokenScope: 'read', audit: false },
-  'overlay.read': reads('viewer', 'read'),
+  'overlay.read': shared(reads('viewer', 'read')),
   'overlay.create': writes('operator', 'write'),
   'overlay.change': writes('operator', 'write'),
-  'reading.read': reads('viewer', 'read'),
-  'node.list': reads('viewer', 'read'),
-  'link.list': reads('viewer', 'read'),
-  'export.read': reads('viewer', 'read'),
-  'reinforcement.read': reads('viewer', 'read'),
-  'reinforcement.plan': writes('operator', 'write'),
-  'event.read': reads('viewer', 'read'),
-  'joining-code.list': reads('operator', 'read'),
-  'joining-code.create': writes('operator', 'write'),
-  'joining-code.revoke': writes('operator', 'write'),
+  'reading.read': shared(reads('viewer', 'read')),
+  'node.list': shared(reads('viewer', 'read')),
+  'link.list': shared(reads('viewer', 'read')),
+  'export.read': shared(reads('viewer', 'read')),
+  'reinforcement.read': shared(reads('viewer', 'read')),
+  'reinforcement.plan': shared(writes('operator', 'write')),
+  'event.read': shared(reads('viewer', 'read')),
+  'joining-code.list': shared(reads('operator', 'read')),
+  'joining-code.create': shared(writes('operator', 'write')),
+  'joining-code.revoke': shared(writes('operator', 'write')),
   'agent.enrol': agent(true),
   'agent.session': agent(false),
   'agent.report': agent(false),
   'agent.leave': agent(true),
   'agent.key': agent(true),
   'agent.directory': agent(false),
-  'agent.revoke': writes('operator', 'write'),
-  'agent.retire': writes('operator', 'write'),
-  'agent.readmit': writes('operator', 'write'),
-  'upgrade.read': reads('viewer', 'read'),
-  'upgrade.offer': writes('operator', 'write'),
-  'upgrade.halt': writes('operator', 'write'),
+  'agent.revoke': shared(writes('operator', 'write')),
+  'agent.retire': shared(writes('operator', 'write')),
+  'agent.readmit': shared(writes('operator', 'write')),
+  'upgrade.read': shared(reads('viewer', 'read')),
+  'upgrade.offer': shared(writes('operator', 'write')),
+  'upgrade.halt': shared(writes('operator', 'write')),
+  'partner.list': shared(reads('viewer', 'read')),
+  'partner.invite': writes('owner', 'write'),
+  'partner.join': writes('owner', 'write'),
+  'partner.change': shared(writes('owner', 'write')),
+  'partner.end': shared(writes('owner', 'write')),
   'signing-key.read': reads('operator', 'read'),
   'signing-key.rotate': writes('owner', 'write'),
   'channel.test': { who: 'signed-in', role: null, tokenScope: null, audit: true },
@@ -94,7 +103,7 @@ export const PERMISSIONS = {
   'call-order.change': writes('operator', 'write'),
   'webhook.list': reads('operator', 'read'),
   'webhook.change': writes('owner', 'write'),
-  'incident.list': reads('viewer', 'read'),
+  'incident.list': shared(reads('viewer', 'read')),
   'incident.read': reads('viewer', 'read'),
   'incident.take': writes('operator', 'write'),
   'incident.hand-over': writes('operator', 'write'),
@@ -103,9 +112,9 @@ export const PERMISSIONS = {
   'incident.mute': writes('operator', 'write'),
   'incident.resolve': writes('operator', 'write'),
   'incident.reopen': writes('operator', 'write'),
-  'rule.list': reads('viewer', 'read'),
-  'rule.change': writes('operator', 'write'),
-  'window.change': writes('operator', 'write'),
+  'rule.list': shared(reads('viewer', 'read')),
+  'rule.change': shared(writes('operator', 'write')),
+  'window.change': shared(writes('operator', 'write')),
   'rehearsal.list': reads('viewer', 'read'),
   'rehearsal.start': writes('operator', 'write'),
   'rehearsal.cancel': writes('operator', 'write'),

@@ -25,8 +25,8 @@ export function assertRecent(at: string, now: Date): void {
   )
 }
 
-export function callerOf({ id, name, overlay }: Agent): AgentCaller {
-  return { kind: 'agent', agentId: id, overlayId: overlay.id, teamId: overlay.team.id, name }
+export function callerOf({ id, name, overlay, team }: Agent): AgentCaller {
+  return { kind: 'agent', agentId: id, overlayId: overlay.id, teamId: team?.id ?? overlay.team.id, name }
 }
 
 export function agentEnded(): AppError {

@@ -1,8 +1,10 @@
 import type { EntityManager } from '@/lib/db'
 import type { AwaySummary } from '@/lib/protocol'
+import { eventData } from './events-store'
 import type { EventDraft } from './judge'
 import { tell } from './notices'
 import { query } from './query'
+import { eventOf } from './said'
 
 /** One agent's times without a collector are told once in this time, whatever it says. */
 export const AWAY_EVENT_MINUTES = 10
@@ -17,10 +19,11 @@ export function awayEvent(name: string, spans: readonly AwaySummary[]): EventDra
   const least = Math.min(...worse.map(({ leastLive }) => leastLive))
   const known = Math.max(...worse.map((span) => span.known))
   const lost = downs === 1 ? 'a link of' : `${downs} times a link of`
-  return {
-    kind: 'collector-away',
-    text: `Out of the collector's reach from ${shown(first.fromAt)} to ${shown(last.toAt)}, ${lost} ${name} went down: at the least ${least} of ${known} were up`,
-  }
+  return eventOf('collector-away', [
+    `Out of the collector's reach from ${shown(first.fromAt)} to ${shown(last.toAt)}, ${lost} `,
+    { node: name },
+    ` went down: at the least ${least} of ${known} were up`,
+  ])
 }
 
 /** Enters it once: a reply may have been lost, and then it is told again. */
@@ -33,8 +36,8 @@ export async function enterAway(
   if (!event) return
   const entered = await query(
     em,
-    `insert into overlay_events (overlay_id, at, kind, text)
-     select ?::uuid, clock_timestamp(), ?, ? where not exists (
+    `insert into overlay_events (overlay_id, at, kind, text, data)
+     select ?::uuid, clock_timestamp(), ?, ?, ?::jsonb where not exists (
        select from overlay_events where overlay_id = ? and kind = ?
          and at > clock_timestamp() - make_interval(mins => ?) and position(? in text) > 0)
      returning id`,
@@ -42,6 +45,7 @@ export async function enterAway(
       overlayId,
       event.kind,
       event.text,
+      eventData(event),
       overlayId,
       event.kind,
       AWAY_EVENT_MINUTES,

@@ -3,6 +3,7 @@ import { AppError } from '@/lib/http/app-error'
 import { heldMs } from '@/lib/method/control'
 import { PACES, type PaceName } from '@/lib/method/pace'
 import { epochMs, query } from './query'
+import { eventOf } from './said'
 
 const REMEDY =
   'On the copy, delete the configuration file with the key, and enrol it with a joining code of its own.'
@@ -13,10 +14,8 @@ export function clonedKey(name: string, what: string): AppError {
 }
 
 /** What is said of it among the overlay's events. */
-export const clonedEvent = (name: string) => ({
-  kind: 'agent-cloned' as const,
-  text: `Two programs use the key of ${name}`,
-})
+export const clonedEvent = (name: string) =>
+  eventOf('agent-cloned', ['Two programs use the key of ', { node: name }])
 
 /**
  * A key that is used from another machine while the agent is still heard from the first has been copied. A machine that

@@ -13,7 +13,9 @@ import { enterEvent } from './events-store'
 import { mayReport } from './ingest-entry'
 import { LEADERS_CHANNEL } from './notices'
 import { PASS_TAIL_MS } from './passes'
+import { isPseudonym } from './pseudonym'
 import { query } from './query'
+import { eventOf } from './said'
 import { passFor } from './session'
 
 export interface Enrolment {
@@ -43,26 +45,28 @@ export async function enrolAgent(call: Call, request: EnrolRequest): Promise<Enr
   )
   if (!code) throw codeRefused('unknown')
   const { overlay } = code
-  call.note({ teamId: overlay.team.id, subject: `${overlay.slug}: ${request.name}` })
-  authorise(call, 'agent.enrol', overlay.team.id)
+  const teamId = code.team?.id ?? overlay.team.id
+  call.note({ teamId, subject: `${overlay.slug}: ${request.name}` })
+  authorise(call, 'agent.enrol', teamId)
+  if (isPseudonym(request.name)) throw nameTaken(overlay, request.name)
   const known = await findByName(call, overlay, request.name)
-  if (known) return enrolAgain(call, overlay, known, request)
-  await assertNewKey(call, overlay, request)
+  if (known) return enrolAgain(call, overlay, known, request, teamId)
+  await assertNewKey(call, overlay, request, teamId)
   if (!(await takeJoiningCode(em, request.code, now))) {
     const state = stateOf(code, now)
     throw codeRefused(state === 'open' ? 'used' : state)
   }
-  const agentId = await insertAgent(call, overlay, request)
+  const agentId = await insertAgent(call, overlay, request, teamId)
   if (agentId === null) {
     // Someone took the name since it was looked up.
     const other = await findByName(call, overlay, request.name)
     if (!other) throw nameTaken(overlay, request.name)
-    const again = await enrolAgain(call, overlay, other, request)
+    const again = await enrolAgain(call, overlay, other, request, teamId)
     await query(em, 'update joining_codes set used = used - 1 where id = ?', [code.id])
     return again
   }
   await replaceLeft(em, overlay.id, request.name)
-  await enterEvent(em, overlay.id, { kind: 'agent-joined', text: `${request.name} joined` })
+  await enterEvent(em, overlay.id, eventOf('agent-joined', [{ node: request.name }, ' joined']))
   await notify(em, LEADERS_CHANNEL, overlay.id)
   return { created: true, reply: await replyTo(call, overlay, agentId, request) }
 }
@@ -78,8 +82,10 @@ async function enrolAgain(
   overlay: Overlay,
   agent: Agent,
   request: EnrolRequest,
+  teamId: string,
 ): Promise<Enrolment> {
-  if (agent.publicKey !== request.publicKey)
+  // Also with the right key: an agent stays with the team whose code it used first.
+  if (agent.publicKey !== request.publicKey || agent.team?.id !== teamId)
     throw agent.state === 'revoked' ? nameRevoked(overlay, agent.name) : nameTaken(overlay, agent.name)
   if (!mayReport(agent))
     throw new AppError(
@@ -104,22 +110,34 @@ async function enrolAgain(
 }
 
 /** A key stands for one agent: under another name it is that of a copied machine, or of one that has ended. */
-async function assertNewKey({ em }: Call, overlay: Overlay, { publicKey }: EnrolRequest): Promise<void> {
+async function assertNewKey(
+  { em }: Call,
+  overlay: Overlay,
+  { publicKey }: EnrolRequest,
+  teamId: string,
+): Promise<void> {
   const others = await em.find(AgentSchema, { overlay: overlay.id, publicKey })
   const present = others.find(mayReport)
-  if (present) throw clonedKey(present.name, 'This is already')
+  if (present)
+    throw clonedKey(present.team?.id === teamId ? present.name : "another team's node", 'This is already')
   if (others.length > 0) throw agentEnded()
 }
 
 /** @returns null where the name is taken */
-async function insertAgent(call: Call, overlay: Overlay, request: EnrolRequest): Promise<string | null> {
+async function insertAgent(
+  call: Call,
+  overlay: Overlay,
+  request: EnrolRequest,
+  teamId: string,
+): Promise<string | null> {
   const [row] = await query<{ id: string }>(
     call.em,
-    `insert into agents (overlay_id, name, public_key, labels, address, version, node, host, joined_at)
-     values (?, ?, ?, ?::jsonb, ?, ?, ?, ?, ?)
+    `insert into agents (overlay_id, team_id, name, public_key, labels, address, version, node, host, joined_at)
+     values (?, ?, ?, ?, ?::jsonb, ?, ?, ?, ?, ?)
      on conflict (overlay_id, name) where state <> 'left' do nothing returning id`,
     [
       overlay.id,
+      teamId,
       request.name,
       request.publicKey,
       JSON.stringify(request.labels),

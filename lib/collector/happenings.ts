@@ -1,7 +1,8 @@
 import type { EventDraft, JudgedAgent } from './judge'
 import type { Memory } from './memory'
+import { eventOf, nodesList, type Said } from './said'
 import type { VerdictFacts } from './verdict'
-import { countOf, isOrAre, listOf } from './words'
+import { countOf, isOrAre } from './words'
 
 /** More agents than this are counted, not named. */
 const MOST_NAMED = 3
@@ -16,10 +17,10 @@ export function happenings(
   const events: EventDraft[] = []
   const silent = agents.filter(({ agentId }) => agentId in after.unheard && !(agentId in before.unheard))
   if (silent.length > 0)
-    events.push({ kind: 'agent-unheard', text: `${namesOf(silent)} ${isOrAre(silent.length)} unheard` })
+    events.push(eventOf('agent-unheard', [...namesOf(silent), ` ${isOrAre(silent.length)} unheard`]))
   const back = agents.filter(({ agentId, heard: now }) => now && agentId in before.unheard)
   if (back.length > 0)
-    events.push({ kind: 'agent-heard', text: `${namesOf(back)} ${isOrAre(back.length)} heard again` })
+    events.push(eventOf('agent-heard', [...namesOf(back), ` ${isOrAre(back.length)} heard again`]))
   if (after.withheld && !before.withheld)
     events.push({
       kind: 'withheld',
@@ -37,7 +38,7 @@ export function happenings(
   return events
 }
 
-function namesOf(agents: readonly JudgedAgent[]): string {
-  if (agents.length > MOST_NAMED) return countOf(agents.length, 'node')
-  return listOf(agents.map(({ name }) => name))
+function namesOf(agents: readonly JudgedAgent[]): Said {
+  if (agents.length > MOST_NAMED) return [countOf(agents.length, 'node')]
+  return nodesList(agents.map(({ name }) => name))
 }

@@ -27,7 +27,7 @@ export interface SessionSender extends Sender {
   expired: boolean
 }
 
-const SENDER = `a.id as "agentId", a.overlay_id as "overlayId", o.team_id as "teamId", a.name,
+const SENDER = `a.id as "agentId", a.overlay_id as "overlayId", a.team_id as "teamId", a.name,
   a.public_key as "publicKey", a.labels, a.state, o.disclosure, h.incarnation, h.report_number as number`
 
 type Row<S extends Sender> = Omit<S, 'number'> & { number: number | string | null }

@@ -8,6 +8,7 @@ import { isGrave, levelOf, worse } from './level'
 import type { Memory, Side } from './memory'
 import { partsTold } from './parts'
 import { readingOf } from './reading'
+import type { Said } from './said'
 import { nameSides } from './sides'
 import { trendOf, withReading } from './trend'
 import { type Together, unheardTogether } from './unheard'
@@ -56,6 +57,10 @@ export interface JudgeInput {
 export interface EventDraft {
   kind: (typeof EVENT_KINDS)[number]
   text: string
+  /** The text in parts, where it names nodes. */
+  said?: Said
+  /** The one team it is told to; left out, all that share the overlay. */
+  teamId?: string
   /** What a program looks up later, beside the line for a person. */
   data?: { links: [a: string, b: string][] }
 }
@@ -64,6 +69,8 @@ export interface Judgement {
   reading: Reading
   memory: Memory
   events: EventDraft[]
+  /** What the sentences are made from: each team that shares the overlay is told them in its own names. */
+  facts: VerdictFacts
   /** Whether the reading is worth a row. */
   store: boolean
 }
@@ -119,7 +126,7 @@ function judgeHeadline(input: HeadlineInput): Judgement {
     memory.stored?.key !== key ||
     estimate.atMs - memory.stored.atMs >= STORE_UNCHANGED_INTERVALS * intervalMs
   if (store) next.stored = { atMs: estimate.atMs, key }
-  return { reading, memory: next, events: happenings(memory, next, agents, facts), store }
+  return { reading, memory: next, events: happenings(memory, next, agents, facts), facts, store }
 }
 
 function listening(memory: Memory, atMs: number, intervalMs: number): Memory {

@@ -13,6 +13,8 @@ import type { KeyText } from './signer'
 export interface LoadedAgent extends JoinedAgent {
   name: string
   labels: Record<string, string>
+  /** Of the team that owns the overlay; left out where no other shares it. */
+  isOwn?: boolean
 }
 
 /** A rotation of the overlay's signing key that is not over. */
@@ -28,6 +30,8 @@ export interface Loaded {
   disclosure: Disclosure
   weights: WeightMode
   retireAfterHours: number | null
+  /** Agents of more than the owning team are or were of it. */
+  isShared?: boolean
   /** Whom nobody keeps a link to. */
   shut: NonNullable<Orders['shut']>
   /** Agents whose figures did not hold, the latest first, with why. */
@@ -44,10 +48,10 @@ export interface Loaded {
 export async function loadOverlay(em: EntityManager, overlayId: string): Promise<Loaded | null> {
   const agents = await query<AgentRow>(
     em,
-    `select a.id as "agentId", a.name, a.labels, ${epochMs('a.joined_at')} as "joinedAtMs",
+    `select a.id as "agentId", a.name, a.labels, coalesce(a.team_id = o.team_id, true) as "isOwn", ${epochMs('a.joined_at')} as "joinedAtMs",
        s.incarnation, s.report_number as number, s.orders_sequence as "ordersSequence", s.sums, s.node,
        s.complaints, ${epochMs('s.received_at')} as "receivedAtMs"
-     from agents a left join agent_states s on s.agent_id = a.id
+     from agents a join overlays o on o.id = a.overlay_id left join agent_states s on s.agent_id = a.id
      where a.overlay_id = ? and a.state = 'joined' order by a.joined_at, a.id`,
     [overlayId],
   )
@@ -56,6 +60,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
     em,
     `select o.pace, o.disclosure, o.weights, o.retire_after_hours as "retireAfterHours",
        o.public_key as "publicKey", o.private_key as "privateKey", ${epochMs('clock_timestamp()')} as "nowMs",
+       exists (select from agent_faces f where f.overlay_id = o.id and f.team_id <> o.team_id) as "isShared",
        (select coalesce(jsonb_agg(jsonb_build_object('name', a.name, 'because', coalesce(a.left_out_because, ''))
           order by a.ended_at desc), '[]')
         from agents a where a.overlay_id = o.id and a.state = 'left-out') as "leftOutNames",
@@ -101,6 +106,7 @@ interface AgentRow {
   agentId: string
   name: string
   labels: Record<string, string>
+  isOwn: boolean
   joinedAtMs: number
   incarnation: string | null
   number: string | number
@@ -112,7 +118,7 @@ interface AgentRow {
 }
 
 function toAgent(row: AgentRow): LoadedAgent {
-  const { agentId, name, labels, joinedAtMs, incarnation, sums, node, complaints, receivedAtMs } = row
+  const { agentId, name, labels, isOwn, joinedAtMs, incarnation, sums, node, complaints, receivedAtMs } = row
   const report = incarnation !== null && {
     incarnation,
     number: Number(row.number),
@@ -121,5 +127,5 @@ function toAgent(row: AgentRow): LoadedAgent {
     node,
     complaints,
   }
-  return { agentId, name, labels, joinedAtMs, last: report ? { report, receivedAtMs } : null }
+  return { agentId, name, labels, isOwn, joinedAtMs, last: report ? { report, receivedAtMs } : null }
 }

@@ -1,15 +1,17 @@
-import type { Reading } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import type { Orders } from '@/lib/method/orders'
 import { signOrders } from '@/lib/protocol'
+import { eventData } from './events-store'
 import type { EventDraft } from './judge'
 import { type Loaded, loadOverlay } from './leader-load'
 import { type StoredState, storedStateSchema } from './memory'
 import { overlayChannel } from './notices'
 import { type Bindable, query } from './query'
+import type { KeptReading } from './reading'
 import { columnsOf } from './reading-columns'
 import type { RehearsalChange } from './rehearsal/open'
 import { writeChanges } from './rehearsal/store'
+import { eventOf } from './said'
 import { type KeyText, signerOf } from './signer'
 
 export type { Loaded, LoadedAgent } from './leader-load'
@@ -21,7 +23,7 @@ export interface Round {
   /** Signs the orders. */
   key: KeyText
   /** Null where no row is worth it. */
-  reading: Reading | null
+  reading: KeptReading | null
   events: readonly EventDraft[]
   rehearsals: readonly RehearsalChange[]
   /** Agents whose figures do not hold: from here on not of the overlay, until an operator readmits them. */
@@ -118,12 +120,12 @@ async function leaveOut(em: EntityManager, agents: Round['leftOut']): Promise<Ev
        where id = ? and state = 'joined' returning name`,
       [because, agentId],
     )
-    if (row) events.push({ kind: 'agent-left-out', text: `${row.name} left out: ${because}` })
+    if (row) events.push(eventOf('agent-left-out', [{ node: row.name }, ` left out: ${because}`]))
   }
   return events
 }
 
-async function insertReading(em: EntityManager, overlayId: string, reading: Reading): Promise<void> {
+async function insertReading(em: EntityManager, overlayId: string, reading: KeptReading): Promise<void> {
   const {
     at,
     lambda2,
@@ -172,14 +174,14 @@ async function insertEvents(
   { state, events }: Pick<Round, 'state' | 'events'>,
 ): Promise<void> {
   const at = new Date(state.memory.judgedAtMs ?? 0)
-  const rows: Bindable[] = events.flatMap(({ kind, text, data }) => [
-    ...[overlayId, at, kind, text],
-    data ? JSON.stringify(data) : null,
+  const rows: Bindable[] = events.flatMap((event) => [
+    ...[overlayId, at, event.kind, event.text, eventData(event)],
   ])
   if (events.length > 0)
     await query(
       em,
-      `insert into overlay_events (overlay_id, at, kind, text, data) values ${events.map(() => '(?::uuid, ?::timestamptz, ?, ?, ?::jsonb)').join(', ')}`,
+      `insert into overlay_events (overlay_id, at, kind, text, data)
+       values ${events.map(() => '(?::uuid, ?::timestamptz, ?, ?, ?::jsonb)').join(', ')}`,
       rows,
     )
   const kinds = events.length > 0 ? ['reading', 'event'] : ['reading']

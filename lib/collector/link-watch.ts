@@ -1,7 +1,8 @@
 import type { Snapshot } from '@/lib/method/control'
 import { isHeard } from '@/lib/method/control'
 import type { EventDraft } from './judge'
-import { countOf, listOf } from './words'
+import { eventOf, type Said, saidList } from './said'
+import { countOf } from './words'
 
 /** A link must be unnamed, or named, for so long before it is said to be lost, or found. */
 export const LINK_STILL_INTERVALS = 3
@@ -111,9 +112,10 @@ function turnsWeight(
 
 function said(kind: EventDraft['kind'], links: readonly Pair[], what: string): EventDraft[] {
   if (links.length === 0) return []
-  const named =
+  const each = links.map(([a, b]): Said => [{ node: a }, ' – ', { node: b }])
+  const named: Said =
     links.length > MOST_NAMED
-      ? countOf(links.length, 'link')
-      : `${links.length === 1 ? 'link' : 'links'} ${listOf(links.map((pair) => pair.join(' – ')))}`
-  return [{ kind, text: `${named} ${what}`, data: { links: links.slice(0, MOST_KEPT) } }]
+      ? [countOf(links.length, 'link')]
+      : [`${links.length === 1 ? 'link' : 'links'} `, ...saidList(each)]
+  return [{ ...eventOf(kind, [...named, ` ${what}`]), data: { links: links.slice(0, MOST_KEPT) } }]
 }

@@ -1,9 +1,9 @@
-import type { Reading } from '@/lib/data/dto'
 import { isHeard } from '@/lib/method/control'
 import { PACES } from '@/lib/method/pace'
 import type { Loaded } from './leader-load'
 import type { Memory, Side } from './memory'
 import { joinNamings } from './namings'
+import type { KeptReading } from './reading'
 import { sideOf } from './sides'
 
 export interface MomentNode {
@@ -32,10 +32,10 @@ export interface Moment {
   nodes: readonly MomentNode[]
   /** Crossing links, as agents disclosed them. */
   links: readonly MomentLink[]
-  reading: Reading
+  reading: KeptReading
 }
 
-export function momentOf({ snapshot, pace }: Loaded, memory: Memory, reading: Reading): Moment {
+export function momentOf({ snapshot, pace }: Loaded, memory: Memory, reading: KeptReading): Moment {
   const { intervalMs } = PACES[pace]
   const nodes = snapshot.agents.map((agent) => {
     const { agentId, name, labels, last } = agent

@@ -1,4 +1,3 @@
-import type { Reading } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import type { Loaded } from './leader-load'
 import type { Memory } from './memory'
@@ -6,6 +5,7 @@ import type { Moment } from './moment'
 import { momentOf } from './moment'
 import { packMoment } from './moment-pack'
 import { type Bindable, query } from './query'
+import type { KeptReading } from './reading'
 
 export const MINUTE_MS = 60_000
 
@@ -21,7 +21,7 @@ export class Moments {
   }
 
   /** The first look in a minute keeps it. */
-  async look(loaded: Loaded, memory: Memory, reading: Reading): Promise<void> {
+  async look(loaded: Loaded, memory: Memory, reading: KeptReading): Promise<void> {
     const minute = Math.floor(loaded.snapshot.atMs / MINUTE_MS)
     if (minute === this.#minute) return
     const em = await this.#forkEm()

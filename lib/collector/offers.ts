@@ -11,10 +11,12 @@ const remembered = new Map<string, UpgradeOffer>()
 /** The newest offer for an agent, or null where there is none or it runs that version. */
 export function offerFor(
   facts: ReplyFacts,
-  { labels }: Pick<Sender, 'labels'>,
+  { labels, teamId }: Pick<Sender, 'labels' | 'teamId'>,
   { version }: Pick<NodeFacts, 'version'>,
 ): UpgradeOffer | null {
-  const offer = facts.offers.find(({ labelKey, labelValue }) => isFor(labels, labelKey, labelValue))
+  const offer = facts.offers.find(
+    (one) => one.teamId === teamId && isFor(labels, one.labelKey, one.labelValue),
+  )
   return offer && offer.version !== version ? signed(facts, offer) : null
 }
 

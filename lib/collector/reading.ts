@@ -2,8 +2,12 @@ import type { Reading } from '@/lib/data/dto'
 import { CONFIDENCE, type Coverage, type Estimate } from '@/lib/method/control'
 import type { HeadlineInput } from './judge'
 import type { Memory, NamedCut } from './memory'
+import type { VerdictFacts } from './verdict'
 
-/** The reading as people and programs see it. */
+/** As it is kept: where several teams have agents, with what the sentences are made from. */
+export type KeptReading = Reading & { facts?: VerdictFacts }
+
+/** The reading as the team that owns every node sees it. */
 export function readingOf(
   { estimate, whole, usual, core }: HeadlineInput,
   memory: Memory,

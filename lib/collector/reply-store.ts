@@ -19,6 +19,8 @@ export interface OfferFacts {
   sha256: string
   labelKey: string | null
   labelValue: string | null
+  /** It is for the agents of this team. */
+  teamId: string
 }
 
 const FACTS: Statement = {
@@ -28,7 +30,7 @@ const FACTS: Statement = {
       coalesce(greatest(0, ${epochMs('clock_timestamp()')} - ${epochMs('c.updated_at')}), 0) as "ageMs",
       (select coalesce(max(r.version), 1) from overlay_key_rings r where r.overlay_id = o.id) as "ringVersion",
       (select coalesce(jsonb_agg(jsonb_build_object('version', u.version, 'sha256', a.sha256,
-         'labelKey', u.label_key, 'labelValue', u.label_value) order by u.offered_at desc), '[]')
+         'labelKey', u.label_key, 'labelValue', u.label_value, 'teamId', u.team_id) order by u.offered_at desc), '[]')
        from upgrade_offers u join agent_releases a on a.version = u.version
        where u.overlay_id = o.id and u.halted_at is null) as offers
     from overlays o left join controls c on c.overlay_id = o.id

@@ -1,4 +1,3 @@
-import type { Reading } from '@/lib/data/dto'
 import type { Log } from '@/lib/http/runtime'
 import {
   DEFAULT_SETTINGS,
@@ -21,6 +20,7 @@ import { LinkWatch } from './link-watch'
 import { BLANK_MEMORY, STATE_VERSION, type StoredState } from './memory'
 import type { Moments } from './moments'
 import type { PlannedLinks } from './planned'
+import type { KeptReading } from './reading'
 import { linksFor } from './rehearsal/links'
 import { planRehearsals, tellRehearsals } from './rehearsal/round'
 import type { Upkeep } from './upkeep'
@@ -199,7 +199,7 @@ export class Term {
     return null
   }
 
-  #plan(loaded: Loaded, usual: number | null): { round: Round; reading: Reading } {
+  #plan(loaded: Loaded, usual: number | null): { round: Round; reading: KeptReading } {
     const { pace: paceName, disclosure, weights, key } = loaded
     const pace = PACES[paceName]
     const sequence = this.#sequence + 1
@@ -228,7 +228,7 @@ export class Term {
       random: this.#components.random,
       rehearsals: planned.rehearsed,
     })
-    const { reading, memory, events, store } = judge({
+    const { reading, memory, events, facts, store } = judge({
       estimate,
       core,
       parts,
@@ -246,10 +246,13 @@ export class Term {
       disclosure === 'named'
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
-    const told = withFleetFacts(
-      { ...reading, exact: this.#components.exact.latest(atMs) },
-      fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
-    )
+    const told: KeptReading = {
+      ...withFleetFacts(
+        { ...reading, exact: this.#components.exact.latest(atMs) },
+        fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
+      ),
+      ...(loaded.isShared && { facts }),
+    }
     const round: Round = {
       sequence,
       state: { version: STATE_VERSION, control, memory },
@@ -263,8 +266,9 @@ export class Term {
         memory,
         floors: loaded.floors,
         meanWeightedDegree: estimate.coverage.meanWeightedDegree,
-        agents: snapshot.agents.map(({ agentId, name, labels, last }) => ({
-          ...{ agentId, name, labels },
+        agents: snapshot.agents.map(({ agentId, name, labels, isOwn = true, last }) => ({
+          ...{ agentId, labels },
+          name: isOwn ? name : 'a node of another team',
           value: last?.report.node.value?.value ?? null,
         })),
         intervalMs: pace.intervalMs,

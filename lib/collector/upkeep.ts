@@ -8,7 +8,8 @@ import type { Loaded } from './leader-load'
 import type { Memory } from './memory'
 import { query } from './query'
 import { RETIRE_LOOK_MS, toRetire } from './retire'
-import { countOf, listOf } from './words'
+import { eventOf, nodesList } from './said'
+import { countOf } from './words'
 
 const HOUR_MS = 3_600_000
 
@@ -70,8 +71,8 @@ export class Upkeep {
     await this.#asLeader(async (em) => {
       const retired = await retireUnheard(em, ids, new Date(atMs - limitMs))
       if (retired.length === 0) return
-      const text = `${listOf(retired.sort())} retired: unheard for ${countOf(retireAfterHours, 'hour')}`
-      await enterEvent(em, this.#overlayId, { kind: 'agent-left', text })
+      const why = ` retired: unheard for ${countOf(retireAfterHours, 'hour')}`
+      await enterEvent(em, this.#overlayId, eventOf('agent-left', [...nodesList(retired.sort()), why]))
     })
   }
 

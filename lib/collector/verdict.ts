@@ -23,6 +23,8 @@ export interface VerdictFacts {
   treatAsSplit:
     | { by: 'cut'; nodes: number; where: string[] }
     | { by: 'label'; nodes: number; key: string; values: string[] }
+    /** Of a label that the reader may not see. */
+    | { by: 'hidden-label'; nodes: number }
     | null
   singleCut: boolean | null
   cut: { nodes: Record<Side, number>; links: number } | null
@@ -70,10 +72,7 @@ export function verdictOf(facts: VerdictFacts): Verdict {
 
 function treatAsSplit(facts: VerdictFacts, together: NonNullable<VerdictFacts['treatAsSplit']>): Verdict {
   const { nodes } = together
-  const which =
-    together.by === 'cut'
-      ? 'all beyond the last weak cut'
-      : `all of ${together.key} = ${listOf(together.values)}`
+  const which = whichOf(together)
   const where = together.by === 'cut' && together.where.length > 0 ? listOf(together.where) : null
   const fell = where ? `${where} fell silent together.` : 'They fell silent together.'
   const still =
@@ -88,6 +87,17 @@ function treatAsSplit(facts: VerdictFacts, together: NonNullable<VerdictFacts['t
       facts.state === 'unheard' ? 'The reading is withheld.' : '',
       partsText(facts.parts ?? []),
     ),
+  }
+}
+
+function whichOf(together: NonNullable<VerdictFacts['treatAsSplit']>): string {
+  switch (together.by) {
+    case 'cut':
+      return 'all beyond the last weak cut'
+    case 'label':
+      return `all of ${together.key} = ${listOf(together.values)}`
+    case 'hidden-label':
+      return 'all with one label in common'
   }
 }
 

@@ -7,21 +7,23 @@ import { namedLinks } from './links'
 import { loadMoment, type MomentQuery, type PastMoment } from './moments'
 import { openOverlay } from './overlays'
 import { memoryOf, presentReading } from './readings'
+import { sightOf } from './sight'
 
 /** The weak cut as last counted, or as it was at a past moment, with its crossing links as disclosure allows. */
 export async function getCut(call: Call, slug: string, { at }: MomentQuery = {}): Promise<Cut> {
   const overlay = await openOverlay(call, 'reading.read', slug)
-  if (at !== undefined) return cutThen(await loadMoment(call.em, overlay.id, new Date(at)))
-  const reading = await presentReading(call.em, overlay, call.now)
+  const sight = await sightOf(call, overlay)
+  if (at !== undefined) return cutThen(await loadMoment(call.em, overlay.id, new Date(at), sight))
+  const reading = await presentReading(call.em, overlay, call.now, sight)
   const memory = await memoryOf(call.em, overlay.id)
   if (!reading.sides || !memory) return noCut(reading.at, memory?.singleCut === false)
   const agents = await call.em.find(AgentSchema, { overlay: overlay.id, state: 'joined' })
-  const links = await namedLinks(call.em, overlay, memory)
+  const links = await namedLinks(call.em, overlay, memory, sight)
   return cutOf(
     reading,
     links.filter(({ crossing }) => crossing),
     followsOf(
-      agents.map(({ id, labels }) => ({ agentId: id, labels })),
+      agents.map(({ id, labels }) => ({ agentId: id, labels: sight.labelsOf({ agentId: id, labels }) })),
       memory,
     ),
   )

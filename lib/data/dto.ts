@@ -7,6 +7,7 @@ import { DISCLOSURES } from '@/lib/method/orders'
 import { PACE_NAMES } from '@/lib/method/pace'
 import { LINK_KINDS, UPGRADE_STATES } from '@/lib/method/report'
 
+import { STANDINGS } from './partner-dto'
 import { ROLES } from './people-dto'
 
 export * from './people-dto'
@@ -158,6 +159,8 @@ export const nodeSchema = z.object({
   heardAt: at.nullable(),
   version: z.string().nullable(),
   state: z.enum(NODE_STATES),
+  /** Another team's: the name is what the caller's team calls it, and its agent's own affairs are left out. */
+  partner: z.boolean().optional(),
   /** How the overlay knows the node, where its agent says so. */
   node: z.string().nullable().optional(),
   joinedAt: at.optional(),
@@ -311,8 +314,13 @@ export const overlaySchema = z.object({
   runbookUrl: z.string().nullable(),
   /** Agents unheard for so long are retired by themselves; null for never. */
   retireAfterHours: z.number().int().nullable().optional(),
-  /** The caller's role. */
+  /** The caller's role in the team as which they see the overlay. */
   role: z.enum(ROLES),
+  /** How that team takes part, and which one it is; null for programs of the server. */
+  standing: z.enum(STANDINGS).optional(),
+  as: z.object({ slug: z.string(), name: z.string() }).nullable().optional(),
+  /** Other teams take part. */
+  shared: z.boolean().optional(),
   joined: z.number().int(),
 })
 export type Overlay = z.infer<typeof overlaySchema>
@@ -391,6 +399,8 @@ export const EVENT_KINDS = [
   'rehearsal-planned',
   'rehearsal-started',
   'rehearsal-ended',
+  'partner-joined',
+  'partner-ended',
 ] as const
 export const eventSchema = z.object({
   id: z.string(),

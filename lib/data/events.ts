@@ -5,6 +5,8 @@ import type { EntityManager } from '@/lib/db'
 import type { Call } from '@/lib/http/call'
 import { openOverlay } from './overlays'
 import { presentReading } from './readings'
+import { sightedText } from './said-sight'
+import { type Sight, sightOf } from './sight'
 
 export const EVENTS_MS = 3_600_000
 export const EVENTS_MOST = 500
@@ -19,7 +21,8 @@ export async function listEvents(call: Call, slug: string): Promise<OverlayEvent
     { overlayId: overlay.id, at: { $gt: new Date(call.now.getTime() - EVENTS_MS) } },
     { orderBy: { at: 'desc', id: 'desc' }, limit: EVENTS_MOST },
   )
-  return rows.map(toDto)
+  const sight = await sightOf(call, overlay)
+  return rows.flatMap((row) => seen(row, sight))
 }
 
 /** For an event stream, once the caller has been checked: what to look at, and a look at what is new. */
@@ -28,7 +31,8 @@ export async function followOverlay(
   slug: string,
   components: { forkEm(): Promise<EntityManager>; now(): Date },
 ): Promise<{ overlayId: string; load(event: FeedEvent): Promise<readonly object[]> }> {
-  const { id } = await openOverlay(call, 'event.read', slug)
+  const overlay = await openOverlay(call, 'event.read', slug)
+  const { id } = overlay
   const newest = await call.em.find(
     OverlayEventSchema,
     { overlayId: id },
@@ -39,7 +43,9 @@ export async function followOverlay(
     overlayId: id,
     load: async (event) => {
       const em = await components.forkEm()
-      if (event === 'reading') return [await presentReading(em, { id }, components.now())]
+      // Each time: agents of other teams may have joined since.
+      const sight = await sightOf({ ...call, em }, overlay)
+      if (event === 'reading') return [await presentReading(em, { id }, components.now(), sight)]
       const rows = await em.find(
         OverlayEventSchema,
         { overlayId: id, id: { $gt: known.size < LOOK_BACK_EVENTS ? 0 : Math.min(...known) } },
@@ -48,11 +54,34 @@ export async function followOverlay(
       const unsent = rows.filter((event) => !known.has(event.id))
       const ids = [...known, ...unsent.map((event) => event.id)].sort((a, b) => b - a)
       known = new Set(ids.slice(0, LOOK_BACK_EVENTS))
-      return unsent.map(toDto)
+      return unsent.flatMap((row) => seen(row, sight))
     },
   }
 }
 
-function toDto({ id, at, kind, text }: EventRow): OverlayEvent {
-  return { id: String(id), at: at.toISOString(), kind, text }
+/** Nothing where it is told to another team. */
+function seen({ id, at, kind, text, data, teamId }: EventRow, sight: Sight): OverlayEvent[] {
+  const told = { id: String(id), at: at.toISOString(), kind }
+  if (!sight.isTold(teamId)) return []
+  const words = sightedText({ text, data, isNaming: NAMING.has(kind) }, sight)
+  return words === null ? [] : [{ ...told, text: words }]
 }
+
+/** Kinds whose text names nodes, or is one team's: from before texts were kept in parts. */
+const NAMING = new Set<EventRow['kind']>([
+  'agent-joined',
+  'agent-left',
+  'agent-revoked',
+  'agent-unheard',
+  'agent-heard',
+  'link-lost',
+  'link-found',
+  'agent-left-out',
+  'agent-readmitted',
+  'agent-cloned',
+  'collector-away',
+  'upgrade-offered',
+  'upgrade-halted',
+  'incident-raised',
+  'incident-cleared',
+])

@@ -1,3 +1,4 @@
+import type { Incident } from '@/entities'
 import { labelFollowed } from '@/lib/collector/follows'
 import { query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
@@ -9,6 +10,7 @@ import type { IncidentReportInput, ToldWithAttempts } from '@/lib/report/inciden
 import { MESSAGE_WORDS } from './incident-told'
 import { loadWhole, openIncident } from './incidents'
 import { loadMoment } from './moments'
+import { sightAs } from './sight'
 
 /** What the report of an incident is made of. */
 export async function getIncidentReport(
@@ -20,7 +22,7 @@ export async function getIncidentReport(
   return {
     incident: await loadWhole(call, incident),
     told: await toldWithAttempts(call.em, incident.id),
-    drawing: incident.moment ? await drawingThen(call.em, incident.overlay.id, incident.moment.at) : null,
+    drawing: await drawingThen(call.em, incident),
     zone,
     madeAt: call.now,
   }
@@ -47,9 +49,14 @@ async function toldWithAttempts(em: EntityManager, incidentId: string): Promise<
 /** Pixels, as on a wide page: printed it becomes narrower, with everything in proportion. */
 const DRAWING_WIDTH = 880
 
-async function drawingThen(em: EntityManager, overlayId: string, at: string): Promise<StretchLayout | null> {
+async function drawingThen(
+  em: EntityManager,
+  { overlay, team, moment }: Incident,
+): Promise<StretchLayout | null> {
+  if (!moment) return null
   try {
-    const { nodes, links, reading } = await loadMoment(em, overlayId, new Date(at))
+    const sight = await sightAs(em, overlay.id, [team.id])
+    const { nodes, links, reading } = await loadMoment(em, overlay.id, new Date(moment.at), sight)
     return layoutStretch({
       nodes,
       links,

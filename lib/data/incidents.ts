@@ -1,5 +1,6 @@
 import type { FilterQuery } from '@mikro-orm/core'
 import {
+  type IncidentEntry as EntryRow,
   type Incident,
   IncidentEntrySchema,
   IncidentFileSchema,
@@ -15,8 +16,16 @@ import type { IncidentsQuery } from './incident-dto'
 import { toIncident } from './incident-state'
 import { toldOf } from './incident-told'
 import { openOverlay } from './overlays'
+import { sightedText } from './said-sight'
+import { type Sight, sightAs } from './sight'
 import { callerTeams, teamMeant } from './teams'
-import type { Incident as IncidentDto, IncidentEntry, IncidentFile, IncidentWhole } from './warn-dto'
+import type {
+  EntryKind,
+  Incident as IncidentDto,
+  IncidentEntry,
+  IncidentFile,
+  IncidentWhole,
+} from './warn-dto'
 
 export interface IncidentPage {
   items: IncidentDto[]
@@ -103,10 +112,11 @@ export async function getIncident(call: Call, number: number): Promise<IncidentW
 /** For those who have checked the caller. */
 export async function loadWhole(call: Call, incident: Incident): Promise<IncidentWhole> {
   const { em } = call
+  const sight = await sightAs(em, incident.overlay.id, [incident.team.id])
   return {
     ...toIncident(incident),
     role: roleIn(call, incident.team.id),
-    entries: await entriesOf(call, incident.id),
+    entries: await entriesOf(call, incident.id, sight),
     files: await filesOf(call, incident.id),
     momentAt: incident.moment?.at ?? null,
     raised: await raisedWords(call, incident),
@@ -115,17 +125,28 @@ export async function loadWhole(call: Call, incident: Incident): Promise<Inciden
   }
 }
 
-async function entriesOf({ em }: Call, incidentId: string): Promise<IncidentEntry[]> {
+/** Entered from what happened in the overlay, which may name nodes. */
+const NAMING: ReadonlySet<EntryKind> = new Set(['link-lost', 'link-found', 'agent-unheard', 'agent-heard'])
+
+/** An entry's text, as its incident's team reads it. */
+export function entryText(
+  { kind, text, data }: Pick<EntryRow, 'kind' | 'text' | 'data'>,
+  sight: Sight,
+): string {
+  return sightedText({ text, data, isNaming: NAMING.has(kind) }, sight) ?? 'Something changed.'
+}
+
+async function entriesOf({ em }: Call, incidentId: string, sight: Sight): Promise<IncidentEntry[]> {
   const entries = await em.find(
     IncidentEntrySchema,
     { incident: incidentId },
     { populate: ['user'], orderBy: { at: 'asc', id: 'asc' } },
   )
-  return entries.map(({ id, at, kind, text, user }) => ({
+  return entries.map(({ id, at, kind, text, data, user }) => ({
     id: String(id),
     at: at.toISOString(),
     kind,
-    text,
+    text: entryText({ kind, text, data }, sight),
     by: user ? { id: user.id, name: user.name } : null,
   }))
 }

@@ -6,6 +6,7 @@ export { AUDIT_PAGE_SIZE, type AuditFilter, type AuditPage, auditFilterSchema, l
 export { changeCallOrder, createCallOrder, removeCallOrder } from './call-orders'
 export { addChannel, changeChannel, listChannels, removeChannel } from './channels'
 export { listDeliveries, retryDelivery } from './deliveries'
+export { createInvitation, joinAsPartner, withdrawInvitation } from './invitations'
 export { createJoiningCode, listJoiningCodes, revokeJoiningCode } from './joining-codes'
 export { listKeptMessages } from './kept-messages'
 export {
@@ -18,6 +19,8 @@ export {
   type TeamMembers,
 } from './members'
 export { createOverlay, getOverlay, listOverlays, openOverlay, setRetireAfter } from './overlays'
+export { endPartnership } from './partner-end'
+export { changePart, listPartners } from './partners'
 export { readPasswordLink, setPassword } from './password-links'
 export { cancelRehearsal, createRehearsal, getRehearsal, listRehearsals } from './rehearsals'
 export {

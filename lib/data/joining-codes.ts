@@ -9,14 +9,14 @@ import type {
 import { type EntityManager, sql } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
-import { openOverlay } from './overlays'
+import { openOverlayAs } from './overlays'
 
-/** Newest first. */
+/** Of the caller's team, newest first. */
 export async function listJoiningCodes(call: Call, slug: string): Promise<JoiningCodeDto[]> {
-  const overlay = await openOverlay(call, 'joining-code.list', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'joining-code.list', slug)
   const codes = await call.em.find(
     JoiningCodeSchema,
-    { overlay: overlay.id },
+    { overlay: overlay.id, team: teamId },
     { populate: ['createdBy'], orderBy: { createdAt: 'desc', id: 'asc' } },
   )
   return codes.map((code) => toDto(code, call.now))
@@ -28,11 +28,12 @@ export async function createJoiningCode(
   slug: string,
   input: z.output<typeof newJoiningCodeSchema>,
 ): Promise<z.infer<typeof createdJoiningCodeSchema>> {
-  const overlay = await openOverlay(call, 'joining-code.create', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'joining-code.create', slug)
   const { caller, em, now } = call
   const code = newJoiningCode()
   const row = em.create(JoiningCodeSchema, {
     overlay,
+    team: teamId,
     hash: hashJoiningCode(code),
     hint: code.slice(0, code.indexOf('-')),
     uses: input.uses,
@@ -50,10 +51,10 @@ export async function createJoiningCode(
 
 /** A second revocation changes nothing. */
 export async function revokeJoiningCode(call: Call, slug: string, id: string): Promise<JoiningCodeDto> {
-  const overlay = await openOverlay(call, 'joining-code.revoke', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'joining-code.revoke', slug)
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
-  const where = { id, overlay: overlay.id }
+  const where = { id, overlay: overlay.id, team: teamId }
   const code = known ? await call.em.findOne(JoiningCodeSchema, where, { populate: ['createdBy'] }) : null
   if (!code) throw new AppError('not-found', 'There is no such joining code. Load the list again.')
   call.note({ subject: `${overlay.slug}: ${code.hint}…` })

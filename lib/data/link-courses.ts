@@ -2,6 +2,7 @@ import { cursorOf } from '@/lib/collector/namings'
 import { epochMs, query } from '@/lib/collector/query'
 import type { EntityManager } from '@/lib/db'
 import { type KeptRange, keptOf } from './kept-moments'
+import type { Sight } from './sight'
 import type { LinkCourse, WeakLink } from './weak-dto'
 
 export interface Pair {
@@ -13,22 +14,24 @@ type Kept = [one: number, other: number, weight: number, share: number | null, l
 /** Of more links than this nobody looks at each one's course. */
 export const COURSES_MOST = 200
 
-/** What kept snapshots say of links while they crossed the cut, by the names of their ends. */
+/** What kept snapshots say of links while they crossed the cut, by the names of their ends as they are seen. */
 export async function linkCourses(
   em: EntityManager,
   range: KeptRange,
   pairs: readonly Pair[],
+  sight: Sight,
 ): Promise<Map<string, LinkCourse>> {
   const wanted = pairs.slice(0, COURSES_MOST)
   if (wanted.length === 0) return new Map()
-  const names = [...new Set(wanted.flatMap(({ a, b }) => [a, b]))]
+  const seen = [...new Set(wanted.flatMap(({ a, b }) => [a, b]))]
+  const names = seen.flatMap((name) => sight.nameBehind(name) ?? [])
   const numbers = await query<{ number: number; name: string }>(
     em,
     `select number, name from snapshot_nodes where overlay_id = ?
        and name in (select jsonb_array_elements_text(?::jsonb))`,
     [range.overlayId, JSON.stringify(names)],
   )
-  const nameOf = new Map(numbers.map(({ number, name }) => [number, name]))
+  const nameOf = new Map(numbers.map(({ number, name }) => [number, sight.named(name)]))
   const courses = new Map(wanted.map((pair) => [cursorOf(pair), [] as LinkCourse]))
   for (const { atMs, links } of await keptOf<{ links: Kept[] }>(em, range, 'links'))
     for (const [one, other, weight, share, lost] of links) {
@@ -47,10 +50,11 @@ export interface LinkTurn extends Pair {
 /** So many of an overlay's newest events are looked through: pages ask every few seconds. */
 export const EVENTS_LOOKED_AT = 20_000
 
-/** When links were last lost or found up to a moment, by the names of their ends. */
+/** When links were last lost or found up to a moment, by the names of their ends as they are seen. */
 export async function lastTurns(
   em: EntityManager,
   { overlayId, toMs }: Omit<KeptRange, 'last'>,
+  sight: Sight,
 ): Promise<Map<string, LinkTurn>> {
   const turns = await query<LinkTurn>(
     em,
@@ -61,7 +65,13 @@ export async function lastTurns(
      order by a, b, at desc, id desc`,
     [overlayId, new Date(toMs), EVENTS_LOOKED_AT],
   )
-  return new Map(turns.map((turn) => [cursorOf(turn), turn]))
+  return new Map(
+    turns.map((turn) => {
+      const [one, other] = [sight.named(turn.a), sight.named(turn.b)]
+      const [a, b] = one < other ? [one, other] : [other, one]
+      return [cursorOf({ a, b }), { ...turn, a, b }]
+    }),
+  )
 }
 
 /** Since when a link has been named: found then, or seen in the oldest snapshot looked at since it was last lost. */

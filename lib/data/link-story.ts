@@ -10,6 +10,7 @@ import { noSuchNode, type StoryQuery } from './node-story'
 import { nodeNamed } from './nodes'
 import { openOverlay } from './overlays'
 import { memoryOf, presentReading } from './readings'
+import { sightOf } from './sight'
 import type { LinkStory } from './weak-dto'
 import { withoutLink } from './weak-place'
 
@@ -23,18 +24,21 @@ export async function getLinkStory(
   { last }: StoryQuery,
 ): Promise<LinkStory> {
   const overlay = await openOverlay(call, 'link.list', slug)
-  const pair = ends.a < ends.b ? ends : { a: ends.b, b: ends.a }
+  const pair = inOrder(ends.a, ends.b)
   const memory = await memoryOf(call.em, overlay.id)
+  const sight = await sightOf(call, overlay)
   const [a, b] = [
-    await nodeNamed(call.em, overlay, memory, pair.a),
-    await nodeNamed(call.em, overlay, memory, pair.b),
+    await nodeNamed(call.em, overlay, memory, pair.a, sight),
+    await nodeNamed(call.em, overlay, memory, pair.b, sight),
   ]
   if (!a || !b) throw noSuchNode(a ? pair.b : pair.a)
+  // What is kept of links has the nodes' own names.
+  const kept = inOrder(sight.nameBehind(pair.a) ?? '', sight.nameBehind(pair.b) ?? '')
   const range = { overlayId: overlay.id, last, toMs: call.now.getTime() }
-  const links = await namedLinks(call.em, overlay, memory)
+  const links = await namedLinks(call.em, overlay, memory, sight)
   const link = links.find((each) => each.a === pair.a && each.b === pair.b) ?? null
-  const course = (await linkCourses(call.em, range, [pair])).get(cursorOf(pair)) ?? []
-  const turn = (await lastTurns(call.em, range)).get(cursorOf(pair))
+  const course = (await linkCourses(call.em, range, [pair], sight)).get(cursorOf(pair)) ?? []
+  const turn = (await lastTurns(call.em, range, sight)).get(cursorOf(pair))
   const silent = new Set([a, b].filter(({ state }) => state === 'unheard').map(({ name }) => name))
   return {
     a,
@@ -42,12 +46,14 @@ export async function getLinkStory(
     disclosure: overlay.disclosure,
     link,
     since: link?.state === 'live' ? sinceOf(turn, course) : null,
-    without: link && withoutLink(link, await presentReading(call.em, overlay, call.now), silent),
+    without: link && withoutLink(link, await presentReading(call.em, overlay, call.now, sight), silent),
     course,
-    events: await eventsOf(call.em, overlay.id, pair),
-    incidents: await mentionsOf(call, overlay.id, [formatLink(pair.a, pair.b), formatLink(pair.b, pair.a)]),
+    events: await eventsOf(call.em, overlay.id, kept),
+    incidents: await mentionsOf(call, overlay.id, [formatLink(kept.a, kept.b), formatLink(kept.b, kept.a)]),
   }
 }
+
+const inOrder = (a: string, b: string): Pair => (a < b ? { a, b } : { a: b, b: a })
 
 async function eventsOf(em: EntityManager, overlayId: string, { a, b }: Pair): Promise<LinkStory['events']> {
   const rows = await query<{ id: string; atMs: number; kind: 'link-lost' | 'link-found' }>(

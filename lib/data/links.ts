@@ -10,6 +10,7 @@ import { PACES, type PaceName } from '@/lib/method/pace'
 import { openOverlay } from './overlays'
 import type { Page } from './paging'
 import { memoryOf } from './readings'
+import { type Sight, sightOf } from './sight'
 
 /** As agents name them, by the names of their ends. */
 export async function listLinks(
@@ -19,7 +20,7 @@ export async function listLinks(
 ): Promise<{ items: OverlayLink[]; next: string | null }> {
   const overlay = await openOverlay(call, 'link.list', slug)
   const memory = await memoryOf(call.em, overlay.id)
-  const all = await namedLinks(call.em, overlay, memory)
+  const all = await namedLinks(call.em, overlay, memory, await sightOf(call, overlay))
   const rest = after === undefined ? all : all.filter((link) => cursorOf(link) > after)
   const items = rest.slice(0, limit)
   const last = items[items.length - 1]
@@ -31,6 +32,7 @@ export async function namedLinks(
   em: EntityManager,
   { id, pace }: { id: string; pace: PaceName },
   memory: Memory | null,
+  sight: Sight,
 ): Promise<OverlayLink[]> {
   const rows = await query<Omit<Naming, 'heard'> & { ageMs: number }>(
     em,
@@ -41,7 +43,7 @@ export async function namedLinks(
   )
   const heldForMs = heldMs(PACES[pace].intervalMs)
   return joinNamings(
-    rows.map((row) => ({ ...row, heard: row.ageMs <= heldForMs })),
+    rows.map((row) => ({ ...row, name: sight.nameOf(row), heard: row.ageMs <= heldForMs })),
     (agentId) => sideOf(memory, agentId),
   )
 }

@@ -2,6 +2,8 @@ import { IncidentEntrySchema, IncidentSchema } from '@/entities'
 import { query } from '@/lib/collector/query'
 import type { Call } from '@/lib/http/call'
 import { toIncident } from './incident-state'
+import { entryText } from './incidents'
+import { type Sight, sightAs } from './sight'
 import { callerTeams } from './teams'
 import type { Mention } from './weak-dto'
 
@@ -9,8 +11,8 @@ export const MENTIONS_MOST = 20
 const LINES_MOST = 5
 
 /**
- * Incidents of an overlay whose timeline names a node or a link, as far as they are of the caller's teams; the newest first.
- * @param spellings any of these, as a whole word
+ * Incidents of an overlay whose timeline names a node or a link, as far as the caller may see them; the newest first.
+ * @param spellings any of these, as a whole word; by the nodes' own names
  */
 export async function mentionsOf(
   call: Call,
@@ -40,12 +42,19 @@ export async function mentionsOf(
     { incident: { $in: ids } },
     { orderBy: { at: 'desc', id: 'desc' } },
   )
+  const sights = new Map<string, Sight>()
+  for (const { team } of incidents)
+    if (!sights.has(team.id)) sights.set(team.id, await sightAs(call.em, overlayId, [team.id]))
   return incidents.flatMap((incident) => {
+    const sight = sights.get(incident.team.id)
+    if (!sight) return []
     const lines = entries.filter((entry) => entry.incident.id === incident.id && names(entry.text, spellings))
     if (lines.length === 0) return []
     return {
       ...toIncident(incident),
-      lines: lines.slice(0, LINES_MOST).map(({ at, text }) => ({ at: at.toISOString(), text })),
+      lines: lines
+        .slice(0, LINES_MOST)
+        .map((entry) => ({ at: entry.at.toISOString(), text: entryText(entry, sight) })),
     }
   })
 }

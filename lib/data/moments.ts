@@ -2,9 +2,12 @@ import { z } from 'zod'
 import type { MomentNode } from '@/lib/collector/moment'
 import { type MomentRow, momentRowSchema, unpackNodes } from '@/lib/collector/moment-pack'
 import { epochMs, query } from '@/lib/collector/query'
+import type { VerdictFacts } from '@/lib/collector/verdict'
 import { type OverlayLink, type Reading, readingSchema } from '@/lib/data/dto'
 import type { EntityManager } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
+import { sightedReading } from './reading-sight'
+import type { Sight } from './sight'
 
 export const momentQuerySchema = z.object({
   /** As it was then; left out: as it is. */
@@ -21,34 +24,55 @@ const SOURCES = [
 
 export interface PastMoment {
   at: string
-  nodes: readonly (MomentNode & { number: number })[]
+  nodes: readonly (MomentNode & { number: number; partner: boolean })[]
   links: readonly OverlayLink[]
   reading: Reading
 }
 
 /** For those who have checked the caller. */
-export async function loadMoment(em: EntityManager, overlayId: string, at: Date): Promise<PastMoment> {
-  const { reading, ...row } = await findSnapshot(em, overlayId, at)
-  const faces = await query<{
-    number: number
-    agentId: string
-    name: string
-    labels: Record<string, string>
-  }>(
+export async function loadMoment(
+  em: EntityManager,
+  overlayId: string,
+  at: Date,
+  sight: Sight,
+): Promise<PastMoment> {
+  const { reading: kept, ...row } = await findSnapshot(em, overlayId, at)
+  const faces = await query<FaceThen>(
     em,
     `select number, agent_id as "agentId", name, labels from snapshot_nodes
      where overlay_id = ? and number <@ ?::int4multirange`,
     [overlayId, row.nodes],
   )
-  const known = new Map(faces.map((face) => [face.number, face]))
+  const known = new Map(faces.map((face) => [face.number, faceSeen(face, sight)]))
+  const { facts, ...reading } = kept
   const nodes = unpackNodes(row).flatMap((node) => {
     const face = known.get(node.number)
     return face ? [{ ...face, ...node }] : []
   })
-  return { at: new Date(row.atMs).toISOString(), nodes, links: linksOf(row, known), reading }
+  return {
+    at: new Date(row.atMs).toISOString(),
+    nodes,
+    links: linksOf(row, known),
+    reading: sightedReading(reading, facts, sight),
+  }
 }
 
-const snapshotSchema = momentRowSchema.extend({ reading: readingSchema })
+interface FaceThen {
+  number: number
+  agentId: string
+  name: string
+  labels: Record<string, string>
+}
+
+function faceSeen(face: FaceThen, sight: Sight): FaceThen & { partner: boolean } {
+  const partner = !sight.isOwn(face.agentId)
+  return { ...face, name: sight.nameOf(face), labels: sight.labelsOf(face), partner }
+}
+
+const factsSchema = z.custom<VerdictFacts>((value) => typeof value === 'object' && value !== null)
+const snapshotSchema = momentRowSchema.extend({
+  reading: readingSchema.extend({ facts: factsSchema.optional() }),
+})
 
 async function findSnapshot(
   em: EntityManager,

@@ -10,6 +10,7 @@ import { mentionsOf } from './mentions'
 import { nodeNamed } from './nodes'
 import { openOverlay } from './overlays'
 import { memoryOf } from './readings'
+import { sightOf } from './sight'
 import { lastSchema, type NodeStory } from './weak-dto'
 
 export const storyQuerySchema = z.object({ last: lastSchema.default('3h') })
@@ -24,17 +25,22 @@ export async function getNodeStory(
 ): Promise<NodeStory> {
   const overlay = await openOverlay(call, 'node.list', slug)
   const memory = await memoryOf(call.em, overlay.id)
-  const node = await nodeNamed(call.em, overlay, memory, name)
-  if (!node) throw noSuchNode(name)
-  const links = (await namedLinks(call.em, overlay, memory)).filter(({ a, b }) => a === name || b === name)
+  const sight = await sightOf(call, overlay)
+  const node = await nodeNamed(call.em, overlay, memory, name, sight)
+  // What is kept of it has the node's own name.
+  const kept = sight.nameBehind(name)
+  if (!node || kept === null) throw noSuchNode(name)
+  const links = (await namedLinks(call.em, overlay, memory, sight)).filter(
+    ({ a, b }) => a === name || b === name,
+  )
   const live = links.filter(({ state }) => state === 'live').length
   return {
     node,
     disclosure: overlay.disclosure,
     links,
     unnamed: Math.max(0, (node.state === 'heard' ? (node.degree ?? 0) : 0) - live),
-    course: await courseOf(call, { overlayId: overlay.id, last, toMs: call.now.getTime() }, name),
-    incidents: await mentionsOf(call, overlay.id, [name]),
+    course: await courseOf(call, { overlayId: overlay.id, last, toMs: call.now.getTime() }, kept),
+    incidents: await mentionsOf(call, overlay.id, [kept]),
   }
 }
 

@@ -15,6 +15,7 @@ import { healthOf } from './node-health'
 import { openOverlay } from './overlays'
 import { pageSchema } from './paging'
 import { memoryOf } from './readings'
+import { type Sight, sightOf } from './sight'
 
 export const nodesQuerySchema = pageSchema.extend({
   ...momentQuerySchema.shape,
@@ -52,28 +53,61 @@ const SELECT = `select a.id, a.name, a.labels, a.version, a.state, a.node as "no
     ${epochMs('clock_timestamp()')} - ${epochMs('s.received_at')} as "ageMs"
   from agents a left join agent_states s on s.agent_id = a.id`
 
-/** By name; of several that left under one name the last, and none where another has it now. */
+interface Listed {
+  id: string
+  name: string
+  labels: Record<string, string>
+}
+
+/** By the names the caller sees; of several that left under one name the last, and none where another has it now. */
 export async function listNodes(
   call: Call,
   slug: string,
   { after, limit, label, at }: NodesQuery,
 ): Promise<{ items: OverlayNode[]; next: string | null; at?: string }> {
   const overlay = await openOverlay(call, 'node.list', slug)
+  const sight = await sightOf(call, overlay)
   if (at !== undefined)
-    return nodesThen(await loadMoment(call.em, overlay.id, new Date(at)), { after, limit, label })
+    return nodesThen(await loadMoment(call.em, overlay.id, new Date(at), sight), { after, limit, label })
   const memory = await memoryOf(call.em, overlay.id)
-  const wanted = label === undefined ? null : Object.fromEntries([labelOf(label)])
-  const rows = await query<Row>(
+  const listed = await query<Listed>(
     call.em,
-    `${SELECT} where a.overlay_id = ? and a.name collate "C" > ? ${wanted ? 'and a.labels @> ?::jsonb' : ''}
+    `select a.id, a.name, a.labels from agents a where a.overlay_id = ?
        and not (a.state = 'left' and exists (select from agents b where b.overlay_id = a.overlay_id
-         and b.name = a.name and b.id <> a.id and (b.state <> 'left' or b.joined_at > a.joined_at)))
-     order by a.name collate "C" limit ?`,
-    [overlay.id, after ?? '', ...(wanted ? [JSON.stringify(wanted)] : []), limit + 1],
+         and b.name = a.name and b.id <> a.id and (b.state <> 'left' or b.joined_at > a.joined_at)))`,
+    [overlay.id],
+  )
+  const page = pageOf(
+    listed.map(({ id, name, labels }) => ({
+      id,
+      name: sight.nameOf({ agentId: id, name }),
+      labels: sight.labelsOf({ agentId: id, labels }),
+    })),
+    { after, limit, label },
   )
   const { intervalMs } = PACES[overlay.pace]
-  const items = rows.slice(0, limit).map((row) => toNode(row, memory, intervalMs))
-  return { items, next: rows.length > limit ? (items[items.length - 1]?.name ?? null) : null }
+  const rows = await query<Row>(call.em, `${SELECT} where a.id = any(?::uuid[])`, [
+    `{${page.items.map(({ id }) => id).join(',')}}`,
+  ])
+  const byId = new Map(rows.map((row) => [row.id, row]))
+  const items = page.items.flatMap(({ id }) => {
+    const row = byId.get(id)
+    return row ? [toNode(row, memory, intervalMs, sight)] : []
+  })
+  return { items, next: page.next }
+}
+
+/** Of all, those of one page, in the order of names. */
+function pageOf<N extends { name: string; labels: Readonly<Record<string, string>> }>(
+  nodes: readonly N[],
+  { after = '', limit, label }: Omit<NodesQuery, 'at'>,
+): { items: N[]; next: string | null } {
+  const wanted = label === undefined ? null : labelOf(label)
+  const found = nodes
+    .filter(({ name, labels }) => name > after && (!wanted || labels[wanted[0]] === wanted[1]))
+    .sort((one, other) => (one.name < other.name ? -1 : 1))
+  const items = found.slice(0, limit)
+  return { items, next: found.length > limit ? (items.at(-1)?.name ?? null) : null }
 }
 
 function labelOf(text: string): [key: string, value: string] {
@@ -84,18 +118,19 @@ function labelOf(text: string): [key: string, value: string] {
 /** Of those that had joined then. How they fared is not kept. */
 function nodesThen(
   { at, nodes }: PastMoment,
-  { after = '', limit, label }: Omit<NodesQuery, 'at'>,
+  page: Omit<NodesQuery, 'at'>,
 ): { items: OverlayNode[]; next: string | null; at: string } {
-  const wanted = label === undefined ? null : labelOf(label)
-  const found = nodes
-    .filter(({ name, labels }) => name > after && (!wanted || labels[wanted[0]] === wanted[1]))
-    .sort((one, other) => (one.name < other.name ? -1 : 1))
-  const items = found.slice(0, limit).map(({ name, labels, side, value, degree, weightedDegree, state }) => ({
-    ...{ name, labels: { ...labels }, side, value, degree, weightedDegree, state },
-    heardAt: state === 'unheard' ? null : at,
-    version: null,
-  }))
-  return { items, next: found.length > limit ? (items.at(-1)?.name ?? null) : null, at }
+  const { items, next } = pageOf(nodes, page)
+  return {
+    items: items.map(({ name, labels, side, value, degree, weightedDegree, state, partner }) => ({
+      ...{ name, labels: { ...labels }, side, value, degree, weightedDegree, state },
+      heardAt: state === 'unheard' ? null : at,
+      version: null,
+      ...(partner && { partner }),
+    })),
+    next,
+    at,
+  }
 }
 
 /** For those who have checked the caller. */
@@ -103,53 +138,62 @@ export async function getNode(
   em: EntityManager,
   { id, pace }: Pick<Overlay, 'id' | 'pace'>,
   agentId: string,
+  sight: Sight,
 ): Promise<OverlayNode> {
   const [row] = await query<Row>(em, `${SELECT} where a.id = ?`, [agentId])
   if (!row) throw new AppError('not-found', 'The node is gone. Load the list again.')
-  return toNode(row, await memoryOf(em, id), PACES[pace].intervalMs)
+  return toNode(row, await memoryOf(em, id), PACES[pace].intervalMs, sight)
 }
 
-/** The one that has the name now, else the last that had it. For those who have checked the caller. */
+/**
+ * By the name the caller sees: the one that has it now, else the last that had it. For those who have checked the
+ * caller.
+ */
 export async function nodeNamed(
   em: EntityManager,
   { id, pace }: Pick<Overlay, 'id' | 'pace'>,
   memory: Memory | null,
   name: string,
+  sight: Sight,
 ): Promise<OverlayNode | null> {
+  const [where, which] = sight.isWhole ? ['a.name = ?', name] : ['a.id = ?', sight.agentNamed(name)]
   const [row] = await query<Row>(
     em,
-    `${SELECT} where a.overlay_id = ? and a.name = ? order by (a.state <> 'left') desc, a.joined_at desc limit 1`,
-    [id, name],
+    `${SELECT} where a.overlay_id = ? and ${where} order by (a.state <> 'left') desc, a.joined_at desc limit 1`,
+    [id, which],
   )
-  return row ? toNode(row, memory, PACES[pace].intervalMs) : null
+  return row ? toNode(row, memory, PACES[pace].intervalMs, sight) : null
 }
 
-/** All that have joined, by name. For those who have checked the caller. */
+/** All that have joined, by the names that are seen. For those who have checked the caller. */
 export async function joinedNodes(
   em: EntityManager,
   { id, pace }: Pick<Overlay, 'id' | 'pace'>,
   memory: Memory | null,
+  sight: Sight,
 ): Promise<OverlayNode[]> {
-  const rows = await query<Row>(
-    em,
-    `${SELECT} where a.overlay_id = ? and a.state = 'joined' order by a.name collate "C"`,
-    [id],
-  )
-  return rows.map((row) => toNode(row, memory, PACES[pace].intervalMs))
+  const rows = await query<Row>(em, `${SELECT} where a.overlay_id = ? and a.state = 'joined'`, [id])
+  const nodes = rows.map((row) => toNode(row, memory, PACES[pace].intervalMs, sight))
+  return nodes.sort((one, other) => (one.name < other.name ? -1 : 1))
 }
 
-function toNode(row: Row, memory: Memory | null, intervalMs: number): OverlayNode {
-  const { name, labels, facts, version, colonies } = row
-  return {
-    name,
-    labels,
-    side: sideOf(memory, row.id),
+function toNode(row: Row, memory: Memory | null, intervalMs: number, sight: Sight): OverlayNode {
+  const { id, facts, version, colonies } = row
+  const seen = {
+    name: sight.nameOf({ agentId: id, name: row.name }),
+    labels: sight.labelsOf({ agentId: id, labels: row.labels }),
+    side: sideOf(memory, id),
     value: facts?.value?.value ?? null,
     degree: facts?.degree ?? null,
     weightedDegree: facts?.weightedDegree ?? null,
     heardAt: timeOf(row.heardAtMs),
-    version: facts?.version ?? version,
     state: stateOf(row, intervalMs),
+  }
+  // How another team's agent fares is that team's own affair.
+  if (!sight.isOwn(id)) return { ...seen, version: null, partner: true }
+  return {
+    ...seen,
+    version: facts?.version ?? version,
     node: row.nodeName,
     joinedAt: new Date(row.joinedAtMs).toISOString(),
     endedAt: timeOf(row.endedAtMs),

@@ -1,10 +1,12 @@
 import { generateKeyPairSync } from 'node:crypto'
 import { UniqueConstraintViolationException } from '@mikro-orm/core'
 import type { z } from 'zod'
-import { type Overlay, OverlaySchema, TeamSchema } from '@/entities'
-import { type ActionName, type Role, roleReaches } from '@/lib/auth/permissions'
+import { type Overlay, OverlayPartnerSchema, OverlaySchema, TeamSchema } from '@/entities'
+import { actingFor, type Parties } from '@/lib/auth/overlay-rights'
+import { type ActionName, permissionOf, roleReaches } from '@/lib/auth/permissions'
 import type { newOverlaySchema, Overlay as OverlayDto } from '@/lib/data/dto'
-import { sql } from '@/lib/db'
+import type { Standing } from '@/lib/data/partner-dto'
+import { type EntityManager, sql } from '@/lib/db'
 import { AppError } from '@/lib/http/app-error'
 import { authorise, type Call } from '@/lib/http/call'
 import { createDefaultRules } from '@/lib/warn/defaults'
@@ -13,9 +15,11 @@ import { callerTeams } from './teams'
 export async function listOverlays(call: Call): Promise<OverlayDto[]> {
   authorise(call, 'overlay.list')
   const teams = callerTeams(call).map((team) => team.teamId)
+  const partnerships = await call.em.find(OverlayPartnerSchema, { team: { $in: teams }, state: 'accepted' })
+  const shared = partnerships.map(({ overlay }) => overlay.id)
   const overlays = await call.em.find(
     OverlaySchema,
-    { team: { $in: teams } },
+    { $or: [{ team: { $in: teams } }, { id: { $in: shared } }] },
     { populate: ['team'], orderBy: { name: 'asc' } },
   )
   return toDtos(call, overlays)
@@ -29,11 +33,41 @@ export async function getOverlay(call: Call, slug: string): Promise<OverlayDto> 
 
 /** The overlay, once `action` is allowed on it. For the functions of lib/data: the entity must not leave the server. */
 export async function openOverlay(call: Call, action: ActionName, slug: string): Promise<Overlay> {
+  return (await openOverlayAs(call, action, slug)).overlay
+}
+
+export interface Opened {
+  overlay: Overlay
+  /** For which of the overlay's teams the caller acts: whose codes, rules and windows are meant. */
+  teamId: string
+  standing: Standing
+}
+
+/** As `openOverlay`, where what is asked for belongs to one of the teams that share the overlay. */
+export async function openOverlayAs(call: Call, action: ActionName, slug: string): Promise<Opened> {
   const overlay = await call.em.findOne(OverlaySchema, { slug }, { populate: ['team'] })
   if (!overlay) throw new AppError('not-found', 'There is nothing here that you may see. Check the address.')
   call.note({ subject: overlay.slug })
-  authorise(call, action, overlay.team.id)
-  return overlay
+  const { decision, teamId, standing } = actingFor(
+    permissionOf(action),
+    call.caller,
+    await partiesOf(call.em, overlay),
+  )
+  if (decision === 'owner-only') {
+    call.note({ teamId })
+    throw new AppError('forbidden', `This is for ${overlay.team.name}, which owns the overlay. Ask them.`)
+  }
+  authorise(call, action, teamId)
+  return { overlay, teamId, standing }
+}
+
+export async function partiesOf(em: EntityManager, { id, team }: Overlay): Promise<Parties> {
+  const partners = await em.find(
+    OverlayPartnerSchema,
+    { overlay: id, state: 'accepted' },
+    { orderBy: { acceptedAt: 'asc', id: 'asc' } },
+  )
+  return { ownerTeamId: team.id, partnerTeamIds: partners.flatMap((partner) => partner.team?.id ?? []) }
 }
 
 export async function createOverlay(
@@ -113,7 +147,20 @@ async function toDtos(call: Call, overlays: Overlay[]): Promise<OverlayDto[]> {
     overlays.map((overlay) => overlay.id),
   )
   const joined = new Map(counts.map((row) => [row.overlay_id, row.joined]))
-  return overlays.map((overlay) => ({
+  const dtos: OverlayDto[] = []
+  for (const overlay of overlays) dtos.push(toDto(call, overlay, await partiesOf(call.em, overlay), joined))
+  return dtos
+}
+
+function toDto(
+  call: Call,
+  overlay: Overlay,
+  parties: Parties,
+  joined: ReadonlyMap<string, number>,
+): OverlayDto {
+  const acting = actingFor(permissionOf('overlay.read'), call.caller, parties)
+  const as = callerTeams(call).find(({ teamId }) => teamId === acting.teamId)
+  return {
     slug: overlay.slug,
     name: overlay.name,
     team: { slug: overlay.team.slug, name: overlay.team.name },
@@ -123,13 +170,13 @@ async function toDtos(call: Call, overlays: Overlay[]): Promise<OverlayDto[]> {
     createdAt: overlay.createdAt.toISOString(),
     demo: overlay.demo,
     contact: overlay.contact ?? null,
-    runbookUrl: overlay.runbookUrl ?? null,
+    // Where it leads is the owning team's own.
+    runbookUrl: acting.standing === 'owner' ? (overlay.runbookUrl ?? null) : null,
     retireAfterHours: overlay.retireAfterHours ?? null,
-    role: roleIn(call, overlay.team.id),
+    role: as?.role ?? 'viewer',
+    standing: acting.standing,
+    as: as ? { slug: as.slug, name: as.name } : null,
+    shared: parties.partnerTeamIds.length > 0,
     joined: joined.get(overlay.id) ?? 0,
-  }))
-}
-
-function roleIn(call: Call, teamId: string): Role {
-  return callerTeams(call).find((team) => team.teamId === teamId)?.role ?? 'viewer'
+  }
 }

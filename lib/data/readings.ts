@@ -11,6 +11,8 @@ import { CONFIDENCE } from '@/lib/method/control'
 import { PACES, type PaceName } from '@/lib/method/pace'
 import { loadMoment, type MomentQuery } from './moments'
 import { openOverlay } from './overlays'
+import { sightedReading } from './reading-sight'
+import { type Sight, sightOf } from './sight'
 import { isStale, staleReading } from './stale-reading'
 
 const LATELY_MS = 3_600_000
@@ -23,18 +25,24 @@ const APART_INTERVALS = STORE_UNCHANGED_INTERVALS + 2
  */
 export async function getReading(call: Call, slug: string, { at }: MomentQuery = {}): Promise<Reading> {
   const overlay = await openOverlay(call, 'reading.read', slug)
-  if (at !== undefined) return readingThen(call.em, overlay, new Date(at))
-  return presentReading(call.em, overlay, call.now)
+  const sight = await sightOf(call, overlay)
+  if (at !== undefined) return readingThen(call.em, overlay, new Date(at), sight)
+  return presentReading(call.em, overlay, call.now, sight)
 }
 
-async function readingThen(em: EntityManager, { id, pace }: Overlay, at: Date): Promise<Reading> {
+async function readingThen(
+  em: EntityManager,
+  { id, pace }: Overlay,
+  at: Date,
+  sight: Sight,
+): Promise<Reading> {
   const after = new Date(at.getTime() - APART_INTERVALS * PACES[pace].intervalMs)
   const [row] = await em.find(
     ReadingSchema,
     { overlayId: id, at: { $lte: at, $gt: after } },
     { orderBy: { at: 'desc' }, limit: 1 },
   )
-  return row ? toReading(row, null) : (await loadMoment(em, id, at)).reading
+  return row ? toReading(row, null, sight) : (await loadMoment(em, id, at, sight)).reading
 }
 
 /** For those who have checked the caller. */
@@ -42,6 +50,7 @@ export async function presentReading(
   em: EntityManager,
   { id }: Pick<Overlay, 'id'>,
   now: Date,
+  sight: Sight,
 ): Promise<Reading> {
   const row = await latestReading(em, id, now)
   // After the reading, so that it is not newer than its evaluation.
@@ -56,14 +65,14 @@ export async function presentReading(
   // History laid out for a demo is shown as it is until the first evaluation.
   const isHistory = row?.demo === true && judgedAtMs === null
   if (!row || (joined === 0 && !isHistory)) return blankReading(now, joined)
-  const reading = toReading(row, judgedAtMs)
+  const reading = toReading(row, judgedAtMs, sight)
   if (isHistory) return reading
   const ageMs = nowMs - (judgedAtMs ?? row.at.getTime())
   return isStale(ageMs, PACES[pace].intervalMs) ? staleReading(reading, nowMs) : reading
 }
 
 /** Looked for where it nearly always is, so that not every day is looked through. */
-async function latestReading(
+export async function latestReading(
   em: EntityManager,
   overlayId: string,
   now: Date,
@@ -87,11 +96,11 @@ interface Standing {
 const NO_STANDING: Standing = { pace: 'steady', joined: 0, judgedAtMs: null, nowMs: 0 }
 
 /** While nothing changes not every look at a withheld reading is stored; the leader's last one says how old it is. */
-function toReading(row: ReadingRow, judgedAtMs: number | null): Reading {
+function toReading(row: ReadingRow, judgedAtMs: number | null, sight: Sight): Reading {
   const { at, lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, demo } = row
-  const { whole, ...body } = row.body
+  const { whole, facts, ...body } = row.body
   const lookedAt = lambda2 == null && judgedAtMs !== null ? new Date(Math.max(judgedAtMs, at.getTime())) : at
-  return {
+  const reading: Reading = {
     ...body,
     at: lookedAt.toISOString(),
     ...fromColumns({ lambda2: lambda2 ?? null, low: low ?? null, high: high ?? null }, whole),
@@ -104,6 +113,7 @@ function toReading(row: ReadingRow, judgedAtMs: number | null): Reading {
     detail,
     demo,
   }
+  return sightedReading(reading, facts, sight)
 }
 
 function blankReading(now: Date, joined: number): Reading {

@@ -20,6 +20,7 @@ import { MOST_REHEARSALS } from '@/lib/method/control'
 import { namedLinks } from './links'
 import { openOverlay } from './overlays'
 import { type NewRehearsal, newRehearsalSchema, type RehearsalDto } from './rehearsal-dto'
+import { sightOf } from './sight'
 
 const LISTED = 100
 /** So many may wait in one overlay, planned ones among them. */
@@ -37,10 +38,15 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
     exclude,
     {
       disclosure: overlay.disclosure,
-      agents: agents.map(({ id, name, labels }) => ({ agentId: id, name, labels })),
+      agents: agents.map(({ id, name, labels, team }) => ({
+        ...{ agentId: id, name, labels },
+        isOwn: (team ?? overlay.team).id === overlay.team.id,
+      })),
       links:
         isOfLinks && overlay.disclosure === 'named'
-          ? (await namedLinks(em, overlay, null)).filter(({ state }) => state === 'live')
+          ? (await namedLinks(em, overlay, null, await sightOf(call, overlay))).filter(
+              ({ state }) => state === 'live',
+            )
           : [],
     },
     true,
@@ -71,7 +77,11 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
   })
   await em.flush()
   if (row.startsAt && row.startsAt > now)
-    await enterEvent(em, overlay.id, { kind: 'rehearsal-planned', text: `Rehearsal planned: ${words} away` })
+    await enterEvent(em, overlay.id, {
+      kind: 'rehearsal-planned',
+      text: `Rehearsal planned: ${words} away`,
+      teamId: overlay.team.id,
+    })
   return toDto(row, now)
 }
 
@@ -116,6 +126,7 @@ export async function cancelRehearsal(call: Call, slug: string, id: string): Pro
   const after = await em.refresh(row)
   await enterEnd(em, {
     overlayId: overlay.id,
+    teamId: overlay.team.id,
     incidentId: row.incident?.id ?? null,
     at: now,
     text: `Rehearsal cancelled: ${takenWords(row.exclude)} away`,

@@ -10,6 +10,7 @@ import { listPlanned } from './planned-links'
 import { memoryOf, presentReading } from './readings'
 import { headline, ofHeadline, reckonLinks } from './reckon-links'
 import type { Proposal, Reinforcement, ReinforcementAsked } from './reinforcement-dto'
+import { sightOf } from './sight'
 
 export { markJoined, planLink, withdrawLink } from './planned-links'
 
@@ -20,9 +21,10 @@ export async function getReinforcement(
   asked: ReinforcementAsked,
 ): Promise<Reinforcement> {
   const overlay = await openOverlay(call, 'reinforcement.read', slug)
-  const reading = await presentReading(call.em, overlay, call.now)
-  const known = await loadKnown(call.em, overlay, await memoryOf(call.em, overlay.id))
-  const planned = await listPlanned(call.em, overlay.id)
+  const sight = await sightOf(call, overlay)
+  const reading = await presentReading(call.em, overlay, call.now, sight)
+  const known = await loadKnown(call.em, overlay, await memoryOf(call.em, overlay.id), sight)
+  const planned = await listPlanned(call.em, overlay.id, sight)
   const whole = { at: reading.at, planned, ...about(known) }
   if (!known) return { ...whole, ...nothing('no-reading'), lambda2: headline(reading) }
   const mayLink = choiceOf(known, asked)
@@ -86,8 +88,12 @@ function proposal(known: KnownOverlay, a: number, b: number, figures: Omit<Propo
 
 /** Which nodes may get a link; null for all. */
 function choiceOf({ nodes }: KnownOverlay, { nodes: text, label }: ReinforcementAsked): boolean[] | null {
-  const names = (text ?? '').split(/[\s,]+/).filter((name) => name !== '')
   const known = new Set(nodes.map(({ name }) => name))
+  // Between commas a name may have spaces in it, as made-up ones do.
+  const names = (text ?? '')
+    .split(',')
+    .flatMap((part) => (known.has(part.trim()) ? part.trim() : part.split(/\s+/)))
+    .filter((name) => name !== '')
   const strange = names.filter((name) => !known.has(name))
   if (strange.length > 0)
     throw new AppError('invalid-input', 'Some of the nodes are not linked at present.', {

@@ -7,7 +7,7 @@ import { PACES } from '@/lib/method/pace'
 import type { AgentHealth } from '@/lib/method/report'
 import type { UpgradeOfferDto, Upgrades } from './dto'
 
-/** What a joined agent runs, and what it says of the version it was offered. */
+/** What a team's joined agent runs, and what it says of the version it was offered. */
 export interface Standing {
   labels: Record<string, string>
   version: string
@@ -18,14 +18,15 @@ export interface Standing {
 export async function findStandings(
   em: EntityManager,
   { id, pace }: Pick<Overlay, 'id' | 'pace'>,
+  teamId: string,
 ): Promise<Standing[]> {
   const rows = await query<Omit<Standing, 'heard'> & { ageMs: number | null }>(
     em,
     `select a.labels, coalesce(s.node->>'version', a.version) as version, s.node->'health'->'upgrade' as upgrade,
        ${epochMs('clock_timestamp()')} - ${epochMs('s.received_at')} as "ageMs"
      from agents a left join agent_states s on s.agent_id = a.id
-     where a.overlay_id = ? and a.state = 'joined'`,
-    [id],
+     where a.overlay_id = ? and a.team_id = ? and a.state = 'joined'`,
+    [id, teamId],
   )
   const heldForMs = heldMs(PACES[pace].intervalMs)
   return rows.map(({ ageMs, ...row }) => ({ ...row, heard: ageMs !== null && ageMs <= heldForMs }))

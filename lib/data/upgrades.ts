@@ -4,19 +4,19 @@ import { enterEvent } from '@/lib/collector/events-store'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import type { newUpgradeOfferSchema, UpgradeOfferDto, Upgrades } from './dto'
-import { openOverlay } from './overlays'
+import { openOverlayAs } from './overlays'
 import { listReleases } from './releases'
 import { findStandings, toOffer, versionsOf } from './upgrade-counts'
 
 export { addRelease, findRelease, type Release } from './releases'
 
-/** What can be offered, what was, newest first, and who runs what. */
+/** What can be offered, what was to the team's agents, newest first, and who of them runs what. */
 export async function getUpgrades(call: Call, slug: string): Promise<Upgrades> {
-  const overlay = await openOverlay(call, 'upgrade.read', slug)
-  const standings = await findStandings(call.em, overlay)
+  const { overlay, teamId } = await openOverlayAs(call, 'upgrade.read', slug)
+  const standings = await findStandings(call.em, overlay, teamId)
   const offers = await call.em.find(
     UpgradeOfferSchema,
-    { overlay: overlay.id },
+    { overlay: overlay.id, team: teamId },
     { populate: ['offeredBy'], orderBy: { offeredAt: 'desc', id: 'asc' } },
   )
   return {
@@ -32,7 +32,7 @@ export async function offerUpgrade(
   slug: string,
   { version, label }: z.output<typeof newUpgradeOfferSchema>,
 ): Promise<UpgradeOfferDto> {
-  const overlay = await openOverlay(call, 'upgrade.offer', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'upgrade.offer', slug)
   const whom = label ? `${label.key} = ${label.value}` : 'every node'
   call.note({ subject: `${overlay.slug}: ${version}`, data: { version, label } })
   const releases = await listReleases(call.em)
@@ -43,6 +43,7 @@ export async function offerUpgrade(
   const { caller, em, now } = call
   const offer = em.create(UpgradeOfferSchema, {
     overlay,
+    team: teamId,
     version,
     labelKey: label?.key ?? null,
     labelValue: label?.value ?? null,
@@ -51,16 +52,16 @@ export async function offerUpgrade(
   })
   await em.flush()
   const text = `Version ${version} offered to ${whom}`
-  await enterEvent(em, overlay.id, { kind: 'upgrade-offered', text })
-  return toOffer(offer, await findStandings(em, overlay))
+  await enterEvent(em, overlay.id, { kind: 'upgrade-offered', text, teamId })
+  return toOffer(offer, await findStandings(em, overlay, teamId))
 }
 
 /** From the next replies on it is offered no more; what has been taken stays. A second halt changes nothing. */
 export async function haltUpgrade(call: Call, slug: string, id: string): Promise<UpgradeOfferDto> {
-  const overlay = await openOverlay(call, 'upgrade.halt', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'upgrade.halt', slug)
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
-  const where = { id, overlay: overlay.id }
+  const where = { id, overlay: overlay.id, team: teamId }
   const offer = known ? await call.em.findOne(UpgradeOfferSchema, where, { populate: ['offeredBy'] }) : null
   if (!offer) throw new AppError('not-found', 'There is no such offer. Load the list again.')
   call.note({ subject: `${overlay.slug}: ${offer.version}` })
@@ -68,7 +69,7 @@ export async function haltUpgrade(call: Call, slug: string, id: string): Promise
     offer.haltedAt = call.now
     await call.em.flush()
     const text = `Version ${offer.version} is offered no more`
-    await enterEvent(call.em, overlay.id, { kind: 'upgrade-halted', text })
+    await enterEvent(call.em, overlay.id, { kind: 'upgrade-halted', text, teamId })
   }
-  return toOffer(offer, await findStandings(call.em, overlay))
+  return toOffer(offer, await findStandings(call.em, overlay, teamId))
 }

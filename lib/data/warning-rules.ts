@@ -1,6 +1,6 @@
 import { LockMode } from '@mikro-orm/core'
 import { z } from 'zod'
-import { CallOrderSchema, type Overlay, type WarningRule, WarningRuleSchema } from '@/entities'
+import { CallOrderSchema, type WarningRule, WarningRuleSchema } from '@/entities'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { CLEAR } from '@/lib/warn/hysteresis'
@@ -8,7 +8,7 @@ import type { Rule } from '@/lib/warn/rule'
 import { isRaised, stateAfterChange } from '@/lib/warn/rule-change'
 import { ruleSentence } from '@/lib/warn/rule-sentence'
 import { rulesSentence } from '@/lib/warn/rules-sentence'
-import { openOverlay } from './overlays'
+import { type Opened, openOverlayAs } from './overlays'
 import { leaveIncident } from './rule-incident'
 import { ruleOf, toRuleDto } from './rule-rows'
 import type { WarningRuleDto, WarningRules } from './rules-dto'
@@ -19,13 +19,14 @@ export const RULES_MOST = 50
 
 /** In the order in which they were made, with what a form needs. */
 export async function listRules(call: Call, slug: string): Promise<WarningRules> {
-  const overlay = await openOverlay(call, 'rule.list', slug)
+  const opened = await openOverlayAs(call, 'rule.list', slug)
+  const { overlay, teamId } = opened
   const { em, now } = call
-  const rules = await em.find(WarningRuleSchema, mine(overlay), {
+  const rules = await em.find(WarningRuleSchema, mine(opened), {
     populate: ['callOrder'],
     orderBy: { createdAt: 'asc', id: 'asc' },
   })
-  const orders = await em.find(CallOrderSchema, { team: overlay.team.id }, { orderBy: { name: 'asc' } })
+  const orders = await em.find(CallOrderSchema, { team: teamId }, { orderBy: { name: 'asc' } })
   const usual = await usualState(em, overlay.id, now)
   const items = rules.map((rule) => toRuleDto(rule, usual, now.getTime()))
   const callOrders = orders.map(({ id, name }) => ({ id, name }))
@@ -33,16 +34,17 @@ export async function listRules(call: Call, slug: string): Promise<WarningRules>
 }
 
 export async function createRule(call: Call, slug: string, input: Rule): Promise<WarningRuleDto> {
-  const overlay = await openOverlay(call, 'rule.change', slug)
+  const opened = await openOverlayAs(call, 'rule.change', slug)
+  const { overlay } = opened
   const { em, now } = call
   call.note({ subject: subjectOf(overlay, input), data: { after: input } })
-  if ((await em.count(WarningRuleSchema, mine(overlay))) >= RULES_MOST)
+  if ((await em.count(WarningRuleSchema, mine(opened))) >= RULES_MOST)
     throw new AppError('invalid-input', `An overlay has at most ${RULES_MOST} rules. Remove or change one.`)
   const { callOrderId, ...fields } = input
   const rule = em.create(WarningRuleSchema, {
-    ...mine(overlay),
+    ...mine(opened),
     ...fields,
-    callOrder: await callOrderOf(call, overlay, callOrderId),
+    callOrder: await callOrderOf(call, opened, callOrderId),
     state: CLEAR,
     evaluatedAt: null,
     createdAt: now,
@@ -62,9 +64,10 @@ export async function changeRule(
   id: string,
   change: Partial<Rule>,
 ): Promise<WarningRuleDto> {
-  const overlay = await openOverlay(call, 'rule.change', slug)
+  const opened = await openOverlayAs(call, 'rule.change', slug)
+  const { overlay } = opened
   const { em, now } = call
-  const rule = await openRule(call, overlay, id)
+  const rule = await openRule(call, opened, id)
   const before = ruleOf(rule)
   const after: Rule = { ...before, ...change }
   call.note({ subject: subjectOf(overlay, after), data: { before, after } })
@@ -77,29 +80,30 @@ export async function changeRule(
   const state = stateAfterChange(was, { isOn: after.isOn, looksAnew: looksAnew(before, after) })
   em.assign(rule, {
     ...fields,
-    callOrder: await callOrderOf(call, overlay, callOrderId),
+    callOrder: await callOrderOf(call, opened, callOrderId),
     state,
     changedAt: now,
   })
   await em.flush()
   if (isRaised(was) && !isRaised(state))
-    await leaveIncident(call, { rule, overlay, because: 'was turned off' })
+    await leaveIncident(call, { rule, ...opened, because: 'was turned off' })
   return toRuleDto(rule, await usualState(em, overlay.id, now), now.getTime())
 }
 
 /** What it raised stays in the incidents' timelines. */
 export async function removeRule(call: Call, slug: string, id: string): Promise<void> {
-  const overlay = await openOverlay(call, 'rule.change', slug)
-  const rule = await openRule(call, overlay, id)
+  const opened = await openOverlayAs(call, 'rule.change', slug)
+  const { overlay } = opened
+  const rule = await openRule(call, opened, id)
   const before = ruleOf(rule)
   call.note({ subject: subjectOf(overlay, before), data: { before, after: null } })
-  if (isRaised(rule.state)) await leaveIncident(call, { rule, overlay, because: 'was removed' })
+  if (isRaised(rule.state)) await leaveIncident(call, { rule, ...opened, because: 'was removed' })
   await call.em.removeAndFlush(rule)
 }
 
-const mine = (overlay: Overlay) => ({ overlay: overlay.id, team: overlay.team.id })
+const mine = ({ overlay, teamId }: Opened) => ({ overlay: overlay.id, team: teamId })
 
-const subjectOf = (overlay: Overlay, { settings }: Pick<Rule, 'settings'>): string =>
+const subjectOf = (overlay: Opened['overlay'], { settings }: Pick<Rule, 'settings'>): string =>
   `${overlay.slug}: ${ruleSentence(settings)}`
 
 function looksAnew(before: Rule, after: Rule): boolean {
@@ -109,10 +113,10 @@ function looksAnew(before: Rule, after: Rule): boolean {
 }
 
 /** Held until the transaction ends, as it is evaluated meanwhile. */
-async function openRule(call: Call, overlay: Overlay, id: string): Promise<WarningRule> {
+async function openRule(call: Call, opened: Opened, id: string): Promise<WarningRule> {
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
-  const where = { id, ...mine(overlay) }
+  const where = { id, ...mine(opened) }
   const rule = known
     ? await call.em.findOne(WarningRuleSchema, where, { lockMode: LockMode.PESSIMISTIC_WRITE })
     : null
@@ -120,9 +124,9 @@ async function openRule(call: Call, overlay: Overlay, id: string): Promise<Warni
   return rule
 }
 
-async function callOrderOf({ em }: Call, overlay: Overlay, id: string | null) {
+async function callOrderOf({ em }: Call, { teamId }: Opened, id: string | null) {
   if (id === null) return null
-  const order = await em.findOne(CallOrderSchema, { id, team: overlay.team.id })
+  const order = await em.findOne(CallOrderSchema, { id, team: teamId })
   if (!order)
     throw new AppError('invalid-input', 'The team has no such call order. Choose one of those listed.', {
       errors: [{ path: 'callOrderId', message: 'Choose one of those listed.' }],

@@ -13,6 +13,7 @@ import { loadMoment, momentQuerySchema } from './moments'
 import { joinedNodes } from './nodes'
 import { openOverlay } from './overlays'
 import { memoryOf, presentReading } from './readings'
+import { type Sight, sightOf } from './sight'
 import { lastSchema, type WeakLink, type WeakPlace } from './weak-dto'
 import { figuresOf, remarkOf, runnerUpOf, type WeakNode, whyNoSides } from './weak-figures'
 
@@ -33,8 +34,11 @@ interface Seen {
 /** Where the overlay is weakest, now or at a past moment, and what is known of the place. */
 export async function getWeakPlace(call: Call, slug: string, { at, last }: WeakQuery): Promise<WeakPlace> {
   const overlay = await openOverlay(call, 'reading.read', slug)
+  const sight = await sightOf(call, overlay)
   const seen =
-    at === undefined ? await seenNow(call, overlay) : await loadMoment(call.em, overlay.id, new Date(at))
+    at === undefined
+      ? await seenNow(call, overlay, sight)
+      : await loadMoment(call.em, overlay.id, new Date(at), sight)
   const { reading, nodes } = seen
   const toMs = at === undefined ? call.now.getTime() : Date.parse(seen.at)
   const sided = nodes.flatMap(({ side, labels }) => (side ? [{ side, labels }] : []))
@@ -46,18 +50,18 @@ export async function getWeakPlace(call: Call, slug: string, { at, last }: WeakQ
     withheld: whyNoSides(reading),
     remark: remarkOf(reading),
     ...figuresOf(reading, nodes),
-    links: reading.sides ? await linksOf(call, seen, { overlayId: overlay.id, last, toMs }) : [],
+    links: reading.sides ? await linksOf(call, seen, { overlayId: overlay.id, last, toMs }, sight) : [],
     // The overlay's own stream of chance: the same question has the same answer.
     follows: { nodes: sided.length, ...explainSides(sided, { random: createRandom(overlay.id) }) },
     runnerUp: runnerUpOf(reading),
   }
 }
 
-async function seenNow(call: Call, overlay: Overlay): Promise<Seen> {
-  const reading = await presentReading(call.em, overlay, call.now)
+async function seenNow(call: Call, overlay: Overlay, sight: Sight): Promise<Seen> {
+  const reading = await presentReading(call.em, overlay, call.now, sight)
   const memory = await memoryOf(call.em, overlay.id)
-  const nodes = await joinedNodes(call.em, overlay, memory)
-  const links = await namedLinks(call.em, overlay, memory)
+  const nodes = await joinedNodes(call.em, overlay, memory, sight)
+  const links = await namedLinks(call.em, overlay, memory, sight)
   return { at: reading.at, reading, nodes, links: links.filter(({ crossing }) => crossing) }
 }
 
@@ -65,9 +69,10 @@ async function linksOf(
   { em }: Call,
   { reading, nodes, links }: Seen,
   range: Parameters<typeof linkCourses>[1],
+  sight: Sight,
 ): Promise<WeakLink[]> {
-  const courses = await linkCourses(em, range, links)
-  const turns = await lastTurns(em, range)
+  const courses = await linkCourses(em, range, links, sight)
+  const turns = await lastTurns(em, range, sight)
   const silent = new Set(nodes.filter(({ state }) => state === 'unheard').map(({ name }) => name))
   return links.map((link) => {
     const course = courses.get(cursorOf(link)) ?? []

@@ -1,9 +1,9 @@
 import { z } from 'zod'
-import { type MaintenanceWindow, MaintenanceWindowSchema, type Overlay, UserSchema } from '@/entities'
+import { type MaintenanceWindow, MaintenanceWindowSchema, UserSchema } from '@/entities'
 import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { nextWindows, type WindowTimes } from '@/lib/warn/window'
-import { openOverlay } from './overlays'
+import { type Opened, openOverlayAs } from './overlays'
 import type { MaintenanceWindowDto, NewWindow } from './rules-dto'
 
 const NEXT_SHOWN = 3
@@ -13,9 +13,9 @@ const DAY_MS = 86_400_000
 
 /** What is under way and to come first, then what is over, newest first. */
 export async function listWindows(call: Call, slug: string): Promise<{ items: MaintenanceWindowDto[] }> {
-  const overlay = await openOverlay(call, 'rule.list', slug)
+  const opened = await openOverlayAs(call, 'rule.list', slug)
   const nowMs = call.now.getTime()
-  const rows = await call.em.find(MaintenanceWindowSchema, mine(overlay), {
+  const rows = await call.em.find(MaintenanceWindowSchema, mine(opened), {
     populate: ['createdBy'],
     orderBy: { startsAt: 'desc', id: 'asc' },
   })
@@ -34,11 +34,12 @@ export async function createWindow(
   slug: string,
   input: NewWindow,
 ): Promise<MaintenanceWindowDto> {
-  const overlay = await openOverlay(call, 'window.change', slug)
+  const opened = await openOverlayAs(call, 'window.change', slug)
+  const { overlay } = opened
   const { caller, em, now } = call
   call.note({ subject: `${overlay.slug}: ${input.reason}`, data: { ...input } })
   const row = em.create(MaintenanceWindowSchema, {
-    ...mine(overlay),
+    ...mine(opened),
     label: input.label,
     reason: input.reason,
     startsAt: new Date(input.startsAt),
@@ -58,10 +59,11 @@ export async function createWindow(
 
 /** From now on there is none of it; what was recorded stays. A second end changes nothing. */
 export async function endWindow(call: Call, slug: string, id: string): Promise<MaintenanceWindowDto> {
-  const overlay = await openOverlay(call, 'window.change', slug)
+  const opened = await openOverlayAs(call, 'window.change', slug)
+  const { overlay } = opened
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
-  const where = { id, ...mine(overlay) }
+  const where = { id, ...mine(opened) }
   const row = known
     ? await call.em.findOne(MaintenanceWindowSchema, where, { populate: ['createdBy'] })
     : null
@@ -72,7 +74,7 @@ export async function endWindow(call: Call, slug: string, id: string): Promise<M
   return toDto(row, call.now.getTime())
 }
 
-const mine = (overlay: Overlay) => ({ overlay: overlay.id, team: overlay.team.id })
+const mine = ({ overlay, teamId }: Opened) => ({ overlay: overlay.id, team: teamId })
 
 /** As `isInWindow` takes it. */
 export function toWindow(

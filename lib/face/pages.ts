@@ -18,6 +18,7 @@ export function overlayPages(slug: string): PageEntry[] {
     { letter: 'F', label: 'Joining', href: `${base}/joining`, operator: true },
     { letter: 'G', label: 'Upkeep', href: `${base}/upkeep` },
     { letter: 'H', label: 'Warnings', href: `${base}/warnings` },
+    { letter: 'I', label: 'Partners', href: `${base}/partners` },
   ]
 }
 

@@ -25,6 +25,7 @@ export function overlayUrls(slug: string) {
     reinforcement: `${base}/reinforcement`,
     plannedLinks: `${base}/reinforcement/planned`,
     exported: (file: string) => `${base}/export/${file}`,
+    partners: `${base}/partners`,
   }
 }
 

@@ -222,17 +222,16 @@ export async function loadWindows(
   )
 }
 
-/** Labels of the agents not heard since a moment. */
+/** Labels of the agents not heard since a moment; those of other teams' agents are not for the team's windows to go by. */
 export async function loadSilentLabels(
   em: EntityManager,
-  overlayId: string,
-  sinceMs: number,
+  { overlayId, teamId, sinceMs }: { overlayId: string; teamId: string; sinceMs: number },
 ): Promise<Record<string, string>[]> {
   const rows = await query<{ labels: Record<string, string> }>(
     em,
-    `select a.labels from agents a left join agent_states s on s.agent_id = a.id
+    `select case when a.team_id = ? then a.labels else '{}' end as labels from agents a left join agent_states s on s.agent_id = a.id
      where a.overlay_id = ? and a.state = 'joined' and (s.received_at is null or s.received_at < ?)`,
-    [overlayId, new Date(sinceMs)],
+    [teamId, overlayId, new Date(sinceMs)],
   )
   return rows.map(({ labels }) => labels)
 }

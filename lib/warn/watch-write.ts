@@ -80,8 +80,8 @@ export async function writeHappenings(
 ): Promise<void> {
   await query(
     em,
-    `insert into incident_entries (incident_id, at, kind, text)
-     select ?::uuid, at, kind, text from overlay_events
+    `insert into incident_entries (incident_id, at, kind, text, data)
+     select ?::uuid, at, kind, text, case when data->'said' is not null then data - 'demo' end from overlay_events
      where overlay_id = ? and at > ? and at <= ?
        and kind in ('link-lost', 'link-found', 'link-weakened', 'link-recovered', 'agent-unheard', 'agent-heard',
          'level-changed', 'warnings-away')

@@ -120,7 +120,9 @@ export class Watch {
     const people = await load.loadPeople(em, teamId)
     const windows = await load.loadWindows(em, overlayId, teamId)
     const silent =
-      windows.length > 0 ? await load.loadSilentLabels(em, overlayId, nowMs - load.SILENCE_MS) : []
+      windows.length > 0
+        ? await load.loadSilentLabels(em, { overlayId, teamId, sinceMs: nowMs - load.SILENCE_MS })
+        : []
     const before = await load.loadIncident(em, overlayId, teamId)
     const plan = planIncident({
       atMs: nowMs,
@@ -142,7 +144,7 @@ export class Watch {
     const newest = facts.at(-1)
     if (newest && plan.incident.clearedAtMs === null) await write.writeReading(em, id, newest)
     await enqueue(em, await write.messagesOf(em, id, plan.tell, nowMs), new Date(nowMs))
-    await sayIn(em, overlayId, plan)
+    await sayIn(em, { overlayId, teamId }, plan)
   }
 
   async #falls(
@@ -201,12 +203,12 @@ async function withSilence(
 /** Pages that are open hear of it. */
 async function sayIn(
   em: EntityManager,
-  overlayId: string,
+  { overlayId, teamId }: { overlayId: string; teamId: string },
   { isNew, entries, incident }: IncidentPlan,
 ): Promise<void> {
   const isReopened = entries.some(({ kind }) => kind === 'reopened')
   if (incident && (isNew || isReopened))
-    await enterEvent(em, overlayId, { kind: 'incident-raised', text: incident.sentence })
+    await enterEvent(em, overlayId, { kind: 'incident-raised', text: incident.sentence, teamId })
   if (entries.some(({ kind }) => kind === 'cleared-all'))
-    await enterEvent(em, overlayId, { kind: 'incident-cleared', text: 'Nothing is raised any more' })
+    await enterEvent(em, overlayId, { kind: 'incident-cleared', text: 'Nothing is raised any more', teamId })
 }

@@ -1,9 +1,11 @@
 import type { Metadata } from 'next'
+import { JoinOverlay } from '@/components/overlays/join-overlay'
 import { OverlayList } from '@/components/overlays/overlay-list'
 import { EmptyState, LinkButton, PageHeading, ProblemState } from '@/components/ui'
 import { roleReaches } from '@/lib/auth/permissions'
 import { listOverlays, listTeams } from '@/lib/data'
 import { page } from '@/lib/http'
+import { joinOverlayAction } from './actions'
 
 export const metadata: Metadata = { title: 'Overlays' }
 
@@ -13,10 +15,14 @@ export default async function OverlaysPage() {
   if (!overlays.ok) return <ProblemState problem={overlays.problem} />
   const own = teams.ok ? teams.value : []
   const mayCreate = own.some((t) => roleReaches(t.role, 'operator'))
+  const owned = own.filter((t) => roleReaches(t.role, 'owner'))
   const create = mayCreate ? (
-    <LinkButton kind="main" href="/overlays/new">
-      New overlay
-    </LinkButton>
+    <>
+      {owned.length > 0 ? <JoinOverlay teams={owned} join={joinOverlayAction} /> : null}
+      <LinkButton kind="main" href="/overlays/new">
+        New overlay
+      </LinkButton>
+    </>
   ) : null
   return (
     <>
@@ -28,7 +34,7 @@ export default async function OverlaysPage() {
       ) : (
         <EmptyState title="Your teams have no overlay yet." actions={create}>
           {mayCreate
-            ? 'Create one, then add an agent beside each of its nodes.'
+            ? 'Create one, then add an agent beside each of its nodes; or take part in another team’s with an invitation.'
             : 'Overlays are created by operators and owners. Ask one of them.'}
         </EmptyState>
       )}

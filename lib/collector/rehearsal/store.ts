@@ -25,11 +25,11 @@ export async function writeChanges(
   for (const change of changes) {
     const { id, incidentId, state, progress, expectedAtMs, startedAtMs, taken, remain, says } = change
     const isOver = state === 'done' || state === 'failed'
-    const written = await query(
+    const written = await query<{ teamId: string }>(
       em,
       `update rehearsals set state = ?, progress = ?, expected_at = ?::timestamptz, started_at = ?::timestamptz,
          ended_at = ?::timestamptz, taken = ?, remain = ?, result = ?::jsonb, verdict = ?, plan = ?::jsonb
-       where id = ? and state in ('waiting', 'running') returning id`,
+       where id = ? and state in ('waiting', 'running') returning team_id as "teamId"`,
       [
         state,
         progress,
@@ -45,8 +45,9 @@ export async function writeChanges(
       ],
     )
     if (written.length === 0 || !says) continue
-    if (says.kind === 'rehearsal-started') await enterEvent(em, overlayId, says)
-    else await enterEnd(em, { overlayId, incidentId, at, text: says.text, userId: null })
+    const { teamId } = written[0]!
+    if (says.kind === 'rehearsal-started') await enterEvent(em, overlayId, { ...says, teamId })
+    else await enterEnd(em, { overlayId, teamId, incidentId, at, text: says.text, userId: null })
   }
 }
 

@@ -12,6 +12,8 @@ export interface TakableAgent {
   agentId: string
   name: string
   labels: Readonly<Record<string, string>>
+  /** False for those of another team that shares the overlay: they remain, whatever they are called. */
+  isOwn?: boolean
 }
 
 export interface TakableLink {
@@ -52,7 +54,8 @@ export function takenOf(
 ): { taken: Taken } | { problems: TakenProblem[] } {
   const { nodes, links, labels, between } = exclude
   const problems: TakenProblem[] = []
-  const byName = new Map(from.agents.map((agent) => [agent.name, agent]))
+  const own = from.agents.filter(({ isOwn = true }) => isOwn)
+  const byName = new Map(own.map((agent) => [agent.name, agent]))
   const say = (path: TakenProblem['path'], message: string) => problems.push({ path, message })
   if (nodes.length + links.length + labels.length + between.length === 0)
     return { problems: [{ path: 'exclude', message: 'Say which nodes, labels or links are to be away.' }] }
@@ -62,12 +65,12 @@ export function takenOf(
       'exclude.nodes',
       `No node of this overlay is called ${listOf(unknown)}. Choose nodes that have joined.`,
     )
-  const empty = labels.filter(({ key, value }) => !from.agents.some((agent) => agent.labels[key] === value))
+  const empty = labels.filter(({ key, value }) => !own.some((agent) => agent.labels[key] === value))
   if (isAsked && empty.length > 0)
     say('exclude.labels', `No node has ${listOf(empty.map(({ key, value }) => `${key} ${value}`))}.`)
   const gone = new Set([
     ...nodes.flatMap((name) => byName.get(name)?.agentId ?? []),
-    ...from.agents
+    ...own
       .filter((agent) => labels.some(({ key, value }) => agent.labels[key] === value))
       .map(({ agentId }) => agentId),
   ])
@@ -113,9 +116,10 @@ function pairsOf(
     )
     return []
   }
-  const byName = new Map(agents.map((agent) => [agent.name, agent]))
+  const byName = new Map(agents.flatMap((agent) => (agent.isOwn === false ? [] : [[agent.name, agent]])))
   const known = new Set(named.map(({ a, b }) => keyOf(a, b)))
-  const missing = links.filter(([a, b]) => !known.has(keyOf(a, b)))
+  const isThere = ([a, b]: [string, string]) => known.has(keyOf(a, b)) && byName.has(a) && byName.has(b)
+  const missing = links.filter((pair) => !isThere(pair))
   if (isAsked && missing.length > 0)
     say(
       'exclude.links',
@@ -131,10 +135,7 @@ function pairsOf(
   })
   if (isAsked && between.length > 0 && wanted.length === 0)
     say('exclude.between', 'No link joins nodes with these labels now.')
-  const all = [
-    ...links.filter(([a, b]) => known.has(keyOf(a, b))),
-    ...wanted.map(({ a, b }): [string, string] => [a, b]),
-  ]
+  const all = [...links.filter(isThere), ...wanted.map(({ a, b }): [string, string] => [a, b])]
   const unique = new Map(all.map((pair) => [keyOf(...pair), pair]))
   return [...unique.values()].flatMap(([a, b]) => {
     const ids = [byName.get(a)?.agentId, byName.get(b)?.agentId]

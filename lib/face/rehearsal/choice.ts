@@ -43,7 +43,7 @@ export function chosenOf(exclude: Excluded, { disclosure, nodes, links }: Choose
   const joined = joinedOf(nodes)
   const from: TakenFrom = {
     disclosure,
-    agents: joined.map(({ name, labels }) => ({ agentId: name, name, labels })),
+    agents: joined.map(({ name, labels, partner }) => ({ agentId: name, name, labels, isOwn: !partner })),
     links: disclosure === 'named' ? links.filter(({ state }) => state === 'live') : [],
   }
   const away = joined.filter(

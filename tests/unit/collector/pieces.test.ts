@@ -239,10 +239,17 @@ describe('a link', () => {
     expect(look(14, true)).toEqual([])
     expect([look(15, false), look(17, false)]).toEqual([[], []])
     const data = { links: [['tar-01', 'tar-02']] }
-    expect(look(18, false)).toEqual([{ kind: 'link-lost', text: 'link tar-01 – tar-02 lost', data }])
+    expect(look(18, false)).toEqual([
+      {
+        kind: 'link-lost',
+        text: 'link tar-01 – tar-02 lost',
+        said: ['link ', { node: 'tar-01' }, ' – ', { node: 'tar-02' }, ' lost'],
+        data,
+      },
+    ])
     expect([look(19, true, true), look(30, true, true)]).toEqual([[], []])
     expect(look(31, true)).toEqual([])
-    expect(look(34, true)).toEqual([{ kind: 'link-found', text: 'link tar-01 – tar-02 found', data }])
+    expect(look(34, true)).toMatchObject([{ kind: 'link-found', text: 'link tar-01 – tar-02 found', data }])
   })
 
   it('is said to have weakened, and to deliver as before, once it stays so', () => {

@@ -100,6 +100,7 @@ describe('an upgrade offer', () => {
     sha256: 'ab'.repeat(32),
     labelKey,
     labelValue,
+    teamId: 'harbourline',
   })
   const facts = (...offers: ReturnType<typeof offer>[]) => ({
     overlayId: 'tides',
@@ -113,18 +114,24 @@ describe('an upgrade offer', () => {
     offers,
   })
 
+  const theirs = { labels: {}, teamId: 'harbourline' }
+
+  it('is for the agents of one team', () => {
+    expect(offerFor(facts(offer('0.3.0')), { ...theirs, teamId: 'skerry' }, { version: '0.1.0' })).toBeNull()
+  })
+
   it('goes to agents with its label, the newest that fits, signed, and not to those that run it', () => {
     const offered = facts(offer('0.3.0', 'harbour', 'Tarnwick'), offer('0.2.0'))
     const at = (harbour: string, version: string) =>
-      offerFor(offered, { labels: { harbour } }, { version })?.version ?? null
+      offerFor(offered, { labels: { harbour }, teamId: 'harbourline' }, { version })?.version ?? null
     expect([
       at('Tarnwick', '0.1.0'),
       at('Tarnwick', '0.3.0'),
       at('Eelholm', '0.1.0'),
       at('Eelholm', '0.2.0'),
     ]).toEqual(['0.3.0', null, '0.2.0', null])
-    expect(offerFor(facts(), { labels: {} }, { version: '0.1.0' })).toBeNull()
-    const made = offerFor(facts(offer('0.3.0+b')), { labels: {} }, { version: '0.1.0' })!
+    expect(offerFor(facts(), theirs, { version: '0.1.0' })).toBeNull()
+    const made = offerFor(facts(offer('0.3.0+b')), theirs, { version: '0.1.0' })!
     expect(made.path).toBe('/agent/thinspan-agent.mjs?version=0.3.0%2Bb')
     expect(verifyText(made.key, upgradeText('tides', made), made.signature)).toBe(true)
   })

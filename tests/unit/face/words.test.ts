@@ -250,6 +250,7 @@ describe('small words', () => {
       'F /overlays/harbourline/joining',
       'G /overlays/harbourline/upkeep',
       'H /overlays/harbourline/warnings',
+      'I /overlays/harbourline/partners',
     ])
   })
 

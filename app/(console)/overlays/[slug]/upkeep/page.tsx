@@ -20,6 +20,7 @@ export default async function UpkeepPage({ params }: { params: Promise<{ slug: s
     <Upkeep
       slug={slug}
       role={overlay.value.role}
+      isOwning={overlay.value.standing !== 'partner'}
       actions={{
         offer: offerUpgradeAction,
         halt: haltUpgradeAction,
