@@ -20,26 +20,44 @@ export function bestCut(
     return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []
   })
   if (counts.length === 0 || counts.length < attached.length) return undefined
+  return bestOf(
+    sweep,
+    thresholds.map((threshold, index) => {
+      const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
+        counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
+      const above = total((sums) => sums.above)
+      const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
+      const links = Math.round(total((sums) => sums.crossing) / 2)
+      return { threshold, above, below: counts.length - above, links, weight }
+    }),
+  )
+}
+
+/** One threshold's cut as counted at both ends of its links. */
+export interface Counted {
+  threshold: number
+  above: number
+  below: number
+  links: number
+  weight: number
+}
+
+/** Null where none parts the nodes. */
+export function bestOf(sweep: number, counted: readonly Counted[]): CutCount | null {
   let best: (CutCount & { ratio: number }) | null = null
   const clean: CutCount['clean'] = []
-  thresholds.forEach((threshold, index) => {
-    const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
-      counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
-    const above = total((sums) => sums.above)
-    const below = counts.length - above
-    if (above === 0 || below === 0) return
-    const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
+  for (const { threshold, above, below, links, weight } of counted) {
+    if (above === 0 || below === 0) continue
     const ratio = weight / Math.min(above, below)
-    const links = Math.round(total((sums) => sums.crossing) / 2)
     if (links === 0) clean.push({ threshold, above })
     // Of several that nothing crosses the evenest: a node alone is none of the sides then.
     const isEvener =
       best !== null && ratio === best.ratio && even(above, below) > even(best.above, best.below)
     if (!best || ratio < best.ratio || isEvener)
       best = { threshold, sweep, above, below, links, weight, ratio }
-  })
+  }
   if (!best) return null
-  const { ratio: _, ...cut } = best as CutCount & { ratio: number }
+  const { ratio: _, ...cut } = best
   return { ...cut, clean }
 }
 

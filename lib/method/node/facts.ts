@@ -27,6 +27,27 @@ export class CoarseValue {
   }
 }
 
+/** How often a node's degree is renewed where links are not named, each at a moment of its own: a leave shows in all neighbours at once. */
+export const DEGREE_RENEWED_MS = 3_600_000
+
+/** The first is renewed sooner, for links are still coming up. */
+const FIRST_RENEWED_MS = 120_000
+
+/** A degree said rarely, and only as a power of two: those of a node's neighbours would fall together when it leaves. */
+export class CoarseDegree {
+  private said: number | null = null
+  private renewAtMs = 0
+
+  say(degree: number, nowMs: number, uniform: () => number): number {
+    // Links are only coming up at first.
+    if (this.said === null || this.said === 0 || nowMs >= this.renewAtMs) {
+      this.renewAtMs = nowMs + (this.said ? DEGREE_RENEWED_MS : FIRST_RENEWED_MS * (1 + uniform()))
+      this.said = degree === 0 ? 0 : 2 ** Math.round(Math.log2(degree))
+    }
+    return this.said
+  }
+}
+
 /** Which links an agent names, by the overlay's disclosure and both ends' consent. */
 export function namedLinks(
   orders: Orders,

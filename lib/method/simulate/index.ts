@@ -1,2 +1,3 @@
 export type { Lie } from './lie'
-export { Simulation, type SimulationInit } from './simulation'
+export type { SimulationInit } from './init'
+export { Simulation } from './simulation'

@@ -1,11 +1,12 @@
 import {
-  type ControlSettings,
   type CoreEstimate,
   type Estimate,
-  evaluateOverlay,
+  evaluateAny,
   initialControl,
+  openRounds,
   type PartEstimate,
   type Snapshot,
+  withRound,
 } from '../control'
 import type { ControlState } from '../control/state'
 import type { Frame } from '../frame'
@@ -16,36 +17,10 @@ import { forkRandom, type Random } from '../random'
 import type { Report } from '../report'
 import { RECEIPT_INTERVALS, statementOf } from '../statement'
 import { EventQueue } from './event-queue'
+import type { SimulationComponents, SimulationInit } from './init'
 import { bentFrame, bentOrders, bentReport } from './lie'
 import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink } from './parts'
-
-export interface SimulationComponents {
-  random: Random
-}
-
-export interface SimulationInit {
-  /** Node count; agents are named by `nameOf`. */
-  nodes: number
-  links: readonly { a: number; b: number; weight?: number }[]
-  settings: ControlSettings
-  nameOf?: (node: number) => string
-  /** Range of a link's delay; each frame adds ±20 %. */
-  linkDelayMs?: [number, number]
-  reportDelayMs?: [number, number]
-  /** Ticks and reports vary by this share. */
-  jitter?: number
-  /** Share of reports, and of the orders in reply, lost at random. */
-  reportLoss?: number
-  ordersLoss?: number
-  /** The collector's judgement of agents, once per evaluation and before it: ids to leave out from now on. */
-  leaveOut?: (now: Snapshot, control: ControlState, orders: Orders | null) => readonly string[]
-  /** Agents know version 2: their frames carry receipts. */
-  speaksTwo?: boolean
-  /** Neighbours audit each other. */
-  audits?: boolean
-  /** Wall time of the virtual clock's 0. */
-  startAtMs?: number
-}
+import { VectorStore } from './vector-store'
 
 /**
  * A whole overlay on a virtual clock: every agent is the real state machine, the collector the real control loop;
@@ -65,9 +40,11 @@ export class Simulation {
   collectorUp = true
   readonly agents: SimulatedAgent[] = []
   private readonly random: Random
-  private readonly init: Required<Omit<SimulationInit, 'leaveOut'>> & Pick<SimulationInit, 'leaveOut'>
+  private readonly init: Required<Omit<SimulationInit, 'leaveOut' | 'masks'>> &
+    Pick<SimulationInit, 'leaveOut' | 'masks'>
   private readonly queue = new EventQueue()
   private readonly links = new Map<string, SimulatedLink>()
+  private readonly store: VectorStore
   /** Agents left out, in order. */
   readonly leftOut: string[] = []
   /** Refusals so far, by whom and of whom; links between the two are closed. */
@@ -92,6 +69,7 @@ export class Simulation {
       ...init,
     }
     this.nowMs = this.init.startAtMs
+    this.store = new VectorStore(this.init)
     this.control = initialControl(this.nowMs, init.settings.pace)
     for (let index = 0; index < init.nodes; index++) this.agents.push(this.createAgent(index))
     for (const { a, b, weight } of init.links) this.join(a, b, weight ?? 1)
@@ -117,7 +95,9 @@ export class Simulation {
 
   private createNode(index: number, random: Random, life: number): WalkNode {
     const { nameOf, audits } = this.init
-    return new WalkNode({ random }, { agentId: nameOf(index), incarnation: `${index}.${life}`, audits })
+    const [agentId, incarnation] = [nameOf(index), `${index}.${life}`]
+    const maskOf = this.store.maskOf(agentId, incarnation)
+    return new WalkNode({ random, maskOf }, { agentId, incarnation, audits })
   }
 
   /** Runs until the virtual clock has moved on by `ms`. */
@@ -342,6 +322,7 @@ export class Simulation {
     if (!held || held.incarnation !== report.incarnation || held.number < report.number) {
       agent.last = { report, receivedAtMs: this.nowMs }
     }
+    this.store.keep(agent.node.agentId, report)
     const current = this.orders
     if (current && this.init.speaksTwo && report.number % RECEIPT_INTERVALS === 0) {
       const statement = statementOf(agent.node.agentId, report)
@@ -353,6 +334,7 @@ export class Simulation {
     const ageMs = this.nowMs - current.issuedAtMs + delayMs
     this.queue.push(this.nowMs + delayMs, () => {
       if (agent.life !== life) return
+      agent.node.noteAnswered(report.number, this.nowMs)
       const orders = bentOrders(current.orders!.orders, agent.lie)
       if (!agent.node.adopt(orders, ageMs, this.nowMs)) return
       this.honourShut(index, orders)
@@ -378,17 +360,18 @@ export class Simulation {
     const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
     this.leftOut.push(...out)
     const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
-    const { control, estimate, core, parts, ...planned } = evaluateOverlay({
+    const { control, estimate, core, parts, ...planned } = evaluateAny({
       control: this.control,
       before: this.before,
       now,
       settings: this.init.settings,
       sequence: this.control.sequence + 1,
+      vectors: this.store.of(openRounds(this.control, this.nowMs)),
       random: this.random,
     })
     const shut = this.leftOut.map((agentId) => ({ agentId, reason: 'left-out' as const }))
     const orders: Orders = { ...planned.orders, shut }
-    this.before = now
+    this.before = withRound(now, control)
     this.control = control
     this.orders = { orders: { orders, ageMs: 0 }, issuedAtMs: this.nowMs }
     this.estimate = estimate
