@@ -8,6 +8,7 @@ import { ReadingsForYears20261207 } from './migration-2026-12-07-readings-for-ye
 import { NodeSnapshots20261208 } from './migration-2026-12-08-node-snapshots'
 import { PlainReports20261209 } from './migration-2026-12-09-plain-reports'
 import { Warnings20261210 } from './migration-2026-12-10-warnings'
+import { Sealed20261213 } from './migration-2026-12-13-sealed'
 
 /** In order; a migration that has landed is never edited. */
 export const migrations = [
@@ -21,4 +22,5 @@ export const migrations = [
   { name: '2026-12-08-node-snapshots', class: NodeSnapshots20261208 },
   { name: '2026-12-09-plain-reports', class: PlainReports20261209 },
   { name: '2026-12-10-warnings', class: Warnings20261210 },
+  { name: '2026-12-13-sealed', class: Sealed20261213 },
 ]

@@ -2,6 +2,7 @@
 import { benchAgent } from './bench/agent'
 import { benchCoverage } from './bench/coverage'
 import { benchIngest } from './bench/ingest'
+import { benchLeak } from './bench/leak'
 import { benchReading } from './bench/reading'
 import { benchScale } from './bench/scale'
 import { benchWarning } from './bench/warning'
@@ -12,6 +13,7 @@ const BENCHES: Record<string, Bench> = {
   agent: benchAgent,
   coverage: benchCoverage,
   ingest: benchIngest,
+  leak: benchLeak,
   // From cold and at rest: the reading's table begins with what the method alone does.
   method: benchReading,
   reading: benchReading,

@@ -1,5 +1,5 @@
 import type { EntityManager } from '@/lib/db'
-import type { JoinedAgent, Snapshot } from '@/lib/method/control'
+import type { HeldVector, JoinedAgent, Snapshot } from '@/lib/method/control'
 import type { Disclosure, Orders, WeightMode } from '@/lib/method/orders'
 import type { PaceName } from '@/lib/method/pace'
 import type { Complaint, NodeFacts, Sums } from '@/lib/method/report'
@@ -7,6 +7,7 @@ import { MAX_SHUT } from '@/lib/protocol'
 import { PASS_TAIL_MS } from './passes'
 import { epochMs, query } from './query'
 import type { KeyText } from './signer'
+import { loadVectors } from './vectors'
 
 export interface LoadedAgent extends JoinedAgent {
   name: string
@@ -32,11 +33,17 @@ export interface Loaded {
   leftOutNames: readonly { name: string; because: string }[]
   key: KeyText
   keysInTurn: readonly KeyInTurn[]
+  /** Masked sums of the rounds asked for, as far as they have come. */
+  vectors?: readonly HeldVector[]
   snapshot: Omit<Snapshot, 'agents'> & { agents: readonly LoadedAgent[] }
 }
 
 /** Null where the overlay is gone. */
-export async function loadOverlay(em: EntityManager, overlayId: string): Promise<Loaded | null> {
+export async function loadOverlay(
+  em: EntityManager,
+  overlayId: string,
+  rounds: readonly number[] = [],
+): Promise<Loaded | null> {
   const agents = await query<AgentRow>(
     em,
     `select a.id as "agentId", a.name, a.labels, ${epochMs('a.joined_at')} as "joinedAtMs",
@@ -66,6 +73,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
     ...rest,
     key: { publicKey, privateKey },
     shut: await loadShut(em, overlayId),
+    vectors: await loadVectors(em, overlayId, rounds),
     // Whole milliseconds, as rows keep them; upwards, so that no report is from the future.
     snapshot: { atMs: Math.ceil(nowMs), agents: agents.map(toAgent) },
   }

@@ -9,6 +9,7 @@ import { overlayChannel } from './notices'
 import { type Bindable, query } from './query'
 import { columnsOf } from './reading-columns'
 import { type KeyText, signerOf } from './signer'
+import { dropVectors } from './vectors'
 
 export type { Loaded, LoadedAgent } from './leader-load'
 
@@ -66,8 +67,8 @@ export class LeaderStore {
   }
 
   /** Null where the overlay is gone. */
-  async load(): Promise<Loaded | null> {
-    return loadOverlay(await this.#forkEm(), this.#overlayId)
+  async load(rounds: readonly number[] = []): Promise<Loaded | null> {
+    return loadOverlay(await this.#forkEm(), this.#overlayId, rounds)
   }
 
   /** One round, whole or not at all. @returns false where another has taken over: this term is at its end */
@@ -96,6 +97,8 @@ export class LeaderStore {
         ],
       )
       if (fenced.length === 0) return false
+      const [open] = round.state.control.rounds?.planned ?? []
+      if (open) await dropVectors(tx, this.#overlayId, open.number)
       if (round.reading) await insertReading(tx, this.#overlayId, round.reading)
       const leftOut = await leaveOut(tx, round.leftOut)
       await insertEvents(tx, this.#overlayId, { ...round, events: [...round.events, ...leftOut] })

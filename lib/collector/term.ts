@@ -2,15 +2,18 @@ import type { Reading } from '@/lib/data/dto'
 import type { Log } from '@/lib/http/runtime'
 import {
   DEFAULT_SETTINGS,
-  evaluateOverlay,
+  evaluateAny,
   initialControl,
   isHeard,
+  openRounds,
   type Snapshot,
+  withRound,
 } from '@/lib/method/control'
+import type { Disclosure, Orders } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
-import { type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
+import { type AuditInput, type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
 import { type Clock, sleep } from './clock'
 import { fleetFacts, withFleetFacts } from './fleet-facts'
 import { type JudgedAgent, judge } from './judge'
@@ -120,10 +123,11 @@ export class Term {
     const sequence = this.#sequence + 1
     // Ages count from this issue on; what is to begin later still begins at the same moment.
     const passedMs = clock.monotonicMs() - this.#issuedMs
-    const { next } = last.orders
+    const { next, rounds } = last.orders
     const orders = {
       ...last.orders,
       ...(next && { next: { ...next, fromAgeMs: Math.max(0, next.fromAgeMs - passedMs) } }),
+      ...(rounds && { rounds: later(rounds, passedMs) }),
       sequence,
       shut: loaded.shut,
       weights: loaded.weights,
@@ -139,7 +143,7 @@ export class Term {
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
     const { clock, store, usual, upkeep, moments, log } = this.#components
     const startedMs = clock.monotonicMs()
-    const loaded = await store.load()
+    const loaded = await store.load(this.#state ? openRounds(this.#state.control, Infinity) : [])
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
     onInterval(PACES[loaded.pace].intervalMs)
     const { atMs } = loaded.snapshot
@@ -150,7 +154,7 @@ export class Term {
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state
-    this.#before = loaded.snapshot
+    this.#before = withRound(loaded.snapshot, round.state.control)
     this.#last = round
     this.#issuedMs = clock.monotonicMs()
     const tookMs = clock.monotonicMs() - startedMs
@@ -175,7 +179,7 @@ export class Term {
     const sequence = this.#sequence + 1
     const { atMs } = loaded.snapshot
     const before = this.#state?.control ?? initialControl(atMs, pace)
-    const audited = auditAgents({
+    const audited = auditNow(disclosure, {
       now: loaded.snapshot,
       control: before,
       pace,
@@ -184,13 +188,14 @@ export class Term {
     })
     this.#audit = audited.memory
     const { snapshot, shut, leftOutNames } = withoutLeftOut(loaded, audited.leftOut)
-    const { control, orders, estimate, core, parts } = evaluateOverlay({
+    const { control, orders, estimate, core, parts } = evaluateAny({
       control: before,
       before: this.#before,
       now: snapshot,
       settings: { ...DEFAULT_SETTINGS, pace, disclosure },
       sequence,
       random: this.#components.random,
+      vectors: disclosure === 'named' ? null : (loaded.vectors ?? []),
     })
     const { reading, memory, events, store } = judge({
       estimate,
@@ -212,7 +217,10 @@ export class Term {
         : []
     const told = withFleetFacts(
       reading,
-      fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
+      fleetFacts(
+        { snapshot, leftOut: leftOutNames.length, withoutAgent: control.rounds?.last?.head.withoutAgent },
+        pace.intervalMs,
+      ),
     )
     const round: Round = {
       sequence,
@@ -225,6 +233,18 @@ export class Term {
     }
     return { round, reading: told }
   }
+}
+
+/** Rounds announced anew are still at the same moments; those that are past agents know of. */
+function later(rounds: NonNullable<Orders['rounds']>, passedMs: number): Orders['rounds'] {
+  return rounds.flatMap((round) =>
+    round.fromAgeMs > passedMs ? [{ ...round, fromAgeMs: round.fromAgeMs - passedMs }] : [],
+  )
+}
+
+/** Where links are not named nothing in reports can be audited from here: neighbours alone do. */
+function auditNow(disclosure: Disclosure, input: AuditInput): ReturnType<typeof auditAgents> {
+  return disclosure === 'named' ? auditAgents(input) : { leftOut: [], memory: BLANK_AUDIT }
 }
 
 /** The overlay as it is once these agents are left out: they have not joined, and nobody keeps a link to them. */

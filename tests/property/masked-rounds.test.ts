@@ -246,6 +246,18 @@ describe('masked rounds', () => {
   })
 })
 
+describe('an agent', () => {
+  it('takes no sums for a round again that is long over, though it is announced anew', () => {
+    const rounds = new Rounds({ maskOf: () => streamOf('a', 'b') }, { ownId: 'a' })
+    const due = (number: number, atMs: number) => {
+      rounds.hear([{ ...LAYOUT, number, fromAgeMs: 0 }], atMs)
+      return rounds.due(atMs).map(({ round }) => round)
+    }
+    for (let number = 1; number <= 20; number++) expect(due(number, number * 1_000)).toEqual([number])
+    for (let number = 1; number <= 20; number++) expect(due(number, 30_000)).toEqual([])
+  })
+})
+
 describe('an agreement', () => {
   it('needs the other end’s word and that it has heard one’s own, and takes nothing back', () => {
     const agreement = new Agreement()

@@ -1,5 +1,5 @@
 import { SUMS_SCALE } from '../report'
-import { heardAgents, heldMs, promptAgents, type Snapshot } from './snapshot'
+import { heardAgents, heldMs, isAttached, promptAgents, type Snapshot } from './snapshot'
 
 /** Below this share of joined agents, or of walkers, heard, no reading is given and walking stops. */
 export const LEAST_HEARD = 0.85
@@ -53,17 +53,19 @@ export function coverageOf(snapshot: Snapshot, intervalMs: number, seedings: Rea
  */
 function maskedCoverage(snapshot: Snapshot, intervalMs: number): Coverage {
   const { round, agents, atMs } = snapshot
-  const heard = heardAgents(snapshot, intervalMs).length
+  const agentsHeard = heardAgents(snapshot, intervalMs)
+  const heard = agentsHeard.length
   const prompt = promptAgents(snapshot, intervalMs).length
   const head = round?.totals.head
   const isOld = round ? atMs - round.totals.atMs > heldMs(intervalMs) : false
-  const attached = head?.agents ?? 0
+  // Agents say by themselves whether they have links at all.
+  const attached = Math.min(head?.agents ?? 0, agentsHeard.filter(isAttached).length)
   return {
     joined: agents.length,
     heard,
-    prompt: !head ? prompt : isOld ? 0 : Math.min(prompt, attached),
+    prompt: !head ? prompt : isOld ? 0 : Math.min(prompt, head.agents),
     attached,
-    meanWeightedDegree: head ? head.linkEndWeight / SUMS_SCALE / attached : 0,
+    meanWeightedDegree: head ? head.linkEndWeight / SUMS_SCALE / head.agents : 0,
     linksMeasured: Math.round((head?.linkEnds ?? 0) / 2),
     linksKnown: Math.round((head?.linksKnown ?? 0) / 2),
     walkersHeard: 1,
