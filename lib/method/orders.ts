@@ -50,6 +50,8 @@ export interface SweepOrders {
   thresholds: readonly number[]
   /** Nodes above each threshold when the cuts of the combination before were counted, and in all. Where links are not named only. */
   sides?: { above: readonly number[]; nodes: number }
+  /** One cut is clearly the weakest, so that nodes have sides. Where links are not named only. */
+  stands?: boolean
   /** The estimate the combination belongs to; shares of links are w(vᵢ−vⱼ)²/(n·λ₂) in these units. */
   lambda2: number
   nodes: number

@@ -35,6 +35,7 @@ const sweepOrdersSchema = z.object({
   thresholds: z.array(z.number()).max(MAX_THRESHOLDS),
   lambda2: z.number(),
   nodes: count,
+  stands: z.boolean().optional(),
   sides: z.object({ above: z.array(count).max(MAX_THRESHOLDS), nodes: count }).optional(),
 })
 

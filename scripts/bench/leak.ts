@@ -1,11 +1,9 @@
 import { edgesOf, linkCount, type SparseGraph } from '@/lib/method/graph'
 import { randomRegular, twoClusters } from '@/lib/method/graphs'
+import { DISCLOSURES } from '@/lib/method/orders'
 import { createRandom } from '@/lib/method/random'
 import { namedByRegression, namedByValues } from './leak/attacks'
 import { type Looks, watchOverlay } from './leak/looks'
-
-/** Links named at most this share above chance. */
-export const MOST_ABOVE_CHANCE = 0.03
 
 const CASES: Record<string, () => SparseGraph> = {
   'regular-60': () => randomRegular(60, 6, createRandom('regular-60')),
@@ -14,19 +12,22 @@ const CASES: Record<string, () => SparseGraph> = {
 }
 
 /**
- * `npm run bench -- leak [--only CASE] [--minutes N]`: attacks what the collector of an overlay has been sent, sealed and named, and says
+ * `npm run bench -- leak [--only CASE] [--disclosure named|sealed] [--minutes N]`: attacks what the collector of an overlay has been sent, sealed and named, and says
  * what share of as many guesses as there are links were right.
  */
 export function benchLeak(args: readonly string[], print: (line: string) => void): void {
-  const only = valueOf(args, '--only')?.split(',') ?? Object.keys(CASES)
-  const minutes = Number(valueOf(args, '--minutes') ?? 10)
+  const only = optionOf(args, '--only')?.split(',') ?? Object.keys(CASES)
+  const disclosures = DISCLOSURES.filter(
+    (one) => one !== 'flagged' && one === (optionOf(args, '--disclosure') ?? one),
+  )
+  const minutes = Number(optionOf(args, '--minutes') ?? 10)
   print(`share of guesses that are links, after ${minutes} simulated minutes; chance: guesses at random`)
   print('case          disclosure  chance %  energies %  covariance %  nearness %')
   for (const name of only) {
     const make = CASES[name]
     if (!make) throw new RangeError(`no case ${name}: ${Object.keys(CASES).join(', ')}`)
     const graph = make()
-    for (const disclosure of ['named', 'sealed'] as const) {
+    for (const disclosure of disclosures) {
       const looks = watchOverlay(graph, disclosure, minutes)
       print(lineOf(name, disclosure, graph, looks))
     }
@@ -54,7 +55,7 @@ function lineOf(name: string, disclosure: string, graph: SparseGraph, looks: Loo
   ].join(' ')
 }
 
-function valueOf(args: readonly string[], flag: string): string | undefined {
+function optionOf(args: readonly string[], flag: string): string | undefined {
   const at = args.indexOf(flag)
   return at < 0 ? undefined : args[at + 1]
 }

@@ -26,6 +26,9 @@ export const NEAR = 1.2
 /** A combination is replaced at the latest after this long, counted or not. */
 export const COMBINATION_INTERVALS = 8
 
+const doesStandOut = (bounds: ControlState['bounds'], lambda2: number): boolean =>
+  bounds.length > 0 && Math.min(...bounds.map(({ value }) => value)) > NEAR * lambda2
+
 /** The reading, the cut and the orders from a steered state. */
 export function read(
   control: ControlState,
@@ -79,6 +82,7 @@ export function read(
         id: sequence,
         thresholds: THRESHOLDS,
         sides: (control.combination && totals.sidesOf(control.combination.id)) ?? control.combination?.sides,
+        ...(now.round && { stands: doesStandOut(control.bounds, result.values[0]!) }),
       })
       next.combinationAtMs = now.atMs
     }

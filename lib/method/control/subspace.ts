@@ -108,7 +108,7 @@ export function combinationOf(
   subspace: Subspace,
   result: RitzResult,
   previous: SweepOrders | null,
-  init: { id: number; thresholds: readonly number[]; sides?: SweepOrders['sides'] },
+  init: { id: number; thresholds: readonly number[]; sides?: SweepOrders['sides']; stands?: boolean },
 ): SweepOrders {
   const sign = previous ? Math.sign(overlap(subspace, result.coefficients, previous)) || 1 : 1
   const coefficients = result.coefficients.map((value) => sign * value)
@@ -125,6 +125,7 @@ export function combinationOf(
     norm: Math.sqrt(subspace.nodes / square),
     thresholds: init.thresholds,
     ...(init.sides && { sides: init.sides }),
+    ...(init.stands !== undefined && { stands: init.stands }),
     lambda2: result.values[0]!,
     nodes: subspace.nodes,
   }

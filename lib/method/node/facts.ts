@@ -2,8 +2,10 @@ import type { Orders, SweepOrders } from '../orders'
 import type { NodeFacts } from '../report'
 import { linkShare } from './sums'
 
-/** Where links are not named, a node's value is said in these steps, and renewed this rarely. */
-export const COARSE_STEP = 0.25
+/**
+ * Where links are not named, a node says only on which side of 0 it lies, and this rarely. Neighbours have near values: from steps of a quarter or of 1
+ * a fifth of the guesses were links on a random 6-regular graph of 60 nodes, where a tenth are by chance.
+ */
 export const COARSE_INTERVALS = 30
 
 export interface ValuedLink {
@@ -20,7 +22,7 @@ export class CoarseValue {
 
   say(sweep: number, value: number, nowMs: number, intervalMs: number): { sweep: number; value: number } {
     if (this.said === null || nowMs - this.saidAtMs >= COARSE_INTERVALS * intervalMs) {
-      this.said = { sweep, value: Math.round(value / COARSE_STEP) * COARSE_STEP }
+      this.said = { sweep, value: value > 0 ? 1 : -1 }
       this.saidAtMs = nowMs
     }
     return this.said

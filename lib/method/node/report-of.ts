@@ -173,5 +173,7 @@ function disclosedValue(
 ): NodeFacts['value'] {
   if (!orders?.sweep || own === null) return null
   if (orders.disclosure === 'named') return { sweep: orders.sweep.id, value: Math.round(own * 1000) / 1000 }
+  // While no single cut stands out there are no sides to be on.
+  if (!orders.sweep.stands) return null
   return coarse.say(orders.sweep.id, own, nowMs, ordinaryIntervalMs(orders.pace))
 }
