@@ -71,7 +71,7 @@ export function read(
   const lowered =
     mature !== null && lambda2 !== null && lambda2 < (mature.values[0] ?? lambda2) * (1 - LOWERED)
   if (subspace && result && isNews) {
-    const counted = next.combination ? totals.cutOf(next.combination.id, THRESHOLDS) : undefined
+    const counted = next.combination ? totals.cutOf(next.combination, THRESHOLDS) : undefined
     if (counted !== undefined) next.cut = counted
     const old = now.atMs - next.combinationAtMs >= COMBINATION_INTERVALS * pace.intervalMs
     const gone = next.combination?.terms.some(

@@ -15,7 +15,7 @@ export function totalsOfReports(before: Snapshot | null, now: Snapshot, interval
     ratesOf: ({ colony, seeding }) => colonyRates(colony, seeding, before ?? none, now, intervalMs),
     driftOf: (known, colonies) => (before ? noteDrift(known, colonies, before, now, intervalMs) : [...known]),
     subspaceOf: (colonies, drifts) => gather(colonies, heard, drifts, now.atMs),
-    cutOf: (sweep, thresholds) => bestCut(sweep, thresholds, heard),
+    cutOf: ({ id }, thresholds) => bestCut(id, thresholds, heard),
     sidesOf: () => undefined,
   }
 }

@@ -1,6 +1,7 @@
 import { Matrix } from 'ml-matrix'
 import type { RoundTotals } from '../mask'
-import { LEAST_SIDE } from '../node/round-of'
+import { LEAST_SIDE, mayCount } from '../node/round-of'
+import type { SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
 import { bestOf, type Counted } from './cut'
 import { fromUpperTriangle } from './ritz'
@@ -29,7 +30,7 @@ export function totalsOfRound(round: RoundTotals, isNew: boolean): Totals {
     },
     driftOf: () => [],
     subspaceOf: (colonies) => subspaceOf(round, colonies),
-    cutOf: (sweep, thresholds) => cutOf(round, sweep, thresholds),
+    cutOf: (combination, thresholds) => cutOf(round, combination, thresholds),
     sidesOf: (sweep) =>
       round.sweep && round.layout.sweep?.id === sweep && round.sweep.counted > 0
         ? { above: round.sweep.above, nodes: round.sweep.counted }
@@ -73,7 +74,7 @@ function subspaceOf(round: RoundTotals, colonies: readonly ColonyControl[]): Sub
 
 function cutOf(
   { layout, sweep, head }: RoundTotals,
-  id: number,
+  { id, sides }: Pick<SweepOrders, 'id' | 'sides'>,
   thresholds: readonly number[],
 ): CutCount | null | undefined {
   const isCounted = sweep && layout.sweep?.id === id && layout.sweep.thresholds === thresholds.length
@@ -84,7 +85,8 @@ function cutOf(
     const links = sweep.crossing[index]! / 2
     const weight = sweep.crossingWeight[index]! / SUMS_SCALE / 2
     // Agents say nothing of smaller sides, by the last count; and by this one nothing is kept of them.
-    return Math.min(above, below) < LEAST_SIDE ? [] : [{ threshold, above, below, links, weight }]
+    const isSaid = mayCount(sides, index) && Math.min(above, below) >= LEAST_SIDE
+    return !isSaid ? [] : [{ threshold, above, below, links, weight }]
   })
   return bestOf(id, counted)
 }

@@ -1,3 +1,4 @@
+import type { SweepOrders } from '../orders'
 import type { ColonyDrift } from './alignment'
 import type { ColonyControl, CutCount } from './state'
 import type { Subspace } from './subspace'
@@ -28,7 +29,10 @@ export interface Totals {
   /** E and M of the colonies that can be summed; null when none can. */
   subspaceOf(colonies: readonly ColonyControl[], drifts: readonly ColonyDrift[]): Subspace | null
   /** The best of the counted cuts; undefined while not everybody has counted for this combination. */
-  cutOf(sweep: number, thresholds: readonly number[]): CutCount | null | undefined
+  cutOf(
+    combination: Pick<SweepOrders, 'id' | 'sides'>,
+    thresholds: readonly number[],
+  ): CutCount | null | undefined
   /** Nodes above each threshold at the last count, to be told to agents; undefined where they need not be. */
   sidesOf(sweep: number): { above: readonly number[]; nodes: number } | undefined
 }

@@ -30,6 +30,17 @@ describe('an overlay whose sums are masked', () => {
     expect(Math.abs(readings[0]! / exact - 1)).toBeLessThan(0.02)
   })
 
+  it('never takes links that agents may not count for links that are not there', () => {
+    const simulation = sealed('masked')
+    const counted = new Set<number>()
+    simulation.onEstimate = ({ cut }) => {
+      if (cut) counted.add(cut.links)
+    }
+    simulation.run(60_000)
+    expect(counted.has(3)).toBe(true)
+    expect(counted.has(0)).toBe(false)
+  })
+
   it('goes on without neighbours that fall silent, within ten intervals', () => {
     const simulation = sealed('masked')
     simulation.run(60_000)
