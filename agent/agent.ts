@@ -1,7 +1,7 @@
 import { WalkNode } from '@/lib/method/node'
 import type { Orders } from '@/lib/method/orders'
 import type { UpgradeState } from '@/lib/method/report'
-import { type KeyPair, type LeaveReply, NONCE_BYTES, type PassGrant } from '@/lib/protocol'
+import { generateMaskKeys, type KeyPair, type LeaveReply, NONCE_BYTES, type PassGrant } from '@/lib/protocol'
 import type { AgentComponents, AgentInit, AgentStatus, Ending } from './agent-contract'
 import { DIAL_BACKOFF } from './backoff'
 import type { CollectorResult, DirectoryReply } from './collector/client'
@@ -10,6 +10,7 @@ import { depart } from './depart'
 import type { SourceNote } from './health'
 import type { LinkEvent } from './link/link-contract'
 import { LinkManager } from './link/link-manager'
+import { MaskSecrets } from './link/mask-secrets'
 import type { NeighbourSpec } from './link/neighbours'
 import { Membership } from './membership'
 import { agentStatus } from './status'
@@ -41,8 +42,12 @@ export class Agent {
     this.init = init
     this.agentId = agentId
     this.incarnation = base64url(randomBytes(12))
+    const secrets = new MaskSecrets(generateMaskKeys(), {
+      agentId,
+      incarnation: this.incarnation,
+    })
     this.node = new WalkNode(
-      { random },
+      { random, maskOf: (peer, life) => secrets.of(peer, life) },
       { agentId, incarnation: this.incarnation, consents: init.consents, weights: init.identity.weights },
     )
     this.membership = new Membership(
@@ -66,6 +71,7 @@ export class Agent {
         passes: standing.passes(),
         trust,
         nonce: () => base64url(randomBytes(NONCE_BYTES)),
+        secrets,
       },
       {
         acceptUnknown: init.acceptUnknown ?? true,

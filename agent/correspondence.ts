@@ -56,6 +56,8 @@ export class Correspondence {
       {
         agentId,
         onReply: (reply) => {
+          if (reply.stored && reply.number !== null)
+            components.node.noteAnswered(reply.number, clock.monotonicMs())
           if (reply.keyRings) membership.trust.follow(reply.keyRings)
           void standing.takeRelayed(reply)
         },
@@ -113,6 +115,7 @@ export class Correspondence {
     const { clock, node, logger, membership } = this.components
     const { agentId, onUpgradeOffer, onOrders } = this.init
     this.spool.clear()
+    node.noteAnswered(report.number, clock.monotonicMs())
     const [problem] = takeReply(
       { trust: membership.trust, node, health: this.health, logger },
       { agentId, onUpgradeOffer, follow: onOrders },

@@ -13,6 +13,7 @@ import { IncidentEntrySchema } from './incident-entry'
 import { IncidentFileSchema } from './incident-file'
 import { JoiningCodeSchema } from './joining-code'
 import { MaintenanceWindowSchema } from './maintenance-window'
+import { MaskedVectorSchema } from './masked-vector'
 import { MembershipSchema } from './membership'
 import { OutboxMessageSchema } from './outbox-message'
 import { OverlaySchema } from './overlay'
@@ -49,6 +50,7 @@ export * from './incident-entry'
 export * from './incident-file'
 export * from './joining-code'
 export * from './maintenance-window'
+export * from './masked-vector'
 export * from './membership'
 export * from './outbox-message'
 export * from './overlay'
@@ -86,6 +88,7 @@ export const entities = [
   IncidentFileSchema,
   JoiningCodeSchema,
   MaintenanceWindowSchema,
+  MaskedVectorSchema,
   MembershipSchema,
   OutboxMessageSchema,
   OverlaySchema,

@@ -10,6 +10,7 @@ import { PlainReports20261209 } from './migration-2026-12-09-plain-reports'
 import { Warnings20261210 } from './migration-2026-12-10-warnings'
 import { Rehearsals20261211 } from './migration-2026-12-11-rehearsals'
 import { Reinforcement20261212 } from './migration-2026-12-12-reinforcement'
+import { Sealed20261213 } from './migration-2026-12-13-sealed'
 import { Partners20261214 } from './migration-2026-12-14-partners'
 
 /** In order; a migration that has landed is never edited. */
@@ -26,5 +27,6 @@ export const migrations = [
   { name: '2026-12-10-warnings', class: Warnings20261210 },
   { name: '2026-12-11-rehearsals', class: Rehearsals20261211 },
   { name: '2026-12-12-reinforcement', class: Reinforcement20261212 },
+  { name: '2026-12-13-sealed', class: Sealed20261213 },
   { name: '2026-12-14-partners', class: Partners20261214 },
 ]

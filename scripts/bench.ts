@@ -3,6 +3,7 @@ import { benchAgent } from './bench/agent'
 import { benchCoverage } from './bench/coverage'
 import { benchDrawing } from './bench/drawing'
 import { benchIngest } from './bench/ingest'
+import { benchLeak } from './bench/leak'
 import { benchReading } from './bench/reading'
 import { benchRehearsal } from './bench/rehearsal'
 import { benchScale } from './bench/scale'
@@ -15,6 +16,7 @@ const BENCHES: Record<string, Bench> = {
   coverage: benchCoverage,
   drawing: benchDrawing,
   ingest: benchIngest,
+  leak: benchLeak,
   // From cold and at rest: the reading's table begins with what the method alone does.
   method: benchReading,
   reading: benchReading,

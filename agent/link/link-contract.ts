@@ -8,6 +8,7 @@ import type { Backoff } from '../backoff'
 import type { Clock } from '../clock'
 import type { Logger } from '../logger'
 import type { Transport } from '../transport/transport'
+import type { MaskSecrets } from './mask-secrets'
 
 export const HANDSHAKE_TIMEOUT_MS = 5_000
 /** Connections that have not proved themselves, in all and from one address; more are turned away. */
@@ -57,6 +58,8 @@ export interface LinkManagerComponents {
   trust: LinkTrust
   /** base64url of 32 fresh random bytes. */
   nonce: () => string
+  /** Without them links share no secrets, and the agent takes no part in masked rounds. */
+  secrets?: MaskSecrets
 }
 
 export interface LinkManagerInit {

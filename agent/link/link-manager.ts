@@ -184,7 +184,7 @@ export class LinkManager implements SessionOwner {
   }
 
   private open(connection: Connection, role: LinkRole, expectedPeer?: string): LinkSession {
-    const { clock, node, passes, nonce } = this.components
+    const { clock, node, passes, nonce, secrets } = this.components
     const { keys } = this
     const sign = (bytes: Uint8Array) => signBytes(keys.privateKey, bytes)
     return new LinkSession(
@@ -196,6 +196,7 @@ export class LinkManager implements SessionOwner {
         pass: passes.own(),
         incarnation: node.incarnation,
         nonce: nonce(),
+        mask: secrets?.publicKey,
         expectedPeer,
         versions: this.init.versions,
         timeoutMs: this.init.handshakeTimeoutMs ?? HANDSHAKE_TIMEOUT_MS,
@@ -237,6 +238,7 @@ export class LinkManager implements SessionOwner {
   private join(session: LinkSession, peer: LinkPeer): void {
     const { node, clock, logger, passes } = this.components
     const { agentId, incarnation, name } = peer
+    this.components.secrets?.note(peer)
     const isNew = this.table.join(session, peer)
     if (!this.removals.has(agentId)) node.addLink(agentId, incarnation, clock.monotonicMs())
     const quality = this.qualities.get(agentId) ?? this.neighbours.find(agentId)?.quality ?? 1

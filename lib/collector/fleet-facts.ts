@@ -12,7 +12,7 @@ export interface FleetFacts {
 
 /** What the agents heard say of themselves, taken together. */
 export function fleetFacts(
-  { snapshot, leftOut }: Pick<Loaded, 'snapshot'> & { leftOut: number },
+  { snapshot, leftOut, withoutAgent }: Pick<Loaded, 'snapshot'> & { leftOut: number; withoutAgent?: number },
   intervalMs: number,
 ): FleetFacts {
   const said: AgentHealth[] = snapshot.agents.flatMap((agent) => {
@@ -22,7 +22,9 @@ export function fleetFacts(
   const kinds = new Set(said.map(({ linkKind }) => linkKind))
   const [kind = null] = kinds
   return {
-    ...(said.length > 0 ? { withoutAgent: said.reduce((sum, each) => sum + each.withoutAgent, 0) } : {}),
+    ...(said.length > 0
+      ? { withoutAgent: withoutAgent ?? said.reduce((sum, each) => sum + each.withoutAgent, 0) }
+      : {}),
     leftOut,
     linkKind: kinds.size > 1 ? 'mixed' : kind,
   }

@@ -58,7 +58,9 @@ export class ReplyMaker {
     const { report } = arrival
     const keyRings = await this.ringsFor(arrival)
     // What is not stored is not received: another account under the same number would have two receipts.
-    const isReceived = entry.request.wantsReceipt === true && arrival.outcome?.kind === 'stored'
+    // Where links are not named there is nothing in a report that neighbours could audit.
+    const isAudited = entry.request.wantsReceipt === true && sender.disclosure === 'named'
+    const isReceived = isAudited && arrival.outcome?.kind === 'stored'
     return {
       orders: null,
       ordersAgeMs,

@@ -1,11 +1,11 @@
 import type { AgentCaller } from '@/lib/auth/caller'
 import { sha256Hex } from '@/lib/auth/secrets'
 import type { EntityManager } from '@/lib/db'
-import type { Report } from '@/lib/method/report'
 import type { PassGrant } from '@/lib/protocol'
 import { enterAway } from './away'
 import type { Clock } from './clock'
 import { clonedEvent, clonedKey } from './clone'
+import { disclosed } from './disclosed'
 import { enterEventOnce } from './events-store'
 import {
   type Admitted,
@@ -23,6 +23,7 @@ import { countLate, findHeld, findSenders, type Sender, type StateRow, storeStat
 import { PASS_LIFE_MS } from './passes'
 import { openRelayed, type Relayed, relayedReply } from './relayed'
 import { CLONE_REPORTS, type HeldReport } from './report-check'
+import { storeVectors, type VectorRow } from './vectors'
 
 /** Reports wait this long for others to be stored with. */
 export const BATCH_MS = 10
@@ -168,9 +169,11 @@ export class Ingest {
     for (const { sender, report, relayed, outcome } of arrivals) {
       if (outcome?.kind !== 'stored') continue
       const { agentId, overlayId } = sender
-      latest.set(agentId, { agentId, overlayId, report: disclosed(report, sender), relayed })
+      latest.set(agentId, { agentId, overlayId, report: disclosed(report, sender.disclosure), relayed })
     }
     const rows = [...latest.values()]
+    // First, so that a report that counts as stored has brought all it carried.
+    await storeVectors(em, arrivals.flatMap(vectorsIn))
     const failed = await storeEach(em, rows)
     for (const arrival of arrivals) {
       const error = failed.get(arrival.sender.agentId)
@@ -224,6 +227,12 @@ async function replyTo(each: Relayed, passes: ReadonlyMap<string, PassGrant>, ma
   return relayedReply(each, passes.get(each.signed.agentId) ?? null, keyRings)
 }
 
+function vectorsIn({ sender, report, outcome }: Arrival): VectorRow[] {
+  const { agentId, overlayId, disclosure } = sender
+  if (outcome?.kind !== 'stored' || disclosure === 'named') return []
+  return (report.masked ?? []).map((vector) => ({ ...vector, agentId, overlayId }))
+}
+
 function arrivalsIn(relayed: readonly Relayed[]): Arrival[] {
   return relayed.flatMap(({ found }) => ('outcome' in found ? [found] : []))
 }
@@ -257,11 +266,4 @@ async function storeEach(em: EntityManager, rows: readonly StateRow[]): Promise<
 /** Classes 22 and 23: data and constraints (PostgreSQL documentation, appendix A). */
 function isAboutData(error: unknown): boolean {
   return error instanceof Error && 'code' in error && /^2[23]/.test(String(error.code))
-}
-
-/** What the overlay does not disclose is not stored, even where an agent on old orders still says it. */
-function disclosed(report: Report, { disclosure }: Sender): Report {
-  if (disclosure === 'named') return report
-  const { complaints: _complaints, ...unnamed } = report
-  return disclosure === 'sealed' ? { ...unnamed, node: { ...report.node, links: [] } } : unnamed
 }

@@ -1,5 +1,5 @@
 import type { EntityManager } from '@/lib/db'
-import type { JoinedAgent, Snapshot } from '@/lib/method/control'
+import type { HeldVector, JoinedAgent, Snapshot } from '@/lib/method/control'
 import type { Disclosure, Orders, WeightMode } from '@/lib/method/orders'
 import type { PaceName } from '@/lib/method/pace'
 import type { Complaint, NodeFacts, Sums } from '@/lib/method/report'
@@ -9,6 +9,7 @@ import { epochMs, query } from './query'
 import type { OpenRehearsal, TeamFloor } from './rehearsal/open'
 import { loadFloors } from './rehearsal/store'
 import type { KeyText } from './signer'
+import { loadVectors } from './vectors'
 
 export interface LoadedAgent extends JoinedAgent {
   name: string
@@ -41,11 +42,17 @@ export interface Loaded {
   /** Rehearsals that wait or run, in the order they were asked for, and the floors they are held against. */
   rehearsals: readonly OpenRehearsal[]
   floors: readonly TeamFloor[]
+  /** Masked sums of the rounds asked for, as far as they have come. */
+  vectors?: readonly HeldVector[]
   snapshot: Omit<Snapshot, 'agents'> & { agents: readonly LoadedAgent[] }
 }
 
 /** Null where the overlay is gone. */
-export async function loadOverlay(em: EntityManager, overlayId: string): Promise<Loaded | null> {
+export async function loadOverlay(
+  em: EntityManager,
+  overlayId: string,
+  rounds: readonly number[] = [],
+): Promise<Loaded | null> {
   const agents = await query<AgentRow>(
     em,
     `select a.id as "agentId", a.name, a.labels, coalesce(a.team_id = o.team_id, true) as "isOwn", ${epochMs('a.joined_at')} as "joinedAtMs",
@@ -82,6 +89,7 @@ export async function loadOverlay(em: EntityManager, overlayId: string): Promise
     key: { publicKey, privateKey },
     shut: await loadShut(em, overlayId),
     floors: overlay.rehearsals.length > 0 ? await loadFloors(em, overlayId) : [],
+    vectors: await loadVectors(em, overlayId, rounds),
     // Whole milliseconds, as rows keep them; upwards, so that no report is from the future.
     snapshot: { atMs: Math.ceil(nowMs), agents: agents.map(toAgent) },
   }

@@ -13,6 +13,7 @@ import type { RehearsalChange } from './rehearsal/open'
 import { writeChanges } from './rehearsal/store'
 import { eventOf } from './said'
 import { type KeyText, signerOf } from './signer'
+import { dropVectors } from './vectors'
 
 export type { Loaded, LoadedAgent } from './leader-load'
 
@@ -71,8 +72,8 @@ export class LeaderStore {
   }
 
   /** Null where the overlay is gone. */
-  async load(): Promise<Loaded | null> {
-    return loadOverlay(await this.#forkEm(), this.#overlayId)
+  async load(rounds: readonly number[] = []): Promise<Loaded | null> {
+    return loadOverlay(await this.#forkEm(), this.#overlayId, rounds)
   }
 
   /** One round, whole or not at all. @returns false where another has taken over: this term is at its end */
@@ -101,6 +102,8 @@ export class LeaderStore {
         ],
       )
       if (fenced.length === 0) return false
+      const [open] = round.state.control.rounds?.planned ?? []
+      if (open) await dropVectors(tx, this.#overlayId, open.number)
       if (round.reading) await insertReading(tx, this.#overlayId, round.reading)
       const leftOut = await leaveOut(tx, round.leftOut)
       await writeChanges(tx, this.#overlayId, round.rehearsals, new Date(round.state.memory.judgedAtMs ?? 0))

@@ -1,16 +1,18 @@
 import type { Log } from '@/lib/http/runtime'
 import {
   DEFAULT_SETTINGS,
-  evaluateOverlay,
+  evaluateAny,
   initialControl,
   isHeard,
+  openRounds,
   type Snapshot,
+  withRound,
 } from '@/lib/method/control'
-import type { Walk } from '@/lib/method/orders'
+import type { Disclosure, Orders, Walk } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import type { Random } from '@/lib/method/random'
 import { MAX_SHUT } from '@/lib/protocol'
-import { type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
+import { type AuditInput, type AuditMemory, auditAgents, BLANK_AUDIT } from './audit'
 import { type Clock, sleep } from './clock'
 import type { ExactCheck } from './exact'
 import { fleetFacts, withFleetFacts } from './fleet-facts'
@@ -127,9 +129,11 @@ export class Term {
     const sequence = this.#sequence + 1
     // Ages count from this issue on; what is to begin later still begins at the same moment.
     const passedMs = clock.monotonicMs() - this.#issuedMs
+    const { rounds } = last.orders
     const orders = {
       ...last.orders,
       ...later(last.orders, passedMs),
+      ...(rounds && { rounds: laterRounds(rounds, passedMs) }),
       colonies: last.orders.colonies.map((colony) => ({
         ...colony,
         ...(colony.own && { own: { ...colony.own, ...later(colony.own, passedMs) } }),
@@ -158,7 +162,7 @@ export class Term {
   async #round(onInterval: (intervalMs: number) => void): Promise<TermEnd | null> {
     const { clock, store, usual, upkeep, moments, planned, exact, log } = this.#components
     const startedMs = clock.monotonicMs()
-    const loaded = await store.load()
+    const loaded = await store.load(this.#state ? openRounds(this.#state.control, Infinity) : [])
     if (!loaded || loaded.snapshot.agents.length === 0) return 'nothing-joined'
     onInterval(PACES[loaded.pace].intervalMs)
     const { atMs } = loaded.snapshot
@@ -169,7 +173,7 @@ export class Term {
     if (!(await store.write(round))) return 'replaced'
     this.#sequence = round.sequence
     this.#state = round.state
-    this.#before = loaded.snapshot
+    this.#before = withRound(loaded.snapshot, round.state.control)
     this.#last = round
     this.#issuedMs = clock.monotonicMs()
     const tookMs = clock.monotonicMs() - startedMs
@@ -205,7 +209,7 @@ export class Term {
     const sequence = this.#sequence + 1
     const { atMs } = loaded.snapshot
     const before = this.#state?.control ?? initialControl(atMs, pace)
-    const audited = auditAgents({
+    const audited = auditNow(disclosure, {
       now: loaded.snapshot,
       control: before,
       pace,
@@ -219,7 +223,7 @@ export class Term {
       { disclosure, agents: snapshot.agents, links: linksFor(loaded, pace) },
       atMs,
     )
-    const { control, orders, estimate, core, parts, rehearsals } = evaluateOverlay({
+    const { control, orders, estimate, core, parts, rehearsals } = evaluateAny({
       control: before,
       before: this.#before,
       now: snapshot,
@@ -227,6 +231,7 @@ export class Term {
       sequence,
       random: this.#components.random,
       rehearsals: planned.rehearsed,
+      vectors: disclosure === 'named' ? null : (loaded.vectors ?? []),
     })
     const { reading, memory, events, facts, store } = judge({
       estimate,
@@ -246,10 +251,11 @@ export class Term {
       disclosure === 'named'
         ? this.#links.watch(snapshot, (agentId) => names.get(agentId) ?? agentId, pace.intervalMs)
         : []
+    const withoutAgent = control.rounds?.last?.head.withoutAgent
     const told: KeptReading = {
       ...withFleetFacts(
         { ...reading, exact: this.#components.exact.latest(atMs) },
-        fleetFacts({ snapshot, leftOut: leftOutNames.length }, pace.intervalMs),
+        fleetFacts({ snapshot, leftOut: leftOutNames.length, withoutAgent }, pace.intervalMs),
       ),
       ...(loaded.isShared && { facts }),
     }
@@ -282,6 +288,18 @@ export class Term {
 
 const later = ({ next }: Walk, passedMs: number): Pick<Walk, 'next'> =>
   next ? { next: { ...next, fromAgeMs: Math.max(0, next.fromAgeMs - passedMs) } } : {}
+
+/** Rounds announced anew are still at the same moments; those that are past agents know of. */
+function laterRounds(rounds: NonNullable<Orders['rounds']>, passedMs: number): Orders['rounds'] {
+  return rounds.flatMap((round) =>
+    round.fromAgeMs > passedMs ? [{ ...round, fromAgeMs: round.fromAgeMs - passedMs }] : [],
+  )
+}
+
+/** Where links are not named nothing in reports can be audited from here: neighbours alone do. */
+function auditNow(disclosure: Disclosure, input: AuditInput): ReturnType<typeof auditAgents> {
+  return disclosure === 'named' ? auditAgents(input) : { leftOut: [], memory: BLANK_AUDIT }
+}
 
 /** The overlay as it is once these agents are left out: they have not joined, and nobody keeps a link to them. */
 function withoutLeftOut(loaded: Loaded, leftOut: Round['leftOut']): Loaded {

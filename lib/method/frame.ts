@@ -1,3 +1,4 @@
+import type { RoundSaying } from './mask'
 import type { Orders } from './orders'
 import type { SignedStatement } from './statement'
 
@@ -57,4 +58,6 @@ export interface Frame {
   heardFrames?: number
   /** Once in a while: what the sender told the collector as well. */
   statement?: SignedStatement | null
+  /** Which masked rounds the sender is ready for; where there are any. */
+  rounds?: RoundSaying | null
 }

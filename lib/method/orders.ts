@@ -1,3 +1,4 @@
+import type { RoundOrders } from './mask'
 import type { Pace } from './pace'
 
 export const DISCLOSURES = ['sealed', 'flagged', 'named'] as const
@@ -59,6 +60,10 @@ export interface SweepOrders {
   norm: number
   /** Fiedler values, in units where the mean square over nodes is 1, ascending. */
   thresholds: readonly number[]
+  /** Nodes above each threshold when the cuts of the combination before were counted, and in all. Where links are not named only. */
+  sides?: { above: readonly number[]; nodes: number }
+  /** One cut is clearly the weakest, so that nodes have sides. Where links are not named only. */
+  stands?: boolean
   /** The estimate the combination belongs to; shares of links are w(vᵢ−vⱼ)²/(n·λ₂) in these units. */
   lambda2: number
   nodes: number
@@ -99,6 +104,8 @@ export interface Orders {
   shut?: readonly { agentId: string; reason: ShutReason }[]
   /** Absent before version 2: then as enrolment said. */
   weights?: WeightMode
+  /** Masked rounds to come, oldest first. Where links are not named only. */
+  rounds?: readonly RoundOrders[]
 }
 
 /** ∫ω dt over the orders' ages from … to, link time. */

@@ -1,3 +1,5 @@
+import type { MaskedVector } from './mask'
+
 /** Fixed-point scale of every fractional quantity in the sums: value × SUMS_SCALE, rounded. */
 export const SUMS_SCALE = 1024
 
@@ -152,4 +154,6 @@ export interface Report {
   node: NodeFacts
   /** Absent in reports of version 1. */
   complaints?: readonly Complaint[]
+  /** Where links are not named: `sums` are empty then, and these stand in their place. */
+  masked?: readonly MaskedVector[]
 }

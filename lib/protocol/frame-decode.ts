@@ -90,7 +90,8 @@ function read(reader: ByteReader, init: DecodeInit): DecodeResult {
   }
   if (version < 2) return { ok: true, frame }
   const distance = distanceOf(flags)
-  return { ok: true, frame: { ...frame, distance, heardFrames, statement: parts.statement } }
+  const { statement, rounds } = parts
+  return { ok: true, frame: { ...frame, distance, heardFrames, statement, ...(rounds && { rounds }) } }
 }
 
 const DISTANCES: readonly CollectorDistance[] = [0, 1, 2, 3]

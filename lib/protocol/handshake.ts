@@ -16,6 +16,8 @@ export interface LinkPeer {
   key: string
   incarnation: string
   version: number
+  /** Its X25519 key of this start, where it said one. */
+  mask: string | null
   /** Seconds since 1970. */
   passExpiresAt: number
 }
@@ -42,6 +44,8 @@ export interface HandshakeInit {
   incarnation: string
   /** base64url of 32 fresh random bytes. */
   nonce: string
+  /** Own X25519 key of this start: both proofs cover it, as they do all of both hellos. */
+  mask?: string
   /** The agent that must answer, where the caller knows it. */
   expectedPeer?: string
   versions?: readonly number[]
@@ -73,6 +77,7 @@ export class Handshake {
       pass: init.pass,
       incarnation: init.incarnation,
       nonce: init.nonce,
+      ...(init.mask !== undefined && { mask: init.mask }),
     })
   }
 
@@ -144,6 +149,7 @@ export class Handshake {
           key: claims.key,
           incarnation: peer.hello.incarnation,
           version: peer.version,
+          mask: peer.hello.mask ?? null,
           passExpiresAt: claims.expiresAt,
         },
       },

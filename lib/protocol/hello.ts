@@ -16,6 +16,8 @@ export const helloSchema = z.object({
   incarnation: z.string().regex(INCARNATION),
   /** base64url of 32 random bytes. */
   nonce: z.string().regex(/^[A-Za-z0-9_-]{43}$/),
+  /** The sender's X25519 key of this start, raw: both ends' make the pair's secret. Older programs say none. */
+  mask: z.string().regex(RAW_KEY).optional(),
 })
 export type Hello = z.infer<typeof helloSchema>
 

@@ -54,6 +54,7 @@ export {
   verifyText,
 } from './keys'
 export * from './limits'
+export { generateMaskKeys, type MaskEnd, type MaskKeys, pairStream } from './mask-keys'
 export { FRAME_VERSION, LINK_VERSIONS, MESSAGE_KIND } from './message-kind'
 export { ProvenNonces } from './nonces'
 export { ordersBytes, parseOrders } from './orders-part'

@@ -22,3 +22,6 @@ export const MAX_RELAYED = 32
 /** Agents that nobody keeps a link to, in orders. */
 export const MAX_SHUT = 2_000
 export const MAX_COMPLAINTS = 64
+/** Masked rounds that orders announce, or a report carries; entries of one. */
+export const MAX_ROUNDS = 16
+export const MAX_ROUND_ENTRIES = 5_000

@@ -1,6 +1,7 @@
 import { z } from 'zod'
+import { sizeOf } from '../method/mask'
 import { DISCLOSURES, type Orders, SHUT_REASONS, WEIGHT_MODES } from '../method/orders'
-import { MAX_COLONIES, MAX_REFUSED, MAX_SHUT, MAX_THRESHOLDS } from './limits'
+import { MAX_COLONIES, MAX_REFUSED, MAX_ROUND_ENTRIES, MAX_ROUNDS, MAX_SHUT, MAX_THRESHOLDS } from './limits'
 
 /** z.number() refuses NaN and the infinities by itself. */
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
@@ -44,6 +45,16 @@ const sweepOrdersSchema = z.object({
   thresholds: z.array(z.number()).max(MAX_THRESHOLDS),
   lambda2: z.number(),
   nodes: count,
+  stands: z.boolean().optional(),
+  sides: z.object({ above: z.array(count).max(MAX_THRESHOLDS), nodes: count }).optional(),
+})
+
+const slot = z.number().int().min(0).max(0xffff)
+const roundOrdersSchema = z.object({
+  number: count,
+  fromAgeMs: z.number().min(0).max(3_600_000),
+  groups: z.array(z.array(z.tuple([slot, count])).max(MAX_COLONIES)).max(MAX_COLONIES),
+  sweep: z.object({ id: count, thresholds: z.number().int().min(0).max(MAX_THRESHOLDS) }).nullable(),
 })
 
 export const ordersSchema: z.ZodType<Orders> = z
@@ -65,6 +76,10 @@ export const ordersSchema: z.ZodType<Orders> = z
       .max(MAX_SHUT)
       .optional(),
     weights: z.enum(WEIGHT_MODES).optional(),
+    rounds: z
+      .array(roundOrdersSchema.refine((round) => sizeOf(round) <= MAX_ROUND_ENTRIES))
+      .max(MAX_ROUNDS)
+      .optional(),
   })
   .refine(
     ({ linkTimePerSecond, next, colonies, pace }) =>

@@ -4,7 +4,15 @@ import { upgradeOfferSchema } from './agent-life'
 import { passGrantSchema } from './enrol'
 import { INCARNATION } from './hello'
 import { keyRingSchema } from './key-ring'
-import { MAX_COLONIES, MAX_COMPLAINTS, MAX_RELAYED, MAX_REPORT_LINKS, MAX_THRESHOLDS } from './limits'
+import {
+  MAX_COLONIES,
+  MAX_COMPLAINTS,
+  MAX_RELAYED,
+  MAX_REPORT_LINKS,
+  MAX_ROUND_ENTRIES,
+  MAX_ROUNDS,
+  MAX_THRESHOLDS,
+} from './limits'
 import { ordersSchema } from './orders-schema'
 import { receiptSchema } from './receipt'
 import { signedOrdersSchema } from './signed-orders'
@@ -125,6 +133,15 @@ const nodeFactsSchema = z.object({
   health: healthSchema.optional(),
 })
 
+/** Eight bytes an entry in base64url. What they hold nobody can check. */
+const maskedSchema = z.object({
+  round: count,
+  sums: z
+    .string()
+    .max(Math.ceil((MAX_ROUND_ENTRIES * 32) / 3))
+    .regex(/^[A-Za-z0-9_-]*$/),
+})
+
 const reportShape = z.object({
   incarnation: z.string().regex(INCARNATION),
   number: z.number().int().min(1).max(Number.MAX_SAFE_INTEGER),
@@ -132,6 +149,7 @@ const reportShape = z.object({
   sums: sumsSchema,
   node: nodeFactsSchema,
   complaints: z.array(complaintSchema).max(MAX_COMPLAINTS).optional(),
+  masked: z.array(maskedSchema).max(MAX_ROUNDS).optional(),
 })
 export const reportSchema: z.ZodType<Report> = reportShape
 

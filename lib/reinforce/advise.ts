@@ -1,6 +1,5 @@
 import type { ReinforcementAsked } from '@/lib/data/reinforcement-dto'
 import { edgesOf, linkCount } from '@/lib/method/graph'
-import { COARSE_STEP } from '@/lib/method/node/facts'
 import type { Disclosure } from '@/lib/method/orders'
 import {
   type FirstOrderLink,
@@ -16,6 +15,8 @@ export const EXACT_MOST_NODES = 3_000
 export const EXACT_MOST_LINKS = 40_000
 /** In named overlays values come with three decimals. */
 const FINE_STEP = 0.001
+/** Elsewhere nodes only say on which side they lie: their value may be any. */
+const SIDE_STEP = Number.POSITIVE_INFINITY
 const LEAST_NODES = 3
 
 export interface AdviseInput {
@@ -63,7 +64,7 @@ export function advise({ known, disclosure, reading, asked, mayLink }: AdviseInp
   const found = reinforceByValues({
     ...{ values, rules, links, weight },
     counted: nodes.length,
-    step: disclosure === 'named' ? FINE_STEP : COARSE_STEP,
+    step: disclosure === 'named' ? FINE_STEP : SIDE_STEP,
     lambda2: reading.lambda2,
     lambda3AtMost: reading.lambda3AtMost,
     degrees: nodes.map(({ degree }) => degree),

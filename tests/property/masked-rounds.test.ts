@@ -236,12 +236,25 @@ describe('masked rounds', () => {
     const swarm = new Swarm(createRandom(2), 2, [[0, 1]])
     for (const index of [0, 1]) swarm.announce(index, 5, 3_000)
     for (let tick = 0; tick < 16; tick++) swarm.tick(0)
-    const { vector } = swarm.sent.get(5)![0]!
+    const vector = swarm.sent.get(5)?.[0]?.vector ?? new BigUint64Array()
     let ones = 0
     for (const value of vector) ones += value.toString(2).replaceAll('0', '').length
+    expect(vector).toHaveLength(sizeOf(LAYOUT))
     const bits = vector.length * 64
     // Five standard deviations of a fair coin.
     expect(Math.abs(ones - bits / 2)).toBeLessThan(5 * Math.sqrt(bits / 4))
+  })
+})
+
+describe('an agent', () => {
+  it('takes no sums for a round again that is long over, though it is announced anew', () => {
+    const rounds = new Rounds({ maskOf: () => streamOf('a', 'b') }, { ownId: 'a' })
+    const due = (number: number, atMs: number) => {
+      rounds.hear([{ ...LAYOUT, number, fromAgeMs: 0 }], atMs)
+      return rounds.due(atMs).map(({ round }) => round)
+    }
+    for (let number = 1; number <= 20; number++) expect(due(number, number * 1_000)).toEqual([number])
+    for (let number = 1; number <= 20; number++) expect(due(number, 30_000)).toEqual([])
   })
 })
 

@@ -19,6 +19,7 @@ export function fuzzIntake(overlay: TestOverlay, seed: string, messages: number)
     const peer: LinkPeer = {
       agentId,
       name: agentId,
+      mask: null,
       key: '',
       incarnation,
       version: index % 5 === 0 ? 1 : 2,

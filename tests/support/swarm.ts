@@ -3,11 +3,12 @@ import { WalkNode } from '@/lib/method/node'
 import { PACES, type PaceName } from '@/lib/method/pace'
 import { createRandom, type Random } from '@/lib/method/random'
 import type { Report } from '@/lib/method/report'
-import type { ReportReply } from '@/lib/protocol'
+import { generateMaskKeys, type MaskEnd, type MaskKeys, pairStream, type ReportReply } from '@/lib/protocol'
 import { deliver, joinAgent, type Member } from './collector'
 
 interface SwarmNode {
   member: Member
+  masks: MaskKeys
   node: WalkNode
   silent: boolean
   /** Its last report, until that is answered. */
@@ -43,11 +44,15 @@ export class Swarm {
     for (const { name, labels } of names) {
       const member = await joinAgent(code, name, labels)
       this.#index.set(member.agentId, this.nodes.length)
-      const node = new WalkNode(
-        { random: createRandom(`${name}`) },
-        { agentId: member.agentId, incarnation: `incarnation-of-${member.agentId}` },
-      )
-      this.nodes.push({ member, node, silent: false, telling: Promise.resolve() })
+      const masks = generateMaskKeys()
+      const own = endOf(member.agentId, masks)
+      const maskOf = (peer: string) => {
+        const other = this.nodes[this.#index.get(peer)!]!
+        return pairStream(own, masks.privateKey, endOf(peer, other.masks))
+      }
+      const { agentId, incarnation } = own
+      const node = new WalkNode({ random: createRandom(`${name}`), maskOf }, { agentId, incarnation })
+      this.nodes.push({ member, masks, node, silent: false, telling: Promise.resolve() })
     }
   }
 
@@ -116,9 +121,16 @@ export class Swarm {
     const report = node.report(performance.now(), { linksKnown: 0, version: '0.1.0', uptimeSeconds: 1 })
     try {
       const { orders, ordersAgeMs } = await this.#init.send(member, report)
+      node.noteAnswered(report.number, performance.now())
       if (orders) node.adopt(orders, ordersAgeMs, performance.now())
     } catch (error) {
       this.failure ??= error
     }
   }
 }
+
+const endOf = (agentId: string, { publicKey }: MaskKeys): MaskEnd => ({
+  agentId,
+  incarnation: `incarnation-of-${agentId}`,
+  publicKey,
+})

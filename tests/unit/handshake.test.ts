@@ -95,6 +95,7 @@ test('two agents of one overlay learn each other and the start they talk to', as
       key: gul.keys.publicKey,
       incarnation: 'incarnation-gul-04',
       version: 2,
+      mask: null,
       passExpiresAt: NOW_SECONDS + 86_400,
     },
   })

@@ -4,8 +4,6 @@ import { countOf, listOf } from '../words'
 
 /** Orders name each of them once per colony, a link by both ends: more would make orders too long for a link's frame. */
 export const MOST_TAKEN_NAMES = 1_000
-/** Where links are not named, so many nodes must remain: of two it would be told whether they are linked. */
-export const LEAST_REMAIN_UNNAMED = 10
 export const LEAST_REMAIN = 2
 
 export interface TakableAgent {
@@ -53,6 +51,15 @@ export function takenOf(
   isAsked: boolean,
 ): { taken: Taken } | { problems: TakenProblem[] } {
   const { nodes, links, labels, between } = exclude
+  if (from.disclosure !== 'named')
+    return {
+      problems: [
+        {
+          path: 'exclude',
+          message: `This overlay is ${from.disclosure}: its agents hand over sums of all of them only, and what would remain without some cannot be told from those yet. Rehearsals need a named overlay.`,
+        },
+      ],
+    }
   const problems: TakenProblem[] = []
   const own = from.agents.filter(({ isOwn = true }) => isOwn)
   const byName = new Map(own.map((agent) => [agent.name, agent]))
@@ -77,7 +84,6 @@ export function takenOf(
   const pairs = links.length + between.length > 0 ? pairsOf(exclude, from, isAsked, say) : []
   const remaining = pairs.filter(([a, b]) => !gone.has(a) && !gone.has(b))
   const remain = from.agents.length - gone.size
-  const isNamed = from.disclosure === 'named'
   if (gone.size + 2 * remaining.length > MOST_TAKEN_NAMES)
     say(
       'exclude',
@@ -85,11 +91,6 @@ export function takenOf(
     )
   if (remain < LEAST_REMAIN)
     say('exclude', `${remain === 0 ? 'No node' : 'One node'} would remain. Leave at least ${LEAST_REMAIN}.`)
-  else if (!isNamed && remain < LEAST_REMAIN_UNNAMED && gone.size > 0)
-    say(
-      'exclude',
-      `${remain} nodes would remain. Where links are not named leave at least ${LEAST_REMAIN_UNNAMED}: of fewer it would show who is linked to whom.`,
-    )
   if (problems.length > 0) return { problems }
   if (gone.size === 0 && remaining.length === 0)
     return {
@@ -104,18 +105,10 @@ type Say = (path: TakenProblem['path'], message: string) => void
 
 function pairsOf(
   { links, between }: Excluded,
-  { disclosure, agents, links: named }: TakenFrom,
+  { agents, links: named }: TakenFrom,
   isAsked: boolean,
   say: Say,
 ): [string, string][] {
-  if (disclosure !== 'named') {
-    const path = links.length > 0 ? 'exclude.links' : 'exclude.between'
-    say(
-      path,
-      `This overlay is ${disclosure}: a rehearsal without a link would tell whether it is there. Rehearse nodes or labels instead.`,
-    )
-    return []
-  }
   const byName = new Map(agents.flatMap((agent) => (agent.isOwn === false ? [] : [[agent.name, agent]])))
   const known = new Set(named.map(({ a, b }) => keyOf(a, b)))
   const isThere = ([a, b]: [string, string]) => known.has(keyOf(a, b)) && byName.has(a) && byName.has(b)

@@ -12,14 +12,16 @@ export const THRESHOLDS = [-2, -1.1, -0.5, -0.2, 0, 0.2, 0.5, 1.1, 2] as const
 export const RUNNER_UP_LEAST_NODES = 5
 export const RUNNER_UP_LEAST_SHARE = 0.05
 
-interface Counted {
+/** One threshold's cut as counted at both ends of its links. */
+export interface Counted {
   threshold: number
   above: number
   below: number
   links: number
   weight: number
-  ratio: number
 }
+
+type Rated = Counted & { ratio: number }
 
 /**
  * The best of the counted cuts by ratio (weight across ÷ nodes of the smaller side).
@@ -39,17 +41,26 @@ export function bestCut(
     return sums && sums.id === sweep && sums.above.length === thresholds.length ? [sums] : []
   })
   if (counts.length === 0 || counts.length < attached.length) return undefined
-  const cuts = thresholds.flatMap((threshold, index): Counted[] => {
-    const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
-      counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
-    const above = total((sums) => sums.above)
-    const below = counts.length - above
-    if (above === 0 || below === 0) return []
-    const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
-    const links = Math.round(total((sums) => sums.crossing) / 2)
-    return [{ threshold, above, below, links, weight, ratio: weight / Math.min(above, below) }]
+  return bestOf(
+    sweep,
+    thresholds.map((threshold, index) => {
+      const total = (pick: (sums: (typeof counts)[number]) => readonly number[]): number =>
+        counts.reduce((sum, sums) => sum + pick(sums)[index]!, 0)
+      const above = total((sums) => sums.above)
+      const weight = total((sums) => sums.crossingWeight) / SUMS_SCALE / 2
+      const links = Math.round(total((sums) => sums.crossing) / 2)
+      return { threshold, above, below: counts.length - above, links, weight }
+    }),
+  )
+}
+
+/** The best of them by that ratio; null where none parts the nodes. */
+export function bestOf(sweep: number, counted: readonly Counted[]): CutCount | null {
+  const cuts = counted.flatMap((cut): Rated[] => {
+    const smaller = even(cut)
+    return smaller === 0 ? [] : [{ ...cut, ratio: cut.weight / smaller }]
   })
-  let best: Counted | null = null
+  let best: Rated | null = null
   for (const cut of cuts) {
     // Of several that nothing crosses the evenest: a node alone is none of the sides then.
     const isEvener = best !== null && cut.ratio === best.ratio && even(cut) > even(best)
@@ -68,7 +79,7 @@ const even = ({ above, below }: Counted): number => Math.min(above, below)
  * The best of the other cuts that are better than both their neighbours along the Fiedler values: a place of its own, not the slope of
  * the best one. Null where there is none, or the overlay has come apart.
  */
-function runnerUpOf(cuts: readonly Counted[], best: Counted): CutCount['runnerUp'] | null {
+function runnerUpOf(cuts: readonly Rated[], best: Rated): CutCount['runnerUp'] | null {
   if (best.links === 0) return null
   const nodes = best.above + best.below
   const least = Math.max(RUNNER_UP_LEAST_NODES, RUNNER_UP_LEAST_SHARE * nodes)

@@ -81,6 +81,7 @@ export const WEIGHT_CHANGED = 0.01
 
 /** Whether links came, went or changed their weight since the last look. */
 export function isChanged(before: Snapshot, now: Snapshot, intervalMs: number): boolean {
+  if (now.round !== undefined) return isRoundChanged(before, now)
   const earlier = new Map(before.agents.map(({ agentId, last }) => [agentId, last?.report.sums]))
   let changed = 0
   let all = 0
@@ -93,3 +94,19 @@ export function isChanged(before: Snapshot, now: Snapshot, intervalMs: number): 
   }
   return changed > WEIGHT_CHANGED * all && changed > SUMS_SCALE / 100
 }
+
+/**
+ * By what two rounds of as many agents come to: where one has come, gone or missed a round the sums do not tell whether links did. That many
+ * have come or gone is a change by itself.
+ */
+function isRoundChanged({ round: before }: Snapshot, { round: now }: Snapshot): boolean {
+  if (!now?.isNew || !before) return false
+  const [from, to] = [before.totals.head, now.totals.head]
+  if (from.agents !== to.agents) return Math.abs(from.agents - to.agents) > MOST_MISSING * from.agents
+  if (from.linkEnds !== to.linkEnds) return true
+  const changed = Math.abs(to.linkEndWeight - from.linkEndWeight)
+  return changed > WEIGHT_CHANGED * to.linkEndWeight && changed > SUMS_SCALE / 100
+}
+
+/** Fewer may have missed a round by chance. */
+const MOST_MISSING = 0.05

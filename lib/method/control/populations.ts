@@ -1,10 +1,9 @@
 import type { Pace } from '../pace'
 import type { Random } from '../random'
 import { birthRates } from './law'
-import { type ColonyRates, colonyRates } from './rates'
 import { choosePlacing } from './seeding'
-import type { Snapshot } from './snapshot'
 import type { ColonyControl, ControlSettings } from './state'
+import type { ColonyRates, Totals } from './totals'
 
 /** Outside these shares of the wanted population, or with one type gone, a colony is seeded anew. */
 export const FEWEST = 0.02
@@ -45,14 +44,13 @@ export function seedColony(colony: number, deathRate: number | null, seeder: See
 /** One control step of one colony: new birth rates, or a new seeding where it is lost or outgrown. */
 export function steerColony(
   control: ColonyControl,
-  before: Snapshot,
-  now: Snapshot,
+  totals: Totals,
   linkTimePerSecond: number,
   seeder: Seeder,
 ): ColonyControl {
   const { pace, walkersPerNode } = seeder.settings
-  const rates = colonyRates(control.colony, control.seeding, before, now, pace.intervalMs)
-  const ageIntervals = (now.atMs - control.seededAtMs) / pace.intervalMs
+  const rates = totals.ratesOf(control)
+  const ageIntervals = (totals.atMs - control.seededAtMs) / pace.intervalMs
   const outgrown = seeder.agentIds.length >= OUTGROWN * control.seededFor
   if (
     (ageIntervals > GRACE_INTERVALS && isLost(rates, walkersPerNode)) ||

@@ -1,16 +1,6 @@
 import { type ColonyCounters, type ColonySums, SUMS_SCALE } from '../report'
 import { heardAgents, type Snapshot } from './snapshot'
-
-/** What one colony did between two snapshots, over all agents. */
-export interface ColonyRates {
-  /** Kills per walker and link time: the walkers' death rate; null when nothing was walked. */
-  deathRate: number | null
-  /** Walkers standing at the agents when they last reported. */
-  populationX: number
-  populationY: number
-  /** Agents present in the colony. */
-  present: number
-}
+import type { ColonyRates } from './totals'
 
 type Summed = Pick<ColonyCounters, 'kills' | 'walkerTime'>
 

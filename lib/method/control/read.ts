@@ -1,9 +1,8 @@
-import { noteDrift } from './alignment'
 import { answersInMs } from './answer'
 import { noteBound } from './bound'
 import type { Coverage } from './coverage'
 import { crossCheckOf } from './cross-check'
-import { bestCut, THRESHOLDS } from './cut'
+import { THRESHOLDS } from './cut'
 import type { EvaluateInput, Evaluation } from './estimate'
 import { paceNow } from './haste'
 import { intervalOf, windowIntervals } from './interval'
@@ -11,9 +10,9 @@ import { walkingLambda } from './law'
 import { nextStep } from './link-time'
 import { ordersFrom } from './orders-from'
 import { NEXT_TO_NOTHING, settlesInMs } from './settling'
-import { heardAgents } from './snapshot'
 import type { ColonyControl, ControlState } from './state'
-import { combinationOf, fallWithMore, gather, ritzOf } from './subspace'
+import { combinationOf, fallWithMore, ritzOf } from './subspace'
+import type { Totals } from './totals'
 import { trendLine } from './trend-line'
 import { watcher, watchYoung } from './young'
 
@@ -27,21 +26,28 @@ export const NEAR = 1.2
 /** A combination is replaced at the latest after this long, counted or not. */
 export const COMBINATION_INTERVALS = 8
 
+const doesStandOut = (bounds: ControlState['bounds'], lambda2: number): boolean =>
+  bounds.length > 0 && Math.min(...bounds.map(({ value }) => value)) > NEAR * lambda2
+
 /** The reading, the cut and the orders from a steered state. */
-export function read(control: ControlState, input: EvaluateInput, coverage: Coverage): Evaluation {
+export function read(
+  control: ControlState,
+  totals: Totals,
+  input: EvaluateInput,
+  coverage: Coverage,
+): Evaluation {
   const { now, settings, sequence } = input
   const { pace } = settings
   const present = paceNow(control, settings)
-  const heard = heardAgents(now, pace.intervalMs)
   const aged = control.colonies.filter(({ seededAtMs }) => {
     const least = seededAtMs > control.coldSinceMs ? LEAST_AGE_INTERVALS : COLD_LEAST_AGE_INTERVALS
-    return now.atMs - seededAtMs >= least * present.intervalMs
+    return totals.atMs - seededAtMs >= least * present.intervalMs
   })
-  const drifts = input.before
-    ? noteDrift(control.drift ?? [], control.colonies, input.before, now, pace.intervalMs)
-    : (control.drift ?? [])
-  const subspace = gather(aged, heard, drifts, now.atMs)
+  const drifts = totals.driftOf(control.drift ?? [], control.colonies)
+  const subspace = totals.subspaceOf(aged, drifts)
   const result = subspace && ritzOf(subspace)
+  // A round that was looked at before says nothing once more.
+  const isNews = totals.isNew || now.round === undefined
   const crossCheck = crossCheckOf(control.colonies)
   const lambda2 = result?.values[0] ?? null
   const sinceMs = Math.max(control.coldSinceMs, control.changedAtMs ?? 0)
@@ -49,9 +55,10 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
     sinceMs,
     now.atMs - windowIntervals((now.atMs - sinceMs) / pace.intervalMs) * pace.intervalMs,
   )
-  const ritz = [...control.ritz, ...(lambda2 === null ? [] : [{ atMs: now.atMs, value: lambda2 }])].filter(
-    ({ atMs }) => atMs >= fromMs,
-  )
+  const ritz = [
+    ...control.ritz,
+    ...(lambda2 === null || !isNews ? [] : [{ atMs: now.atMs, value: lambda2 }]),
+  ].filter(({ atMs }) => atMs >= fromMs)
   const slowest = lambda2 === null ? null : walkingLambda(lambda2, crossCheck)
   const next: ControlState = {
     ...control,
@@ -63,9 +70,9 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
   const mature = subspace && lambda2 !== null ? ritzOf(subspace, (colony) => !isYoung(colony)) : null
   const lowered =
     mature !== null && lambda2 !== null && lambda2 < (mature.values[0] ?? lambda2) * (1 - LOWERED)
-  if (subspace && result) {
+  if (subspace && result && isNews) {
     const counted = next.combination
-      ? bestCut(next.combination.id, THRESHOLDS, heard, settings.rehearses)
+      ? totals.cutOf(next.combination, THRESHOLDS, settings.rehearses)
       : undefined
     if (counted !== undefined) next.cut = counted
     const old = now.atMs - next.combinationAtMs >= COMBINATION_INTERVALS * pace.intervalMs
@@ -76,6 +83,8 @@ export function read(control: ControlState, input: EvaluateInput, coverage: Cove
       next.combination = combinationOf(subspace, result, control.combination, {
         id: sequence,
         thresholds: THRESHOLDS,
+        sides: (control.combination && totals.sidesOf(control.combination.id)) ?? control.combination?.sides,
+        ...(now.round && { stands: doesStandOut(control.bounds, result.values[0]!) }),
       })
       next.combinationAtMs = now.atMs
     }

@@ -1,3 +1,4 @@
+import type { RoundTotals } from '../mask'
 import type { Report } from '../report'
 
 /** A silent agent's last report still counts for this many report intervals. */
@@ -28,6 +29,8 @@ export interface JoinedAgent {
 export interface Snapshot {
   atMs: number
   agents: readonly JoinedAgent[]
+  /** Where links are not named: the newest masked round that has closed, null before the first. Reports have no sums then. */
+  round?: { totals: RoundTotals; isNew: boolean } | null
 }
 
 export type HeardAgent = JoinedAgent & { last: NonNullable<JoinedAgent['last']> }

@@ -1,3 +1,4 @@
+import type { Layout, RoundTotals } from '../mask'
 import type { Disclosure, SweepOrders } from '../orders'
 import type { Pace } from '../pace'
 import type { ColonyDrift } from './alignment'
@@ -62,6 +63,14 @@ export interface CutCount {
   runnerUp?: { threshold: number; above: number; below: number; links: number; weight: number }
 }
 
+/** Masked rounds as the control loop knows them. */
+export interface RoundsControl {
+  /** Announced and not past, oldest first. */
+  planned: { number: number; atMs: number; layout: Layout }[]
+  /** The newest that closed. */
+  last: RoundTotals | null
+}
+
 /** All the control loop remembers, as plain JSON: whoever leads next goes on from it. */
 export interface ControlState {
   sequence: number
@@ -94,6 +103,8 @@ export interface ControlState {
   /** When walking last stood still because too little was heard. */
   stoodUntilMs?: number
   young?: Young | null
+  /** Where links are not named. */
+  rounds?: RoundsControl
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */
   core?: CoreControl
   /** The pieces an overlay has come apart into, or those still heard of it; missing or empty while it has not. */

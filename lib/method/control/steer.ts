@@ -6,14 +6,15 @@ import { type Seeder, seedColony, steerColony } from './populations'
 import { RENEWAL_INTERVALS } from './renewal'
 import { heardAgents, isAttached } from './snapshot'
 import type { ControlState } from './state'
+import type { Totals } from './totals'
 import { AS_GOOD_AS_AT_INTERVALS } from './young'
 
 /** From cold all colonies are young. */
 const LEAST_SINCE_COLD_INTERVALS = 5
 
 /** New birth rates, seedings and ω. */
-export function steer(control: ControlState, input: EvaluateInput): ControlState {
-  const { before, now, settings, sequence, random } = input
+export function steer(control: ControlState, totals: Totals, input: EvaluateInput): ControlState {
+  const { now, settings, sequence, random } = input
   const { intervalMs } = settings.pace
   const agentIds = heardAgents(now, intervalMs)
     .filter(isAttached)
@@ -35,9 +36,9 @@ export function steer(control: ControlState, input: EvaluateInput): ControlState
       linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, present),
     }
   }
-  if (!before) return control
+  if (!totals.isNew) return control
   const colonies = control.colonies.map((colony) =>
-    steerColony(colony, before, now, control.linkTimePerSecond, seeder),
+    steerColony(colony, totals, control.linkTimePerSecond, seeder),
   )
   const cold = colonies.every(({ seeding }) => seeding === sequence)
   const next: ControlState = cold

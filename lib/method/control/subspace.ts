@@ -108,7 +108,7 @@ export function combinationOf(
   subspace: Subspace,
   result: RitzResult,
   previous: SweepOrders | null,
-  init: { id: number; thresholds: readonly number[] },
+  init: { id: number; thresholds: readonly number[]; sides?: SweepOrders['sides']; stands?: boolean },
 ): SweepOrders {
   const sign = previous ? Math.sign(overlap(subspace, result.coefficients, previous)) || 1 : 1
   const coefficients = result.coefficients.map((value) => sign * value)
@@ -124,6 +124,8 @@ export function combinationOf(
     mean: coefficients.reduce((sum, value, index) => sum + value * subspace.means[index]!, 0),
     norm: Math.sqrt(subspace.nodes / square),
     thresholds: init.thresholds,
+    ...(init.sides && { sides: init.sides }),
+    ...(init.stands !== undefined && { stands: init.stands }),
     lambda2: result.values[0]!,
     nodes: subspace.nodes,
   }

@@ -1,6 +1,14 @@
 export { Agreement, MOST_ROUNDS, type RoundSaying } from './agreement'
 export { closeRound, type RoundTotals } from './close'
 export { fromVector, type RoundContent, toVector } from './content'
-export { COLONY_ENTRIES, HEAD_ENTRIES, type Layout, type RoundOrders, sizeOf, triangle } from './layout'
-export { AGREE_TICKS, type MaskedVector, MOST_WAITING, Rounds } from './rounds'
+export {
+  COLONY_ENTRIES,
+  HEAD_ENTRIES,
+  type HeadEntry,
+  type Layout,
+  type RoundOrders,
+  sizeOf,
+  triangle,
+} from './layout'
+export { AGREE_TICKS, type MaskedVector, MOST_WAITING, Rounds, type RoundsComponents } from './rounds'
 export { addTo, applyMask, fromBytes, fromText, type MaskStream, toText } from './vector'

@@ -46,6 +46,8 @@ export class Rounds {
   private readonly known = new Map<number, Known>()
   private readonly partners = new Map<string, Partner>()
   private waiting: Waiting[] = []
+  /** Rounds up to this one are over, whoever announces them again: two moments under one mask would differ in clear. */
+  private over = 0
   private answeredAtMs = Number.NEGATIVE_INFINITY
 
   constructor({ maskOf }: RoundsComponents, { ownId }: { ownId: string }) {
@@ -56,6 +58,7 @@ export class Rounds {
   /** Orders announce rounds. Ages only ever count too long: of several the latest moment is the nearest to the truth. */
   hear(rounds: readonly RoundOrders[], issuedAtMs: number): void {
     for (const { number, fromAgeMs, groups, sweep } of rounds) {
+      if (number <= this.over) continue
       const dueAtMs = issuedAtMs + fromAgeMs
       const known = this.known.get(number)
       if (!known) this.known.set(number, { layout: { groups, sweep }, dueAtMs, isTaken: false })
@@ -63,6 +66,7 @@ export class Rounds {
     }
     const oldest = [...this.known.keys()].sort((a, b) => b - a)[2 * MOST_WAITING]
     if (oldest === undefined) return
+    this.over = oldest
     for (const number of this.known.keys()) if (number <= oldest) this.known.delete(number)
     for (const { agreement } of this.partners.values()) agreement.forget(oldest)
   }

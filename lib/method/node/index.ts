@@ -7,6 +7,8 @@ export {
   WEIGHT_HYSTERESIS,
   WEIGHT_STEP,
 } from './delivery'
+export { halfOf } from './half'
 export type { Link, LinkState } from './link'
 export type { HostFacts, LinkFacts } from './report-of'
-export { halfOf, type ReceiveOutcome, WalkNode } from './walk-node'
+export { WalkNode } from './walk-node'
+export type { ReceiveOutcome } from './walk-node-contract'

@@ -1,4 +1,5 @@
 import type { CollectorDistance, ColonyFrame, Frame, OrdersProof } from '../frame'
+import type { RoundSaying } from '../mask'
 import type { Orders } from '../orders'
 import type { SignedStatement } from '../statement'
 import { type Colony, MOST_HELD } from './colony'
@@ -19,6 +20,7 @@ export interface Sayings {
   consents: boolean
   distance: CollectorDistance
   statement: SignedStatement | null
+  rounds: (link: Link) => RoundSaying | null
 }
 
 /** One link's frame, numbered `number`; notes on the link what has been said. */
@@ -42,6 +44,7 @@ export function frameFor(
     distance: sayings.distance,
     heardFrames: link.heard.count,
     statement: newStatement(link, sayings.statement),
+    rounds: sayings.rounds(link),
   }
 }
 

@@ -38,17 +38,22 @@ export function colonySums(colony: Colony, attached: boolean): ColonySums {
   }
 }
 
-/** Upper triangle of ½ Σⱼ wᵢⱼ(z̄ᵢʳ−z̄ⱼʳ)(z̄ᵢˢ−z̄ⱼˢ) and of z̄ᵢʳz̄ᵢˢ, fixed point, in the order of `colonies`. */
+/** Upper triangle of ½ Σⱼ wᵢⱼ(z̄ᵢʳ−z̄ⱼʳ)(z̄ᵢˢ−z̄ⱼˢ) and of z̄ᵢʳz̄ᵢˢ, fixed point, in the order of `colonies`; 0 for those not had. */
 export function energiesAndMoments(
-  colonies: readonly Colony[],
+  colonies: readonly (Colony | null)[],
   links: readonly MeasuredLink[],
 ): { energies: number[]; moments: number[] } {
   const energies: number[] = []
   const moments: number[] = []
   for (let r = 0; r < colonies.length; r++) {
     for (let s = r; s < colonies.length; s++) {
-      const a = colonies[r]!
-      const b = colonies[s]!
+      const a = colonies[r]
+      const b = colonies[s]
+      if (!a || !b) {
+        energies.push(0)
+        moments.push(0)
+        continue
+      }
       let energy = 0
       for (const link of links) {
         const peerA = link.peerMeans.get(a.orders.colony) ?? null

@@ -2,13 +2,13 @@ import { NeighbourAudit } from '../audit'
 import type { CollectorDistance, Frame, OrdersProof } from '../frame'
 import { type ColonyOrders, linkTimeBetween, type Orders, ordersLifeMs, type WeightMode } from '../orders'
 import type { Pace } from '../pace'
-import { hash32, type Random } from '../random'
+import type { Random } from '../random'
 import type { AuditFault, Complaint, Report } from '../report'
 import type { SignedStatement } from '../statement'
 import { average, type Colony, dropAll, openColony, place, walk } from './colony'
 import { forgive, noteSent, noteTime, sayWeight } from './delivery'
-import { CoarseValue } from './facts'
-import type { LedgerFault } from './ledger'
+import { CoarseDegree, CoarseValue } from './facts'
+import { halfOf } from './half'
 import {
   FORGET_MS,
   isOut,
@@ -21,33 +21,13 @@ import {
   unacknowledgedLimitMs,
 } from './link'
 import { exitsFor } from './live-link'
+import { Masking } from './masking'
 import { type HostFacts, type LinkFacts, type LiveLink, linkFacts, reportOf } from './report-of'
 import { Retired } from './retired'
 import { frameFor, type HeldOrders } from './say'
 import { noteFrame, takeIn } from './take-in'
 import { TimeDebt } from './time-debt'
-
-export type ReceiveOutcome =
-  | { kind: 'ok' }
-  | { kind: 'ignored'; reason: 'unknown-peer' | 'retired-incarnation' }
-  | { kind: 'refuse'; reason: LedgerFault }
-  /** With what was found, the first time it is. */
-  | { kind: 'refuse'; reason: 'left-out'; complaint?: Complaint }
-
-export interface WalkNodeComponents {
-  random: Random
-}
-
-export interface WalkNodeInit {
-  agentId: string
-  /** Random per process start. */
-  incarnation: string
-  consents?: boolean
-  /** As enrolment said; orders of version 2 and later say it themselves. */
-  weights?: WeightMode
-  /** False only where nobody lies and time is short: in simulations of the method alone. */
-  audits?: boolean
-}
+import type { ReceiveOutcome, WalkNodeComponents, WalkNodeInit } from './walk-node-contract'
 
 /**
  * The walkers of one agent as a state machine: no sockets, no clock, no ambient chance. Times are monotonic
@@ -63,6 +43,8 @@ export class WalkNode {
   private readonly retired = new Retired()
   private readonly colonies = new Map<number, Colony>()
   private readonly coarse = new CoarseValue()
+  private readonly coarseDegree = new CoarseDegree()
+  private readonly masking: Masking
   /** Neighbours' figures against what arrives from them. */
   readonly audit = new NeighbourAudit()
   private readonly audits: boolean
@@ -77,13 +59,14 @@ export class WalkNode {
   private detachedMs = 0
   private reports = 0
 
-  constructor({ random }: WalkNodeComponents, init: WalkNodeInit) {
+  constructor({ random, maskOf }: WalkNodeComponents, init: WalkNodeInit) {
     this.random = random
     this.agentId = init.agentId
     this.incarnation = init.incarnation
     this.consents = init.consents ?? true
     this.weights = init.weights ?? 'delivered'
     this.audits = init.audits ?? true
+    this.masking = new Masking(maskOf ? { maskOf } : null, { ownId: init.agentId })
   }
 
   private get orders(): Orders | null {
@@ -192,9 +175,11 @@ export class WalkNode {
   }
 
   /** Follows orders unless newer ones are held. @returns whether they were taken */
-  adopt(orders: Orders, ageMs: number, nowMs: number, proof?: OrdersProof): boolean {
-    if (orders.sequence <= this.ordersSequence) return false
+  adopt(given: Orders, ageMs: number, nowMs: number, proof?: OrdersProof): boolean {
+    if (given.sequence <= this.ordersSequence) return false
+    const orders = this.masking.bounded(given)
     this.following = { orders, issuedAtMs: nowMs - ageMs, proof }
+    this.masking.hear(orders, nowMs - ageMs)
     for (const peer of this.audit.noteOrders(orders, ageMs, nowMs)) this.readmit(peer)
     const wanted = new Set(orders.colonies.map((colony) => colony.colony))
     for (const slot of [...this.colonies.keys()]) if (!wanted.has(slot)) this.discard(slot)
@@ -242,11 +227,13 @@ export class WalkNode {
   tick(nowMs: number, isCarried: (peer: string) => boolean = () => true): { peer: string; frame: Frame }[] {
     this.startedAtMs ??= nowMs
     this.forgiveOwnGap(nowMs)
+    this.masking.takeDue(nowMs, () => this.roundCase(nowMs))
     const isFrozen = this.isFrozen(nowMs)
     if (isFrozen) this.debt.drop(nowMs)
     else this.walkDue(this.following!, nowMs)
     const { following: orders, consents, distance, statement } = this
-    const sayings = { orders, isFrozen, consents, distance, statement }
+    const rounds = (link: Link) => this.masking.saying(link, this.orders, nowMs)
+    const sayings = { orders, isFrozen, consents, distance, statement, rounds }
     const frames: { peer: string; frame: Frame }[] = []
     for (const link of this.links.values()) {
       if (link.state === 'closed') continue
@@ -334,6 +321,7 @@ export class WalkNode {
     const taken = takeIn(link, this.colonies, frame)
     if ('fault' in taken) return { kind: 'refuse', reason: taken.fault }
     const { arrivals } = taken
+    this.masking.note(peer, peerIncarnation, frame.rounds)
     const newest = frame.number > link.heardNumber
     const weight = liveWeight(link, nowMs, this.tickMs)
     noteFrame(link, frame, nowMs, this.tickMs)
@@ -347,10 +335,28 @@ export class WalkNode {
   /** The cumulative report of this moment. `host` is what the program around the walkers knows. */
   report(nowMs: number, host: HostFacts): Report {
     this.reports += 1
-    const { incarnation, reports: number, orders, colonies, consents, coarse } = this
+    const { incarnation, reports: number, orders, colonies, consents, coarse, coarseDegree } = this
     const live = this.liveLinks(nowMs)
     const facts = this.factsOf(live)
-    return reportOf({ incarnation, number, orders, colonies, live, consents, coarse, facts }, host, nowMs)
+    this.masking.noteHost(host)
+    this.masking.forget((peer, life) => this.links.get(peer)?.peerIncarnation === life)
+    const masked = this.masking.carried(number)
+    const uniform = () => this.random.uniform()
+    return reportOf(
+      { incarnation, number, orders, colonies, live, consents, coarse, coarseDegree, uniform, facts, masked },
+      host,
+      nowMs,
+    )
+  }
+
+  /** The collector has stored the report of this number. */
+  noteAnswered(reportNumber: number, nowMs: number): void {
+    this.masking.noteAnswered(reportNumber, nowMs)
+  }
+
+  private roundCase(nowMs: number) {
+    const { orders, colonies, complaints } = this
+    return { orders, colonies, live: this.liveLinks(nowMs), refused: complaints.size }
   }
 
   linkFacts(nowMs: number): LinkFacts {
@@ -387,9 +393,4 @@ export class WalkNode {
 
 function refusedPeersOf({ refusedLinks = [] }: ColonyOrders, agentId: string): Set<string> {
   return new Set(refusedLinks.flatMap(([a, b]) => (a === agentId ? [b] : b === agentId ? [a] : [])))
-}
-
-/** Which half an agent stands on in a seeding: 0 for X, 1 for Y. */
-export function halfOf(salt: number, colony: number, agentId: string): 0 | 1 {
-  return (hash32(salt, colony, agentId) & 1) === 0 ? 0 : 1
 }

@@ -5,7 +5,7 @@ export interface FirstOrderInit {
   values: readonly (number | null)[]
   /** Nodes that the reading is of. */
   counted: number
-  /** A value may be off by half of this: how coarsely agents say theirs. */
+  /** A value may be off by half of this: how coarsely agents say theirs. Infinity where only their order is known. */
   step: number
   lambda2: number
   /** No single link lifts λ₂ over this. Null: not known. */
@@ -46,6 +46,8 @@ export function reinforceByValues(init: FirstOrderInit): FirstOrderLink[] {
     pairs.open().sort((x, y) => sign * (values[x]! - values[y]!) || (degrees[x] ?? 0) - (degrees[y] ?? 0))
   const ends = { low: by(1), high: by(-1) }
   const cap = lambda3AtMost === null ? Number.POSITIVE_INFINITY : Math.max(0, lambda3AtMost - lambda2)
+  // (vᵢ − vⱼ)² ≤ 2(vᵢ² + vⱼ²), and no node comes twice: for a unit vector all of them together are 2 at most.
+  const most = 2 * weight
   const used = new Set<number>()
   const links: FirstOrderLink[] = []
   let sum = 0
@@ -54,8 +56,8 @@ export function reinforceByValues(init: FirstOrderInit): FirstOrderLink[] {
     if (!pair) break
     const [a, b] = pair
     used.add(a).add(b)
-    const byValues = (weight * (values[b]! - values[a]! + step) ** 2) / counted
-    sum += byValues
+    const byValues = Math.min(most, (weight * (values[b]! - values[a]! + step) ** 2) / counted)
+    sum = Math.min(most, sum + byValues)
     const total = links.length === 0 ? Math.min(sum, cap) : sum
     links.push({ a, b, gainAtMost: Math.min(byValues, cap), lambda2AtMost: lambda2 + total })
   }

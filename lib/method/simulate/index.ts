@@ -1,3 +1,3 @@
+export type { SimulationInit } from './init'
 export type { Lie } from './lie'
-export type { SimulationInit } from './parts'
 export { Simulation } from './simulation'

@@ -1,32 +1,7 @@
-import type { ControlSettings, ControlState, Snapshot } from '../control'
+import type { Snapshot } from '../control'
 import type { ReceiveOutcome, WalkNode } from '../node'
-import type { Orders } from '../orders'
 import type { Random } from '../random'
 import type { Lie } from './lie'
-
-export interface SimulationInit {
-  /** Node count; agents are named by `nameOf`. */
-  nodes: number
-  links: readonly { a: number; b: number; weight?: number }[]
-  settings: ControlSettings
-  nameOf?: (node: number) => string
-  /** Range of a link's delay; each frame adds ±20 %. */
-  linkDelayMs?: [number, number]
-  reportDelayMs?: [number, number]
-  /** Ticks and reports vary by this share. */
-  jitter?: number
-  /** Share of reports, and of the orders in reply, lost at random. */
-  reportLoss?: number
-  ordersLoss?: number
-  /** The collector's judgement of agents, once per evaluation and before it: ids to leave out from now on. */
-  leaveOut?: (now: Snapshot, control: ControlState, orders: Orders | null) => readonly string[]
-  /** Agents know version 2: their frames carry receipts. */
-  speaksTwo?: boolean
-  /** Neighbours audit each other. */
-  audits?: boolean
-  /** Wall time of the virtual clock's 0. */
-  startAtMs?: number
-}
 
 export interface SimulatedLink {
   a: number

@@ -1,12 +1,14 @@
 import {
   type CoreEstimate,
   type Estimate,
-  evaluateOverlay,
+  evaluateAny,
   initialControl,
+  openRounds,
   type PartEstimate,
   type RehearsalEstimate,
   type Rehearsed,
   type Snapshot,
+  withRound,
 } from '../control'
 import type { ControlState } from '../control/state'
 import type { Frame } from '../frame'
@@ -17,12 +19,10 @@ import { forkRandom, type Random } from '../random'
 import type { Report } from '../report'
 import { RECEIPT_INTERVALS, statementOf } from '../statement'
 import { EventQueue } from './event-queue'
+import type { SimulationComponents, SimulationInit } from './init'
 import { bentFrame, bentOrders, bentReport } from './lie'
-import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink, type SimulationInit } from './parts'
-
-export interface SimulationComponents {
-  random: Random
-}
+import { linkKey, reasonOf, type SimulatedAgent, type SimulatedLink } from './parts'
+import { VectorStore } from './vector-store'
 
 /**
  * A whole overlay on a virtual clock: every agent is the real state machine, the collector the real control loop;
@@ -45,9 +45,11 @@ export class Simulation {
   collectorUp = true
   readonly agents: SimulatedAgent[] = []
   private readonly random: Random
-  private readonly init: Required<Omit<SimulationInit, 'leaveOut'>> & Pick<SimulationInit, 'leaveOut'>
+  private readonly init: Required<Omit<SimulationInit, 'leaveOut' | 'masks'>> &
+    Pick<SimulationInit, 'leaveOut' | 'masks'>
   private readonly queue = new EventQueue()
   private readonly links = new Map<string, SimulatedLink>()
+  private readonly store: VectorStore
   /** Agents left out, in order. */
   readonly leftOut: string[] = []
   /** Refusals so far, by whom and of whom; links between the two are closed. */
@@ -72,6 +74,7 @@ export class Simulation {
       ...init,
     }
     this.nowMs = this.init.startAtMs
+    this.store = new VectorStore(this.init)
     this.control = initialControl(this.nowMs, init.settings.pace)
     for (let index = 0; index < init.nodes; index++) this.agents.push(this.createAgent(index))
     for (const { a, b, weight } of init.links) this.join(a, b, weight ?? 1)
@@ -97,7 +100,9 @@ export class Simulation {
 
   private createNode(index: number, random: Random, life: number): WalkNode {
     const { nameOf, audits } = this.init
-    return new WalkNode({ random }, { agentId: nameOf(index), incarnation: `${index}.${life}`, audits })
+    const [agentId, incarnation] = [nameOf(index), `${index}.${life}`]
+    const maskOf = this.store.maskOf(agentId, incarnation)
+    return new WalkNode({ random, maskOf }, { agentId, incarnation, audits })
   }
 
   /** Runs until the virtual clock has moved on by `ms`. */
@@ -322,6 +327,7 @@ export class Simulation {
     if (!held || held.incarnation !== report.incarnation || held.number < report.number) {
       agent.last = { report, receivedAtMs: this.nowMs }
     }
+    this.store.keep(agent.node.agentId, report)
     const current = this.orders
     if (current && this.init.speaksTwo && report.number % RECEIPT_INTERVALS === 0) {
       const statement = statementOf(agent.node.agentId, report)
@@ -333,6 +339,7 @@ export class Simulation {
     const ageMs = this.nowMs - current.issuedAtMs + delayMs
     this.queue.push(this.nowMs + delayMs, () => {
       if (agent.life !== life) return
+      agent.node.noteAnswered(report.number, this.nowMs)
       const orders = bentOrders(current.orders!.orders, agent.lie)
       if (!agent.node.adopt(orders, ageMs, this.nowMs)) return
       this.honourShut(index, orders)
@@ -358,18 +365,19 @@ export class Simulation {
     const out = this.init.leaveOut?.(all, this.control, this.orders?.orders?.orders ?? null) ?? []
     this.leftOut.push(...out)
     const now = { ...all, agents: joined.filter(({ agentId }) => !out.includes(agentId)) }
-    const { control, estimate, core, parts, rehearsals, ...planned } = evaluateOverlay({
+    const { control, estimate, core, parts, rehearsals, ...planned } = evaluateAny({
       control: this.control,
       before: this.before,
       now,
       settings: this.init.settings,
       sequence: this.control.sequence + 1,
+      vectors: this.store.of(openRounds(this.control, this.nowMs)),
       random: this.random,
       rehearsals: this.rehearsed,
     })
     const shut = this.leftOut.map((agentId) => ({ agentId, reason: 'left-out' as const }))
     const orders: Orders = { ...planned.orders, shut }
-    this.before = now
+    this.before = withRound(now, control)
     this.control = control
     this.orders = { orders: { orders, ageMs: 0 }, issuedAtMs: this.nowMs }
     this.estimate = estimate

@@ -66,7 +66,7 @@ it('an agent whose walkers do not add up is left out: shut in the orders, not jo
     )
     return {
       pace: 'steady',
-      disclosure: 'sealed',
+      disclosure: 'named',
       weights: 'unit',
       retireAfterHours: null,
       shut: [],

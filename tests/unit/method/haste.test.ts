@@ -172,6 +172,6 @@ describe('a value that is said coarsely and rarely', () => {
     const coarse = new CoarseValue()
     const say = (value: number, atMs: number) => coarse.say(1, value, atMs, ordinaryIntervalMs(hasty)).value
     const renewedMs = COARSE_INTERVALS * 2_000
-    expect([say(0.6, 0), say(2, renewedMs - 1), say(2, renewedMs)]).toEqual([0.5, 0.5, 2])
+    expect([say(0.6, 0), say(-2.1, renewedMs - 1), say(-2.1, renewedMs)]).toEqual([1, 1, -1])
   })
 })

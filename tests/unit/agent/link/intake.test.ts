@@ -16,6 +16,7 @@ const peer: LinkPeer = {
   key: '',
   incarnation: 'incarnation-gul-04',
   version: 2,
+  mask: null,
   passExpiresAt: NOW_SECONDS,
 }
 
