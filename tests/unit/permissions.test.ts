@@ -127,6 +127,7 @@ describe('the permission table', () => {
       .filter(([, permission]) => !permission.audit)
       .map(([action]) => action)
     expect(silent.filter((action) => !/\.(read|list|read-link)$/.test(action))).toEqual([
+      'overlay.export',
       'agent.session',
       'agent.report',
       'agent.directory',
