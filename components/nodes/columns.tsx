@@ -27,7 +27,11 @@ export function nodeColumns(nodes: readonly OverlayNode[], open: (name: string) 
           onClick={() => open(n.name)}
           className={cx(
             'rule-link min-h-6 text-left font-medium pointer-coarse:min-h-11',
-            n.name.length <= SHORT_NAME ? 'whitespace-nowrap' : 'wrap-anywhere',
+            n.name.length <= SHORT_NAME
+              ? 'whitespace-nowrap'
+              : n.partner
+                ? 'sm:whitespace-nowrap'
+                : 'wrap-anywhere',
           )}
         >
           {n.name}
@@ -89,6 +93,7 @@ function teamColumn(nodes: readonly OverlayNode[]): NodeColumn[] {
   return [
     {
       id: 'whose',
+      roomy: true,
       header: 'whose',
       value: (n) => (n.partner ? 'a partner’s' : 'yours'),
       cell: (n) => (n.partner ? <Mark shape="hollow">a partner’s</Mark> : <Mark shape="full">yours</Mark>),

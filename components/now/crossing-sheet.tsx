@@ -132,7 +132,10 @@ function columnsFor(
       header: 'link',
       value: (l) => formatLink(l.a, l.b),
       cell: (l) => (
-        <Link href={overlayPageUrls(slug).link(l.a, l.b)} className="rule-link whitespace-nowrap">
+        <Link
+          href={overlayPageUrls(slug).link(l.a, l.b)}
+          className="rule-link wrap-anywhere sm:whitespace-nowrap"
+        >
           {formatLink(l.a, l.b)}
         </Link>
       ),

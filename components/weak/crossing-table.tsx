@@ -101,7 +101,10 @@ function columnsFor({ slug, place, range, nowMs, nodes }: ColumnsInput): Column<
       header: 'link',
       value: (link) => formatLink(link.a, link.b),
       cell: (link) => (
-        <Link href={urls.link(link.a, link.b)} className="rule-link whitespace-nowrap font-medium">
+        <Link
+          href={urls.link(link.a, link.b)}
+          className="rule-link wrap-anywhere font-medium sm:whitespace-nowrap"
+        >
           {formatLink(link.a, link.b)}
         </Link>
       ),

@@ -1,37 +1,24 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { GET as directoryRoute } from '@/app/api/agent/directory/route'
 import { POST as enrolRoute } from '@/app/api/agent/enrol/route'
-import { cellOf, OVERLAY_ROWS, READERS, type Reader } from '@/lib/auth/overlay-table'
-import { type ActionName, permissionOf } from '@/lib/auth/permissions'
+import type { Reader } from '@/lib/auth/overlay-table'
 import {
   changePart,
-  changeRule,
-  createInvitation,
   createJoiningCode,
-  createRule,
-  createWindow,
-  endPartnership,
   getOverlay,
-  getSigningKey,
   getUpgrades,
-  haltUpgrade,
-  joinAsPartner,
   listAudit,
   listDeliveries,
   listJoiningCodes,
   listOverlays,
   listPartners,
   listRules,
-  offerUpgrade,
   readmitAgent,
   retireAgent,
   revokeAgent,
-  revokeJoiningCode,
-  rotateSigningKey,
-  setRetireAfter,
 } from '@/lib/data'
 import { getCut } from '@/lib/data/cut'
-import { eventSchema, nodesSchema, type OverlayNode, readingSchema } from '@/lib/data/dto'
+import { nodesSchema, type OverlayNode } from '@/lib/data/dto'
 import { followOverlay, listEvents } from '@/lib/data/events'
 import { EXPORTED_FILES, exportOverlay } from '@/lib/data/export'
 import { getIncidentReport } from '@/lib/data/incident-report'
@@ -42,26 +29,19 @@ import { listLinks } from '@/lib/data/links'
 import { getMonthReport } from '@/lib/data/month-report'
 import { getNodeStory } from '@/lib/data/node-story'
 import { listNodes } from '@/lib/data/nodes'
-import { partnersSchema } from '@/lib/data/partner-dto'
 import { getReading } from '@/lib/data/readings'
 import { getReadings } from '@/lib/data/readings-list'
-import { getReinforcement, withdrawLink } from '@/lib/data/reinforcement'
+import { getReinforcement } from '@/lib/data/reinforcement'
 import { previewRule } from '@/lib/data/rule-preview'
 import { getWeakPlace } from '@/lib/data/weak-place'
 import { listWindows } from '@/lib/data/windows'
 import { sql } from '@/lib/db'
-import { AppError } from '@/lib/http'
-import type { Call } from '@/lib/http/call'
 import { generateKeys } from '@/lib/protocol'
 import { DEFAULT_RULES } from '@/lib/warn/default-rules'
 import { ask, call as callRoute, enrolBody, problemOf } from '@/tests/support/collector'
-import {
-  openSharedOverlay,
-  PRIVATE,
-  type SharedOverlay,
-  stored,
-  type TeamName,
-} from '@/tests/support/shared-overlay'
+import { openSharedOverlay, PRIVATE, type SharedOverlay, type TeamName } from '@/tests/support/shared-overlay'
+
+import { tried } from '@/tests/support/tried'
 
 let shared: SharedOverlay
 beforeAll(async () => {
@@ -72,99 +52,8 @@ afterAll(() => shared.close())
 const slug = 'tides'
 const page = { limit: 100 }
 const em = () => shared.database.orm.em.fork()
-const codeOf = (error: unknown) => (error instanceof AppError ? error.code : String(error))
-
-class Undone extends Error {}
-
-/** As the wrappers run it, in one transaction, which is undone afterwards. */
-async function tried<T>(
-  call: Call,
-  run: (call: Call) => Promise<T>,
-): Promise<{ value?: T; refused?: string }> {
-  const outcome: { value?: T; refused?: string } = {}
-  await call.em
-    .transactional(
-      async (tx) => {
-        outcome.value = await run({ ...call, em: tx })
-        throw new Undone()
-      },
-      { clear: true },
-    )
-    .catch((error: unknown) => {
-      if (!(error instanceof Undone)) outcome.refused = codeOf(error)
-    })
-  return outcome
-}
-
-const readerCall = ({ team, role }: Reader) =>
-  shared.callAs(team === 'owner' ? 'harbourline' : team === 'partner' ? 'skerry' : 'eelholm', role)
 
 const rule = { ...DEFAULT_RULES[0]!, callOrderId: null }
-const window = {
-  startsAt: new Date(Date.now() + 3_600_000).toISOString(),
-  endsAt: new Date(Date.now() + 7_200_000).toISOString(),
-  ...{ repeats: null, label: null, reason: 'New disks' },
-}
-const NOWHERE = '00000000-0000-4000-8000-000000000000'
-
-/** Each does what its row of the table says, on the caller's own part of the overlay. */
-const ATTEMPTS: Partial<Record<ActionName, (call: Call, own: string) => Promise<unknown>>> = {
-  'overlay.read': (call) => getOverlay(call, slug),
-  'reading.read': (call) => getReading(call, slug),
-  'node.list': (call) => listNodes(call, slug, page),
-  'link.list': (call) => listLinks(call, slug, page),
-  'event.read': (call) => listEvents(call, slug),
-  'export.read': (call) => exportOverlay(call, slug, 'overlay.graphml'),
-  'reinforcement.read': (call) => getReinforcement(call, slug, { links: 1 }),
-  'reinforcement.plan': (call) => withdrawLink(call, slug, NOWHERE),
-  'joining-code.list': (call) => listJoiningCodes(call, slug),
-  'joining-code.create': (call) => createJoiningCode(call, slug, { uses: 1, expiresInHours: 1 }),
-  'joining-code.revoke': (call) => revokeJoiningCode(call, slug, NOWHERE),
-  'agent.revoke': (call, own) => revokeAgent(call, slug, own),
-  'agent.retire': (call, own) => retireAgent(call, slug, own),
-  'agent.readmit': (call, own) => readmitAgent(call, slug, own),
-  'upgrade.read': (call) => getUpgrades(call, slug),
-  'upgrade.offer': (call) => offerUpgrade(call, slug, { version: 'none', label: null }),
-  'upgrade.halt': (call) => haltUpgrade(call, slug, NOWHERE),
-  'incident.list': (call) => listOverlayIncidents(call, slug, page),
-  'rule.list': (call) => listRules(call, slug),
-  'rule.change': (call) => createRule(call, slug, rule),
-  'window.change': (call) => createWindow(call, slug, window),
-  'partner.list': (call) => listPartners(call, slug),
-  'partner.change': (call) => changePart(call, slug, { contact: 'us' }),
-  'partner.invite': (call) => createInvitation(call, slug, { expiresInHours: 1 }),
-  'partner.end': (call) => endPartnership(call, slug, 'skerry'),
-  'overlay.change': (call) => setRetireAfter(call, slug, 6),
-  'signing-key.read': (call) => getSigningKey(call, slug),
-  'signing-key.rotate': (call) => rotateSigningKey(call, slug),
-}
-/** What is named in an attempt is not there: that is said to those only who got past the checks. */
-const BEYOND: Partial<Record<ActionName, string>> = {
-  'joining-code.revoke': 'not-found',
-  'upgrade.offer': 'invalid-input',
-  'upgrade.halt': 'not-found',
-  'reinforcement.plan': 'not-found',
-}
-
-describe('each cell of the table', () => {
-  const cells = OVERLAY_ROWS.flatMap((row) => READERS.map((reader) => ({ row, reader })))
-
-  it.each(cells)('$row.action, as $reader.title', async ({ row, reader }) => {
-    const own = reader.team === 'owner' ? 'tar-01' : 'ske-01'
-    const attempt = ATTEMPTS[row.action]!
-    const call = readerCall(reader)
-    const { refused } = await tried(call, (inside) => attempt(inside, own))
-    if (cellOf(row, reader) !== null) return expect(refused).toBe(BEYOND[row.action])
-    // Nobody outside learns that there is such an overlay.
-    expect(refused).toBe(reader.team === 'stranger' ? 'not-found' : 'forbidden')
-  })
-
-  it('is tried', () => {
-    expect(cells.length).toBe(OVERLAY_ROWS.length * 7)
-    expect(OVERLAY_ROWS.filter(({ action }) => !ATTEMPTS[action])).toEqual([])
-    for (const { action } of OVERLAY_ROWS) expect(permissionOf(action).who).toBe('member')
-  })
-})
 
 /** Everything that a member can read of the overlay. */
 async function everythingFor(
@@ -426,164 +315,5 @@ describe('another team’s agent', () => {
     expect(await copied.clone().text()).not.toContain('tar-01')
     expect(await problemOf(copied)).toEqual([409, 'cloned-key'])
     expect(await problemOf(await enrol('partner node 4f2k'))).toEqual([409, 'name-taken'])
-  })
-})
-
-describe('an invitation', () => {
-  const invite = async () =>
-    createInvitation(shared.callAs('harbourline', 'owner'), slug, { expiresInHours: 1 })
-  const join = async (code: string, team: TeamName = 'eelholm') =>
-    tried(shared.callAs(team, 'owner'), (call) => joinAsPartner(call, { code, contact: null }))
-
-  it('is kept as a fingerprint only, and opens the overlay to one team', async () => {
-    const { code, hint } = await invite()
-    const rows = JSON.stringify(await sql(em(), 'select * from overlay_partners'))
-    expect([rows.includes(code), rows.includes(hint)]).toEqual([false, true])
-    expect((await join(code.toLowerCase().replaceAll('-', ' '))).value).toEqual({ slug, name: slug })
-    expect((await join(code, 'harbourline')).refused).toBe('already-partner')
-    expect((await join(code, 'skerry')).refused).toBe('already-partner')
-    expect((await join('NOSUCH-CODE')).refused).toBe('invitation-refused')
-  })
-
-  it('is refused once used, expired or withdrawn, and to those who do not own a team', async () => {
-    const expired = await invite()
-    await sql(em(), `update overlay_partners set expires_at = now() - interval '1 s' where hint = ?`, [
-      expired.hint,
-    ])
-    expect((await join(expired.code)).refused).toBe('invitation-refused')
-    const used = await sql<{ hint: string }>(
-      em(),
-      `select hint from overlay_partners where state = 'accepted'`,
-    )
-    const { invitations } = partnersSchema.parse(
-      await listPartners(shared.callAs('harbourline', 'owner'), slug),
-    )
-    expect(
-      invitations
-        ?.filter(({ state }) => state === 'used')
-        .map(({ hint }) => hint)
-        .sort(),
-    ).toEqual(used.map(({ hint }) => hint).sort())
-    const fresh = await invite()
-    const operator = shared.callAs('eelholm', 'operator')
-    expect(
-      await tried(operator, (call) =>
-        joinAsPartner(call, { code: fresh.code, team: 'eelholm', contact: null }),
-      ),
-    ).toEqual({
-      refused: 'forbidden',
-    })
-  })
-})
-
-describe('each team', () => {
-  it('is warned by rules of its own, and changes no other team’s', async () => {
-    const rulesOf = async (team: TeamName) => (await listRules(shared.callAs(team, 'operator'), slug)).items
-    const skerry = await rulesOf('skerry')
-    const pinnet = await rulesOf('pinnet')
-    expect(skerry.length).toBe(DEFAULT_RULES.length + 1)
-    expect(skerry.filter(({ id }) => pinnet.some((other) => other.id === id))).toEqual([])
-    const other = await tried(shared.callAs('skerry', 'operator'), (call) =>
-      changeRule(call, slug, pinnet[0]!.id, { isOn: false }),
-    )
-    expect(other.refused).toBe('not-found')
-  })
-
-  it('has incidents that no other team opens', async () => {
-    for (const team of ['harbourline', 'skerry', 'pinnet'] as const)
-      for (const reader of ['harbourline', 'skerry', 'pinnet', 'eelholm'] as const) {
-        const read = await tried(shared.callAs(reader, 'owner'), (call) =>
-          getIncident(call, shared.incidents[team]),
-        )
-        expect(read.refused, `${reader} reads of ${team}`).toBe(reader === team ? undefined : 'not-found')
-      }
-  })
-
-  it('sees the others’ contacts and how many of their agents are heard', async () => {
-    const { teams, invitations, may } = partnersSchema.parse(
-      await listPartners(shared.callAs('skerry', 'owner'), slug),
-    )
-    expect(
-      teams.map(({ team, standing, yours, contact, joined, heard }) => [
-        team.slug,
-        standing,
-        yours,
-        contact,
-        joined,
-        heard,
-      ]),
-    ).toEqual([
-      ['harbourline', 'owner', false, 'Harbourline desk', 2, 2],
-      ['skerry', 'partner', true, 'skerry desk', 1, 1],
-      ['pinnet', 'partner', false, 'pinnet desk', 1, 1],
-    ])
-    expect([invitations, may]).toEqual([null, { invite: false, change: true, end: true }])
-    const overlay = await getOverlay(shared.callAs('skerry', 'viewer'), slug)
-    expect(overlay).toMatchObject({
-      ...{ standing: 'partner', role: 'viewer', runbookUrl: null, shared: true, contact: 'Harbourline desk' },
-      as: { slug: 'skerry', name: 'Skerry' },
-      team: { slug: 'harbourline' },
-    })
-  })
-})
-
-describe('the end of a partnership', () => {
-  it('takes the team’s agents, codes, rules and windows with it, and leaves what was recorded', async () => {
-    const before = shared.callAs('skerry', 'owner')
-    const ended = await stored(before, (call) => endPartnership(call, slug, 'skerry'))
-    expect(ended).toEqual({ team: { slug: 'skerry', name: 'Skerry' }, agents: 2 })
-    const states = await sql<{ name: string; state: string }>(
-      em(),
-      `select name, state from agents where overlay_id = ? order by name`,
-      [shared.overlay.id],
-    )
-    expect(states.map(({ name, state }) => `${name} ${state}`)).toEqual([
-      ...['pin-01 joined', 'ske-01 left', 'ske-02 left', 'ske-03 left', 'tar-01 joined', 'tar-02 joined'],
-    ])
-    const of = [shared.overlay.id, shared.teamIds.skerry]
-    const [left] = await sql(
-      em(),
-      `select (select count(*)::int from warning_rules where overlay_id = ? and team_id = ?) as rules,
-         (select count(*)::int from joining_codes where overlay_id = ? and team_id = ? and revoked_at is null) as codes,
-         (select count(*)::int from incidents where overlay_id = ? and team_id = ? and resolved_at is null) as incidents,
-         (select count(*)::int from agent_sessions s join agents a on a.id = s.agent_id where a.overlay_id = ? and a.team_id = ?) as sessions`,
-      [...of, ...of, ...of, ...of],
-    )
-    expect(left).toEqual({ rules: 0, codes: 0, incidents: 0, sessions: 0 })
-    expect((await tried(shared.callAs('skerry', 'owner'), (call) => getReading(call, slug))).refused).toBe(
-      'not-found',
-    )
-    expect((await listOverlays(shared.callAs('skerry', 'viewer'))).map((one) => one.slug)).toEqual([])
-    const incident = await getIncident(shared.callAs('skerry', 'viewer'), shared.incidents.skerry)
-    expect(incident.state).toBe('resolved')
-    expect(JSON.stringify(incident)).not.toContain('tar-01')
-    const events = (await listEvents(shared.callAs('pinnet', 'viewer'), slug)).map((one) =>
-      eventSchema.parse(one),
-    )
-    expect(events.map(({ text }) => text)).toContain('Skerry no longer shares the overlay')
-    expect(events.find(({ kind }) => kind === 'agent-left')?.text).toMatch(
-      /^partner node \w{4} and partner node \w{4} left: Skerry no longer shares the overlay$/,
-    )
-  })
-
-  it('stands in the audit logs of both teams, in the other’s without the person', async () => {
-    const entries = await sql<{ team: string; action: string; actor: string }>(
-      em(),
-      `select t.slug as team, action, actor from audit_entries a join teams t on t.id = a.team_id
-       where action in ('partner.join', 'partner.end') order by a.id`,
-    )
-    // Without the wrappers only what stands in the other team's log is entered.
-    expect(entries).toEqual([
-      { team: 'harbourline', action: 'partner.join', actor: 'team Skerry' },
-      { team: 'harbourline', action: 'partner.join', actor: 'team Pinnet' },
-      { team: 'harbourline', action: 'partner.end', actor: 'team Skerry' },
-    ])
-  })
-
-  it('leaves nothing to a reading of before that the other teams may not see', async () => {
-    const reading = readingSchema.parse(
-      await getReading(shared.callAs('pinnet', 'viewer'), slug, { at: shared.at.toISOString() }),
-    )
-    expect(PRIVATE.skerry.filter((word) => JSON.stringify(reading).includes(word))).toEqual([])
   })
 })

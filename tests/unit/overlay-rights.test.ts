@@ -62,11 +62,14 @@ describe('who acts for which of an overlay’s teams', () => {
   })
 })
 
+/** As wide as the formatter makes them. */
+const unpadded = (table: string) => table.replace(/ +/g, ' ').replace(/-{3,}/g, '---')
+
 describe('the table of who sees what', () => {
   it('stands in the documentation as the checks decide it', () => {
     const text = readFileSync(new URL('../../docs/partners.md', import.meta.url), 'utf8')
     // Else: npx tsx scripts/write-partners-table.ts
-    expect(text).toContain(overlayTable())
+    expect(unpadded(text)).toContain(unpadded(overlayTable()))
   })
 
   it('has every action that is open to partners', () => {
