@@ -5,6 +5,7 @@ import * as incident from '@/app/api/v1/incidents/[number]/route'
 import * as incidents from '@/app/api/v1/incidents/route'
 import * as cut from '@/app/api/v1/overlays/[slug]/cut/route'
 import * as events from '@/app/api/v1/overlays/[slug]/events/route'
+import * as exported from '@/app/api/v1/overlays/[slug]/export/[file]/route'
 import * as overlayIncidents from '@/app/api/v1/overlays/[slug]/incidents/route'
 import * as joiningCode from '@/app/api/v1/overlays/[slug]/joining-codes/[id]/route'
 import * as joiningCodes from '@/app/api/v1/overlays/[slug]/joining-codes/route'
@@ -15,6 +16,10 @@ import * as readmission from '@/app/api/v1/overlays/[slug]/nodes/[name]/readmiss
 import * as revocation from '@/app/api/v1/overlays/[slug]/nodes/[name]/revocation/route'
 import * as node from '@/app/api/v1/overlays/[slug]/nodes/[name]/route'
 import * as nodes from '@/app/api/v1/overlays/[slug]/nodes/route'
+import * as partner from '@/app/api/v1/overlays/[slug]/partners/[team]/route'
+import * as invitation from '@/app/api/v1/overlays/[slug]/partners/invitations/[id]/route'
+import * as invitations from '@/app/api/v1/overlays/[slug]/partners/invitations/route'
+import * as partners from '@/app/api/v1/overlays/[slug]/partners/route'
 import * as reading from '@/app/api/v1/overlays/[slug]/reading/route'
 import * as readings from '@/app/api/v1/overlays/[slug]/readings/route'
 import * as rehearsal from '@/app/api/v1/overlays/[slug]/rehearsals/[id]/route'
@@ -34,6 +39,7 @@ import * as weakPlace from '@/app/api/v1/overlays/[slug]/weak/route'
 import * as window from '@/app/api/v1/overlays/[slug]/windows/[id]/route'
 import * as windows from '@/app/api/v1/overlays/[slug]/windows/route'
 import * as overlays from '@/app/api/v1/overlays/route'
+import * as partnerships from '@/app/api/v1/partnerships/route'
 import type { PathRow } from '@/lib/openapi'
 
 /** Every route below app/api/v1; a test finds those that are missing. */
@@ -303,6 +309,63 @@ export const PATHS: readonly PathRow[] = [
         handler: window.DELETE,
         does: 'Ends a maintenance window',
         answers: 'MaintenanceWindow',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/export/{file}',
+    methods: [
+      { method: 'GET', handler: exported.GET, does: 'Hands out what one may see as a file', answers: null },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/partners',
+    methods: [
+      { method: 'GET', handler: partners.GET, does: 'Lists the teams that share it', answers: 'Partners' },
+      {
+        method: 'PATCH',
+        handler: partners.PATCH,
+        does: 'Changes what the caller’s team shows the others',
+        answers: 'Partners',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/partners/{team}',
+    methods: [
+      { method: 'DELETE', handler: partner.DELETE, does: 'Ends a team’s part', answers: 'PartnerEnded' },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/partners/invitations',
+    methods: [
+      {
+        method: 'POST',
+        handler: invitations.POST,
+        does: 'Makes an invitation, whose code is shown once',
+        answers: 'CreatedInvitation',
+      },
+    ],
+  },
+  {
+    path: '/overlays/{slug}/partners/invitations/{id}',
+    methods: [
+      {
+        method: 'DELETE',
+        handler: invitation.DELETE,
+        does: 'Withdraws an invitation',
+        answers: 'Invitation',
+      },
+    ],
+  },
+  {
+    path: '/partnerships',
+    methods: [
+      {
+        method: 'POST',
+        handler: partnerships.POST,
+        does: 'Takes part in an overlay of another team, by its invitation',
+        answers: 'JoinedOverlay',
       },
     ],
   },

@@ -19,6 +19,7 @@ import {
   upgradeOfferDtoSchema,
   upgradesSchema,
 } from '@/lib/data/dto'
+import { createdInvitationSchema, invitationSchema, partnersSchema } from '@/lib/data/partner-dto'
 import { rehearsalSchema, rehearsalsSchema } from '@/lib/data/rehearsal-dto'
 import { plannedLinkSchema, reinforcementSchema } from '@/lib/data/reinforcement-dto'
 import {
@@ -52,6 +53,15 @@ export const ANSWERS = {
   SigningKey: signingKeySchema,
   UpgradeOffer: upgradeOfferDtoSchema,
   Upgrades: upgradesSchema,
+  Partners: partnersSchema,
+  Invitation: invitationSchema,
+  CreatedInvitation: createdInvitationSchema,
+  /** A team's part that has ended, and how many agents of it left. */
+  PartnerEnded: z.object({
+    team: z.object({ slug: z.string(), name: z.string() }),
+    agents: z.number().int(),
+  }),
+  JoinedOverlay: z.object({ slug: z.string(), name: z.string() }),
   Rehearsal: rehearsalSchema,
   Rehearsals: rehearsalsSchema,
   WeakPlace: weakPlaceSchema,

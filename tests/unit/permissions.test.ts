@@ -131,7 +131,6 @@ describe('the permission table', () => {
       .filter(([, permission]) => !permission.audit)
       .map(([action]) => action)
     expect(silent.filter((action) => !/\.(read|list|read-link)$/.test(action))).toEqual([
-      'export.read',
       'agent.session',
       'agent.report',
       'agent.directory',

@@ -274,12 +274,20 @@ describe('a link', () => {
     // Not yet half of what it was; then for a moment; then for long.
     expect([look(12, 0.5), look(16, 0.4), look(18, 0.5), look(19, 0.4), look(21, 0.4)].flat()).toEqual([])
     const data = { links: [['tar-01', 'tar-02']] }
+    const said = (what: string) => ['link ', { node: 'tar-01' }, ' – ', { node: 'tar-02' }, what]
     const weakened = 'link tar-01 – tar-02 delivers less than 50 % of what it did'
-    expect(look(22, 0.3)).toEqual([{ kind: 'link-weakened', text: weakened, data }])
+    expect(look(22, 0.3)).toEqual([
+      { kind: 'link-weakened', text: weakened, said: said(' delivers less than 50 % of what it did'), data },
+    ])
     expect([look(30, 0.2), look(31, 0.7), look(40, 0.75), look(41, 0.6)].flat()).toEqual([])
     expect([look(42, 0.9), look(44, 0.4), look(45, 0.8), look(47, 0.8)].flat()).toEqual([])
     expect(look(48, 0.8)).toEqual([
-      { kind: 'link-recovered', text: 'link tar-01 – tar-02 delivers as before', data },
+      {
+        kind: 'link-recovered',
+        text: 'link tar-01 – tar-02 delivers as before',
+        said: said(' delivers as before'),
+        data,
+      },
     ])
   })
 })
