@@ -14,7 +14,7 @@ const id = (n: number) => `00000000-0000-4000-8000-00000000000${n}`
 
 it('who and what was there before is warned as what begins now', async () => {
   const em = database.orm.em.fork()
-  await database.orm.migrator.down('2026-12-10-warnings')
+  await database.orm.migrator.down({ to: '2026-12-10-warnings' })
   await sql(
     em,
     `insert into teams (id, slug, name, created_at) values (?, 'harbourline', 'Harbourline', now())`,
