@@ -312,7 +312,7 @@ function firstOrders(): Orders {
     linkTimePerSecond: 8,
     colonies: [],
     sweep: null,
-    disclosure: 'sealed',
+    disclosure: 'named',
     shareLimit: 1,
   }
 }

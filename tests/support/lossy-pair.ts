@@ -49,7 +49,7 @@ export class LossyPair {
       linkTimePerSecond: 0.5,
       colonies: [],
       sweep: null,
-      disclosure: 'sealed',
+      disclosure: 'named',
       shareLimit: 1,
       ...init.orders,
     }
