@@ -10,6 +10,7 @@ import { FleetProcess } from '@/tests/support/e2e/fleet-process'
 import { fill, press, readingOnPage } from '@/tests/support/e2e/pages'
 import { createOwner, createToken, type E2eServer, OWNER, startServer } from '@/tests/support/e2e/server'
 import { twoSides } from '@/tests/support/e2e/two-sides'
+import { PATIENCE_MS } from '@/tests/support/until'
 
 const overlay = twoSides(6, [1, 2], [0, 1, 2, 3])
 /** Two of the four links across go before the story begins to be one. */
@@ -87,7 +88,8 @@ describe('links thin out', () => {
     await indexTo(page, 'Weak place')
     const crossing = page.getByRole('table', { name: 'Links over the weak cut' })
     for (const link of [first, second]) await row(crossing, written(link)).waitFor()
-    await expect.poll(() => crossing.locator('tbody tr').count()).toBe(2)
+    // Until the cut has been counted anew it is another one.
+    await expect.poll(() => crossing.locator('tbody tr').count(), { timeout: PATIENCE_MS }).toBe(2)
     await page.getByText(/^It follows harbour: /).waitFor()
     expect(await seriousFindings(page)).toEqual([])
     expect(await overflowAt(page, 360)).toBe(0)
@@ -126,7 +128,7 @@ describe('new links', () => {
     await page.getByLabel('Only nodes with').selectOption('supply=south')
     await press(page, 'Work it out')
     const proposed = page.getByRole('table', { name: /^Proposed links/ }).locator('tbody tr')
-    await expect.poll(() => proposed.count()).toBe(2)
+    await expect.poll(() => proposed.count(), { timeout: PATIENCE_MS }).toBe(2)
     made = await proposed.locator('td:nth-child(2)').allInnerTexts()
     for (const link of made) expect(link).toMatch(/^eel-0[3-6] – tar-0\d$/)
     for (const link of made) {
@@ -171,7 +173,7 @@ describe('the same drain once more', () => {
     const { page } = owner
     await indexTo(page, 'Rehearsals')
     const table = page.getByRole('table', { name: 'Rehearsals of this overlay' })
-    await expect.poll(() => table.locator('tbody tr').count()).toBe(2)
+    await expect.poll(() => table.locator('tbody tr').count(), { timeout: PATIENCE_MS }).toBe(2)
     await row(table, 'holds').waitFor()
     await row(table, 'splits').waitFor()
   })
