@@ -34,7 +34,9 @@ export function previewSentence(range: PreviewRange, facts: PreviewFacts): strin
       : `In the last ${LAST[range]} it would have been raised ${times}, for ${formatDuration(total)}${longest}.`
   const still = spans.at(-1)?.clearedAtMs === null ? ' It would still be raised now.' : ''
   const unknown =
-    unknownSeconds > 0 ? ` No fresh reading is known for ${formatDuration(unknownSeconds)} of it.` : ''
+    unknownSeconds > 0
+      ? ` Nothing can be told of ${formatDuration(unknownSeconds)} of it: no reading was fresh, or what is usual was not known yet.`
+      : ''
   return `${said}${still}${unknown}`
 }
 

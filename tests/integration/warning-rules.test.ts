@@ -182,7 +182,7 @@ describe('trying a rule on history', () => {
       spans: [{ raisedAt: '2026-12-01T10:05:00.000Z', clearedAt: '2026-12-01T10:10:00.000Z' }],
       unknownSeconds: week - 18 * 60,
       sentence:
-        'In the last 7 days it would have been raised once, for 5 min. No fresh reading is known for 6 d of it.',
+        'In the last 7 days it would have been raised once, for 5 min. Nothing can be told of 6 d of it: no reading was fresh, or what is usual was not known yet.',
       notes: 1,
       pointSeconds: 840,
       points: 2,
