@@ -132,12 +132,12 @@ describe('the weak place', () => {
     const call = await seeded.team.callAs('viewer')
     const stranger = { ...call, caller: { ...call.caller, teams: [] } } as typeof call
     for (const ask of [
-      getWeakPlace(stranger, seeded.overlay.slug, last),
-      listKeptMoments(stranger, seeded.overlay.slug, last),
-      getNodeStory(stranger, seeded.overlay.slug, 'tar-01', last),
-      getLinkStory(stranger, seeded.overlay.slug, { a: 'eel-07', b: 'tar-01' }, last),
+      () => getWeakPlace(stranger, seeded.overlay.slug, last),
+      () => listKeptMoments(stranger, seeded.overlay.slug, last),
+      () => getNodeStory(stranger, seeded.overlay.slug, 'tar-01', last),
+      () => getLinkStory(stranger, seeded.overlay.slug, { a: 'eel-07', b: 'tar-01' }, last),
     ])
-      await expect(ask).rejects.toMatchObject({ code: 'not-found' })
+      await expect(ask()).rejects.toMatchObject({ code: 'not-found' })
   })
 })
 
