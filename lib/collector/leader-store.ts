@@ -8,7 +8,7 @@ import { type StoredState, storedStateSchema } from './memory'
 import { overlayChannel } from './notices'
 import { type Bindable, query } from './query'
 import type { KeptReading } from './reading'
-import { columnsOf } from './reading-columns'
+import { insertReading } from './reading-store'
 import type { RehearsalChange } from './rehearsal/open'
 import { writeChanges } from './rehearsal/store'
 import { eventOf } from './said'
@@ -126,48 +126,6 @@ async function leaveOut(em: EntityManager, agents: Round['leftOut']): Promise<Ev
     if (row) events.push(eventOf('agent-left-out', [{ node: row.name }, ` left out: ${because}`]))
   }
   return events
-}
-
-async function insertReading(em: EntityManager, overlayId: string, reading: KeptReading): Promise<void> {
-  const {
-    at,
-    lambda2,
-    low,
-    high,
-    core,
-    crossCheck,
-    usual,
-    level,
-    trend,
-    data,
-    verdict,
-    detail,
-    demo,
-    ...rest
-  } = reading
-  const { headline, whole } = columnsOf({ core, lambda2, low, high })
-  const body = { ...rest, whole }
-  await query(
-    em,
-    `insert into readings (overlay_id, at, lambda2, low, high, cross_check, usual, level, trend, data, verdict,
-       detail, body, demo) values (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?::jsonb, ?)`,
-    [
-      overlayId,
-      at,
-      headline.lambda2,
-      headline.low,
-      headline.high,
-      crossCheck,
-      usual,
-      level,
-      trend,
-      data,
-      verdict,
-      detail,
-      JSON.stringify(body),
-      demo,
-    ],
-  )
 }
 
 /** Events, and the notices of all that is new. */

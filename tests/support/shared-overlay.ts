@@ -5,7 +5,7 @@ import type { Role } from '@/lib/auth/permissions'
 import { enterEvent } from '@/lib/collector/events-store'
 import { BLANK_MEMORY, STATE_VERSION } from '@/lib/collector/memory'
 import { keepMoment } from '@/lib/collector/moments'
-import { columnsOf } from '@/lib/collector/reading-columns'
+import { insertReading } from '@/lib/collector/reading-store'
 import { eventOf } from '@/lib/collector/said'
 import { type VerdictFacts, verdictOf } from '@/lib/collector/verdict'
 import { createInvitation, createJoiningCode, joinAsPartner } from '@/lib/data'
@@ -218,7 +218,7 @@ async function measure(
     coverage: { linksKnown: 4, linksMeasured: 4, joined: 5, heard: 5, unheard: 0 },
     ...{ last: null, demo: false },
   }
-  await storeReading(database, overlayId, { ...reading, facts })
+  await insertReading(database.orm.em.fork(), overlayId, { ...reading, facts })
   const nodes = Object.entries(sides).map(([agentId, side]) => {
     const name = Object.keys(agents).find((one) => id(one) === agentId)!
     const office = name.startsWith('tar') ? 'Tarnwick' : name.startsWith('ske') ? 'Skerryvore' : 'Pinnet Bay'
@@ -248,48 +248,4 @@ async function measure(
     eventOf('link-lost', ['link ', { node: 'pin-01' }, ' – ', { node: 'ske-02' }, ' lost']),
   )
   return at
-}
-
-async function storeReading(
-  database: TestDatabase,
-  overlayId: string,
-  reading: Reading & { facts: VerdictFacts },
-): Promise<void> {
-  const {
-    at,
-    core,
-    lambda2,
-    low,
-    high,
-    crossCheck,
-    usual,
-    level,
-    trend,
-    data,
-    verdict,
-    detail,
-    demo,
-    ...rest
-  } = reading
-  const { headline, whole } = columnsOf({ core, lambda2, low, high })
-  await sql(
-    database.orm.em.fork(),
-    `insert into readings (overlay_id, at, lambda2, low, high, cross_check, usual, level, trend, data, verdict, detail, body, demo)
-     values (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?::jsonb, ?)`,
-    [
-      ...[
-        overlayId,
-        at,
-        headline.lambda2,
-        headline.low,
-        headline.high,
-        crossCheck,
-        usual,
-        level,
-        trend,
-        data,
-      ],
-      ...[verdict, detail, JSON.stringify({ ...rest, whole }), demo],
-    ],
-  )
 }

@@ -1,10 +1,11 @@
 import { randomUUID } from 'node:crypto'
 import { beforeEach } from 'vitest'
-import { AgentSchema, AgentStateSchema, ReadingSchema } from '@/entities'
+import { AgentSchema, AgentStateSchema } from '@/entities'
 import { BLANK_MEMORY, type Memory } from '@/lib/collector/memory'
 import type { Moment, MomentNode } from '@/lib/collector/moment'
 import { keepMoment } from '@/lib/collector/moments'
 import { query } from '@/lib/collector/query'
+import { insertReading } from '@/lib/collector/reading-store'
 import type { Reading } from '@/lib/data/dto'
 import { overlayPerTest } from './overlay-per-test'
 import { someReport } from './reports'
@@ -72,28 +73,7 @@ export function weakOverlayPerTest() {
   })
 
   async function storeReading(over: Partial<Reading> = {}) {
-    const {
-      core: _,
-      at,
-      lambda2,
-      low,
-      high,
-      crossCheck,
-      usual,
-      level,
-      trend,
-      data,
-      verdict,
-      detail,
-      demo,
-      ...body
-    } = readingNow(over)
-    await em().insert(ReadingSchema, {
-      overlayId: seeded.overlay.id,
-      at: new Date(at),
-      ...{ lambda2, low, high, crossCheck, usual, level, trend, data, verdict, detail, demo },
-      body,
-    })
+    await insertReading(em(), seeded.overlay.id, readingNow(over))
   }
 
   async function storeMemory(over: Partial<Memory> = {}) {
