@@ -5,14 +5,11 @@ import { Freshness } from '@/components/live/freshness'
 import { useLinkStory, useReading } from '@/components/live/hooks'
 import { StateMark } from '@/components/nodes/state-mark'
 import { RehearseLink } from '@/components/rehearsals/rehearse-link'
-import { pickRange, RangeChoice } from '@/components/trend/trend-sheet'
 import {
   type Column,
-  DataTable,
   EmptyState,
   FailedState,
   type Figure,
-  Fold,
   Lambda,
   Note,
   PageHeading,
@@ -24,12 +21,11 @@ import {
   Waiting,
 } from '@/components/ui'
 import type { LinkStory } from '@/lib/data/weak-dto'
-import { formatCount, formatHigh, formatLink, formatShare } from '@/lib/face/format'
+import { formatHigh, formatLink, formatShare } from '@/lib/face/format'
 import type { Range } from '@/lib/face/range'
-import { stepMsOf } from '@/lib/face/story'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { ageText } from '@/lib/face/weak'
-import { Course } from './course'
+import { HistorySheet } from './history-sheet'
 import { Mentions } from './mentions'
 import { useRange } from './use-range'
 
@@ -97,7 +93,7 @@ function Story({ slug, story, range }: { slug: string; story: LinkStory; range: 
         </div>
         {link ? <Figures slug={slug} story={story} nowMs={now} /> : null}
       </div>
-      <HistorySheet story={story} range={range} nowMs={now} />
+      <LinkHistory story={story} range={range} nowMs={now} />
       <Sheet heading="Lost and found" aside={story.events.length > 0 ? 'newest first' : null}>
         {story.events.length > 0 ? (
           <ul>
@@ -174,57 +170,35 @@ function Figures({ slug, story, nowMs }: { slug: string; story: LinkStory; nowMs
   return <TitleBlock label="The link in figures" figures={figures} />
 }
 
-function HistorySheet({ story, range, nowMs }: { story: LinkStory; range: Range; nowMs: number | null }) {
+function LinkHistory({ story, range, nowMs }: { story: LinkStory; range: Range; nowMs: number | null }) {
   const { course } = story
-  const toMs = nowMs ?? course.at(-1)?.[0] ?? 0
-  const times = { fromMs: toMs - range.seconds * 1000, toMs, stepMs: stepMsOf(range) }
   return (
-    <Sheet heading="History" aside={<RangeChoice range={range} onRange={pickRange} />}>
-      {course.length === 0 ? (
-        <EmptyState title={`It did not cross the cut in the last ${range.label}, as far as is kept.`}>
-          Links are kept while they cross the weak cut and are named. Choose a longer range to look further
-          back.
-        </EmptyState>
-      ) : (
-        <>
-          <div className="grid gap-6 md:grid-cols-2">
-            <Course
-              {...times}
-              heading="Share of the reading while it crossed"
-              points={course.map(([atMs, , share]) => [atMs, share])}
-              least={0}
-              most={0.1}
-              format={formatShare}
-            />
-            <Course
-              {...times}
-              heading="Weight"
-              points={course.map(([atMs, weight]) => [atMs, weight])}
-              least={0}
-              most={1}
-              format={(value) => value.toFixed(2)}
-            />
-          </div>
-          <div className="mt-4">
-            <Fold heading="As a table" about={formatCount(course.length, 'moment')}>
-              <DataTable
-                caption="The link at the moments that are kept"
-                columns={MOMENTS}
-                rows={course.map(([atMs, weight, share]) => ({
-                  at: new Date(atMs).toISOString(),
-                  weight,
-                  share,
-                }))}
-                rowKey={({ at }) => at}
-                csvName={`${story.a.name}-${story.b.name}-history`}
-                initialSort={{ id: 'at', descending: true }}
-                empty={null}
-              />
-            </Fold>
-          </div>
-        </>
-      )}
-    </Sheet>
+    <HistorySheet
+      range={range}
+      toMs={nowMs ?? course.at(-1)?.[0] ?? 0}
+      rows={course.map(([atMs, weight, share]) => ({ at: new Date(atMs).toISOString(), weight, share }))}
+      courses={[
+        {
+          heading: 'Share of the reading while it crossed',
+          points: course.map(([atMs, , share]) => [atMs, share]),
+          ...{ least: 0, most: 0.1, format: formatShare },
+        },
+        {
+          heading: 'Weight',
+          points: course.map(([atMs, weight]) => [atMs, weight]),
+          ...{ least: 0, most: 1, format: (value) => value.toFixed(2) },
+        },
+      ]}
+      table={{
+        caption: 'The link at the moments that are kept',
+        columns: MOMENTS,
+        csvName: `${story.a.name}-${story.b.name}-history`,
+      }}
+      empty={{
+        title: `It did not cross the cut in the last ${range.label}, as far as is kept.`,
+        text: 'Links are kept while they cross the weak cut and are named. Choose a longer range to look further back.',
+      }}
+    />
   )
 }
 

@@ -5,13 +5,11 @@ import { Freshness } from '@/components/live/freshness'
 import { useNodeStory } from '@/components/live/hooks'
 import { STATE_WORDS, StateMark } from '@/components/nodes/state-mark'
 import { RehearseLink } from '@/components/rehearsals/rehearse-link'
-import { pickRange, RangeChoice } from '@/components/trend/trend-sheet'
 import {
   type Column,
   DataTable,
   EmptyState,
   FailedState,
-  Fold,
   Note,
   PageHeading,
   Sheet,
@@ -21,13 +19,13 @@ import {
   Waiting,
 } from '@/components/ui'
 import type { NodeStory } from '@/lib/data/weak-dto'
-import { formatCount, formatShare, formatValue } from '@/lib/face/format'
+import { formatShare, formatValue } from '@/lib/face/format'
 import { nodeConcerns } from '@/lib/face/node-concerns'
 import type { Range } from '@/lib/face/range'
 import { joinedOf } from '@/lib/face/rehearsal'
-import { hiddenLinksText, type Neighbour, neighboursOf, stepMsOf } from '@/lib/face/story'
+import { hiddenLinksText, type Neighbour, neighboursOf } from '@/lib/face/story'
 import { overlayPageUrls } from '@/lib/face/urls'
-import { Course } from './course'
+import { HistorySheet } from './history-sheet'
 import { Mentions } from './mentions'
 import { useRange } from './use-range'
 
@@ -86,7 +84,7 @@ function Story({ slug, story, range }: { slug: string; story: NodeStory; range: 
         ) : null}
         {concerns.length > 0 ? <Note>To look at: {concerns.join('; ')}</Note> : null}
       </div>
-      <HistorySheet story={story} range={range} />
+      <NodeHistory story={story} range={range} />
       <Sheet heading="Neighbours" aside={links.length > 0 ? `${links.length} named` : null}>
         <DataTable
           caption={`Links of ${node.name}`}
@@ -105,53 +103,36 @@ function Story({ slug, story, range }: { slug: string; story: NodeStory; range: 
   )
 }
 
-function HistorySheet({ story, range }: { story: NodeStory; range: Range }) {
+function NodeHistory({ story, range }: { story: NodeStory; range: Range }) {
   const now = useNow()
-  const { course } = story
-  const toMs = now ?? Date.parse(course.at(-1)?.at ?? '')
-  const times = { fromMs: toMs - range.seconds * 1000, toMs, stepMs: stepMsOf(range) }
+  const { course, node } = story
   return (
-    <Sheet heading="History" aside={<RangeChoice range={range} onRange={pickRange} />}>
-      {course.length === 0 ? (
-        <EmptyState title={`No moment of the last ${range.label} is kept of it.`}>
-          One is kept each minute while the overlay is evaluated. Choose a longer range to look further back.
-        </EmptyState>
-      ) : (
-        <>
-          <div className="grid gap-6 md:grid-cols-2">
-            <Course
-              {...times}
-              heading="Fiedler value; its sign may turn when another cut is the weakest"
-              points={course.map(({ at, value }) => [Date.parse(at), value])}
-              least={-1}
-              most={1}
-              format={formatValue}
-            />
-            <Course
-              {...times}
-              heading="Weight on its links together"
-              points={course.map(({ at, weightedDegree }) => [Date.parse(at), weightedDegree])}
-              least={0}
-              most={1}
-              format={(value) => value.toFixed(2)}
-            />
-          </div>
-          <div className="mt-4">
-            <Fold heading="As a table" about={formatCount(course.length, 'moment')}>
-              <DataTable
-                caption="The node at the moments that are kept"
-                columns={MOMENTS}
-                rows={course}
-                rowKey={({ at }) => at}
-                csvName={`${story.node.name}-history`}
-                initialSort={{ id: 'at', descending: true }}
-                empty={null}
-              />
-            </Fold>
-          </div>
-        </>
-      )}
-    </Sheet>
+    <HistorySheet
+      range={range}
+      toMs={now ?? Date.parse(course.at(-1)?.at ?? '')}
+      rows={course}
+      courses={[
+        {
+          heading: 'Fiedler value; its sign may turn when another cut is the weakest',
+          points: course.map(({ at, value }) => [Date.parse(at), value]),
+          ...{ least: -1, most: 1, format: formatValue },
+        },
+        {
+          heading: 'Weight on its links together',
+          points: course.map(({ at, weightedDegree }) => [Date.parse(at), weightedDegree]),
+          ...{ least: 0, most: 1, format: (value) => value.toFixed(2) },
+        },
+      ]}
+      table={{
+        caption: 'The node at the moments that are kept',
+        columns: MOMENTS,
+        csvName: `${node.name}-history`,
+      }}
+      empty={{
+        title: `No moment of the last ${range.label} is kept of it.`,
+        text: 'One is kept each minute while the overlay is evaluated. Choose a longer range to look further back.',
+      }}
+    />
   )
 }
 
