@@ -3,20 +3,11 @@
 import Link from 'next/link'
 import { useMemo } from 'react'
 import { useCut, useNodes, useOverlay, useReading } from '@/components/live/hooks'
-import {
-  type Column,
-  DataTable,
-  EmptyState,
-  FailedState,
-  Lambda,
-  Note,
-  Sheet,
-  Time,
-  Waiting,
-} from '@/components/ui'
+import { type Column, DataTable, EmptyState, FailedState, Note, Sheet, Time, Waiting } from '@/components/ui'
+import { SHARE, WEIGHT } from '@/components/weak/link-columns'
 import type { Cut, OverlayLink } from '@/lib/data/dto'
 import { ifItGoes, whyHidden } from '@/lib/face/crossing'
-import { formatCount, formatLink, formatReading, formatShare } from '@/lib/face/format'
+import { formatCount, formatLink, formatReading } from '@/lib/face/format'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { headlineLambda2 } from '@/lib/face/weak-links'
 
@@ -140,25 +131,8 @@ function columnsFor(
         </Link>
       ),
     },
-    {
-      id: 'delivered',
-      header: 'delivered',
-      figures: true,
-      value: (l) => (l.state === 'lost' ? 'lost' : l.weight),
-      cell: (l) => (l.state === 'lost' ? 'lost' : l.weight.toFixed(2)),
-    },
-    {
-      id: 'share',
-      header: 'share of lambda2',
-      heading: (
-        <span>
-          share of <Lambda n={2} />
-        </span>
-      ),
-      figures: true,
-      value: (l) => (l.state === 'lost' ? null : l.share),
-      cell: (l) => (l.share === null || l.state === 'lost' ? '–' : formatShare(l.share)),
-    },
+    { ...WEIGHT, header: 'delivered' },
+    SHARE,
     {
       id: 'without',
       header: 'if it goes',

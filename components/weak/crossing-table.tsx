@@ -2,10 +2,10 @@
 
 import Link from 'next/link'
 import { useMemo } from 'react'
-import { type Column, DataTable, EmptyState, Lambda, Note, Sheet, Time, useNow } from '@/components/ui'
+import { type Column, DataTable, EmptyState, Note, Sheet, Time, useNow } from '@/components/ui'
 import type { WeakLink, WeakPlace } from '@/lib/data/weak-dto'
 import { ifItGoes, whyHidden } from '@/lib/face/crossing'
-import { formatCount, formatLink, formatReading, formatShare } from '@/lib/face/format'
+import { formatCount, formatLink, formatReading } from '@/lib/face/format'
 import type { Range } from '@/lib/face/range'
 import { stepMsOf } from '@/lib/face/story'
 import { overlayPageUrls } from '@/lib/face/urls'
@@ -13,6 +13,7 @@ import { ageText, courseText, endLabel } from '@/lib/face/weak'
 import { asCut } from '@/lib/face/weak-cut'
 import { headlineOf, labelsOfEnds } from '@/lib/face/weak-links'
 import { useNodesAt } from '../live/hooks'
+import { SHARE, WEIGHT } from './link-columns'
 import { Spark } from './spark'
 
 export interface CrossingTableProps {
@@ -126,18 +127,7 @@ function columnsFor({ slug, place, range, nowMs, nodes }: ColumnsInput): Column<
         </span>
       ),
     },
-    {
-      id: 'share',
-      header: 'share of lambda2',
-      heading: (
-        <span>
-          share of <Lambda n={2} />
-        </span>
-      ),
-      figures: true,
-      value: (link) => (isLost(link) ? null : link.share),
-      cell: (link) => (link.share === null || isLost(link) ? '–' : formatShare(link.share)),
-    },
+    SHARE,
     {
       id: 'course',
       header: `its course over ${range.label}`,
@@ -156,13 +146,7 @@ function columnsFor({ slug, place, range, nowMs, nodes }: ColumnsInput): Column<
           />
         ),
     },
-    {
-      id: 'delivered',
-      header: 'weight',
-      figures: true,
-      value: (link) => (isLost(link) ? 'lost' : link.weight),
-      cell: (link) => (isLost(link) ? 'lost' : link.weight.toFixed(2)),
-    },
+    WEIGHT,
     {
       id: 'age',
       header: 'named for',
