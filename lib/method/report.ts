@@ -122,8 +122,11 @@ export interface Sums {
   sweeps?: readonly PlacedSweepSums[]
 }
 
-export const SKILLS = ['rehearsal'] as const
-/** What an agent does beyond what agents of version 2 do: `rehearsal`: what orders say of clones, refused links and own rates. */
+export const SKILLS = ['rehearsal', 'masked-rehearsal'] as const
+/**
+ * What an agent does beyond what agents of version 2 do: `rehearsal`: what orders say of clones, refused links and own rates;
+ * `masked-rehearsal`: rounds that hold sums of rehearsals.
+ */
 export type Skill = (typeof SKILLS)[number]
 
 /** What may be known of one node, as disclosure allows. */

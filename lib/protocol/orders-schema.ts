@@ -50,11 +50,14 @@ const sweepOrdersSchema = z.object({
 })
 
 const slot = z.number().int().min(0).max(0xffff)
+const sweepLayoutSchema = z.object({ id: count, thresholds: z.number().int().min(0).max(MAX_THRESHOLDS) })
+const place = z.number().int().min(0).max(MAX_COLONIES)
 const roundOrdersSchema = z.object({
   number: count,
   fromAgeMs: z.number().min(0).max(3_600_000),
   groups: z.array(z.array(z.tuple([slot, count])).max(MAX_COLONIES)).max(MAX_COLONIES),
-  sweep: z.object({ id: count, thresholds: z.number().int().min(0).max(MAX_THRESHOLDS) }).nullable(),
+  sweep: sweepLayoutSchema.nullable(),
+  sweeps: z.array(sweepLayoutSchema.extend({ place })).max(MAX_COLONIES).optional(),
 })
 
 export const ordersSchema: z.ZodType<Orders> = z
@@ -65,10 +68,7 @@ export const ordersSchema: z.ZodType<Orders> = z
     next: nextSchema.optional(),
     colonies: z.array(colonyOrdersSchema).max(MAX_COLONIES),
     sweep: sweepOrdersSchema.nullable(),
-    sweeps: z
-      .array(sweepOrdersSchema.extend({ place: z.number().int().min(0).max(MAX_COLONIES) }))
-      .max(MAX_COLONIES)
-      .optional(),
+    sweeps: z.array(sweepOrdersSchema.extend({ place })).max(MAX_COLONIES).optional(),
     disclosure: z.enum(DISCLOSURES),
     shareLimit: z.number().min(0).max(1),
     shut: z

@@ -1,4 +1,5 @@
 import { parseArgs } from 'node:util'
+import { DISCLOSURES, type Disclosure } from '@/lib/method/orders'
 import { createRandom } from '@/lib/method/random'
 import { median } from './reading/course'
 import { drainsOf, type Topology, topologies } from './rehearsal/cases'
@@ -11,31 +12,40 @@ export const LIVE_WITHIN = 0.02
 export const MEDIAN_SECONDS = 90
 
 /**
- * `npm run bench -- rehearsal [--runs 1] [--only PART-OF-A-NAME,…]`: what rehearsals say of what remains, against its exact λ₂, and
+ * `npm run bench -- rehearsal [--runs 1] [--only PART-OF-A-NAME,…] [--disclosure sealed]`: what rehearsals say of what remains, against its exact λ₂, and
  * what they do to the live reading. Virtual time at brisk pace, no audits.
  */
 export function benchRehearsal(args: readonly string[], print: Print): void {
   const { values } = parseArgs({
     args: [...args],
-    options: { runs: { type: 'string', default: '1' }, only: { type: 'string', default: '' } },
+    options: {
+      runs: { type: 'string', default: '1' },
+      only: { type: 'string', default: '' },
+      disclosure: { type: 'string', default: 'named' },
+    },
   })
+  const disclosure = DISCLOSURES.find((one) => one === values.disclosure)
+  if (!disclosure) throw new RangeError(`no disclosure ${values.disclosure}: ${DISCLOSURES.join(', ')}`)
   const parts = values.only.split(',')
   const chosen = topologies().filter(({ name }) => parts.some((part) => name.includes(part)))
   explain(print)
   const all = chosen.flatMap((topology) =>
-    Array.from({ length: Number(values.runs) }, (_, run) => runOf(topology, run)).flatMap((runs) => {
-      for (const run of runs) print(lineOf(run))
-      return runs
-    }),
+    Array.from({ length: Number(values.runs) }, (_, run) => runOf(topology, run, disclosure)).flatMap(
+      (runs) => {
+        for (const run of runs) print(lineOf(run))
+        return runs
+      },
+    ),
   )
   print('')
   for (const line of summaryOf(all)) print(line)
 }
 
 /** One seed: other nodes are drained in each. */
-export function runOf(topology: Topology, run: number): RehearsalRun[] {
+export function runOf(topology: Topology, run: number, disclosure: Disclosure = 'named'): RehearsalRun[] {
   const seed = `rehearsal ${topology.name} ${run}`
-  return runRehearsals(topology, drainsOf(topology, createRandom(`${seed} drains`)), { seed, pace: 'brisk' })
+  const drains = drainsOf(topology, createRandom(`${seed} drains`))
+  return runRehearsals(topology, drains, { seed, pace: 'brisk', disclosure })
 }
 
 function explain(print: Print): void {

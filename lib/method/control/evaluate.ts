@@ -7,9 +7,7 @@ import { read } from './read'
 import { heldMs } from './snapshot'
 import type { ControlSettings, ControlState } from './state'
 import { steer } from './steer'
-import type { Totals } from './totals'
-import { totalsOfReports } from './totals-of-reports'
-import { totalsOfRound } from './totals-of-round'
+import { totalsNow } from './totals-now'
 
 /** Walkers are first placed when the number of attached agents has stood still this long. */
 export const STILL_INTERVALS = 2
@@ -61,15 +59,10 @@ export function evaluate(input: EvaluateInput): Evaluation {
       estimate: withheldEstimate(now.atMs, withheld, coverage),
     }
   }
-  const totals = totalsOf(input)
+  const totals = totalsNow(input)
   const steered = steer(control, totals, input)
   return read(steered, totals, input, coverage)
 }
-
-const totalsOf = ({ before, now, settings }: EvaluateInput): Totals =>
-  now.round
-    ? totalsOfRound(now.round.totals, now.round.isNew)
-    : totalsOfReports(before, now, settings.pace.intervalMs)
 
 /** Walkers that stand still stay where they are: for the readings so far that time does not pass. */
 function standing(control: ControlState, atMs: number, lastMs: number): ControlState {

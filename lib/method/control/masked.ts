@@ -95,13 +95,17 @@ function planNext(
   const layout: Layout = {
     groups: groupsOf(control),
     sweep: orders.sweep && { id: orders.sweep.id, thresholds: THRESHOLDS.length },
+    ...(orders.sweeps &&
+      orders.sweeps.length > 0 && {
+        sweeps: orders.sweeps.map(({ place, id }) => ({ place, id, thresholds: THRESHOLDS.length })),
+      }),
   }
   return { ...rounds, planned: [...planned, { number: sequence, atMs, layout }] }
 }
 
-/** Colonies that are read together: of the whole, of the core, of each piece. */
-function groupsOf({ colonies, core, parts = [] }: ControlState): Layout['groups'] {
-  const within = [core?.control, ...parts.map(({ control }) => control)]
+/** Colonies that are read together: of the whole, of the core, of each piece, of each rehearsal. */
+function groupsOf({ colonies, core, parts = [], rehearsals = [] }: ControlState): Layout['groups'] {
+  const within = [core?.control, ...[...parts, ...rehearsals].map(({ control }) => control)]
   return [colonies, ...within.map((control) => control?.colonies ?? [])].flatMap((group) =>
     group.length > 0 ? [group.map(({ colony, seeding }) => [colony, seeding] as const)] : [],
   )

@@ -83,7 +83,9 @@ export function read(
       next.combination = combinationOf(subspace, result, control.combination, {
         id: sequence,
         thresholds: THRESHOLDS,
-        sides: (control.combination && totals.sidesOf(control.combination.id)) ?? control.combination?.sides,
+        sides:
+          (control.combination && totals.sidesOf(control.combination.id, settings.rehearses)) ??
+          control.combination?.sides,
         ...(now.round && { stands: doesStandOut(control.bounds, result.values[0]!) }),
       })
       next.combinationAtMs = now.atMs

@@ -2,10 +2,10 @@ import { crossCheckOf } from './cross-check'
 import type { EvaluateInput } from './estimate'
 import { fastestLinkTimePerSecond, firstLinkTimePerSecond, wantedLinkTimePerSecond } from './law'
 import { type Seeder, seedColony } from './populations'
-import { colonyRates } from './rates'
 import type { Live, RehearsalControl } from './rehearsals'
-import { heardAgents, isAttached, type Snapshot } from './snapshot'
+import { heardAgents, isAttached } from './snapshot'
 import { type ColonyControl, type ControlSettings, type ControlState, initialControl } from './state'
+import type { Totals } from './totals'
 import { without } from './within'
 
 export const CLONED = 2
@@ -84,11 +84,11 @@ function sourcesOf(
 }
 
 /** What was taken away held most of one type: the clones would drag on, and the colonies are all seeded anew. */
-export function areUneven({ colonies }: ControlState, within: Snapshot, { pace }: ControlSettings): boolean {
-  return colonies.some(({ colony, seeding, seededAtMs, cloneOf }) => {
-    const age = (within.atMs - seededAtMs) / pace.intervalMs
-    if (!cloneOf || age < TOLD_AFTER_INTERVALS || age > TOLD_WITHIN_INTERVALS) return false
-    const { populationX, populationY } = colonyRates(colony, seeding, within, within, pace.intervalMs)
+export function areUneven({ colonies }: ControlState, totals: Totals, { pace }: ControlSettings): boolean {
+  return colonies.some((colony) => {
+    const age = (totals.atMs - colony.seededAtMs) / pace.intervalMs
+    if (!colony.cloneOf || age < TOLD_AFTER_INTERVALS || age > TOLD_WITHIN_INTERVALS) return false
+    const { populationX, populationY } = totals.ratesOf(colony)
     return Math.abs(populationX - populationY) > MOST_IMBALANCE * (populationX + populationY)
   })
 }

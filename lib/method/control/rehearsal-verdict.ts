@@ -2,9 +2,10 @@ import type { Evaluation } from './estimate'
 import { CLONED } from './rehearsal-start'
 import type { Live, RehearsalControl } from './rehearsals'
 import { NEXT_TO_NOTHING } from './settling'
-import { type HeardAgent, heardAgents, type Snapshot } from './snapshot'
-import type { ControlSettings, ControlState } from './state'
-import { gather, overlapIn, ritzOf } from './subspace'
+import type { Snapshot } from './snapshot'
+import type { ControlSettings } from './state'
+import { ritzOf } from './subspace'
+import type { Totals } from './totals'
 
 /** Two that begin where the live ones are, two that begin anywhere. */
 export const COLONIES_EACH = 4
@@ -40,19 +41,15 @@ export function verdictNow(
   one: RehearsalControl,
   { control, estimate }: Evaluation,
   { headline }: Live,
-  { now, settings }: { now: Snapshot; settings: ControlSettings },
+  { now, totals, settings }: { now: Snapshot; totals: Totals; settings: ControlSettings },
 ): { found: RehearsalFound } & Pick<RehearsalControl, 'agreedSinceMs' | 'apartSinceMs'> {
-  const heard = heardAgents(now, settings.pace.intervalMs)
-  const sums = heard.flatMap(
-    ({ last }) => last.report.sums.sweeps?.find(({ place }) => place === one.place) ?? [],
-  )
-  const alone = sums.length > 0 ? sums.reduce((total, each) => total + each.alone, 0) : null
+  const alone = totals.aloneIn(one.place)
   const { lambda2, cut, settling, withheld } = estimate
   const isNothing = lambda2 !== null && lambda2 < NEXT_TO_NOTHING * control.meanWeightedDegree
   const age = one.walkedMs / settings.pace.intervalMs
   const isApart =
     withheld === null && age >= APART_AFTER_INTERVALS && ((alone ?? 0) > 0 || (isNothing && cut?.links === 0))
-  const subspace = lambda2 === null ? null : gather(control.colonies, heard, control.drift ?? [], now.atMs)
+  const subspace = lambda2 === null ? null : totals.subspaceOf(control.colonies, control.drift ?? [])
   const first = control.colonies.slice(0, CLONED).map(({ seeding, colony }) => `${colony} ${seeding}`)
   const half = (isFirst: boolean) =>
     subspace &&
@@ -76,22 +73,11 @@ export function verdictNow(
       isApart: isLong(apartSinceMs),
       alone,
       halves,
-      isTurned: isGood ? isTurned(control, headline.control, heard, now.atMs) : null,
+      isTurned: isGood ? isTurned(totals.alongLive(one.place, control, headline.control)) : null,
     },
     agreedSinceMs,
     apartSinceMs,
   }
 }
 
-function isTurned(
-  control: ControlState,
-  live: ControlState,
-  heard: readonly HeardAgent[],
-  atMs: number,
-): boolean | null {
-  if (!control.combination || !live.combination) return null
-  const colonies = [...live.colonies, ...control.colonies]
-  const both = gather(colonies, heard, [...(live.drift ?? []), ...(control.drift ?? [])], atMs)
-  const overlap = both && overlapIn(both, control.combination.terms, live.combination.terms)
-  return overlap === null ? null : overlap < 0
-}
+const isTurned = (along: number | null): boolean | null => (along === null ? null : along < 0)

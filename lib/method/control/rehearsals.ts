@@ -1,9 +1,11 @@
 import type { ColonyOrders, PlacedSweepOrders } from '../orders'
+import type { Skill } from '../report'
 import type { Estimate, EvaluateInput, Evaluation } from './estimate'
 import { areUneven, firstColonies } from './rehearsal-start'
 import { COLONIES_EACH, LEAST_INTERVALS, type RehearsalFound, verdictNow } from './rehearsal-verdict'
 import { heardAgents, isAttached, type Snapshot } from './snapshot'
 import type { ControlState } from './state'
+import { totalsNow } from './totals-now'
 import { coloniesWithin, evaluateWithin, without } from './within'
 
 /** So many rehearsals may run in one overlay at once: each has four colonies of its own. */
@@ -203,7 +205,9 @@ function rehearseOne(
       },
     }
   const slots = { firstSlot, colonies: COLONIES_EACH, rehearses: one.place }
-  const isCold = one.isCold || (one.control !== null && areUneven(one.control, within, settings))
+  const before = input.before && without(input.before, one.refused)
+  const totals = totalsNow({ before, now: within, settings })
+  const isCold = one.isCold || (one.control !== null && areUneven(one.control, totals, settings))
   const control =
     one.control && isCold === one.isCold
       ? one.control
@@ -218,7 +222,7 @@ function rehearseOne(
     walkedMs: one.walkedMs + (one.control ? passedMs : 0),
     lastAtMs: now.atMs,
   }
-  const { found, ...counts } = verdictNow(walked, evaluation, live, { now: within, settings })
+  const { found, ...counts } = verdictNow(walked, evaluation, live, { now: within, totals, settings })
   const endsInMs = found.isSettled ? 0 : endsIn(walked, counts, evaluation.estimate, intervalMs)
   const share = walked.walkedMs / Math.max(1, walked.walkedMs + endsInMs)
   const progress = Math.max(one.progress, Math.min(0.95, share))
@@ -245,9 +249,10 @@ function rehearseOne(
 }
 
 function tooOldIn(now: Snapshot, intervalMs: number): string[] {
+  const skill: Skill = now.round === undefined ? 'rehearsal' : 'masked-rehearsal'
   return heardAgents(now, intervalMs)
     .filter(isAttached)
-    .filter(({ last }) => !last.report.node.skills?.includes('rehearsal'))
+    .filter(({ last }) => !last.report.node.skills?.includes(skill))
     .map(({ agentId }) => agentId)
 }
 

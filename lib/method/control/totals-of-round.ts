@@ -1,5 +1,5 @@
 import { Matrix } from 'ml-matrix'
-import type { RoundTotals } from '../mask'
+import type { RoundTotals, SweepContent, SweepLayout } from '../mask'
 import { LEAST_SIDE, mayCount } from '../node/round-of'
 import type { SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
@@ -30,18 +30,27 @@ export function totalsOfRound(round: RoundTotals, isNew: boolean): Totals {
     },
     driftOf: () => [],
     subspaceOf: (colonies) => subspaceOf(round, colonies),
-    // Rounds hold no counts of rehearsals.
-    cutOf: (combination, thresholds, place) =>
-      place === undefined ? cutOf(round, combination, thresholds) : undefined,
-    sidesOf: (sweep) =>
-      round.sweep && round.layout.sweep?.id === sweep && round.sweep.counted > 0
-        ? { above: round.sweep.above, nodes: round.sweep.counted }
-        : undefined,
+    cutOf: (combination, thresholds, place) => cutOf(round, combination, thresholds, place),
+    sidesOf: (sweep, place) => {
+      const { layout, content } = sweepIn(round, place)
+      return content && layout?.id === sweep && content.counted > 0
+        ? { above: content.above, nodes: content.counted }
+        : undefined
+    },
+    aloneIn: (place) => {
+      const placed = placedIn(round, place)
+      return placed && placed.counted > 0 ? placed.alone : null
+    },
+    // Of whatever combinations the agents had just then: their signs are kept from one to the next.
+    alongLive: (place) => placedIn(round, place)?.along || null,
   }
 }
 
 /** Where a colony's sums are. A seeding that the round did not know has none. */
-function place({ layout, groups }: RoundTotals, { colony, seeding }: ColonyControl) {
+function place(
+  { layout, groups }: RoundTotals,
+  { colony, seeding }: Pick<ColonyControl, 'colony' | 'seeding'>,
+) {
   for (const [at, group] of layout.groups.entries()) {
     const index = group.findIndex(([slot, known]) => slot === colony && known === seeding)
     if (index >= 0) return { group: groups[at]!, at, index }
@@ -74,13 +83,32 @@ function subspaceOf(round: RoundTotals, colonies: readonly ColonyControl[]): Sub
   }
 }
 
+const placedIn = ({ layout, sweeps }: RoundTotals, place: number) =>
+  sweeps?.[layout.sweeps?.findIndex((placed) => placed.place === place) ?? -1]
+
+/** The live combination's counts, or those of a rehearsal. */
+const sweepIn = (
+  round: RoundTotals,
+  place: number | undefined,
+): { layout: SweepLayout | null; content: SweepContent | null } =>
+  place === undefined
+    ? { layout: round.layout.sweep, content: round.sweep }
+    : {
+        layout: round.layout.sweeps?.find((placed) => placed.place === place) ?? null,
+        content: placedIn(round, place) ?? null,
+      }
+
 function cutOf(
-  { layout, sweep, head }: RoundTotals,
-  { id, sides }: Pick<SweepOrders, 'id' | 'sides'>,
+  round: RoundTotals,
+  { id, sides, terms }: Pick<SweepOrders, 'id' | 'sides' | 'terms'>,
   thresholds: readonly number[],
+  rehearsed: number | undefined,
 ): CutCount | null | undefined {
-  const isCounted = sweep && layout.sweep?.id === id && layout.sweep.thresholds === thresholds.length
-  if (!isCounted || sweep.counted === 0 || sweep.counted < head.agents) return undefined
+  const { layout, content: sweep } = sweepIn(round, rehearsed)
+  const isCounted = sweep && layout?.id === id && layout.thresholds === thresholds.length
+  const [term] = terms
+  const members = (term && place(round, term)?.group.members) ?? Number.POSITIVE_INFINITY
+  if (!isCounted || sweep.counted === 0 || sweep.counted < members) return undefined
   const counted = thresholds.flatMap((threshold, index): Counted[] => {
     const above = sweep.above[index]!
     const below = sweep.counted - above

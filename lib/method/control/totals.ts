@@ -1,6 +1,6 @@
 import type { SweepOrders } from '../orders'
 import type { ColonyDrift } from './alignment'
-import type { ColonyControl, CutCount } from './state'
+import type { ColonyControl, ControlState, CutCount } from './state'
 import type { Subspace } from './subspace'
 
 /** What one colony did since the last look, over all agents. */
@@ -33,10 +33,14 @@ export interface Totals {
    * @param place of the rehearsal it is counted for
    */
   cutOf(
-    combination: Pick<SweepOrders, 'id' | 'sides'>,
+    combination: Pick<SweepOrders, 'id' | 'sides' | 'terms'>,
     thresholds: readonly number[],
     place?: number,
   ): CutCount | null | undefined
   /** Nodes above each threshold at the last count, to be told to agents; undefined where they need not be. */
-  sidesOf(sweep: number): { above: readonly number[]; nodes: number } | undefined
+  sidesOf(sweep: number, place?: number): { above: readonly number[]; nodes: number } | undefined
+  /** Agents that remain in the rehearsal of this place and have no link left; null while none has told. */
+  aloneIn(place: number): number | null
+  /** Inner product of a rehearsal's values with the live ones, over the agents that remain; null where it cannot be told. */
+  alongLive(place: number, rehearsed: ControlState, live: ControlState): number | null
 }

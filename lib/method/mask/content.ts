@@ -4,11 +4,16 @@ import {
   HEAD_ENTRIES,
   type HeadEntry,
   type Layout,
+  PLACED_ENTRIES,
+  type PlacedEntry,
   SWEEP_ENTRIES,
   type SweepEntry,
+  type SweepLayout,
   sizeOf,
   triangle,
 } from './layout'
+
+export type SweepContent = { counted: number } & Record<SweepEntry, readonly number[]>
 
 /** What one agent adds to a round, or what all of them come to: whole numbers throughout. */
 export interface RoundContent {
@@ -21,12 +26,15 @@ export interface RoundContent {
     energies: readonly number[]
     moments: readonly number[]
   }[]
-  sweep: ({ counted: number } & Record<SweepEntry, readonly number[]>) | null
+  sweep: SweepContent | null
+  /** In the layout's order; absent where it has none. */
+  sweeps?: readonly (SweepContent & Record<PlacedEntry, number>)[]
 }
 
 /** The content's numbers in the layout's order, modulo 2⁶⁴. @throws RangeError where the content is of another layout */
 export function toVector(layout: Layout, content: RoundContent): BigUint64Array {
-  const { head, groups, sweep } = content
+  const { head, groups, sweep, sweeps = [] } = content
+  const counts = (of: SweepContent): number[] => [of.counted, ...SWEEP_ENTRIES.flatMap((key) => of[key])]
   const numbers = [
     ...HEAD_ENTRIES.map((key) => head[key]),
     ...groups.flatMap(({ members, colonies, energies, moments }) => [
@@ -35,7 +43,8 @@ export function toVector(layout: Layout, content: RoundContent): BigUint64Array 
       ...energies,
       ...moments,
     ]),
-    ...(sweep ? [sweep.counted, ...SWEEP_ENTRIES.flatMap((key) => sweep[key])] : []),
+    ...(sweep ? counts(sweep) : []),
+    ...sweeps.flatMap((placed) => [...counts(placed), ...PLACED_ENTRIES.map((key) => placed[key])]),
   ]
   if (numbers.length !== sizeOf(layout))
     throw new RangeError(`${numbers.length} numbers for ${sizeOf(layout)} entries`)
@@ -54,6 +63,12 @@ export function fromVector(layout: Layout, vector: BigUint64Array): RoundContent
     // Every key of the list is given a value; Object.fromEntries forgets which they are.
     return Object.fromEntries(keys.map((key, index) => [key, values[index]!])) as Record<K, number>
   }
+  const counts = ({ thresholds }: SweepLayout): SweepContent => ({
+    counted: take(1)[0]!,
+    above: take(thresholds),
+    crossing: take(thresholds),
+    crossingWeight: take(thresholds),
+  })
   return {
     head: record(HEAD_ENTRIES),
     groups: layout.groups.map(({ length }) => ({
@@ -62,11 +77,9 @@ export function fromVector(layout: Layout, vector: BigUint64Array): RoundContent
       energies: take(triangle(length)),
       moments: take(triangle(length)),
     })),
-    sweep: layout.sweep && {
-      counted: take(1)[0]!,
-      above: take(layout.sweep.thresholds),
-      crossing: take(layout.sweep.thresholds),
-      crossingWeight: take(layout.sweep.thresholds),
-    },
+    sweep: layout.sweep && counts(layout.sweep),
+    ...(layout.sweeps && {
+      sweeps: layout.sweeps.map((placed) => ({ ...counts(placed), ...record(PLACED_ENTRIES) })),
+    }),
   }
 }

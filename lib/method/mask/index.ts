@@ -1,12 +1,13 @@
 export { Agreement, MOST_ROUNDS, type RoundSaying } from './agreement'
 export { closeRound, type RoundTotals } from './close'
-export { fromVector, type RoundContent, toVector } from './content'
+export { fromVector, type RoundContent, type SweepContent, toVector } from './content'
 export {
   COLONY_ENTRIES,
   HEAD_ENTRIES,
   type HeadEntry,
   type Layout,
   type RoundOrders,
+  type SweepLayout,
   sizeOf,
   triangle,
 } from './layout'

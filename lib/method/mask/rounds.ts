@@ -57,11 +57,11 @@ export class Rounds {
 
   /** Orders announce rounds. Ages only ever count too long: of several the latest moment is the nearest to the truth. */
   hear(rounds: readonly RoundOrders[], issuedAtMs: number): void {
-    for (const { number, fromAgeMs, groups, sweep } of rounds) {
+    for (const { number, fromAgeMs, ...layout } of rounds) {
       if (number <= this.over) continue
       const dueAtMs = issuedAtMs + fromAgeMs
       const known = this.known.get(number)
-      if (!known) this.known.set(number, { layout: { groups, sweep }, dueAtMs, isTaken: false })
+      if (!known) this.known.set(number, { layout, dueAtMs, isTaken: false })
       else known.dueAtMs = Math.max(known.dueAtMs, dueAtMs)
     }
     const oldest = [...this.known.keys()].sort((a, b) => b - a)[2 * MOST_WAITING]

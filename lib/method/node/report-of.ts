@@ -164,6 +164,7 @@ function unnamedReport(now: ReportCase, host: HostFacts, nowMs: number): Report 
       links: orders ? namedLinks(orders, own, valued, now.consents) : [],
       version,
       uptimeSeconds,
+      skills: SKILLS,
       ...(health && { health: unnamedHealth(health) }),
     },
     ...(masked && masked.length > 0 && { masked }),

@@ -1,11 +1,11 @@
-import type { HeadEntry, Layout, RoundContent } from '../mask'
-import type { Orders } from '../orders'
+import type { HeadEntry, Layout, RoundContent, SweepContent, SweepLayout } from '../mask'
+import type { Orders, SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
 import type { Colony } from './colony'
 import { measuredLink, valuedLink } from './live-link'
 import type { HostFacts, LiveLink } from './report-of'
 import { meanIn, weightOf } from './report-of'
-import { colonySums, energiesAndMoments, fiedlerValue, sweepSums } from './sums'
+import { colonySums, energiesAndMoments, fiedlerValue, fixed, sweepSums } from './sums'
 
 export interface RoundCase {
   orders: Orders | null
@@ -48,7 +48,8 @@ export function roundOf(layout: Layout, now: RoundCase): RoundContent {
   return {
     head,
     groups: layout.groups.map((group) => groupOf(group, now, attached, measured)),
-    sweep: layout.sweep && sweepOf(layout.sweep, now, measured),
+    sweep: layout.sweep && sweepOf(layout.sweep, now.orders?.sweep ?? null, now, measured).content,
+    ...(layout.sweeps && { sweeps: layout.sweeps.map((placed) => placedOf(placed, now, measured)) }),
   }
 }
 
@@ -90,24 +91,49 @@ function groupOf(
 export const LEAST_SIDE = 5
 
 function sweepOf(
-  { id, thresholds }: NonNullable<Layout['sweep']>,
-  { orders, colonies }: RoundCase,
+  { id, thresholds }: SweepLayout,
+  sweep: SweepOrders | null,
+  { colonies }: RoundCase,
   measured: Measured,
-): NonNullable<RoundContent['sweep']> {
+): { content: SweepContent; own: number | null; linkEnds: number } {
   const nothing = new Array<number>(thresholds).fill(0)
-  const sweep = orders?.sweep
   const isKnown = sweep?.id === id && sweep.thresholds.length === thresholds
   const own = isKnown && measured.length > 0 ? fiedlerValue(sweep, meanIn(colonies)) : null
   if (!isKnown || own === null)
-    return { counted: 0, above: nothing, crossing: nothing, crossingWeight: nothing }
-  const peers = measured.map((link) => valuedLink(link, orders?.sweep ?? null, colonies))
+    return {
+      content: { counted: 0, above: nothing, crossing: nothing, crossingWeight: nothing },
+      own: null,
+      linkEnds: 0,
+    }
+  const peers = measured.map((link) => valuedLink(link, sweep, colonies))
   const { above, crossing, crossingWeight } = sweepSums(sweep, own, peers)
   const may = sweep.thresholds.map((_, index) => mayCount(sweep.sides, index))
   return {
-    counted: 1,
-    above,
-    crossing: crossing.map((count, index) => (may[index] ? count : 0)),
-    crossingWeight: crossingWeight.map((weight, index) => (may[index] ? weight : 0)),
+    content: {
+      counted: 1,
+      above,
+      crossing: crossing.map((count, index) => (may[index] ? count : 0)),
+      crossingWeight: crossingWeight.map((weight, index) => (may[index] ? weight : 0)),
+    },
+    own,
+    linkEnds: peers.filter(({ value }) => value !== null).length,
+  }
+}
+
+/** Of a rehearsal; whoever is taken away in it has no value there, and counts nothing. */
+function placedOf(
+  layout: NonNullable<Layout['sweeps']>[number],
+  now: RoundCase,
+  measured: Measured,
+): NonNullable<RoundContent['sweeps']>[number] {
+  const { orders, colonies } = now
+  const sweep = orders?.sweeps?.find(({ place }) => place === layout.place) ?? null
+  const { content, own, linkEnds } = sweepOf(layout, sweep, now, measured)
+  const live = orders?.sweep ? fiedlerValue(orders.sweep, meanIn(colonies)) : null
+  return {
+    ...content,
+    alone: own !== null && linkEnds === 0 ? 1 : 0,
+    along: own !== null && live !== null ? fixed(own * live) : 0,
   }
 }
 

@@ -11,7 +11,7 @@ export interface MeasuredLink {
 }
 
 /** Fixed point, held within what is summed exactly: one wild neighbour must not make this agent's report unreadable. */
-const fixed = (value: number): number =>
+export const fixed = (value: number): number =>
   Math.max(Number.MIN_SAFE_INTEGER, Math.min(Number.MAX_SAFE_INTEGER, Math.round(value * SUMS_SCALE)))
 
 export function colonySums(colony: Colony, attached: boolean): ColonySums {

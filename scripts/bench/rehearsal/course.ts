@@ -1,5 +1,6 @@
 import { type ControlSettings, DEFAULT_SETTINGS, type RehearsalEstimate } from '@/lib/method/control'
 import { components, edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
+import type { Disclosure } from '@/lib/method/orders'
 import { PACES, type PaceName } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { Simulation } from '@/lib/method/simulate'
@@ -38,11 +39,15 @@ export interface RehearsalRun {
 export function runRehearsals(
   topology: Topology,
   drains: readonly Drain[],
-  init: { seed: string; pace: PaceName; audits?: boolean },
+  init: { seed: string; pace: PaceName; disclosure: Disclosure; audits?: boolean },
   trace?: (simulation: Simulation, one: RehearsalEstimate) => void,
 ): RehearsalRun[] {
   const { graph, name } = topology
-  const settings: ControlSettings = { ...DEFAULT_SETTINGS, pace: PACES[init.pace], disclosure: 'named' }
+  const settings: ControlSettings = {
+    ...DEFAULT_SETTINGS,
+    pace: PACES[init.pace],
+    disclosure: init.disclosure,
+  }
   const simulation = new Simulation(
     { random: createRandom(init.seed) },
     {

@@ -18,7 +18,7 @@ const drainsFor = (name: string, what: readonly string[]) => {
 describe('a rehearsal, on simulated overlays', () => {
   it('reads what would remain within 5 %, in 90 s, with the links that cross, while the live reading stays within 2 %', () => {
     const { topology, drains } = drainsFor('two clusters', ['10 %', 'label'])
-    const runs = runRehearsals(topology, drains, { seed: 'a', pace: 'brisk' })
+    const runs = runRehearsals(topology, drains, { seed: 'a', pace: 'brisk', disclosure: 'named' })
     // Five links join the clusters; those at nodes that are taken away go with them.
     expect(runs.map(({ what, state, isApart, crossing }) => [what, state, isApart, crossing])).toEqual([
       ['10 %', 'settled', false, 4],
@@ -35,7 +35,11 @@ describe('a rehearsal, on simulated overlays', () => {
     const graph = twoClusters({ perSide: 10, degree: 4, links: 2 }, createRandom('rehearsed alone'))
     const side = Array.from({ length: 10 }, (_, node) => node)
     const topology = { name: 'two', graph, labels: [] }
-    const [run] = runRehearsals(topology, [{ what: 'label', nodes: side }], { seed: 'a', pace: 'brisk' })
+    const [run] = runRehearsals(topology, [{ what: 'label', nodes: side }], {
+      seed: 'a',
+      pace: 'brisk',
+      disclosure: 'named',
+    })
     // The clones all stood at one side with one type: the colonies are seeded anew.
     expect(run).toMatchObject({ state: 'settled', isApart: false, isCold: true })
     expect(Math.abs((run?.reading ?? 0) / (run?.exact ?? 1) - 1)).toBeLessThan(0.05)
@@ -67,7 +71,7 @@ describe('a rehearsal, on simulated overlays', () => {
 
   it('says that what remains falls apart', () => {
     const { topology, drains } = drainsFor('Zachary', ['label'])
-    expect(runRehearsals(topology, drains, { seed: 'a', pace: 'brisk' })).toMatchObject([
+    expect(runRehearsals(topology, drains, { seed: 'a', pace: 'brisk', disclosure: 'named' })).toMatchObject([
       { state: 'settled', isApart: true, exact: 0 },
     ])
   })
