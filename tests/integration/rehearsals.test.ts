@@ -117,11 +117,19 @@ describe('a rehearsal', () => {
     expect(await problemOf(await as('viewer', read, 'GET', { id: 'none' }))).toEqual([404, 'not-found'])
   })
 
-  it.each(['sealed', 'flagged'] as const)('is refused in overlays that are %s', async (disclosure) => {
-    await join(['tar-01', 'tar-02', 'eel-01'])
-    await seeded.em().nativeUpdate(OverlaySchema, { id: seeded.overlay.id }, { disclosure })
-    expect(await detailOf({ exclude: { nodes: ['tar-01'] } })).toBe(
-      `400 This overlay is ${disclosure}: its agents hand over sums of all of them only, and what would remain without some cannot be told from those yet. Rehearsals need a named overlay.`,
-    )
-  })
+  it.each(['sealed', 'flagged'] as const)(
+    'takes nodes, but neither links nor most of the nodes, in overlays that are %s',
+    async (disclosure) => {
+      await join(['tar-01', 'tar-02', 'tar-03', 'eel-01', 'eel-02'])
+      await seeded.em().nativeUpdate(OverlaySchema, { id: seeded.overlay.id }, { disclosure })
+      const asked = await as('operator', start, 'POST', { body: { exclude: { nodes: ['tar-01'] } } })
+      expect(asked.status).toBe(201)
+      expect(await detailOf({ exclude: { links: [['tar-01', 'tar-02']] } })).toBe(
+        `400 This overlay is ${disclosure}: without a link its walkers would tell whether it is there. Take nodes or labels away, or rehearse links in a named overlay.`,
+      )
+      expect(await detailOf({ exclude: { nodes: ['tar-01', 'tar-02', 'eel-01'] } })).toBe(
+        `400 2 of 5 nodes would remain. This overlay is ${disclosure}: what holds a few nodes together would tell their links, so at least half must remain.`,
+      )
+    },
+  )
 })

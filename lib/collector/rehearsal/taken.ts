@@ -5,6 +5,8 @@ import { countOf, listOf } from '../words'
 /** Orders name each of them once per colony, a link by both ends: more would make orders too long for a link's frame. */
 export const MOST_TAKEN_NAMES = 1_000
 export const LEAST_REMAIN = 2
+/** Where links are not named: of two nodes alone the answer would be whether they are linked. */
+export const LEAST_SHARE_UNNAMED = 1 / 2
 
 export interface TakableAgent {
   agentId: string
@@ -51,15 +53,6 @@ export function takenOf(
   isAsked: boolean,
 ): { taken: Taken } | { problems: TakenProblem[] } {
   const { nodes, links, labels, between } = exclude
-  if (from.disclosure !== 'named')
-    return {
-      problems: [
-        {
-          path: 'exclude',
-          message: `This overlay is ${from.disclosure}: its agents hand over sums of all of them only, and what would remain without some cannot be told from those yet. Rehearsals need a named overlay.`,
-        },
-      ],
-    }
   const problems: TakenProblem[] = []
   const own = from.agents.filter(({ isOwn = true }) => isOwn)
   const byName = new Map(own.map((agent) => [agent.name, agent]))
@@ -81,7 +74,14 @@ export function takenOf(
       .filter((agent) => labels.some(({ key, value }) => agent.labels[key] === value))
       .map(({ agentId }) => agentId),
   ])
-  const pairs = links.length + between.length > 0 ? pairsOf(exclude, from, isAsked, say) : []
+  const isNamed = from.disclosure === 'named'
+  const isLinks = links.length + between.length > 0
+  if (isLinks && !isNamed)
+    say(
+      links.length > 0 ? 'exclude.links' : 'exclude.between',
+      `This overlay is ${from.disclosure}: without a link its walkers would tell whether it is there. Take nodes or labels away, or rehearse links in a named overlay.`,
+    )
+  const pairs = isLinks && isNamed ? pairsOf(exclude, from, isAsked, say) : []
   const remaining = pairs.filter(([a, b]) => !gone.has(a) && !gone.has(b))
   const remain = from.agents.length - gone.size
   if (gone.size + 2 * remaining.length > MOST_TAKEN_NAMES)
@@ -91,6 +91,11 @@ export function takenOf(
     )
   if (remain < LEAST_REMAIN)
     say('exclude', `${remain === 0 ? 'No node' : 'One node'} would remain. Leave at least ${LEAST_REMAIN}.`)
+  else if (!isNamed && remain < LEAST_SHARE_UNNAMED * from.agents.length)
+    say(
+      'exclude',
+      `${remain} of ${countOf(from.agents.length, 'node')} would remain. This overlay is ${from.disclosure}: what holds a few nodes together would tell their links, so at least half must remain.`,
+    )
   if (problems.length > 0) return { problems }
   if (gone.size === 0 && remaining.length === 0)
     return {

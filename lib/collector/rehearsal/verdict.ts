@@ -16,7 +16,7 @@ export function verdictSentence(
     const why =
       alone > 0
         ? `${countOf(alone, 'node')} would have no link left`
-        : sides
+        : sides && crossingLinks === 0
           ? `no link would join ${countOf(sides[0].nodes, 'node')} and ${countOf(sides[1].nodes, 'node')}`
           : 'what remains would fall apart'
     return `It splits. ${without} ${why}.${apart}`

@@ -126,8 +126,14 @@ describe('what is said of the answer', () => {
       'It splits. Without tar-01 1 node would have no link left.',
     ],
     [
+      'splits, while the cut that was counted is another',
+      { answer: 'splits', crossingLinks: 2 },
+      plain,
+      'It splits. Without tar-01 what remains would fall apart.',
+    ],
+    [
       'splits in two',
-      { answer: 'splits' },
+      { answer: 'splits', crossingLinks: 0 },
       plain,
       'It splits. Without tar-01 no link would join 5 nodes and 6 nodes.',
     ],

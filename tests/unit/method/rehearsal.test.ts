@@ -1,12 +1,12 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
-import { edgesOf } from '@/lib/method/graph'
+import { edgesOf, fromEdges } from '@/lib/method/graph'
 import { twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { Simulation } from '@/lib/method/simulate'
 import { drainsOf, topologies } from '@/scripts/bench/rehearsal/cases'
-import { runRehearsals } from '@/scripts/bench/rehearsal/course'
+import { exactWithout, runRehearsals } from '@/scripts/bench/rehearsal/course'
 
 const drainsFor = (name: string, what: readonly string[]) => {
   const topology = topologies().find((each) => each.name.startsWith(name))
@@ -29,6 +29,35 @@ describe('a rehearsal, on simulated overlays', () => {
       expect(seconds).toBeLessThan(90)
       expect(liveOff).toBeLessThan(0.02)
     }
+  })
+
+  it('reads what would remain where sums are masked, from totals alone, and which side is which', () => {
+    // Nine nodes and six, two links between them.
+    const circle = (from: number, size: number): [number, number][] =>
+      [1, 2].flatMap((step) =>
+        Array.from({ length: size }, (_, at): [number, number] => [from + at, from + ((at + step) % size)]),
+      )
+    const crossing: [number, number][] = [
+      [0, 9],
+      [4, 12],
+    ]
+    const graph = fromEdges(15, [...circle(0, 9), ...circle(9, 6), ...crossing])
+    const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
+    const settings = { ...DEFAULT_SETTINGS, pace: PACES.brisk, disclosure: 'sealed' as const }
+    const simulation = new Simulation(
+      { random: createRandom('sealed') },
+      { nodes: 15, links, settings, audits: false },
+    )
+    simulation.run(40_000)
+    simulation.rehearsed = [{ id: 'one', agents: ['node-2'], links: [] }]
+    const tookMs = simulation.runUntil(() => simulation.rehearsals[0]?.state === 'settled', 90_000)
+    expect(tookMs).not.toBeNull()
+    const { found, estimate } = simulation.rehearsals[0]!
+    expect(Math.abs((estimate?.lambda2 ?? 0) / exactWithout(graph, [2]) - 1)).toBeLessThan(0.05)
+    const [live, rehearsed] = [simulation.estimate!.cut!, estimate!.cut!]
+    expect([live.links, [live.above, live.below].sort()]).toEqual([2, [6, 9]])
+    expect([rehearsed.links, [rehearsed.above, rehearsed.below].sort()]).toEqual([2, [6, 8]])
+    expect(found?.isTurned).toBe((live.above === 6) !== (rehearsed.above === 6))
   })
 
   it('reads one cluster alone, which is twenty times as firm as the whole, at a rate of its own', () => {

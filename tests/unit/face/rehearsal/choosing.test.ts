@@ -66,8 +66,20 @@ describe('what stands against a rehearsal', () => {
     ).toEqual(['No node would remain. Leave at least 2.']))
   it('is naming links where they are not named', () =>
     expect(problems({ links: [['tar-01', 'eel-01']] }, sealed)).toEqual([
-      expect.stringContaining('This overlay is sealed'),
+      'This overlay is sealed: without a link its walkers would tell whether it is there. Take nodes or labels away, or rehearse links in a named overlay.',
     ]))
+  it('is that fewer than half would remain where links are not named', () => {
+    const labels = ['Tarnwick', 'Eelholm'].map((value) => ({ key: 'office', value }))
+    const joined = chosenOf({ ...NOTHING, labels }, named)
+    const remain = joined.joined - joined.nodes.length
+    expect(remain).toBeGreaterThanOrEqual(2)
+    expect(remain).toBeLessThan(joined.joined / 2)
+    expect(joined.problems).toEqual([])
+    expect(problems({ labels }, sealed)).toEqual([
+      `${remain} of ${joined.joined} nodes would remain. This overlay is sealed: what holds a few nodes together would tell their links, so at least half must remain.`,
+    ])
+    expect(problems({ nodes: ['tar-01'] }, sealed)).toEqual([])
+  })
   it('is a link that is lost', () =>
     expect(problems({ links: [['tar-02', 'tar-01']] })).toEqual([
       'There is no link tar-02 – tar-01 now. Choose links that are measured.',
