@@ -181,6 +181,15 @@ const FRAMES_OF_VERSION_2: readonly { about: string; frame: Frame }[] = [
       },
     },
   },
+  {
+    about: 'masked rounds that the sender is ready for, and those it has heard of',
+    frame: {
+      ...plain,
+      ...later,
+      number: 5_400,
+      rounds: { ready: [1_201, 1_202, 1_330], heard: [Number.MAX_SAFE_INTEGER] },
+    },
+  },
 ]
 
 /** Frames that use every field a version has. */

@@ -44,108 +44,109 @@ const drains = ({ graph, labels }: Topology) => {
   return { '1 %': [0], '3 %': [graph.nodes - 1], '10 %': every(first(0.1)), label: labelled }
 }
 
-describe.each([row, ...harbourline].map((topology) => [topology.name, topology] as const))(
-  'a fleet over WebSocket, %s',
-  (_name, topology) => {
-    const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
-    const server = createRouteServer({
-      'POST /api/agent/enrol': enrol,
-      'POST /api/agent/session': session,
-      'POST /api/agent/report': report,
-      'GET /api/agent/directory': directory,
-    })
-    let team: TestTeam
-    let overlay: { id: string; slug: string }
-    let leader: TestLeader
-    let fleet: Fleet
-    const freshValues = async (): Promise<number[]> => {
-      const rows = await team.database.orm.em
-        .fork()
-        .find(ReadingSchema, { overlayId: overlay.id, data: 'fresh' }, { orderBy: { at: 'desc' }, limit: 40 })
-      return rows.flatMap(({ lambda2 }) => lambda2 ?? [])
-    }
+const cases = [row, ...harbourline].flatMap((topology) =>
+  (['named', 'sealed'] as const).map((disclosure) => [topology.name, disclosure, topology] as const),
+)
 
-    beforeAll(async () => {
-      team = await openTestTeam()
-      overlay = await seedOverlay(team.database, team.teamId, { slug: 'tides', pace: 'brisk' })
-      leader = startTestLeader(team.database, 7)
-      await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
-      const { port } = server.address() as AddressInfo
-      const edges = parseEdgeList(
-        edgesOf(topology.graph)
-          .map(([a, b]) => `${nameOf(a)},${nameOf(b)}`)
-          .join('\n'),
-      )
-      const nodes = parseNodeList(
-        `name,office\n${topology.labels.map((label, node) => `${nameOf(node)},office ${label}`).join('\n')}`,
-      )
-      if (!edges.ok || !nodes.ok) throw new Error('bad lists')
-      fleet = createFleet(
-        {
-          transport: createWsTransport({ clock }),
-          collector: createHttpCollector(
-            { post: createPost(), clock },
-            { baseUrl: `http://127.0.0.1:${port}` },
-          ),
-          clockOf: () => clock,
-          clock,
-          random: createRandom('rehearsed fleet'),
-          randomBytes,
-          logger: silentLogger,
-        },
-        {
-          topology: edges.graph,
-          labels: nodes.nodes,
-          weights: 'unit',
-          code: await seedCode(team.database, overlay.id, { uses: topology.graph.nodes }),
-        },
-      )
-      await fleet.start()
-      await until(async () => (await freshValues()).length >= 40, { patienceMs: PATIENCE_MS })
-    }, PATIENCE_MS)
-    afterAll(async () => {
-      await fleet?.stop()
-      await leader?.stop()
-      await new Promise((resolve) => server.close(resolve))
-      await team?.close()
-    })
+describe.each(cases)('a fleet over WebSocket, %s, %s', (_name, disclosure, topology) => {
+  const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
+  const server = createRouteServer({
+    'POST /api/agent/enrol': enrol,
+    'POST /api/agent/session': session,
+    'POST /api/agent/report': report,
+    'GET /api/agent/directory': directory,
+  })
+  let team: TestTeam
+  let overlay: { id: string; slug: string }
+  let leader: TestLeader
+  let fleet: Fleet
+  const freshValues = async (): Promise<number[]> => {
+    const rows = await team.database.orm.em
+      .fork()
+      .find(ReadingSchema, { overlayId: overlay.id, data: 'fresh' }, { orderBy: { at: 'desc' }, limit: 40 })
+    return rows.flatMap(({ lambda2 }) => lambda2 ?? [])
+  }
 
-    const asked = async (handler: RouteHandler, method: string, init: { id?: string; body?: unknown }) => {
-      const { id, body } = init
-      const params = { slug: overlay.slug, ...(id === undefined ? {} : { id }) }
-      const response = await ask(handler, method, { bearer: team.token('operator'), params, body })
-      return rehearsalSchema.parse(await response.json())
-    }
-
-    it.each(['1 %', '3 %', '10 %', 'label'] as const)(
-      `draining %s reads what remains within 5 %`,
-      async (what) => {
-        const nodes = drains(topology)[what]
-        const exact = exactWithout(topology.graph, nodes)
-        const before = await freshValues()
-        const was = before.reduce((sum, value) => sum + value, 0) / before.length
-        const exclude =
-          what === 'label' ? { labels: [{ key: 'office', value: 'office 0' }] } : { nodes: nodes.map(nameOf) }
-        const { id } = await asked(start, 'POST', { body: { exclude } })
-        let last: RehearsalDto | undefined
-        await until(
-          async () => {
-            last = await asked(read, 'GET', { id })
-            // Waves come after the answer.
-            return last.answer !== null || last.state === 'failed'
-          },
-          { patienceMs: PATIENCE_MS, explain: () => JSON.stringify(last) },
-        )
-        const live = await freshValues()
-        const off = (last?.reading?.lambda2 ?? 0) / exact - 1
-        const moved = live.slice(0, 5).reduce((most, value) => Math.max(most, Math.abs(value / was - 1)), 0)
-        process.stdout.write(
-          `${topology.name.padEnd(22)} ${what.padEnd(6)} exact ${exact.toFixed(4)}, read ${last?.reading?.lambda2.toFixed(4)} (${(100 * off).toFixed(1)} %), ${last?.answer}, live moved ${(100 * moved).toFixed(1)} %\n`,
-        )
-        expect(last?.answer, last?.verdict ?? '').not.toBeNull()
-        if (exact === 0) expect(last?.answer).toBe('splits')
-        else expect(Math.abs(off)).toBeLessThan(WITHIN)
+  beforeAll(async () => {
+    team = await openTestTeam()
+    overlay = await seedOverlay(team.database, team.teamId, { slug: 'tides', pace: 'brisk', disclosure })
+    leader = startTestLeader(team.database, 7)
+    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
+    const { port } = server.address() as AddressInfo
+    const edges = parseEdgeList(
+      edgesOf(topology.graph)
+        .map(([a, b]) => `${nameOf(a)},${nameOf(b)}`)
+        .join('\n'),
+    )
+    const nodes = parseNodeList(
+      `name,office\n${topology.labels.map((label, node) => `${nameOf(node)},office ${label}`).join('\n')}`,
+    )
+    if (!edges.ok || !nodes.ok) throw new Error('bad lists')
+    fleet = createFleet(
+      {
+        transport: createWsTransport({ clock }),
+        collector: createHttpCollector(
+          { post: createPost(), clock },
+          { baseUrl: `http://127.0.0.1:${port}` },
+        ),
+        clockOf: () => clock,
+        clock,
+        random: createRandom('rehearsed fleet'),
+        randomBytes,
+        logger: silentLogger,
+      },
+      {
+        topology: edges.graph,
+        labels: nodes.nodes,
+        weights: 'unit',
+        code: await seedCode(team.database, overlay.id, { uses: topology.graph.nodes }),
       },
     )
-  },
-)
+    await fleet.start()
+    await until(async () => (await freshValues()).length >= 40, { patienceMs: PATIENCE_MS })
+  }, PATIENCE_MS)
+  afterAll(async () => {
+    await fleet?.stop()
+    await leader?.stop()
+    await new Promise((resolve) => server.close(resolve))
+    await team?.close()
+  })
+
+  const asked = async (handler: RouteHandler, method: string, init: { id?: string; body?: unknown }) => {
+    const { id, body } = init
+    const params = { slug: overlay.slug, ...(id === undefined ? {} : { id }) }
+    const response = await ask(handler, method, { bearer: team.token('operator'), params, body })
+    return rehearsalSchema.parse(await response.json())
+  }
+
+  it.each(['1 %', '3 %', '10 %', 'label'] as const)(
+    `draining %s reads what remains within 5 %`,
+    async (what) => {
+      const nodes = drains(topology)[what]
+      const exact = exactWithout(topology.graph, nodes)
+      const before = await freshValues()
+      const was = before.reduce((sum, value) => sum + value, 0) / before.length
+      const exclude =
+        what === 'label' ? { labels: [{ key: 'office', value: 'office 0' }] } : { nodes: nodes.map(nameOf) }
+      const { id } = await asked(start, 'POST', { body: { exclude } })
+      let last: RehearsalDto | undefined
+      await until(
+        async () => {
+          last = await asked(read, 'GET', { id })
+          // Waves come after the answer.
+          return last.answer !== null || last.state === 'failed'
+        },
+        { patienceMs: PATIENCE_MS, explain: () => JSON.stringify(last) },
+      )
+      const live = await freshValues()
+      const off = (last?.reading?.lambda2 ?? 0) / exact - 1
+      const moved = live.slice(0, 5).reduce((most, value) => Math.max(most, Math.abs(value / was - 1)), 0)
+      process.stdout.write(
+        `${topology.name.padEnd(22)} ${disclosure} ${what.padEnd(6)} exact ${exact.toFixed(4)}, read ${last?.reading?.lambda2.toFixed(4)} (${(100 * off).toFixed(1)} %), ${last?.answer}, live moved ${(100 * moved).toFixed(1)} %\n`,
+      )
+      expect(last?.answer, last?.verdict ?? '').not.toBeNull()
+      if (exact === 0) expect(last?.answer).toBe('splits')
+      else expect(Math.abs(off)).toBeLessThan(WITHIN)
+    },
+  )
+})

@@ -1,5 +1,6 @@
 import fc from 'fast-check'
 import type { CollectorDistance, ColonyFrame, Frame, OrdersProof } from '@/lib/method/frame'
+import { MOST_ROUNDS } from '@/lib/method/mask'
 import type { Orders } from '@/lib/method/orders'
 import type { SignedStatement } from '@/lib/method/statement'
 
@@ -138,17 +139,35 @@ export const anyFrameOfVersion1: fc.Arbitrary<Frame> = fc.record({
   orders: fc.option(fc.record({ orders: fc.constant(someOrders()), ageMs: fc.nat() })),
 })
 
+const roundNumbers = fc
+  .uniqueArray(count, { maxLength: MOST_ROUNDS })
+  .map((numbers) => numbers.toSorted((a, b) => a - b))
+/** The part is left out where there is nothing to say. */
+const rounds = fc
+  .record({ ready: roundNumbers, heard: roundNumbers })
+  .filter(({ ready, heard }) => ready.length + heard.length > 0)
+
 /** Any frame the codec keeps exactly. */
-export const anyFrame: fc.Arbitrary<Frame> = fc.record({
-  ...frameOfVersion1,
-  orders: fc.option(
-    fc.record({
-      orders: fc.constant(someOrders()),
-      ageMs: fc.nat(),
-      proof: fc.record({ text: fc.constant(JSON.stringify(someOrders())), key: raw(32), signature: raw(64) }),
-    }),
-  ),
-  distance: fc.constantFrom<CollectorDistance[]>(0, 1, 2, 3),
-  heardFrames: count,
-  statement: fc.option(signedStatement),
-})
+export const anyFrame: fc.Arbitrary<Frame> = fc
+  .tuple(anyFrameWithoutRounds(), fc.option(rounds))
+  .map(([frame, said]) => (said ? { ...frame, rounds: said } : frame))
+
+function anyFrameWithoutRounds(): fc.Arbitrary<Frame> {
+  return fc.record({
+    ...frameOfVersion1,
+    orders: fc.option(
+      fc.record({
+        orders: fc.constant(someOrders()),
+        ageMs: fc.nat(),
+        proof: fc.record({
+          text: fc.constant(JSON.stringify(someOrders())),
+          key: raw(32),
+          signature: raw(64),
+        }),
+      }),
+    ),
+    distance: fc.constantFrom<CollectorDistance[]>(0, 1, 2, 3),
+    heardFrames: count,
+    statement: fc.option(signedStatement),
+  })
+}

@@ -42,8 +42,14 @@ export function verdictNow(
   { control, estimate }: Evaluation,
   { headline }: Live,
   { now, totals, settings }: { now: Snapshot; totals: Totals; settings: ControlSettings },
-): { found: RehearsalFound } & Pick<RehearsalControl, 'agreedSinceMs' | 'apartSinceMs'> {
-  const alone = totals.aloneIn(one.place)
+): { found: RehearsalFound } & Pick<
+  RehearsalControl,
+  'agreedSinceMs' | 'apartSinceMs' | 'alone' | 'isTurned'
+> {
+  // Sums of a round are counted by the combination that was new when it was announced: some rounds tell nothing of it.
+  const alone = totals.aloneIn(one.place, control) ?? one.alone ?? null
+  const along = totals.alongLive(one.place, control, headline.control)
+  const isTurned = along === null ? (one.isTurned ?? null) : along < 0
   const { lambda2, cut, settling, withheld } = estimate
   const isNothing = lambda2 !== null && lambda2 < NEXT_TO_NOTHING * control.meanWeightedDegree
   const age = one.walkedMs / settings.pace.intervalMs
@@ -73,11 +79,11 @@ export function verdictNow(
       isApart: isLong(apartSinceMs),
       alone,
       halves,
-      isTurned: isGood ? isTurned(totals.alongLive(one.place, control, headline.control)) : null,
+      isTurned: isGood ? isTurned : null,
     },
     agreedSinceMs,
     apartSinceMs,
+    alone,
+    isTurned,
   }
 }
-
-const isTurned = (along: number | null): boolean | null => (along === null ? null : along < 0)

@@ -51,6 +51,9 @@ export interface RehearsalControl {
   /** Since when its colonies have agreed on one value, and on that nothing holds together; null while they do not. */
   agreedSinceMs: number | null
   apartSinceMs: number | null
+  /** As last told, of what the orders refused then. Absent before it was, and in states of before they were kept. */
+  alone?: number | null
+  isTurned?: boolean | null
   progress: number
 }
 
@@ -217,6 +220,8 @@ function rehearseOne(
   const passedMs = evaluation.estimate.withheld === 'unheard' ? 0 : now.atMs - one.lastAtMs
   const walked = {
     ...one,
+    // What was told before is of other walkers.
+    ...(isCold !== one.isCold && { alone: null, isTurned: null }),
     isCold,
     control: evaluation.control,
     walkedMs: one.walkedMs + (one.control ? passedMs : 0),

@@ -5,7 +5,7 @@ import type { SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
 import { bestOf, type Counted } from './cut'
 import { fromUpperTriangle } from './ritz'
-import type { ColonyControl, CutCount } from './state'
+import type { ColonyControl, ControlState, CutCount } from './state'
 import type { Subspace } from './subspace'
 import type { ColonyRates, Totals } from './totals'
 
@@ -37,12 +37,9 @@ export function totalsOfRound(round: RoundTotals, isNew: boolean): Totals {
         ? { above: content.above, nodes: content.counted }
         : undefined
     },
-    aloneIn: (place) => {
-      const placed = placedIn(round, place)
-      return placed && placed.counted > 0 ? placed.alone : null
-    },
+    aloneIn: (place, rehearsed) => wholePlacedIn(round, place, rehearsed)?.alone ?? null,
     // Of whatever combinations the agents had just then: their signs are kept from one to the next.
-    alongLive: (place) => placedIn(round, place)?.along || null,
+    alongLive: (place, rehearsed) => wholePlacedIn(round, place, rehearsed)?.along || null,
   }
 }
 
@@ -85,6 +82,13 @@ function subspaceOf(round: RoundTotals, colonies: readonly ColonyControl[]): Sub
 
 const placedIn = ({ layout, sweeps }: RoundTotals, place: number) =>
   sweeps?.[layout.sweeps?.findIndex((placed) => placed.place === place) ?? -1]
+
+/** Only where all that remain counted. */
+function wholePlacedIn(round: RoundTotals, at: number, { colonies }: ControlState) {
+  const counts = placedIn(round, at)
+  const members = colonies[0] && place(round, colonies[0])?.group.members
+  return counts && members !== undefined && counts.counted > 0 && counts.counted >= members ? counts : null
+}
 
 /** The live combination's counts, or those of a rehearsal. */
 const sweepIn = (

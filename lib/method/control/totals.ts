@@ -39,8 +39,8 @@ export interface Totals {
   ): CutCount | null | undefined
   /** Nodes above each threshold at the last count, to be told to agents; undefined where they need not be. */
   sidesOf(sweep: number, place?: number): { above: readonly number[]; nodes: number } | undefined
-  /** Agents that remain in the rehearsal of this place and have no link left; null while none has told. */
-  aloneIn(place: number): number | null
-  /** Inner product of a rehearsal's values with the live ones, over the agents that remain; null where it cannot be told. */
+  /** Agents that remain in the rehearsal of this place and have no link left; null where it is not told this time. */
+  aloneIn(place: number, rehearsed: ControlState): number | null
+  /** Inner product of a rehearsal's values with the live ones, over the agents that remain; null where it is not told this time. */
   alongLive(place: number, rehearsed: ControlState, live: ControlState): number | null
 }
