@@ -12,20 +12,28 @@ export interface TakeAlongProps {
   drawing: RefObject<HTMLElement | null>
   /** What the drawing shows, for its file's name and title. */
   of: string
+  /** The past moment that is drawn; null or absent for now, of which alone there are files. */
+  at?: string | null
 }
+
+const FILES = [
+  { file: 'nodes.csv', name: 'nodes (CSV)' },
+  { file: 'links.csv', name: 'links (CSV)' },
+  { file: 'overlay.graphml', name: 'GraphML' },
+] as const
 
 const linkClass = 'rule-link inline-flex min-h-9 items-center px-2'
 
 /** The drawing as a picture, and what it is made from as files. */
-export function TakeAlong({ slug, drawing, of }: TakeAlongProps) {
+export function TakeAlong({ slug, drawing, of, at = null }: TakeAlongProps) {
   const [problem, setProblem] = useState('')
   async function save(kind: 'svg' | 'png') {
     const frame = drawing.current
     if (!frame?.querySelector('svg'))
       return setProblem('There is no drawing at present. Show it, and try again.')
     try {
-      const at = new Date().toISOString()
-      const caption = `${slug}: ${of}, ${at.slice(0, 16).replace('T', ' ')} UTC`
+      const drawnAt = at ?? new Date().toISOString()
+      const caption = `${slug}: ${of}, ${drawnAt.slice(0, 16).replace('T', ' ')} UTC`
       const file = await drawOut(frame, { title: caption, caption })
       const blob = kind === 'png' ? await toPng(file) : new Blob([file.svg], { type: 'image/svg+xml' })
       saveBlob(`${slug}-${of.replace(/[^a-z0-9]+/gi, '-')}.${kind}`, blob)
@@ -44,15 +52,13 @@ export function TakeAlong({ slug, drawing, of }: TakeAlongProps) {
       <Button kind="quiet" className="text-sm" onClick={() => save('png')}>
         drawing (PNG)
       </Button>
-      <a className={linkClass} href={exported('nodes.csv')} download>
-        nodes (CSV)
-      </a>
-      <a className={linkClass} href={exported('links.csv')} download>
-        links (CSV)
-      </a>
-      <a className={linkClass} href={exported('overlay.graphml')} download>
-        GraphML
-      </a>
+      {at === null
+        ? FILES.map(({ file, name }) => (
+            <a key={file} className={linkClass} href={exported(file)} download>
+              {name}
+            </a>
+          ))
+        : null}
       <span role="status" className="font-semibold">
         {problem}
       </span>

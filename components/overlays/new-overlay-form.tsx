@@ -6,6 +6,7 @@ import type { Overlay } from '@/lib/data/dto'
 import { DISCLOSURE_CHOICES, PACE_CHOICES, WEIGHT_CHOICES } from '@/lib/face/overlay-choices'
 import { slugOf } from '@/lib/face/slug'
 import { type FormState, fieldError, fieldValue, IDLE } from '@/lib/http/form-state'
+import { DisclosureFold } from './disclosure-fold'
 
 export interface NewOverlayFormProps {
   /** Teams in which the reader may create overlays. */
@@ -73,6 +74,10 @@ export function NewOverlayForm({ teams, create }: NewOverlayFormProps) {
         defaultValue={was('disclosure', 'sealed')}
         error={wrong('disclosure')}
       />
+      <div className="max-w-xl">
+        <DisclosureFold disclosure="sealed" />
+        <DisclosureFold disclosure="flagged" />
+      </div>
       <ChoiceField
         key={`weights-${was('weights', 'delivered')}`}
         legend="Weight of a link"

@@ -2,7 +2,7 @@
 
 import Link from 'next/link'
 import { useRouter } from 'next/navigation'
-import { type KeyboardEvent, useEffect, useMemo, useRef, useState } from 'react'
+import { type KeyboardEvent, type RefObject, useEffect, useMemo, useRef, useState } from 'react'
 import { cx } from '@/lib/face/cx'
 import { findNodes, laneKeys, layoutStretch, type StretchLayout, stepOf, walkFrom } from '@/lib/face/stretch'
 import { gapText, stretchSentence } from '@/lib/face/stretch-sentence'
@@ -17,6 +17,8 @@ export interface ExplorerProps extends StretchProps {
   /** Label that lanes are made by at first. */
   follows: string | null
   nodeHref: (name: string) => string
+  /** Comes to hold what is drawn. */
+  drawing: RefObject<HTMLDivElement | null>
 }
 
 const NOT_DRAWN = new Set(['left', 'revoked'])
@@ -26,12 +28,11 @@ const KEYS_HELP =
   'Arrow keys walk the nodes, up and down to the next lane, Enter opens one, plus and minus zoom, 0 shows the whole.'
 
 /** The stretch view to look into: zoom, search, and a walk by keyboard that is read out. */
-export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref }: ExplorerProps) {
+export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref, drawing }: ExplorerProps) {
   const router = useRouter()
   const frame = useRef<HTMLDivElement>(null)
-  const scroller = useRef<HTMLDivElement>(null)
   const width = useWidth(frame)
-  const zoom = useZoom(scroller)
+  const zoom = useZoom(drawing)
   const [lane, setLane] = useState<string | null>(null)
   const [asTable, setAsTable] = useState(false)
   const [chosen, setChosen] = useState<string | null>(null)
@@ -61,12 +62,12 @@ export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref }:
 
   const x = layout?.dots.find((dot) => dot.node.name === chosen)?.x
   useEffect(() => {
-    const element = scroller.current
+    const element = drawing.current
     if (!element || x === undefined) return
     const { scrollLeft, clientWidth } = element
     if (x < scrollLeft + INSIDE_PX || x > scrollLeft + clientWidth - INSIDE_PX)
       element.scrollLeft = x - clientWidth / 2
-  }, [x])
+  }, [x, drawing])
 
   function seek(text: string) {
     setSearch(text)
@@ -108,7 +109,7 @@ export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref }:
           {sided ? <SidesLine nodes={nodes} gap={gap.text} grave={gap.grave} /> : null}
           <div ref={frame} className="relative min-h-80">
             <div
-              ref={scroller}
+              ref={drawing}
               role="application"
               // biome-ignore lint/a11y/noNoninteractiveTabindex: the drawing is walked by keyboard
               tabIndex={0}

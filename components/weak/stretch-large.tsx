@@ -1,5 +1,7 @@
 'use client'
 
+import { useRef } from 'react'
+import { TakeAlong } from '@/components/export/take-along'
 import { Freshness } from '@/components/live/freshness'
 import { useLinks, useNodesAt } from '@/components/live/hooks'
 import { Explorer } from '@/components/stretch/explorer'
@@ -20,6 +22,7 @@ export function StretchLarge({
 }) {
   const nodes = useNodesAt(slug, at)
   const links = useLinks(slug)
+  const drawing = useRef<HTMLDivElement>(null)
   const cut = place && asCut(place)
   const remark = place?.sides ? (
     <>
@@ -36,14 +39,18 @@ export function StretchLarge({
       <Freshness of={nodes} />
       {nodes.data && place ? (
         nodes.data.length > 0 ? (
-          <Explorer
-            nodes={nodes.data}
-            links={at === null ? (links.data ?? []) : place.links}
-            reading={place.reading}
-            cut={cut}
-            follows={cut?.follows?.key ?? place.follows.labels[0]?.key ?? null}
-            nodeHref={overlayPageUrls(slug).node}
-          />
+          <>
+            <Explorer
+              drawing={drawing}
+              nodes={nodes.data}
+              links={at === null ? (links.data ?? []) : place.links}
+              reading={place.reading}
+              cut={cut}
+              follows={cut?.follows?.key ?? place.follows.labels[0]?.key ?? null}
+              nodeHref={overlayPageUrls(slug).node}
+            />
+            <TakeAlong slug={slug} drawing={drawing} of="weak place" at={at} />
+          </>
         ) : (
           <EmptyState title="No nodes to draw yet.">They appear here as their agents enrol.</EmptyState>
         )

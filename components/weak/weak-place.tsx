@@ -4,6 +4,7 @@ import { useState } from 'react'
 import { Freshness } from '@/components/live/freshness'
 import { useOverlay, useWeakPlace } from '@/components/live/hooks'
 import { Cautions } from '@/components/now/cautions'
+import { DisclosureFold } from '@/components/overlays/disclosure-fold'
 import { useRange } from '@/components/story/use-range'
 import { FailedState, Waiting } from '@/components/ui'
 import { CrossingTable } from './crossing-table'
@@ -52,6 +53,7 @@ export function WeakPlaceView({ slug }: { slug: string }) {
           ) : null}
         </>
       )}
+      {overlay.data ? <DisclosureFold disclosure={overlay.data.disclosure} /> : null}
       <Cautions />
     </div>
   )

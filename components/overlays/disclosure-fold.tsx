@@ -1,0 +1,22 @@
+import { Fold } from '@/components/ui'
+import { disclosureWords } from '@/lib/face/disclosure-words'
+import type { Disclosure } from '@/lib/method/orders'
+
+/** What an overlay keeps to itself, and what can be known of it all the same. Nothing where all links are named. */
+export function DisclosureFold({ disclosure }: { disclosure: Disclosure }) {
+  const words = disclosureWords(disclosure)
+  if (!words) return null
+  return (
+    <Fold heading={words.heading}>
+      <p className="max-w-3xl">{words.protects}</p>
+      <div className="max-w-3xl">
+        <p className="mb-1 font-semibold">Known all the same:</p>
+        <ul className="list-disc space-y-1 pl-5">
+          {words.remains.map((one) => (
+            <li key={one}>{one}</li>
+          ))}
+        </ul>
+      </div>
+    </Fold>
+  )
+}

@@ -1,0 +1,35 @@
+import type { Disclosure } from '@/lib/method/orders'
+
+export interface DisclosureWords {
+  heading: string
+  protects: string
+  /** What can be known all the same. */
+  remains: readonly string[]
+}
+
+const REMAINS = [
+  'Who is in the overlay, when each node reports, and that one has no neighbour left.',
+  'On which side of the weak cut each node stands, while one cut is clearly the weakest. Links lie within sides more often than across.',
+  'About how many links each node has, as a power of two.',
+  'How many links there are, and how many cross the weak cut, in all. Sides of fewer than 5 nodes are not counted.',
+  'What would remain without some nodes: whoever rehearses many drains can find out without whom a node would have no link. Each rehearsal is in the audit log.',
+  'More, to a collector that breaks the rules: run it where all owners trust whoever runs it to follow them.',
+]
+
+const NOT_JUDGED =
+  'Figures of single agents cannot be checked by the collector, so one that lies puts the reading off.'
+
+/** In plain words what is kept from the collector, and what is not; null where all links are named. */
+export function disclosureWords(disclosure: Disclosure): DisclosureWords | null {
+  if (disclosure === 'named') return null
+  const protects =
+    'Agents mask their figures with each other before they hand them over, so that only totals over all of them mean anything. Who is linked to whom is not sent, stored or logged'
+  const isSealed = disclosure === 'sealed'
+  return {
+    heading: `What ${disclosure} protects, and what it does not`,
+    protects: isSealed
+      ? `${protects}. ${NOT_JUDGED}`
+      : `${protects}, but for links over the share limit whose two ends both consent. ${NOT_JUDGED}`,
+    remains: REMAINS,
+  }
+}
