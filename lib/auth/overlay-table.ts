@@ -53,6 +53,9 @@ export const OVERLAY_ROWS: readonly OverlayRow[] = [
   { what: 'Rules, their trial on history, maintenance windows: look', action: 'rule.list', owner: 'own' },
   { what: 'Rules: change', action: 'rule.change', owner: 'own' },
   { what: 'Maintenance windows: change', action: 'window.change', owner: 'own' },
+  { what: 'Rehearsals and their answers: look', action: 'rehearsal.list', owner: 'own' },
+  { what: 'Rehearsals: begin, plan, repeat', action: 'rehearsal.start', owner: 'of own nodes' },
+  { what: 'Rehearsals: cancel', action: 'rehearsal.cancel', owner: 'own' },
   {
     what: 'Who shares it: contact, agents heard of joined',
     action: 'partner.list',

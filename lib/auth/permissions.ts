@@ -115,9 +115,9 @@ export const PERMISSIONS = {
   'rule.list': shared(reads('viewer', 'read')),
   'rule.change': shared(writes('operator', 'write')),
   'window.change': shared(writes('operator', 'write')),
-  'rehearsal.list': reads('viewer', 'read'),
-  'rehearsal.start': writes('operator', 'write'),
-  'rehearsal.cancel': writes('operator', 'write'),
+  'rehearsal.list': shared(reads('viewer', 'read')),
+  'rehearsal.start': shared(writes('operator', 'write')),
+  'rehearsal.cancel': shared(writes('operator', 'write')),
   'user.create': system,
   'token.create': system,
 } as const satisfies Record<string, Permission>

@@ -14,8 +14,8 @@ import { loadVectors } from './vectors'
 export interface LoadedAgent extends JoinedAgent {
   name: string
   labels: Record<string, string>
-  /** Of the team that owns the overlay; left out where no other shares it. */
-  isOwn?: boolean
+  /** Whose it is. */
+  teamId: string
 }
 
 /** A rotation of the overlay's signing key that is not over. */
@@ -55,7 +55,7 @@ export async function loadOverlay(
 ): Promise<Loaded | null> {
   const agents = await query<AgentRow>(
     em,
-    `select a.id as "agentId", a.name, a.labels, coalesce(a.team_id = o.team_id, true) as "isOwn", ${epochMs('a.joined_at')} as "joinedAtMs",
+    `select a.id as "agentId", a.name, a.labels, coalesce(a.team_id, o.team_id) as "teamId", ${epochMs('a.joined_at')} as "joinedAtMs",
        s.incarnation, s.report_number as number, s.orders_sequence as "ordersSequence", s.sums, s.node,
        s.complaints, ${epochMs('s.received_at')} as "receivedAtMs"
      from agents a join overlays o on o.id = a.overlay_id left join agent_states s on s.agent_id = a.id
@@ -114,7 +114,7 @@ interface AgentRow {
   agentId: string
   name: string
   labels: Record<string, string>
-  isOwn: boolean
+  teamId: string
   joinedAtMs: number
   incarnation: string | null
   number: string | number
@@ -126,7 +126,7 @@ interface AgentRow {
 }
 
 function toAgent(row: AgentRow): LoadedAgent {
-  const { agentId, name, labels, isOwn, joinedAtMs, incarnation, sums, node, complaints, receivedAtMs } = row
+  const { agentId, name, labels, teamId, joinedAtMs, incarnation, sums, node, complaints, receivedAtMs } = row
   const report = incarnation !== null && {
     incarnation,
     number: Number(row.number),
@@ -135,5 +135,5 @@ function toAgent(row: AgentRow): LoadedAgent {
     node,
     complaints,
   }
-  return { agentId, name, labels, isOwn, joinedAtMs, last: report ? { report, receivedAtMs } : null }
+  return { agentId, name, labels, teamId, joinedAtMs, last: report ? { report, receivedAtMs } : null }
 }

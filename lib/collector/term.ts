@@ -272,9 +272,8 @@ export class Term {
         memory,
         floors: loaded.floors,
         meanWeightedDegree: estimate.coverage.meanWeightedDegree,
-        agents: snapshot.agents.map(({ agentId, name, labels, isOwn = true, last }) => ({
-          ...{ agentId, labels },
-          name: isOwn ? name : 'a node of another team',
+        agents: snapshot.agents.map(({ agentId, name, labels, teamId, last }) => ({
+          ...{ agentId, name, labels, teamId },
           value: last?.report.node.value?.value ?? null,
         })),
         intervalMs: pace.intervalMs,

@@ -18,7 +18,7 @@ import { AppError } from '@/lib/http/app-error'
 import type { Call } from '@/lib/http/call'
 import { MOST_REHEARSALS } from '@/lib/method/control'
 import { namedLinks } from './links'
-import { openOverlay } from './overlays'
+import { type Opened, openOverlayAs } from './overlays'
 import { type NewRehearsal, newRehearsalSchema, type RehearsalDto } from './rehearsal-dto'
 import { sightOf } from './sight'
 
@@ -27,7 +27,8 @@ const LISTED = 100
 const MOST_WAITING = 50
 
 export async function createRehearsal(call: Call, slug: string, input: NewRehearsal): Promise<RehearsalDto> {
-  const overlay = await openOverlay(call, 'rehearsal.start', slug)
+  const opened = await openOverlayAs(call, 'rehearsal.start', slug)
+  const { overlay, teamId } = opened
   const { caller, em, now } = call
   const { exclude, note, incident: number, startsAt } = newRehearsalSchema.parse(input)
   const words = takenWords(exclude)
@@ -40,7 +41,7 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
       disclosure: overlay.disclosure,
       agents: agents.map(({ id, name, labels, team }) => ({
         ...{ agentId: id, name, labels },
-        isOwn: (team ?? overlay.team).id === overlay.team.id,
+        isOwn: (team ?? overlay.team).id === teamId,
       })),
       links:
         isOfLinks && overlay.disclosure === 'named'
@@ -56,16 +57,14 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
       errors: resolved.problems,
     })
   const incident =
-    number === null
-      ? null
-      : await em.findOne(IncidentSchema, { number, overlay: overlay.id, team: overlay.team.id })
+    number === null ? null : await em.findOne(IncidentSchema, { number, overlay: overlay.id, team: teamId })
   if (number !== null && !incident)
     throw new AppError('invalid-input', `There is no incident ${number} of this overlay.`, {
       errors: [{ path: 'incident', message: 'Choose one of this overlay.' }],
     })
   await refuseFull(call, overlay)
   const row = em.create(RehearsalSchema, {
-    ...mine(overlay),
+    ...mine(opened),
     state: 'waiting',
     progress: 0,
     askedBy: 'userId' in caller ? await em.findOne(UserSchema, caller.userId) : null,
@@ -80,7 +79,7 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
     await enterEvent(em, overlay.id, {
       kind: 'rehearsal-planned',
       text: `Rehearsal planned: ${words} away`,
-      teamId: overlay.team.id,
+      teamId,
     })
   return toDto(row, now)
 }
@@ -90,13 +89,13 @@ export async function listRehearsals(
   call: Call,
   slug: string,
 ): Promise<{ items: RehearsalDto[]; most: number; mayStart: boolean }> {
-  const overlay = await openOverlay(call, 'rehearsal.list', slug)
-  const rows = await call.em.find(RehearsalSchema, mine(overlay), {
+  const opened = await openOverlayAs(call, 'rehearsal.list', slug)
+  const rows = await call.em.find(RehearsalSchema, mine(opened), {
     populate: ['askedBy', 'incident'],
     orderBy: { askedAt: 'desc', id: 'desc' },
     limit: LISTED,
   })
-  const start = decide(permissionOf('rehearsal.start'), call.caller, overlay.team.id)
+  const start = decide(permissionOf('rehearsal.start'), call.caller, opened.teamId)
   return {
     items: rows.map((row) => toDto(row, call.now)),
     most: MOST_REHEARSALS,
@@ -105,15 +104,15 @@ export async function listRehearsals(
 }
 
 export async function getRehearsal(call: Call, slug: string, id: string): Promise<RehearsalDto> {
-  const overlay = await openOverlay(call, 'rehearsal.list', slug)
-  return toDto(await rowOf(call, overlay, id), call.now)
+  return toDto(await rowOf(call, await openOverlayAs(call, 'rehearsal.list', slug), id), call.now)
 }
 
 /** Its colonies are given up with the next orders. */
 export async function cancelRehearsal(call: Call, slug: string, id: string): Promise<RehearsalDto> {
-  const overlay = await openOverlay(call, 'rehearsal.cancel', slug)
+  const opened = await openOverlayAs(call, 'rehearsal.cancel', slug)
+  const { overlay, teamId } = opened
   const { em, now } = call
-  const row = await rowOf(call, overlay, id)
+  const row = await rowOf(call, opened, id)
   call.note({ subject: `${overlay.slug}: ${takenWords(row.exclude)}` })
   const ended = await sql(
     em,
@@ -126,7 +125,7 @@ export async function cancelRehearsal(call: Call, slug: string, id: string): Pro
   const after = await em.refresh(row)
   await enterEnd(em, {
     overlayId: overlay.id,
-    teamId: overlay.team.id,
+    teamId,
     incidentId: row.incident?.id ?? null,
     at: now,
     text: `Rehearsal cancelled: ${takenWords(row.exclude)} away`,
@@ -135,13 +134,13 @@ export async function cancelRehearsal(call: Call, slug: string, id: string): Pro
   return toDto(after ?? row, now)
 }
 
-const mine = (overlay: Overlay) => ({ overlay: overlay.id, team: overlay.team.id })
+const mine = ({ overlay, teamId }: Opened) => ({ overlay: overlay.id, team: teamId })
 
-async function rowOf(call: Call, overlay: Overlay, id: string): Promise<Rehearsal> {
+async function rowOf(call: Call, opened: Opened, id: string): Promise<Rehearsal> {
   // PostgreSQL refuses to compare a uuid with what is none.
   const known = z.uuid().safeParse(id).success
   const row = known
-    ? await call.em.findOne(RehearsalSchema, { id, ...mine(overlay) }, { populate: ['askedBy', 'incident'] })
+    ? await call.em.findOne(RehearsalSchema, { id, ...mine(opened) }, { populate: ['askedBy', 'incident'] })
     : null
   if (!row) throw new AppError('not-found', 'There is no such rehearsal. Load the list again.')
   return row

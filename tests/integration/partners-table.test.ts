@@ -2,9 +2,11 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { cellOf, OVERLAY_ROWS, READERS, type Reader } from '@/lib/auth/overlay-table'
 import { type ActionName, permissionOf } from '@/lib/auth/permissions'
 import {
+  cancelRehearsal,
   changePart,
   createInvitation,
   createJoiningCode,
+  createRehearsal,
   createRule,
   createWindow,
   endPartnership,
@@ -14,6 +16,7 @@ import {
   haltUpgrade,
   listJoiningCodes,
   listPartners,
+  listRehearsals,
   listRules,
   offerUpgrade,
   readmitAgent,
@@ -29,6 +32,7 @@ import { listOverlayIncidents } from '@/lib/data/incidents'
 import { listLinks } from '@/lib/data/links'
 import { listNodes } from '@/lib/data/nodes'
 import { getReading } from '@/lib/data/readings'
+import { newRehearsalSchema } from '@/lib/data/rehearsal-dto'
 import { getReinforcement, withdrawLink } from '@/lib/data/reinforcement'
 import type { Call } from '@/lib/http/call'
 import { DEFAULT_RULES } from '@/lib/warn/default-rules'
@@ -54,6 +58,8 @@ const window = {
   endsAt: new Date(Date.now() + 7_200_000).toISOString(),
   ...{ repeats: null, label: null, reason: 'New disks' },
 }
+const rehearsal = (node: string) =>
+  newRehearsalSchema.parse({ exclude: { nodes: [node] }, startsAt: '2040-01-04T22:00:00.000Z' })
 const NOWHERE = '00000000-0000-4000-8000-000000000000'
 
 /** Each does what its row of the table says, on the caller's own part of the overlay. */
@@ -79,6 +85,9 @@ const ATTEMPTS: Partial<Record<ActionName, (call: Call, own: string) => Promise<
   'rule.list': (call) => listRules(call, slug),
   'rule.change': (call) => createRule(call, slug, rule),
   'window.change': (call) => createWindow(call, slug, window),
+  'rehearsal.list': (call) => listRehearsals(call, slug),
+  'rehearsal.start': (call, own) => createRehearsal(call, slug, rehearsal(own)),
+  'rehearsal.cancel': (call) => cancelRehearsal(call, slug, NOWHERE),
   'partner.list': (call) => listPartners(call, slug),
   'partner.change': (call) => changePart(call, slug, { contact: 'us' }),
   'partner.invite': (call) => createInvitation(call, slug, { expiresInHours: 1 }),
@@ -93,6 +102,7 @@ const BEYOND: Partial<Record<ActionName, string>> = {
   'upgrade.offer': 'invalid-input',
   'upgrade.halt': 'not-found',
   'reinforcement.plan': 'not-found',
+  'rehearsal.cancel': 'not-found',
 }
 
 describe('each cell of the table', () => {

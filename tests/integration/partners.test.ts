@@ -3,15 +3,19 @@ import { GET as directoryRoute } from '@/app/api/agent/directory/route'
 import { POST as enrolRoute } from '@/app/api/agent/enrol/route'
 import type { Reader } from '@/lib/auth/overlay-table'
 import {
+  cancelRehearsal,
   changePart,
   createJoiningCode,
+  createRehearsal,
   getOverlay,
+  getRehearsal,
   getUpgrades,
   listAudit,
   listDeliveries,
   listJoiningCodes,
   listOverlays,
   listPartners,
+  listRehearsals,
   listRules,
   readmitAgent,
   retireAgent,
@@ -31,6 +35,7 @@ import { getNodeStory } from '@/lib/data/node-story'
 import { listNodes } from '@/lib/data/nodes'
 import { getReading } from '@/lib/data/readings'
 import { getReadings } from '@/lib/data/readings-list'
+import { type NewRehearsal, newRehearsalSchema } from '@/lib/data/rehearsal-dto'
 import { getReinforcement } from '@/lib/data/reinforcement'
 import { previewRule } from '@/lib/data/rule-preview'
 import { getWeakPlace } from '@/lib/data/weak-place'
@@ -39,7 +44,13 @@ import { sql } from '@/lib/db'
 import { generateKeys } from '@/lib/protocol'
 import { DEFAULT_RULES } from '@/lib/warn/default-rules'
 import { ask, call as callRoute, enrolBody, problemOf } from '@/tests/support/collector'
-import { openSharedOverlay, PRIVATE, type SharedOverlay, type TeamName } from '@/tests/support/shared-overlay'
+import {
+  openSharedOverlay,
+  PRIVATE,
+  type SharedOverlay,
+  stored,
+  type TeamName,
+} from '@/tests/support/shared-overlay'
 
 import { tried } from '@/tests/support/tried'
 
@@ -103,6 +114,7 @@ async function everythingFor(
     rules: await listRules(call(), slug),
     preview: await previewRule(call(), slug, preview),
     windows: await listWindows(call(), slug),
+    rehearsals: await listRehearsals(call(), slug),
     upgrades: await getUpgrades(call(), slug),
     partners: await listPartners(call(), slug),
     deliveries: await listDeliveries(call(), { limit: 100 }),
@@ -270,6 +282,54 @@ describe('of another team’s nodes', () => {
       items.map(({ name }: { name: string }) => name).filter((name: string) => /^(tar|pin)-/.test(name)),
     ).toEqual([])
     expect(items.map(({ name }: { name: string }) => name)).toContain('ske-01')
+  })
+})
+
+describe('a rehearsal of one team', () => {
+  const asked = (exclude: Partial<NewRehearsal['exclude']>): NewRehearsal =>
+    newRehearsalSchema.parse({ exclude, startsAt: '2040-01-04T22:00:00.000Z', note: 'disk of skerry' })
+  const ask = (team: TeamName, exclude: Partial<NewRehearsal['exclude']>) =>
+    tried(shared.callAs(team, 'operator'), (call) => createRehearsal(call, slug, asked(exclude)))
+
+  it('takes its own nodes away, is planned, read and cancelled by it, and known to no other', async () => {
+    const { id } = await stored(shared.callAs('skerry', 'operator'), (call) =>
+      createRehearsal(call, slug, asked({ nodes: ['ske-01'] })),
+    )
+    const listFor = async (team: TeamName) =>
+      (await listRehearsals(shared.callAs(team, 'viewer'), slug)).items.map((one) => one.id)
+    expect([await listFor('skerry'), await listFor('harbourline'), await listFor('pinnet')]).toEqual([
+      [id],
+      [],
+      [],
+    ])
+    expect(await getRehearsal(shared.callAs('skerry', 'viewer'), slug, id)).toMatchObject({
+      exclude: { nodes: ['ske-01'] },
+      state: 'waiting',
+    })
+    for (const act of [getRehearsal, cancelRehearsal])
+      expect(await tried(shared.callAs('harbourline', 'owner'), (call) => act(call, slug, id))).toEqual({
+        refused: 'not-found',
+      })
+    const toldTo = async (team: TeamName) =>
+      (await listEvents(shared.callAs(team, 'viewer'), slug)).filter(({ kind }) =>
+        kind.startsWith('rehearsal'),
+      ).length
+    expect([await toldTo('skerry'), await toldTo('harbourline')]).toEqual([1, 0])
+    const { value: cancelled } = await tried(shared.callAs('skerry', 'operator'), (call) =>
+      cancelRehearsal(call, slug, id),
+    )
+    expect(cancelled).toMatchObject({ id, state: 'cancelled' })
+  })
+
+  it('takes no node of another team away, by its name, by the name that is seen, or by a label', async () => {
+    const { items } = await listNodes(shared.callAs('skerry', 'viewer'), slug, page)
+    const seen = items.find(({ partner, state }) => partner && state === 'heard')!.name
+    expect([
+      await ask('skerry', { nodes: ['tar-01'] }),
+      await ask('skerry', { nodes: [seen] }),
+      await ask('harbourline', { nodes: ['ske-01'] }),
+      await ask('skerry', { labels: [{ key: 'office', value: 'Tarnwick' }] }),
+    ]).toEqual(Array.from({ length: 4 }, () => ({ refused: 'invalid-input' })))
   })
 })
 

@@ -10,7 +10,7 @@ import { COLONIES_EACH } from '@/lib/method/control/rehearsal-verdict'
 import type { Memory } from '../memory'
 import { answerOf } from './answer'
 import type { OpenRehearsal, RehearsalChange, TeamFloor } from './open'
-import { type Taken, type TakenFrom, takenOf } from './taken'
+import { type TakableAgent, type Taken, type TakenFrom, takenOf } from './taken'
 import { failureSentence, verdictSentence } from './verdict'
 import { firstWave, nextWave, type WaveNode, wavesSentence } from './waves'
 import { takenWords } from './words'
@@ -31,10 +31,13 @@ export interface RehearsalPlanned {
   refused: RehearsalChange[]
 }
 
+/** An agent, and whose it is: a team takes away its own. */
+export type TeamAgent = Omit<TakableAgent, 'isOwn'> & { teamId: string }
+
 /** Which rehearsals run from this round on: those that do, and those that are due, the longest due first, as far as there is room. */
 export function planRehearsals(
   open: readonly OpenRehearsal[],
-  from: TakenFrom,
+  from: Omit<TakenFrom, 'agents'> & { agents: readonly TeamAgent[] },
   atMs: number,
 ): RehearsalPlanned {
   const due = open
@@ -43,7 +46,8 @@ export function planRehearsals(
   const planned: RehearsalPlanned = { rehearsed: [], running: [], refused: [] }
   let names = 0
   for (const row of due) {
-    const resolved = takenOf(row.exclude, from, false)
+    const agentsFor = from.agents.map((agent) => ({ ...agent, isOwn: agent.teamId === row.teamId }))
+    const resolved = takenOf(row.exclude, { ...from, agents: agentsFor }, false)
     if ('problems' in resolved) {
       // Of one that runs, those that have left may have been the last.
       const because = resolved.problems.map(({ message }) => message).join(' ')
@@ -52,7 +56,7 @@ export function planRehearsals(
     }
     const { taken } = resolved
     // One wave of what is to go.
-    const tried = row.plan && from.agents.filter(({ name }) => row.plan?.tried.includes(name))
+    const tried = row.plan && agentsFor.filter(({ name, isOwn }) => isOwn && row.plan?.tried.includes(name))
     const agents = tried ? tried.map(({ agentId }) => agentId) : taken.agents
     const its = COLONIES_EACH * (agents.length + 2 * taken.links.length)
     if (planned.running.length >= MOST_REHEARSALS) continue
@@ -71,7 +75,7 @@ export interface RoundFacts {
   memory: Memory
   floors: readonly TeamFloor[]
   meanWeightedDegree: number
-  agents: readonly (WaveNode & { agentId: string })[]
+  agents: readonly (WaveNode & { agentId: string; teamId: string })[]
   intervalMs: number
   /** Links may be named, and so may what is known of a few nodes. */
   isNamed: boolean
@@ -114,7 +118,7 @@ function changeOf(
   if (!estimate) return change
   if (row.plan) return waveChange(row, row.plan, change, estimate, facts)
   if (estimate.state === 'failed') {
-    const because = failureSentence(estimate.because ?? 'no-time', estimate.tooOld.map(nameIn(facts)))
+    const because = failureSentence(estimate.because ?? 'no-time', estimate.tooOld.map(nameFor(row, facts)))
     return { ...endOf(row, 'failed', because), ...kept(change) }
   }
   const result = answerOf(row, estimate, facts) ?? row.result
@@ -189,10 +193,12 @@ function wavesEndAtMs(
   return atMs + waves * WAVE_INTERVALS * intervalMs
 }
 
-const nameIn =
-  ({ agents }: RoundFacts) =>
-  (id: string): string =>
-    agents.find(({ agentId }) => agentId === id)?.name ?? id
+const nameFor =
+  ({ teamId }: OpenRehearsal, { agents }: RoundFacts) =>
+  (id: string): string => {
+    const agent = agents.find(({ agentId }) => agentId === id)
+    return agent?.teamId === teamId ? agent.name : 'a node of another team'
+  }
 
 const kept = ({ startedAtMs, taken, remain, progress }: RehearsalChange) => ({
   startedAtMs,

@@ -12,7 +12,7 @@ export interface TakableAgent {
   agentId: string
   name: string
   labels: Readonly<Record<string, string>>
-  /** False for those of another team that shares the overlay: they remain, whatever they are called. */
+  /** False for those of a team other than the one that asks: they remain, whatever they are called. */
   isOwn?: boolean
 }
 

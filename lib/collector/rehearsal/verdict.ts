@@ -39,8 +39,10 @@ export function failureSentence(
   tooOld: readonly string[],
 ): string {
   switch (because) {
-    case 'too-old':
-      return `${listOf(tooOld)} ${isOrAre(tooOld.length)} too old to rehearse. Offer a newer agent under "Upkeep", then repeat it.`
+    case 'too-old': {
+      const names = [...new Set(tooOld)]
+      return `${listOf(names)} ${isOrAre(names.length)} too old to rehearse. Offer a newer agent under "Upkeep", then repeat it.`
+    }
     case 'too-few':
       return 'Fewer than two nodes would remain. Take fewer away.'
     case 'too-many':

@@ -31,7 +31,7 @@ function loaded(atMs: number, { oneEnd = false, disclosure = 'named' as Loaded['
       .filter((peer) => !(oneEnd && name === 'gul-04' && peer === 'pin-02'))
       .map((peer) => ({ peer, weight: 1, share: null }))
     return {
-      ...{ agentId: name, name, labels: {}, joinedAtMs: 0 },
+      ...{ agentId: name, name, labels: {}, teamId: 'harbourline', joinedAtMs: 0 },
       last: { report: { ...report, node: { ...report.node, links } }, receivedAtMs: atMs },
     }
   })

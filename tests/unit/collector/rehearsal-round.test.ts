@@ -8,6 +8,7 @@ const agents = Array.from({ length: 12 }, (_, at) => ({
   agentId: `id-${at}`,
   name: `tar-${at}`,
   labels: { office: at < 6 ? 'Tarnwick' : 'Eelholm' },
+  teamId: 'harbourline',
 }))
 const from = { disclosure: 'named' as const, agents, links: [{ a: 'tar-0', b: 'tar-6' }] }
 const NONE = { nodes: [], links: [], labels: [], between: [] }
@@ -71,6 +72,23 @@ describe('which rehearsals run', () => {
         says: { kind: 'rehearsal-ended' },
       },
     ])
+  })
+
+  it('of a team take away its own nodes alone, whatever others call theirs', () => {
+    const skerry = { agentId: 'id-s', name: 'ske-0', labels: { office: 'Eelholm' }, teamId: 'skerry' }
+    const shared = { ...from, agents: [...agents, skerry] }
+    const labels = [{ key: 'office', value: 'Eelholm' }]
+    const rows = [
+      open('partner’s label', { teamId: 'skerry', exclude: { ...NONE, labels } }),
+      open('another’s node', { teamId: 'skerry', exclude: { ...NONE, nodes: ['tar-1'] } }),
+      open('owner’s', { exclude: { ...NONE, nodes: ['tar-1', 'ske-0'] } }),
+    ]
+    const { rehearsed, refused } = planRehearsals(rows, shared, 0)
+    expect(rehearsed).toEqual([
+      { id: 'partner’s label', agents: ['id-s'], links: [] },
+      { id: 'owner’s', agents: ['id-1'], links: [] },
+    ])
+    expect(refused.map(({ id }) => id)).toEqual(['another’s node'])
   })
 
   it('one that tries a wave takes away that wave alone, under a name of its own', () => {

@@ -60,6 +60,7 @@ it('an agent whose walkers do not add up is left out: shut in the orders, not jo
         agentId: name,
         name,
         labels: {},
+        teamId: 'harbourline',
         joinedAtMs: 0,
         last: { report: reportOf(number, name === 'gul-04' ? 600 : 6), receivedAtMs: atMs },
       }),

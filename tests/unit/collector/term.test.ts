@@ -9,7 +9,14 @@ import { createRandom } from '@/lib/method/random'
 import { FakeClock } from '@/tests/support/fake-clock'
 
 const log = { info: () => {}, warn: () => {}, error: () => {} }
-const agent = { agentId: 'agent-1', name: 'tar-01', labels: {}, joinedAtMs: 0, last: null }
+const agent = {
+  agentId: 'agent-1',
+  name: 'tar-01',
+  labels: {},
+  teamId: 'harbourline',
+  joinedAtMs: 0,
+  last: null,
+}
 
 /** Two rounds of a new leader, whose look at the usual comes to `forkEm`. */
 async function rounds(forkEm: () => Promise<never>) {

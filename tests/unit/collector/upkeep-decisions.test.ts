@@ -143,6 +143,7 @@ describe('an upgrade offer', () => {
       state: NonNullable<Standing['upgrade']>['state'] | null,
     ) => ({
       labels: {},
+      teamId: 'harbourline',
       version,
       heard,
       upgrade: state && { version: '0.3.0', state, error: null },
@@ -166,6 +167,7 @@ describe('what agents say of themselves', () => {
     agentId,
     name: agentId,
     labels: {},
+    teamId: 'harbourline',
     joinedAtMs: 0,
     last: { report, receivedAtMs },
   })
