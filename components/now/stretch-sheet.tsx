@@ -6,6 +6,7 @@ import { Freshness } from '@/components/live/freshness'
 import { useCut, useLinks, useNodes, useReading } from '@/components/live/hooks'
 import { Stretch } from '@/components/stretch/stretch'
 import { EmptyState, FailedState, Lambda, Sheet, Waiting } from '@/components/ui'
+import { UNPLACED } from '@/lib/face/stretch-sentence'
 
 export function StretchSheet({ slug }: { slug: string }) {
   const nodes = useNodes(slug)
@@ -16,7 +17,7 @@ export function StretchSheet({ slug }: { slug: string }) {
   const sides = cut.data?.sides ?? reading.data?.sides ?? null
   const unplaced = (nodes.data ?? []).every((n) => n.value === null)
   const remark = unplaced ? (
-    'no values yet: nodes stand by name'
+    UNPLACED
   ) : sides ? (
     <>
       left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />

@@ -1,9 +1,8 @@
 import { Fold } from '@/components/ui'
-import { disclosureWords } from '@/lib/face/disclosure-words'
-import type { Disclosure } from '@/lib/method/orders'
+import { disclosureWords, type WordsFor } from '@/lib/face/disclosure-words'
 
 /** What an overlay keeps to itself, and what can be known of it all the same. Nothing where all links are named. */
-export function DisclosureFold({ disclosure }: { disclosure: Disclosure }) {
+export function DisclosureFold({ disclosure }: { disclosure: WordsFor }) {
   const words = disclosureWords(disclosure)
   if (!words) return null
   return (

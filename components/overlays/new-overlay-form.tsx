@@ -75,8 +75,7 @@ export function NewOverlayForm({ teams, create }: NewOverlayFormProps) {
         error={wrong('disclosure')}
       />
       <div className="max-w-xl">
-        <DisclosureFold disclosure="sealed" />
-        <DisclosureFold disclosure="flagged" />
+        <DisclosureFold disclosure="both" />
       </div>
       <ChoiceField
         key={`weights-${was('weights', 'delivered')}`}

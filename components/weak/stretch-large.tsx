@@ -7,6 +7,7 @@ import { useLinks, useNodesAt } from '@/components/live/hooks'
 import { Explorer } from '@/components/stretch/explorer'
 import { EmptyState, FailedState, Lambda, Sheet, Waiting } from '@/components/ui'
 import type { WeakPlace } from '@/lib/data/weak-dto'
+import { UNPLACED } from '@/lib/face/stretch-sentence'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { asCut } from '@/lib/face/weak-cut'
 
@@ -24,7 +25,10 @@ export function StretchLarge({
   const links = useLinks(slug)
   const drawing = useRef<HTMLDivElement>(null)
   const cut = place && asCut(place)
-  const remark = place?.sides ? (
+  const unplaced = nodes.data?.every((node) => node.value === null) ?? false
+  const remark = unplaced ? (
+    UNPLACED
+  ) : place?.sides ? (
     <>
       left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
     </>

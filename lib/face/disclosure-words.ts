@@ -19,17 +19,26 @@ const REMAINS = [
 const NOT_JUDGED =
   'Figures of single agents cannot be checked by the collector, so one that lies puts the reading off.'
 
+/** One of an overlay, or what has to be known to choose between them. */
+export type WordsFor = Disclosure | 'both'
+
+const HEADINGS: Record<Exclude<WordsFor, 'named'>, string> = {
+  sealed: 'What sealed protects, and what it does not',
+  flagged: 'What flagged protects, and what it does not',
+  both: 'What sealed and flagged protect, and what they do not',
+}
+
+const PROTECTS =
+  'Agents mask their figures with each other before they hand them over, so that only totals over all of them mean anything. Who is linked to whom is not sent, stored or logged'
+const FLAGGED = 'links over the share limit whose two ends both consent are named.'
+
 /** In plain words what is kept from the collector, and what is not; null where all links are named. */
-export function disclosureWords(disclosure: Disclosure): DisclosureWords | null {
+export function disclosureWords(disclosure: WordsFor): DisclosureWords | null {
   if (disclosure === 'named') return null
-  const protects =
-    'Agents mask their figures with each other before they hand them over, so that only totals over all of them mean anything. Who is linked to whom is not sent, stored or logged'
-  const isSealed = disclosure === 'sealed'
+  const but = { sealed: '.', flagged: `; only ${FLAGGED}`, both: `; where it is flagged, only ${FLAGGED}` }
   return {
-    heading: `What ${disclosure} protects, and what it does not`,
-    protects: isSealed
-      ? `${protects}. ${NOT_JUDGED}`
-      : `${protects}, but for links over the share limit whose two ends both consent. ${NOT_JUDGED}`,
+    heading: HEADINGS[disclosure],
+    protects: `${PROTECTS}${but[disclosure]} ${NOT_JUDGED}`,
     remains: REMAINS,
   }
 }

@@ -1,6 +1,9 @@
 import type { Cut, OverlayNode, Reading } from '@/lib/data/dto'
 import { formatCount } from './format'
 
+/** Beside a drawing in which no node has a value. */
+export const UNPLACED = 'no node has a value now: they stand by name'
+
 export interface Gap {
   /** What stands between the sides, in a few words. */
   text: string
