@@ -4,8 +4,10 @@ import { randomRegular, twoClusters } from '@/lib/method/graphs'
 import { DISCLOSURES } from '@/lib/method/orders'
 import { PACE_NAMES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
+import { namedByDegrees } from './leak/degrees'
 import { type WatchInit, watchOverlay } from './leak/looks'
-import { attackOf, COLUMNS, type Shares } from './leak/shares'
+import { chanceOf, type Shares, sharesOf } from './leak/shares'
+import { HEAD, linesOf } from './leak/table'
 
 const CASES: Record<string, (seed: number) => SparseGraph> = {
   'regular-60': (seed) => randomRegular(60, 6, createRandom(`regular-60 ${seed}`)),
@@ -14,69 +16,66 @@ const CASES: Record<string, (seed: number) => SparseGraph> = {
   'regular-300': (seed) => randomRegular(300, 6, createRandom(`regular-300 ${seed}`)),
 }
 
-/** What no attack is to name more than chance by: points. */
-const MOST_POINTS = 3
-
 type Print = (line: string) => void
 
 /**
  * `npm run bench -- leak [--only CASE] [--disclosure named|sealed] [--pace steady] [--minutes 5] [--sums-minutes N] [--lost-per-hour 2] [--seeds 1]`:
  * attacks what the collector of an overlay has been sent, sealed and named, and says what share of as many guesses as there are links were right.
- * A day: `--minutes 1440 --sums-minutes 10 --pace calm`.
+ * A day: `--minutes 1440 --sums-minutes 10 --pace calm`. The degrees that nodes say are looked at for a day in any case, without walkers.
  */
 export function benchLeak(args: readonly string[], print: Print): void {
-  const { only, seeds, ...init } = optionsOf(args)
-  const { pace, minutes, sumsMinutes, lostPerHour } = init
+  const options = optionsOf(args)
+  const { only, disclosures, seeds, pace, minutes, sumsMinutes, lostPerHour } = options
+  const sums = Math.min(sumsMinutes, minutes)
   print(
-    `Share of guesses that are links: ${minutes} simulated minutes at ${pace} pace, sums of ${Math.min(sumsMinutes, minutes)} of them, ${lostPerHour} links lost per hour and back later, ${seeds} seed${seeds === 1 ? '' : 's'}.`,
+    `${minutes} simulated minutes at ${pace} pace, sums of the first ${sums}; ${lostPerHour} links lost an hour, and back later; ${count(seeds)}.`,
   )
-  print(
-    'chance: any two nodes; sides: any two said to be on one side. As many guesses as there are links; "surest": the first tenth of them.',
-  )
-  print(
-    `${'case'.padEnd(12)} ${'disclosure'.padEnd(10)} ${'guesses'.padEnd(15)} ${COLUMNS.map((name) => name.padStart(10)).join(' ')}   (%)`,
-  )
-  for (const name of only) {
-    const make = CASES[name]
-    if (!make) throw new RangeError(`no case ${name}: ${Object.keys(CASES).join(', ')}`)
-    for (const disclosure of init.disclosures) {
-      const all: { every: Shares; surest: Shares }[] = []
+  print('Share of guesses that are links, of as many as there are, and of the surest tenth of them.')
+  print('chance: any two nodes; sides: any two that say they are on one side.')
+  print(HEAD)
+  for (const name of only)
+    for (const disclosure of disclosures) {
+      const all: Shares[] = []
       for (let seed = 1; seed <= seeds; seed++) {
-        const graph = make(seed)
-        const looks = watchOverlay(graph, { ...init, disclosure, seed })
-        all.push(attackOf(graph, looks, disclosure, createRandom(`leak lots ${seed}`)))
+        const graph = graphOf(name, seed)
+        const looks = watchOverlay(graph, { ...options, disclosure, seed })
+        all.push(sharesOf(graph, looks, disclosure))
       }
-      printCase(name, disclosure, all, print)
+      for (const line of linesOf(name, disclosure, all)) print(line)
     }
-  }
+  printDegrees(only, print)
 }
 
-function printCase(
-  name: string,
-  disclosure: string,
-  all: readonly { every: Shares; surest: Shares }[],
-  print: Print,
-): void {
-  const mean = (of: (one: (typeof all)[number]) => number): number =>
-    all.reduce((sum, one) => sum + of(one), 0) / all.length
-  const line = (what: string, of: (column: (typeof COLUMNS)[number]) => number): void =>
-    print(
-      `${name.padEnd(12)} ${disclosure.padEnd(10)} ${what.padEnd(15)} ${COLUMNS.map((column) => (100 * of(column)).toFixed(1).padStart(10)).join(' ')}`,
-    )
-  line(all.length > 1 ? 'all, mean' : 'all', (column) => mean(({ every }) => every[column]))
-  if (all.length > 1) line('all, largest', (column) => Math.max(...all.map(({ every }) => every[column])))
-  line(all.length > 1 ? 'surest, mean' : 'surest', (column) => mean(({ surest }) => surest[column]))
-  const over = (base: 'chance' | 'sides'): number =>
-    Math.max(
-      ...all.flatMap(({ every }) => {
-        const { chance: _chance, sides: _sides, ...attacks } = every
-        return Object.values(attacks).map((share) => 100 * (share - every[base]))
-      }),
-    )
-  const points = over('chance')
+const DAY_SEEDS = 5
+const DAY_LOST_PER_HOUR = [0.5, 1, 4, 16]
+
+function printDegrees(only: readonly string[], print: Print): void {
+  print('')
   print(
-    `${name.padEnd(12)} ${disclosure.padEnd(10)} at most ${points.toFixed(1)} points over chance (${points > MOST_POINTS ? 'over' : 'within'} ${MOST_POINTS}), ${over('sides').toFixed(1)} over chance knowing the sides`,
+    `A day of the degrees that nodes of sealed overlays say, by the steps of them alone, ${count(DAY_SEEDS)}.`,
   )
+  print('case         lost an hour     chance        all     surest   (%)')
+  for (const name of only)
+    for (const lostPerHour of DAY_LOST_PER_HOUR) {
+      const seeds = Array.from({ length: DAY_SEEDS }, (_, index) => index + 1)
+      const all = seeds.map((seed) => namedByDegrees(graphOf(name, seed), { seed, hours: 24, lostPerHour }))
+      const mean = (values: readonly number[]): string =>
+        ((100 * values.reduce((sum, value) => sum + value, 0)) / values.length).toFixed(1).padStart(10)
+      const figures = [
+        mean(seeds.map((seed) => chanceOf(graphOf(name, seed)))),
+        mean(all.map(({ every }) => every)),
+        mean(all.map(({ surest }) => surest)),
+      ]
+      print(`${name.padEnd(12)} ${String(lostPerHour).padStart(12)} ${figures.join(' ')}`)
+    }
+}
+
+const count = (seeds: number): string => `${seeds} seed${seeds === 1 ? '' : 's'}`
+
+function graphOf(name: string, seed: number): SparseGraph {
+  const make = CASES[name]
+  if (!make) throw new RangeError(`no case ${name}: ${Object.keys(CASES).join(', ')}`)
+  return make(seed)
 }
 
 function optionsOf(args: readonly string[]) {

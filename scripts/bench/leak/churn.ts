@@ -1,5 +1,11 @@
 import type { Random } from '@/lib/method/random'
-import type { Simulation } from '@/lib/method/simulate'
+
+/** What links are taken from and given back to: a simulation, or what stands for one. */
+export interface Linked {
+  readonly nowMs: number
+  join(a: number, b: number): void
+  cut(a: number, b: number): void
+}
 
 /** A lost link comes back after as long as this, and up to twice that again. */
 const AWAY_MS = 3_600_000
@@ -24,19 +30,19 @@ export class Churn {
   }
 
   /** Does what is due. */
-  bring(simulation: Simulation): void {
-    const { nowMs } = simulation
+  bring(linked: Linked): void {
+    const { nowMs } = linked
     for (const [index, backAtMs] of this.away) {
       if (backAtMs > nowMs) continue
       this.away.delete(index)
-      simulation.join(...this.links[index]!)
+      linked.join(...this.links[index]!)
     }
     while (this.nextAtMs <= nowMs) {
       this.nextAtMs += this.everyMs * (0.5 + this.random.uniform())
       const index = Math.floor(this.random.uniform() * this.links.length)
       if (this.away.has(index)) continue
       this.away.set(index, nowMs + AWAY_MS * (1 + 2 * this.random.uniform()))
-      simulation.cut(...this.links[index]!)
+      linked.cut(...this.links[index]!)
     }
   }
 }

@@ -1,5 +1,3 @@
-import type { Random } from '@/lib/method/random'
-
 export type Pair = readonly [a: number, b: number]
 
 /** A score for every pair of nodes, higher where a link is likelier. */
@@ -17,14 +15,26 @@ export class PairScores {
     this.scores[at] = this.scores[at]! + score
   }
 
-  /** The likeliest pairs, likeliest first. Equal ones come by chance: their order must not say anything. */
-  best(count: number, random: Random): Pair[] {
-    const pairs: { pair: Pair; score: number; lot: number }[] = []
-    for (let a = 0; a < this.nodes; a++)
-      for (let b = a + 1; b < this.nodes; b++)
-        pairs.push({ pair: [a, b], score: this.scores[a * this.nodes + b]!, lot: random.uniform() })
-    pairs.sort((one, other) => other.score - one.score || one.lot - other.lot)
-    return pairs.slice(0, count).map(({ pair }) => pair)
+  /**
+   * The likeliest so many pairs are guessed to be links. Of pairs with one score, where not all can be guessed, any are: what is right among
+   * them is what to expect.
+   * @returns share of guesses that are right
+   */
+  shareRight(isLink: (pair: Pair) => boolean, guesses: number): number {
+    const pairs = [...allPairs(this.nodes)].map((pair) => ({
+      score: this.scores[pair[0] * this.nodes + pair[1]]!,
+      right: isLink(pair) ? 1 : 0,
+    }))
+    pairs.sort((one, other) => other.score - one.score)
+    let right = 0
+    for (let from = 0; from < guesses; ) {
+      let to = from
+      let rightHere = 0
+      while (to < pairs.length && pairs[to]!.score === pairs[from]!.score) rightHere += pairs[to++]!.right
+      right += rightHere * Math.min(1, (guesses - from) / (to - from))
+      from = to
+    }
+    return right / guesses
   }
 }
 
