@@ -30,7 +30,7 @@ describe('an overlay of 60 at steady pace in which agents fall silent for two mi
 })
 
 const HEAD =
-  'disclosure silent how      lost  again after  without   worst     end  back after   after   (intervals, share of time, off the exact λ₂; the worst of the seeds)'
+  'disclosure silent how      lost  before  again after  without    worst      end  back after    after'
 
 function lineOf({ disclosure, silent, how, loss, courses }: Row): string {
   const most = (of: (course: SilentCourse) => number | null): number | null => {
@@ -48,6 +48,7 @@ function lineOf({ disclosure, silent, how, loss, courses }: Row): string {
     percent(silent).padStart(6),
     how.padEnd(8),
     percent(loss).padStart(4),
+    percent(most(({ withoutBefore }) => withoutBefore)).padStart(7),
     String(most(({ againAfter }) => againAfter) ?? '–').padStart(12),
     percent(most(({ withoutReading }) => withoutReading)).padStart(8),
     percent(

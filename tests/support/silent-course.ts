@@ -13,12 +13,14 @@ export interface SilentInit {
   silent: number
   /** Their processes end; or they live and walk on, and only their reports are lost. */
   how: 'ended' | 'unheard'
-  /** Share of reports lost, and of the replies to those that came. */
+  /** Share of requests lost, half of them on the way there and half on the way back. */
   loss: number
   seed: number
 }
 
 export interface SilentCourse {
+  /** Share of the time before without a fresh reading, once it had settled: what the losses do alone. */
+  withoutBefore: number
   /** Intervals from the silence to a fresh reading of sums taken after it; null where none came. */
   againAfter: number | null
   /** Share of the time of silence without a fresh reading. */
@@ -35,7 +37,8 @@ export interface SilentCourse {
 }
 
 const NODES = 60
-const COLD_MS = 90_000
+const SETTLED_MS = 60_000
+const BEFORE_MS = 120_000
 export const SILENT_MS = 120_000
 export const RETURNED_MS = 120_000
 /** What is called the end of a stretch. */
@@ -52,15 +55,15 @@ export function silentCourse(init: SilentInit): SilentCourse {
       nodes: NODES,
       links: edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight })),
       settings: { ...DEFAULT_SETTINGS, pace: PACE, disclosure },
-      reportLoss: loss,
-      ordersLoss: loss,
+      reportLoss: loss / 2,
+      ordersLoss: loss / 2,
       masks,
       audits: false,
     },
   )
   const looks: Look[] = []
   simulation.onEstimate = (estimate) => looks.push(lookOf(estimate, simulation))
-  simulation.run(COLD_MS)
+  simulation.run(BEFORE_MS)
   const chosen = chooseFrom(Math.max(1, Math.round(silent * NODES)), seed)
   for (const index of chosen) {
     if (how === 'ended') simulation.stop(index)
@@ -68,21 +71,22 @@ export function silentCourse(init: SilentInit): SilentCourse {
   }
   const whileSilent = exactOf(simulation, how === 'ended' ? chosen : [])
   simulation.run(SILENT_MS)
-  const wasSilent = looks.filter(({ atMs }) => atMs > COLD_MS)
+  const wasSilent = looks.filter(({ atMs }) => atMs > BEFORE_MS)
   for (const index of chosen) {
     if (how === 'ended') simulation.start(index)
     else simulation.agents[index]!.silent = false
   }
-  const returnedMs = COLD_MS + SILENT_MS
+  const returnedMs = BEFORE_MS + SILENT_MS
   simulation.run(RETURNED_MS)
   const later = looks.filter(({ atMs }) => atMs > returnedMs)
   const exact = algebraicConnectivity(graph).lambda2
   return {
+    withoutBefore: shareWithout(looks.filter(({ atMs }) => atMs > SETTLED_MS && atMs <= BEFORE_MS)),
     againAfter: intervalsTo(
-      wasSilent.find(({ fresh, takenAtMs }) => fresh !== null && takenAtMs > COLD_MS),
-      COLD_MS,
+      wasSilent.find(({ fresh, takenAtMs }) => fresh !== null && takenAtMs > BEFORE_MS),
+      BEFORE_MS,
     ),
-    withoutReading: wasSilent.filter(({ fresh }) => fresh === null).length / wasSilent.length,
+    withoutReading: shareWithout(wasSilent),
     worst: worstOff(wasSilent, whileSilent),
     end: meanOff(wasSilent, whileSilent),
     backAfter: intervalsTo(
@@ -136,6 +140,9 @@ function exactOf(simulation: Simulation, ended: readonly number[]): number {
     .map(({ a, b, weight }): [number, number, number] => [place.get(a)!, place.get(b)!, weight])
   return algebraicConnectivity(fromEdges(rest.length, links)).lambda2
 }
+
+const shareWithout = (looks: readonly Look[]): number =>
+  looks.filter(({ fresh }) => fresh === null).length / looks.length
 
 const intervalsTo = (look: Look | undefined, fromMs: number): number | null =>
   look ? Math.ceil((look.atMs - fromMs) / PACE.intervalMs) : null
