@@ -52,9 +52,10 @@ export class Correspondence {
     this.init = init
     this.health = new Health({ linkKind: init.linkKind })
     this.relay = new Relay(
-      { links, clock, logger },
+      { links, clock, random, logger },
       {
         agentId,
+        isNamed: () => standing.disclosure === 'named',
         onReply: (reply) => {
           if (reply.stored && reply.number !== null)
             components.node.noteAnswered(reply.number, clock.monotonicMs())

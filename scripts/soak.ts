@@ -79,6 +79,12 @@ const SOAKS: Record<string, Soak> = {
     file: 'tests/soak/rehearsal-fleets.test.ts',
     env: {},
   },
+  'silent-neighbours': {
+    about:
+      '1, 10 and 33 % of 60 simulated agents silent for two minutes, with 5 to 30 % of requests lost, named and sealed, twice (THINSPAN_SOAK_RUNS), with a table',
+    file: 'tests/soak/silent-neighbours.test.ts',
+    env: {},
+  },
   year: {
     about:
       'a year of 20 overlays of 200 nodes (THINSPAN_YEAR_OVERLAYS, THINSPAN_YEAR_NODES) rolled up, thinned and looked at, with figures; some 20 GB of disk',

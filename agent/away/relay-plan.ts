@@ -42,6 +42,8 @@ export interface RelayCase {
   isSeen: boolean
   distance: CollectorDistance
   neighbours: readonly NearerPeer[]
+  /** Where links are not named: a neighbour that reaches the collector too; null without one. */
+  aside: string | null
 }
 
 export type RelayStep =
@@ -53,6 +55,10 @@ export type RelayStep =
 export function relayStep(relay: RelayCase): RelayStep {
   if (relay.origin === relay.ownId) return { kind: 'drop', reason: 'own' }
   if (relay.isSeen) return { kind: 'drop', reason: 'seen' }
+  // Whoever delivers is seen to: where links are not named it is not to be a neighbour of whom the report is of.
+  const isFirst = relay.from === relay.origin
+  if (relay.distance === 0 && isFirst && relay.aside !== null && relay.hops > 1)
+    return { kind: 'pass-on', to: [relay.aside], hops: relay.hops - 1 }
   if (relay.distance === 0) return { kind: 'deliver' }
   if (relay.hops <= 1) return { kind: 'drop', reason: 'far' }
   const to = targetsOf(relay.distance, relay.neighbours, relay.from)

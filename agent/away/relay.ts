@@ -1,4 +1,5 @@
 import type { CollectorDistance } from '@/lib/method/frame'
+import type { Random } from '@/lib/method/random'
 import {
   decodeRelay,
   decodeRelayReply,
@@ -20,6 +21,8 @@ export interface RelayLinks {
   setDistance(distance: CollectorDistance): void
   /** Proven peers that said they are closer than this agent, nearest first. */
   towardsCollector(): readonly NearerPeer[]
+  /** Those that reach the collector themselves. */
+  delivering(): readonly string[]
   /** @returns false where it could not be sent now */
   send(peer: string, kind: RelayKind, bytes: Uint8Array): boolean
 }
@@ -27,14 +30,20 @@ export interface RelayLinks {
 export interface RelayComponents {
   links: RelayLinks
   clock: Clock
+  random: Random
   logger: Logger
 }
 
 export interface RelayInit {
   agentId: string
+  /** Whether the overlay names its links. */
+  isNamed: () => boolean
   /** What the collector said of this agent's own report. Not proven: it came through others. */
   onReply: (reply: RelayedReply) => void
 }
+
+/** Agents of which it is remembered who delivers for them. */
+const MOST_ASIDES = 1_024
 
 /** Reports of agents that do not reach the collector, on their way through those that do. */
 export class Relay {
@@ -42,6 +51,8 @@ export class Relay {
   private readonly init: RelayInit
   private readonly shelf = new RelayShelf()
   private readonly paths = new ReturnPaths()
+  /** Who delivers for whom: always the same, as from many the collector could tell more. */
+  private readonly asides = new Map<string, string>()
   private hasDelivered = false
   private failedInARow = 0
   private distanceNow: CollectorDistance = 3
@@ -119,20 +130,36 @@ export class Relay {
     }
     const { report, hops } = message
     const nowMs = clock.monotonicMs()
+    const isNamed = this.init.isNamed()
     const step = relayStep({
       ownId: this.init.agentId,
       origin: report.agentId,
       from,
       hops,
-      isSeen: this.paths.note(report, from, nowMs),
+      isSeen: this.paths.note(report, from, nowMs, !isNamed),
       distance: this.distanceNow,
       neighbours: links.towardsCollector(),
+      aside: isNamed || from !== report.agentId ? null : this.asideFor(from),
     })
     if (step.kind === 'deliver') this.shelf.put(from, report, nowMs)
     else if (step.kind === 'pass-on') {
       const onward = encodeRelay({ hops: step.hops, report })
-      for (const peer of step.to) links.send(peer, 'relay', onward)
+      const taken = step.to.filter((peer) => links.send(peer, 'relay', onward))
+      // Better told by whom than not at all.
+      if (taken.length === 0 && this.distanceNow === 0) this.shelf.put(from, report, nowMs)
     }
+  }
+
+  private asideFor(origin: string): string | null {
+    const { links, random } = this.components
+    const able = links.delivering().filter((peer) => peer !== origin)
+    const held = this.asides.get(origin)
+    if (held !== undefined && able.includes(held)) return held
+    const chosen = able[Math.floor(random.uniform() * able.length)]
+    if (chosen === undefined) return null
+    if (this.asides.size >= MOST_ASIDES) this.asides.clear()
+    this.asides.set(origin, chosen)
+    return chosen
   }
 
   private receiveReply(from: string, bytes: Uint8Array): void {

@@ -9,11 +9,17 @@ export class ReturnPaths {
   private readonly seen = new Set<string>()
   private readonly cameFrom = new Map<string, Map<string, number>>()
 
-  /** @returns whether this report came before */
-  note(report: SignedReport, from: string, nowMs: number): boolean {
+  /**
+   * @param isApart what its own agent handed over does not count as the same: two that pass it to each other would both drop it
+   * @returns whether this report came before
+   */
+  note(report: SignedReport, from: string, nowMs: number, isApart = false): boolean {
     const { agentId, at, body, signature } = report
+    const hand = isApart && from === agentId ? 'first hand' : ''
     // The whole of it: a copy with a changed text must not stand for the genuine one.
-    const mark = createHash('sha256').update(`${agentId}\n${at}\n${signature}\n${body}`).digest('base64url')
+    const mark = createHash('sha256')
+      .update(`${hand}\n${agentId}\n${at}\n${signature}\n${body}`)
+      .digest('base64url')
     const isSeen = this.seen.has(mark)
     this.seen.add(mark)
     if (this.seen.size > MOST_KEPT) this.seen.delete(first(this.seen))

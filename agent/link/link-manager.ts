@@ -132,6 +132,11 @@ export class LinkManager implements SessionOwner {
     return this.table.nearer(this.distance)
   }
 
+  /** Proven peers that reach the collector themselves. */
+  delivering(): string[] {
+    return this.table.nearer(1).map(({ peer }) => peer)
+  }
+
   /** @returns false where no connection of version 2 takes it now */
   send(peer: string, kind: RelayKind, bytes: Uint8Array): boolean {
     const carrier = this.table.carrierOf(peer)

@@ -1,12 +1,17 @@
+import pg from 'pg'
+import { pino } from 'pino'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { GET as directoryRoute } from '@/app/api/agent/directory/route'
 import { query } from '@/lib/collector/query'
 import { setRuntime } from '@/lib/http/runtime'
 import { fromEdges } from '@/lib/method/graph'
 import type { Report } from '@/lib/method/report'
 import { algebraicConnectivity } from '@/lib/method/spectrum'
-import { deliver, seedCode, seedOverlay } from '@/tests/support/collector'
+import { reportReplySchema } from '@/lib/protocol'
+import { ask, type Member, seedCode, seedOverlay, sendReport } from '@/tests/support/collector'
 import { createTestDatabase, type TestDatabase } from '@/tests/support/database'
 import { startTestLeader, type TestLeader } from '@/tests/support/leaders'
+import { allRows, type Found, Naming, type Record } from '@/tests/support/named-beside'
 import { seedTeam, testRuntime } from '@/tests/support/people'
 import { Swarm } from '@/tests/support/swarm'
 import { until } from '@/tests/support/until'
@@ -30,29 +35,55 @@ let database: TestDatabase
 let leader: TestLeader
 let overlayId: string
 const sent: { by: string; report: Report }[] = []
-const swarm = new Swarm(12, {
+const [wire, openWire, log]: [Record[], Record[], string[]] = [[], [], []]
+
+/** Through the routes, with what goes over the wire kept. */
+const told =
+  (kept: Record[], members: () => readonly Member[]) =>
+  async (member: Member, report: Report): Promise<ReturnType<typeof reportReplySchema.parse>> => {
+    const of = members().findIndex(({ agentId }) => agentId === member.agentId)
+    const response = await sendReport(member, report)
+    const text = await response.text()
+    kept.push({ where: 'report', text: JSON.stringify(report), of }, { where: 'reply', text, of })
+    return reportReplySchema.parse(JSON.parse(text))
+  }
+
+const membersOf = ({ nodes }: Swarm): Member[] => nodes.map(({ member }) => member)
+const sealedTold = told(wire, () => membersOf(swarm))
+const swarm: Swarm = new Swarm(12, {
   send: (member, report) => {
     sent.push({ by: member.agentId, report })
-    return deliver(member, report)
+    return sealedTold(member, report)
   },
+})
+/** The same links in an overlay that names them: what the search must find there. */
+const open: Swarm = new Swarm(13, { send: told(openWire, () => membersOf(open)) })
+const nameOf = (kind: string) => (_: unknown, index: number) => ({
+  name: `${kind}-${String(index).padStart(2, '0')}`,
 })
 
 beforeAll(async () => {
   database = await createTestDatabase()
-  setRuntime(testRuntime(database, () => new Date()))
-  leader = startTestLeader(database, 6)
+  const stream = { write: (line: string) => void log.push(line) }
+  const logger = pino({ level: 'trace' }, stream)
+  setRuntime({ ...testRuntime(database, () => new Date()), log: logger })
+  leader = startTestLeader(database, 6, { log: logger })
   const { teamId } = await seedTeam(database.orm.em.fork(), 'harbourline', ['viewer'], new Date())
   const overlay = await seedOverlay(database, teamId, { slug: 'sealed', disclosure: 'sealed' })
   overlayId = overlay.id
-  await swarm.join(
-    await seedCode(database, overlay.id, { uses: 12 }),
-    Array.from({ length: 12 }, (_, index) => ({ name: `tar-${index}` })),
-  )
-  for (const [a, b] of LINKS) swarm.link(a, b)
-  swarm.start()
+  const named = await seedOverlay(database, teamId, { slug: 'named', disclosure: 'named' })
+  for (const [each, id, kind] of [
+    [swarm, overlay.id, 'tar'],
+    [open, named.id, 'gul'],
+  ] as const) {
+    await each.join(await seedCode(database, id, { uses: 12 }), Array.from({ length: 12 }, nameOf(kind)))
+    for (const [a, b] of LINKS) each.link(a, b)
+    each.start()
+  }
 })
 afterAll(async () => {
   swarm.stop()
+  open.stop()
   await leader.stop()
   setRuntime(undefined)
   await database.close()
@@ -90,6 +121,26 @@ const near =
   ({ lambda2, data }: Row): boolean =>
     data === 'fresh' && lambda2 !== null && Math.abs(lambda2 / value - 1) < 0.05
 
+/** All lists of at least two ids within a value, in arrays or as keys. */
+function listsOf(value: unknown, ids: ReadonlySet<string>): string[][] {
+  if (typeof value !== 'object' || value === null) return []
+  const inner = Object.values(value)
+  const found = [...Object.keys(value), ...inner].filter((one) => ids.has(String(one))).map(String)
+  return [...(found.length > 1 ? [found] : []), ...inner.flatMap((one) => listsOf(one, ids))]
+}
+
+const beside = (found: readonly Found[]): Found[] => found.filter(({ named }) => named.length > 1)
+
+async function withClient<T>(work: (client: pg.Client) => Promise<T>): Promise<T> {
+  const client = new pg.Client({ connectionString: database.url })
+  await client.connect()
+  try {
+    return await work(client)
+  } finally {
+    await client.end()
+  }
+}
+
 describe('a sealed overlay of twelve through the collector', () => {
   it('is read within 5 %, with its links counted in all and across the cut', async () => {
     const row = await untilReading(
@@ -98,35 +149,17 @@ describe('a sealed overlay of twelve through the collector', () => {
     expect(row.body.coverage.linksMeasured).toBe(LINKS.length)
   })
 
-  it('says on the wire, and keeps in its tables, no agent beside another and no sums of one', async () => {
-    const ids = swarm.nodes.map(({ member }) => member.agentId)
-    for (const { by, report } of sent) {
-      const text = JSON.stringify(report)
-      for (const id of ids) expect(id !== by && text.includes(id)).toBe(false)
+  it('says no sums of one agent on the wire, and keeps none', async () => {
+    for (const { report } of sent)
       expect(report.sums).toMatchObject({ colonies: [], energies: [], linkEnds: 0, sweep: null })
-    }
     expect(sent.some(({ report }) => (report.masked?.length ?? 0) > 0)).toBe(true)
-    const em = database.orm.em.fork()
-    const states = await query<{ id: string; text: string }>(
-      em,
-      `select agent_id as id, sums::text || node::text || complaints::text as text from agent_states`,
-    )
-    expect(states).toHaveLength(12)
-    for (const { text } of states) {
-      for (const id of ids) expect(text.includes(id)).toBe(false)
-      expect(text).not.toMatch(/"(kills|walkerTime|heldX|mean)"/)
-    }
-    const [control] = await query<{ text: string }>(
-      em,
-      `select state::text || orders_text as text from controls where overlay_id = ?`,
+    const states = await query<{ text: string }>(
+      database.orm.em.fork(),
+      `select sums::text || node::text || complaints::text as text from agent_states where overlay_id = ?`,
       [overlayId],
     )
-    for (const [a, b] of LINKS) {
-      const [one, other] = [ids[a]!, ids[b]!]
-      // Sides are lists of agents by design; no place has a pair.
-      expect(control!.text).not.toContain(`${one}","${other}`)
-      expect(control!.text).not.toContain(`${other}","${one}`)
-    }
+    expect(states).toHaveLength(12)
+    for (const { text } of states) expect(text).not.toMatch(/"(kills|walkerTime|heldX|mean)"/)
   })
 
   it('follows the loss of a link, and goes on without an agent that falls silent', async () => {
@@ -137,5 +170,82 @@ describe('a sealed overlay of twelve through the collector', () => {
     await untilReading(({ data, body }) => data === 'fresh' && body.coverage.heard === 11)
     expect(swarm.failure).toBeNull()
     expect(leader.failures).toEqual([])
+  })
+
+  it('names no agent beside another on the wire, in a log line, or in a row of any table', async () => {
+    const naming = new Naming(membersOf(swarm))
+    expect(naming.find(wire)).toEqual([])
+    expect(wire.filter(({ where }) => where === 'reply').length).toBeGreaterThan(100)
+    const lines = log.map((text) => ({ where: 'log', text }))
+    expect(lines.length).toBeGreaterThan(0)
+    expect(beside(naming.find(lines))).toEqual([])
+    const rows = await withClient(allRows)
+    const one = new Set(naming.find(rows).map(({ where }) => where))
+    for (const table of ['agents', 'agent_states', 'masked_vectors', 'overlay_events', 'controls'])
+      expect(one).toContain(`public.${table}`)
+    // On which side each agent is, and who is not heard: lists in the order of ids, whoever their neighbours are.
+    expect([...new Set(beside(naming.find(rows)).map(({ where }) => where))]).toEqual(['public.controls'])
+    const [control] = await query<{ state: unknown; orders: string }>(
+      database.orm.em.fork(),
+      'select state, orders_text as orders from controls where overlay_id = ?',
+      [overlayId],
+    )
+    expect(naming.find([{ where: 'orders', text: control!.orders }])).toEqual([])
+    const ids = new Set(membersOf(swarm).map(({ agentId }) => agentId))
+    const lists = listsOf(control!.state, ids)
+    expect(lists.map(({ length }) => length)).toContain(12)
+    for (const list of lists) expect(list).toEqual([...list].sort())
+    const snapshots = await query<{ links: unknown }>(
+      database.orm.em.fork(),
+      'select links from node_snapshots where overlay_id = ?',
+      [overlayId],
+    )
+    expect(snapshots.length).toBeGreaterThan(0)
+    for (const { links } of snapshots) expect(links).toEqual([])
+  })
+
+  it('gives every agent the same directory of all, in the order of names', async () => {
+    const replies = await Promise.all(
+      [0, 6].map(async (index) => {
+        const response = await ask(directoryRoute, 'GET', { bearer: swarm.nodes[index]!.member.token })
+        return response.text()
+      }),
+    )
+    expect(replies[0]).toBe(replies[1])
+    const [found] = new Naming(membersOf(swarm)).find([{ where: 'directory', text: replies[0]! }])
+    expect(found?.named).toEqual(membersOf(swarm).map((_, index) => index))
+  })
+})
+
+describe('the same search', () => {
+  it('finds every neighbour in an overlay that names them, on the wire and in its tables', async () => {
+    const naming = new Naming(membersOf(open))
+    const neighbours = membersOf(open).map((_, index) => {
+      const ends = LINKS.filter((link) => link.includes(index)).map(([a, b]) => (a === index ? b : a))
+      return ends.sort((a, b) => a - b)
+    })
+    for (const [of, wanted] of neighbours.entries()) {
+      const reports = openWire.filter((record) => record.of === of)
+      const named = naming.find(reports).flatMap((found) => found.named)
+      expect([...new Set(named)].sort((a, b) => a - b)).toEqual(wanted)
+    }
+    const rows = beside(naming.find(await withClient(allRows)))
+    const states = rows.filter(({ where }) => where === 'public.agent_states')
+    expect(states.map(({ named }) => [...named].sort((a, b) => a - b))).toEqual(
+      expect.arrayContaining(neighbours.map((ends, of) => [...ends, of].sort((a, b) => a - b))),
+    )
+  })
+
+  it('finds two agents in a log line, by name, by id and by key, and in bytes', () => {
+    const naming = new Naming(membersOf(swarm))
+    const [one, other] = [membersOf(swarm)[3]!, membersOf(swarm)[8]!]
+    const bytes = Buffer.from(other.keys.publicKey, 'base64url').toString('hex')
+    for (const text of [
+      `{"agent":"${one.name}","peer":"${other.name}"}`,
+      `(${one.agentId},${other.agentId})`,
+      `${one.keys.publicKey} ${other.agentId.replaceAll('-', '')}`,
+      `(${one.name},"\\\\x${bytes}")`,
+    ])
+      expect(beside(naming.find([{ where: 'log', text }]))).toEqual([{ where: 'log', named: [3, 8], text }])
   })
 })

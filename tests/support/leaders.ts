@@ -3,6 +3,7 @@ import type { Clock } from '@/lib/collector/clock'
 import { Leader } from '@/lib/collector/leader'
 import { systemClock } from '@/lib/collector/process'
 import { Listener } from '@/lib/db'
+import type { Log } from '@/lib/http/runtime'
 import { createRandom } from '@/lib/method/random'
 import { getReckoner } from '@/lib/reckon/process'
 import type { TestDatabase } from './database'
@@ -24,7 +25,7 @@ export interface TestLeader {
 export function startTestLeader(
   database: TestDatabase,
   seed: number,
-  init: { clock?: Clock } = {},
+  init: { clock?: Clock; log?: Log } = {},
 ): TestLeader {
   const failures: object[] = []
   const listener = new Listener({ random: Math.random, warn: () => {} }, { url: database.url })
@@ -36,9 +37,15 @@ export function startTestLeader(
       clock: init.clock ?? systemClock,
       random: createRandom(seed),
       log: {
-        info: () => {},
-        warn: (data) => failures.push(data),
-        error: (data) => failures.push(data),
+        info: (data, message) => init.log?.info(data, message),
+        warn: (data, message) => {
+          failures.push(data)
+          init.log?.warn(data, message)
+        },
+        error: (data, message) => {
+          failures.push(data)
+          init.log?.error(data, message)
+        },
       },
       reckon: (name, asked, until) => getReckoner().reckon(name, asked, until),
       newHolder: randomUUID,

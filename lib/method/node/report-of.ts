@@ -154,7 +154,8 @@ function unnamedReport(now: ReportCase, host: HostFacts, nowMs: number): Report 
   return {
     incarnation: now.incarnation,
     number: now.number,
-    ordersSequence: orders?.sequence ?? 0,
+    // Orders that no reply of the collector brought came by a neighbour: which those are would help to tell whose.
+    ordersSequence: 0,
     sums: { attached: live.length > 0 ? 1 : 0, ...NO_SUMS },
     node: {
       degree,

@@ -1,86 +1,95 @@
-import { Matrix, solve } from 'ml-matrix'
-import type { Looks } from './looks'
+import { DEGREE_RENEWED_MS } from '@/lib/method/node/facts'
+import type { Disclosure } from '@/lib/method/orders'
+import type { Told } from './looks'
+import { allPairs, PairScores } from './pairs'
 
-type Pair = [a: number, b: number]
+/** Pairs whose told values move together from look to look. */
+export function scoreByCovariance(nodes: number, told: readonly Told[]): PairScores {
+  const scores = new PairScores(nodes)
+  const steps = Array.from({ length: nodes }, (_, node) =>
+    Float64Array.from(told.slice(1), ({ values }, index) => values[node]! - told[index]!.values[node]!),
+  )
+  const sizes = steps.map((one) => Math.sqrt(product(one, one)))
+  for (const [a, b] of allPairs(nodes)) {
+    const size = sizes[a]! * sizes[b]!
+    scores.add(a, b, size > 0 ? product(steps[a]!, steps[b]!) / size : -1)
+  }
+  return scores
+}
 
-/** Rows of the regression are scaled to a spread of 1; this keeps it solvable where they say little. */
-const RIDGE = 1e-3
+function product(one: Float64Array, other: Float64Array): number {
+  let sum = 0
+  for (let at = 0; at < one.length; at++) sum += one[at]! * other[at]!
+  return sum
+}
+
+/** Pairs whose told values lie near each other. */
+export function scoreByNearness(nodes: number, told: readonly Told[]): PairScores {
+  const scores = new PairScores(nodes)
+  const means = meansOf(nodes, told)
+  for (const [a, b] of allPairs(nodes)) scores.add(a, b, -Math.abs(means[a]! - means[b]!))
+  return scores
+}
+
+function meansOf(nodes: number, told: readonly Told[]): Float64Array {
+  const means = new Float64Array(nodes)
+  for (const { values } of told)
+    for (let node = 0; node < nodes; node++) means[node] = means[node]! + values[node]!
+  return means.map((sum) => sum / Math.max(1, told.length))
+}
+
+/** Which side each node was mostly said to be on: below 0, above 0, or 0 where it never said. */
+export function toldSides(nodes: number, told: readonly Told[]): number[] {
+  return [...meansOf(nodes, told)].map(Math.sign)
+}
 
 /**
- * Regression of every node's energies on all nodes' means: ½ Σⱼ wᵢⱼ(z̄ᵢʳ−z̄ⱼʳ)(z̄ᵢˢ−z̄ⱼˢ) is linear in the weights wᵢⱼ, which least
- * squares finds from enough looks. The pairs with the largest weights, of both ends together, are named.
+ * Pairs whose told degrees step together as a link comes or goes. When one does is known to the interval by what all links come to, and
+ * up or down with it; both its ends tell of it when their degrees are renewed. The fewer nodes step after it, the surer each pair of them.
  */
-export function namedByRegression({ nodes, sums }: Looks, links: number): Pair[] {
-  const weights = new Map<string, number>()
-  for (let node = 0; node < nodes; node++) {
-    const others = Array.from({ length: nodes }, (_, index) => index).filter((index) => index !== node)
-    const normal = Matrix.eye(others.length, others.length).mul(RIDGE)
-    const right = Matrix.zeros(others.length, 1)
-    for (const look of sums) {
-      const own = look[node]
-      if (!own) continue
-      const size = own.means.length
-      let at = 0
-      for (let r = 0; r < size; r++)
-        for (let s = r; s < size; s++) {
-          const energy = own.energies[at++]
-          if (energy === undefined) continue
-          const row = others.map((other) => {
-            const peer = look[other]
-            if (peer?.means.length !== size) return 0
-            return ((own.means[r]! - peer.means[r]!) * (own.means[s]! - peer.means[s]!)) / 2
-          })
-          const spread = Math.hypot(...row) || 1
-          addRow(
-            normal,
-            right,
-            row.map((value) => value / spread),
-            energy / spread,
-          )
-        }
-    }
-    const found = solve(normal, right)
-    others.forEach((other, index) => {
-      const key = node < other ? `${node}-${other}` : `${other}-${node}`
-      weights.set(key, (weights.get(key) ?? 0) + found.get(index, 0))
-    })
+export function scoreBySteps(nodes: number, told: readonly Told[], disclosure: Disclosure): PairScores {
+  const scores = new PairScores(nodes)
+  const renewedMs = disclosure === 'named' ? 0 : DEGREE_RENEWED_MS
+  const steps = stepsOf(nodes, told)
+  for (const event of eventsOf(told)) {
+    // A look before: a degree said and the count of all links are not of the same moment.
+    const within = steps.filter(
+      ({ up, atMs }) =>
+        up === event.up &&
+        atMs >= event.atMs - event.slackMs &&
+        atMs <= event.atMs + renewedMs + event.slackMs,
+    )
+    const ends = [...new Set(within.map(({ node }) => node))]
+    const pairs = (ends.length * (ends.length - 1)) / 2
+    for (const [a, b] of allPairs(ends.length)) scores.add(ends[a]!, ends[b]!, event.links / pairs)
   }
-  return topPairs(weights, links)
+  return scores
 }
 
-function addRow(normal: Matrix, right: Matrix, row: readonly number[], value: number): void {
-  for (let a = 0; a < row.length; a++) {
-    const first = row[a]!
-    if (first === 0) continue
-    right.set(a, 0, right.get(a, 0) + first * value)
-    for (let b = 0; b < row.length; b++) normal.set(a, b, normal.get(a, b) + first * row[b]!)
-  }
+interface Step {
+  node: number
+  atMs: number
+  up: boolean
 }
 
-/** Pairs whose disclosed values move together from look to look, or simply lie near each other. */
-export function namedByValues(
-  { nodes, values }: Looks,
-  links: number,
-  by: 'covariance' | 'nearness',
-): Pair[] {
-  const series = Array.from({ length: nodes }, (_, node) => values.map((look) => look[node] ?? 0))
-  const steps = series.map((one) => one.slice(1).map((value, index) => value - one[index]!))
-  const mean = series.map((one) => one.reduce((sum, value) => sum + value, 0) / Math.max(1, one.length))
-  const scores = new Map<string, number>()
-  for (let a = 0; a < nodes; a++)
-    for (let b = a + 1; b < nodes; b++) {
-      const together = steps[a]!.reduce((sum, step, index) => sum + step * steps[b]![index]!, 0)
-      const size = Math.hypot(...steps[a]!) * Math.hypot(...steps[b]!)
-      const score = by === 'covariance' ? (size > 0 ? together / size : -1) : -Math.abs(mean[a]! - mean[b]!)
-      scores.set(`${a}-${b}`, score)
+function stepsOf(nodes: number, told: readonly Told[]): Step[] {
+  const steps: Step[] = []
+  for (let node = 0; node < nodes; node++)
+    for (let at = 1; at < told.length; at++) {
+      const [before, now] = [told[at - 1]!.degrees[node]!, told[at]!.degrees[node]!]
+      if (before > 0 && now > 0 && before !== now)
+        steps.push({ node, atMs: told[at]!.atMs, up: now > before })
     }
-  return topPairs(scores, links)
+  return steps
 }
 
-function topPairs(scores: ReadonlyMap<string, number>, count: number): Pair[] {
-  const sorted = [...scores].sort((a, b) => b[1] - a[1]).slice(0, count)
-  return sorted.map(([key]): Pair => {
-    const [a, b] = key.split('-').map(Number)
-    return [a!, b!]
+/** When the count of all links changed, by how many, while the same agents took part. */
+function eventsOf(told: readonly Told[]): { atMs: number; up: boolean; links: number; slackMs: number }[] {
+  return told.slice(1).flatMap((now, index) => {
+    const before = told[index]!
+    if (now.agents !== before.agents || now.linkEnds === before.linkEnds) return []
+    const change = now.linkEnds - before.linkEnds
+    const slackMs = 3 * (now.atMs - before.atMs)
+    return [{ atMs: now.atMs, up: change > 0, links: Math.abs(change) / 2, slackMs }]
   })
 }

@@ -37,11 +37,24 @@ describe('a neighbour’s report', () => {
     isSeen: false,
     distance: 2,
     neighbours: peers(1),
+    aside: null,
     ...over,
   })
   test.each<[string, Partial<RelayCase>, object]>([
     ['goes with the next own one where own ones are delivered', { distance: 0 }, { kind: 'deliver' }],
     ['even on its last hop', { distance: 0, hops: 1 }, { kind: 'deliver' }],
+    [
+      'goes on to one that delivers as well where links are not named and it comes from its own agent',
+      { distance: 0, from: 'origin', aside: 'peer-3' },
+      { kind: 'pass-on', to: ['peer-3'], hops: 2 },
+    ],
+    ['is delivered by that one', { distance: 0, hops: 2, aside: 'peer-3' }, { kind: 'deliver' }],
+    ['is delivered where there is no such neighbour', { distance: 0, from: 'origin' }, { kind: 'deliver' }],
+    [
+      'is delivered where it has no hop left',
+      { distance: 0, from: 'origin', hops: 1, aside: 'peer-3' },
+      { kind: 'deliver' },
+    ],
     ['goes on to nearer neighbours, one hop less', {}, { kind: 'pass-on', to: ['peer-0'], hops: 2 }],
     ['does not go back', { neighbours: [{ peer: 'peer-9', distance: 1 }] }, drop('nobody-nearer')],
     ['ends after three hops', { hops: 1 }, drop('far')],
