@@ -12,6 +12,7 @@ import {
   labelId,
   linkId,
   type SoonWindow,
+  takableOf,
   toggleLabel,
   toggleLink,
   toggleNode,
@@ -35,15 +36,25 @@ export interface ChooserProps {
 /** Every way to say what is to be away; they add up. */
 export function Chooser({ slug, from, windows, exclude, onChange, onWindows }: ChooserProps) {
   const joined = useMemo(() => joinedOf(from.nodes), [from.nodes])
-  const nodePicks = useMemo(() => joined.map(nodePick), [joined])
-  const labelPicks = useMemo(() => labelPicksOf(joined), [joined])
-  const linkPicks = useMemo(
-    () => from.links.filter(({ state }) => state === 'live').map(linkPick),
-    [from.links],
-  )
+  const own = useMemo(() => takableOf(from.nodes), [from.nodes])
+  const nodePicks = useMemo(() => own.map(nodePick), [own])
+  const labelPicks = useMemo(() => labelPicksOf(own), [own])
+  const linkPicks = useMemo(() => {
+    const names = new Set(own.map(({ name }) => name))
+    return from.links
+      .filter(({ state, a, b }) => state === 'live' && names.has(a) && names.has(b))
+      .map(linkPick)
+  }, [from.links, own])
   const soon = windows.length
+  const others = joined.length - own.length
   return (
     <div>
+      {others > 0 ? (
+        <p className="mb-3 text-soft">
+          {formatCount(others, 'node of another team stays', 'nodes of other teams stay')}: each team
+          rehearses with its own.
+        </p>
+      ) : null}
       <Fold
         heading="All that reboot tonight"
         about={
@@ -75,7 +86,7 @@ export function Chooser({ slug, from, windows, exclude, onChange, onWindows }: C
           onAll={(ids) => onChange((was) => withNodes(was, ids))}
           empty="No node has joined yet."
         />
-        <PasteNames nodes={from.nodes} onNames={(names) => onChange((was) => withNodes(was, names))} />
+        <PasteNames nodes={own} onNames={(names) => onChange((was) => withNodes(was, names))} />
       </Fold>
       <Fold heading="Links" about={takenText(exclude.links.length + exclude.between.length, 'choice')}>
         {from.disclosure === 'named' ? (
@@ -88,7 +99,7 @@ export function Chooser({ slug, from, windows, exclude, onChange, onWindows }: C
               onToggle={(id) => onChange((was) => toggleLink(was, linkOf(id)))}
               empty="No link is measured yet."
             />
-            <PairFields nodes={joined} onAdd={(pair) => onChange((was) => withBetween(was, pair))} />
+            <PairFields nodes={own} onAdd={(pair) => onChange((was) => withBetween(was, pair))} />
           </>
         ) : (
           <p className="max-w-2xl text-soft">

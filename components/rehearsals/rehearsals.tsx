@@ -5,7 +5,7 @@ import { useLinks, useNodes, useRehearsals, useWindows } from '@/components/live
 import { Coverage } from '@/components/now/coverage'
 import { EmptyState, FailedState, LinkButton, Note, PageHeading, Sheet, Waiting } from '@/components/ui'
 import type { Overlay, OverlayLink } from '@/lib/data/dto'
-import { initialDraft, isOpen, joinedOf, type Prefill } from '@/lib/face/rehearsal'
+import { initialDraft, isOpen, type Prefill, takableOf } from '@/lib/face/rehearsal'
 import { RehearsalCautions } from './cautions'
 import { HistoryTable } from './history-table'
 import { StartForm } from './start-form'
@@ -89,10 +89,10 @@ function Start(props: RehearsalsProps & { rehearsals: ReturnType<typeof useRehea
       </FailedState>
     )
   }
-  if (joinedOf(nodes.data).length === 0)
+  if (takableOf(nodes.data).length === 0)
     return (
       <EmptyState
-        title="No node has joined yet."
+        title="No node of yours has joined yet."
         actions={
           <LinkButton href={`/overlays/${encodeURIComponent(slug)}/joining`}>
             Create a joining code

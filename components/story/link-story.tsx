@@ -23,6 +23,7 @@ import {
 import type { LinkStory } from '@/lib/data/weak-dto'
 import { formatHigh, formatLink, formatShare } from '@/lib/face/format'
 import type { Range } from '@/lib/face/range'
+import { takableOf } from '@/lib/face/rehearsal'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { ageText } from '@/lib/face/weak'
 import { HistorySheet } from './history-sheet'
@@ -78,7 +79,7 @@ function Story({ slug, story, range }: { slug: string; story: LinkStory; range: 
               ))}
             </p>
           ))}
-          {link?.state === 'live' && disclosure === 'named' ? (
+          {link?.state === 'live' && disclosure === 'named' && takableOf([story.a, story.b]).length === 2 ? (
             <RehearseLink slug={slug} exclude={{ links: [[link.a, link.b]] }}>
               Rehearse going without it
             </RehearseLink>

@@ -22,7 +22,7 @@ import type { NodeStory } from '@/lib/data/weak-dto'
 import { formatShare, formatValue } from '@/lib/face/format'
 import { nodeConcerns } from '@/lib/face/node-concerns'
 import type { Range } from '@/lib/face/range'
-import { joinedOf } from '@/lib/face/rehearsal'
+import { takableOf } from '@/lib/face/rehearsal'
 import { hiddenLinksText, type Neighbour, neighboursOf } from '@/lib/face/story'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { HistorySheet } from './history-sheet'
@@ -77,7 +77,7 @@ function Story({ slug, story, range }: { slug: string; story: NodeStory; range: 
             </span>
           ) : null}
         </p>
-        {joinedOf([node]).length > 0 ? (
+        {takableOf([node]).length > 0 ? (
           <RehearseLink slug={slug} exclude={{ nodes: [node.name] }}>
             Rehearse going without it
           </RehearseLink>

@@ -63,7 +63,9 @@ export function takenOf(
   if (isAsked && unknown.length > 0)
     say(
       'exclude.nodes',
-      `No node of this overlay is called ${listOf(unknown)}. Choose nodes that have joined.`,
+      own.length < from.agents.length
+        ? `None of your nodes is called ${listOf(unknown)}. Choose nodes of your team that have joined.`
+        : `No node of this overlay is called ${listOf(unknown)}. Choose nodes that have joined.`,
     )
   const empty = labels.filter(({ key, value }) => !own.some((agent) => agent.labels[key] === value))
   if (isAsked && empty.length > 0)

@@ -34,6 +34,11 @@ export function joinedOf(nodes: readonly OverlayNode[]): OverlayNode[] {
   return nodes.filter(({ state }) => STATES_OF_JOINED.includes(state))
 }
 
+/** Each team takes away its own. */
+export function takableOf(nodes: readonly OverlayNode[]): OverlayNode[] {
+  return joinedOf(nodes).filter(({ partner }) => !partner)
+}
+
 export function isNothing({ nodes, links, labels, between }: Excluded): boolean {
   return nodes.length + links.length + labels.length + between.length === 0
 }
@@ -46,7 +51,7 @@ export function chosenOf(exclude: Excluded, { disclosure, nodes, links }: Choose
     agents: joined.map(({ name, labels, partner }) => ({ agentId: name, name, labels, isOwn: !partner })),
     links: disclosure === 'named' ? links.filter(({ state }) => state === 'live') : [],
   }
-  const away = joined.filter(
+  const away = takableOf(nodes).filter(
     ({ name, labels }) =>
       exclude.nodes.includes(name) || exclude.labels.some(({ key, value }) => labels[key] === value),
   )

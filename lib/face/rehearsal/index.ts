@@ -10,6 +10,7 @@ export {
   isNothing,
   joinedOf,
   NOTHING,
+  takableOf,
 } from './choice'
 export { type Compared, compared } from './compare'
 export { askedOf, type Draft, whenOptions } from './draft'

@@ -1,5 +1,5 @@
 import type { OverlayNode } from '@/lib/data/dto'
-import { joinedOf } from './choice'
+import { takableOf } from './choice'
 
 export interface Pasted {
   /** Names of nodes that have joined, once each, in the order they came. */
@@ -14,7 +14,7 @@ export interface Pasted {
  */
 export function readPasted(text: string, nodes: readonly OverlayNode[]): Pasted {
   const byName = new Map(nodes.map((node) => [node.name, node]))
-  const joined = new Set(joinedOf(nodes).map(({ name }) => name))
+  const joined = new Set(takableOf(nodes).map(({ name }) => name))
   const byFolded = new Map(nodes.map(({ name }) => [name.toLowerCase(), name]))
   const names = new Set<string>()
   const errors: Pasted['errors'] = []

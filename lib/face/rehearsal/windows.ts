@@ -1,6 +1,6 @@
 import type { OverlayNode } from '@/lib/data/dto'
 import type { MaintenanceWindowDto } from '@/lib/data/rules-dto'
-import { joinedOf } from './choice'
+import { takableOf } from './choice'
 
 /** "Tonight" for whoever is on duty. */
 export const SOON_MS = 24 * 3_600_000
@@ -30,7 +30,7 @@ export function soonWindows(
   nowMs: number,
   also: string | null = null,
 ): SoonWindow[] {
-  const joined = joinedOf(nodes)
+  const joined = takableOf(nodes)
   return windows
     .flatMap(({ id, reason, label, next }) => {
       const span = next.find(({ startsAt }) => Date.parse(startsAt) > nowMs)

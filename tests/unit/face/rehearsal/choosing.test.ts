@@ -80,6 +80,18 @@ describe('what stands against a rehearsal', () => {
     ])
     expect(problems({ nodes: ['tar-01'] }, sealed)).toEqual([])
   })
+  it('is a node of another team, and a label takes none of theirs away', () => {
+    const shared = {
+      ...named,
+      nodes: nodes.map((node) => (node.name === 'eel-01' ? { ...node, partner: true as const } : node)),
+    }
+    expect(problems({ nodes: ['eel-01'] }, shared)).toEqual([
+      'None of your nodes is called eel-01. Choose nodes of your team that have joined.',
+    ])
+    const eelholm = exclude({ labels: [{ key: 'office', value: 'Eelholm' }] })
+    expect(chosenOf(eelholm, shared).nodes).toEqual(['eel-02', 'eel-03', 'eel-04'])
+    expect(chosenOf(eelholm, shared).joined).toBe(12)
+  })
   it('is a link that is lost', () =>
     expect(problems({ links: [['tar-02', 'tar-01']] })).toEqual([
       'There is no link tar-02 – tar-01 now. Choose links that are measured.',
