@@ -23,7 +23,8 @@ export const DISCLOSURE_CHOICES: readonly ChoiceOf<(typeof DISCLOSURES)[number]>
   {
     value: 'sealed',
     label: 'Sealed',
-    meaning: 'No link is ever named. The page says how many links hold the sides together, not which.',
+    meaning:
+      'No link is ever named. The page says how many links hold the sides together, not which; on which side a node lies is said.',
   },
   {
     value: 'flagged',

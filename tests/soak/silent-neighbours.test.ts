@@ -1,9 +1,14 @@
 import { afterAll, describe, expect, it } from 'vitest'
+import { LEAST_HEARD } from '@/lib/method/control/coverage'
 import { type SilentCourse, type SilentInit, silentCourse } from '../support/silent-course'
 
 const SEEDS = Number(process.env.THINSPAN_SOAK_RUNS ?? 2)
 const SHARES = [0.01, 0.1, 0.33]
 const LOSSES = [0.05, 0.15, 0.3]
+/** From the silence to a reading without the silent, and from their return to one with them. */
+const MOST_INTERVALS = 25
+/** From λ₂, in the mean of half a minute, once all are back. */
+const MOST_OFF = 0.03
 
 type Row = Omit<SilentInit, 'seed'> & { courses: SilentCourse[] }
 
@@ -22,6 +27,27 @@ describe('an overlay of 60 at steady pace in which agents fall silent for two mi
     const courses = Array.from({ length: SEEDS }, (_, seed) => silentCourse({ ...init, seed: seed + 1 }))
     rows.push({ ...init, courses })
     process.stdout.write(`${lineOf({ ...init, courses })}\n`)
+    for (const { againAfter, end, backAfter, after } of courses) {
+      if (1 - init.silent < LEAST_HEARD) expect(end).toBeNull()
+      else expect(againAfter ?? Number.POSITIVE_INFINITY).toBeLessThanOrEqual(MOST_INTERVALS)
+      expect(backAfter ?? Number.POSITIVE_INFINITY).toBeLessThanOrEqual(MOST_INTERVALS)
+      expect(Math.abs(after ?? Number.POSITIVE_INFINITY)).toBeLessThan(MOST_OFF)
+    }
+  })
+
+  it('reads the same within 0.1 % as if masks were nothing, all the time', () => {
+    const [masked, bare] = (['masked', 'bare'] as const).map(
+      (masks) =>
+        silentCourse({ disclosure: 'sealed', masks, silent: 0.1, how: 'unheard', loss: 0.15, seed: 1 })
+          .readings,
+    )
+    expect(masked!.filter((value) => value !== null).length).toBeGreaterThan(50)
+    expect(masked).toHaveLength(bare!.length)
+    for (const [look, value] of masked!.entries()) {
+      const other = bare![look]!
+      expect(value === null).toBe(other === null)
+      if (value !== null) expect(Math.abs(value / other - 1)).toBeLessThan(0.001)
+    }
   })
 
   afterAll(() => {
@@ -29,8 +55,9 @@ describe('an overlay of 60 at steady pace in which agents fall silent for two mi
   })
 })
 
+/** before, without: share of the time without a fresh reading; again, back: intervals; worst, end, after: off the exact λ₂. The worst of the seeds. */
 const HEAD =
-  'disclosure silent how      lost  before  again after  without    worst      end  back after    after'
+  'disclosure silent how      lost  before        again  without    worst      end        back    after'
 
 function lineOf({ disclosure, silent, how, loss, courses }: Row): string {
   const most = (of: (course: SilentCourse) => number | null): number | null => {
