@@ -11,7 +11,8 @@ const REMAINS = [
   'Who is in the overlay, when each node reports, and that one has no neighbour left.',
   'On which side of the weak cut each node stands, while one cut is clearly the weakest. Links lie within sides more often than across.',
   'About how many links each node has, as a power of two.',
-  'How many links there are, and how many cross the weak cut, in all. Sides of fewer than 5 nodes are not counted.',
+  'Whose reports come through other agents, and through which.',
+  'How many links there are, so that it shows when one goes, and how many cross the weak cut. Sides of fewer than 5 nodes are not counted.',
   'What would remain without some nodes: whoever rehearses many drains can find out without whom a node would have no link. Each rehearsal is in the audit log.',
   'More, to a collector that breaks the rules: run it where all owners trust whoever runs it to follow them.',
 ]
