@@ -30,7 +30,7 @@ const HEADINGS: Record<Exclude<WordsFor, 'named'>, string> = {
 }
 
 const PROTECTS =
-  'Agents mask their figures with each other before they hand them over, so that only totals over all of them mean anything. Who is linked to whom is not sent, stored or logged'
+  'Agents mask their figures with each other before they hand them over, so that only totals over all of them mean anything. Who is linked to whom is not sent to the collector, nor stored or logged by it'
 const FLAGGED = 'links over the share limit whose two ends both consent are named.'
 
 /** In plain words what is kept from the collector, and what is not; null where all links are named. */
