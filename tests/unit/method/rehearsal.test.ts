@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
-import { edgesOf, fromEdges } from '@/lib/method/graph'
+import { edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
 import { twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
@@ -13,6 +13,27 @@ const drainsFor = (name: string, what: readonly string[]) => {
   if (!topology) throw new Error(`no topology ${name}`)
   const drains = drainsOf(topology, createRandom(`drain ${topology.name}`))
   return { topology, drains: drains.filter((drain) => what.includes(drain.what)) }
+}
+
+/** Nine nodes and six, two links between them. */
+const circle = (from: number, size: number): [number, number][] =>
+  [1, 2].flatMap((step) =>
+    Array.from({ length: size }, (_, at): [number, number] => [from + at, from + ((at + step) % size)]),
+  )
+const NINE_AND_SIX: [number, number][] = [...circle(0, 9), ...circle(9, 6), [0, 9], [4, 12]]
+
+/** Once the answer is there. */
+function rehearsedSealed(graph: SparseGraph, gone: string): Simulation {
+  const settings = { ...DEFAULT_SETTINGS, pace: PACES.brisk, disclosure: 'sealed' as const }
+  const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
+  const simulation = new Simulation(
+    { random: createRandom('sealed') },
+    { nodes: graph.nodes, links, settings, audits: false },
+  )
+  simulation.run(40_000)
+  simulation.rehearsed = [{ id: 'one', agents: [gone], links: [] }]
+  expect(simulation.runUntil(() => simulation.rehearsals[0]?.state === 'settled', 90_000)).not.toBeNull()
+  return simulation
 }
 
 describe('a rehearsal, on simulated overlays', () => {
@@ -32,32 +53,20 @@ describe('a rehearsal, on simulated overlays', () => {
   })
 
   it('reads what would remain where sums are masked, from totals alone, and which side is which', () => {
-    // Nine nodes and six, two links between them.
-    const circle = (from: number, size: number): [number, number][] =>
-      [1, 2].flatMap((step) =>
-        Array.from({ length: size }, (_, at): [number, number] => [from + at, from + ((at + step) % size)]),
-      )
-    const crossing: [number, number][] = [
-      [0, 9],
-      [4, 12],
-    ]
-    const graph = fromEdges(15, [...circle(0, 9), ...circle(9, 6), ...crossing])
-    const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
-    const settings = { ...DEFAULT_SETTINGS, pace: PACES.brisk, disclosure: 'sealed' as const }
-    const simulation = new Simulation(
-      { random: createRandom('sealed') },
-      { nodes: 15, links, settings, audits: false },
-    )
-    simulation.run(40_000)
-    simulation.rehearsed = [{ id: 'one', agents: ['node-2'], links: [] }]
-    const tookMs = simulation.runUntil(() => simulation.rehearsals[0]?.state === 'settled', 90_000)
-    expect(tookMs).not.toBeNull()
+    const graph = fromEdges(15, NINE_AND_SIX)
+    const simulation = rehearsedSealed(graph, 'node-2')
     const { found, estimate } = simulation.rehearsals[0]!
     expect(Math.abs((estimate?.lambda2 ?? 0) / exactWithout(graph, [2]) - 1)).toBeLessThan(0.05)
     const [live, rehearsed] = [simulation.estimate!.cut!, estimate!.cut!]
     expect([live.links, [live.above, live.below].sort()]).toEqual([2, [6, 9]])
     expect([rehearsed.links, [rehearsed.above, rehearsed.below].sort()]).toEqual([2, [6, 8]])
     expect(found?.isTurned).toBe((live.above === 6) !== (rehearsed.above === 6))
+  })
+
+  it('says that a node would have no link left where sums are masked, though nobody says which', () => {
+    const graph = fromEdges(16, [...NINE_AND_SIX, [15, 2]])
+    const { found, because } = rehearsedSealed(graph, 'node-2').rehearsals[0]!
+    expect([because, found?.isApart, found?.alone]).toEqual([null, true, 1])
   })
 
   it('reads one cluster alone, which is twenty times as firm as the whole, at a rate of its own', () => {
