@@ -192,7 +192,8 @@ describe('the links are back', () => {
       `Step 1 of the call order "${ORDER}" is told.`,
       `Nobody has it: step 2 of the call order "${ORDER}" is told.`,
       `${NEXT.name} has it`,
-      'cross the weak cut again.',
+      // Which of the two depends on whether a cut still stands out when the links are counted again.
+      /cross the weak cut again\.|No single weak cut stands out any more\./,
       'Nothing is raised any more.',
     ])
     expect(told.match(/sent, 1 attempt: /g)).toHaveLength(kept.mails.length + kept.texts.length)
@@ -218,11 +219,11 @@ const mailsTo = ({ email }: { email: string }) => kept.mails.filter(({ to }) => 
 const linkIn = (text = ''): string => /^http\S+$/m.exec(text)?.[0] ?? ''
 
 /** Each after the one before. */
-function inOrder(text: string, parts: readonly string[]): void {
-  let from = 0
+function inOrder(text: string, parts: readonly (string | RegExp)[]): void {
+  let rest = text
   for (const part of parts) {
-    const found = text.indexOf(part, from)
-    expect(found, `"${part}" in ${text.slice(from)}`).toBeGreaterThanOrEqual(0)
-    from = found + part.length
+    const found = typeof part === 'string' ? rest.indexOf(part) : rest.search(part)
+    expect(found, `"${part}" in ${rest}`).toBeGreaterThanOrEqual(0)
+    rest = rest.slice(found + 1)
   }
 }
