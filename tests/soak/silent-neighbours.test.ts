@@ -35,21 +35,6 @@ describe('an overlay of 60 at steady pace in which agents fall silent for two mi
     }
   })
 
-  it('reads the same within 0.1 % as if masks were nothing, all the time', () => {
-    const [masked, bare] = (['masked', 'bare'] as const).map(
-      (masks) =>
-        silentCourse({ disclosure: 'sealed', masks, silent: 0.1, how: 'unheard', loss: 0.15, seed: 1 })
-          .readings,
-    )
-    expect(masked!.filter((value) => value !== null).length).toBeGreaterThan(50)
-    expect(masked).toHaveLength(bare!.length)
-    for (const [look, value] of masked!.entries()) {
-      const other = bare![look]!
-      expect(value === null).toBe(other === null)
-      if (value !== null) expect(Math.abs(value / other - 1)).toBeLessThan(0.001)
-    }
-  })
-
   afterAll(() => {
     for (const line of [HEAD, ...rows.map(lineOf)]) process.stdout.write(`${line}\n`)
   })

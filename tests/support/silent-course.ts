@@ -8,7 +8,6 @@ import { algebraicConnectivity } from '@/lib/method/spectrum'
 
 export interface SilentInit {
   disclosure: 'named' | 'sealed'
-  masks?: 'masked' | 'bare'
   /** Share of the agents that fall silent together. */
   silent: number
   /** Their processes end; or they live and walk on, and only their reports are lost. */
@@ -32,8 +31,6 @@ export interface SilentCourse {
   backAfter: number | null
   /** In the mean of the end, all of them there. */
   after: number | null
-  /** Every λ₂ in turn; null while withheld. */
-  readings: (number | null)[]
 }
 
 const NODES = 60
@@ -47,7 +44,7 @@ const PACE = PACES.steady
 
 /** One overlay, of which some fall silent and come back. */
 export function silentCourse(init: SilentInit): SilentCourse {
-  const { disclosure, masks, silent, how, loss, seed } = init
+  const { disclosure, silent, how, loss, seed } = init
   const graph = twoClusters({ perSide: NODES / 2, degree: 6, links: 5 }, createRandom(`silent ${seed}`))
   const simulation = new Simulation(
     { random: createRandom(`silent course ${seed}`) },
@@ -57,7 +54,6 @@ export function silentCourse(init: SilentInit): SilentCourse {
       settings: { ...DEFAULT_SETTINGS, pace: PACE, disclosure },
       reportLoss: loss / 2,
       ordersLoss: loss / 2,
-      masks,
       audits: false,
     },
   )
@@ -96,13 +92,11 @@ export function silentCourse(init: SilentInit): SilentCourse {
       returnedMs,
     ),
     after: meanOff(later, exact),
-    readings: looks.map(({ lambda2 }) => lambda2),
   }
 }
 
 interface Look {
   atMs: number
-  lambda2: number | null
   /** λ₂ where the reading is fresh. */
   fresh: number | null
   /** Of what moment its sums are, and of how many agents. */
@@ -115,7 +109,6 @@ function lookOf(estimate: Estimate, { control }: Simulation): Look {
   const round = control.rounds?.last
   return {
     atMs,
-    lambda2,
     fresh: settling ? null : lambda2,
     takenAtMs: control.rounds ? (round?.atMs ?? 0) : atMs,
     agents: control.rounds ? (round?.head.agents ?? 0) : coverage.heard,
