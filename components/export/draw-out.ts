@@ -1,7 +1,10 @@
 import { type DrawingFile, drawingFile, familiesOf, styleAttributes } from '@/lib/face/drawing-file'
 
+/** Marks of sides beside a drawing are svg elements as well, so what is drawn says that it is. */
+export const DRAWN = 'svg[data-drawn]'
+
 /**
- * The svg elements below `frame` as one file: looks and fonts written into it, on the day sheet whatever the page shows.
+ * The drawn svg elements below `frame` as one file: looks and fonts written into it, on the day sheet whatever the page shows.
  * The sheet is turned for as long as the looks are read, which no frame is painted in.
  */
 export async function drawOut(
@@ -12,7 +15,7 @@ export async function drawOut(
   const root = document.documentElement
   const sheet = root.dataset.sheet
   root.dataset.sheet = 'day'
-  const drawings = [...frame.querySelectorAll('svg')]
+  const drawings = [...frame.querySelectorAll<SVGSVGElement>(DRAWN)]
   const layers = drawings.map((svg) => layerOf(svg, families))
   const page = getComputedStyle(root)
   const [background, ink] = [page.getPropertyValue('--sheet').trim(), page.getPropertyValue('--ink').trim()]

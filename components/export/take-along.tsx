@@ -4,7 +4,7 @@ import { type RefObject, useState } from 'react'
 import { Button } from '@/components/ui'
 import { saveBlob } from '@/components/ui/save-text'
 import { overlayUrls } from '@/lib/face/urls'
-import { drawOut, toPng } from './draw-out'
+import { DRAWN, drawOut, toPng } from './draw-out'
 
 export interface TakeAlongProps {
   slug: string
@@ -29,7 +29,7 @@ export function TakeAlong({ slug, drawing, of, at = null }: TakeAlongProps) {
   const [problem, setProblem] = useState('')
   async function save(kind: 'svg' | 'png') {
     const frame = drawing.current
-    if (!frame?.querySelector('svg'))
+    if (!frame?.querySelector(DRAWN))
       return setProblem('There is no drawing at present. Show it, and try again.')
     try {
       const drawnAt = at ?? new Date().toISOString()

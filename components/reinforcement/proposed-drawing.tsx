@@ -58,6 +58,7 @@ export function ProposedDrawing({ slug, found }: { slug: string; found: Reinforc
               width={layout.width}
               height={layout.height}
               aria-hidden="true"
+              data-drawn
               className="pointer-events-none absolute top-0 left-0 block max-w-full stroke-ink"
               fill="none"
             >

@@ -40,6 +40,7 @@ export function Drawing({ layout, sentence, chosen, onChoose, marks }: DrawingPr
       width={width}
       height={height}
       role="img"
+      data-drawn
       aria-label={sentence}
       className="block max-w-full select-none"
       onPointerMove={many ? point : undefined}
