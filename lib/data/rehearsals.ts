@@ -1,12 +1,5 @@
 import { z } from 'zod'
-import {
-  AgentSchema,
-  IncidentSchema,
-  type Overlay,
-  type Rehearsal,
-  RehearsalSchema,
-  UserSchema,
-} from '@/entities'
+import { AgentSchema, IncidentSchema, type Rehearsal, RehearsalSchema, UserSchema } from '@/entities'
 import { decide } from '@/lib/auth/decide'
 import { permissionOf } from '@/lib/auth/permissions'
 import { enterEvent } from '@/lib/collector/events-store'
@@ -23,7 +16,7 @@ import { type NewRehearsal, newRehearsalSchema, type RehearsalDto } from './rehe
 import { sightOf } from './sight'
 
 const LISTED = 100
-/** So many may wait in one overlay, planned ones among them. */
+/** So many of one team may wait in one overlay, planned ones among them. */
 const MOST_WAITING = 50
 
 export async function createRehearsal(call: Call, slug: string, input: NewRehearsal): Promise<RehearsalDto> {
@@ -62,7 +55,7 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
     throw new AppError('invalid-input', `There is no incident ${number} of this overlay.`, {
       errors: [{ path: 'incident', message: 'Choose one of this overlay.' }],
     })
-  await refuseFull(call, overlay)
+  await refuseFull(call, opened)
   const row = em.create(RehearsalSchema, {
     ...mine(opened),
     state: 'waiting',
@@ -146,15 +139,16 @@ async function rowOf(call: Call, opened: Opened, id: string): Promise<Rehearsal>
   return row
 }
 
-async function refuseFull({ em }: Call, overlay: Overlay): Promise<void> {
+/** Counted for each team, so that none fills the place of another, nor is told how many another has. */
+async function refuseFull({ em }: Call, opened: Opened): Promise<void> {
   const waiting = await em.count(RehearsalSchema, {
-    overlay: overlay.id,
+    ...mine(opened),
     state: { $in: ['waiting', 'running'] },
   })
   if (waiting < MOST_WAITING) return
   throw new AppError(
     'rehearsals-full',
-    `${waiting} rehearsals of this overlay are waiting. Wait for some of them, or cancel those that nobody needs.`,
+    `${waiting} rehearsals of your team are waiting here. Wait for some of them, or cancel those that nobody needs.`,
   )
 }
 

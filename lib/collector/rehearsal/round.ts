@@ -11,6 +11,7 @@ import type { Memory } from '../memory'
 import { answerOf } from './answer'
 import type { OpenRehearsal, RehearsalChange, TeamFloor } from './open'
 import { type TakableAgent, type Taken, type TakenFrom, takenOf } from './taken'
+import { inTurn } from './turns'
 import { failureSentence, verdictSentence } from './verdict'
 import { firstWave, nextWave, type WaveNode, wavesSentence } from './waves'
 import { takenWords } from './words'
@@ -40,9 +41,9 @@ export function planRehearsals(
   from: Omit<TakenFrom, 'agents'> & { agents: readonly TeamAgent[] },
   atMs: number,
 ): RehearsalPlanned {
-  const due = open
-    .filter(({ state, startsAtMs }) => state === 'running' || startsAtMs === null || startsAtMs <= atMs)
-    .sort((a, b) => (a.state === b.state ? 0 : a.state === 'running' ? -1 : 1))
+  const due = inTurn(
+    open.filter(({ state, startsAtMs }) => state === 'running' || startsAtMs === null || startsAtMs <= atMs),
+  )
   const planned: RehearsalPlanned = { rehearsed: [], running: [], refused: [] }
   let names = 0
   for (const row of due) {

@@ -91,6 +91,22 @@ describe('which rehearsals run', () => {
     expect(refused.map(({ id }) => id)).toEqual(['another’s node'])
   })
 
+  it('teams take turns, so that none waits for all of another’s', () => {
+    const rows = [
+      open('runs', { state: 'running', startedAtMs: 100 }),
+      open('second'),
+      open('third'),
+      open('theirs', { teamId: 'skerry' }),
+      open('theirs too', { teamId: 'skerry' }),
+    ]
+    const ofTeams = {
+      ...from,
+      agents: [...from.agents, { ...from.agents[1]!, agentId: 'id-s', teamId: 'skerry' }],
+    }
+    const { rehearsed } = planRehearsals(rows, ofTeams, 0)
+    expect(rehearsed.map(({ id }) => id)).toEqual(['runs', 'theirs', 'second'])
+  })
+
   it('one that tries a wave takes away that wave alone, under a name of its own', () => {
     const plan = { held: [], left: ['tar-1', 'tar-2'], tried: ['tar-2'], tries: 3 }
     const rows = [open('waves', { state: 'running', exclude: { ...NONE, nodes: ['tar-1', 'tar-2'] }, plan })]
