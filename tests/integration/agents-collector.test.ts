@@ -1,29 +1,13 @@
-import { randomBytes } from 'node:crypto'
-import type { AddressInfo } from 'node:net'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
-import {
-  createClock,
-  createHttpCollector,
-  createPost,
-  createWsTransport,
-  type Ending,
-  silentLogger,
-} from '@/agent'
-import { GET as directory } from '@/app/api/agent/directory/route'
-import { POST as enrol } from '@/app/api/agent/enrol/route'
-import { POST as key } from '@/app/api/agent/key/route'
-import { POST as leave } from '@/app/api/agent/leave/route'
-import { POST as report } from '@/app/api/agent/report/route'
-import { POST as session } from '@/app/api/agent/session/route'
+import type { Ending } from '@/agent'
 import { AgentSchema, AgentStateSchema } from '@/entities'
-import { createRouteServer } from '@/lib/collector/http-server'
 import { revokeAgent } from '@/lib/data/agents'
 import { rotateSigningKey } from '@/lib/data/signing-key'
-import { createRandom } from '@/lib/method/random'
 import { parseEdgeList } from '@/lib/topology'
-import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
+import type { Fleet } from '@/scripts/fleet/fleet'
 import { seedCode, seedOverlay } from '../support/collector'
 import { startTestLeader, type TestLeader } from '../support/leaders'
+import { type RouteFleet, startRouteFleet } from '../support/route-fleet'
 import { openTestTeam, type TestTeam } from '../support/team'
 import { eventually, until, within } from '../support/until'
 
@@ -38,22 +22,12 @@ const EDGES = [
   'tar-02,eel-08',
 ].join('\n')
 
-const base = { monotonicMs: () => performance.now(), epochMs: () => Date.now() }
-const clock = createClock(base)
 const never = new AbortController().signal
-const server = createRouteServer({
-  'POST /api/agent/enrol': enrol,
-  'POST /api/agent/session': session,
-  'POST /api/agent/report': report,
-  'POST /api/agent/key': key,
-  'POST /api/agent/leave': leave,
-  'GET /api/agent/directory': directory,
-})
-
 describe('agents of today and the collector of today', () => {
   let team: TestTeam
   let overlay: { id: string; slug: string }
   let leader: TestLeader
+  let running: RouteFleet
   let fleet: Fleet
   const endings: { name: string; ending: Ending }[] = []
 
@@ -61,35 +35,17 @@ describe('agents of today and the collector of today', () => {
     team = await openTestTeam()
     overlay = await seedOverlay(team.database, team.teamId, { slug: 'tides' })
     leader = startTestLeader(team.database, 7)
-    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
-    const { port } = server.address() as AddressInfo
     const topology = parseEdgeList(EDGES)
     if (!topology.ok) throw new Error('bad edges')
-    fleet = createFleet(
-      {
-        transport: createWsTransport({ clock }),
-        collector: createHttpCollector(
-          { post: createPost(), clock },
-          { baseUrl: `http://127.0.0.1:${port}` },
-        ),
-        clockOf: () => clock,
-        clock,
-        random: createRandom('agents and collector'),
-        randomBytes,
-        logger: silentLogger,
-      },
-      {
-        topology: topology.graph,
-        code: await seedCode(team.database, overlay.id, { uses: 6 }),
-        onEnded: (name, ending) => endings.push({ name, ending }),
-      },
-    )
-    await fleet.start()
+    running = await startRouteFleet('agents and collector', {
+      topology: topology.graph,
+      code: await seedCode(team.database, overlay.id, { uses: 6 }),
+      onEnded: (name, ending) => endings.push({ name, ending }),
+    })
+    fleet = running.fleet
   })
   afterAll(async () => {
-    await fleet.stop()
-    server.closeAllConnections()
-    server.close()
+    await running.close()
     await leader.stop()
     await team.close()
   })
@@ -112,7 +68,7 @@ describe('agents of today and the collector of today', () => {
 
   test('reports come packed', async () => {
     const packed = new Promise<string | undefined>((resolve) =>
-      server.on('request', ({ url, headers }) => {
+      running.server.on('request', ({ url, headers }) => {
         if (url === '/api/agent/report' && headers['content-encoding']) resolve(headers['content-encoding'])
       }),
     )

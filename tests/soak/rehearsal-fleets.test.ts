@@ -1,16 +1,8 @@
 /** Rehearsals of real agents over WebSocket, against the exact λ₂ of what remains. */
-import { randomBytes } from 'node:crypto'
-import type { AddressInfo } from 'node:net'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { createClock, createHttpCollector, createPost, createWsTransport, silentLogger } from '@/agent'
-import { GET as directory } from '@/app/api/agent/directory/route'
-import { POST as enrol } from '@/app/api/agent/enrol/route'
-import { POST as report } from '@/app/api/agent/report/route'
-import { POST as session } from '@/app/api/agent/session/route'
 import { GET as read } from '@/app/api/v1/overlays/[slug]/rehearsals/[id]/route'
 import { POST as start } from '@/app/api/v1/overlays/[slug]/rehearsals/route'
 import { ReadingSchema } from '@/entities'
-import { createRouteServer } from '@/lib/collector/http-server'
 import { type RehearsalDto, rehearsalSchema } from '@/lib/data/rehearsal-dto'
 import type { RouteHandler } from '@/lib/http/route'
 import { edgesOf } from '@/lib/method/graph'
@@ -19,9 +11,9 @@ import { createRandom } from '@/lib/method/random'
 import { parseEdgeList, parseNodeList } from '@/lib/topology'
 import { type Topology, topologies } from '@/scripts/bench/rehearsal/cases'
 import { exactWithout } from '@/scripts/bench/rehearsal/course'
-import { createFleet, type Fleet } from '@/scripts/fleet/fleet'
 import { ask, seedCode, seedOverlay } from '../support/collector'
 import { startTestLeader, type TestLeader } from '../support/leaders'
+import { type RouteFleet, startRouteFleet } from '../support/route-fleet'
 import { openTestTeam, type TestTeam } from '../support/team'
 import { until } from '../support/until'
 
@@ -49,17 +41,10 @@ const cases = [row, ...harbourline].flatMap((topology) =>
 )
 
 describe.each(cases)('a fleet over WebSocket, %s, %s', (_name, disclosure, topology) => {
-  const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
-  const server = createRouteServer({
-    'POST /api/agent/enrol': enrol,
-    'POST /api/agent/session': session,
-    'POST /api/agent/report': report,
-    'GET /api/agent/directory': directory,
-  })
   let team: TestTeam
   let overlay: { id: string; slug: string }
   let leader: TestLeader
-  let fleet: Fleet
+  let running: RouteFleet
   const freshValues = async (): Promise<number[]> => {
     const rows = await team.database.orm.em
       .fork()
@@ -71,8 +56,6 @@ describe.each(cases)('a fleet over WebSocket, %s, %s', (_name, disclosure, topol
     team = await openTestTeam()
     overlay = await seedOverlay(team.database, team.teamId, { slug: 'tides', pace: 'brisk', disclosure })
     leader = startTestLeader(team.database, 7)
-    await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
-    const { port } = server.address() as AddressInfo
     const edges = parseEdgeList(
       edgesOf(topology.graph)
         .map(([a, b]) => `${nameOf(a)},${nameOf(b)}`)
@@ -82,33 +65,17 @@ describe.each(cases)('a fleet over WebSocket, %s, %s', (_name, disclosure, topol
       `name,office\n${topology.labels.map((label, node) => `${nameOf(node)},office ${label}`).join('\n')}`,
     )
     if (!edges.ok || !nodes.ok) throw new Error('bad lists')
-    fleet = createFleet(
-      {
-        transport: createWsTransport({ clock }),
-        collector: createHttpCollector(
-          { post: createPost(), clock },
-          { baseUrl: `http://127.0.0.1:${port}` },
-        ),
-        clockOf: () => clock,
-        clock,
-        random: createRandom('rehearsed fleet'),
-        randomBytes,
-        logger: silentLogger,
-      },
-      {
-        topology: edges.graph,
-        labels: nodes.nodes,
-        weights: 'unit',
-        code: await seedCode(team.database, overlay.id, { uses: topology.graph.nodes }),
-      },
-    )
-    await fleet.start()
+    running = await startRouteFleet('rehearsed fleet', {
+      topology: edges.graph,
+      labels: nodes.nodes,
+      weights: 'unit',
+      code: await seedCode(team.database, overlay.id, { uses: topology.graph.nodes }),
+    })
     await until(async () => (await freshValues()).length >= 40, { patienceMs: PATIENCE_MS })
   }, PATIENCE_MS)
   afterAll(async () => {
-    await fleet?.stop()
+    await running?.close()
     await leader?.stop()
-    await new Promise((resolve) => server.close(resolve))
     await team?.close()
   })
 
