@@ -2,7 +2,7 @@ import type { Cut, OverlayNode, Reading } from '@/lib/data/dto'
 import { formatCount } from './format'
 
 /** Beside a drawing in which no node has a value. */
-export const UNPLACED = 'no node has a value now: they stand by name'
+export const UNPLACED = 'no node has a value now: they stand by side, where it is known, and by name'
 
 export interface Gap {
   /** What stands between the sides, in a few words. */
