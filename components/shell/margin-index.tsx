@@ -7,6 +7,7 @@ import { useOverlay } from '@/components/live/hooks'
 import { roleReaches } from '@/lib/auth/permissions'
 import { cx } from '@/lib/face/cx'
 import { OTHER_PAGES, overlayOfPath, overlayPages, type PageEntry } from '@/lib/face/pages'
+import { ActingFor } from './acting-for'
 
 /** The lettered index: a margin on wide screens, a strip with a menu on narrow ones. */
 export function MarginIndex({ mayAudit, foot }: { mayAudit: boolean; foot: ReactNode }) {
@@ -32,6 +33,7 @@ export function MarginIndex({ mayAudit, foot }: { mayAudit: boolean; foot: React
             Thinspan
           </Link>
           {name ? <p className="truncate text-soft md:mt-0.5">{name}</p> : null}
+          {known && overlay.data ? <ActingFor seats={overlay.data.seats} as={overlay.data.as} /> : null}
         </div>
         <details ref={menu} className="relative md:hidden">
           <summary className="flex min-h-11 items-center border border-edge px-4">Menu</summary>

@@ -19,7 +19,7 @@ export interface Authenticated {
 /** Who sent the request: a token goes before a cookie, and one that does not hold is an error, not a visitor. */
 export async function authenticate(
   em: EntityManager,
-  facts: Pick<RequestFacts, 'bearer' | 'sessionId' | 'secure'>,
+  facts: Pick<RequestFacts, 'bearer' | 'sessionId' | 'secure' | 'actingFor'>,
   now: Date,
   { mayRenew }: { mayRenew: boolean },
 ): Promise<Authenticated> {
@@ -27,7 +27,8 @@ export async function authenticate(
   if (facts.sessionId === null) return { caller: ANYONE, renewed: null }
   const session = await readSession(em, facts.sessionId, { secure: facts.secure, mayRenew })
   if (!session) return { caller: ANYONE, renewed: null }
-  return { caller: await userCaller(em, session.userId), renewed: session.renewed }
+  const user = await userCaller(em, session.userId)
+  return { caller: { ...user, actingFor: facts.actingFor ?? null }, renewed: session.renewed }
 }
 
 export async function userCaller(em: EntityManager, userId: string): Promise<UserCaller> {

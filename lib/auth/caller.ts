@@ -15,6 +15,8 @@ export interface UserCaller {
   name: string
   /** By team name. */
   teams: readonly TeamRole[]
+  /** The short name of the team they chose to act for, where several of theirs share an overlay. */
+  actingFor?: string | null
 }
 
 /** Acts for its team with its creator's role there, as far as its scope goes. */

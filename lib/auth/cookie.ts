@@ -1,5 +1,7 @@
 /** Kept apart from session.ts: the request filter looks for the cookie and must load nothing else. */
 export const SESSION_COOKIE = 'thinspan_session'
+/** The short name of the team that a person of several acts for. A wish: what they may do is checked all the same. */
+export const ACTING_COOKIE = 'thinspan-acting'
 
 export interface CookieToSet {
   name: string

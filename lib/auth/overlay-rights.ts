@@ -1,7 +1,7 @@
 import type { Standing } from '@/lib/data/partner-dto'
-import type { Caller } from './caller'
+import type { Caller, TeamRole } from './caller'
 import { type Decision, decide } from './decide'
-import type { Permission } from './permissions'
+import { type Permission, roleReaches } from './permissions'
 
 /** The teams that share an overlay. */
 export interface Parties {
@@ -19,24 +19,46 @@ export interface Acting {
 }
 
 /**
- * For which of an overlay's teams a caller does this: the owning one before partners, and one in which the role reaches
- * before one in which it does not. The permission table says what is open to partners at all.
+ * For which of an overlay's teams a caller does this: always the one they sit for (`seatOf`), so that what they see and
+ * what they do are of the same team. What is open to the owning team alone is done for it, unless another was chosen.
  */
 export function actingFor(
   permission: Permission,
   caller: Caller,
   { ownerTeamId, partnerTeamIds }: Parties,
 ): Acting {
-  const belongs = new Set('teams' in caller ? caller.teams.map(({ teamId }) => teamId) : [])
+  const parties = { ownerTeamId, partnerTeamIds }
+  const seat = seatOf(caller, parties)
   const owner = { teamId: ownerTeamId, standing: 'owner' } as const
-  const partners = partnerTeamIds.map((teamId) => ({ teamId, standing: 'partner' as const }))
-  const own = [owner, ...partners].filter(({ teamId }) => belongs.has(teamId))
-  const open = own
-    .filter(({ standing }) => standing === 'owner' || permission.partner)
-    .map((one) => ({ ...one, decision: decide(permission, caller, one.teamId) }))
-  const acting = open.find(({ decision }) => decision === 'allowed') ?? open[0]
-  if (acting) return acting
-  const [first] = own
-  if (first) return { ...first, decision: 'owner-only' }
-  return { ...owner, decision: decide(permission, caller, ownerTeamId) }
+  if (!seat) return { ...owner, decision: decide(permission, caller, ownerTeamId) }
+  const { isChosen, teamId, standing } = seat
+  if (standing === 'owner' || permission.partner)
+    return { teamId, standing, decision: decide(permission, caller, teamId) }
+  if (!isChosen && seatsOf(caller, parties).some((one) => one.standing === 'owner'))
+    return { ...owner, decision: decide(permission, caller, ownerTeamId) }
+  return { teamId, standing, decision: 'owner-only' }
+}
+
+export interface Seat extends TeamRole {
+  standing: Standing
+}
+
+/** The caller's own among the teams that share the overlay, the owning one first. */
+export function seatsOf(caller: Caller, { ownerTeamId, partnerTeamIds }: Parties): Seat[] {
+  const teams = 'teams' in caller ? caller.teams : []
+  return [ownerTeamId, ...partnerTeamIds].flatMap((id) =>
+    teams
+      .filter(({ teamId }) => teamId === id)
+      .map((team): Seat => ({ ...team, standing: id === ownerTeamId ? 'owner' : 'partner' })),
+  )
+}
+
+/** The team they chose, where it is one of them; else the first in which they may act; null outside all of them. */
+export function seatOf(caller: Caller, parties: Parties): (Seat & { isChosen: boolean }) | null {
+  const seats = seatsOf(caller, parties)
+  const wish = caller.kind === 'user' ? caller.actingFor : null
+  const chosen = seats.find(({ slug }) => slug === wish)
+  if (chosen) return { ...chosen, isChosen: true }
+  const seat = seats.find(({ role }) => roleReaches(role, 'operator')) ?? seats[0]
+  return seat ? { ...seat, isChosen: false } : null
 }

@@ -250,6 +250,8 @@ export const overlaySchema = z.object({
   /** How that team takes part, and which one it is; null for programs of the server. */
   standing: z.enum(STANDINGS).optional(),
   as: z.object({ slug: z.string(), name: z.string() }).nullable().optional(),
+  /** The caller's own among the teams that share it: for which of them they act can be chosen. */
+  seats: z.array(z.object({ slug: z.string(), name: z.string(), role: z.enum(ROLES) })).optional(),
   /** Other teams take part. */
   shared: z.boolean().optional(),
   joined: z.number().int(),

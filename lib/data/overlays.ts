@@ -2,7 +2,7 @@ import { generateKeyPairSync } from 'node:crypto'
 import { UniqueConstraintViolationException } from '@mikro-orm/core'
 import type { z } from 'zod'
 import { type Overlay, OverlayPartnerSchema, OverlaySchema, TeamSchema } from '@/entities'
-import { actingFor, type Parties } from '@/lib/auth/overlay-rights'
+import { actingFor, type Parties, seatsOf } from '@/lib/auth/overlay-rights'
 import { type ActionName, permissionOf, roleReaches } from '@/lib/auth/permissions'
 import type { newOverlaySchema, Overlay as OverlayDto } from '@/lib/data/dto'
 import type { Standing } from '@/lib/data/partner-dto'
@@ -176,6 +176,7 @@ function toDto(
     role: as?.role ?? 'viewer',
     standing: acting.standing,
     as: as ? { slug: as.slug, name: as.name } : null,
+    seats: seatsOf(call.caller, parties).map(({ slug, name, role }) => ({ slug, name, role })),
     shared: parties.partnerTeamIds.length > 0,
     joined: joined.get(overlay.id) ?? 0,
   }

@@ -1,11 +1,11 @@
 import type { Overlay } from '@/entities'
+import { seatOf } from '@/lib/auth/overlay-rights'
 import { pseudonymOf } from '@/lib/collector/pseudonym'
 import { query } from '@/lib/collector/query'
 import type { Said } from '@/lib/collector/said'
 import type { EntityManager } from '@/lib/db'
 import type { Call } from '@/lib/http/call'
 import { partiesOf } from './overlays'
-import { callerTeams } from './teams'
 
 export interface Face {
   agentId: string
@@ -116,12 +116,11 @@ export function createSight({ secret, ownerTeamId, viewers, faces, sharedKeys }:
 
 /** Of the caller, in an overlay that they may see. */
 export async function sightOf(call: Call, overlay: Overlay): Promise<Sight> {
-  const { ownerTeamId, partnerTeamIds } = await partiesOf(call.em, overlay)
+  const parties = await partiesOf(call.em, overlay)
   // Programs of the server itself see what the owning team sees.
-  if (call.caller.kind === 'system') return sightAs(call.em, overlay.id, [ownerTeamId])
-  const teams = new Set(callerTeams(call).map(({ teamId }) => teamId))
-  const viewers = [ownerTeamId, ...partnerTeamIds].filter((teamId) => teams.has(teamId))
-  return sightAs(call.em, overlay.id, viewers)
+  if (call.caller.kind === 'system') return sightAs(call.em, overlay.id, [parties.ownerTeamId])
+  const seat = seatOf(call.caller, parties)
+  return sightAs(call.em, overlay.id, seat ? [seat.teamId] : [])
 }
 
 interface Row {

@@ -1,9 +1,11 @@
-import { readCookie, SESSION_COOKIE } from '@/lib/auth/cookie'
+import { ACTING_COOKIE, readCookie, SESSION_COOKIE } from '@/lib/auth/cookie'
 
 /** What the checks need to know of a request, wherever it came from. */
 export interface RequestFacts {
   sessionId: string | null
   bearer: string | null
+  /** The short name of the team that the person chose to act for. */
+  actingFor?: string | null
   /** True for methods that may change something. */
   unsafe: boolean
   /** True when a browser says, or cannot deny, that another site made it send the request. */
@@ -34,6 +36,7 @@ export function requestFacts(
   const authorization = headers.get('authorization')
   return {
     sessionId: readCookie(headers.get('cookie'), SESSION_COOKIE),
+    actingFor: readCookie(headers.get('cookie'), ACTING_COOKIE),
     bearer: authorization === null ? null : (/^Bearer +(\S+) *$/i.exec(authorization)?.[1] ?? ''),
     unsafe: !SAFE_METHODS.includes(method),
     foreign: isForeign(headers, origin),

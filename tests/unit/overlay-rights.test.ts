@@ -25,10 +25,27 @@ describe('who acts for which of an overlay’s teams', () => {
     })
   })
 
-  it('is the team in which the role reaches', () => {
+  it('is the team in which the role reaches, for what is seen as for what is done', () => {
     const both = user(team('harbourline', 'viewer'), team('skerry', 'operator'))
     expect(acting('rule.change', both)).toMatchObject({ decision: 'allowed', teamId: 'skerry' })
-    expect(acting('rule.list', both)).toMatchObject({ decision: 'allowed', teamId: 'harbourline' })
+    expect(acting('rule.list', both)).toMatchObject({ decision: 'allowed', teamId: 'skerry' })
+    const lookers = user(team('skerry', 'viewer'), team('harbourline', 'viewer'))
+    expect(acting('rule.list', lookers)).toMatchObject({ teamId: 'harbourline', standing: 'owner' })
+  })
+
+  it('is the team they chose, whatever their role there, as long as it is one of theirs', () => {
+    const both = user(team('harbourline', 'owner'), team('skerry', 'viewer'))
+    const asSkerry = { ...both, actingFor: 'skerry' } as Caller
+    expect(acting('rehearsal.list', asSkerry)).toMatchObject({ decision: 'allowed', teamId: 'skerry' })
+    expect(acting('rehearsal.start', asSkerry)).toMatchObject({ decision: 'forbidden', teamId: 'skerry' })
+    expect(acting('overlay.change', asSkerry)).toMatchObject({ decision: 'owner-only', teamId: 'skerry' })
+    const asPinnet = { ...both, actingFor: 'pinnet' } as Caller
+    expect(acting('rehearsal.start', asPinnet)).toMatchObject({ decision: 'allowed', teamId: 'harbourline' })
+  })
+
+  it('is the owning one for what is open to that alone, where nobody chose another', () => {
+    const both = user(team('harbourline', 'viewer'), team('skerry', 'operator'))
+    expect(acting('signing-key.read', both)).toMatchObject({ decision: 'forbidden', teamId: 'harbourline' })
   })
 
   it('is a partner for what is open to partners, as far as the role reaches', () => {
