@@ -20,12 +20,13 @@ export function ActingFor({ seats = [], as }: Pick<Overlay, 'seats' | 'as'>) {
         onChange={(event) => choose(event.target.value)}
         className="block min-h-9 w-full max-w-44 border border-edge bg-paper px-1 text-ink"
       >
-        {seats.map(({ slug, name, role }) => (
+        {seats.map(({ slug, name }) => (
           <option key={slug} value={slug}>
-            {name}, as {role}
+            {name}
           </option>
         ))}
       </select>
+      {seats.find(({ slug }) => slug === as?.slug)?.role}
     </label>
   )
 }
