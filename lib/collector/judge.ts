@@ -134,14 +134,14 @@ function listening(memory: Memory, atMs: number, intervalMs: number): Memory {
   return paused ? { ...memory, listeningSinceMs: atMs } : memory
 }
 
-function withCut(memory: Memory, { estimate, agents, combination }: JudgeInput): Memory {
+function withCut(memory: Memory, { estimate, agents, combination, isNamed }: JudgeInput): Memory {
   // Orders without a combination come with a start from cold, and the next one may have the other sign.
   const signSince = combination === null ? null : (memory.signSince ?? combination)
   const singleCut = singleCutNow(memory, estimate)
   const next = { ...memory, signSince, singleCut }
   const { cut } = estimate
   if (!cut || signSince === null || cut.sweep === memory.cut?.sweep) return next
-  const named = nameSides({ cut, signSince, agents, last: memory.sides })
+  const named = nameSides({ cut, signSince, agents, before: memory, tellsRarely: isNamed === false })
   return named ? { ...next, ...named } : next
 }
 

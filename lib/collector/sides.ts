@@ -13,8 +13,10 @@ export interface SidesInput {
   /** Values of combinations before this one may have the other sign. */
   signSince: number
   agents: readonly SidedAgent[]
-  /** Sides as last named. */
-  last: Memory['sides']
+  /** The cut and its sides as last named. */
+  before: Pick<Memory, 'cut' | 'sides'>
+  /** Nodes tell on which side they are only while one cut is clearly the weakest: its counts are known without them. */
+  tellsRarely: boolean
 }
 
 export interface Sides {
@@ -24,15 +26,17 @@ export interface Sides {
 
 /**
  * Puts nodes on the sides of a newly counted cut by their Fiedler values. Names are those with the larger overlap
- * with the last sides; at first, a is the side of the longest-joined node. Null while no node's value is known.
+ * with the last sides; at first, a is the side of the longest-joined node. Null while no node's value is known, though it should be.
  */
-export function nameSides({ cut, signSince, agents, last }: SidesInput): Sides | null {
+export function nameSides({ cut, signSince, agents, before, tellsRarely }: SidesInput): Sides | null {
+  const last = before.sides
   const above = new Map<string, boolean>()
   for (const { agentId, heard, value } of agents) {
     if (heard && value && value.sweep >= signSince) above.set(agentId, value.value > cut.threshold)
   }
-  if (above.size === 0) return null
-  const aboveIs = nameOfAbove(agents, above, last)
+  if (above.size === 0 && !tellsRarely) return null
+  const asBefore = tellsRarely ? before.cut?.aboveIs : undefined
+  const aboveIs = nameOfAbove(agents, above, last, asBefore)
   const sides: Memory['sides'] = {}
   for (const { agentId, heard } of agents) {
     const isAbove = above.get(agentId)
@@ -64,6 +68,7 @@ function nameOfAbove(
   agents: readonly SidedAgent[],
   above: ReadonlyMap<string, boolean>,
   last: Memory['sides'],
+  asBefore: Side | undefined,
 ): Side {
   let balance = 0
   for (const [agentId, isAbove] of above) {
@@ -71,6 +76,7 @@ function nameOfAbove(
     if (side) balance += (side === 'a') === isAbove ? 1 : -1
   }
   if (balance !== 0) return balance > 0 ? 'a' : 'b'
+  if (asBefore || above.size === 0) return asBefore ?? 'a'
   const eldest = agents
     .filter(({ agentId }) => above.has(agentId))
     .reduce((a, b) => (b.joinedAtMs < a.joinedAtMs ? b : a))

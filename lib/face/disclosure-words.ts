@@ -9,7 +9,7 @@ export interface DisclosureWords {
 
 const REMAINS = [
   'Who is in the overlay, when each node reports, and that one has no neighbour left.',
-  'On which side of the weak cut each node stands, while one cut is clearly the weakest. Links lie within sides more often than across.',
+  'On which side of the weak cut each node stands, while one cut is clearly the weakest. Links lie within sides more often than across, and the sides of many cuts, one after the other, say more than those of one.',
   'About how many links each node has, as a power of two.',
   'Whose reports come through other agents, and through which.',
   'How many links there are, so that it shows when one goes, and how many cross the weak cut. Sides of fewer than 5 nodes are not counted.',

@@ -12,7 +12,8 @@ const MOSTLY = 0.5
 
 /** What the sides follow, in one sentence. */
 export function followsSentence({ nodes, labels, leftOut }: Follows): string {
-  if (nodes === 0) return 'No node stands on a side.'
+  if (nodes === 0)
+    return 'No node has told its side. Where links are not named, nodes do once one cut has been clearly the weakest for some time.'
   const [best] = labels
   if (!best) {
     return leftOut.length > 0

@@ -162,6 +162,21 @@ describe('a sealed overlay of twelve through the collector', () => {
     for (const { text } of states) expect(text).not.toMatch(/"(kills|walkerTime|heldX|mean)"/)
   })
 
+  it('tells on which side each agent is, as one cut is clearly the weakest', async () => {
+    const sided = async () => {
+      const [row] = await query<{ sides: { [agentId: string]: string } }>(
+        database.orm.em.fork(),
+        "select state->'memory'->'sides' as sides from controls where overlay_id = ?",
+        [overlayId],
+      )
+      return swarm.nodes.map(({ member }) => row?.sides[member.agentId])
+    }
+    await until(async () => (await sided()).every((side) => side !== undefined))
+    const sides = await sided()
+    expect(sides).toEqual(sides.map((_, node) => (node < 6 ? sides[0] : sides[6])))
+    expect(sides[0]).not.toBe(sides[6])
+  })
+
   it('follows the loss of a link, and goes on without an agent that falls silent', async () => {
     swarm.unlink(0, 6)
     const left = LINKS.filter(([a, b]) => !(a === 0 && b === 6))

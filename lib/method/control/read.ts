@@ -10,6 +10,7 @@ import { walkingLambda } from './law'
 import { nextStep } from './link-time'
 import { ordersFrom } from './orders-from'
 import { NEXT_TO_NOTHING, settlesInMs } from './settling'
+import { standingNow } from './standing'
 import type { ColonyControl, ControlState } from './state'
 import { combinationOf, fallWithMore, ritzOf } from './subspace'
 import type { Totals } from './totals'
@@ -25,9 +26,6 @@ export const LOWERED = 0.05
 export const NEAR = 1.2
 /** A combination is replaced at the latest after this long, counted or not. */
 export const COMBINATION_INTERVALS = 8
-
-const doesStandOut = (bounds: ControlState['bounds'], lambda2: number): boolean =>
-  bounds.length > 0 && Math.min(...bounds.map(({ value }) => value)) > NEAR * lambda2
 
 /** The reading, the cut and the orders from a steered state. */
 export function read(
@@ -86,7 +84,7 @@ export function read(
         sides:
           (control.combination && totals.sidesOf(control.combination.id, settings.rehearses)) ??
           control.combination?.sides,
-        ...(now.round && { stands: doesStandOut(control.bounds, result.values[0]!) }),
+        ...(now.round && { stands: control.standing?.stands ?? false }),
       })
       next.combinationAtMs = now.atMs
     }
@@ -120,6 +118,10 @@ export function read(
           isApart,
         })
   const settling = settles !== null && settles > 0
+  next.standing = standingNow(control.standing ?? null, {
+    ...{ atMs: now.atMs, lambda2, lambda3AtMost: second, settling },
+    intervalMs: pace.intervalMs,
+  })
   const interval =
     lambda2 === null || !subspace
       ? null

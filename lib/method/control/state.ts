@@ -7,6 +7,7 @@ import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
 import type { PartControl } from './parts'
 import type { RehearsalControl } from './rehearsals'
+import type { Standing } from './standing'
 import type { Young } from './young'
 
 export const COLONIES = 5
@@ -103,6 +104,8 @@ export interface ControlState {
   /** When walking last stood still because too little was heard. */
   stoodUntilMs?: number
   young?: Young | null
+  /** Whether one cut is clearly the weakest. Missing in states of before it was kept. */
+  standing?: Standing | null
   /** Where links are not named. */
   rounds?: RoundsControl
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */

@@ -51,6 +51,7 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
         combination: null,
         cut: null,
         bounds: [],
+        standing: null,
       }
     : { ...control, colonies }
   return cold || settings.rehearses !== undefined ? next : renew(next, seeder)

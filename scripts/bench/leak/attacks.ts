@@ -38,6 +38,17 @@ function meansOf(nodes: number, told: readonly Told[]): Float64Array {
   return means.map((sum) => sum / Math.max(1, told.length))
 }
 
+/** Pairs that are told to be on one side, look after look. */
+export function scoreByAgreement(nodes: number, looks: readonly Float32Array[]): PairScores {
+  const scores = new PairScores(nodes)
+  for (const values of looks)
+    for (const [a, b] of allPairs(nodes)) {
+      const score = values[a]! * values[b]!
+      if (score !== 0) scores.add(a, b, score)
+    }
+  return scores
+}
+
 /** Which side each node was mostly said to be on: below 0, above 0, or 0 where it never said. */
 export function toldSides(nodes: number, told: readonly Told[]): number[] {
   return [...meansOf(nodes, told)].map(Math.sign)

@@ -151,6 +151,25 @@ describe('a judgement', () => {
     expect(course.memory.cut).toBeNull()
   })
 
+  it('counts a cut of which no node has told its side, and keeps the names of its sides when they do', () => {
+    const course = new Course()
+    const lone = { ...CUT, above: 6, below: 2 }
+    const told = (sweep: number, value: JudgedAgent['value']) =>
+      course.next({ cut: { ...lone, sweep } }, { isNamed: false, agents: agents(() => ({ value })) })
+    const sizes = [
+      { name: 'a', nodes: 6 },
+      { name: 'b', nodes: 2 },
+    ]
+    const { reading } = told(7, null)
+    expect(reading).toMatchObject({ sides: sizes, crossingLinks: 6 })
+    expect(reading.verdict).toContain('6 nodes')
+    expect(course.memory.sides).toEqual({})
+    told(8, { sweep: 8, value: -1 })
+    expect(course.memory.sides['agent-0']).toBe('b')
+    expect(told(9, null).reading.sides).toEqual(sizes)
+    expect(course.memory.sides).toEqual({})
+  })
+
   it('withholds sides and crossing links where no single cut is weakest, until one stands out clearly', () => {
     const course = new Course()
     course.next()

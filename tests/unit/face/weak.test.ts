@@ -67,7 +67,11 @@ describe('what the cut follows, in words', () => {
       },
       'None of the labels can tell the sides apart: they are the same everywhere, or another on nearly every node.',
     ],
-    ['says that there are no sides', { ...follows(), nodes: 0 }, 'No node stands on a side.'],
+    [
+      'says that no side is known',
+      { ...follows(), nodes: 0 },
+      'No node has told its side. Where links are not named, nodes do once one cut has been clearly the weakest for some time.',
+    ],
   ])('%s', (_, given, sentence) => expect(followsSentence(given)).toBe(sentence))
 
   it('gives the least chance that can be found as a bound, and rounds others up', () => {

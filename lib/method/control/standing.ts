@@ -1,0 +1,37 @@
+/**
+ * λ₃ over λ₂ from which one cut is clearly the weakest, and until which it stays so. Where links are not named, nodes tell their sides only
+ * then. On random 6-regular graphs of 60 nodes that lose 4 links an hour the sides of whichever cut was the weakest named 24 to 40 % of links by
+ * the end of a day, where 10 % are by chance; λ₃ never came to 1.5 λ₂ there in five days of five graphs. Two such clusters of 30 nodes with 24
+ * links between them have 1.8, with 5 links 9.
+ */
+export const CLEAR_FROM = 1.5
+export const CLEAR_UNTIL = 1.3
+/** A cut has to be so clear for this long, in a settled reading: a ratio that is still on its way down passes every mark. */
+export const CLEAR_INTERVALS = 15
+
+export interface Standing {
+  /** Since when one cut has been clearly the weakest. */
+  sinceMs: number
+  /** And for long enough. */
+  stands: boolean
+}
+
+/** Whether one cut stands out so clearly that nodes have sides. Null while none does. */
+export function standingNow(
+  before: Standing | null,
+  now: {
+    atMs: number
+    lambda2: number | null
+    lambda3AtMost: number | null
+    settling: boolean
+    intervalMs: number
+  },
+): Standing | null {
+  const { atMs, lambda2, lambda3AtMost, settling, intervalMs } = now
+  if (lambda2 === null) return null
+  // As links go the bounds of before hold no longer, and there is none for a moment: nothing says that another cut has come near.
+  if (before?.stands) return lambda3AtMost === null || lambda3AtMost > CLEAR_UNTIL * lambda2 ? before : null
+  if (settling || lambda3AtMost === null || lambda3AtMost <= CLEAR_FROM * lambda2) return null
+  const sinceMs = before?.sinceMs ?? atMs
+  return { sinceMs, stands: atMs - sinceMs >= CLEAR_INTERVALS * intervalMs }
+}

@@ -1,0 +1,143 @@
+import { describe, expect, it } from 'vitest'
+import { DEFAULT_SETTINGS } from '@/lib/method/control'
+import { CLEAR_INTERVALS, type Standing, standingNow } from '@/lib/method/control/standing'
+import { edgesOf, type SparseGraph } from '@/lib/method/graph'
+import { randomRegular, twoClusters } from '@/lib/method/graphs'
+import { PACES } from '@/lib/method/pace'
+import { createRandom } from '@/lib/method/random'
+import { Simulation } from '@/lib/method/simulate'
+import { chanceOf } from '@/scripts/bench/leak/shares'
+import { namedBySides } from '@/scripts/bench/leak/sides'
+
+const INTERVAL_MS = 2_000
+
+/** λ₃ over λ₂, for so many intervals; null where there is no reading, 'unbounded' where nothing is known of λ₃. */
+type Spell = [ratio: number | null | 'unbounded', intervals: number, settling?: 'settling']
+
+function standsAfter(spells: readonly Spell[]): boolean {
+  let standing: Standing | null = null
+  let atMs = 0
+  for (const [ratio, intervals, settling] of spells)
+    for (let interval = 0; interval < intervals; interval++) {
+      atMs += INTERVAL_MS
+      const lambda3AtMost = typeof ratio === 'number' ? 0.5 * ratio : null
+      standing = standingNow(standing, {
+        ...{ atMs, intervalMs: INTERVAL_MS, settling: settling !== undefined },
+        ...{ lambda2: ratio === null ? null : 0.5, lambda3AtMost },
+      })
+    }
+  return standing?.stands ?? false
+}
+
+const LONG = CLEAR_INTERVALS + 1
+
+const courses: [what: string, spells: Spell[], stands: boolean][] = [
+  ['stands out once it has long been clear', [[1.6, LONG]], true],
+  ['does not yet one interval before', [[1.6, LONG - 1]], false],
+  ['does not while another is nearly as weak', [[1.5, 10 * LONG]], false],
+  ['does not while the reading settles', [[3, 10 * LONG, 'settling']], false],
+  [
+    'begins anew after a moment of doubt',
+    [
+      [1.6, LONG - 1],
+      [1.4, 1],
+      [1.6, LONG - 1],
+    ],
+    false,
+  ],
+  [
+    'stays while it is a little less clear',
+    [
+      [1.6, LONG],
+      [1.31, 10 * LONG],
+    ],
+    true,
+  ],
+  [
+    'stays while the reading settles',
+    [
+      [1.6, LONG],
+      [2, LONG, 'settling'],
+    ],
+    true,
+  ],
+  [
+    'stays while nothing is known of another',
+    [
+      [1.6, LONG],
+      ['unbounded', LONG, 'settling'],
+    ],
+    true,
+  ],
+  ['does not while nothing is known of another', [['unbounded', 10 * LONG]], false],
+  [
+    'is over as another comes near',
+    [
+      [1.6, LONG],
+      [1.3, 1],
+    ],
+    false,
+  ],
+  [
+    'is over without a reading',
+    [
+      [1.6, LONG],
+      [null, 1],
+      [1.6, 1],
+    ],
+    false,
+  ],
+]
+
+describe('the one weakest cut', () => {
+  it.each(courses)('%s', (_what, spells, stands) => expect(standsAfter(spells)).toBe(stands))
+})
+
+/** How many nodes of a sealed overlay tell a side, at most, from its first moment on. */
+function tellersOf(graph: SparseGraph, intervals: number): number {
+  const pace = PACES.calm
+  const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
+  const simulation = new Simulation(
+    { random: createRandom('leak 60 1') },
+    {
+      nodes: graph.nodes,
+      links,
+      settings: { ...DEFAULT_SETTINGS, pace, disclosure: 'sealed' },
+      audits: false,
+    },
+  )
+  const tellers = new Set<string>()
+  for (const [node, agent] of simulation.agents.entries())
+    agent.lie = {
+      report: (report) => {
+        if (report.node.value) tellers.add(`${node}`)
+        return report
+      },
+    }
+  simulation.run(intervals * pace.intervalMs)
+  return tellers.size
+}
+
+describe('nodes of a sealed overlay', () => {
+  it('tell no side where no cut is the weakest, also while the first reading settles', () =>
+    expect(tellersOf(randomRegular(60, 6, createRandom('regular-60 1')), 25)).toBe(0))
+
+  it('all tell theirs where one is', () => {
+    const clusters = twoClusters({ perSide: 8, degree: 4, links: 3 }, createRandom('standing'))
+    expect(tellersOf(clusters, 60)).toBe(16)
+  })
+})
+
+describe('the sides that are told over a day in which links go and come back', () => {
+  const graph = randomRegular(60, 6, createRandom('regular-60 1'))
+  const day = { seed: 1, hours: 24, lostPerHour: 4 }
+
+  it('name links no better than chance', () =>
+    expect(namedBySides(graph, day).every - chanceOf(graph)).toBeLessThanOrEqual(0.03))
+
+  it('would name them if they were told of whichever cut is the weakest', () => {
+    const always = namedBySides(graph, day, (_before, { atMs }) => ({ sinceMs: atMs, stands: true }))
+    expect(always.toldShare).toBe(1)
+    expect(always.every - chanceOf(graph)).toBeGreaterThan(0.1)
+  })
+})
