@@ -6,7 +6,7 @@ import { Freshness } from '@/components/live/freshness'
 import { useCut, useLinks, useNodes, useReading } from '@/components/live/hooks'
 import { Stretch } from '@/components/stretch/stretch'
 import { EmptyState, FailedState, Lambda, Sheet, Waiting } from '@/components/ui'
-import { UNPLACED } from '@/lib/face/stretch-sentence'
+import { unplacedRemark } from '@/lib/face/stretch-sentence'
 
 export function StretchSheet({ slug }: { slug: string }) {
   const nodes = useNodes(slug)
@@ -15,16 +15,15 @@ export function StretchSheet({ slug }: { slug: string }) {
   const reading = useReading(slug)
   const drawing = useRef<HTMLDivElement>(null)
   const sides = cut.data?.sides ?? reading.data?.sides ?? null
-  const unplaced = (nodes.data ?? []).every((n) => n.value === null)
-  const remark = unplaced ? (
-    UNPLACED
-  ) : sides ? (
-    <>
-      left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
-    </>
-  ) : (
-    (cut.data?.withheld ?? (reading.data ? 'no sides are drawn, since no cut stands out' : ''))
-  )
+  const remark =
+    unplacedRemark(nodes.data ?? [], sides) ??
+    (sides ? (
+      <>
+        left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
+      </>
+    ) : (
+      (cut.data?.withheld ?? (reading.data ? 'no sides are drawn, since no cut stands out' : ''))
+    ))
 
   return (
     <Sheet heading="Stretch" aside={remark}>

@@ -5,7 +5,7 @@ import { useRouter } from 'next/navigation'
 import { type KeyboardEvent, type RefObject, useEffect, useMemo, useRef, useState } from 'react'
 import { cx } from '@/lib/face/cx'
 import { findNodes, laneKeys, layoutStretch, type StretchLayout, stepOf, walkFrom } from '@/lib/face/stretch'
-import { gapText, stretchSentence } from '@/lib/face/stretch-sentence'
+import { drawsSides, gapText, stretchSentence } from '@/lib/face/stretch-sentence'
 import { Drawing } from './drawing'
 import { ExplorerTools } from './explorer-tools'
 import { SidesLine, type StretchProps, Walk } from './stretch'
@@ -42,7 +42,7 @@ export function Explorer({ nodes: all, links, reading, cut, follows, nodeHref, d
   const nodes = useMemo(() => all.filter((node) => !NOT_DRAWN.has(node.state)), [all])
   const keys = useMemo(() => laneKeys(nodes, follows), [nodes, follows])
   const laneKey = lane === '' ? null : lane !== null && keys.includes(lane) ? lane : (keys[0] ?? null)
-  const sided = (cut?.sides ?? null) !== null
+  const sided = drawsSides(nodes, cut?.sides ?? null)
   const silent = reading?.treatAsSplit ?? false
   const crossingLinks = cut?.crossingLinks ?? null
   const drawn = Math.max(260, Math.floor((width ?? 0) * zoom.zoom))

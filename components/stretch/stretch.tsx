@@ -6,7 +6,7 @@ import type { Cut, OverlayLink, OverlayNode, Reading } from '@/lib/data/dto'
 import { cx } from '@/lib/face/cx'
 import { formatCount } from '@/lib/face/format'
 import { laneKeys, layoutStretch } from '@/lib/face/stretch'
-import { gapText, nodeReadout, stretchSentence } from '@/lib/face/stretch-sentence'
+import { drawsSides, gapText, nodeReadout, stretchSentence } from '@/lib/face/stretch-sentence'
 import { Drawing } from './drawing'
 import { StretchTable } from './stretch-table'
 import { useWidth } from './use-width'
@@ -34,7 +34,7 @@ export function Stretch({ nodes: all, links, reading, cut }: StretchProps) {
   if (follows !== followed) setFollowed(follows)
   const keys = useMemo(() => laneKeys(nodes, follows), [nodes, follows])
   const laneKey = lane === '' ? null : lane !== null && keys.includes(lane) ? lane : (keys[0] ?? null)
-  const sided = (cut?.sides ?? reading?.sides ?? null) !== null
+  const sided = drawsSides(nodes, cut?.sides ?? reading?.sides ?? null)
   const silent = reading?.treatAsSplit ?? false
   const crossingLinks = cut?.crossingLinks ?? reading?.crossingLinks ?? null
 

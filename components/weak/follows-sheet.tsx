@@ -13,19 +13,21 @@ export function FollowsSheet({ slug, place }: { slug: string; place: WeakPlace }
     <Sheet heading="What the cut follows" aside={`${follows.nodes} nodes on a side`}>
       <div className="space-y-3">
         <p className="font-semibold">{followsSentence(follows)}</p>
-        <DataTable
-          caption="Labels by how much they tell of the side a node is on"
-          columns={COLUMNS}
-          rows={follows.labels}
-          rowKey={({ key }) => key}
-          csvName={`${slug}-follows`}
-          stacks
-          empty={
-            <EmptyState title="No label to compare with.">
-              Give agents labels when they enrol: office, region, provider, power supply.
-            </EmptyState>
-          }
-        />
+        {follows.nodes > 0 ? (
+          <DataTable
+            caption="Labels by how much they tell of the side a node is on"
+            columns={COLUMNS}
+            rows={follows.labels}
+            rowKey={({ key }) => key}
+            csvName={`${slug}-follows`}
+            stacks
+            empty={
+              <EmptyState title="No label to compare with.">
+                Give agents labels when they enrol: office, region, provider, power supply.
+              </EmptyState>
+            }
+          />
+        ) : null}
         {leftOut ? <p className="text-sm text-soft">{leftOut}</p> : null}
         {follows.labels.length > 0 ? (
           <Note>

@@ -7,7 +7,7 @@ import { useLinks, useNodesAt } from '@/components/live/hooks'
 import { Explorer } from '@/components/stretch/explorer'
 import { EmptyState, FailedState, Lambda, Sheet, Waiting } from '@/components/ui'
 import type { WeakPlace } from '@/lib/data/weak-dto'
-import { UNPLACED } from '@/lib/face/stretch-sentence'
+import { unplacedRemark } from '@/lib/face/stretch-sentence'
 import { overlayPageUrls } from '@/lib/face/urls'
 import { asCut } from '@/lib/face/weak-cut'
 
@@ -25,16 +25,15 @@ export function StretchLarge({
   const links = useLinks(slug)
   const drawing = useRef<HTMLDivElement>(null)
   const cut = place && asCut(place)
-  const unplaced = nodes.data?.every((node) => node.value === null) ?? false
-  const remark = unplaced ? (
-    UNPLACED
-  ) : place?.sides ? (
-    <>
-      left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
-    </>
-  ) : (
-    'left to right: Fiedler value · no sides are drawn'
-  )
+  const remark =
+    (nodes.data && unplacedRemark(nodes.data, place?.sides ?? null)) ??
+    (place?.sides ? (
+      <>
+        left to right: Fiedler value · a tauter, thicker link carries more of <Lambda n={2} />
+      </>
+    ) : (
+      'left to right: Fiedler value · no sides are drawn'
+    ))
   return (
     <Sheet
       heading="Stretch"

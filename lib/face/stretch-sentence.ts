@@ -1,8 +1,21 @@
 import type { Cut, OverlayNode, Reading } from '@/lib/data/dto'
 import { formatCount } from './format'
 
-/** Beside a drawing in which no node has a value. */
-export const UNPLACED = 'no node has a value now: they stand by side, where it is known, and by name'
+/** Sides are drawn where there are some and it is known of a node on which it is. */
+export function drawsSides(nodes: readonly Pick<OverlayNode, 'side'>[], sides: Reading['sides']): boolean {
+  return sides !== null && nodes.some(({ side }) => side !== null)
+}
+
+/** What is said beside a drawing in which no node has a value; null where one has. */
+export function unplacedRemark(
+  nodes: readonly Pick<OverlayNode, 'side' | 'value'>[],
+  sides: Reading['sides'],
+): string | null {
+  if (nodes.some(({ value }) => value !== null)) return null
+  if (sides !== null && !drawsSides(nodes, sides))
+    return 'the thinnest cut is counted, but no node has told its side: they stand by name'
+  return 'no node has a value now: they stand by side, where it is known, and by name'
+}
 
 export interface Gap {
   /** What stands between the sides, in a few words. */

@@ -7,7 +7,13 @@ import { labelText } from '@/lib/face/node-columns'
 import { overlayOfPath, overlayPages } from '@/lib/face/pages'
 import { parseSheetChoice, sheetCookie } from '@/lib/face/sheet-choice'
 import { slugOf } from '@/lib/face/slug'
-import { gapText, nodeReadout, stretchSentence } from '@/lib/face/stretch-sentence'
+import {
+  drawsSides,
+  gapText,
+  nodeReadout,
+  stretchSentence,
+  unplacedRemark,
+} from '@/lib/face/stretch-sentence'
 
 const at = '2031-03-12T11:46:00.000Z'
 const weak: Reading = {
@@ -200,6 +206,18 @@ describe('stretch view in words', () => {
     expect(stretchSentence(nodes, false, { text: '', grave: false }, null)).toBe(
       'Stretch view: 3 nodes; no sides are drawn. 1 of them unheard.',
     )
+  })
+
+  it('says where nodes stand that have no value, and draws no sides of which none is known', () => {
+    const sides = cut.sides
+    const told = { ...node('tar-01', 'a'), value: null }
+    const untold = { ...told, side: null }
+    expect(unplacedRemark([node('tar-01', 'a'), untold], sides)).toBeNull()
+    expect(unplacedRemark([told, untold], sides)).toMatch(/^no node has a value now/)
+    expect(unplacedRemark([untold], null)).toMatch(/^no node has a value now/)
+    expect(unplacedRemark([untold], sides)).toMatch(/^the thinnest cut is counted/)
+    expect([[told, untold], [untold]].map((nodes) => drawsSides(nodes, sides))).toEqual([true, false])
+    expect(drawsSides([told], null)).toBe(false)
   })
 
   it('reads a node out', () => {
