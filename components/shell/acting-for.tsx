@@ -1,16 +1,29 @@
 'use client'
 
+import { useEffect } from 'react'
 import type { Overlay } from '@/lib/data/dto'
-import { actingCookie } from '@/lib/face/acting'
+import { ACTING_CHANNEL, actingCookie } from '@/lib/face/acting'
+
+type Props = Pick<Overlay, 'slug' | 'seats' | 'as'>
 
 /** For people who belong to several of the teams that share the overlay: as which of them they look and act. */
-export function ActingFor({ seats = [], as }: Pick<Overlay, 'seats' | 'as'>) {
-  if (seats.length < 2) return null
+export function ActingFor({ slug, seats = [], as }: Props) {
+  const several = seats.length > 1
+  useEffect(() => {
+    if (!several) return
+    // What another page shows, and would do, is of the team chosen before.
+    const channel = new BroadcastChannel(ACTING_CHANNEL)
+    channel.onmessage = () => open(slug)
+    return () => channel.close()
+  }, [several, slug])
+  if (!several) return null
   function choose(team: string) {
     // biome-ignore lint/suspicious/noDocumentCookie: the Cookie Store API is not in every browser
     document.cookie = actingCookie(team)
-    // All that is on the page and under way is of the other team.
-    window.location.reload()
+    const channel = new BroadcastChannel(ACTING_CHANNEL)
+    channel.postMessage(team)
+    channel.close()
+    open(slug)
   }
   return (
     <label className="mt-1 block text-sm text-soft">
@@ -29,4 +42,9 @@ export function ActingFor({ seats = [], as }: Pick<Overlay, 'seats' | 'as'>) {
       {seats.find(({ slug }) => slug === as?.slug)?.role}
     </label>
   )
+}
+
+/** Anew, from the overlay's first page: the page of a node has another address for each team. */
+function open(slug: string) {
+  window.location.assign(`/overlays/${slug}`)
 }

@@ -33,7 +33,9 @@ export function MarginIndex({ mayAudit, foot }: { mayAudit: boolean; foot: React
             Thinspan
           </Link>
           {name ? <p className="truncate text-soft md:mt-0.5">{name}</p> : null}
-          {known && overlay.data ? <ActingFor seats={overlay.data.seats} as={overlay.data.as} /> : null}
+          {known && overlay.data ? (
+            <ActingFor slug={overlay.data.slug} seats={overlay.data.seats} as={overlay.data.as} />
+          ) : null}
         </div>
         <details ref={menu} className="relative md:hidden">
           <summary className="flex min-h-11 items-center border border-edge px-4">Menu</summary>

@@ -23,8 +23,13 @@ export interface Memory {
   /** Combination since which Fiedler values keep their sign; null while there is none. */
   signSince: number | null
   cut: NamedCut | null
-  /** Side of each agent in that cut, by agent id. Kept while no single cut stands out, for the names' sake. */
+  /**
+   * Side of each agent in that cut, by agent id. Kept while no single cut stands out or nodes do not tell theirs, for the names' sake and to see
+   * which of them fall silent together.
+   */
   sides: Record<string, Side>
+  /** No node tells its side of the cut: these are of one before. Missing for false. */
+  untold?: boolean
   singleCut: boolean | null
   level: Level | null
   trend: Trend | null

@@ -11,9 +11,9 @@ export type Part = NonNullable<Reading['parts']>[number]
 export function partsTold(
   parts: readonly PartEstimate[],
   agents: readonly JudgedAgent[],
-  { sides, cut }: Pick<Memory, 'sides' | 'cut'>,
+  { sides, cut, untold }: Pick<Memory, 'sides' | 'cut' | 'untold'>,
 ): Part[] {
-  const isBySides = parts.length === 1 || (parts.length === 2 && cut?.links === 0)
+  const isBySides = !untold && (parts.length === 1 || (parts.length === 2 && cut?.links === 0))
   return parts.map(({ agents: ids, estimate }) => {
     const within = new Set(ids)
     const follows = labelFollowed(

@@ -22,6 +22,7 @@ export interface SidesInput {
 export interface Sides {
   cut: NamedCut
   sides: Memory['sides']
+  untold: boolean
 }
 
 /**
@@ -34,10 +35,12 @@ export function nameSides({ cut, signSince, agents, before, tellsRarely }: Sides
   for (const { agentId, heard, value } of agents) {
     if (heard && value && value.sweep >= signSince) above.set(agentId, value.value > cut.threshold)
   }
-  if (above.size === 0 && !tellsRarely) return null
-  const asBefore = tellsRarely ? before.cut?.aboveIs : undefined
-  const aboveIs = nameOfAbove(agents, above, last, asBefore)
-  const sides: Memory['sides'] = {}
+  const untold = above.size === 0
+  if (untold && !tellsRarely) return null
+  // While nobody told, the sides had names all the same.
+  const asBefore = tellsRarely && before.cut && before.cut.sweep >= signSince ? before.cut.aboveIs : null
+  const aboveIs = nameOfAbove(above, last) ?? asBefore ?? nameByEldest(agents, above)
+  const sides: Memory['sides'] = untold ? { ...last } : {}
   for (const { agentId, heard } of agents) {
     const isAbove = above.get(agentId)
     if (isAbove !== undefined) sides[agentId] = isAbove ? aboveIs : other(aboveIs)
@@ -57,6 +60,7 @@ export function nameSides({ cut, signSince, agents, before, tellsRarely }: Sides
       }),
     },
     sides,
+    untold,
   }
 }
 
@@ -64,22 +68,20 @@ function nodesOn({ above, below }: { above: number; below: number }, aboveIs: Si
   return aboveIs === 'a' ? { a: above, b: below } : { a: below, b: above }
 }
 
-function nameOfAbove(
-  agents: readonly SidedAgent[],
-  above: ReadonlyMap<string, boolean>,
-  last: Memory['sides'],
-  asBefore: Side | undefined,
-): Side {
+/** By the larger overlap with the last sides; null where it tells nothing. */
+function nameOfAbove(above: ReadonlyMap<string, boolean>, last: Memory['sides']): Side | null {
   let balance = 0
   for (const [agentId, isAbove] of above) {
     const side = last[agentId]
     if (side) balance += (side === 'a') === isAbove ? 1 : -1
   }
-  if (balance !== 0) return balance > 0 ? 'a' : 'b'
-  if (asBefore || above.size === 0) return asBefore ?? 'a'
-  const eldest = agents
-    .filter(({ agentId }) => above.has(agentId))
-    .reduce((a, b) => (b.joinedAtMs < a.joinedAtMs ? b : a))
+  return balance === 0 ? null : balance > 0 ? 'a' : 'b'
+}
+
+function nameByEldest(agents: readonly SidedAgent[], above: ReadonlyMap<string, boolean>): Side {
+  const [first, ...others] = agents.filter(({ agentId }) => above.has(agentId))
+  if (!first) return 'a'
+  const eldest = others.reduce((a, b) => (b.joinedAtMs < a.joinedAtMs ? b : a), first)
   return above.get(eldest.agentId) ? 'a' : 'b'
 }
 
@@ -87,8 +89,8 @@ export function other(side: Side): Side {
   return side === 'a' ? 'b' : 'a'
 }
 
-/** Null where no single cut stands out: a side would say something that is not so. */
+/** Null where no single cut stands out or no node tells its side: a side would say something that is not so. */
 export function sideOf(memory: Memory | null, agentId: string): Side | null {
-  if (!memory?.cut || memory.singleCut === false) return null
+  if (!memory?.cut || memory.singleCut === false || memory.untold) return null
   return memory.sides[agentId] ?? null
 }

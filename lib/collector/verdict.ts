@@ -27,6 +27,8 @@ export interface VerdictFacts {
     | { by: 'hidden-label'; nodes: number }
     | null
   singleCut: boolean | null
+  /** It is known of some node on which side of the last cut it was. Missing in facts of before it was kept. */
+  sidesKnown?: boolean
   cut: { nodes: Record<Side, number>; links: number } | null
   follows: Follows | null
   shareOfUsual: number | null
@@ -211,12 +213,14 @@ function withoutReading(facts: VerdictFacts, state: Exclude<VerdictFacts['state'
   }
 }
 
-function whyUnheard({ joined, heard }: VerdictFacts): string {
+function whyUnheard({ joined, heard, sidesKnown }: VerdictFacts): string {
   const unheard = joined - heard
   if (heard === 0) return 'All fell silent: look first at the collector and its own connection.'
   if (unheard === 1) return 'Whether it stopped or was cut off cannot be told from here.'
   if (unheard === 0)
     return 'Agents that held too many of the walkers were unheard; the walkers are coming back.'
+  if (sidesKnown === false)
+    return 'They have no label in common, and no node had told its side of the cut: whether they lie beyond it is not known.'
   return 'They have neither a side of the last cut nor a label in common, so this says nothing about a split.'
 }
 

@@ -15,7 +15,7 @@ import { ruleWords } from '@/lib/warn/rule-words'
 import type { IncidentsQuery } from './incident-dto'
 import { toIncident } from './incident-state'
 import { toldOf } from './incident-told'
-import { openOverlay } from './overlays'
+import { openOverlayAs } from './overlays'
 import { sightedText } from './said-sight'
 import { type Sight, sightAs } from './sight'
 import { callerTeams, teamMeant } from './teams'
@@ -45,15 +45,14 @@ export async function listIncidents(
   return pageOf(call, { team: { $in: teams.map(({ teamId }) => teamId) } }, query)
 }
 
-/** Of one overlay, as far as they are of the caller's teams; the newest first. */
+/** Of one overlay, of the team that the caller acts for; the newest first. */
 export async function listOverlayIncidents(
   call: Call,
   slug: string,
   query: IncidentsQuery,
 ): Promise<IncidentPage> {
-  const overlay = await openOverlay(call, 'incident.list', slug)
-  const teams = callerTeams(call).map(({ teamId }) => teamId)
-  return pageOf(call, { overlay: overlay.id, team: { $in: teams } }, query)
+  const { overlay, teamId } = await openOverlayAs(call, 'incident.list', slug)
+  return pageOf(call, { overlay: overlay.id, team: teamId }, query)
 }
 
 async function pageOf(

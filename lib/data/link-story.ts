@@ -8,7 +8,7 @@ import { namedLinks } from './links'
 import { mentionsOf } from './mentions'
 import { noSuchNode, type StoryQuery } from './node-story'
 import { nodeNamed } from './nodes'
-import { openOverlay } from './overlays'
+import { openOverlayAs } from './overlays'
 import { memoryOf, presentReading } from './readings'
 import { sightOf } from './sight'
 import type { LinkStory } from './weak-dto'
@@ -23,7 +23,7 @@ export async function getLinkStory(
   ends: Pair,
   { last }: StoryQuery,
 ): Promise<LinkStory> {
-  const overlay = await openOverlay(call, 'link.list', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'link.list', slug)
   const pair = inOrder(ends.a, ends.b)
   const memory = await memoryOf(call.em, overlay.id)
   const sight = await sightOf(call, overlay)
@@ -49,7 +49,10 @@ export async function getLinkStory(
     without: link && withoutLink(link, await presentReading(call.em, overlay, call.now, sight), silent),
     course,
     events: await eventsOf(call.em, overlay.id, kept),
-    incidents: await mentionsOf(call, overlay.id, [formatLink(kept.a, kept.b), formatLink(kept.b, kept.a)]),
+    incidents: await mentionsOf(call, { overlayId: overlay.id, teamId }, [
+      formatLink(kept.a, kept.b),
+      formatLink(kept.b, kept.a),
+    ]),
   }
 }
 

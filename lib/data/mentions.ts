@@ -3,51 +3,44 @@ import { query } from '@/lib/collector/query'
 import type { Call } from '@/lib/http/call'
 import { toIncident } from './incident-state'
 import { entryText } from './incidents'
-import { type Sight, sightAs } from './sight'
-import { callerTeams } from './teams'
+import { sightAs } from './sight'
 import type { Mention } from './weak-dto'
 
 export const MENTIONS_MOST = 20
 const LINES_MOST = 5
 
 /**
- * Incidents of an overlay whose timeline names a node or a link, as far as the caller may see them; the newest first.
+ * A team's incidents of an overlay whose timeline names a node or a link; the newest first.
  * @param spellings any of these, as a whole word; by the nodes' own names
  */
 export async function mentionsOf(
-  call: Call,
-  overlayId: string,
+  { em }: Call,
+  { overlayId, teamId }: { overlayId: string; teamId: string },
   spellings: readonly string[],
 ): Promise<Mention[]> {
-  const teams = callerTeams(call).map(({ teamId }) => teamId)
-  if (teams.length === 0) return []
   const found = await query<{ id: string }>(
-    call.em,
+    em,
     `select i.id from incidents i where i.overlay_id = ?
-       and i.team_id in (select jsonb_array_elements_text(?::jsonb)::uuid)
+       and i.team_id = ?
        and exists (select from incident_entries e, jsonb_array_elements_text(?::jsonb) spelling
          where e.incident_id = i.id and position(spelling in e.text) > 0)
      order by i.number desc limit ?`,
-    [overlayId, JSON.stringify(teams), JSON.stringify(spellings), MENTIONS_MOST],
+    [overlayId, teamId, JSON.stringify(spellings), MENTIONS_MOST],
   )
   if (found.length === 0) return []
   const ids = found.map(({ id }) => id)
-  const incidents = await call.em.find(
+  const incidents = await em.find(
     IncidentSchema,
     { id: { $in: ids } },
     { populate: ['overlay', 'team', 'holder'], orderBy: { number: 'desc' } },
   )
-  const entries = await call.em.find(
+  const entries = await em.find(
     IncidentEntrySchema,
     { incident: { $in: ids } },
     { orderBy: { at: 'desc', id: 'desc' } },
   )
-  const sights = new Map<string, Sight>()
-  for (const { team } of incidents)
-    if (!sights.has(team.id)) sights.set(team.id, await sightAs(call.em, overlayId, [team.id]))
+  const sight = await sightAs(em, overlayId, [teamId])
   return incidents.flatMap((incident) => {
-    const sight = sights.get(incident.team.id)
-    if (!sight) return []
     const lines = entries.filter((entry) => entry.incident.id === incident.id && names(entry.text, spellings))
     if (lines.length === 0) return []
     return {

@@ -5,23 +5,21 @@ import { LEVELS } from '@/lib/data/dto'
 import type { Call } from '@/lib/http/call'
 import type { MonthDay, MonthReportInput } from '@/lib/report/month-report'
 import { toIncident } from './incident-state'
-import { openOverlay } from './overlays'
-import { callerTeams } from './teams'
+import { openOverlayAs } from './overlays'
 
 /** "2026-11", in UTC. */
 export const monthSchema = z.string().regex(/^2\d{3}-(0[1-9]|1[0-2])$/, 'Write the month as 2026-11.')
 
 /** What was of an overlay in a month of UTC, from what is kept of its hours. */
 export async function getMonthReport(call: Call, slug: string, month: string): Promise<MonthReportInput> {
-  const overlay = await openOverlay(call, 'incident.list', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'incident.list', slug)
   const from = new Date(`${month}-01T00:00:00.000Z`)
   const to = new Date(Date.UTC(from.getUTCFullYear(), from.getUTCMonth() + 1, 1))
-  const teams = callerTeams(call).map(({ teamId }) => teamId)
   const incidents = await call.em.find(
     IncidentSchema,
     {
       overlay: overlay.id,
-      team: { $in: teams },
+      team: teamId,
       raisedAt: { $lt: to },
       $or: [{ clearedAt: null }, { clearedAt: { $gte: from } }],
     },

@@ -8,7 +8,7 @@ import { type KeptRange, keptOf } from './kept-moments'
 import { namedLinks } from './links'
 import { mentionsOf } from './mentions'
 import { nodeNamed } from './nodes'
-import { openOverlay } from './overlays'
+import { openOverlayAs } from './overlays'
 import { memoryOf } from './readings'
 import { sightOf } from './sight'
 import { lastSchema, type NodeStory } from './weak-dto'
@@ -23,7 +23,7 @@ export async function getNodeStory(
   name: string,
   { last }: StoryQuery,
 ): Promise<NodeStory> {
-  const overlay = await openOverlay(call, 'node.list', slug)
+  const { overlay, teamId } = await openOverlayAs(call, 'node.list', slug)
   const memory = await memoryOf(call.em, overlay.id)
   const sight = await sightOf(call, overlay)
   const node = await nodeNamed(call.em, overlay, memory, name, sight)
@@ -40,7 +40,7 @@ export async function getNodeStory(
     links,
     unnamed: Math.max(0, (node.state === 'heard' ? (node.degree ?? 0) : 0) - live),
     course: await courseOf(call, { overlayId: overlay.id, last, toMs: call.now.getTime() }, kept),
-    incidents: await mentionsOf(call, overlay.id, [kept]),
+    incidents: await mentionsOf(call, { overlayId: overlay.id, teamId }, [kept]),
   }
 }
 

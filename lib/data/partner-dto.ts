@@ -43,7 +43,7 @@ export const partShownSchema = z.object({
 export const overlayTeamSchema = z.object({
   team,
   standing: z.enum(STANDINGS),
-  /** The caller belongs to it. */
+  /** The caller acts for it. */
   yours: z.boolean(),
   contact: z.string().nullable(),
   sharedLabels: z.array(z.string()),

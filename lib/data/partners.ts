@@ -17,7 +17,7 @@ export async function listPartners(call: Call, slug: string): Promise<Partners> 
   const isOwner = mine !== undefined && roleReaches(mine.role, 'owner')
   const seesInvitations = standing === 'owner' && (!mine || roleReaches(mine.role, 'operator'))
   return {
-    teams: await teamsOf(call, overlay),
+    teams: await teamsOf(call, overlay, teamId),
     invitations: seesInvitations ? await listInvitations(call, overlay) : null,
     ownLabels: await labelKeysOf(call, overlay.id, teamId),
     may: { invite: isOwner && standing === 'owner', change: isOwner, end: isOwner },
@@ -36,9 +36,9 @@ interface Row {
   heard: number
 }
 
-async function teamsOf(call: Call, { id, pace }: Overlay): Promise<OverlayTeam[]> {
+async function teamsOf({ em }: Call, { id, pace }: Overlay, ownTeamId: string): Promise<OverlayTeam[]> {
   const rows = await query<Row>(
-    call.em,
+    em,
     `with parts as (
        select team_id, 'owner' as standing, contact, shared_labels, created_at as since
          from overlays where id = ?
@@ -54,11 +54,10 @@ async function teamsOf(call: Call, { id, pace }: Overlay): Promise<OverlayTeam[]
      order by p.standing = 'owner' desc, p.since, t.name`,
     [id, id, heldMs(PACES[pace].intervalMs), id],
   )
-  const own = new Set(callerTeams(call).map(({ teamId }) => teamId))
   return rows.map(({ id: teamId, slug, name, since, ...row }) => ({
     ...row,
     team: { slug, name },
-    yours: own.has(teamId),
+    yours: teamId === ownTeamId,
     since: new Date(since).toISOString(),
   }))
 }

@@ -52,9 +52,13 @@ export async function createRehearsal(call: Call, slug: string, input: NewRehear
   const incident =
     number === null ? null : await em.findOne(IncidentSchema, { number, overlay: overlay.id, team: teamId })
   if (number !== null && !incident)
-    throw new AppError('invalid-input', `There is no incident ${number} of this overlay.`, {
-      errors: [{ path: 'incident', message: 'Choose one of this overlay.' }],
-    })
+    throw new AppError(
+      'invalid-input',
+      `There is no incident ${number} of this overlay and of the team you act for.`,
+      {
+        errors: [{ path: 'incident', message: 'Choose one of this overlay.' }],
+      },
+    )
   await refuseFull(call, opened)
   const row = em.create(RehearsalSchema, {
     ...mine(opened),

@@ -107,7 +107,7 @@ export function whyNoSides(reading: Reading): WeakPlace['withheld'] {
 export function remarkOf(reading: Reading): string | null {
   if (!reading.sides) return null
   if (reading.treatAsSplit)
-    return 'Agents of one side are unheard together: treat the overlay as split. What held the sides is what was last heard of it.'
+    return 'Agents that lie together are unheard together: treat the overlay as split. What held the sides is what was last heard of it.'
   if (reading.data === 'unheard')
     return 'Too few agents are heard: sides and links are those of the last good reading.'
   if (reading.level === 'split')

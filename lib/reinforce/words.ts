@@ -36,7 +36,7 @@ const NOTHING: Record<Nothing, Said> = {
   'few-values': {
     sentence: 'Too few nodes have told their values to propose a link.',
     detail:
-      'Where links are not named, agents tell theirs coarsely, rarely, and only once one cut has been clearly the weakest for some time. While none is, one link more would raise the reading by little.',
+      'Where links are not named, agents tell theirs coarsely, rarely, and only once one cut has been clearly the weakest for some time. Until then nobody knows which two are far apart.',
   },
   'no-pair': {
     sentence: 'No pair of nodes is left that these limits allow.',

@@ -1,6 +1,8 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { createRehearsal, getOverlay, listRehearsals } from '@/lib/data'
+import { listOverlayIncidents } from '@/lib/data/incidents'
 import { listNodes } from '@/lib/data/nodes'
+import { listPartners } from '@/lib/data/partners'
 import { requestFacts } from '@/lib/http/request-facts'
 import { openSharedOverlay, type SharedOverlay, stored } from '@/tests/support/shared-overlay'
 
@@ -48,6 +50,19 @@ describe('who belongs to two of an overlay’s teams', () => {
     const rehearsed = async (team: string) =>
       (await listRehearsals(both(team), slug)).items.flatMap(({ exclude }) => exclude.nodes)
     expect([await rehearsed('skerry'), await rehearsed('harbourline')]).toEqual([['ske-01'], []])
+  })
+
+  it('has the incidents and the part of that team alone', async () => {
+    const incidentsOf = async (team: string) =>
+      (await listOverlayIncidents(both(team), slug, { limit: 10 })).items.map(({ number }) => number)
+    const { incidents } = shared
+    expect([await incidentsOf('skerry'), await incidentsOf('harbourline')]).toEqual([
+      [incidents.skerry],
+      [incidents.harbourline],
+    ])
+    const yours = async (team: string) =>
+      (await listPartners(both(team), slug)).teams.filter(({ yours }) => yours).map(({ team }) => team.slug)
+    expect([await yours('skerry'), await yours('harbourline')]).toEqual([['skerry'], ['harbourline']])
   })
 
   it('says so by a cookie of the page', () => {

@@ -1,18 +1,26 @@
+import { RENEWAL_INTERVALS } from './renewal'
+
 /**
  * λ₃ over λ₂ from which one cut is clearly the weakest, and until which it stays so. Where links are not named, nodes tell their sides only
  * then. On random 6-regular graphs of 60 nodes that lose 4 links an hour the sides of whichever cut was the weakest named 24 to 40 % of links by
  * the end of a day, where 10 % are by chance; λ₃ never came to 1.5 λ₂ there in five days of five graphs. Two such clusters of 30 nodes with 24
  * links between them have 1.8, with 5 links 9.
  */
-export const CLEAR_FROM = 1.5
-export const CLEAR_UNTIL = 1.3
-/** A cut has to be so clear for this long, in a settled reading: a ratio that is still on its way down passes every mark. */
-export const CLEAR_INTERVALS = 15
+export const CLEAR_FROM = 1.75
+export const CLEAR_UNTIL = 1.4
+/**
+ * A cut has to be so clear for this long, in a settled reading: a ratio that is still on its way down passes every mark, and what bounds λ₃ from
+ * above comes down as colonies are renewed.
+ */
+export const CLEAR_INTERVALS = 2 * RENEWAL_INTERVALS
+/** Of the time between two readings no more than so much counts. */
+const MOST_BETWEEN_INTERVALS = 2
 
 export interface Standing {
-  /** Since when one cut has been clearly the weakest. */
-  sinceMs: number
-  /** And for long enough. */
+  atMs: number
+  /** For how long one cut has been clearly the weakest, without times of no reading. */
+  clearMs: number
+  /** It is long enough, and nothing has said otherwise since. */
   stands: boolean
 }
 
@@ -28,10 +36,14 @@ export function standingNow(
   },
 ): Standing | null {
   const { atMs, lambda2, lambda3AtMost, settling, intervalMs } = now
-  if (lambda2 === null) return null
+  const passedMs = before ? Math.min(atMs - before.atMs, MOST_BETWEEN_INTERVALS * intervalMs) : 0
   // As links go the bounds of before hold no longer, and there is none for a moment: nothing says that another cut has come near.
-  if (before?.stands) return lambda3AtMost === null || lambda3AtMost > CLEAR_UNTIL * lambda2 ? before : null
-  if (settling || lambda3AtMost === null || lambda3AtMost <= CLEAR_FROM * lambda2) return null
-  const sinceMs = before?.sinceMs ?? atMs
-  return { sinceMs, stands: atMs - sinceMs >= CLEAR_INTERVALS * intervalMs }
+  if (before?.stands) {
+    const isOver = lambda2 !== null && lambda3AtMost !== null && lambda3AtMost <= CLEAR_UNTIL * lambda2
+    return isOver ? null : { ...before, atMs }
+  }
+  if (lambda2 === null || lambda3AtMost === null) return null
+  if (settling || lambda3AtMost <= CLEAR_FROM * lambda2) return null
+  const clearMs = (before?.clearMs ?? 0) + passedMs
+  return { atMs, clearMs, stands: clearMs >= CLEAR_INTERVALS * intervalMs }
 }

@@ -32,6 +32,7 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
       renewedAtMs: now.atMs,
       coldSinceMs: now.atMs,
       ritz: [],
+      standing: null,
       next: null,
       linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, present),
     }

@@ -1,6 +1,13 @@
 import { describe, expect, it } from 'vitest'
-import { type JudgedAgent, type JudgeInput, type Judgement, judge } from '@/lib/collector/judge'
+import {
+  type JudgedAgent,
+  type JudgeInput,
+  type Judgement,
+  judge,
+  LISTENING_INTERVALS,
+} from '@/lib/collector/judge'
 import { BLANK_MEMORY, type Memory } from '@/lib/collector/memory'
+import { sideOf } from '@/lib/collector/sides'
 import type { CutCount, Estimate } from '@/lib/method/control'
 
 const INTERVAL_MS = 2_000
@@ -151,23 +158,56 @@ describe('a judgement', () => {
     expect(course.memory.cut).toBeNull()
   })
 
-  it('counts a cut of which no node has told its side, and keeps the names of its sides when they do', () => {
-    const course = new Course()
-    const lone = { ...CUT, above: 6, below: 2 }
-    const told = (sweep: number, value: JudgedAgent['value']) =>
-      course.next({ cut: { ...lone, sweep } }, { isNamed: false, agents: agents(() => ({ value })) })
+  describe('of an overlay whose nodes do not tell their sides', () => {
+    const CUT_6_2 = { ...CUT, above: 6, below: 2 }
     const sizes = [
       { name: 'a', nodes: 6 },
       { name: 'b', nodes: 2 },
     ]
-    const { reading } = told(7, null)
-    expect(reading).toMatchObject({ sides: sizes, crossingLinks: 6 })
-    expect(reading.verdict).toContain('6 nodes')
-    expect(course.memory.sides).toEqual({})
-    told(8, { sweep: 8, value: -1 })
-    expect(course.memory.sides['agent-0']).toBe('b')
-    expect(told(9, null).reading.sides).toEqual(sizes)
-    expect(course.memory.sides).toEqual({})
+    const untold = (change: (agent: JudgedAgent, index: number) => Partial<JudgedAgent> = () => ({})) => ({
+      isNamed: false,
+      agents: agents((agent, index) => ({ value: null, ...change(agent, index) })),
+    })
+    const cutOf = (sweep: number) => ({ cut: { ...CUT_6_2, sweep } })
+    const told = (sweep: number) => ({
+      isNamed: false,
+      agents: agents(({ value }) => ({ value: value && { ...value, sweep } })),
+    })
+
+    it('counts the cut, puts nobody on a side, and keeps the names of its sides when they tell', () => {
+      const course = new Course()
+      const { reading } = course.next(cutOf(7), untold())
+      expect(reading).toMatchObject({ sides: sizes, crossingLinks: 6, detail: '' })
+      expect(reading.verdict).toContain('6 nodes')
+      expect(sideOf(course.memory, 'agent-0')).toBeNull()
+      course.next(cutOf(8), told(8))
+      expect([sideOf(course.memory, 'agent-0'), sideOf(course.memory, 'agent-7')]).toEqual(['b', 'a'])
+      expect(course.next(cutOf(9), untold()).reading.sides).toEqual(sizes)
+      expect(sideOf(course.memory, 'agent-0')).toBeNull()
+      course.next(cutOf(10), told(10))
+      expect(sideOf(course.memory, 'agent-0')).toBe('b')
+    })
+
+    it('does not take two that are silent for a side of their own', () => {
+      const course = new Course()
+      course.next(cutOf(7), told(7))
+      const silent = () =>
+        untold((_, index) => (index < 2 ? { heard: false, heardAtMs: START_MS, labels: {} } : {}))
+      for (let sweep = 8; sweep < 8 + 2 * LISTENING_INTERVALS; sweep++)
+        expect(course.next(cutOf(sweep), silent(), 6).reading.treatAsSplit).toBe(false)
+    })
+
+    it('says that it is not known whether the silent lie beyond the cut', () => {
+      const course = new Course()
+      course.next(cutOf(7), untold())
+      const silent = untold((_, index) => ({
+        labels: {},
+        ...(index < 4 && { heard: false, heardAtMs: START_MS }),
+      }))
+      let last = course.next(withheld, silent, 4)
+      for (let index = 0; index < LISTENING_INTERVALS; index++) last = course.next(withheld, silent, 4)
+      expect(last.reading.detail).toContain('no node had told its side of the cut')
+    })
   })
 
   it('withholds sides and crossing links where no single cut is weakest, until one stands out clearly', () => {

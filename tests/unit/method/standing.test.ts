@@ -32,31 +32,31 @@ function standsAfter(spells: readonly Spell[]): boolean {
 const LONG = CLEAR_INTERVALS + 1
 
 const courses: [what: string, spells: Spell[], stands: boolean][] = [
-  ['stands out once it has long been clear', [[1.6, LONG]], true],
-  ['does not yet one interval before', [[1.6, LONG - 1]], false],
-  ['does not while another is nearly as weak', [[1.5, 10 * LONG]], false],
+  ['stands out once it has long been clear', [[1.8, LONG]], true],
+  ['does not yet one interval before', [[1.8, LONG - 1]], false],
+  ['does not while another is nearly as weak', [[1.75, 10 * LONG]], false],
   ['does not while the reading settles', [[3, 10 * LONG, 'settling']], false],
   [
     'begins anew after a moment of doubt',
     [
-      [1.6, LONG - 1],
-      [1.4, 1],
-      [1.6, LONG - 1],
+      [1.8, LONG - 1],
+      [1.7, 1],
+      [1.8, LONG - 1],
     ],
     false,
   ],
   [
     'stays while it is a little less clear',
     [
-      [1.6, LONG],
-      [1.31, 10 * LONG],
+      [1.8, LONG],
+      [1.41, 10 * LONG],
     ],
     true,
   ],
   [
     'stays while the reading settles',
     [
-      [1.6, LONG],
+      [1.8, LONG],
       [2, LONG, 'settling'],
     ],
     true,
@@ -64,7 +64,7 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
   [
     'stays while nothing is known of another',
     [
-      [1.6, LONG],
+      [1.8, LONG],
       ['unbounded', LONG, 'settling'],
     ],
     true,
@@ -73,23 +73,37 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
   [
     'is over as another comes near',
     [
-      [1.6, LONG],
-      [1.3, 1],
+      [1.8, LONG],
+      [1.4, 1],
     ],
     false,
   ],
   [
-    'is over without a reading',
+    'stays while there is no reading',
     [
-      [1.6, LONG],
+      [1.8, LONG],
+      [null, LONG],
+    ],
+    true,
+  ],
+  [
+    'begins anew after a time without a reading',
+    [
+      [1.8, LONG - 1],
       [null, 1],
-      [1.6, 1],
+      [1.8, LONG - 1],
     ],
     false,
   ],
 ]
 
 describe('the one weakest cut', () => {
+  it('is not clear by two readings that are far apart', () => {
+    const now = { lambda2: 0.5, lambda3AtMost: 2, settling: false, intervalMs: INTERVAL_MS }
+    const first = standingNow(null, { ...now, atMs: 0 })
+    expect(standingNow(first, { ...now, atMs: 500 * INTERVAL_MS })?.stands).toBe(false)
+  })
+
   it.each(courses)('%s', (_what, spells, stands) => expect(standsAfter(spells)).toBe(stands))
 })
 
@@ -136,7 +150,7 @@ describe('the sides that are told over a day in which links go and come back', (
     expect(namedBySides(graph, day).every - chanceOf(graph)).toBeLessThanOrEqual(0.03))
 
   it('would name them if they were told of whichever cut is the weakest', () => {
-    const always = namedBySides(graph, day, (_before, { atMs }) => ({ sinceMs: atMs, stands: true }))
+    const always = namedBySides(graph, day, (_before, { atMs }) => ({ atMs, clearMs: 0, stands: true }))
     expect(always.toldShare).toBe(1)
     expect(always.every - chanceOf(graph)).toBeGreaterThan(0.1)
   })
