@@ -92,6 +92,8 @@ export const isRight = (run: RehearsalRun): boolean => {
 
 const isHeld = ({ exact, low, high }: RehearsalRun): boolean => exact >= low && exact <= high
 
+const percent = (shares: readonly number[]): string => `${(100 * Math.max(...shares)).toFixed(1)} %`
+
 export function summaryOf(all: readonly RehearsalRun[]): string[] {
   const count = (pick: (run: RehearsalRun) => boolean): string =>
     `${all.filter(pick).length} of ${all.length}`
@@ -100,6 +102,7 @@ export function summaryOf(all: readonly RehearsalRun[]): string[] {
   return [
     `${count(isRight)} right: within 5 % of exact, or splits where it does; farthest off ${(100 * Math.max(...offs)).toFixed(1)} %.`,
     `Seconds to the answer: median ${median(seconds).toFixed(0)}, longest ${Math.max(...seconds).toFixed(0)}.`,
-    `Live reading within 2 % of its mean before: ${count(({ liveOff }) => liveOff <= LIVE_WITHIN)}; without one: ${count(({ aloneOff }) => aloneOff <= LIVE_WITHIN)}.`,
+    `Every live reading within 2 % of its mean before: ${count(({ liveOff }) => liveOff <= LIVE_WITHIN)}; without one: ${count(({ aloneOff }) => aloneOff <= LIVE_WITHIN)}.`,
+    `Mean of the live readings within 2 % of that before: ${count(({ liveMoved }) => liveMoved <= LIVE_WITHIN)}, farthest ${percent(all.map(({ liveMoved }) => liveMoved))}; without one: ${count(({ aloneMoved }) => aloneMoved <= LIVE_WITHIN)}, farthest ${percent(all.map(({ aloneMoved }) => aloneMoved))}.`,
   ]
 }

@@ -29,6 +29,9 @@ export interface RehearsalRun {
   /** Largest share by which the live reading stood from its mean of the time before: meanwhile, and in such a time without any. */
   liveOff: number
   aloneOff: number
+  /** Share by which its mean moved, likewise. */
+  liveMoved: number
+  aloneMoved: number
   /** Both halves at the end. */
   halves: readonly [number, number] | null
   sides: readonly [number, number] | null
@@ -98,6 +101,8 @@ export function runRehearsals(
       seconds,
       liveOff: farthest(live, before),
       aloneOff: farthest(before, earlier),
+      liveMoved: moved(live, before),
+      aloneMoved: moved(before, earlier),
       halves: last?.found?.halves ?? null,
       sides: cut ? [cut.above, cut.below] : null,
       crossing: cut?.links ?? null,
@@ -105,8 +110,15 @@ export function runRehearsals(
   })
 }
 
+const mean = (values: readonly number[]): number =>
+  values.reduce((sum, value) => sum + value, 0) / values.length
+
+function moved(values: readonly number[], before: readonly number[]): number {
+  return values.length === 0 ? 0 : Math.abs(mean(values) / mean(before) - 1)
+}
+
 function farthest(values: readonly number[], before: readonly number[]): number {
-  const was = before.reduce((sum, value) => sum + value, 0) / before.length
+  const was = mean(before)
   return Math.max(0, ...values.map((value) => Math.abs(value / was - 1)))
 }
 
