@@ -109,7 +109,7 @@ describe('a rehearsal', () => {
       '400 No node would remain. Leave at least 2.',
       '400 One node would remain. Leave at least 2.',
       '400 There is no link tar-01 – tar-02 now. Choose links that are measured.',
-      '400 There is no incident 987654 of this overlay.',
+      '400 There is no incident 987654 of this overlay and of the team you act for.',
     ])
     expect(
       await problemOf(await as('viewer', start, 'POST', { body: { exclude: { nodes: ['tar-01'] } } })),
