@@ -31,7 +31,7 @@ export function ActingFor({ slug, seats = [], as }: Props) {
       <select
         value={as?.slug ?? ''}
         onChange={(event) => choose(event.target.value)}
-        className="block min-h-9 w-full max-w-44 border border-edge bg-paper px-1 text-ink"
+        className="block min-h-9 w-full max-w-44 truncate border border-edge bg-paper pr-6 pl-1 text-ink"
       >
         {seats.map(({ slug, name }) => (
           <option key={slug} value={slug}>
