@@ -6,12 +6,7 @@ import { once } from 'node:events'
 import { resolve } from 'node:path'
 import { GET as agentFacts } from '@/app/agent/thinspan-agent.json/route'
 import { GET as agentFile } from '@/app/agent/thinspan-agent.mjs/route'
-import { GET as directory } from '@/app/api/agent/directory/route'
-import { POST as enrol } from '@/app/api/agent/enrol/route'
-import { POST as key } from '@/app/api/agent/key/route'
-import { POST as leave } from '@/app/api/agent/leave/route'
-import { POST as report } from '@/app/api/agent/report/route'
-import { POST as session } from '@/app/api/agent/session/route'
+import { AGENT_ROUTES } from '@/app/api/agent/routes'
 import { createRouteServer } from '@/lib/collector/http-server'
 import { getIngest, startLeader } from '@/lib/collector/process'
 import { closeDatabase, sql, switchOffIdleStorages } from '@/lib/db'
@@ -42,12 +37,7 @@ const health = route('health.read', {}, async (call) => {
 })
 
 const server = createRouteServer({
-  'POST /api/agent/enrol': enrol,
-  'POST /api/agent/session': session,
-  'POST /api/agent/report': report,
-  'POST /api/agent/key': key,
-  'POST /api/agent/leave': leave,
-  'GET /api/agent/directory': directory,
+  ...AGENT_ROUTES,
   'GET /agent/thinspan-agent.mjs': agentFile,
   'GET /agent/thinspan-agent.json': agentFacts,
   'GET /api/health': health,

@@ -19,24 +19,22 @@ export interface Acting {
 }
 
 /**
- * For which of an overlay's teams a caller does this: always the one they sit for (`seatOf`), so that what they see and
- * what they do are of the same team. What is open to the owning team alone is done for it, unless another was chosen.
+ * For which of an overlay's teams a caller does this: the one they sit for (`seatOf`), so that what they see and what they do are of
+ * the same team. What is open to the owning team alone is judged as theirs where they belong to it too and chose no other.
  */
-export function actingFor(
-  permission: Permission,
-  caller: Caller,
-  { ownerTeamId, partnerTeamIds }: Parties,
-): Acting {
-  const parties = { ownerTeamId, partnerTeamIds }
+export function actingFor(permission: Permission, caller: Caller, parties: Parties): Acting {
+  const { ownerTeamId } = parties
+  const asOwner = { teamId: ownerTeamId, standing: 'owner' } as const
+  const decided = ({ teamId, standing }: Pick<Acting, 'teamId' | 'standing'>): Acting => ({
+    ...{ teamId, standing },
+    decision: decide(permission, caller, teamId),
+  })
   const seat = seatOf(caller, parties)
-  const owner = { teamId: ownerTeamId, standing: 'owner' } as const
-  if (!seat) return { ...owner, decision: decide(permission, caller, ownerTeamId) }
-  const { isChosen, teamId, standing } = seat
-  if (standing === 'owner' || permission.partner)
-    return { teamId, standing, decision: decide(permission, caller, teamId) }
-  if (!isChosen && seatsOf(caller, parties).some((one) => one.standing === 'owner'))
-    return { ...owner, decision: decide(permission, caller, ownerTeamId) }
-  return { teamId, standing, decision: 'owner-only' }
+  if (!seat) return decided(asOwner)
+  if (seat.standing === 'owner' || permission.partner) return decided(seat)
+  const isOfOwner = seatsOf(caller, parties).some(({ standing }) => standing === 'owner')
+  if (isOfOwner && !seat.isChosen) return decided(asOwner)
+  return { teamId: seat.teamId, standing: seat.standing, decision: 'owner-only' }
 }
 
 export interface Seat extends TeamRole {

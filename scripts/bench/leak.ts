@@ -9,6 +9,7 @@ import { type WatchInit, watchOverlay } from './leak/looks'
 import { chanceOf, type Shares, sharesOf } from './leak/shares'
 import { namedBySides } from './leak/sides'
 import { HEAD, linesOf } from './leak/table'
+import { mean } from './reading/course'
 
 const CASES: Record<string, (seed: number) => SparseGraph> = {
   'regular-60': (seed) => randomRegular(60, 6, createRandom(`regular-60 ${seed}`)),
@@ -27,7 +28,13 @@ type Print = (line: string) => void
  */
 export function benchLeak(args: readonly string[], print: Print): void {
   const options = optionsOf(args)
-  const { only, daysOnly, disclosures, seeds, pace, minutes, sumsMinutes, lostPerHour } = options
+  if (!options.daysOnly) printWalked(options, print)
+  printDegrees(options.only, print)
+  printSides(options.only, print)
+}
+
+function printWalked(options: ReturnType<typeof optionsOf>, print: Print): void {
+  const { only, disclosures, seeds, pace, minutes, sumsMinutes, lostPerHour } = options
   const sums = Math.min(sumsMinutes, minutes)
   print(
     `${minutes} simulated minutes at ${pace} pace, sums of the first ${sums}; ${lostPerHour} links lost an hour, and back later; ${count(seeds)}.`,
@@ -35,7 +42,7 @@ export function benchLeak(args: readonly string[], print: Print): void {
   print('Share of guesses that are links, of as many as there are, and of the surest tenth of them.')
   print('chance: any two nodes; sides: any two that say they are on one side.')
   print(HEAD)
-  for (const name of daysOnly ? [] : only)
+  for (const name of only)
     for (const disclosure of disclosures) {
       const all: Shares[] = []
       for (let seed = 1; seed <= seeds; seed++) {
@@ -45,16 +52,11 @@ export function benchLeak(args: readonly string[], print: Print): void {
       }
       for (const line of linesOf(name, disclosure, all)) print(line)
     }
-  printDegrees(only, print)
-  printSides(only, print)
 }
 
 const DAY_SEEDS = 5
 const DAY_LOST_PER_HOUR = [0.5, 1, 4, 16]
 const seedsOfDay = Array.from({ length: DAY_SEEDS }, (_, index) => index + 1)
-
-const mean = (values: readonly number[]): number =>
-  values.reduce((sum, value) => sum + value, 0) / values.length
 
 type DayFigures = (graph: SparseGraph, init: { seed: number; hours: number; lostPerHour: number }) => number[]
 

@@ -2,12 +2,7 @@ import { randomBytes } from 'node:crypto'
 import type { Server } from 'node:http'
 import type { AddressInfo } from 'node:net'
 import { createClock, createHttpCollector, createPost, createWsTransport, silentLogger } from '@/agent'
-import { GET as directory } from '@/app/api/agent/directory/route'
-import { POST as enrol } from '@/app/api/agent/enrol/route'
-import { POST as key } from '@/app/api/agent/key/route'
-import { POST as leave } from '@/app/api/agent/leave/route'
-import { POST as report } from '@/app/api/agent/report/route'
-import { POST as session } from '@/app/api/agent/session/route'
+import { AGENT_ROUTES } from '@/app/api/agent/routes'
 import { createRouteServer } from '@/lib/collector/http-server'
 import { createRandom } from '@/lib/method/random'
 import { createFleet, type Fleet, type FleetInit } from '@/scripts/fleet/fleet'
@@ -22,14 +17,7 @@ export interface RouteFleet {
 /** Real agents on real sockets, whose collector is the routes of this process, served on loopback. */
 export async function startRouteFleet(seed: string, init: FleetInit): Promise<RouteFleet> {
   const clock = createClock({ monotonicMs: () => performance.now(), epochMs: () => Date.now() })
-  const server = createRouteServer({
-    'POST /api/agent/enrol': enrol,
-    'POST /api/agent/session': session,
-    'POST /api/agent/report': report,
-    'POST /api/agent/key': key,
-    'POST /api/agent/leave': leave,
-    'GET /api/agent/directory': directory,
-  })
+  const server = createRouteServer(AGENT_ROUTES)
   await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))
   const { port } = server.address() as AddressInfo
   const fleet = createFleet(

@@ -1,5 +1,6 @@
 import { answersInMs } from './answer'
 import { noteBound } from './bound'
+import { clearCutNow } from './clear-cut'
 import type { Coverage } from './coverage'
 import { crossCheckOf } from './cross-check'
 import { THRESHOLDS } from './cut'
@@ -10,7 +11,6 @@ import { walkingLambda } from './law'
 import { nextStep } from './link-time'
 import { ordersFrom } from './orders-from'
 import { NEXT_TO_NOTHING, settlesInMs } from './settling'
-import { standingNow } from './standing'
 import type { ColonyControl, ControlState } from './state'
 import { combinationOf, fallWithMore, ritzOf } from './subspace'
 import type { Totals } from './totals'
@@ -84,7 +84,7 @@ export function read(
         sides:
           (control.combination && totals.sidesOf(control.combination.id, settings.rehearses)) ??
           control.combination?.sides,
-        ...(now.round && { stands: control.standing?.stands ?? false }),
+        ...(now.round && { stands: control.clearCut?.stands ?? false }),
       })
       next.combinationAtMs = now.atMs
     }
@@ -118,7 +118,7 @@ export function read(
           isApart,
         })
   const settling = settles !== null && settles > 0
-  next.standing = standingNow(control.standing ?? null, {
+  next.clearCut = clearCutNow(control.clearCut ?? null, {
     ...{ atMs: now.atMs, lambda2, lambda3AtMost: second, settling },
     intervalMs: pace.intervalMs,
   })

@@ -3,11 +3,11 @@ import type { Disclosure, SweepOrders } from '../orders'
 import type { Pace } from '../pace'
 import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
+import type { ClearCut } from './clear-cut'
 import type { CoreControl } from './core'
 import { firstLinkTimePerSecond } from './law'
 import type { PartControl } from './parts'
 import type { RehearsalControl } from './rehearsals'
-import type { Standing } from './standing'
 import type { Young } from './young'
 
 export const COLONIES = 5
@@ -105,7 +105,7 @@ export interface ControlState {
   stoodUntilMs?: number
   young?: Young | null
   /** Whether one cut is clearly the weakest. Missing in states of before it was kept. */
-  standing?: Standing | null
+  clearCut?: ClearCut | null
   /** Where links are not named. */
   rounds?: RoundsControl
   /** The core and what is set apart from it; missing where nobody has looked for it yet. */

@@ -32,7 +32,7 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
       renewedAtMs: now.atMs,
       coldSinceMs: now.atMs,
       ritz: [],
-      standing: null,
+      clearCut: null,
       next: null,
       linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, present),
     }
@@ -52,7 +52,7 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
         combination: null,
         cut: null,
         bounds: [],
-        standing: null,
+        clearCut: null,
       }
     : { ...control, colonies }
   return cold || settings.rehearses !== undefined ? next : renew(next, seeder)

@@ -1,4 +1,4 @@
-import { type Standing, standingNow } from '@/lib/method/control/standing'
+import { type ClearCut, clearCutNow } from '@/lib/method/control/clear-cut'
 import { type Edge, edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
 import { COARSE_INTERVALS } from '@/lib/method/node/facts'
 import { PACES } from '@/lib/method/pace'
@@ -11,13 +11,13 @@ import { pairKey } from './pairs'
 import { type Share, shareOf } from './shares'
 
 /** Told as nodes tell it: by the walkers' order alone, or always. */
-export type Stand = typeof standingNow
+export type Stand = typeof clearCutNow
 
 /** A day of an overlay without its walkers: only the sides that nodes tell, from exact λ₂, λ₃ and Fiedler vectors. */
 export function sidesTold(
   graph: SparseGraph,
   { seed, hours, lostPerHour }: DegreesInit,
-  stand: Stand = standingNow,
+  stand: Stand = clearCutNow,
 ): Float32Array[] {
   const random = createRandom(`leak sides ${graph.nodes} ${seed}`)
   const links = edgesOf(graph).map(([a, b]) => [a, b] as const)
@@ -25,7 +25,7 @@ export function sidesTold(
   const churn = new Churn({ random }, { links, lostPerHour, fromMs: 0 })
   const { intervalMs } = PACES.calm
   const told: Float32Array[] = []
-  let [standing, changed]: [Standing | null, boolean] = [null, true]
+  let [clearCut, changed]: [ClearCut | null, boolean] = [null, true]
   let exact = { lambda2: 0, lambda3: 0 as number | null, signs: new Float32Array(graph.nodes) }
   for (let nowMs = intervalMs; nowMs <= hours * 3_600_000; nowMs += intervalMs) {
     churn.bring({
@@ -41,12 +41,12 @@ export function sidesTold(
     })
     if (changed) exact = exactOf(fromEdges(graph.nodes, [...present.values()]), exact.signs)
     changed = false
-    standing = stand(standing, {
+    clearCut = stand(clearCut, {
       ...{ atMs: nowMs, lambda2: exact.lambda2 || null, lambda3AtMost: exact.lambda3 },
       ...{ settling: false, intervalMs },
     })
     if (nowMs % (COARSE_INTERVALS * intervalMs) === 0)
-      told.push(standing?.stands ? exact.signs : new Float32Array(graph.nodes))
+      told.push(clearCut?.stands ? exact.signs : new Float32Array(graph.nodes))
   }
   return told
 }

@@ -1,11 +1,10 @@
+import { mean } from '../reading/course'
 import { ATTACKS, BASELINES, COLUMNS, type Share, type Shares } from './shares'
 
 /** What no attack is to name more than chance by: points. */
 export const MOST_POINTS = 3
 
 const cell = (share: number): string => (100 * share).toFixed(1).padStart(10)
-const mean = (values: readonly number[]): number =>
-  values.reduce((sum, value) => sum + value, 0) / values.length
 
 export const HEAD = `${'case'.padEnd(12)} ${'disclosure'.padEnd(10)} ${'guesses'.padEnd(14)} ${COLUMNS.map((name) => name.padStart(10)).join(' ')}   (%)`
 

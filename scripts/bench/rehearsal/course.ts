@@ -5,6 +5,7 @@ import { PACES, type PaceName } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { Simulation } from '@/lib/method/simulate'
 import { algebraicConnectivity } from '@/lib/method/spectrum'
+import { mean } from '../reading/course'
 import type { Drain, Topology } from './cases'
 
 /** The live reading is looked at for twice so long before: to say what it was, and how it goes by itself. */
@@ -109,9 +110,6 @@ export function runRehearsals(
     }
   })
 }
-
-const mean = (values: readonly number[]): number =>
-  values.reduce((sum, value) => sum + value, 0) / values.length
 
 function moved(values: readonly number[], before: readonly number[]): number {
   return values.length === 0 ? 0 : Math.abs(mean(values) / mean(before) - 1)

@@ -16,7 +16,7 @@ export const CLEAR_INTERVALS = 2 * RENEWAL_INTERVALS
 /** Of the time between two readings no more than so much counts. */
 const MOST_BETWEEN_INTERVALS = 2
 
-export interface Standing {
+export interface ClearCut {
   atMs: number
   /** For how long one cut has been clearly the weakest, without times of no reading. */
   clearMs: number
@@ -25,8 +25,8 @@ export interface Standing {
 }
 
 /** Whether one cut stands out so clearly that nodes have sides. Null while none does. */
-export function standingNow(
-  before: Standing | null,
+export function clearCutNow(
+  before: ClearCut | null,
   now: {
     atMs: number
     lambda2: number | null
@@ -34,7 +34,7 @@ export function standingNow(
     settling: boolean
     intervalMs: number
   },
-): Standing | null {
+): ClearCut | null {
   const { atMs, lambda2, lambda3AtMost, settling, intervalMs } = now
   const passedMs = before ? Math.min(atMs - before.atMs, MOST_BETWEEN_INTERVALS * intervalMs) : 0
   // As links go the bounds of before hold no longer, and there is none for a moment: nothing says that another cut has come near.

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
-import { CLEAR_INTERVALS, type Standing, standingNow } from '@/lib/method/control/standing'
+import { CLEAR_INTERVALS, type ClearCut, clearCutNow } from '@/lib/method/control/clear-cut'
 import { edgesOf, type SparseGraph } from '@/lib/method/graph'
 import { randomRegular, twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
@@ -15,18 +15,18 @@ const INTERVAL_MS = 2_000
 type Spell = [ratio: number | null | 'unbounded', intervals: number, settling?: 'settling']
 
 function standsAfter(spells: readonly Spell[]): boolean {
-  let standing: Standing | null = null
+  let clearCut: ClearCut | null = null
   let atMs = 0
   for (const [ratio, intervals, settling] of spells)
     for (let interval = 0; interval < intervals; interval++) {
       atMs += INTERVAL_MS
       const lambda3AtMost = typeof ratio === 'number' ? 0.5 * ratio : null
-      standing = standingNow(standing, {
+      clearCut = clearCutNow(clearCut, {
         ...{ atMs, intervalMs: INTERVAL_MS, settling: settling !== undefined },
         ...{ lambda2: ratio === null ? null : 0.5, lambda3AtMost },
       })
     }
-  return standing?.stands ?? false
+  return clearCut?.stands ?? false
 }
 
 const LONG = CLEAR_INTERVALS + 1
@@ -100,8 +100,8 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
 describe('the one weakest cut', () => {
   it('is not clear by two readings that are far apart', () => {
     const now = { lambda2: 0.5, lambda3AtMost: 2, settling: false, intervalMs: INTERVAL_MS }
-    const first = standingNow(null, { ...now, atMs: 0 })
-    expect(standingNow(first, { ...now, atMs: 500 * INTERVAL_MS })?.stands).toBe(false)
+    const first = clearCutNow(null, { ...now, atMs: 0 })
+    expect(clearCutNow(first, { ...now, atMs: 500 * INTERVAL_MS })?.stands).toBe(false)
   })
 
   it.each(courses)('%s', (_what, spells, stands) => expect(standsAfter(spells)).toBe(stands))
