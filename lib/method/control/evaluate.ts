@@ -67,7 +67,8 @@ export function evaluate(input: EvaluateInput): Evaluation {
 /** Walkers that stand still stay where they are: for the readings so far that time does not pass. */
 function standing(control: ControlState, atMs: number, lastMs: number): ControlState {
   const ritz = control.ritz.map((reading) => ({ ...reading, atMs: reading.atMs + atMs - lastMs }))
-  return { ...control, ritz, stoodUntilMs: atMs }
+  const colonies = control.colonies.map((colony) => ({ ...colony, given: [] }))
+  return { ...control, ritz, colonies, stoodUntilMs: atMs }
 }
 
 function whyWithheld(

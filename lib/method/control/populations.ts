@@ -1,5 +1,6 @@
 import type { Pace } from '../pace'
 import type { Random } from '../random'
+import { foresee, givenSince } from './foresee'
 import { birthRates } from './law'
 import { choosePlacing } from './seeding'
 import type { ColonyControl, ControlSettings } from './state'
@@ -23,31 +24,30 @@ export interface Seeder {
   settings: ControlSettings
   /** As the orders now have it: reports come more often while in haste. */
   present: Pace
+  /** ω. */
+  linkTimePerSecond: number
   random: Random
 }
 
 export function seedColony(colony: number, deathRate: number | null, seeder: Seeder): ColonyControl {
-  const { settings, agentIds } = seeder
+  const { settings, agentIds, atMs, linkTimePerSecond } = seeder
+  const births = { birthRateX: deathRate ?? 0, birthRateY: deathRate ?? 0 }
   const placing = choosePlacing(colony, agentIds, settings.walkersPerNode * agentIds.length, seeder.random)
   return {
     colony,
     seeding: seeder.sequence,
     ...placing,
-    seededAtMs: seeder.atMs,
+    seededAtMs: atMs,
     seededFor: agentIds.length,
-    birthRateX: deathRate ?? 0,
-    birthRateY: deathRate ?? 0,
+    ...births,
     deathRate,
+    given: [{ atMs, linkTimePerSecond, ...births }],
   }
 }
 
 /** One control step of one colony: new birth rates, or a new seeding where it is lost or outgrown. */
-export function steerColony(
-  control: ColonyControl,
-  totals: Totals,
-  linkTimePerSecond: number,
-  seeder: Seeder,
-): ColonyControl {
+export function steerColony(control: ColonyControl, totals: Totals, seeder: Seeder): ColonyControl {
+  const { atMs, linkTimePerSecond } = seeder
   const { pace, walkersPerNode } = seeder.settings
   const rates = totals.ratesOf(control)
   const ageIntervals = (totals.atMs - control.seededAtMs) / pace.intervalMs
@@ -58,22 +58,25 @@ export function steerColony(
   ) {
     return seedColony(control.colony, control.deathRate, seeder)
   }
-  const { deathRate, populationX, populationY } = rates
+  const given = givenSince(control.given, totals.atMs)
+  const { deathRate, populationX, populationY } = foresee(rates, given, { fromMs: totals.atMs, toMs: atMs })
   if (deathRate === null || populationX === 0 || populationY === 0) return control
+  const steered = birthRates({
+    deathRate,
+    populationX,
+    populationY,
+    target: walkersPerNode * rates.present,
+    intervalLinkTime: (linkTimePerSecond * seeder.present.intervalMs) / 1000,
+    tickLinkTime: (linkTimePerSecond * pace.tickMs) / 1000,
+  })
   return {
     ...control,
     deathRate:
       control.deathRate === null
         ? deathRate
         : control.deathRate + SMOOTHING * (deathRate - control.deathRate),
-    ...birthRates({
-      deathRate,
-      populationX,
-      populationY,
-      target: walkersPerNode * rates.present,
-      intervalLinkTime: (linkTimePerSecond * seeder.present.intervalMs) / 1000,
-      tickLinkTime: (linkTimePerSecond * pace.tickMs) / 1000,
-    }),
+    ...steered,
+    given: [...given, { atMs, linkTimePerSecond, ...steered }],
   }
 }
 

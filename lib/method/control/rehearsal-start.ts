@@ -33,18 +33,26 @@ export function firstColonies(
   const agentIds = heardAgents(within, pace.intervalMs)
     .filter(isAttached)
     .map(({ agentId }) => agentId)
+  const sources = isCold ? [] : sourcesOf(whole.control, now.atMs, sequence, settings)
+  const { lambda2 } = headline.estimate
+  const { meanWeightedDegree } = whole.control
+  const linkTimePerSecond = Math.min(
+    fastestLinkTimePerSecond(pace),
+    // Where the present cut goes on in what remains, its λ₂ is hardly larger.
+    sources.length > 0 && lambda2 !== null
+      ? wantedLinkTimePerSecond(lambda2, pace)
+      : firstLinkTimePerSecond(meanWeightedDegree, pace),
+  )
   const seeder: Seeder = {
     atMs: now.atMs,
     sequence,
     agentIds,
     settings: { ...settings, rehearses },
     present: pace,
+    linkTimePerSecond,
     random,
   }
-  const sources = isCold ? [] : sourcesOf(whole.control, now.atMs, sequence, settings)
-  const { lambda2 } = headline.estimate
   const deathRate = sources.length > 0 ? crossCheckOf(whole.control.colonies) : null
-  const { meanWeightedDegree } = whole.control
   const colonies = Array.from({ length: count }, (_, index): ColonyControl => {
     const source = sources[index]
     const colony = seedColony(firstSlot + index, source ? deathRate : null, seeder)
@@ -56,13 +64,7 @@ export function firstColonies(
     colonies,
     attached: { count: agentIds.length, sinceMs: 0 },
     meanWeightedDegree,
-    linkTimePerSecond: Math.min(
-      fastestLinkTimePerSecond(pace),
-      // Where the present cut goes on in what remains, its λ₂ is hardly larger.
-      sources.length > 0 && lambda2 !== null
-        ? wantedLinkTimePerSecond(lambda2, pace)
-        : firstLinkTimePerSecond(meanWeightedDegree, pace),
-    ),
+    linkTimePerSecond,
   }
 }
 

@@ -5,6 +5,7 @@ import type { ColonyDrift } from './alignment'
 import type { Bound } from './bound'
 import type { ClearCut } from './clear-cut'
 import type { CoreControl } from './core'
+import type { Given } from './foresee'
 import { firstLinkTimePerSecond } from './law'
 import type { PartControl } from './parts'
 import type { RehearsalControl } from './rehearsals'
@@ -46,6 +47,8 @@ export interface ColonyControl {
   birthRateY: number
   /** Death rate smoothed over a few intervals; null before the first. */
   deathRate: number | null
+  /** What it was told from the moment on of the sums it was last steered by, oldest first. Absent in states of before it was kept. */
+  given?: Given[]
   /** It began from what stood in this one. */
   cloneOf?: { colony: number; seeding: number }
 }

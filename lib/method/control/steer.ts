@@ -20,8 +20,12 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
     .filter(isAttached)
     .map(({ agentId }) => agentId)
   const present = paceNow(control, settings)
-  const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, present, random }
-  if (control.colonies.length === 0) {
+  const isFirst = control.colonies.length === 0
+  const linkTimePerSecond = isFirst
+    ? firstLinkTimePerSecond(control.meanWeightedDegree, present)
+    : control.linkTimePerSecond
+  const seeder: Seeder = { atMs: now.atMs, sequence, agentIds, settings, present, linkTimePerSecond, random }
+  if (isFirst) {
     const first = settings.firstSlot ?? 0
     const colonies = Array.from({ length: settings.colonies }, (_, index) =>
       seedColony(first + index, null, seeder),
@@ -34,13 +38,11 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
       ritz: [],
       clearCut: null,
       next: null,
-      linkTimePerSecond: firstLinkTimePerSecond(control.meanWeightedDegree, present),
+      linkTimePerSecond,
     }
   }
   if (!totals.isNew) return control
-  const colonies = control.colonies.map((colony) =>
-    steerColony(colony, totals, control.linkTimePerSecond, seeder),
-  )
+  const colonies = control.colonies.map((colony) => steerColony(colony, totals, seeder))
   const cold = colonies.every(({ seeding }) => seeding === sequence)
   const next: ControlState = cold
     ? {
