@@ -1,4 +1,6 @@
 import { RENEWAL_INTERVALS } from './renewal'
+import type { RitzResult } from './ritz'
+import type { Subspace } from './subspace'
 
 /**
  * λ₃ over λ₂ from which one cut is clearly the weakest, and until which it stays so. Where links are not named, nodes tell their sides only
@@ -13,6 +15,13 @@ export const CLEAR_UNTIL = 1.4
  * above comes down as colonies are renewed.
  */
 export const CLEAR_INTERVALS = 2 * RENEWAL_INTERVALS
+/**
+ * A colony is young until births have made up for so many e-folds of λ₂'s mode. A mode at twice λ₂ has by then fallen to a sixth of that one, and
+ * one at three times to a thousandth of its square, where noise begins: so a young colony that shows none says that λ₃ is far.
+ */
+export const YOUNG_DECAYS = 1.8
+/** Each renewal brings a young colony; what one said holds until the next should have. */
+export const SAID_WITHIN_INTERVALS = 1.5 * RENEWAL_INTERVALS
 /** Of the time between two readings no more than so much counts. */
 const MOST_BETWEEN_INTERVALS = 2
 
@@ -20,6 +29,8 @@ export interface ClearCut {
   atMs: number
   /** For how long one cut has been clearly the weakest, without times of no reading. */
   clearMs: number
+  /** When a bound for λ₃, or that a young colony showed no second mode, last said so. Absent in states of before it was kept. */
+  saidAtMs?: number
   /** It is long enough, and nothing has said otherwise since. */
   stands: boolean
 }
@@ -31,19 +42,35 @@ export function clearCutNow(
     atMs: number
     lambda2: number | null
     lambda3AtMost: number | null
+    /** A young colony shows no second mode. */
+    isAlone: boolean
     settling: boolean
     intervalMs: number
   },
 ): ClearCut | null {
-  const { atMs, lambda2, lambda3AtMost, settling, intervalMs } = now
+  const { atMs, lambda2, lambda3AtMost, isAlone, settling, intervalMs } = now
   const passedMs = before ? Math.min(atMs - before.atMs, MOST_BETWEEN_INTERVALS * intervalMs) : 0
   // As links go the bounds of before hold no longer, and there is none for a moment: nothing says that another cut has come near.
   if (before?.stands) {
     const isOver = lambda2 !== null && lambda3AtMost !== null && lambda3AtMost <= CLEAR_UNTIL * lambda2
     return isOver ? null : { ...before, atMs }
   }
-  if (lambda2 === null || lambda3AtMost === null) return null
-  if (settling || lambda3AtMost <= CLEAR_FROM * lambda2) return null
+  if (lambda2 === null || settling) return null
+  const isSaid = lambda3AtMost === null ? isAlone : lambda3AtMost > CLEAR_FROM * lambda2
+  const saidAtMs = isSaid ? atMs : lambda3AtMost === null ? before?.saidAtMs : undefined
+  if (saidAtMs === undefined || atMs - saidAtMs > SAID_WITHIN_INTERVALS * intervalMs) return null
   const clearMs = (before?.clearMs ?? 0) + passedMs
-  return { atMs, clearMs, stands: clearMs >= CLEAR_INTERVALS * intervalMs }
+  return { atMs, clearMs, saidAtMs, stands: clearMs >= CLEAR_INTERVALS * intervalMs }
+}
+
+/** Whether the colonies stand in one mode though one of them is young. */
+export function isAloneIn(
+  { colonies }: Pick<Subspace, 'colonies'>,
+  { values }: Pick<RitzResult, 'values'>,
+  { atMs, linkTimePerSecond }: { atMs: number; linkTimePerSecond: number },
+): boolean {
+  const [lambda2] = values
+  if (lambda2 === undefined || values.length > 1 || colonies.length < 2) return false
+  const youngest = Math.max(...colonies.map(({ seededAtMs }) => seededAtMs))
+  return (lambda2 * linkTimePerSecond * (atMs - youngest)) / 1000 <= YOUNG_DECAYS
 }

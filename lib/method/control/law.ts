@@ -88,6 +88,11 @@ export function wantedLinkTimePerSecond(
     : fastestLinkTimePerSecond(pace)
 }
 
+/** The λ for which the loop would choose this ω. */
+export function lambdaWalkedFor(linkTimePerSecond: number, pace: { intervalMs: number }): number {
+  return (LOOP_GAIN * 1000) / (linkTimePerSecond * LOOP_INTERVALS * pace.intervalMs)
+}
+
 /**
  * ω for the next interval, link time per second.
  * @param lambda the smaller of the smoothed cross-check and the last Ritz value; 0 or null where unknown

@@ -1,7 +1,7 @@
 import type { Pace } from '../pace'
 import type { Random } from '../random'
 import { foresee, givenSince } from './foresee'
-import { birthRates } from './law'
+import { birthRates, lambdaWalkedFor } from './law'
 import { choosePlacing } from './seeding'
 import type { ColonyControl, ControlSettings } from './state'
 import type { ColonyRates, Totals } from './totals'
@@ -30,8 +30,9 @@ export interface Seeder {
 }
 
 export function seedColony(colony: number, deathRate: number | null, seeder: Seeder): ColonyControl {
-  const { settings, agentIds, atMs, linkTimePerSecond } = seeder
-  const births = { birthRateX: deathRate ?? 0, birthRateY: deathRate ?? 0 }
+  const { settings, agentIds, atMs, present, linkTimePerSecond } = seeder
+  const birthRate = deathRate ?? lambdaWalkedFor(linkTimePerSecond, present)
+  const births = { birthRateX: birthRate, birthRateY: birthRate }
   const placing = choosePlacing(colony, agentIds, settings.walkersPerNode * agentIds.length, seeder.random)
   return {
     colony,

@@ -1,6 +1,11 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
-import { CLEAR_INTERVALS, type ClearCut, clearCutNow } from '@/lib/method/control/clear-cut'
+import {
+  CLEAR_INTERVALS,
+  type ClearCut,
+  clearCutNow,
+  SAID_WITHIN_INTERVALS,
+} from '@/lib/method/control/clear-cut'
 import { edgesOf, type SparseGraph } from '@/lib/method/graph'
 import { randomRegular, twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
@@ -11,8 +16,11 @@ import { namedBySides } from '@/scripts/bench/leak/sides'
 
 const INTERVAL_MS = 2_000
 
-/** λ₃ over λ₂, for so many intervals; null where there is no reading, 'unbounded' where nothing is known of λ₃. */
-type Spell = [ratio: number | null | 'unbounded', intervals: number, settling?: 'settling']
+/**
+ * λ₃ over λ₂, for so many intervals; null where there is no reading, 'unbounded' where nothing is known of λ₃, 'alone' where a young colony
+ * shows no second mode.
+ */
+type Spell = [ratio: number | null | 'unbounded' | 'alone', intervals: number, settling?: 'settling']
 
 function standsAfter(spells: readonly Spell[]): boolean {
   let clearCut: ClearCut | null = null
@@ -23,7 +31,7 @@ function standsAfter(spells: readonly Spell[]): boolean {
       const lambda3AtMost = typeof ratio === 'number' ? 0.5 * ratio : null
       clearCut = clearCutNow(clearCut, {
         ...{ atMs, intervalMs: INTERVAL_MS, settling: settling !== undefined },
-        ...{ lambda2: ratio === null ? null : 0.5, lambda3AtMost },
+        ...{ lambda2: ratio === null ? null : 0.5, lambda3AtMost, isAlone: ratio === 'alone' },
       })
     }
   return clearCut?.stands ?? false
@@ -70,6 +78,37 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
     true,
   ],
   ['does not while nothing is known of another', [['unbounded', 10 * LONG]], false],
+  ['stands out where young colonies show no other', [['alone', LONG]], true],
+  [
+    'stands out where now and then something says so',
+    [
+      [1.8, 1],
+      ['unbounded', 14],
+      ['alone', 4],
+      ['unbounded', 14],
+      ['alone', 4],
+    ],
+    true,
+  ],
+  [
+    'does not where nothing has said so for long',
+    [
+      [1.8, 5],
+      ['unbounded', SAID_WITHIN_INTERVALS + 1],
+      [1.8, 5],
+    ],
+    false,
+  ],
+  [
+    'does not where another was near between',
+    [
+      ['alone', LONG - 2],
+      [1.5, 1],
+      ['alone', LONG - 2],
+    ],
+    false,
+  ],
+  ['does not by young colonies while the reading settles', [['alone', 10 * LONG, 'settling']], false],
   [
     'is over as another comes near',
     [
@@ -99,7 +138,7 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
 
 describe('the one weakest cut', () => {
   it('is not clear by two readings that are far apart', () => {
-    const now = { lambda2: 0.5, lambda3AtMost: 2, settling: false, intervalMs: INTERVAL_MS }
+    const now = { lambda2: 0.5, lambda3AtMost: 2, isAlone: false, settling: false, intervalMs: INTERVAL_MS }
     const first = clearCutNow(null, { ...now, atMs: 0 })
     expect(clearCutNow(first, { ...now, atMs: 500 * INTERVAL_MS })?.stands).toBe(false)
   })
