@@ -1,8 +1,10 @@
 import { parseArgs } from 'node:util'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
+import type { Disclosure } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { algebraicConnectivity, krylovRounds, synchronousPowerIteration } from '@/lib/method/spectrum'
+import { disclosureOf } from './disclosure'
 import { type ReadingCase, readingCases } from './reading/cases'
 import { COLD_MS, mean, median, type RunResult, runCase, WITHIN } from './reading/course'
 import { type Rounds, type Summary, summaryOf, targetsOf } from './reading/targets'
@@ -12,22 +14,27 @@ type Print = (line: string) => void
 const MOST_ROUNDS = 100_000
 
 /**
- * `npm run bench -- reading [--runs 3] [--only PART-OF-A-NAME,…]`: how soon and how well the walkers read λ₂, beside synchronous power
+ * `npm run bench -- reading [--runs 3] [--only PART-OF-A-NAME,…] [--disclosure sealed]`: how soon and how well the walkers read λ₂, beside synchronous power
  * iteration and Krylov rounds on the same graphs (both exchange with neighbours only, and would need a common clock).
  * Virtual time at steady pace, no audits; exact λ₂ by eigendecomposition of the links as they are.
  */
 export function benchReading(args: readonly string[], print: Print): void {
   const { values } = parseArgs({
     args: [...args],
-    options: { runs: { type: 'string', default: '3' }, only: { type: 'string', default: '' } },
+    options: {
+      runs: { type: 'string', default: '3' },
+      only: { type: 'string', default: '' },
+      disclosure: { type: 'string', default: 'named' },
+    },
   })
   const runs = Number(values.runs)
+  const disclosure = disclosureOf(values.disclosure)
   const parts = values.only.split(',')
   const cases = readingCases().filter(({ name }) => parts.some((part) => name.includes(part)))
   explain(runs, print)
   print(row(HEAD))
   const summaries = cases.map((each) => {
-    const summary = measureCase(each, runs)
+    const summary = measureCase(each, runs, disclosure)
     print(row(cellsOf(each, summary)))
     return { name: each.name, summary }
   })
@@ -51,14 +58,14 @@ function explain(runs: number, print: Print): void {
   print('')
 }
 
-function measureCase({ name, graph, ...rest }: ReadingCase, runs: number): Summary {
+function measureCase({ name, graph, ...rest }: ReadingCase, runs: number, disclosure: Disclosure): Summary {
   const { lambda2, lambda3 } = algebraicConnectivity(graph)
   const seeds = Array.from({ length: runs }, (_, seed) => `reading ${name} ${seed}`)
   const init = { lambda2, tolerance: WITHIN, maxRounds: MOST_ROUNDS }
   const count = (rounds: typeof krylovRounds): number =>
     median(seeds.map((seed) => rounds(graph, createRandom(seed), init).rounds))
   const rounds: Rounds = { power: count(synchronousPowerIteration), krylov: count(krylovRounds) }
-  const results = seeds.map((seed): RunResult => runCase({ name, graph, ...rest }, seed))
+  const results = seeds.map((seed): RunResult => runCase({ name, graph, ...rest }, { seed, disclosure }))
   return summaryOf({ lambda2, lambda3, rounds, results, isTwoClusters: rest.isTwoClusters })
 }
 

@@ -1,6 +1,7 @@
 import { parseArgs } from 'node:util'
-import { DISCLOSURES, type Disclosure } from '@/lib/method/orders'
+import type { Disclosure } from '@/lib/method/orders'
 import { createRandom } from '@/lib/method/random'
+import { disclosureOf } from './disclosure'
 import { median } from './reading/course'
 import { drainsOf, type Topology, topologies } from './rehearsal/cases'
 import { type RehearsalRun, runRehearsals } from './rehearsal/course'
@@ -24,8 +25,7 @@ export function benchRehearsal(args: readonly string[], print: Print): void {
       disclosure: { type: 'string', default: 'named' },
     },
   })
-  const disclosure = DISCLOSURES.find((one) => one === values.disclosure)
-  if (!disclosure) throw new RangeError(`no disclosure ${values.disclosure}: ${DISCLOSURES.join(', ')}`)
+  const disclosure = disclosureOf(values.disclosure)
   const parts = values.only.split(',')
   const chosen = topologies().filter(({ name }) => parts.some((part) => name.includes(part)))
   explain(print)

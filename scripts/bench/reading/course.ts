@@ -1,5 +1,6 @@
 import { type ControlSettings, DEFAULT_SETTINGS, type Estimate } from '@/lib/method/control'
 import { edgesOf, fromEdges } from '@/lib/method/graph'
+import type { Disclosure } from '@/lib/method/orders'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { Simulation } from '@/lib/method/simulate'
@@ -11,7 +12,6 @@ export const WITHIN = 0.05
 export const COLD_MS = 240_000
 export const RESTING_FROM_MS = 120_000
 export const CHANGE_MS = 120_000
-const SETTINGS: ControlSettings = { ...DEFAULT_SETTINGS, pace: PACES.steady, disclosure: 'named' }
 
 export interface RunResult {
   /** To the last reading more than 5 % off; Infinity when the watch ended off. */
@@ -37,11 +37,15 @@ interface Watched {
 }
 
 /** One seed of one case: from cold, at rest, and through the change. Virtual time. */
-export function runCase({ graph, loss, changeOfCut }: ReadingCase, seed: string): RunResult {
+export function runCase(
+  { graph, loss, changeOfCut }: ReadingCase,
+  { seed, disclosure }: { seed: string; disclosure: Disclosure },
+): RunResult {
+  const settings: ControlSettings = { ...DEFAULT_SETTINGS, pace: PACES.steady, disclosure }
   const links = edgesOf(graph).map(([a, b, weight]) => ({ a, b, weight }))
   const simulation = new Simulation(
     { random: createRandom(seed) },
-    { nodes: graph.nodes, links, settings: SETTINGS, audits: false },
+    { nodes: graph.nodes, links, settings, audits: false },
   )
   const cold = watch(simulation, COLD_MS, 0)
   // The wait for agents to link is not the method's.
