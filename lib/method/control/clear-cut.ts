@@ -29,8 +29,10 @@ export interface ClearCut {
   atMs: number
   /** For how long one cut has been clearly the weakest, without times of no reading. */
   clearMs: number
-  /** When a bound for λ₃, or that a young colony showed no second mode, last said so. Absent in states of before it was kept. */
+  /** When a bound for λ₃, or that young colonies showed no second mode, last said so. Absent in states of before it was kept. */
   saidAtMs?: number
+  /** The last young colony that showed none, by its seeding: one alone may have begun with little of it. */
+  aloneBy?: number
   /** It is long enough, and nothing has said otherwise since. */
   stands: boolean
 }
@@ -42,13 +44,13 @@ export function clearCutNow(
     atMs: number
     lambda2: number | null
     lambda3AtMost: number | null
-    /** A young colony shows no second mode. */
-    isAlone: boolean
+    /** The seeding of a young colony that shows no second mode. */
+    aloneBy: number | null
     settling: boolean
     intervalMs: number
   },
 ): ClearCut | null {
-  const { atMs, lambda2, lambda3AtMost, isAlone, settling, intervalMs } = now
+  const { atMs, lambda2, lambda3AtMost, settling, intervalMs } = now
   const passedMs = before ? Math.min(atMs - before.atMs, MOST_BETWEEN_INTERVALS * intervalMs) : 0
   // As links go the bounds of before hold no longer, and there is none for a moment: nothing says that another cut has come near.
   if (before?.stands) {
@@ -56,21 +58,27 @@ export function clearCutNow(
     return isOver ? null : { ...before, atMs }
   }
   if (lambda2 === null || settling) return null
-  const isSaid = lambda3AtMost === null ? isAlone : lambda3AtMost > CLEAR_FROM * lambda2
-  const saidAtMs = isSaid ? atMs : lambda3AtMost === null ? before?.saidAtMs : undefined
-  if (saidAtMs === undefined || atMs - saidAtMs > SAID_WITHIN_INTERVALS * intervalMs) return null
+  if (lambda3AtMost !== null && lambda3AtMost <= CLEAR_FROM * lambda2) return null
+  const aloneBy = now.aloneBy ?? before?.aloneBy
+  const isSecond = now.aloneBy !== null && before?.aloneBy !== undefined && before.aloneBy !== now.aloneBy
+  const goesOn = now.aloneBy !== null && before?.saidAtMs !== undefined
+  const saidAtMs = lambda3AtMost !== null || isSecond || goesOn ? atMs : before?.saidAtMs
+  const isSaid = saidAtMs !== undefined && atMs - saidAtMs <= SAID_WITHIN_INTERVALS * intervalMs
+  if (!isSaid) return aloneBy === undefined ? null : { atMs, clearMs: 0, aloneBy, stands: false }
   const clearMs = (before?.clearMs ?? 0) + passedMs
-  return { atMs, clearMs, saidAtMs, stands: clearMs >= CLEAR_INTERVALS * intervalMs }
+  const known = aloneBy === undefined ? {} : { aloneBy }
+  return { atMs, clearMs, saidAtMs, ...known, stands: clearMs >= CLEAR_INTERVALS * intervalMs }
 }
 
-/** Whether the colonies stand in one mode though one of them is young. */
-export function isAloneIn(
+/** The seeding of the youngest colony where all stand in one mode though it is young, else null. */
+export function aloneIn(
   { colonies }: Pick<Subspace, 'colonies'>,
   { values }: Pick<RitzResult, 'values'>,
   { atMs, linkTimePerSecond }: { atMs: number; linkTimePerSecond: number },
-): boolean {
+): number | null {
   const [lambda2] = values
-  if (lambda2 === undefined || values.length > 1 || colonies.length < 2) return false
-  const youngest = Math.max(...colonies.map(({ seededAtMs }) => seededAtMs))
-  return (lambda2 * linkTimePerSecond * (atMs - youngest)) / 1000 <= YOUNG_DECAYS
+  if (lambda2 === undefined || values.length > 1 || colonies.length < 2) return null
+  const youngest = colonies.reduce((a, b) => (b.seededAtMs > a.seededAtMs ? b : a))
+  const decays = (lambda2 * linkTimePerSecond * (atMs - youngest.seededAtMs)) / 1000
+  return decays <= YOUNG_DECAYS ? youngest.seeding : null
 }

@@ -15,7 +15,8 @@ const STEP_MS = 100
 
 /**
  * A colony's rates with its populations as they will stand at `toMs`, from sums taken at `fromMs` and what it has been told since:
- * dX/dt = ω(b_X X − k XY), dY/dt = ω(b_Y Y − k XY), with k by the kills of those sums.
+ * dX/dt = ω(b_X X − k XY), dY/dt = ω(b_Y Y − k XY), with k by the kills of those sums: for a few
+ * intervals that is near enough, whatever β does meanwhile.
  *
  * Masked sums are two intervals old. Steered by them as they were, types swung: on a random 8-regular graph of 100 nodes one had less than
  * half of the other in the median, and readings stood 5 % high.

@@ -1,6 +1,7 @@
 import type { ColonyOrders, Orders } from '../orders'
 import { paceNow } from './haste'
-import type { ControlSettings, ControlState } from './state'
+import { encounterRate } from './law'
+import type { ColonyControl, ControlSettings, ControlState } from './state'
 
 /** A seeding places walkers only for this long; an agent that comes to it later starts empty. */
 export const PLACING_INTERVALS = 3
@@ -10,6 +11,20 @@ export function nextOrders({ next }: Pick<ControlState, 'next'>, atMs: number): 
   return next
     ? { linkTimePerSecond: next.linkTimePerSecond, fromAgeMs: Math.max(0, next.fromAtMs - atMs) }
     : undefined
+}
+
+/**
+ * From cold, walkers meet as often as those there are need; by and by as often as all that are wanted would. Colonies of slow overlays never
+ * come to that many, and are read best by the same rate as all others.
+ */
+const AS_WANTED_AFTER_INTERVALS = 30
+
+function filledFor(
+  { seededAtMs, filled = 1 }: ColonyControl,
+  { coldSinceMs }: ControlState,
+  ageIntervals: number,
+): number {
+  return seededAtMs > coldSinceMs ? 1 : Math.max(filled, ageIntervals / AS_WANTED_AFTER_INTERVALS)
 }
 
 export function ordersFrom(
@@ -26,7 +41,11 @@ export function ordersFrom(
     placing: atMs - colony.seededAtMs < PLACING_INTERVALS * pace.intervalMs,
     placeX: colony.placeX,
     placeY: colony.placeY,
-    encounterRate: (2 * control.meanWeightedDegree) / settings.walkersPerNode,
+    encounterRate: encounterRate(
+      control.meanWeightedDegree,
+      settings.walkersPerNode,
+      filledFor(colony, control, (atMs - colony.seededAtMs) / pace.intervalMs),
+    ),
     birthRateX: walking ? colony.birthRateX : 0,
     birthRateY: walking ? colony.birthRateY : 0,
     refused: [],

@@ -29,9 +29,13 @@ export interface Seeder {
   random: Random
 }
 
+/** Whether its colonies walk at the ω they want: those of the core and of pieces walk at one for all. */
+const doesChoose = ({ firstSlot, rehearses }: ControlSettings): boolean =>
+  firstSlot === undefined || rehearses !== undefined
+
 export function seedColony(colony: number, deathRate: number | null, seeder: Seeder): ColonyControl {
   const { settings, agentIds, atMs, present, linkTimePerSecond } = seeder
-  const birthRate = deathRate ?? lambdaWalkedFor(linkTimePerSecond, present)
+  const birthRate = deathRate ?? (doesChoose(settings) ? lambdaWalkedFor(linkTimePerSecond, present) : 0)
   const births = { birthRateX: birthRate, birthRateY: birthRate }
   const placing = choosePlacing(colony, agentIds, settings.walkersPerNode * agentIds.length, seeder.random)
   return {
@@ -42,7 +46,7 @@ export function seedColony(colony: number, deathRate: number | null, seeder: See
     seededFor: agentIds.length,
     ...births,
     deathRate,
-    given: [{ atMs, linkTimePerSecond, ...births }],
+    given: doesChoose(settings) ? [{ atMs, linkTimePerSecond, ...births }] : [],
   }
 }
 
@@ -62,11 +66,12 @@ export function steerColony(control: ColonyControl, totals: Totals, seeder: Seed
   const given = givenSince(control.given, totals.atMs)
   const { deathRate, populationX, populationY } = foresee(rates, given, { fromMs: totals.atMs, toMs: atMs })
   if (deathRate === null || populationX === 0 || populationY === 0) return control
+  const target = walkersPerNode * rates.present
   const steered = birthRates({
     deathRate,
     populationX,
     populationY,
-    target: walkersPerNode * rates.present,
+    target,
     intervalLinkTime: (linkTimePerSecond * seeder.present.intervalMs) / 1000,
     tickLinkTime: (linkTimePerSecond * pace.tickMs) / 1000,
   })
@@ -77,6 +82,7 @@ export function steerColony(control: ColonyControl, totals: Totals, seeder: Seed
         ? deathRate
         : control.deathRate + SMOOTHING * (deathRate - control.deathRate),
     ...steered,
+    filled: target > 0 ? (populationX + populationY) / 2 / target : 1,
     given: [...given, { atMs, linkTimePerSecond, ...steered }],
   }
 }

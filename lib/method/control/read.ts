@@ -1,6 +1,6 @@
 import { answersInMs } from './answer'
 import { noteBound } from './bound'
-import { clearCutNow, isAloneIn } from './clear-cut'
+import { aloneIn, clearCutNow } from './clear-cut'
 import type { Coverage } from './coverage'
 import { crossCheckOf } from './cross-check'
 import { THRESHOLDS } from './cut'
@@ -120,13 +120,10 @@ export function read(
   const settling = settles !== null && settles > 0
   next.clearCut = clearCutNow(control.clearCut ?? null, {
     ...{ atMs: now.atMs, lambda2, lambda3AtMost: second, settling },
-    isAlone:
-      subspace !== null &&
-      result !== null &&
-      isAloneIn(subspace, result, {
-        atMs: totals.atMs,
-        linkTimePerSecond: control.linkTimePerSecond,
-      }),
+    aloneBy:
+      subspace &&
+      result &&
+      aloneIn(subspace, result, { atMs: totals.atMs, linkTimePerSecond: control.linkTimePerSecond }),
     intervalMs: pace.intervalMs,
   })
   const interval =

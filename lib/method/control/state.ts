@@ -49,6 +49,8 @@ export interface ColonyControl {
   deathRate: number | null
   /** What it was told from the moment on of the sums it was last steered by, oldest first. Absent in states of before it was kept. */
   given?: Given[]
+  /** Share of the wanted walkers that it has. Absent before it was first steered. */
+  filled?: number
   /** It began from what stood in this one. */
   cloneOf?: { colony: number; seeding: number }
 }

@@ -1,6 +1,6 @@
 import { Matrix } from 'ml-matrix'
 import type { RoundTotals, SweepContent, SweepLayout } from '../mask'
-import { LEAST_SIDE, mayCount } from '../node/round-of'
+import { LEAST_SIDE, mayCount } from '../node/small-sides'
 import type { SweepOrders } from '../orders'
 import { SUMS_SCALE } from '../report'
 import { bestOf, type Counted } from './cut'

@@ -14,6 +14,7 @@ import type { Colony } from './colony'
 import { type CoarseDegree, type CoarseValue, namedLinks } from './facts'
 import type { Link } from './link'
 import { measuredLink, valuedLink } from './live-link'
+import { mayTellSide } from './small-sides'
 import { colonySums, energiesAndMoments, fiedlerValue, type MeasuredLink, sweepSums } from './sums'
 
 /** Complaints said in one report; the collector takes no more. */
@@ -196,6 +197,6 @@ function disclosedValue(
   if (!orders?.sweep || own === null) return null
   if (orders.disclosure === 'named') return { sweep: orders.sweep.id, value: Math.round(own * 1000) / 1000 }
   // While no single cut stands out there are no sides to be on.
-  if (!orders.sweep.stands) return null
+  if (!orders.sweep.stands || !mayTellSide(orders.sweep)) return null
   return coarse.say(orders.sweep.id, own, nowMs, ordinaryIntervalMs(orders.pace))
 }

@@ -5,6 +5,7 @@ import type { Colony } from './colony'
 import { measuredLink, valuedLink } from './live-link'
 import type { HostFacts, LiveLink } from './report-of'
 import { meanIn, weightOf } from './report-of'
+import { mayCount } from './small-sides'
 import { colonySums, energiesAndMoments, fiedlerValue, fixed, sweepSums } from './sums'
 
 export interface RoundCase {
@@ -87,9 +88,6 @@ function groupOf(
   }
 }
 
-/** A side of fewer nodes has no links counted: they would be those of a few, or of one. */
-export const LEAST_SIDE = 5
-
 function sweepOf(
   { id, thresholds }: SweepLayout,
   sweep: SweepOrders | null,
@@ -135,13 +133,4 @@ function placedOf(
     alone: own !== null && linkEnds === 0 ? 1 : 0,
     along: own !== null && live !== null ? fixed(own * live) : 0,
   }
-}
-
-/** By how many nodes lay above each threshold at the last count, as the orders say for all to see. */
-export function mayCount(
-  sides: { above: readonly number[]; nodes: number } | undefined,
-  index: number,
-): boolean {
-  const above = sides?.above[index]
-  return above !== undefined && Math.min(above, sides!.nodes - above) >= LEAST_SIDE
 }

@@ -43,7 +43,7 @@ export function sidesTold(
     changed = false
     clearCut = stand(clearCut, {
       ...{ atMs: nowMs, lambda2: exact.lambda2 || null, lambda3AtMost: exact.lambda3 },
-      ...{ isAlone: false, settling: false, intervalMs },
+      ...{ aloneBy: null, settling: false, intervalMs },
     })
     if (nowMs % (COARSE_INTERVALS * intervalMs) === 0)
       told.push(clearCut?.stands ? exact.signs : new Float32Array(graph.nodes))

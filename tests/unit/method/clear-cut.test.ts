@@ -1,12 +1,15 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
 import {
+  aloneIn,
   CLEAR_INTERVALS,
   type ClearCut,
   clearCutNow,
   SAID_WITHIN_INTERVALS,
 } from '@/lib/method/control/clear-cut'
-import { edgesOf, type SparseGraph } from '@/lib/method/graph'
+import { RENEWAL_INTERVALS } from '@/lib/method/control/renewal'
+import type { ColonyControl } from '@/lib/method/control/state'
+import { edgesOf, fromEdges, type SparseGraph } from '@/lib/method/graph'
 import { randomRegular, twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
@@ -31,7 +34,11 @@ function standsAfter(spells: readonly Spell[]): boolean {
       const lambda3AtMost = typeof ratio === 'number' ? 0.5 * ratio : null
       clearCut = clearCutNow(clearCut, {
         ...{ atMs, intervalMs: INTERVAL_MS, settling: settling !== undefined },
-        ...{ lambda2: ratio === null ? null : 0.5, lambda3AtMost, isAlone: ratio === 'alone' },
+        ...{
+          lambda2: ratio === null ? null : 0.5,
+          lambda3AtMost,
+          aloneBy: ratio === 'alone' ? Math.floor(atMs / INTERVAL_MS / RENEWAL_INTERVALS) : null,
+        },
       })
     }
   return clearCut?.stands ?? false
@@ -78,7 +85,15 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
     true,
   ],
   ['does not while nothing is known of another', [['unbounded', 10 * LONG]], false],
-  ['stands out where young colonies show no other', [['alone', LONG]], true],
+  ['stands out where young colonies show no other', [['alone', LONG + RENEWAL_INTERVALS]], true],
+  [
+    'does not by one young colony alone',
+    [
+      ['alone', 4],
+      ['unbounded', 10 * LONG],
+    ],
+    false,
+  ],
   [
     'stands out where now and then something says so',
     [
@@ -138,7 +153,7 @@ const courses: [what: string, spells: Spell[], stands: boolean][] = [
 
 describe('the one weakest cut', () => {
   it('is not clear by two readings that are far apart', () => {
-    const now = { lambda2: 0.5, lambda3AtMost: 2, isAlone: false, settling: false, intervalMs: INTERVAL_MS }
+    const now = { lambda2: 0.5, lambda3AtMost: 2, aloneBy: null, settling: false, intervalMs: INTERVAL_MS }
     const first = clearCutNow(null, { ...now, atMs: 0 })
     expect(clearCutNow(first, { ...now, atMs: 500 * INTERVAL_MS })?.stands).toBe(false)
   })
@@ -171,9 +186,34 @@ function tellersOf(graph: SparseGraph, intervals: number): number {
   return tellers.size
 }
 
+describe('a young colony that shows no second mode', () => {
+  const aged = (...ages: number[]) => ({
+    colonies: ages.map((age) => {
+      const seededAtMs = 100_000 - age * 1_000
+      return { seededAtMs, seeding: seededAtMs } as ColonyControl
+    }),
+  })
+  const now = { atMs: 100_000, linkTimePerSecond: 0.2 }
+
+  it.each<[string, { colonies: ColonyControl[] }, number[], number | null]>([
+    ['says that the first stands alone', aged(40, 30, 8), [1], 92_000],
+    ['says nothing once it is old', aged(40, 30, 9.1), [1], null],
+    ['is young for longer where λ₂ is smaller', aged(40, 30, 17), [0.5], 83_000],
+    ['says nothing where there is a second', aged(40, 30, 8), [1, 1.5], null],
+    ['says nothing where it is by itself', aged(8), [1], null],
+    ['says nothing where there is no reading', aged(40, 8), [], null],
+  ])('%s', (_, subspace, values, seeding) => expect(aloneIn(subspace, { values }, now)).toBe(seeding))
+})
+
 describe('nodes of a sealed overlay', () => {
   it('tell no side where no cut is the weakest, also while the first reading settles', () =>
-    expect(tellersOf(randomRegular(60, 6, createRandom('regular-60 1')), 25)).toBe(0))
+    expect(tellersOf(randomRegular(60, 6, createRandom('regular-60 1')), 60)).toBe(0))
+
+  it('tell none where one has fewer than five nodes: they would be neighbours of each other', () => {
+    const body = randomRegular(32, 8, createRandom('tail'))
+    const tail = [0, 1, 2].map((at) => [32 + at, at === 0 ? 0 : 31 + at, 1] as const)
+    expect(tellersOf(fromEdges(35, [...edgesOf(body), ...tail]), 80)).toBe(0)
+  })
 
   it('all tell theirs where one is', () => {
     const clusters = twoClusters({ perSide: 8, degree: 4, links: 3 }, createRandom('standing'))

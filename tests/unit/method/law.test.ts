@@ -1,5 +1,12 @@
 import { describe, expect, it } from 'vitest'
-import { birthRates, LOOP_GAIN, nextLinkTimePerSecond } from '@/lib/method/control/law'
+import {
+  birthRates,
+  encounterRate,
+  LOOP_GAIN,
+  lambdaWalkedFor,
+  nextLinkTimePerSecond,
+  wantedLinkTimePerSecond,
+} from '@/lib/method/control/law'
 import { PACES } from '@/lib/method/pace'
 
 const T = 0.5
@@ -80,4 +87,21 @@ describe('ω', () => {
   ])('%s', (_, current, lambda, expected) => {
     expect(nextLinkTimePerSecond(current, lambda, PACES.steady)).toBeCloseTo(expected, 12)
   })
+})
+
+describe('encounters', () => {
+  it.each([
+    ['are twice the mean weighted degree per walker of one type', 1, 0.08],
+    ['are as many per walker where there are fewer', 0.5, 0.16],
+    ['are no more than for a tenth of them', 0.001, 0.8],
+    ['are no fewer where there are more', 3, 0.08],
+    ['are for all that are wanted while nothing is known', undefined, 0.08],
+  ])('%s', (_, filled, rate) => expect(encounterRate(8, 200, filled)).toBeCloseTo(rate, 12))
+})
+
+it('the λ that ω was chosen for is the one it was chosen by', () => {
+  for (const lambda of [0.5, 1.35, 3]) {
+    const linkTimePerSecond = wantedLinkTimePerSecond(lambda, PACES.steady)
+    expect(lambdaWalkedFor(linkTimePerSecond, PACES.steady)).toBeCloseTo(lambda, 12)
+  }
 })

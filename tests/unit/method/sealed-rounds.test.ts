@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { DEFAULT_SETTINGS } from '@/lib/method/control'
 import { edgesOf } from '@/lib/method/graph'
-import { twoClusters } from '@/lib/method/graphs'
+import { randomRegular, twoClusters } from '@/lib/method/graphs'
 import { PACES } from '@/lib/method/pace'
 import { createRandom } from '@/lib/method/random'
 import { Simulation } from '@/lib/method/simulate'
@@ -39,6 +39,23 @@ describe('an overlay whose sums are masked', () => {
     simulation.run(60_000)
     expect(counted.has(3)).toBe(true)
     expect(counted.has(0)).toBe(false)
+  })
+
+  it.each([1, 2, 3])('reads right from its first fresh reading on: seed %i', (seed) => {
+    const regular = randomRegular(36, 6, createRandom('first 36'))
+    const simulation = new Simulation(
+      { random: createRandom(`first ${seed}`) },
+      {
+        nodes: regular.nodes,
+        links: edgesOf(regular).map(([a, b, weight]) => ({ a, b, weight })),
+        settings: { ...DEFAULT_SETTINGS, pace: PACES.brisk, disclosure: 'sealed' },
+        audits: false,
+      },
+    )
+    const tookMs = simulation.runUntil(({ withheld, settling }) => withheld === null && !settling, 60_000)
+    expect(tookMs).not.toBeNull()
+    const off = simulation.estimate!.lambda2! / algebraicConnectivity(regular).lambda2 - 1
+    expect(Math.abs(off)).toBeLessThan(0.05)
   })
 
   it('goes on without neighbours that fall silent, within ten intervals', () => {
