@@ -3,7 +3,7 @@ import { ensureBuilt, nextProgram } from '../lib/build.mjs'
 import { tryPort } from '../lib/ports.mjs'
 import { TEST_DIST_FOLDER } from '../lib/test-cluster.mjs'
 import { untilHealthy } from '../lib/web.mjs'
-import { figuresOf } from './agent/process-figures'
+import { figuresWithChildrenOf } from './agent/process-figures'
 import { type Agent, makeAgents } from './ingest/agents'
 import { type LoadJob, type LoadResult, loadResultSchema } from './ingest/load'
 import { BenchDatabase } from './server/bench-database'
@@ -57,13 +57,12 @@ export async function benchIngest(args: readonly string[], print: Print): Promis
       programs.push(program)
       servers.push({ name, url: await url, pid: program.pid })
     }
-    const start = async (name: string, script: string) => {
-      const program = Program.script(script, [], { DATABASE_URL: database.url, PORT: '0' })
-      await add(name, program, program.said(listeningAt))
-    }
-    await start('collector', 'scripts/collector.ts')
+    const start = (name: string, program: Program) => add(name, program, program.said(listeningAt))
+    const env = { DATABASE_URL: database.url, PORT: '0' }
+    await start('collector', new Program(['scripts/collector.mjs'], env))
     const agents = await makeAgents(database, servers[0]?.url ?? '', Math.max(...counts))
-    if (only.includes('baseline')) await start('baseline', 'scripts/bench/ingest/baseline.ts')
+    if (only.includes('baseline'))
+      await start('baseline', Program.script('scripts/bench/ingest/baseline.ts', [], env))
     if (only.includes('web')) await startWeb(database, add)
     const load = Program.script('scripts/bench/ingest/load.ts', [], {})
     programs.push(load)
@@ -121,7 +120,7 @@ async function measure(database: BenchDatabase, load: Program, server: Server, j
   const said = load.said((line) => (line.startsWith('{') ? loadResultSchema.parse(JSON.parse(line)) : null))
   load.write(`${JSON.stringify(job)}\n`)
   await new Promise((resolve) => setTimeout(resolve, 1000 * job.warmUpSeconds))
-  const cpuBefore = figuresOf(server.pid).cpuSeconds
+  const cpuBefore = figuresWithChildrenOf(server.pid).cpuSeconds
   const databaseBefore = database.figures().cpuSeconds
   const logBefore = await database.logBytes()
   const startedAtMs = performance.now()
@@ -132,7 +131,7 @@ async function measure(database: BenchDatabase, load: Program, server: Server, j
     ...result,
     server: server.name,
     connections: job.agents.length,
-    serverCpu: (figuresOf(server.pid).cpuSeconds - cpuBefore) / seconds,
+    serverCpu: (figuresWithChildrenOf(server.pid).cpuSeconds - cpuBefore) / seconds,
     databaseCpu: (database.figures().cpuSeconds - databaseBefore) / seconds,
     loadCpu: result.cpuSeconds / seconds,
     logBytesPerReport: ((await database.logBytes()) - logBefore) / reports,

@@ -1,6 +1,6 @@
 import { parseArgs } from 'node:util'
 import { PACES, type PaceName } from '@/lib/method/pace'
-import { figuresOf } from './agent/process-figures'
+import { figuresWithChildrenOf } from './agent/process-figures'
 import { type WalkersJob, type WalkersResult, walkersResultSchema } from './scale/walkers'
 import { BenchDatabase } from './server/bench-database'
 import { joinAll, makeOverlay } from './server/joined'
@@ -56,7 +56,7 @@ async function measure(agents: number, warmUpSeconds: number, seconds: number): 
   try {
     await database.start()
     const env = { DATABASE_URL: database.url, PORT: '0' }
-    const collector = Program.script('scripts/collector.ts', [], env)
+    const collector = new Program(['scripts/collector.mjs'], env)
     programs.push(collector)
     const url = await collector.said(listeningAt)
     const { overlayId, code } = await makeOverlay(database, { slug: 'tides', pace, agents })
@@ -72,8 +72,8 @@ async function measure(agents: number, warmUpSeconds: number, seconds: number): 
       line.startsWith('{') ? walkersResultSchema.parse(JSON.parse(line)) : null,
     )
     const look = async () => ({
-      collector: figuresOf(collector.pid),
-      agents: figuresOf(walkers.pid),
+      collector: figuresWithChildrenOf(collector.pid),
+      agents: figuresWithChildrenOf(walkers.pid),
       database: database.figures(),
       ...(await progress(database, overlayId)),
     })

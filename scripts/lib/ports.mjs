@@ -21,9 +21,9 @@ export function parsePort(text, fallback) {
   return port
 }
 
-export async function requirePort(port, host) {
+export async function requirePort(port, host, command = 'npm start') {
   if ((await tryPort(port, host)) !== null) return
   throw new Error(
-    `Port ${port} on ${host} cannot be listened on (in use or not allowed): stop what uses it, or choose another with PORT=${port + 1} npm start.`,
+    `Port ${port} on ${host} cannot be listened on (in use or not allowed): stop what uses it, or choose another with PORT=${port + 1} ${command}.`,
   )
 }

@@ -1,5 +1,5 @@
 /** Which process is which: a pid alone is reused, pid + start time + boot is not. Linux only (/proc). */
-import { readFileSync } from 'node:fs'
+import { readdirSync, readFileSync } from 'node:fs'
 import { setTimeout as delay } from 'node:timers/promises'
 
 /** Field 22 of /proc/PID/stat, proc(5). The command name in field 2 may itself hold spaces and brackets. */
@@ -33,6 +33,24 @@ export function launchersOf(pid) {
     if (!/^(ba|da)?sh$/.test(readFileSync(`/proc/${at}/comm`, 'utf8').trim())) break
   }
   return found
+}
+
+/** @returns pids of the processes that this one has started and that still run */
+export function childrenOf(pid) {
+  return readdirSync('/proc')
+    .filter((name) => /^\d+$/.test(name))
+    .map(Number)
+    .filter((child) => isChildOf(child, pid))
+}
+
+function isChildOf(child, pid) {
+  try {
+    return identify(child) !== null && parentOf(child) === pid
+  } catch (error) {
+    // It has ended meanwhile.
+    if (error.code === 'ENOENT' || error.code === 'ESRCH') return false
+    throw error
+  }
 }
 
 function parentOf(pid) {

@@ -1,4 +1,5 @@
 import { readdirSync, readFileSync } from 'node:fs'
+import { childrenOf } from '../../lib/processes.mjs'
 
 /** What the kernel says of one process; Linux, proc(5). */
 export interface ProcessFigures {
@@ -21,6 +22,15 @@ export function figuresOf(pid: number): ProcessFigures {
     wakes: wakesOf(pid),
     rssMib: kibOf(status, 'VmRSS') / 1024,
     peakRssMib: kibOf(status, 'VmHWM') / 1024,
+  }
+}
+
+/** Of a process and all that it has started and that still runs, together. */
+export function figuresWithChildrenOf(pid: number): Pick<ProcessFigures, 'cpuSeconds' | 'rssMib'> {
+  const all = [pid, ...childrenOf(pid)].flatMap((each) => unlessEnded(() => figuresOf(each)) ?? [])
+  return {
+    cpuSeconds: all.reduce((sum, { cpuSeconds }) => sum + cpuSeconds, 0),
+    rssMib: all.reduce((sum, { rssMib }) => sum + rssMib, 0),
   }
 }
 

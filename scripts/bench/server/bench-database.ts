@@ -1,9 +1,9 @@
-import { mkdtempSync, readdirSync, readFileSync, rmSync } from 'node:fs'
+import { mkdtempSync, readFileSync, rmSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import pg from 'pg'
 import { startCluster } from '../../lib/postgres.mjs'
-import { figuresOf, unlessEnded } from '../agent/process-figures'
+import { figuresWithChildrenOf } from '../agent/process-figures'
 import { Program } from './program'
 
 /** A PostgreSQL cluster of the bench's own with PostgreSQL's own settings: what it confirms is on disk. */
@@ -30,11 +30,8 @@ export class BenchDatabase {
   figures(): { cpuSeconds: number; rssMib: number } {
     const server = this.#cluster?.identity?.pid
     if (server === undefined) throw new Error('Start the database first.')
-    const all = [server, ...childrenOf(server)].flatMap((pid) => unlessEnded(() => figuresOf(pid)) ?? [])
-    return {
-      cpuSeconds: all.reduce((sum, { cpuSeconds }) => sum + cpuSeconds, endedCpuSeconds(server)),
-      rssMib: all.reduce((sum, { rssMib }) => sum + rssMib, 0),
-    }
+    const { cpuSeconds, rssMib } = figuresWithChildrenOf(server)
+    return { cpuSeconds: cpuSeconds + endedCpuSeconds(server), rssMib }
   }
 
   /** Bytes written ahead so far. */
@@ -57,14 +54,3 @@ function endedCpuSeconds(pid: number): number {
   const fields = readFileSync(`/proc/${pid}/stat`, 'utf8').split(') ').at(-1)?.split(' ') ?? []
   return (Number(fields[13]) + Number(fields[14])) / 100
 }
-
-function childrenOf(pid: number): number[] {
-  return readdirSync('/proc')
-    .filter((name) => /^\d+$/.test(name))
-    .map(Number)
-    .filter((child) => unlessEnded(() => parentOf(child)) === pid)
-}
-
-/** The fourth field, after a name in brackets: proc(5). */
-const parentOf = (pid: number): number =>
-  Number(readFileSync(`/proc/${pid}/stat`, 'utf8').split(') ').at(-1)?.split(' ')[1])

@@ -4,7 +4,6 @@ import { createInterface } from 'node:readline'
 import { endProcess, identify } from '../../lib/processes.mjs'
 
 export const ROOT = resolve(import.meta.dirname, '../../..')
-/** As `npm run collector` has it. */
 const TSX = ['--max-semi-space-size=32', '--import', 'tsx', '--conditions=react-server']
 const STOP_SIGNALS = [
   { name: 'SIGTERM', patienceMs: 15_000 },

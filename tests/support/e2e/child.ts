@@ -107,8 +107,20 @@ export class Child {
     this.#process.stdin?.write(`${line}\n`)
   }
 
+  get pid(): number {
+    const { pid } = this.#process
+    if (pid === undefined) throw new Error('The program did not start.')
+    return pid
+  }
+
   signal(name: NodeJS.Signals): void {
     this.#process.kill(name)
+  }
+
+  /** To all that it has started as well, at once; for one in a group of its own. */
+  signalGroup(name: NodeJS.Signals): void {
+    if (!this.#group) throw new Error('The program has no group of its own.')
+    process.kill(-this.pid, name)
   }
 
   async stop(): Promise<void> {

@@ -295,12 +295,11 @@ function exactLambda2(links: readonly (readonly [string, string])[]): number {
 }
 
 async function startCollector(): Promise<Child> {
-  const args = ['--import', 'tsx', '--conditions=react-server', 'scripts/collector.ts']
   let listens = () => {}
   const ready = new Promise<null>((resolve) => {
     listens = () => resolve(null)
   })
-  const child = new Child(process.execPath, args, {
+  const child = new Child(process.execPath, ['scripts/collector.mjs'], {
     env: { HOST: lab.collectorHost, PORT: String(PORT), DATABASE_URL: database.url },
     onLine: (line) => {
       if (line.startsWith('Collector listens')) listens()

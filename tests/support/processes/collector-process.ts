@@ -1,9 +1,10 @@
+import { childrenOf } from '@/scripts/lib/processes.mjs'
 import { Child, ROOT } from '../e2e/child'
 import { within } from '../until'
 
 const LISTENING = /^Collector listens on (http:\S+)$/
 
-/** `npm run collector` on a port of its own. */
+/** `npm run collector` on a port of its own: one process that leads, and two that take reports in. */
 export class CollectorProcess {
   readonly child: Child
   readonly listening: Promise<string>
@@ -14,10 +15,13 @@ export class CollectorProcess {
     const said = new Promise<string>((resolve) => {
       heard = resolve
     })
-    const args = ['--import', 'tsx', '--conditions=react-server', 'scripts/collector.ts']
-    this.child = new Child(process.execPath, args, {
+    this.child = new Child(process.execPath, ['scripts/collector.mjs'], {
       cwd: ROOT,
-      env: { PORT: '0', DATABASE_URL: databaseUrl, NODE_ENV: 'production', ...env },
+      group: true,
+      env: {
+        ...{ PORT: '0', DATABASE_URL: databaseUrl, NODE_ENV: 'production', INGEST_PROCESSES: '2' },
+        ...env,
+      },
       onLine: (line) => {
         const url = LISTENING.exec(line)?.[1]
         if (url) heard(url)
@@ -36,5 +40,10 @@ export class CollectorProcess {
   async start(): Promise<this> {
     this.url = await this.listening
     return this
+  }
+
+  /** Those that take reports in. */
+  get intakes(): number[] {
+    return childrenOf(this.child.pid)
   }
 }
