@@ -9,8 +9,9 @@ export type Routes = Readonly<Record<string, Pick<RouteHandler, 'answer'>>>
 
 /** Paths are read below it; nobody is ever asked there. */
 const BASE = 'http://collector.invalid'
-/** What any host looks like that needs no closer look. */
+/** What any host, and any path without a query, looks like that needs no closer look. */
 const PLAIN_HOST = /^[a-z0-9.-]+(:\d{1,5})?$/i
+const PLAIN_PATH = /^\/[a-z0-9./-]*$/i
 
 /** Serves route handlers without the web framework, which would cost more than the work itself. */
 export function createRouteServer(routes: Routes): Server {
@@ -28,7 +29,8 @@ async function answerTo(message: IncomingMessage, handler: Routes[string]): Prom
   const { host } = message.headers
   // RFC 9112, section 3.2 (from memory): a Host that is none is answered with 400.
   if (host !== undefined && !PLAIN_HOST.test(host) && !URL.canParse(`http://${host}`)) return unreadable()
-  if (!URL.canParse(message.url ?? '/', BASE)) return unreadable()
+  const url = message.url ?? '/'
+  if (!PLAIN_PATH.test(url) && !URL.canParse(url, BASE)) return unreadable()
   return handler.answer(new AskedByMessage(message), { params: Promise.resolve({}) })
 }
 
