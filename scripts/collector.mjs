@@ -17,8 +17,15 @@ import { dataFolderOf, findOwnDatabase } from './lib/own-database.mjs'
 const INTAKE_FLAGS = ['--single-threaded-gc', '--no-allocation-site-pretenuring', '--max-semi-space-size=32']
 
 const root = resolve(import.meta.dirname, '..')
+// The agent's file and the thread for exact figures are looked for from here, wherever it was started.
+process.chdir(root)
 // Beside a running `npm start` it needs no address.
 process.env.DATABASE_URL ||= findOwnDatabase(dataFolderOf(process.env, root)) ?? ''
-const file = await ensureCollectorFile(root)
-cluster.setupPrimary({ exec: file, execArgv: INTAKE_FLAGS })
-await import(pathToFileURL(file).href)
+try {
+  const file = await ensureCollectorFile(root)
+  cluster.setupPrimary({ exec: file, execArgv: [...process.execArgv, ...INTAKE_FLAGS] })
+  await import(pathToFileURL(file).href)
+} catch (error) {
+  process.stderr.write(`${error.message}\n`)
+  process.exitCode = 1
+}

@@ -86,7 +86,10 @@ export class Ingest {
 
   /** Stores what waits and ends. */
   async stop(): Promise<void> {
-    for (this.#flush(); this.#running.size > 0; ) await Promise.all(this.#running)
+    while (this.#waiting.length > 0 || this.#running.size > 0) {
+      this.#flush()
+      await Promise.all(this.#running)
+    }
   }
 
   #flush(): void {

@@ -1,6 +1,6 @@
 import { parseArgs } from 'node:util'
 import { PACES, type PaceName } from '@/lib/method/pace'
-import { figuresWithChildrenOf } from './agent/process-figures'
+import { figuresOf, figuresWithChildrenOf } from './agent/process-figures'
 import { type WalkersJob, type WalkersResult, walkersResultSchema } from './scale/walkers'
 import { BenchDatabase } from './server/bench-database'
 import { joinAll, makeOverlay } from './server/joined'
@@ -73,7 +73,7 @@ async function measure(agents: number, warmUpSeconds: number, seconds: number): 
     )
     const look = async () => ({
       collector: figuresWithChildrenOf(collector.pid),
-      agents: figuresWithChildrenOf(walkers.pid),
+      agents: figuresOf(walkers.pid),
       database: database.figures(),
       ...(await progress(database, overlayId)),
     })

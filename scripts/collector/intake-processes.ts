@@ -1,9 +1,10 @@
 import type { Worker } from 'node:cluster'
-import { once } from 'node:events'
 import type { Log } from '@/lib/http/runtime'
 
 /** Before another is started in the place of one that has ended. */
 export const REPLACED_AFTER_MS = 1_000
+/** One that has not ended this long after it was told to never will. */
+export const KILLED_AFTER_MS = 12_000
 
 export interface IntakeComponents {
   /** Starts a process that listens at the address they all have. */
@@ -37,27 +38,43 @@ export class IntakeProcesses {
 
   /** Each answers what it has taken in, and ends. */
   async stop(): Promise<void> {
+    const { log, after } = this.#components
     this.#isStopping = true
     for (const cancel of this.#cancels) cancel()
-    const ends = [...this.#workers].map((worker) => once(worker, 'exit'))
-    for (const worker of this.#workers) worker.process.kill('SIGTERM')
+    const workers = [...this.#workers]
+    const ends = workers.map((worker) => new Promise((settle) => worker.once('exit', settle)))
+    for (const worker of workers) worker.process.kill('SIGTERM')
+    const cancel = after(KILLED_AFTER_MS, () => {
+      for (const worker of this.#workers) {
+        log.error({ process: worker.process.pid }, 'a process that takes reports in does not end: killing it')
+        worker.process.kill('SIGKILL')
+      }
+    })
     await Promise.all(ends)
+    cancel()
   }
 
   /** @returns the port, once it listens */
-  #begin(): Promise<number> {
+  async #begin(): Promise<number> {
     const worker = this.#components.fork()
     this.#workers.add(worker)
     worker.once('exit', () => this.#workers.delete(worker))
     return new Promise((settle, fail) => {
+      worker.on('error', (error) => {
+        // One that could not be started has no end, either.
+        if (worker.process.pid === undefined) this.#workers.delete(worker)
+        fail(error)
+      })
       worker.once('listening', ({ port }) => {
-        worker.once('exit', (code: number, signal: string | null) =>
-          this.#replace(worker, signal ?? `code ${code}`),
-        )
+        worker.once('exit', (code, signal) => this.#replace(worker, howOf(code, signal)))
         settle(port)
       })
-      worker.once('exit', () =>
-        fail(new Error('A process that was to take reports in ended before it listened; it said why.')),
+      worker.once('exit', (code, signal) =>
+        fail(
+          new Error(
+            `A process that was to take reports in ended before it listened (${howOf(code, signal)}).`,
+          ),
+        ),
       )
     })
   }
@@ -78,3 +95,5 @@ export class IntakeProcesses {
     this.#cancels.add(cancel)
   }
 }
+
+const howOf = (code: number, signal: string | null): string => signal ?? `code ${code}`

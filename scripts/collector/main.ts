@@ -8,7 +8,7 @@ import { closeDatabase, switchOffIdleStorages } from '@/lib/db'
 import { processSignal, stopProcess } from '@/lib/http/process-signal'
 import { getRuntime } from '@/lib/http/runtime'
 import { untilStorable } from '@/lib/http/start-server'
-import { requirePort } from '../lib/ports.mjs'
+import { requirePort, tryPort } from '../lib/ports.mjs'
 import { IntakeProcesses } from './intake-processes'
 import { processesWanted } from './processes-wanted'
 
@@ -17,14 +17,11 @@ switchOffIdleStorages()
 const port = Number(process.env.PORT || 3100)
 const host = process.env.HOST || '127.0.0.1'
 
-for (const name of ['SIGTERM', 'SIGINT'] as const) {
-  const stop = () => stopProcess(`received ${name}`)
-  // Whoever ends all processes of the collector at once ends those that take reports in twice: that must not cut them short.
-  if (cluster.isWorker) process.on(name, stop)
-  else process.once(name, stop)
-}
+// As often as they come: whoever ends the whole group ends those that take reports in twice, and that must not cut them short.
+for (const name of ['SIGTERM', 'SIGINT'] as const) process.on(name, () => stopProcess(`received ${name}`))
+const signal = processSignal()
 const stopped = new Promise<void>((settle) =>
-  processSignal().addEventListener('abort', () => settle(), { once: true }),
+  signal.addEventListener('abort', () => settle(), { once: true }),
 )
 
 try {
@@ -43,8 +40,7 @@ async function takeIn(): Promise<void> {
   await stopped
   await intake.stop()
   await closeDatabase()
-  intake.hangUp()
-  cluster.worker?.disconnect()
+  process.exit(0)
 }
 
 async function lead(): Promise<void> {
@@ -53,8 +49,10 @@ async function lead(): Promise<void> {
   const count = processesWanted(process.env)
   if (port !== 0) await requirePort(port, host, 'npm run collector')
   await untilStorable()
+  // Any free one must be the same for all, and for those that come later.
+  const shared = { PORT: String(port || ((await tryPort(0, host)) ?? 0)) }
   const processes = new IntakeProcesses(
-    { fork: () => cluster.fork(), log, after: systemClock.after },
+    { fork: () => cluster.fork(shared), log, after: systemClock.after },
     {
       count,
       onFailure(error) {
@@ -64,11 +62,18 @@ async function lead(): Promise<void> {
       },
     },
   )
-  const listening = await processes.start()
-  const leading = startLeading(processSignal())
-  process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
-  await stopped
-  await processes.stop()
-  await leading.stop()
+  const stopping = stopped.then(() => processes.stop())
+  const listening = await processes.start().catch((error: unknown) => {
+    // Told to end meanwhile, it has nothing to say.
+    if (!signal.aborted) throw error
+    return null
+  })
+  if (listening !== null && !signal.aborted) {
+    const leading = startLeading(signal)
+    process.stdout.write(`Collector listens on http://${host}:${listening}\n`)
+    await stopped
+    await leading.stop()
+  }
+  await stopping
   await closeDatabase()
 }

@@ -1,6 +1,6 @@
 /** The collector as one file. Sources run as they are would cost a tenth more: their loader names each function as it is made. */
-import { createHash } from 'node:crypto'
-import { existsSync, mkdirSync, renameSync, writeFileSync } from 'node:fs'
+import { createHash, randomUUID } from 'node:crypto'
+import { mkdirSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { build, stop } from 'esbuild'
 
@@ -26,10 +26,18 @@ export async function ensureCollectorFile(root) {
   const [{ contents }] = outputFiles
   const folder = join(root, COLLECTOR_FOLDER)
   const file = join(folder, `${createHash('sha256').update(contents).digest('hex').slice(0, 16)}.mjs`)
-  if (existsSync(file)) return file
-  mkdirSync(folder, { recursive: true })
-  const unfinished = `${file}.${process.pid}`
-  writeFileSync(unfinished, contents)
-  renameSync(unfinished, file)
+  // A machine that went down at the wrong moment may have left a part of it.
+  if (statSync(file, { throwIfNoEntry: false })?.size === contents.length) return file
+  const unfinished = `${file}.${randomUUID()}`
+  try {
+    mkdirSync(folder, { recursive: true })
+    writeFileSync(unfinished, contents)
+    renameSync(unfinished, file)
+  } catch (error) {
+    rmSync(unfinished, { force: true })
+    throw new Error(
+      `The collector's program could not be written to ${folder} (${error.code}): let whoever runs it write there, or run it once as someone who may.`,
+    )
+  }
   return file
 }

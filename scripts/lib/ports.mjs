@@ -2,9 +2,13 @@ import { createServer } from 'node:net'
 
 /** Resolves to the port (0 asks for any free one), or null where it cannot be listened on. */
 export function tryPort(port, host = '127.0.0.1') {
-  return new Promise((resolve) => {
+  return listenOnce(port, host).catch(() => null)
+}
+
+function listenOnce(port, host) {
+  return new Promise((resolve, reject) => {
     const server = createServer()
-    server.once('error', () => resolve(null))
+    server.once('error', reject)
     server.listen({ port, host, exclusive: true }, () => {
       const { port: got } = server.address()
       server.close(() => resolve(got))
@@ -21,9 +25,18 @@ export function parsePort(text, fallback) {
   return port
 }
 
+/** The host, not the port, is what is wrong. */
+const NO_SUCH_HOST = new Set(['ENOTFOUND', 'EADDRNOTAVAIL', 'EAI_AGAIN'])
+
+/** @param command that takes another PORT */
 export async function requirePort(port, host, command = 'npm start') {
-  if ((await tryPort(port, host)) !== null) return
-  throw new Error(
-    `Port ${port} on ${host} cannot be listened on (in use or not allowed): stop what uses it, or choose another with PORT=${port + 1} ${command}.`,
-  )
+  try {
+    await listenOnce(port, host)
+  } catch (error) {
+    throw new Error(
+      NO_SUCH_HOST.has(error.code)
+        ? `HOST is "${host}", which is no address of this machine (${error.code}): give one that it has, or 0.0.0.0 for all.`
+        : `Port ${port} on ${host} cannot be listened on (in use or not allowed): stop what uses it, or choose another with PORT=${port < 65535 ? port + 1 : port - 1} ${command}.`,
+    )
+  }
 }

@@ -1,5 +1,5 @@
 import { once } from 'node:events'
-import { createServer } from 'node:net'
+import { connect, createServer } from 'node:net'
 import pg from 'pg'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { setRuntime } from '@/lib/http/runtime'
@@ -42,6 +42,17 @@ afterAll(async () => {
   await database?.close()
 })
 
+function isRefused(url: string): Promise<boolean> {
+  const { hostname, port } = new URL(url)
+  return new Promise((settle) => {
+    const socket = connect(Number(port), hostname, () => {
+      socket.destroy()
+      settle(false)
+    })
+    socket.once('error', (error) => settle('code' in error && error.code === 'ECONNREFUSED'))
+  })
+}
+
 const kept = () => expectKept(database.orm.em.fork(), reporters.states)
 
 it('one that is killed has another in its place while the others go on, and nothing that was answered is lost', async () => {
@@ -54,7 +65,10 @@ it('one that is killed has another in its place while the others go on, and noth
   await reporters.answers(3)
   await until(() => collector.intakes.filter((pid) => !before.includes(pid)).length === 1)
   expect(collector.intakes).toContain(before[1])
+  // Then nobody answers but those that came later.
+  process.kill(before[1] ?? 0, 'SIGKILL')
   await reporters.answers(3)
+  await until(() => collector.intakes.length === 2)
   await kept()
 })
 
@@ -72,9 +86,10 @@ it('told to end, it answers what it has taken in, and leaves no process behind',
     const { rows } = await client.query('select 1 from agent_states where agent_id = $1', [member.agentId])
     return rows.length > 0
   })
-  // As whoever supervises it may tell all its processes at once.
+  // As whoever supervises it may tell all its processes at once, and someone tell it again.
   collector.child.signalGroup('SIGTERM')
-  await until(async () => (await postReport(collector.url, member.token, {}).catch(() => null)) === null)
+  await until(() => isRefused(collector.url))
+  collector.child.signalGroup('SIGTERM')
   await client.query('rollback')
   await client.end()
   expect(await answer).toMatchObject({ status: 200 })
@@ -109,5 +124,21 @@ it('a number of processes that is none is said', async () => {
   expect(await wrong.child.end).toBe('ended with code 1')
   expect(wrong.child.tail()).toBe(
     'Set INGEST_PROCESSES to how many processes take reports in, 1 to 99; "all" is no such number.',
+  )
+})
+
+it('told to end while it starts, it ends and has nothing to complain of', async () => {
+  const early = new CollectorProcess(database.url)
+  await until(() => early.intakes.length > 0)
+  early.child.signalGroup('SIGTERM')
+  expect(await early.child.end).toBe('ended with code 0')
+  expect(early.child.tail()).toBe('')
+})
+
+it('a host that is none of this machine is said', async () => {
+  const wrong = new CollectorProcess(database.url, { PORT: '4100', HOST: '192.0.2.1' })
+  expect(await wrong.child.end).toBe('ended with code 1')
+  expect(wrong.child.tail()).toBe(
+    'HOST is "192.0.2.1", which is no address of this machine (EADDRNOTAVAIL): give one that it has, or 0.0.0.0 for all.',
   )
 })

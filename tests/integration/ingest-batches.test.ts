@@ -49,3 +49,22 @@ it('more reports than all batches together hold are answered all the same, the l
   const held = await database.orm.em.fork().findOneOrFail(AgentStateSchema, member.agentId)
   expect(Number(held.reportNumber)).toBe(count)
 })
+
+it('what comes while it stops is stored before it has stopped, without waiting for others', async () => {
+  const ingest = new Ingest({
+    clock: { ...systemClock, after: () => () => {} },
+    forkEm: async () => database.orm.em.fork(),
+  })
+  const first = ingest.submit(member.token, someReport(100_001)).answer
+  const stopping = ingest.stop()
+  const second = ingest.submit(member.token, someReport(100_002)).answer
+  let answered = 0
+  for (const answer of [first, second])
+    answer.finally(() => {
+      answered += 1
+    })
+  await stopping
+  expect(answered).toBe(2)
+  const held = await database.orm.em.fork().findOneOrFail(AgentStateSchema, member.agentId)
+  expect(Number(held.reportNumber)).toBe(100_002)
+})

@@ -1,7 +1,7 @@
 import type { Worker } from 'node:cluster'
 import { EventEmitter } from 'node:events'
 import { describe, expect, it } from 'vitest'
-import { IntakeProcesses, REPLACED_AFTER_MS } from '@/scripts/collector/intake-processes'
+import { IntakeProcesses, KILLED_AFTER_MS, REPLACED_AFTER_MS } from '@/scripts/collector/intake-processes'
 import { processesWanted } from '@/scripts/collector/processes-wanted'
 import { FakeClock } from '../support/fake-clock'
 
@@ -25,7 +25,10 @@ describe('how many processes take reports in', () => {
 
 class FakeWorker extends EventEmitter {
   readonly signals: string[] = []
-  readonly process = { pid: 1, kill: (name: string) => this.signals.push(name) }
+  readonly process: { pid: number | undefined; kill(name: string): void } = {
+    pid: 1,
+    kill: (name: string) => this.signals.push(name),
+  }
   listens = () => this.emit('listening', { port: 4100 })
   ends = () => this.emit('exit', null, 'SIGKILL')
 }
@@ -88,7 +91,7 @@ describe('processes that take reports in', () => {
     await clock.advance(REPLACED_AFTER_MS)
     workers[1]?.ends()
     await until(() => failures.length > 0)
-    expect(failures).toEqual(['A process that was to take reports in ended before it listened; it said why.'])
+    expect(failures).toEqual(['A process that was to take reports in ended before it listened (SIGKILL).'])
     await clock.advance(10 * REPLACED_AFTER_MS)
     expect(workers).toHaveLength(2)
   })
@@ -123,5 +126,25 @@ describe('processes that take reports in', () => {
     await processes.stop()
     await clock.advance(10 * REPLACED_AFTER_MS)
     expect(workers).toHaveLength(1)
+  })
+
+  it('that do not end are killed', async () => {
+    const { workers, clock, processes } = await started(2)
+    const stopping = processes.stop()
+    workers[0]?.ends()
+    await clock.advance(KILLED_AFTER_MS)
+    expect(workers.map(({ signals }) => signals)).toEqual([['SIGTERM'], ['SIGTERM', 'SIGKILL']])
+    workers[1]?.ends()
+    await stopping
+  })
+
+  it('that cannot be started at all are said, and not waited for', async () => {
+    const { workers, processes } = some(1)
+    const port = processes.start()
+    if (workers[0]) workers[0].process.pid = undefined
+    workers[0]?.emit('error', new Error('spawn EAGAIN'))
+    await expect(port).rejects.toThrow('spawn EAGAIN')
+    await processes.stop()
+    expect(workers[0]?.signals).toEqual([])
   })
 })

@@ -25,13 +25,16 @@ export function figuresOf(pid: number): ProcessFigures {
   }
 }
 
-/** Of a process and all that it has started and that still runs, together. */
+/**
+ * Of a process and all that it has started and that still runs, together. Memory that they share counts once: proportional set
+ * sizes, proc(5).
+ */
 export function figuresWithChildrenOf(pid: number): Pick<ProcessFigures, 'cpuSeconds' | 'rssMib'> {
-  const all = [pid, ...childrenOf(pid)].flatMap((each) => unlessEnded(() => figuresOf(each)) ?? [])
-  return {
-    cpuSeconds: all.reduce((sum, { cpuSeconds }) => sum + cpuSeconds, 0),
-    rssMib: all.reduce((sum, { rssMib }) => sum + rssMib, 0),
-  }
+  const all = [pid, ...childrenOf(pid)]
+  const sumOf = (read: (each: number) => number) =>
+    all.reduce((sum, each) => sum + (unlessEnded(() => read(each)) ?? 0), 0)
+  const pssMibOf = (each: number) => kibOf(readFileSync(`/proc/${each}/smaps_rollup`, 'utf8'), 'Pss') / 1024
+  return { cpuSeconds: sumOf(cpuSecondsOf), rssMib: sumOf(pssMibOf) }
 }
 
 /** @returns null where the process or thread has ended meanwhile */

@@ -1,3 +1,5 @@
+import { readFileSync } from 'node:fs'
+import { COLLECTOR_FOLDER } from '@/scripts/lib/collector-file.mjs'
 import { childrenOf } from '@/scripts/lib/processes.mjs'
 import { Child, ROOT } from '../e2e/child'
 import { within } from '../until'
@@ -44,6 +46,15 @@ export class CollectorProcess {
 
   /** Those that take reports in. */
   get intakes(): number[] {
-    return childrenOf(this.child.pid)
+    return childrenOf(this.child.pid).filter((pid) => commandOf(pid).includes(`/${COLLECTOR_FOLDER}/`))
+  }
+}
+
+/** Its words, with NUL after each: proc(5). */
+function commandOf(pid: number): string {
+  try {
+    return readFileSync(`/proc/${pid}/cmdline`, 'utf8')
+  } catch {
+    return ''
   }
 }
