@@ -29,9 +29,10 @@ export class IntakeProcesses {
     this.#onFailure = init.onFailure
   }
 
-  /** @returns the port, once all listen. @throws where one of them ends before it does */
+  /** @returns the port, once all listen or the first does after it was told to stop. @throws where one of them ends before it does */
   async start(): Promise<number> {
     const port = await this.#begin()
+    if (this.#isStopping) return port
     await Promise.all(Array.from({ length: this.#count - 1 }, () => this.#begin()))
     return port
   }

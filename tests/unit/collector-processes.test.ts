@@ -147,4 +147,15 @@ describe('processes that take reports in', () => {
     await processes.stop()
     expect(workers[0]?.signals).toEqual([])
   })
+
+  it('that had not begun when they were told to end never do', async () => {
+    const { workers, processes } = some(3)
+    const port = processes.start()
+    workers[0]?.listens()
+    const stopping = processes.stop()
+    expect(await port).toBe(4100)
+    expect(workers).toHaveLength(1)
+    workers[0]?.ends()
+    await stopping
+  })
 })
