@@ -1,4 +1,4 @@
-import { createHash, randomBytes } from 'node:crypto'
+import { hash, randomBytes } from 'node:crypto'
 
 /** 256 bits, base64url. Always from the system's generator: a secret that can be seeded is none. */
 export function newSecret(): string {
@@ -11,7 +11,7 @@ export function newWebhookSecret(): string {
 }
 
 export function sha256Hex(text: string): string {
-  return createHash('sha256').update(text).digest('hex')
+  return hash('sha256', text)
 }
 
 /** Crockford's base 32: no I, L, O, U (alphabet from memory). */

@@ -88,7 +88,6 @@ export {
   reportReplySchema,
   reportRequestSchema,
   reportSchema,
-  sumsSchema,
 } from './report-schema'
 export {
   SESSION_SKEW_SECONDS,

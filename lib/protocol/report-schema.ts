@@ -1,91 +1,17 @@
 import { z } from 'zod'
-import { AUDIT_FAULTS, LINK_KINDS, type Report, type SweepSums, UPGRADE_STATES } from '../method/report'
+import { AUDIT_FAULTS, LINK_KINDS, type Report, UPGRADE_STATES } from '../method/report'
 import { upgradeOfferSchema } from './agent-life'
 import { passGrantSchema } from './enrol'
 import { INCARNATION } from './hello'
 import { keyRingSchema } from './key-ring'
-import {
-  MAX_COLONIES,
-  MAX_COMPLAINTS,
-  MAX_RELAYED,
-  MAX_REPORT_LINKS,
-  MAX_ROUND_ENTRIES,
-  MAX_ROUNDS,
-  MAX_THRESHOLDS,
-} from './limits'
+import { MAX_COMPLAINTS, MAX_RELAYED, MAX_REPORT_LINKS, MAX_ROUND_ENTRIES, MAX_ROUNDS } from './limits'
 import { ordersSchema } from './orders-schema'
 import { receiptSchema } from './receipt'
 import { signedOrdersSchema } from './signed-orders'
 import { relayedReplySchema, signedReportSchema } from './signed-report'
-import { allWhole, BIT, COUNT, FIXED, numbers, whole } from './whole-numbers'
+import { sumsSchema } from './sums-schema'
 
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
-const list = z.array(z.number())
-const MAX_PAIRS = (MAX_COLONIES * (MAX_COLONIES + 1)) / 2
-
-const COUNTERS = {
-  seeded: COUNT,
-  births: COUNT,
-  kills: COUNT,
-  culls: COUNT,
-  dropped: COUNT,
-  sent: COUNT,
-  received: COUNT,
-  walkerTime: COUNT,
-  occupancyX: COUNT,
-  occupancyY: COUNT,
-  linkTime: COUNT,
-}
-const COLONY = {
-  colony: { least: 0, most: 0xffff },
-  seeding: COUNT,
-  present: BIT,
-  heldX: COUNT,
-  heldY: COUNT,
-  mean: FIXED,
-}
-const colonySumsSchema = z
-  .object({ ...numbers(COLONY), counters: z.object(numbers(COUNTERS)).check(whole(COUNTERS)) })
-  .check(whole(COLONY))
-
-const SWEEP = {
-  id: count,
-  above: list.max(MAX_THRESHOLDS).check(allWhole(BIT)),
-  crossing: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
-  crossingWeight: list.max(MAX_THRESHOLDS).check(allWhole(COUNT)),
-}
-const isPerThreshold = ({ above, crossing, crossingWeight }: SweepSums): boolean =>
-  above.length === crossing.length && above.length === crossingWeight.length
-const PER_THRESHOLD = 'above, crossing and crossingWeight have one entry per threshold'
-const sweepSumsSchema = z.object(SWEEP).refine(isPerThreshold, PER_THRESHOLD)
-const PLACED = { place: { least: 0, most: MAX_COLONIES }, linkEnds: COUNT, alone: BIT }
-const placedSweepSumsSchema = z
-  .object({ ...SWEEP, ...numbers(PLACED) })
-  .check(whole(PLACED))
-  .refine(isPerThreshold, PER_THRESHOLD)
-
-const SUMS = { attached: BIT, linkEnds: COUNT, linkEndWeight: COUNT }
-export const sumsSchema = z
-  .object({
-    ...numbers(SUMS),
-    colonies: z.array(colonySumsSchema).max(MAX_COLONIES),
-    energies: list.max(MAX_PAIRS).check(allWhole(FIXED)),
-    moments: list.max(MAX_PAIRS).check(allWhole(FIXED)),
-    sweep: sweepSumsSchema.nullable(),
-    sweeps: z.array(placedSweepSumsSchema).max(MAX_COLONIES).optional(),
-  })
-  .check(whole(SUMS))
-  .superRefine((sums, context) => {
-    const size = sums.attached === 1 ? sums.colonies.length : 0
-    const pairs = (size * (size + 1)) / 2
-    for (const key of ['energies', 'moments'] as const) {
-      if (sums[key].length === pairs) continue
-      context.addIssue({ code: 'custom', path: [key], message: `${pairs} entries for ${size} colonies` })
-    }
-    if (new Set(sums.colonies.map(({ colony }) => colony)).size !== sums.colonies.length) {
-      context.addIssue({ code: 'custom', path: ['colonies'], message: 'two colonies share a slot' })
-    }
-  })
 
 const text = z.string().max(300)
 const healthSchema = z.object({

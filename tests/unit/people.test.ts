@@ -128,6 +128,9 @@ describe('a JSON body', () => {
   ) => new Request('http://t/', { method: 'POST', body, headers, duplex: 'half' } as RequestInit)
 
   it('is read', async () => expect(await readJson(askedOf(post('{"a":1}')))).toEqual({ a: 1 }))
+  it('may begin with a byte order mark, and keeps what is in it', async () => {
+    expect(await readJson(askedOf(post('\uFEFF{"a":"Tärn \u{1F30A}"}')))).toEqual({ a: 'Tärn \u{1F30A}' })
+  })
   it('must be JSON', async () =>
     await expect(readJson(askedOf(post('{"a":')))).rejects.toMatchObject({ code: 'malformed-json' }))
   it('must be there', async () =>

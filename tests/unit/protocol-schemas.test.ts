@@ -80,6 +80,13 @@ describe('a report', () => {
     expect(reportSchema.parse(JSON.parse(JSON.stringify(report)))).toEqual(report)
   })
 
+  test('is taken without what it has no business to say', () => {
+    const more = (of: object) => ({ ...of, neighbours: ['agent-gul-04'] })
+    const sweep = more(report.sums.sweep!)
+    const told = withSums({ ...more({}), sweep, colonies: [more({ ...colony, counters: more(counters) })] })
+    expect(reportSchema.parse(told)).toEqual(report)
+  })
+
   const bad: [string, unknown, string][] = [
     ['a counter that is not a number', withCounter('births', Number.NaN), 'sums.colonies.0.counters.births'],
     ['an infinite counter', withCounter('sent', Number.POSITIVE_INFINITY), 'sums.colonies.0.counters.sent'],
@@ -91,6 +98,32 @@ describe('a report', () => {
       'sums.colonies.0.counters.received',
     ],
     ['a counter as text', withCounter('seeded', '200'), 'sums.colonies.0.counters.seeded'],
+    ['no sums', { ...report, sums: null }, 'sums'],
+    ['a list in place of a colony', withSums({ colonies: [[]] }), 'sums.colonies.0'],
+    ['no counters', withSums({ colonies: [{ ...colony, counters: undefined }] }), 'sums.colonies.0.counters'],
+    [
+      'a colony in a slot there is not',
+      withSums({ colonies: [{ ...colony, colony: 0x1_0000 }] }),
+      'sums.colonies.0.colony',
+    ],
+    ['colonies that are no list', withSums({ colonies: 5 }), 'sums.colonies'],
+    ['an energy that is no number', withSums({ energies: [null] }), 'sums.energies.0'],
+    [
+      'a mean beyond exact integers',
+      withSums({ colonies: [{ ...colony, mean: -(2 ** 53) }] }),
+      'sums.colonies.0.mean',
+    ],
+    ['no sweep and no null', withSums({ sweep: undefined }), 'sums.sweep'],
+    [
+      'more thresholds than allowed',
+      withSums({ sweep: { id: 7, above: Array(200).fill(0), crossing: [], crossingWeight: [] } }),
+      'sums.sweep.above',
+    ],
+    [
+      'a node on neither side',
+      withSums({ sweep: { id: 7, above: [2], crossing: [0], crossingWeight: [0] } }),
+      'sums.sweep.above.0',
+    ],
     ['too few energies', withSums({ energies: [] }), 'sums.energies'],
     ['too many moments', withSums({ moments: [1, 2, 3] }), 'sums.moments'],
     ['energies of a detached agent', withSums({ attached: 0 }), 'sums.energies'],
