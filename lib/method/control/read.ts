@@ -12,7 +12,7 @@ import { nextStep } from './link-time'
 import { ordersFrom } from './orders-from'
 import { NEXT_TO_NOTHING, settlesInMs } from './settling'
 import type { ColonyControl, ControlState } from './state'
-import { combinationOf, fallWithMore, ritzOf } from './subspace'
+import { combinationOf, fallWithMore, leastMissed, ritzOf, withoutEach } from './subspace'
 import type { Totals } from './totals'
 import { trendLine } from './trend-line'
 import { watcher, watchYoung } from './young'
@@ -57,11 +57,13 @@ export function read(
     ...control.ritz,
     ...(lambda2 === null || !isNews ? [] : [{ atMs: now.atMs, value: lambda2 }]),
   ].filter(({ atMs }) => atMs >= fromMs)
+  const without = subspace ? withoutEach(subspace) : []
   const slowest = lambda2 === null ? null : walkingLambda(lambda2, crossCheck)
   const next: ControlState = {
     ...control,
     drift: drifts,
     ritz,
+    leastMissed: leastMissed(without),
   }
   const isYoung = ({ seededAtMs }: ColonyControl): boolean =>
     seededAtMs === control.renewedAtMs && seededAtMs > control.coldSinceMs
@@ -132,7 +134,7 @@ export function read(
       : intervalOf({
           lambda2,
           trend,
-          fall: fallWithMore(subspace, lambda2),
+          fall: fallWithMore(without, lambda2),
           settling,
           near: singleCut === false,
           isApart,

@@ -5,7 +5,7 @@ import { firstLinkTimePerSecond } from './law'
 import { type Seeder, seedColony, steerColony } from './populations'
 import { RENEWAL_INTERVALS } from './renewal'
 import { heardAgents, isAttached } from './snapshot'
-import type { ControlState } from './state'
+import type { ColonyControl, ControlState } from './state'
 import type { Totals } from './totals'
 import { AS_GOOD_AS_AT_INTERVALS } from './young'
 
@@ -61,8 +61,8 @@ export function steer(control: ControlState, totals: Totals, input: EvaluateInpu
 }
 
 /**
- * The oldest colony is seeded anew from time to time, and at a change of links: then the youngest instead, where it is young still, so
- * that overlays that change all the time keep colonies that know them.
+ * The colony that brings least to the reading is seeded anew from time to time, and at a change of links: then the youngest instead, where it is
+ * young still, so that overlays that change all the time keep colonies that know them.
  */
 function renew(control: ControlState, seeder: Seeder): ControlState {
   const { intervalMs } = seeder.settings.pace
@@ -70,10 +70,21 @@ function renew(control: ControlState, seeder: Seeder): ControlState {
   const isChange = control.changedAtMs === seeder.atMs
   if (age < (isChange ? AS_GOOD_AS_AT_INTERVALS : RENEWAL_INTERVALS)) return control
   if (isChange && seeder.atMs - control.coldSinceMs < LEAST_SINCE_COLD_INTERVALS * intervalMs) return control
-  const order = age < RENEWAL_INTERVALS && control.renewedAtMs > control.coldSinceMs ? -1 : 1
-  const replaced = control.colonies.reduce((a, b) => (order * (b.seededAtMs - a.seededAtMs) < 0 ? b : a))
+  const isYoungest = age < RENEWAL_INTERVALS && control.renewedAtMs > control.coldSinceMs
+  const replaced = isYoungest ? youngest(control.colonies) : mostDispensable(control)
   const colonies = control.colonies.map((colony) =>
     colony === replaced ? seedColony(colony.colony, crossCheckOf(control.colonies), seeder) : colony,
   )
   return { ...control, colonies, renewedAtMs: seeder.atMs }
+}
+
+const youngest = (colonies: readonly ColonyControl[]): ColonyControl =>
+  colonies.reduce((a, b) => (b.seededAtMs > a.seededAtMs ? b : a))
+
+/** The oldest while there is no reading. */
+function mostDispensable({ colonies, leastMissed }: ControlState): ColonyControl {
+  const known = colonies.find(
+    ({ colony, seeding }) => colony === leastMissed?.colony && seeding === leastMissed.seeding,
+  )
+  return known ?? colonies.reduce((a, b) => (b.seededAtMs < a.seededAtMs ? b : a))
 }

@@ -87,17 +87,35 @@ export function ritzOf(subspace: Subspace, chosen?: (colony: ColonyControl) => b
   return ritz(subspace.energies.selection(kept, kept), subspace.moments.selection(kept, kept))
 }
 
+/** The reading that there would be without one of the colonies, for each. */
+export interface Without {
+  out: Pick<ColonyControl, 'colony' | 'seeding'>
+  lambda2: number
+}
+
+export function withoutEach(subspace: Subspace): Without[] {
+  const { colonies } = subspace
+  if (colonies.length < 2) return []
+  return colonies.flatMap((out) => {
+    const lambda2 = ritzOf(subspace, (colony) => colony !== out)?.values[0]
+    return lambda2 === undefined ? [] : [{ out: { colony: out.colony, seeding: out.seeding }, lambda2 }]
+  })
+}
+
 /**
  * By how much ever more colonies would bring the reading down, as a share of it. Where other modes are nearly as slow the colonies never part
  * them quite, and what remains falls about as 1/R with their number R: so it is R − 1 times what leaving one out puts it up.
  */
-export function fallWithMore(subspace: Subspace, lambda2: number): number {
-  const { colonies } = subspace
-  if (colonies.length < 2 || lambda2 <= 0) return 0
-  const values = colonies.flatMap((out) => ritzOf(subspace, (colony) => colony !== out)?.values[0] ?? [])
-  if (values.length === 0) return 0
-  const mean = values.reduce((sum, value) => sum + value, 0) / values.length
-  return (colonies.length - 1) * (mean / lambda2 - 1)
+export function fallWithMore(without: readonly Without[], lambda2: number): number {
+  if (without.length === 0 || lambda2 <= 0) return 0
+  const mean = without.reduce((sum, each) => sum + each.lambda2, 0) / without.length
+  return (without.length - 1) * (mean / lambda2 - 1)
+}
+
+/** The colony without which the reading would be lowest: it brings least to it. */
+export function leastMissed(without: readonly Without[]): Without['out'] | null {
+  const [first, ...others] = without
+  return first ? others.reduce((a, b) => (b.lambda2 < a.lambda2 ? b : a), first).out : null
 }
 
 /**
