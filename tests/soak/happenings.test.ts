@@ -96,6 +96,9 @@ describe('shapes', () => {
   })
 })
 
+/** The largest takes an hour of one processor. */
+const LARGE_TIMEOUT_MS = 4 * 60 * MINUTE_MS
+
 describe('large overlays', () => {
   it.each([
     [
@@ -105,7 +108,7 @@ describe('large overlays', () => {
       6,
     ],
     ['random 6-regular, 10,000, calm', randomRegular(10_000, 6, createRandom('10000')), PACES.calm, 15],
-  ] as const)('are read right: %s', (name, graph, pace, minutes) => {
+  ] as const)('are read right: %s', { timeout: LARGE_TIMEOUT_MS }, (name, graph, pace, minutes) => {
     const settings = { ...DEFAULT_SETTINGS, pace, disclosure: 'sealed' as const }
     const simulation = simulateOn(graph, name, { settings })
     simulation.run(minutes * MINUTE_MS)
