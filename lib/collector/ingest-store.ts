@@ -144,8 +144,9 @@ const STATES: Statement = {
 export async function storeStates(em: EntityManager, rows: readonly StateRow[]): Promise<void> {
   if (rows.length === 0) return
   const ordered = [...rows].sort((a, b) => (a.agentId < b.agentId ? -1 : 1))
+  // As bytes, for the driver holds values until the answer is there, and texts of that length are work for the garbage collector.
   const joined = (textOf: (report: Report) => unknown) =>
-    ordered.map(({ report }) => JSON.stringify(textOf(report))).join(BETWEEN)
+    Buffer.from(ordered.map(({ report }) => JSON.stringify(textOf(report))).join(BETWEEN))
   await prepared(em, STATES, [
     ordered.map(({ agentId }) => agentId),
     ordered.map(({ overlayId }) => overlayId),

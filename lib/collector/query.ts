@@ -31,12 +31,13 @@ export const READ_TIMEOUT = 'Query read timeout'
 
 /**
  * For the few statements that come with every batch of reports, outside transactions: straight to the driver, with `$1` for the
- * first value and lists as arrays, so that neither side reads a text that is as long as the batch.
+ * first value and lists as arrays, so that neither side reads a text that is as long as the batch. Bytes are sent as they are, in the binary
+ * format of the value's type: for a text its UTF-8.
  */
 export async function prepared<Row extends object>(
   em: EntityManager,
   statement: Statement,
-  values: readonly (Bindable | readonly Bindable[])[],
+  values: readonly (Bindable | Uint8Array | readonly Bindable[])[],
   answersMs = PREPARED_ANSWERS_MS,
 ): Promise<Row[]> {
   const { client } = em.getKnex()
