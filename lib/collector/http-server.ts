@@ -86,7 +86,7 @@ class AskedByMessage implements Asked {
         message.resume()
         reject(tooLarge(maxBytes))
       }
-      message.on('end', () => resolve(Buffer.concat(chunks)))
+      message.on('end', () => resolve(chunks.length === 1 ? chunks[0]! : Buffer.concat(chunks)))
       message.on('error', reject)
       if (Number(message.headers['content-length'] ?? 0) > maxBytes) giveUp()
       else message.on('data', take)

@@ -14,7 +14,8 @@ import type { Sender, SessionSender } from './ingest-store'
 import { findRings } from './key-turn'
 import { offerFor } from './offers'
 import { grantPass, isPassDue, notePasses } from './passes'
-import { findReplyFacts, notePassesOfSessions, type ReplyFacts } from './reply-store'
+import type { FactsRead, ReplyFactsReader } from './reply-facts'
+import { notePassesOfSessions, type ReplyFacts } from './reply-store'
 import { signerOf } from './signer'
 
 /** Whether a pass came through to an agent that is not reached directly cannot be told: it is given one anew after this. */
@@ -24,15 +25,15 @@ const REMEMBERED_MOST = 20_000
 export interface ReplyComponents {
   em: EntityManager
   clock: Clock
+  reader: ReplyFactsReader
 }
 
-/** Makes replies to one batch of reports, all from the same reading of the database. */
+/** Makes replies to one batch of reports. */
 export class ReplyMaker {
   readonly #components: ReplyComponents
   readonly #passLifeMs: number
   readonly #relayedPasses: Map<string, number>
-  #facts = new Map<string, ReplyFacts>()
-  #readMs = 0
+  #facts: ReadonlyMap<string, FactsRead> = new Map()
   readonly #orders = new Map<string, Orders | null>()
   readonly #rings = new Map<string, Promise<KeyRing[]>>()
 
@@ -44,16 +45,15 @@ export class ReplyMaker {
   }
 
   async load(overlayIds: ReadonlySet<string>): Promise<void> {
-    const { em, clock } = this.#components
-    this.#facts = await findReplyFacts(em, [...overlayIds])
-    this.#readMs = clock.monotonicMs()
+    const { em, reader } = this.#components
+    this.#facts = await reader.read(em, overlayIds)
   }
 
   async replyTo({ entry, sender }: Admitted, arrival: Arrival): Promise<ReportReply> {
     const facts = this.#facts.get(sender.overlayId)
     if (!facts) return { orders: null, ordersAgeMs: 0 }
     const ordersAgeMs =
-      facts.ordersText === null ? 0 : facts.ageMs + this.#components.clock.monotonicMs() - this.#readMs
+      facts.ordersText === null ? 0 : facts.ageMs + this.#components.clock.monotonicMs() - facts.readMs
     if ((entry.request.protocol ?? 1) < 2) return { orders: this.#ordersOf(facts), ordersAgeMs }
     const { report } = arrival
     const keyRings = await this.ringsFor(arrival)

@@ -22,6 +22,7 @@ import { ReplyMaker } from './ingest-reply'
 import { countLate, findHeld, findSenders, type Sender, type StateRow, storeStates } from './ingest-store'
 import { PASS_LIFE_MS } from './passes'
 import { openRelayed, type Relayed, relayedReply } from './relayed'
+import { ReplyFactsReader } from './reply-facts'
 import { CLONE_REPORTS, type HeldReport } from './report-check'
 import { storeVectors, type VectorRow } from './vectors'
 
@@ -58,6 +59,7 @@ export class Ingest {
   readonly #passLifeMs: number
   readonly #remembered = new Map<string, HeldReport>()
   readonly #relayedPasses = new Map<string, number>()
+  readonly #replyFacts: ReplyFactsReader
   readonly #running = new Set<Promise<void>>()
   #waiting: Entry[] = []
   #cancel: (() => void) | null = null
@@ -66,6 +68,7 @@ export class Ingest {
 
   constructor(components: IngestComponents, init: { passLifeMs?: number } = {}) {
     this.#components = components
+    this.#replyFacts = new ReplyFactsReader(components.clock)
     this.#passLifeMs = init.passLifeMs ?? PASS_LIFE_MS
   }
 
@@ -142,7 +145,7 @@ export class Ingest {
 
   async #replies(em: EntityManager, taken: readonly Taken[]): Promise<ReplyMaker> {
     const maker = new ReplyMaker(
-      { em, clock: this.#components.clock },
+      { em, clock: this.#components.clock, reader: this.#replyFacts },
       { passLifeMs: this.#passLifeMs, relayedPasses: this.#relayedPasses },
     )
     await maker.load(new Set(taken.map(({ sender }) => sender.overlayId)))

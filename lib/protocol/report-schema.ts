@@ -1,10 +1,11 @@
 import { z } from 'zod'
-import { AUDIT_FAULTS, LINK_KINDS, type Report, UPGRADE_STATES } from '../method/report'
+import { AUDIT_FAULTS, type Report } from '../method/report'
 import { upgradeOfferSchema } from './agent-life'
 import { passGrantSchema } from './enrol'
 import { INCARNATION } from './hello'
 import { keyRingSchema } from './key-ring'
-import { MAX_COMPLAINTS, MAX_RELAYED, MAX_REPORT_LINKS, MAX_ROUND_ENTRIES, MAX_ROUNDS } from './limits'
+import { MAX_COMPLAINTS, MAX_RELAYED, MAX_ROUND_ENTRIES, MAX_ROUNDS } from './limits'
+import { nodeFactsSchema } from './node-facts-schema'
 import { ordersSchema } from './orders-schema'
 import { receiptSchema } from './receipt'
 import { signedOrdersSchema } from './signed-orders'
@@ -13,50 +14,10 @@ import { sumsSchema } from './sums-schema'
 
 const count = z.number().int().min(0).max(Number.MAX_SAFE_INTEGER)
 
-const text = z.string().max(300)
-const healthSchema = z.object({
-  clockSkewMs: z.number(),
-  reportTookMs: z.number().min(0).nullable(),
-  reportsFailed: count,
-  ticks: count,
-  ticksLate: count,
-  lastError: text.nullable(),
-  linkKind: z.enum(LINK_KINDS),
-  withoutAgent: count,
-  source: z.object({ kind: z.string().max(40), error: text.nullable() }).nullable(),
-  weakestWeight: z.number().min(0).max(1).nullable(),
-  meanWeight: z.number().min(0).max(1).nullable(),
-  keyRing: count,
-  refused: count,
-  upgrade: z
-    .object({ version: z.string().max(40), state: z.enum(UPGRADE_STATES), error: text.nullable() })
-    .nullable(),
-})
-
 const complaintSchema = z.object({
   peer: z.string().min(1).max(64),
   fault: z.enum(AUDIT_FAULTS),
   ratio: z.number(),
-})
-
-const nodeFactsSchema = z.object({
-  degree: count,
-  weightedDegree: z.number().min(0),
-  linksKnown: count,
-  value: z.object({ sweep: count, value: z.number() }).nullable(),
-  links: z
-    .array(
-      z.object({
-        peer: z.string().min(1).max(64),
-        weight: z.number().min(0).max(1),
-        share: z.number().min(0).nullable(),
-      }),
-    )
-    .max(MAX_REPORT_LINKS),
-  version: z.string().max(40),
-  uptimeSeconds: z.number().min(0),
-  skills: z.array(z.string().max(40)).max(16).optional(),
-  health: healthSchema.optional(),
 })
 
 /** Eight bytes an entry in base64url. What they hold nobody can check. */

@@ -1,12 +1,12 @@
 import type { ColonyCounters, ColonySums, PlacedSweepSums, Sums, SweepSums } from '../method/report'
 import { MAX_COLONIES, MAX_THRESHOLDS } from './limits'
-import { BIT, COUNT, FIXED, type Range, type Unread, type WholeReader, wholeObject } from './read-whole'
+import { BIT, COUNT, FIXED, type ObjectReader, objectReadBy, type Range, type Unread } from './object-reader'
 
 const MAX_PAIRS = (MAX_COLONIES * (MAX_COLONIES + 1)) / 2
 const SLOT: Range = { least: 0, most: 0xffff }
 const PLACE: Range = { least: 0, most: MAX_COLONIES }
 
-const countersOf = (from: Unread<ColonyCounters>, reader: WholeReader): ColonyCounters => ({
+const countersOf = (from: Unread<ColonyCounters>, reader: ObjectReader): ColonyCounters => ({
   seeded: reader.whole(from.seeded, COUNT, 'seeded'),
   births: reader.whole(from.births, COUNT, 'births'),
   kills: reader.whole(from.kills, COUNT, 'kills'),
@@ -20,7 +20,7 @@ const countersOf = (from: Unread<ColonyCounters>, reader: WholeReader): ColonyCo
   linkTime: reader.whole(from.linkTime, COUNT, 'linkTime'),
 })
 
-const colonyOf = (from: Unread<ColonySums>, reader: WholeReader): ColonySums => ({
+const colonyOf = (from: Unread<ColonySums>, reader: ObjectReader): ColonySums => ({
   colony: reader.whole(from.colony, SLOT, 'colony'),
   seeding: reader.whole(from.seeding, COUNT, 'seeding'),
   present: reader.whole(from.present, BIT, 'present'),
@@ -30,7 +30,7 @@ const colonyOf = (from: Unread<ColonySums>, reader: WholeReader): ColonySums => 
   mean: reader.whole(from.mean, FIXED, 'mean'),
 })
 
-function sweepOf(from: Unread<SweepSums>, reader: WholeReader): SweepSums {
+function sweepOf(from: Unread<SweepSums>, reader: ObjectReader): SweepSums {
   const sweep = {
     id: reader.whole(from.id, COUNT, 'id'),
     above: reader.wholes(from.above, MAX_THRESHOLDS, BIT, 'above'),
@@ -43,14 +43,14 @@ function sweepOf(from: Unread<SweepSums>, reader: WholeReader): SweepSums {
   return sweep
 }
 
-const placedSweepOf = (from: Unread<PlacedSweepSums>, reader: WholeReader): PlacedSweepSums => ({
+const placedSweepOf = (from: Unread<PlacedSweepSums>, reader: ObjectReader): PlacedSweepSums => ({
   ...sweepOf(from, reader),
   place: reader.whole(from.place, PLACE, 'place'),
   linkEnds: reader.whole(from.linkEnds, COUNT, 'linkEnds'),
   alone: reader.whole(from.alone, BIT, 'alone'),
 })
 
-function sumsOf(from: Unread<Sums>, reader: WholeReader): Sums {
+function sumsOf(from: Unread<Sums>, reader: ObjectReader): Sums {
   const sums: Sums = {
     attached: reader.whole(from.attached, BIT, 'attached'),
     colonies: reader.objects(from.colonies, MAX_COLONIES, colonyOf, 'colonies'),
@@ -72,4 +72,4 @@ function sumsOf(from: Unread<Sums>, reader: WholeReader): Sums {
   return sums
 }
 
-export const sumsSchema = wholeObject(sumsOf)
+export const sumsSchema = objectReadBy(sumsOf)

@@ -2,6 +2,7 @@ import { beforeEach, describe, expect, it } from 'vitest'
 import { POST as reportRoute } from '@/app/api/agent/report/route'
 import { AgentSchema, AgentSessionSchema, AgentStateSchema, ControlSchema, OverlaySchema } from '@/entities'
 import type { Incoming } from '@/lib/collector/ingest-entry'
+import { FACTS_KEPT_MS, ReplyFactsReader } from '@/lib/collector/reply-facts'
 import { signerOf } from '@/lib/collector/signer'
 import { sql } from '@/lib/db'
 import {
@@ -24,6 +25,7 @@ import {
   seedOverlay,
   sendReport,
 } from '@/tests/support/collector'
+import { FakeClock } from '@/tests/support/fake-clock'
 import { someOrders } from '@/tests/support/frames'
 import { overlayPerTest } from '@/tests/support/overlay-per-test'
 import { healthyReport, someReport } from '@/tests/support/reports'
@@ -112,6 +114,28 @@ describe('a reply', () => {
     await sql(seeded.em(), `update overlays set disclosure = 'flagged' where id = ?`, [seeded.overlay.id])
     await deliver(tar, v2(2, { complaints }))
     expect((await stateOf(tar))?.complaints).toEqual([])
+  })
+
+  it('is made from what was read a tenth of a second ago at most, and the first orders are waited for', async () => {
+    const clock = new FakeClock()
+    const reader = new ReplyFactsReader(clock)
+    const read = async () => {
+      const { id } = seeded.overlay
+      const facts = (await reader.read(seeded.em(), new Set([id]))).get(id)
+      return { text: facts?.ordersText ?? null, readMs: facts?.readMs }
+    }
+    const sequenceOf = ({ text }: { text: string | null }) => text && JSON.parse(text).sequence
+    expect(sequenceOf(await read())).toBeNull()
+    await issueOrders(5)
+    const first = await read()
+    expect(sequenceOf(first)).toBe(5)
+    await sql(seeded.em(), `update controls set orders_text = '{"sequence":6}'`)
+    await clock.advance(FACTS_KEPT_MS)
+    expect(await read()).toEqual(first)
+    await clock.advance(1)
+    const second = await read()
+    expect(sequenceOf(second)).toBe(6)
+    expect(second.readMs! - first.readMs!).toBe(FACTS_KEPT_MS + 1)
   })
 
   it('goes to one that was left out as well, but without a new pass', async () => {

@@ -52,6 +52,25 @@ const report: Report = {
   },
 }
 
+const health = {
+  clockSkewMs: -3.5,
+  reportTookMs: null,
+  reportsFailed: 0,
+  ticks: 18_000,
+  ticksLate: 12,
+  lastError: 'The collector did not answer.',
+  linkKind: 'path' as const,
+  withoutAgent: 1,
+  source: { kind: 'static', error: null },
+  weakestWeight: 0.5,
+  meanWeight: null,
+  keyRing: 1,
+  refused: 0,
+  upgrade: { version: '0.2.0', state: 'taken' as const, error: null },
+}
+const withNode = (over: object) => ({ ...report, node: { ...report.node, ...over } })
+const withHealth = (over: object) => withNode({ health: { ...health, ...over } })
+
 const withSums = (over: object) => ({ ...report, sums: { ...report.sums, ...over } })
 const withCounter = (name: string, value: unknown) =>
   withSums({ colonies: [{ ...colony, counters: { ...counters, [name]: value } }] })
@@ -78,6 +97,12 @@ describe('a report', () => {
 
   test('as an agent writes it is taken whole', () => {
     expect(reportSchema.parse(JSON.parse(JSON.stringify(report)))).toEqual(report)
+  })
+
+  test('says how its agent fares and what it can do', () => {
+    const told = withNode({ health, skills: ['rehearsal', 'later'] })
+    expect(reportSchema.parse(JSON.parse(JSON.stringify(told)))).toEqual(told)
+    expect(reportSchema.parse(withHealth({ neighbours: ['agent-gul-04'] })).node.health).toEqual(health)
   })
 
   test('is taken without what it has no business to say', () => {
@@ -141,6 +166,39 @@ describe('a report', () => {
       'more links than allowed',
       { ...report, node: { ...report.node, links: Array(5_000).fill(report.node.links[0]) } },
       'node.links',
+    ],
+    ['no node', { ...report, node: 'gul-04' }, 'node'],
+    ['a degree that is no number', withNode({ degree: '2' }), 'node.degree'],
+    [
+      'an infinite weighted degree',
+      withNode({ weightedDegree: Number.POSITIVE_INFINITY }),
+      'node.weightedDegree',
+    ],
+    [
+      'a value that is not a number',
+      withNode({ value: { sweep: 7, value: Number.NaN } }),
+      'node.value.value',
+    ],
+    ['neither a value nor null', withNode({ value: undefined }), 'node.value'],
+    [
+      'a weight over one',
+      withNode({ links: [{ peer: 'a', weight: 1.1, share: null }] }),
+      'node.links.0.weight',
+    ],
+    ['a negative share', withNode({ links: [{ peer: 'a', weight: 1, share: -0.1 }] }), 'node.links.0.share'],
+    ['a link to nobody', withNode({ links: [{ peer: '', weight: 1, share: null }] }), 'node.links.0.peer'],
+    ['a long version', withNode({ version: '1'.repeat(41) }), 'node.version'],
+    ['a skill that is no text', withNode({ skills: [5] }), 'node.skills.0'],
+    ['more skills than allowed', withNode({ skills: Array(17).fill('rehearsal') }), 'node.skills'],
+    ['a kind of link there is not', withHealth({ linkKind: 'rope' }), 'node.health.linkKind'],
+    ['a long error', withHealth({ lastError: 'x'.repeat(301) }), 'node.health.lastError'],
+    ['a negative time', withHealth({ reportTookMs: -1 }), 'node.health.reportTookMs'],
+    ['ticks by halves', withHealth({ ticks: 0.5 }), 'node.health.ticks'],
+    ['a source without a kind', withHealth({ source: { error: null } }), 'node.health.source.kind'],
+    [
+      'an unknown end of an upgrade',
+      withHealth({ upgrade: { ...health.upgrade, state: 'lost' } }),
+      'node.health.upgrade.state',
     ],
     ['no incarnation', { ...report, incarnation: '' }, 'incarnation'],
     ['number 0', { ...report, number: 0 }, 'number'],
