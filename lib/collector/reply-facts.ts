@@ -3,12 +3,13 @@ import type { Clock } from './clock'
 import { findReplyFacts, type ReplyFacts } from './reply-store'
 
 /**
- * Under load many batches come in that time, and orders only every few seconds. It is as though reports had come in so much sooner, and
- * orders say how old they are all the same.
+ * Under load many batches come in that time, and orders only every few seconds. They say how old they are all the same; who may report is never
+ * kept.
  */
 export const FACTS_KEPT_MS = 100
 
 export interface FactsRead extends ReplyFacts {
+  /** When the reading began: what is in it is as old at least. */
   readMs: number
 }
 
@@ -32,10 +33,11 @@ export class ReplyFactsReader {
     }
     const missing = [...overlayIds].filter((overlayId) => !found.has(overlayId))
     for (const [overlayId, facts] of await findReplyFacts(em, missing)) {
-      const read = { ...facts, readMs: this.#clock.monotonicMs() }
+      const read = { ...facts, readMs: nowMs }
       found.set(overlayId, read)
-      // The first orders are waited for.
-      if (facts.ordersText !== null) this.#kept.set(overlayId, read)
+      // The first orders are waited for. Another batch may have begun later and be here already.
+      const isNewest = (this.#kept.get(overlayId)?.readMs ?? nowMs) <= nowMs
+      if (facts.ordersText !== null && isNewest) this.#kept.set(overlayId, read)
     }
     return found
   }

@@ -12,6 +12,9 @@ export const BIT: Range = { least: 0, most: 1 }
 /** For numbers that need not be whole. */
 export const SHARE: Range = { least: 0, most: 1 }
 
+/** So many are noted in one object: whoever sends thousands that are wrong need not be told of each. */
+const MOST_ISSUES = 20
+
 /** A value of which nothing is known but which names it should have. */
 export type Unread<T> = { readonly [K in keyof T]?: unknown }
 type Read<T> = (from: Unread<T>, reader: ObjectReader) => T
@@ -46,7 +49,7 @@ export class ObjectReader {
   }
 
   text(value: unknown, { least, most }: Range, at: PropertyKey): string {
-    if (typeof value === 'string' && value.length >= least && value.length <= most) return value
+    if (typeof value === 'string' && value.length >= least && isWithin(value, most)) return value
     this.fail(`Expected a text of ${least} to ${most} characters.`, value, at)
     return ''
   }
@@ -69,8 +72,13 @@ export class ObjectReader {
   object<T>(value: unknown, read: Read<T>, at?: PropertyKey): T {
     if (at !== undefined) this.path.push(at)
     const isObject = typeof value === 'object' && value !== null && !Array.isArray(value)
-    if (!isObject) this.fail('Expected an object.', value)
+    const noted = this.issues.length
     const object = read(isObject ? value : {}, this)
+    if (!isObject) {
+      // What is no object lacks every name, and that need not be said of each.
+      this.issues.length = noted
+      this.fail('Expected an object.', value)
+    }
     if (at !== undefined) this.path.pop()
     return object
   }
@@ -79,8 +87,14 @@ export class ObjectReader {
     return this.listOf(value, most, at, (list) => list.map((each, index) => this.object(each, read, index)))
   }
 
+  /** Whether nothing was wrong so far. */
+  get isGood(): boolean {
+    return this.issues.length === 0
+  }
+
   fail(message: string, input: unknown, ...at: PropertyKey[]): void {
-    this.issues.push({ code: 'custom', input, path: [...this.path, ...at], message })
+    if (this.issues.length < MOST_ISSUES)
+      this.issues.push({ code: 'custom', input, path: [...this.path, ...at], message })
   }
 
   private listOf<T>(
@@ -97,3 +111,7 @@ export class ObjectReader {
     return list
   }
 }
+
+/** Code points count, not the units of UTF-16. */
+const isWithin = (text: string, most: number): boolean =>
+  text.length <= most || (text.length <= 2 * most && [...text].length <= most)

@@ -38,7 +38,8 @@ function sweepOf(from: Unread<SweepSums>, reader: ObjectReader): SweepSums {
     crossingWeight: reader.wholes(from.crossingWeight, MAX_THRESHOLDS, COUNT, 'crossingWeight'),
   }
   const { above, crossing, crossingWeight } = sweep
-  if (above.length !== crossing.length || above.length !== crossingWeight.length)
+  const isPerThreshold = above.length === crossing.length && above.length === crossingWeight.length
+  if (reader.isGood && !isPerThreshold)
     reader.fail('above, crossing and crossingWeight have one entry per threshold', from)
   return sweep
 }
@@ -63,6 +64,7 @@ function sumsOf(from: Unread<Sums>, reader: ObjectReader): Sums {
       sweeps: reader.objects(from.sweeps, MAX_COLONIES, placedSweepOf, 'sweeps'),
     }),
   }
+  if (!reader.isGood) return sums
   const size = sums.attached === 1 ? sums.colonies.length : 0
   const pairs = (size * (size + 1)) / 2
   for (const key of ['energies', 'moments'] as const)

@@ -1,4 +1,4 @@
-const LEAST = [20, 9]
+const LEAST = [20, 12]
 
 export function requireNode(version) {
   const [major = 0, minor = 0] = version.split('.').map(Number)

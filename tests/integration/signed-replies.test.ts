@@ -129,7 +129,9 @@ describe('a reply', () => {
     await issueOrders(5)
     const first = await read()
     expect(sequenceOf(first)).toBe(5)
-    await sql(seeded.em(), `update controls set orders_text = '{"sequence":6}'`)
+    await sql(seeded.em(), `update controls set orders_text = '{"sequence":6}' where overlay_id = ?`, [
+      seeded.overlay.id,
+    ])
     await clock.advance(FACTS_KEPT_MS)
     expect(await read()).toEqual(first)
     await clock.advance(1)

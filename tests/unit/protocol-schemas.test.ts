@@ -105,6 +105,20 @@ describe('a report', () => {
     expect(reportSchema.parse(withHealth({ neighbours: ['agent-gul-04'] })).node.health).toEqual(health)
   })
 
+  test('has its texts measured in characters, not in the units of UTF-16', () => {
+    const told = withNode({ version: '🌊'.repeat(40) })
+    expect(reportSchema.parse(told)).toEqual(told)
+  })
+
+  test('that is wrong all over is told so in a few places', () => {
+    const { error } = reportSchema.safeParse({
+      ...withSums({ colonies: Array(5).fill(0) }),
+      node: { ...report.node, links: Array(60).fill(0) },
+    })
+    expect(error?.issues.length).toBeLessThanOrEqual(40)
+    expect(error?.issues.map(({ path }) => path.join('.'))).toContain('node.links.0')
+  })
+
   test('is taken without what it has no business to say', () => {
     const more = (of: object) => ({ ...of, neighbours: ['agent-gul-04'] })
     const sweep = more(report.sums.sweep!)
@@ -151,7 +165,7 @@ describe('a report', () => {
     ],
     ['too few energies', withSums({ energies: [] }), 'sums.energies'],
     ['too many moments', withSums({ moments: [1, 2, 3] }), 'sums.moments'],
-    ['energies of a detached agent', withSums({ attached: 0 }), 'sums.energies'],
+    ['energies of a detached agent', withSums({ attached: 0, moments: [] }), 'sums.energies'],
     [
       'one colony twice',
       withSums({ colonies: [colony, colony], energies: [1, 2, 3], moments: [1, 2, 3] }),
@@ -200,12 +214,13 @@ describe('a report', () => {
       withHealth({ upgrade: { ...health.upgrade, state: 'lost' } }),
       'node.health.upgrade.state',
     ],
+    ['a version of too many characters', withNode({ version: '⚓'.repeat(41) }), 'node.version'],
     ['no incarnation', { ...report, incarnation: '' }, 'incarnation'],
     ['number 0', { ...report, number: 0 }, 'number'],
   ]
   test.each(bad)('with %s is refused where it is wrong', (_, input, path) => {
     const result = reportSchema.safeParse(input)
-    expect(result.success ? [] : result.error.issues.map((issue) => issue.path.join('.'))).toContain(path)
+    expect(result.success ? [] : result.error.issues.map((issue) => issue.path.join('.'))).toEqual([path])
   })
 })
 

@@ -6,7 +6,8 @@ type Summed = Pick<ColonyCounters, 'kills' | 'walkerTime'>
 
 /**
  * Rates from cumulative counters. An agent not heard since contributes nothing to either side of the death rate; what
- * it did then comes with its next report. A new incarnation or seeding counts from zero. Populations are held sums
+ * it did then comes with its next report. A new incarnation or seeding counts from zero; of an agent that was not there before nothing is counted,
+ * for it may have walked for days (one that is readmitted, or all of them where another process leads). Populations are held sums
  * instead: types live apart, so those heard in one interval say nothing of the others (with 30 % of reports lost, means
  * over the agents heard steer populations wrong and the reading errs by 4–30 %).
  */
@@ -29,7 +30,8 @@ export function colonyRates(
     present += sums.present
     populationX += sums.heldX
     populationY += sums.heldY
-    const old = earlier.get(agent.agentId) ?? null
+    const old = earlier.get(agent.agentId)
+    if (old === undefined) continue
     const base =
       old?.incarnation === report.incarnation
         ? sumsOf(old.sums.colonies, colony, seeding)?.counters

@@ -63,7 +63,7 @@ export function read(
     ...control,
     drift: drifts,
     ritz,
-    leastMissed: leastMissed(without),
+    leastMissed: leastMissed(aged, subspace, without),
   }
   const isYoung = ({ seededAtMs }: ColonyControl): boolean =>
     seededAtMs === control.renewedAtMs && seededAtMs > control.coldSinceMs

@@ -72,8 +72,11 @@ function renew(control: ControlState, seeder: Seeder): ControlState {
   if (isChange && seeder.atMs - control.coldSinceMs < LEAST_SINCE_COLD_INTERVALS * intervalMs) return control
   const isYoungest = age < RENEWAL_INTERVALS && control.renewedAtMs > control.coldSinceMs
   const replaced = isYoungest ? youngest(control.colonies) : mostDispensable(control)
+  // Lost or outgrown, it has just been seeded anew, and no other need be.
   const colonies = control.colonies.map((colony) =>
-    colony === replaced ? seedColony(colony.colony, crossCheckOf(control.colonies), seeder) : colony,
+    colony === replaced && colony.seeding !== seeder.sequence
+      ? seedColony(colony.colony, crossCheckOf(control.colonies), seeder)
+      : colony,
   )
   return { ...control, colonies, renewedAtMs: seeder.atMs }
 }
@@ -81,10 +84,8 @@ function renew(control: ControlState, seeder: Seeder): ControlState {
 const youngest = (colonies: readonly ColonyControl[]): ColonyControl =>
   colonies.reduce((a, b) => (b.seededAtMs > a.seededAtMs ? b : a))
 
-/** The oldest while there is no reading. */
+/** The oldest while nothing is known of what each brings. */
 function mostDispensable({ colonies, leastMissed }: ControlState): ColonyControl {
-  const known = colonies.find(
-    ({ colony, seeding }) => colony === leastMissed?.colony && seeding === leastMissed.seeding,
-  )
+  const known = leastMissed && colonies.find(({ colony }) => colony === leastMissed.colony)
   return known ?? colonies.reduce((a, b) => (b.seededAtMs < a.seededAtMs ? b : a))
 }

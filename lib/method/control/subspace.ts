@@ -112,8 +112,14 @@ export function fallWithMore(without: readonly Without[], lambda2: number): numb
   return (without.length - 1) * (mean / lambda2 - 1)
 }
 
-/** The colony without which the reading would be lowest: it brings least to it. */
-export function leastMissed(without: readonly Without[]): Without['out'] | null {
+/** The colony that brings least: one that cannot be summed, or the one without which the reading would be lowest. */
+export function leastMissed(
+  aged: readonly ColonyControl[],
+  subspace: Subspace | null,
+  without: readonly Without[],
+): Without['out'] | null {
+  const unusable = subspace && aged.find((colony) => !subspace.colonies.includes(colony))
+  if (unusable) return { colony: unusable.colony, seeding: unusable.seeding }
   const [first, ...others] = without
   return first ? others.reduce((a, b) => (b.lambda2 < a.lambda2 ? b : a), first).out : null
 }

@@ -202,7 +202,7 @@ export function faultSuite({ faultMs, stopsMs }: FaultSuiteInit): void {
       await overlay.reads()
       const books = (await overlay.standStill()).filter(({ slot }) => held.has(slot))
       overlay.walkOn()
-      // Colonies are seeded anew in turn; what is left of those of before is looked at.
+      // Colonies are seeded anew, one at a time; what is left of those of before is looked at.
       expect(books.length).toBeGreaterThan(0)
       expect(books.map((book) => book.made + (made.get(book.slot) ?? 0) - book.held)).toEqual(
         books.map(({ slot }) => held.get(slot)),

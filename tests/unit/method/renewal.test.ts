@@ -43,11 +43,29 @@ describe('the colony that is missed least', () => {
       2,
     ],
   ])('%s', (_, held, colony) => {
-    expect(leastMissed(withoutEach(subspaceOf(held, [1, 1.5, 4])))).toEqual({ colony, seeding: 5 })
+    const subspace = subspaceOf(held, [1, 1.5, 4])
+    expect(leastMissed(subspace.colonies, subspace, withoutEach(subspace))).toEqual({ colony, seeding: 5 })
   })
 
   it('is none where there is but one', () => {
-    expect(leastMissed(withoutEach(subspaceOf([[1, 0]], [1, 2])))).toBeNull()
+    const subspace = subspaceOf([[1, 0]], [1, 2])
+    expect(leastMissed(subspace.colonies, subspace, withoutEach(subspace))).toBeNull()
+    expect(leastMissed(subspace.colonies, null, [])).toBeNull()
+  })
+
+  it('is one that is old enough and cannot be summed all the same', () => {
+    const subspace = subspaceOf(
+      [
+        [1, 0],
+        [0.9, 0.1],
+      ],
+      [1, 2],
+    )
+    const unusable = { colony: 7, seeding: 2 } as ColonyControl
+    expect(leastMissed([...subspace.colonies, unusable], subspace, withoutEach(subspace))).toEqual({
+      colony: 7,
+      seeding: 2,
+    })
   })
 })
 

@@ -33,7 +33,7 @@ function trueShares(graph: SparseGraph): Map<string, number> {
   )
 }
 
-/** A single run is up to four points of a hundred off on the families; what is said must be right in the mean. */
+/** A single run is some points of a hundred off on the families; what is said must be right in the mean. */
 const RUNS = 6
 
 function saidShares(graph: SparseGraph, name: string): Map<string, number> {

@@ -12,9 +12,9 @@ import { addressesOf } from '@/scripts/lib/web.mjs'
 
 describe('what a start checks first', () => {
   it('takes a new enough Node and says which is wanted', () => {
-    for (const version of ['20.9.0', '20.20.2', '24.0.1']) expect(() => requireNode(version)).not.toThrow()
-    for (const version of ['20.8.1', '18.19.0', 'x'])
-      expect(() => requireNode(version)).toThrow('needs Node 20.9')
+    for (const version of ['20.12.0', '20.20.2', '24.0.1']) expect(() => requireNode(version)).not.toThrow()
+    for (const version of ['20.11.1', '18.19.0', 'x'])
+      expect(() => requireNode(version)).toThrow('needs Node 20.12')
   })
   it('reads a port, and says what is wrong with another text', () => {
     expect(parsePort(undefined, 3000)).toBe(3000)
