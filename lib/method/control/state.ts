@@ -83,8 +83,8 @@ export interface ControlState {
   linkTimePerSecond: number
   colonies: ColonyControl[]
   renewedAtMs: number
-  /** The colony that brought least to the last reading. Absent in states of before it was kept. */
-  leastMissed?: Pick<ColonyControl, 'colony' | 'seeding'> | null
+  /** The slot of the colony that brought least to the last reading. Absent in states of before it was kept. */
+  leastMissed?: number | null
   /** Last Ritz values, oldest first, of fresh intervals. */
   ritz: { atMs: number; value: number }[]
   coldSinceMs: number

@@ -86,6 +86,6 @@ const youngest = (colonies: readonly ColonyControl[]): ColonyControl =>
 
 /** The oldest while nothing is known of what each brings. */
 function mostDispensable({ colonies, leastMissed }: ControlState): ColonyControl {
-  const known = leastMissed && colonies.find(({ colony }) => colony === leastMissed.colony)
+  const known = colonies.find(({ colony }) => colony === leastMissed)
   return known ?? colonies.reduce((a, b) => (b.seededAtMs < a.seededAtMs ? b : a))
 }

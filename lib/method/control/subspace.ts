@@ -87,9 +87,9 @@ export function ritzOf(subspace: Subspace, chosen?: (colony: ColonyControl) => b
   return ritz(subspace.energies.selection(kept, kept), subspace.moments.selection(kept, kept))
 }
 
-/** The reading that there would be without one of the colonies, for each. */
+/** The reading that there would be without the colony of this slot. */
 export interface Without {
-  out: Pick<ColonyControl, 'colony' | 'seeding'>
+  colony: number
   lambda2: number
 }
 
@@ -98,7 +98,7 @@ export function withoutEach(subspace: Subspace): Without[] {
   if (colonies.length < 2) return []
   return colonies.flatMap((out) => {
     const lambda2 = ritzOf(subspace, (colony) => colony !== out)?.values[0]
-    return lambda2 === undefined ? [] : [{ out: { colony: out.colony, seeding: out.seeding }, lambda2 }]
+    return lambda2 === undefined ? [] : [{ colony: out.colony, lambda2 }]
   })
 }
 
@@ -112,16 +112,16 @@ export function fallWithMore(without: readonly Without[], lambda2: number): numb
   return (without.length - 1) * (mean / lambda2 - 1)
 }
 
-/** The colony that brings least: one that cannot be summed, or the one without which the reading would be lowest. */
+/** The slot of the colony that brings least: one that cannot be summed, or the one without which the reading would be lowest. */
 export function leastMissed(
   aged: readonly ColonyControl[],
   subspace: Subspace | null,
   without: readonly Without[],
-): Without['out'] | null {
+): number | null {
   const unusable = subspace && aged.find((colony) => !subspace.colonies.includes(colony))
-  if (unusable) return { colony: unusable.colony, seeding: unusable.seeding }
+  if (unusable) return unusable.colony
   const [first, ...others] = without
-  return first ? others.reduce((a, b) => (b.lambda2 < a.lambda2 ? b : a), first).out : null
+  return first ? others.reduce((a, b) => (b.lambda2 < a.lambda2 ? b : a), first).colony : null
 }
 
 /**
